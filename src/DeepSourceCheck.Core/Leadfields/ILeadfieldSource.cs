@@ -1,0 +1,15 @@
+namespace DeepSourceCheck.Core.Leadfields;
+
+/// <summary>Computes or looks up leadfields, a block of dipoles at a time, unreferenced.</summary>
+/// <remarks>Immutable after construction; <see cref="Fill"/> may run on several threads at once, each with its own block.</remarks>
+public interface ILeadfieldSource
+{
+    /// <summary>Number of electrodes; 0 without EEG.</summary>
+    int EegRows { get; }
+
+    /// <summary>Number of MEG channels; 0 without MEG.</summary>
+    int MegRows { get; }
+
+    /// <summary>Overwrites the block's EEG and MEG values at its loaded positions.</summary>
+    void Fill(LeadfieldBlock block);
+}

@@ -1,0 +1,52 @@
+using DeepSourceCheck.Core.Sensors;
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Core.Results;
+
+/// <summary>The words by which results and studies name things: the one place where they are spelled.</summary>
+public static class Names
+{
+    /// <summary>Mean over channels of the power ratio.</summary>
+    public const string ChannelMean = "channel-mean";
+
+    /// <summary>Largest power ratio over channels.</summary>
+    public const string BestChannel = "best-channel";
+
+    /// <summary>The bound that no linear combination of channels exceeds.</summary>
+    public const string MatchedFilter = "matched-filter";
+
+    /// <summary>`EEG`, `MEG`, `EEG+MEG`.</summary>
+    public static string Of(Modality modality) => modality switch
+    {
+        Modality.Eeg => "EEG",
+        Modality.Meg => "MEG",
+        _ => "EEG+MEG",
+    };
+
+    /// <summary>Direction as results write it.</summary>
+    public static string Of(DirectionName direction) => direction switch
+    {
+        DirectionName.QuasiRadial => "quasi-radial",
+        DirectionName.Tangential => "tangential",
+        DirectionName.StrongestTangential => "strongest-tangential",
+        DirectionName.Isotropic => "isotropic",
+        DirectionName.Best => "best",
+        _ => "given",
+    };
+
+    /// <summary>Coil kind as tables write it.</summary>
+    public static string Of(CoilKind kind) => kind switch
+    {
+        CoilKind.Magnetometer => "magnetometer",
+        CoilKind.AxialGradiometer => "axial-gradiometer",
+        _ => "planar-gradiometer",
+    };
+
+    /// <summary>Grade as results write it.</summary>
+    public static string Of(Grade grade) => grade switch
+    {
+        Grade.Seen => "seen",
+        Grade.Memory => "memory",
+        _ => "derived",
+    };
+}
