@@ -1,0 +1,174 @@
+using System.Runtime.InteropServices;
+using System.Runtime.Intrinsics;
+
+namespace DeepSourceCheck.Core.Leadfields;
+
+/// <summary>
+/// A linear map from recorded rows to the channels that are used: referencing, derivations (later: removal of environment terms). It acts on leadfields and on
+/// covariances alike, so that signal and noise can never stand on different references.
+/// </summary>
+/// <remarks>out_k = sum_j S_kj in_j - c sum_j w_j in_j with sparse rows S and the common weights w, c = 1 where a common term is given.</remarks>
+public sealed class ChannelOperator
+{
+    private readonly (int Row, double Weight)[][] _rows;
+    private readonly double[]? _common;
+
+    /// <param name="names">Name of each output channel.</param>
+    /// <param name="inputs">Number of input rows.</param>
+    /// <param name="rows">Sparse weights of each output.</param>
+    /// <param name="common">Weights over the inputs of the term that is subtracted from every output; null for none.</param>
+    public ChannelOperator(IReadOnlyList<string> names, int inputs, (int Row, double Weight)[][] rows, double[]? common)
+    {
+        if (names.Count != rows.Length || (common is not null && common.Length != inputs))
+        {
+            throw new ArgumentException("Names, rows and common weights must agree in length.");
+        }
+
+        Names = names;
+        Inputs = inputs;
+        _rows = rows;
+        _common = common is not null && common.Any(w => w != 0) ? common : null;
+    }
+
+    /// <summary>Name of each output channel.</summary>
+    public IReadOnlyList<string> Names { get; }
+
+    /// <summary>Number of input rows.</summary>
+    public int Inputs { get; }
+
+    /// <summary>Number of output channels.</summary>
+    public int Outputs => _rows.Length;
+
+    /// <summary>Every row minus the weighted mean of the reference rows.</summary>
+    /// <param name="names">Names of the rows.</param>
+    /// <param name="weights">Reference weights over the rows, summing to 1; null or all zero leaves the rows as they are.</param>
+    public static ChannelOperator Reference(IReadOnlyList<string> names, double[]? weights) =>
+        new(names, names.Count, [.. Enumerable.Range(0, names.Count).Select(k => new[] { (k, 1.0) })], weights);
+
+    /// <summary>Derivations: each a weighted sum of rows.</summary>
+    /// <param name="names">Names of the derivations.</param>
+    /// <param name="weights">Weights over the rows, one array a derivation.</param>
+    /// <param name="inputs">Number of rows.</param>
+    public static ChannelOperator Derivations(IReadOnlyList<string> names, IReadOnlyList<double[]> weights, int inputs) =>
+        new(names, inputs, [.. weights.Select(w => w.Select((x, j) => (j, x)).Where(p => p.x != 0).ToArray())], null);
+
+    /// <summary>Dense weights of output <paramref name="k"/> over the inputs.</summary>
+    public double[] Weights(int k)
+    {
+        var dense = new double[Inputs];
+        foreach ((int row, double weight) in _rows[k])
+        {
+            dense[row] += weight;
+        }
+
+        for (int j = 0; _common is not null && j < Inputs; j++)
+        {
+            dense[j] -= _common[j];
+        }
+
+        return dense;
+    }
+
+    /// <summary>Applies the operator to leadfields of eight dipoles.</summary>
+    /// <param name="input">[row][axis][lane], as long as the inputs need.</param>
+    /// <param name="output">[channel][axis][lane]; overwritten.</param>
+    public void Apply(ReadOnlySpan<double> input, Span<double> output)
+    {
+        ReadOnlySpan<Vector512<double>> x = MemoryMarshal.Cast<double, Vector512<double>>(input);
+        Span<Vector512<double>> y = MemoryMarshal.Cast<double, Vector512<double>>(output);
+        Vector512<double> c0 = default, c1 = default, c2 = default;
+        if (_common is not null)
+        {
+            for (int j = 0; j < Inputs; j++)
+            {
+                if (_common[j] != 0)
+                {
+                    Vector512<double> w = Vector512.Create(_common[j]);
+                    c0 += w * x[3 * j];
+                    c1 += w * x[3 * j + 1];
+                    c2 += w * x[3 * j + 2];
+                }
+            }
+        }
+
+        for (int k = 0; k < _rows.Length; k++)
+        {
+            Vector512<double> y0 = -c0, y1 = -c1, y2 = -c2;
+            foreach ((int j, double weight) in _rows[k])
+            {
+                Vector512<double> w = Vector512.Create(weight);
+                y0 += w * x[3 * j];
+                y1 += w * x[3 * j + 1];
+                y2 += w * x[3 * j + 2];
+            }
+
+            y[3 * k] = y0;
+            y[3 * k + 1] = y1;
+            y[3 * k + 2] = y2;
+        }
+    }
+
+    /// <summary>P C P': the covariance of the outputs.</summary>
+    /// <param name="covariance">C, inputs x inputs, row by row.</param>
+    /// <returns>Outputs x outputs, row by row.</returns>
+    public double[] ApplyToCovariance(double[] covariance)
+    {
+        int n = Inputs, m = Outputs;
+        double[] left = ApplyToRows(covariance, n);             // P C, m x n
+        var transposed = new double[n * m];
+        for (int k = 0; k < m; k++)
+        {
+            for (int j = 0; j < n; j++)
+            {
+                transposed[j * m + k] = left[k * n + j];
+            }
+        }
+
+        double[] result = ApplyToRows(transposed, m);           // P (P C)', m x m
+        for (int i = 0; i < m; i++)                             // rounding must not make it asymmetric
+        {
+            for (int j = 0; j < i; j++)
+            {
+                result[i * m + j] = result[j * m + i] = 0.5 * (result[i * m + j] + result[j * m + i]);
+            }
+        }
+
+        return result;
+    }
+
+    /// <summary>P X.</summary>
+    /// <param name="matrix">X, inputs x columns, row by row.</param>
+    /// <param name="columns">Number of columns.</param>
+    /// <returns>Outputs x columns, row by row.</returns>
+    public double[] ApplyToRows(double[] matrix, int columns)
+    {
+        var result = new double[Outputs * columns];
+        var common = new double[columns];
+        for (int j = 0; _common is not null && j < Inputs; j++)
+        {
+            for (int c = 0; _common[j] != 0 && c < columns; c++)
+            {
+                common[c] += _common[j] * matrix[j * columns + c];
+            }
+        }
+
+        for (int k = 0; k < Outputs; k++)
+        {
+            Span<double> row = result.AsSpan(k * columns, columns);
+            foreach ((int j, double weight) in _rows[k])
+            {
+                for (int c = 0; c < columns; c++)
+                {
+                    row[c] += weight * matrix[j * columns + c];
+                }
+            }
+
+            for (int c = 0; c < columns; c++)
+            {
+                row[c] -= common[c];
+            }
+        }
+
+        return result;
+    }
+}

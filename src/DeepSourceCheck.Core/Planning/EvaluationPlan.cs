@@ -1,0 +1,119 @@
+using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Core.Planning;
+
+/// <summary>What is read from every dipole of one response: measures, directions, rules.</summary>
+public sealed class EvaluationPlan
+{
+    /// <param name="response">The response.</param>
+    /// <param name="space">Its channels.</param>
+    /// <param name="rules">Target rules, in the study's order.</param>
+    /// <param name="protocol">Protocol, or null.</param>
+    /// <param name="megReported">False where MEG rows serve the split alone.</param>
+    /// <param name="splitPossible">False where there is no MEG leadfield.</param>
+    public EvaluationPlan(
+        Response response, SignalSpace space, IReadOnlyList<ITargetRule> rules, Protocol? protocol, bool megReported, bool splitPossible)
+    {
+        Response = response;
+        Space = space;
+        Rules = rules;
+        Protocol = protocol;
+        SessionTrials = SessionPlan.Trials(protocol);
+        MegReported = megReported;
+        bool eeg = space.Reference is not null;
+        var measures = new List<IMeasure>();
+        if (eeg)
+        {
+            measures.Add(new ChannelMeanMeasure(space, Modality.Eeg));
+            measures.Add(new BestChannelMeasure(space, Modality.Eeg));
+            measures.Add(new MatchedFilterMeasure(Modality.Eeg));
+            for (int k = 0; k < (space.Derivations?.Outputs ?? 0); k++)
+            {
+                measures.Add(new DerivationMeasure(space, k));
+            }
+        }
+
+        if (megReported)
+        {
+            measures.Add(new ChannelMeanMeasure(space, Modality.Meg));
+            measures.Add(new BestChannelMeasure(space, Modality.Meg));
+            measures.Add(new MatchedFilterMeasure(Modality.Meg));
+        }
+
+        EegMeasure = eeg ? response.EegMeasure ?? space.Derivations?.Names[0] ?? Names.BestChannel : null;
+        MegMeasure = megReported ? response.MegMeasure ?? Names.BestChannel : null;
+        if (eeg && megReported)
+        {
+            measures.Add(new MatchedFilterMeasure(Modality.Both));
+            bool readings = EegMeasure != Names.MatchedFilter && MegMeasure != Names.MatchedFilter;
+            if (readings)
+            {
+                measures.Add(new PairMeasure(space, space.Derivations?.Names.ToList().IndexOf(EegMeasure!) ?? -1));
+            }
+
+            BothMeasure = readings ? EegMeasure : Names.MatchedFilter;
+        }
+
+        Measures = measures;
+        Directions =
+        [
+            .. splitPossible ? new[] { DirectionName.QuasiRadial, DirectionName.Tangential, DirectionName.StrongestTangential } : [],
+            DirectionName.Isotropic, DirectionName.Best,
+            .. response.Direction.Vector is null ? Array.Empty<DirectionName>() : [DirectionName.Given],
+        ];
+        Gain = response.Moment * response.Moment / NoiseFactor;
+    }
+
+    /// <summary>The response.</summary>
+    public Response Response { get; }
+
+    /// <summary>Its channels.</summary>
+    public SignalSpace Space { get; }
+
+    /// <summary>Target rules.</summary>
+    public IReadOnlyList<ITargetRule> Rules { get; }
+
+    /// <summary>Protocol, or null.</summary>
+    public Protocol? Protocol { get; }
+
+    /// <summary>Accepted trials of the session, or null.</summary>
+    public long? SessionTrials { get; }
+
+    /// <summary>Whether MEG is reported.</summary>
+    public bool MegReported { get; }
+
+    /// <summary>All measures, grouped by modality.</summary>
+    public IReadOnlyList<IMeasure> Measures { get; }
+
+    /// <summary>Reported directions.</summary>
+    public IReadOnlyList<DirectionName> Directions { get; }
+
+    /// <summary>Measure of the EEG verdict, or null without EEG.</summary>
+    public string? EegMeasure { get; }
+
+    /// <summary>Measure of the MEG verdict, or null without MEG.</summary>
+    public string? MegMeasure { get; }
+
+    /// <summary>Measure of the joint verdict, or null without both.</summary>
+    public string? BothMeasure { get; }
+
+    /// <summary>Power of the noise of the convention over that of one sample: 2 for a peak-to-trough difference, else 1.</summary>
+    public double NoiseFactor => Response.Measured == Measured.PeakToTrough ? 2 : 1;
+
+    /// <summary>Squared moment over <see cref="NoiseFactor"/> [(A m)^2].</summary>
+    public double Gain { get; }
+
+    /// <summary>Whether a locked artefact bears on a modality.</summary>
+    public bool HasArtefact(Modality modality) =>
+        (modality != Modality.Meg && Response.LockedArtefactEeg > 0) || (modality != Modality.Eeg && Response.LockedArtefactMeg > 0);
+
+    /// <summary>The given direction, where there is one.</summary>
+    public Vec3 GivenVector => Response.Direction.Vector ?? default;
+
+    /// <summary>Columns of dipoles.csv.</summary>
+    public IReadOnlyList<DipoleColumn> Columns =>
+        [.. Directions.SelectMany(d => Measures.Select(m => (m, d))).OrderBy(p => p.m.Modality).Select(p => new DipoleColumn(p.m.Modality, Names.Of(p.d), p.m.Name))];
+}

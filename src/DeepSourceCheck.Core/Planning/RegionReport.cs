@@ -1,0 +1,136 @@
+using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
+
+namespace DeepSourceCheck.Core.Planning;
+
+/// <summary>Turns the tally of one region into its table of results.</summary>
+internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool megPeakIsPlanar, Func<Modality, int, string> channelName)
+{
+    /// <summary>Amplitude of the least against the most sensitive direction in realistic heads: published median over cortex (Ahlfors et al. 2010, Brain Topogr 23:227).</summary>
+    public const double PublishedLeak = 0.06;
+
+    private const string SilentReason =
+        "silent: in a spherical head MEG does not see this direction (below the rounding of the strongest); realistic heads leak, see at_leak";
+
+    private const string UndefinedReason = "the directions are undefined here: at the centre of a spherical head every MEG field vanishes";
+
+    private const string ArtefactReason = "a locked artefact is stated for one channel; what a filter over all channels makes of it is not known";
+
+    private const string BuriedReason = "not reachable by averaging: the locked artefact is too large against the response";
+
+    private const string BeyondReason = "not reachable: more trials than can be counted";
+
+    /// <summary>Every row: modality, then direction, then measure.</summary>
+    public IReadOnlyList<MeasureResult> Rows()
+    {
+        var rows = new List<MeasureResult>();
+        foreach (Modality modality in Enum.GetValues<Modality>())
+        {
+            for (int d = 0; d < plan.Directions.Count; d++)
+            {
+                for (int m = 0; m < plan.Measures.Count; m++)
+                {
+                    if (plan.Measures[m].Modality == modality)
+                    {
+                        rows.Add(Row(d, m));
+                    }
+                }
+            }
+        }
+
+        return rows;
+    }
+
+    /// <summary>How well the directions split; null where there is no split at all.</summary>
+    public SplitSummary? Split() => plan.Directions.Contains(DirectionName.QuasiRadial)
+        ? new SplitSummary(tally.WeakestOverStrongest.Percentiles(x => x), tally.AngleToRadial.Percentiles(Si.ToDegrees), tally.Undefined, tally.Degenerate)
+        : null;
+
+    private MeasureResult Row(int d, int m)
+    {
+        IMeasure measure = plan.Measures[m];
+        DirectionName direction = plan.Directions[d];
+        MeasureTally cell = tally.Cells[d][m];
+        Percentiles snr = cell.Power.Percentiles(Decibels);
+        bool silent = cell.Power.Count > 0 && cell.Power.AtRank(cell.Power.Count - 1) == 0;
+        PeakAmplitude? peak = Peak(d, measure, cell);
+        double? peakPerMoment = peak?.Value / plan.Response.Moment;
+        List<TargetResult> targets = [.. plan.Rules.Select((rule, r) => Target(rule, r, cell, measure, peakPerMoment))];
+        string? reason = cell.Power.Count == 0 ? UndefinedReason
+            : silent ? SilentReason
+            : snr.P05 is null ? "some dipoles or directions are silent: percentiles that fall on them are null" : null;
+        LeakResult? leak = null;
+        if (silent && measure.Modality == Modality.Meg && plan.Directions.Contains(DirectionName.StrongestTangential))
+        {
+            leak = Leak(tally.Cell(DirectionName.StrongestTangential, measure), measure);
+        }
+
+        return new MeasureResult(measure.Modality, direction, measure.Name, silent ? null : peak, snr, targets, reason, leak);
+    }
+
+    private TargetResult Target(ITargetRule rule, int r, MeasureTally cell, IMeasure measure, double? peakPerMoment, double powerFactor = 1)
+    {
+        QuantileStore effective = cell.Effective?[r] ?? cell.Power;
+        long? Count(double share) => effective.NearestRankFromTop(share) is { } power && power > 0 ? TrialCount.Ceiling(rule.Trials(power * powerFactor)) : null;
+        var trials = new CountPercentiles(Count(0.05), Count(0.25), Count(0.50), Count(0.75), Count(0.95));
+        double? Minutes(long? count) => count is { } n && plan.Protocol is { } protocol ? SessionPlan.Minutes(protocol, n) : null;
+        Percentiles? minutes = plan.Protocol is null ? null : new(Minutes(trials.P05), Minutes(trials.P25), Minutes(trials.P50), Minutes(trials.P75), Minutes(trials.P95));
+
+        double? smallest = null;
+        if (plan.SessionTrials is > 0 and { } session)
+        {
+            double? scale = cell.Scales is { } scales
+                ? scales[r].NearestRankFromTop(0.5) is { } inverse && inverse > 0 ? 1 / Math.Sqrt(inverse * powerFactor) : null
+                : cell.Power.NearestRankFromTop(0.5) is { } power && power > 0 ? rule.SmallestScale(power * powerFactor, 0, session) : null;
+            smallest = scale * plan.Response.Moment;
+        }
+
+        string? reason = null;
+        if (trials.P50 is null || trials.P95 is null)
+        {
+            reason = cell.Power.Count == 0 ? UndefinedReason
+                : cell.Power.NearestRankFromTop(0.95) == 0 ? SilentReason
+                : effective.Count == 0 ? ArtefactReason
+                : plan.HasArtefact(measure.Modality) ? BuriedReason : BeyondReason;
+        }
+
+        return new TargetResult(rule.Name, trials, minutes, smallest, smallest * peakPerMoment, reason);
+    }
+
+    private LeakResult Leak(MeasureTally strongest, IMeasure measure)
+    {
+        const double factor = PublishedLeak * PublishedLeak;
+        return new LeakResult(PublishedLeak, strongest.Power.Percentiles(p => Decibels(p * factor)),
+            [.. plan.Rules.Select((rule, r) => Target(rule, r, strongest, measure, null, factor))]);
+    }
+
+    private PeakAmplitude? Peak(int d, IMeasure measure, MeasureTally cell)
+    {
+        if (measure.Modality == Modality.Both)
+        {
+            return null;
+        }
+
+        if (measure is DerivationMeasure derivation)
+        {
+            double sd = plan.Space.DerivationSd[derivation.Index] * Math.Sqrt(plan.NoiseFactor);
+            return cell.Power.Interpolated(0.5, p => Si.ToMicrovolts(Math.Sqrt(p) * sd)) is { } amplitude ? new PeakAmplitude(amplitude, "uV", derivation.Name) : null;
+        }
+
+        bool eeg = measure.Modality == Modality.Eeg;
+        PeakTally peak = tally.Peaks[d][eeg ? 0 : 1];
+        if (peak.MostOften < 0)
+        {
+            return null;
+        }
+
+        (string unit, Func<double, double> convert) = eeg ? ("uV", Si.ToMicrovolts) : megPeakIsPlanar ? ("fT/cm", Si.ToFemtoteslaPerCm) : ("fT", (Func<double, double>)Si.ToFemtotesla);
+        double? value = peak.Power.Interpolated(0.5, p => convert(Math.Sqrt(p) * plan.Response.Moment));
+        return value is { } v ? new PeakAmplitude(v, unit, channelName(measure.Modality, peak.MostOften)) : null;
+    }
+
+    /// <summary>Power ratio in dB.</summary>
+    public static double Decibels(double power) => 10 * Math.Log10(power);
+}
