@@ -62,6 +62,11 @@ public sealed class LayeredSphere : IHead
     public string? WhyRefused(Vec3 point)
     {
         double r = (point - Centre).Norm;
+        if (r <= CentreTolerance && Layers[0].RadialConductivity != Layers[0].TangentialConductivity)
+        {
+            return "at the sphere's centre, where an innermost layer that conducts differently along and across the radius defines no potential";
+        }
+
         double limit = LargestEccentricity * InnerRadius;
         return r <= limit * (1 + 1e-12)
             ? null
