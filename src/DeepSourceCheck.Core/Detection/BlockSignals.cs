@@ -15,7 +15,7 @@ namespace DeepSourceCheck.Core.Detection;
 public enum DirectionMode
 {
     /// <summary>One direction a dipole: every row is projected, exact for directions that are nearly silent.</summary>
-    Single,
+    Alone,
 
     /// <summary>One of many directions: quadratic measures use their Gram matrix.</summary>
     OfSet,
@@ -137,7 +137,7 @@ public sealed class BlockSignals
         _direction = direction;
         Array.Clear(_figures);
         Array.Clear(_largest);
-        if (mode == DirectionMode.Single && _megReported)
+        if (mode == DirectionMode.Alone && _megReported)
         {
             // Below the rounding of the strongest direction a field is no field: silent is exactly zero.
             Vector512<double> s1 = Lanes.View(Split.SingularValues)[0];
@@ -327,7 +327,7 @@ public sealed class BlockSignals
             return known;
         }
 
-        Vector512<double> power = _mode == DirectionMode.Single ? Lanes.ProjectedPower(rows, count, _direction) : Lanes.Quadratic(Gram(slot, rows, count), _direction);
+        Vector512<double> power = _mode == DirectionMode.Alone ? Lanes.ProjectedPower(rows, count, _direction) : Lanes.Quadratic(Gram(slot, rows, count), _direction);
         power = megOnly && slot is 1 or 3 ? power & _audible : power;
         _figures[slot] = power;
         return power;

@@ -212,10 +212,11 @@ internal sealed class BlockReader
             undefined[lane] = signals.Split.States[lane] == SplitState.Undefined;
         }
 
+        Span<bool> skip = stackalloc bool[LeadfieldBlock.Lanes];
         for (int d = 0; d < _plan.Directions.Count; d++)
         {
             DirectionName name = _plan.Directions[d];
-            Span<bool> skip = stackalloc bool[LeadfieldBlock.Lanes];
+            skip.Clear();
             if (name is DirectionName.QuasiRadial or DirectionName.Tangential or DirectionName.StrongestTangential)
             {
                 undefined.CopyTo(skip);
@@ -267,12 +268,12 @@ internal sealed class BlockReader
     /// <summary>The directions that stand behind a name, and how they are asked.</summary>
     public IEnumerable<(DirectionMode Mode, LaneDirection Direction)> DirectionsOf(DirectionName name, BlockSignals signals) => name switch
     {
-        DirectionName.QuasiRadial => [(DirectionMode.Single, signals.Axis(2))],
-        DirectionName.StrongestTangential => [(DirectionMode.Single, signals.Axis(0))],
+        DirectionName.QuasiRadial => [(DirectionMode.Alone, signals.Axis(2))],
+        DirectionName.StrongestTangential => [(DirectionMode.Alone, signals.Axis(0))],
         DirectionName.Tangential => Tangential(signals),
         DirectionName.Isotropic => Isotropic,
         DirectionName.Best => [(DirectionMode.Best, default)],
-        _ => [(DirectionMode.Single, LaneDirection.Same(_plan.GivenVector))],
+        _ => [(DirectionMode.Alone, LaneDirection.Same(_plan.GivenVector))],
     };
 
     private static readonly (DirectionMode Mode, LaneDirection Direction)[] Isotropic =

@@ -1,0 +1,173 @@
+using System.Globalization;
+
+using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Noise;
+using DeepSourceCheck.Core.Regions;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Core.Planning;
+
+/// <summary>The main job on a study whose parts are built: every response, every region.</summary>
+public static class Assessor
+{
+    /// <summary>A region whose captured share is below this says so.</summary>
+    private const double CapturedEnough = 0.98;
+
+    /// <summary>Above this angle v3 is not called quasi-radial but least visible.</summary>
+    private const double LeastVisibleDeg = 25;
+
+    /// <summary>Computes all results.</summary>
+    /// <param name="setup">The study.</param>
+    /// <param name="sink">Takes dipole results as they come, or null.</param>
+    /// <param name="progress">(stage, fraction 0 to 1), or null.</param>
+    /// <param name="cancellation">Stops between chunks of dipoles.</param>
+    public static IReadOnlyList<ResponseResult> Assess(StudySetup setup, IDipoleSink? sink, Action<string, double>? progress, CancellationToken cancellation)
+    {
+        long total = setup.Study.Responses.Sum(r => r.Together ? r.Regions.Count : r.Regions.Sum(name => (long)setup.Region(name).Positions.Length));
+        long done = 0;
+        var results = new List<ResponseResult>();
+        bool begun = false;
+        foreach (Response response in setup.Study.Responses)
+        {
+            progress?.Invoke($"noise of {response.Name}", (double)done / total);
+            NoiseCovariance noise = setup.Noise!.InBand(response.Band.Low, response.Band.High);
+            var space = new SignalSpace(noise, setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
+            var plan = new EvaluationPlan(response, space, setup.Rules, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
+            if (!begun)
+            {
+                sink?.Begin(AllColumns(setup, space));
+                begun = true;
+            }
+
+            var regions = new List<RegionResult>();
+            foreach ((FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts) in Sources(setup, response, cancellation))
+            {
+                long before = done;
+                RegionTally tally = new RegionRun(plan, setup.Head, source)
+                    .Run(region, Adapt(sink, plan, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
+                done += region.Positions.Length;
+                regions.Add(Result(setup, plan, region, source, parts, tally, cancellation));
+            }
+
+            results.Add(new ResponseResult(response, regions));
+        }
+
+        return results;
+    }
+
+    private static IEnumerable<(FilledRegion Region, ILeadfieldSource Source, IReadOnlyList<FilledRegion> Parts)> Sources(
+        StudySetup setup, Response response, CancellationToken cancellation)
+    {
+        FilledRegion[] regions = [.. response.Regions.Select(setup.Region)];
+        if (response.Together)
+        {
+            var summed = new SummedSource(setup.Source, regions, cancellation);
+            yield return (summed.Region, summed, regions);
+            yield break;
+        }
+
+        foreach (FilledRegion region in regions)
+        {
+            yield return (region, setup.Source, [region]);
+        }
+    }
+
+    // Responses may differ in whether a direction is given and what the joint reading is named: dipoles.csv has one header, so it lists the union.
+    private static IReadOnlyList<DipoleColumn> AllColumns(StudySetup setup, SignalSpace space) =>
+        [.. setup.Study.Responses
+            .SelectMany(r => new EvaluationPlan(r, space, setup.Rules, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0).Columns)
+            .Distinct().OrderBy(c => c.Modality)];
+
+    private static IDipoleSink? Adapt(IDipoleSink? sink, EvaluationPlan plan, StudySetup setup, SignalSpace space)
+    {
+        if (sink is null)
+        {
+            return null;
+        }
+
+        IReadOnlyList<DipoleColumn> all = AllColumns(setup, space), own = plan.Columns;
+        return all.SequenceEqual(own) ? sink : new ColumnAdapter(sink, [.. all.Select(c => own.ToList().IndexOf(c))]);
+    }
+
+    private static RegionResult Result(
+        StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts, RegionTally tally,
+        CancellationToken cancellation)
+    {
+        var signals = new BlockSignals(plan.Space, setup.Head, plan.MegReported);
+        var report = new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
+        IReadOnlyList<MeasureResult> rows = report.Rows();
+        SplitSummary? split = report.Split();
+        double?[] captured = [.. parts.Select(setup.FieldCaptured)];
+        var verdicts = new VerdictWriter(setup, plan, region, source, tally).Write(ref rows, cancellation);
+        return new RegionResult
+        {
+            Region = region.Name,
+            Dipoles = parts.Sum(p => p.Positions.Length),
+            Dropped = parts.Sum(p => p.Dropped.Count),
+            Spacing = parts.Select(p => p.Spacing).Distinct().Count() == 1 ? parts[0].Spacing : null,
+            Volume = parts.All(p => p.Volume is not null) ? parts.Sum(p => p.Volume) : null,
+            Split = split,
+            FieldCaptured = captured.Min(),
+            Results = rows,
+            Verdicts = verdicts,
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split)],
+        };
+    }
+
+    private static IEnumerable<string> Warnings(EvaluationPlan plan, IReadOnlyList<FilledRegion> parts, double?[] captured, SplitSummary? split)
+    {
+        for (int k = 0; plan.MegReported && k < parts.Count; k++)
+        {
+            if (captured[k] is { } share && share < CapturedEnough)
+            {
+                yield return string.Create(CultureInfo.InvariantCulture,
+                    $"{parts[k].Name}: its field maximum lies outside the array's cap, which captures {share * 100:0} % of the largest field around the head");
+            }
+        }
+
+        string name = string.Join(" + ", parts.Select(p => p.Name));
+        if (split is { UndefinedDipoles: > 0 })
+        {
+            yield return string.Create(CultureInfo.InvariantCulture,
+                $"{name}: {split.UndefinedDipoles} of its dipoles lie at the centre of the sphere, where directions are undefined and MEG sees nothing");
+        }
+
+        if (split is { DegenerateDipoles: > 0 })
+        {
+            yield return string.Create(CultureInfo.InvariantCulture,
+                $"{name}: at {split.DegenerateDipoles} of its dipoles two singular values coincide, so that their directions are arbitrary in their plane");
+        }
+
+        if (split?.AngleToRadialDeg.P50 is { } angle && angle > LeastVisibleDeg)
+        {
+            yield return string.Create(CultureInfo.InvariantCulture,
+                $"{name}: the direction that the array sees least stands {angle:0} degrees from the radius; read quasi-radial as least visible (partial coverage or a source near the centre)");
+        }
+    }
+
+    private sealed class ColumnAdapter(IDipoleSink inner, int[] own) : IDipoleSink
+    {
+        public void Begin(IReadOnlyList<DipoleColumn> columns) => inner.Begin(columns);
+
+        public byte[] Format(DipoleChunk chunk)
+        {
+            double[] absent = [.. Enumerable.Repeat(double.NaN, chunk.Count)];
+            return inner.Format(new DipoleChunk
+            {
+                Response = chunk.Response,
+                Region = chunk.Region,
+                Count = chunk.Count,
+                Points = chunk.Points,
+                Positions = chunk.Positions,
+                Directions = chunk.Directions,
+                SingularValues = chunk.SingularValues,
+                States = chunk.States,
+                SnrDb = [.. own.Select(k => k < 0 ? absent : chunk.SnrDb[k])],
+            });
+        }
+
+        public void Append(byte[] formatted) => inner.Append(formatted);
+    }
+}

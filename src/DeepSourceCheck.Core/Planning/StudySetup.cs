@@ -1,0 +1,61 @@
+using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Noise;
+using DeepSourceCheck.Core.Regions;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Sensors;
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Core.Planning;
+
+/// <summary>A study with all of its parts built: head, sensors, regions, noise. What `assess` and `why` compute from.</summary>
+public sealed record StudySetup
+{
+    /// <summary>The study.</summary>
+    public required Study Study { get; init; }
+
+    /// <summary>Head.</summary>
+    public required IHead Head { get; init; }
+
+    /// <summary>Leadfields, unreferenced.</summary>
+    public required ILeadfieldSource Source { get; init; }
+
+    /// <summary>Referencing of the electrodes; null without EEG.</summary>
+    public ChannelOperator? Reference { get; init; }
+
+    /// <summary>Derivations; null without.</summary>
+    public ChannelOperator? Derivations { get; init; }
+
+    /// <summary>Names of the MEG rows.</summary>
+    public IReadOnlyList<string> MegNames { get; init; } = [];
+
+    /// <summary>Kinds of the MEG rows.</summary>
+    public IReadOnlyList<CoilKind> MegKinds { get; init; } = [];
+
+    /// <summary>False where the MEG rows are a built-in array that serves the split alone.</summary>
+    public bool MegReported { get; init; }
+
+    /// <summary>Noise; null where only leadfields are asked for.</summary>
+    public NoiseModel? Noise { get; init; }
+
+    /// <summary>Regions, the study's own in its order, then those of the library that responses name.</summary>
+    public required IReadOnlyList<FilledRegion> Regions { get; init; }
+
+    /// <summary>Share of the largest field around the head that a generated array captures of a region; null where not known.</summary>
+    public Func<FilledRegion, double?> FieldCaptured { get; init; } = _ => null;
+
+    /// <summary>Geometry for figures.</summary>
+    public Scene Scene { get; init; } = new();
+
+    /// <summary>Target rules in the study's order.</summary>
+    public IReadOnlyList<ITargetRule> Rules => [.. Study.Targets.Select(t => (ITargetRule)(t switch
+    {
+        AmplitudeRatioChoice a => new AmplitudeRatioRule(a.Ratio),
+        DetectionChoice d => new DetectionRule(d.Alpha, d.Power, d.Looks),
+        _ => throw new InvalidOperationException($"no rule for {t.GetType().Name}"),
+    }))];
+
+    /// <summary>A region by name.</summary>
+    public FilledRegion Region(string name) => Regions.First(r => r.Name == name);
+}

@@ -1,0 +1,130 @@
+using System.Globalization;
+
+using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Regions;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Core.Planning;
+
+/// <summary>The answers for one region: modality by modality, rule by rule, in plain words with their reason and their chain.</summary>
+internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, RegionTally tally)
+{
+    /// <summary>Above this count words say "out of reach".</summary>
+    public const long OutOfReach = 10_000_000;
+
+    /// <summary>Writes all verdicts.</summary>
+    /// <param name="rows">The region's results; the median count of a verdict's row is that of the dipole whose chain is given.</param>
+    /// <param name="cancellation">Stops the search for the dipole at the median.</param>
+    public IReadOnlyList<VerdictResult> Write(ref IReadOnlyList<MeasureResult> rows, CancellationToken cancellation)
+    {
+        var verdicts = new List<VerdictResult>();
+        DirectionName direction = plan.Directions.Contains(plan.Response.Direction.Name) ? plan.Response.Direction.Name : DirectionName.Isotropic;
+        foreach ((Modality modality, string? name) in new[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) })
+        {
+            if (name is null)
+            {
+                continue;
+            }
+
+            IMeasure measure = plan.Measures.First(m => m.Modality == modality && m.Name == name);
+            for (int r = 0; r < plan.Rules.Count; r++)
+            {
+                MedianWitness? witness = MedianWitness.Find(plan, setup.Head, source, region, tally, measure, direction, r, cancellation);
+                IReadOnlyList<DerivedNumber> chain = witness is null ? [] : new DerivationChain(plan, setup.Noise!).Of(witness, measure, plan.Rules[r]);
+                rows = Reconcile(rows, modality, direction, name, r, witness);
+                MeasureResult row = rows.First(x => x.Modality == modality && x.Direction == direction && x.Measure == name);
+                verdicts.Add(Verdict(row, r, witness, chain));
+            }
+        }
+
+        return verdicts;
+    }
+
+    // In a region so large that percentiles are read from classes, the median is that of the dipole whose chain is printed.
+    private IReadOnlyList<MeasureResult> Reconcile(
+        IReadOnlyList<MeasureResult> rows, Modality modality, DirectionName direction, string measure, int rule, MedianWitness? witness)
+    {
+        if (witness is null)
+        {
+            return rows;
+        }
+
+        long? count = TrialCount.Ceiling(plan.Rules[rule].Trials(plan.Rules[rule].EffectivePower(witness.Power, witness.Artefact)));
+        return [.. rows.Select(row =>
+        {
+            if (row.Modality != modality || row.Direction != direction || row.Measure != measure || row.Targets[rule].Trials.P50 == count)
+            {
+                return row;
+            }
+
+            TargetResult target = row.Targets[rule];
+            double? minutes = count is { } n && plan.Protocol is { } protocol ? SessionPlan.Minutes(protocol, n) : null;
+            target = target with { Trials = target.Trials with { P50 = count }, Minutes = target.Minutes is null ? null : target.Minutes with { P50 = minutes } };
+            return row with { Targets = [.. row.Targets.Select((t, k) => k == rule ? target : t)] };
+        })];
+    }
+
+    private VerdictResult Verdict(MeasureResult row, int rule, MedianWitness? witness, IReadOnlyList<DerivedNumber> chain)
+    {
+        TargetResult target = row.Targets[rule];
+        long? count = target.Trials.P50;
+        bool? fits = plan.SessionTrials is { } session ? count is { } n && n <= session : null;
+        return new VerdictResult
+        {
+            Modality = row.Modality,
+            Rule = target.Rule,
+            Measure = row.Measure,
+            Direction = row.Direction,
+            Text = Text(row, target, fits, witness),
+            FitsSession = fits,
+            Chain = chain,
+        };
+    }
+
+    private string Text(MeasureResult row, TargetResult target, bool? fits, MedianWitness? witness)
+    {
+        string reading = $"{Names.Of(row.Modality)}, {Reading(row)}";
+        if (target.Trials.P50 is not { } count)
+        {
+            return $"{reading}: out of reach by averaging ({target.Reason ?? row.Reason ?? "no signal"}).";
+        }
+
+        string why = witness is null ? "" : string.Create(CultureInfo.InvariantCulture, $" In one trial {Compare(witness.Power)}.");
+        if (count > OutOfReach)
+        {
+            return string.Create(CultureInfo.InvariantCulture, $"{reading}: out of reach, more than {OutOfReach:N0} trials.{why}");
+        }
+
+        string trials = string.Create(CultureInfo.InvariantCulture, $"{count:N0} {(count == 1 ? "trial" : "trials")}");
+        if (target.Minutes?.P50 is not { } minutes)
+        {
+            return $"{reading}: {trials}.{why}";
+        }
+
+        string session = plan.Protocol!.Session is { } seconds && plan.SessionTrials is { } afforded
+            ? string.Create(CultureInfo.InvariantCulture, $": {(fits == true ? "fits" : "does not fit")} the session of {seconds / 60:0.#} min ({afforded:N0} trials)")
+            : "";
+        return $"{reading}: {trials}, {Minutes(minutes)} min{session}.{why}";
+    }
+
+    private static string Reading(MeasureResult row) => row.Modality == Modality.Both && row.Measure != Names.MatchedFilter
+        ? $"{row.Measure} and best MEG channel" : row.Measure;
+
+    private static string Compare(double power)
+    {
+        double ratio = 1 / Math.Sqrt(power);
+        return ratio >= 1
+            ? string.Create(CultureInfo.InvariantCulture, $"the noise is {Two(ratio)} times the response")
+            : string.Create(CultureInfo.InvariantCulture, $"the response is {Two(1 / ratio)} times the noise");
+    }
+
+    private static string Minutes(double minutes) => Two(minutes);
+
+    private static string Two(double value)
+    {
+        int digits = value > 0 ? Math.Clamp(1 - (int)Math.Floor(Math.Log10(value)), 0, 4) : 0;
+        return Math.Round(value, digits).ToString(value >= 1000 ? "N0" : "0.####", CultureInfo.InvariantCulture);
+    }
+}
