@@ -37,7 +37,7 @@ public sealed class AmplitudeRatioRule(double ratio) : ITargetRule
         };
         if (artefact > 0)
         {
-            lines.Add(new("R", "locked artefact power over noise power of one trial", artefact, "", "(r / s)^2", "responses.locked_artefact", null));
+            lines.Add(new("R", "(locked artefact / noise of one trial)^2", artefact, "", "", "responses.locked_artefact", null));
         }
 
         double effective = EffectivePower(power, artefact);

@@ -69,12 +69,12 @@ public sealed class DetectionRule : ITargetRule
             new("alpha", "false-alarm rate over all looks", _alpha, "", "", "target.detection.alpha", null),
             new("K", "independent looks", _looks, "", "", "target.detection.looks", null),
             new("power", "probability of detection", _power, "", "", "target.detection.power", null),
-            new("za", "normal quantile of 1 - alpha/K", ThresholdZ, "", "z(1 - alpha / K)", "standard normal distribution", Grade.Derived),
-            new("zb", "normal quantile of the power", _sum - ThresholdZ, "", "z(power)", "standard normal distribution", Grade.Derived),
+            new("za", "normal quantile of 1 - alpha/K", ThresholdZ, "", "quantile(1 - alpha / K)", "standard normal distribution", Grade.Derived),
+            new("zb", "normal quantile of the power", _sum - ThresholdZ, "", "quantile(power)", "standard normal distribution", Grade.Derived),
         };
         if (artefact > 0)
         {
-            lines.Add(new("R", "locked artefact power over noise power of one trial", artefact, "", "(r / s)^2", "responses.locked_artefact", null));
+            lines.Add(new("R", "(locked artefact / noise of one trial)^2", artefact, "", "", "responses.locked_artefact", null));
         }
 
         double? count = TrialCount.Ceiling(Trials(EffectivePower(power, artefact)));

@@ -48,7 +48,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise)
                 Reading(Modality.Eeg, witness, measure, "e");
                 Reading(Modality.Meg, witness, measure, "m");
                 double rho = Correlation(witness, (PairMeasure)measure);
-                Add("k", "correlation of the noise of the two readings", rho, "", "C_em / (se sm)", "noise model", Grade.Derived);
+                Add("k", "correlation of the noise of the two readings", rho, "", "", "noise of the study: covariance over both standard deviations", Grade.Derived);
                 Add("P", "power SNR of one trial, both readings together", witness.Power, "",
                     "((Ae/se)^2 + (Am/sm)^2 - 2 k (Ae/se) (Am/sm)) / ((1 - k^2) c^2)", "matched filter of two channels", Grade.Derived);
                 break;
