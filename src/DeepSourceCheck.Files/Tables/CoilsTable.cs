@@ -1,6 +1,6 @@
-using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Sensors;
+using DeepSourceCheck.Core.Studies;
 
 using static System.FormattableString;
 
