@@ -1,0 +1,110 @@
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Files.Nifti;
+
+/// <summary>The bytes of a file, inflated when its first bytes are those of gzip, whatever its name says.</summary>
+internal sealed class ByteSource : IDisposable
+{
+    private const int SkipStep = 1 << 16;
+
+    private readonly FileStream file;
+    private readonly GzipMembers? gzip;
+    private readonly string displayName;
+
+    public ByteSource(string path, string displayName)
+    {
+        this.displayName = displayName;
+        file = InputFileAccess.Open(path, displayName);
+        int high = file.ReadByte(), low = file.ReadByte();
+        file.Seek(0, SeekOrigin.Begin);
+        gzip = (high << 8 | low) == GzipMembers.Magic ? new(file) : null;
+    }
+
+    /// <summary>True for a gzip stream.</summary>
+    public bool IsGzip => gzip is not null;
+
+    /// <summary>Bytes that were read or skipped.</summary>
+    public long Consumed { get; private set; }
+
+    /// <summary>Bytes of the file on disk.</summary>
+    public long FileLength => file.Length;
+
+    /// <summary>More bytes than this cannot come out of the file.</summary>
+    public long MostBytes => IsGzip ? file.Length * GzipMembers.LargestExpansion : file.Length;
+
+    /// <summary>Reads until the target is full or the bytes end; returns the number read.</summary>
+    /// <exception cref="InputException">The gzip stream is damaged or cut short.</exception>
+    public int Fill(Span<byte> target)
+    {
+        int filled = 0;
+        while (filled < target.Length)
+        {
+            int read = ReadSome(target[filled..]);
+            if (read == 0)
+            {
+                break;
+            }
+
+            filled += read;
+            Consumed += read;
+        }
+
+        return filled;
+    }
+
+    /// <summary>Skips bytes; returns how many there were.</summary>
+    public long Skip(long count)
+    {
+        byte[] step = new byte[(int)Math.Min(SkipStep, count)];
+        long left = count;
+        while (left > 0)
+        {
+            int read = Fill(step.AsSpan(0, (int)Math.Min(step.Length, left)));
+            left -= read;
+            if (read == 0)
+            {
+                break;
+            }
+        }
+
+        return count - left;
+    }
+
+    /// <summary>Reads on to the end, up to <paramref name="most"/> bytes, so that the gzip checksum is verified; null when more follow.</summary>
+    /// <returns>Bytes that followed, foreign bytes after the gzip stream counted as 1.</returns>
+    public long? Finish(long most)
+    {
+        if (!IsGzip)
+        {
+            return file.Length - Consumed;
+        }
+
+        long rest = Skip(most + 1);
+        return rest > most ? null : rest + (gzip!.HasForeignTail ? 1 : 0);
+    }
+
+    public void Dispose()
+    {
+        gzip?.Dispose();
+        file.Dispose();
+    }
+
+    private int ReadSome(Span<byte> target)
+    {
+        try
+        {
+            return gzip is null ? file.Read(target) : gzip.Read(target);
+        }
+        catch (InvalidDataException error)
+        {
+            // The platform's inflater speaks of its own internals; only our own messages are shown.
+            string reason = error.Message.StartsWith("it", StringComparison.Ordinal) ? error.Message : "its gzip data cannot be unpacked";
+            throw new InputException(displayName, null,
+                $"the file is cut short or damaged: {reason}, after {Consumed:N0} unpacked bytes; copy or export it again");
+        }
+        catch (IOException error)
+        {
+            throw new InputException(displayName, null, $"reading failed after {Consumed:N0} bytes: {error.Message.Split('\n')[0]}");
+        }
+    }
+}

@@ -1,0 +1,160 @@
+using System.Globalization;
+
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Files.Tables;
+
+/// <summary>A table of tab-separated values: UTF-8 with or without byte order mark, LF or CRLF, one header row, columns by name in any order, blank lines ignored.</summary>
+internal sealed class TsvTable
+{
+    private const long LargestFile = 1L << 28;
+    private const int LongestShown = 60;
+
+    private readonly Dictionary<string, int> columns;
+
+    private TsvTable(Dictionary<string, int> columns, List<TsvRow> rows, ProblemList problems) => (this.columns, Rows, Problems) = (columns, rows, problems);
+
+    /// <summary>Data rows, in order.</summary>
+    public IReadOnlyList<TsvRow> Rows { get; }
+
+    /// <summary>What was found wrong so far; typed readers add to it and throw it.</summary>
+    public ProblemList Problems { get; }
+
+    /// <summary>True when the table has the column.</summary>
+    public bool Has(string column) => columns.ContainsKey(column);
+
+    /// <summary>Reads a table.</summary>
+    /// <param name="path">File.</param>
+    /// <param name="displayName">As the user named it.</param>
+    /// <param name="required">Columns that must be there.</param>
+    /// <exception cref="InputException">The file cannot be read, has no rows or lacks a column; row problems are collected in <see cref="Problems"/>.</exception>
+    public static TsvTable Read(string path, string displayName, params string[] required)
+    {
+        string text = Utf8Text.Decode(InputFileAccess.ReadAll(path, displayName, LargestFile), displayName);
+        ProblemList problems = new(displayName);
+        Dictionary<string, int>? columns = null;
+        List<TsvRow> rows = [];
+        int number = 0;
+        foreach (ReadOnlySpan<char> line in text.AsSpan().EnumerateLines())
+        {
+            number++;
+            if (line.IsWhiteSpace())
+            {
+                continue;
+            }
+
+            string[] cells = line.ToString().Split('\t', StringSplitOptions.TrimEntries);
+            if (columns is null)
+            {
+                columns = Header(cells, number, required, problems);
+                problems.ThrowIfAny();
+            }
+            else if (cells.Length != columns.Count)
+            {
+                problems.Add(number, null, $"the row has {cells.Length} cells and the header {columns.Count}; separate cells by single tabs");
+            }
+            else
+            {
+                rows.Add(new(number, cells));
+            }
+        }
+
+        if (rows.Count == 0 && problems.IsEmpty)
+        {
+            problems.Add(0, null, columns is null ? $"the file holds no text; a header row is expected: {string.Join(' ', required)}" : "the table has a header but no rows");
+        }
+
+        if (columns is null)
+        {
+            problems.ThrowIfAny();
+        }
+
+        return new(columns!, rows, problems);
+    }
+
+    /// <summary>A cell's text; empty where the table lacks the column.</summary>
+    public string Text(TsvRow row, string column) => columns.TryGetValue(column, out int at) ? row.Cells[at] : "";
+
+    /// <summary>True when a cell is empty or says n/a, or the table lacks the column.</summary>
+    public bool IsAbsent(TsvRow row, string column) => Text(row, column) is "" or "n/a";
+
+    /// <summary>A name: not empty, without control characters, unlike all earlier ones.</summary>
+    /// <param name="row">Row.</param>
+    /// <param name="column">Column.</param>
+    /// <param name="seen">Names so far with their lines; null when repeats are allowed.</param>
+    public string Name(TsvRow row, string column, Dictionary<string, int>? seen)
+    {
+        string name = Text(row, column);
+        if (name.Length == 0)
+        {
+            Problems.Add(row.Line, column, "the name is empty");
+        }
+        else if (name.Any(char.IsControl))
+        {
+            Problems.Add(row.Line, column, $"the name '{Shorten(name)}' holds a control character");
+        }
+        else if (seen is not null && !seen.TryAdd(name, row.Line))
+        {
+            Problems.Add(row.Line, column, $"the name '{Shorten(name)}' stands already in line {seen[name]}; names must be unique");
+        }
+
+        return name;
+    }
+
+    /// <summary>A finite number of at most the given size; NaN after noting a problem.</summary>
+    /// <param name="row">Row.</param>
+    /// <param name="column">Column.</param>
+    /// <param name="largest">Largest absolute value, in the column's unit.</param>
+    /// <param name="unit">The column's unit, for the message.</param>
+    public double Number(TsvRow row, string column, double largest, string unit)
+    {
+        string text = Text(row, column);
+        if (!double.TryParse(text, NumberStyles.Float, CultureInfo.InvariantCulture, out double value))
+        {
+            Problems.Add(row.Line, column, text.Length == 0
+                ? "the cell is empty; a number is expected"
+                : $"'{Shorten(text)}' is not a number{(text.Contains(',') ? " (write a decimal point, no thousands separators)" : "")}");
+            return double.NaN;
+        }
+
+        if (!(Math.Abs(value) <= largest))
+        {
+            Problems.Add(row.Line, column, FormattableString.Invariant($"'{Shorten(text)}' is out of range; a finite number of at most {largest:0.######}{(unit.Length > 0 ? " " : "")}{unit} in size is expected"));
+            return double.NaN;
+        }
+
+        return value;
+    }
+
+    /// <summary>The text for a message: long cells are cut, control characters replaced.</summary>
+    public static string Shorten(string text)
+    {
+        string clean = new([.. text.Take(LongestShown).Select(c => char.IsControl(c) || char.IsSurrogate(c) ? '?' : c)]);
+        return text.Length > LongestShown ? $"{clean}... ({text.Length:N0} characters)" : clean;
+    }
+
+    private static Dictionary<string, int> Header(string[] cells, int line, string[] required, ProblemList problems)
+    {
+        Dictionary<string, int> columns = new(StringComparer.Ordinal);
+        for (int k = 0; k < cells.Length; k++)
+        {
+            if (!columns.TryAdd(cells[k], k))
+            {
+                problems.Add(line, Shorten(cells[k]), cells[k].Length == 0 ? "two columns of the header have no name" : "the header names this column twice");
+            }
+        }
+
+        foreach (string column in required.Where(c => !columns.ContainsKey(c)))
+        {
+            string found = Shorten(string.Join(", ", cells));
+            problems.Add(line, column, $"the column is missing; the header has: {found}{(cells.Length == 1 ? " (columns are separated by tabs)" : "")}");
+        }
+
+        return columns;
+    }
+}
+
+/// <summary>One row of a table.</summary>
+/// <param name="Line">Line in the file, from 1.</param>
+/// <param name="Cells">Texts, trimmed.</param>
+internal sealed record TsvRow(int Line, string[] Cells);
