@@ -1,0 +1,236 @@
+using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
+
+namespace DeepSourceCheck.Files.Studies;
+
+/// <summary>`responses`: where, how strong, in which band, in which direction.</summary>
+internal static class ResponseBinder
+{
+    private static readonly DirectionName[] Words =
+        [DirectionName.QuasiRadial, DirectionName.Tangential, DirectionName.StrongestTangential, DirectionName.Isotropic, DirectionName.Best];
+
+    /// <summary>Lowest sampling rate over the upper edge of a band: two samples a cycle and room for the filter's slope.</summary>
+    private const double SamplesPerCycle = 2.5;
+
+    public static IReadOnlyList<Response> Bind(Section root, BoundSensors sensors, Reading reading)
+    {
+        if (!root.States("responses"))
+        {
+            if (reading.Purpose == Purpose.Assess)
+            {
+                root.Problem("responses", "is missing; state at least one response {name, regions, moment_nAm, band_Hz}");
+            }
+            else if (!root.States("regions"))
+            {
+                root.Problem("regions", "is missing, and no response names a region; state at least one region");
+            }
+
+            return [];
+        }
+
+        var own = root.Entries("regions").Select(r => (r.Raw("name") as PlacedText)?.Text).OfType<string>().ToHashSet(StringComparer.Ordinal);
+        var names = new HashSet<string>(StringComparer.Ordinal);
+        var responses = new List<Response>();
+        foreach (Section entry in root.Entries("responses"))
+        {
+            if (entry.Text("name") is { } name && !names.Add(name))
+            {
+                entry.Problem("name", $"the name {Shown.Quoted(name)} stands twice; every response needs a name of its own");
+            }
+
+            if (Bind(entry, own, sensors, reading) is { } response)
+            {
+                responses.Add(response);
+            }
+        }
+
+        return responses;
+    }
+
+    private static Response? Bind(Section entry, HashSet<string> own, BoundSensors sensors, Reading reading)
+    {
+        entry.Text("kind");
+        if (!entry.States("moment_nAm") && !entry.States("amplitude") && !entry.States("density"))
+        {
+            entry.Problem("moment_nAm", "is missing; state the dipole moment, a number in nAm, usually 0.05 to 300");
+        }
+
+        string? name = entry.Text("name"), counts = entry.Text("counts"), measured = entry.Text("measured");
+        List<string> regions = Regions(entry, own, sensors, reading);
+        double? moment = entry.Number("moment_nAm");
+        Band? band = entry.Band("band_Hz");
+        DirectionChoice? direction = Direction(entry);
+        double? component = entry.Number("component_Hz");
+        if (component is { } f && band is { } b && (f < b.Low || f > b.High))
+        {
+            entry.Problem("component_Hz", $"{KeyShape.Text(f)} Hz lies outside the response's band of {Text(b)}; move it inside, or widen band_Hz");
+        }
+
+        CheckPassed(entry, band, sensors);
+        double? window = entry.Number("window_ms");
+        Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
+        Section measure = entry.Map("measure") ?? entry.Entry("measure");
+        double artefactEeg = Artefact(artefact, "eeg_uV", sensors.HasEeg, "the study has no electrodes"), artefactMeg = Artefact(artefact, "meg_fT", sensors.HasMeg, "the study has no MEG sensors");
+        string? eegMeasure = EegMeasure(measure, sensors), megMeasure = MegMeasure(measure, sensors);
+        return name is null || moment is null || band is null || direction is null || regions.Count == 0 ? null : new()
+        {
+            Name = name,
+            Key = entry.Key,
+            Regions = regions,
+            Together = counts == "together",
+            Moment = Si.FromNanoAmpereMetres(moment.Value),
+            Measured = measured == "peak-to-trough" ? Measured.PeakToTrough : Measured.BaselineToPeak,
+            Band = band.Value,
+            Direction = direction,
+            Window = window / 1000,
+            ComponentFrequency = component,
+            LockedArtefactEeg = Si.FromMicrovolts(artefactEeg),
+            LockedArtefactMeg = Si.FromFemtotesla(artefactMeg),
+            EegMeasure = eegMeasure,
+            MegMeasure = megMeasure,
+        };
+    }
+
+    private static List<string> Regions(Section entry, HashSet<string> own, BoundSensors sensors, Reading reading)
+    {
+        var names = new List<string>();
+        var seen = new HashSet<string>(StringComparer.Ordinal);
+        foreach (YamlScalar item in entry.Texts("regions"))
+        {
+            string? fault = null;
+            if (!seen.Add(item.Text))
+            {
+                fault = $"{Shown.Quoted(item.Text)} stands twice; remove one";
+            }
+            else if (own.Contains(item.Text) || (!sensors.Imported && reading.LibraryRegions.Contains(item.Text)))
+            {
+                names.Add(item.Text);
+            }
+            else if (sensors.Imported && reading.LibraryRegions.Contains(item.Text))
+            {
+                fault = $"the library's region {item.Text} has no place among imported leadfields; list the imported points under regions with points";
+            }
+            else
+            {
+                IEnumerable<string> known = sensors.Imported ? own : own.Concat(reading.LibraryRegions.Where(r => !own.Contains(r)));
+                string nearest = reading.Problems.Count < 100 && NearestName.Of(item.Text, known) is { } near ? $"the nearest known one is {Shown.Quoted(near)}; " : "";
+                fault = $"there is no region {Shown.Quoted(item.Text)}; {nearest}write one of the study's regions"
+                    + (sensors.Imported ? "" : " or of the library (`deepsourcecheck regions` lists them)");
+            }
+
+            if (fault is not null)
+            {
+                entry.ProblemAt(item, "regions", fault);
+            }
+        }
+
+        return names;
+    }
+
+    private static DirectionChoice? Direction(Section entry)
+    {
+        if (entry.Raw("direction") is not PlacedNumbers)
+        {
+            return entry.Text("direction") is { } word ? new(Words.Single(d => Names.Of(d) == word), null) : null;
+        }
+
+        Vec3 v = entry.Vector("direction")!.Value;
+        double largest = Math.Max(Math.Abs(v.X), Math.Max(Math.Abs(v.Y), Math.Abs(v.Z)));
+        if (largest > 0)
+        {
+            // Scaled first, so that neither tiny nor huge components lose the length.
+            return new(DirectionName.Given, (v / largest).Unit());
+        }
+
+        entry.Problem("direction", "the vector [0, 0, 0] has no direction; write one with a component other than zero");
+        return null;
+    }
+
+    private static void CheckPassed(Section entry, Band? stated, BoundSensors sensors)
+    {
+        if (stated is not { } band)
+        {
+            return;
+        }
+
+        Check(sensors.HasEeg ? sensors.EegBandwidth : null, "EEG", "eeg");
+        Check(sensors.HasMeg ? sensors.MegBandwidth : null, "MEG sensors", "meg");
+        if (sensors.Sampling is { } rate && rate < SamplesPerCycle * band.High)
+        {
+            entry.Problem("band_Hz", $"reaches {KeyShape.Text(band.High)} Hz, which needs at least {KeyShape.Text(SamplesPerCycle * band.High)} samples a second; "
+                + $"sensors.sampling_Hz is {KeyShape.Text(rate)}: raise it, or lower the band's upper edge");
+        }
+
+        void Check(Band? passed, string what, string modality)
+        {
+            if (passed is { } p && (band.Low < p.Low || band.High > p.High))
+            {
+                entry.Problem("band_Hz", $"the response's band of {Text(band)} lies outside the {Text(p)} that the {what} pass{(modality == "eeg" ? "es" : "")} (sensors.bandwidth_Hz.{modality}); "
+                    + $"they would not record it: narrow the band to what is passed, or remove sensors.{modality}");
+            }
+        }
+    }
+
+    private static double Artefact(Section artefact, string name, bool used, string reason)
+    {
+        if (!used)
+        {
+            artefact.WithoutEffect(name, reason);
+            return 0;
+        }
+
+        return artefact.Number(name) ?? 0;
+    }
+
+    private static string? EegMeasure(Section measure, BoundSensors sensors)
+    {
+        if (!sensors.HasEeg)
+        {
+            measure.WithoutEffect("eeg", "the study has no electrodes");
+            return null;
+        }
+
+        if (!measure.States("eeg"))
+        {
+            if (sensors.Derivations.Count == 0)
+            {
+                measure.Text("eeg", "no derivation");
+            }
+            else if (StudyKeys.Find("responses[].measure.eeg")?.DefaultFor("derivation") is { } standard)
+            {
+                measure.Assume("eeg", sensors.Derivations[0], standard.Source, standard.Grade);
+            }
+
+            return null;
+        }
+
+        string? stated = measure.Text("eeg");
+        if (measure.Raw("eeg") is PlacedText { IsWord: false } && !sensors.Derivations.Contains(stated!))
+        {
+            string listed = sensors.Derivations.Count > 0 ? string.Join(", ", sensors.Derivations) : "none";
+            string message = stated == Names.ChannelMean
+                ? "channel-mean is for maps and comparisons, a verdict never stands on it; write best-channel, matched-filter or a derivation"
+                : $"{Shown.Quoted(stated!)} is not among sensors.eeg_derivations ({Shown.Text(listed, 120)}); add it there, or write best-channel or matched-filter";
+            measure.Problem("eeg", message);
+        }
+
+        return stated;
+    }
+
+    private static string? MegMeasure(Section measure, BoundSensors sensors)
+    {
+        if (!sensors.HasMeg)
+        {
+            measure.WithoutEffect("meg", "the study has no MEG sensors");
+            return null;
+        }
+
+        bool stated = measure.States("meg");
+        string? text = measure.Text("meg");
+        return stated ? text : null;
+    }
+
+    private static string Text(Band band) => $"{KeyShape.Text(band.Low)} to {KeyShape.Text(band.High)} Hz";
+}

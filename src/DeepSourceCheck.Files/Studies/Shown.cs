@@ -1,0 +1,29 @@
+using System.Globalization;
+using System.Text;
+
+namespace DeepSourceCheck.Files.Studies;
+
+/// <summary>Text from a file as a message may show it: on one line, short, without control characters.</summary>
+internal static class Shown
+{
+    private const int Longest = 60;
+
+    /// <summary>The text, shortened, control and invisible characters replaced by `?`.</summary>
+    public static string Text(string text, int longest = Longest)
+    {
+        var shown = new StringBuilder();
+        foreach (char c in text.Length > longest ? text.AsSpan(0, longest) : text)
+        {
+            shown.Append(IsHidden(c) ? '?' : c);
+        }
+
+        return text.Length > longest ? shown.Append("...").ToString() : shown.ToString();
+    }
+
+    /// <summary>The text in quotes, shortened.</summary>
+    public static string Quoted(string text) => $"'{Text(text)}'";
+
+    /// <summary>Control, format and unpaired characters, which no name or path may hold. (A pair is never split: both halves count.)</summary>
+    public static bool IsHidden(char c) =>
+        char.GetUnicodeCategory(c) is UnicodeCategory.Control or UnicodeCategory.Format or UnicodeCategory.LineSeparator or UnicodeCategory.ParagraphSeparator;
+}
