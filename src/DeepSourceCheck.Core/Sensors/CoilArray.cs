@@ -23,6 +23,9 @@ public static class CoilArray
     /// <summary>Most sites of an array.</summary>
     public const int MostSites = 20_000;
 
+    /// <summary>Largest elevation of the edge, up or down [rad].</summary>
+    public static readonly double LargestEdge = Si.FromDegrees(80);
+
     private const string Key = "sensors.meg";
 
     /// <summary>The coils that an array can be made of.</summary>
@@ -120,7 +123,8 @@ public static class CoilArray
 
         foreach ((double edge, string end) in new[] { (choice.EdgeFront, "front"), (choice.EdgeBack, "back") })
         {
-            Require(edge is > -Math.PI / 2 and < Math.PI / 2, $"sensors.meg_edge_deg.{end}", $"{Deg(edge)} degrees; an elevation between -90 and 90 is allowed");
+            Require(Math.Abs(edge) <= LargestEdge, $"sensors.meg_edge_deg.{end}",
+                $"{Deg(edge)} degrees; an elevation from -{Deg(LargestEdge)} to {Deg(LargestEdge)} is allowed");
         }
 
         if (problems.Count > 0)
