@@ -20,7 +20,7 @@ public static class RegionFill
     public const double WarnDroppedShareOfLibrary = 0.01;
 
     // Nodes of the box that are tried at most: refinement stops before, and a stated spacing that needs more is refused.
-    private const double MostRefined = 2e8, MostTried = 4e9;
+    private const double MostRefined = 2e8, MostTried = 1e9;
 
     /// <summary>Fills a solid shape.</summary>
     /// <param name="name">Name of the region.</param>
@@ -192,7 +192,7 @@ public static class RegionFill
         return [.. nodes];
     }
 
-    // A node on the box's face must not be lost to rounding: one more on either side is tried.
+    // A node on the box's face must not be lost to rounding: the box is widened by a thousandth of a step.
     private static (long First, long Last) Range(double low, double high, double step) =>
         ((long)Math.Ceiling(Si.ToMm(low) / step - 0.001), (long)Math.Floor(Si.ToMm(high) / step + 0.001));
 
