@@ -17,6 +17,9 @@ public static class GridSpacing
     /// <summary>Most halvings of the default spacing: 2 mm to 0.031 mm.</summary>
     public const int MostHalvings = 6;
 
+    /// <summary>Largest spacing [m]: wider than any head.</summary>
+    public const double Largest = 1.0;
+
     /// <summary>Most dipoles of one region.</summary>
     public const long MostDipoles = 20_000_000;
 
@@ -34,9 +37,9 @@ public static class GridSpacing
     /// <exception cref="InputException">Names the region, the count and the smallest spacing that is allowed.</exception>
     public static void Check(string region, double volume, double? spacing, string? file = null, string? key = null)
     {
-        if (spacing is { } stated && !(stated > 0 && double.IsFinite(stated)))
+        if (spacing is { } stated && !(stated > 0 && stated <= Largest))
         {
-            throw new InputException(file, key, $"region '{region}': spacing_mm must be a positive number");
+            throw new InputException(file, key, $"region '{region}': spacing_mm must be a number above 0, at most {Si.ToMm(Largest):0}");
         }
 
         double expected = volume / Math.Pow(spacing ?? Predict(volume), 3);
@@ -51,8 +54,8 @@ public static class GridSpacing
 
     /// <summary>The spacing as the decimal number of millimetres that the study meant: 1.5 rather than 1.4999999999999998.</summary>
     /// <param name="spacing">Spacing [m].</param>
-    internal static double InMillimetres(double spacing) =>
-        double.Parse(Si.ToMm(spacing).ToString("G15", CultureInfo.InvariantCulture), CultureInfo.InvariantCulture);
+    internal static decimal InMillimetres(double spacing) =>
+        decimal.Parse(Si.ToMm(spacing).ToString("G15", CultureInfo.InvariantCulture), NumberStyles.Float, CultureInfo.InvariantCulture);
 
     private static double Predict(double volume)
     {

@@ -7,8 +7,8 @@ using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Core.Regions;
 
-// Nodes stand at (i h, j h, k h) of the region's own frame, h and the products in millimetres, then divided by 1000: the same decimal numbers as in the
-// study, never sums of steps. They are listed with x fastest, then y, then z, each ascending.
+// Nodes stand at (i h, j h, k h) of the region's own frame. The products are formed in decimal arithmetic from h in millimetres, so that each coordinate is
+// the double nearest to the number that a person would write; they are never sums of steps. They are listed with x fastest, then y, then z, each ascending.
 
 /// <summary>Fills regions with dipoles.</summary>
 public static class RegionFill
@@ -20,7 +20,7 @@ public static class RegionFill
     public const double WarnDroppedShareOfLibrary = 0.01;
 
     // Nodes of the box that are tried at most: refinement stops before, and a stated spacing that needs more is refused.
-    private const double MostRefined = 2e8, MostTried = 1e9;
+    private const double MostRefined = 1e8, MostTried = 1e9;
 
     /// <summary>Fills a solid shape.</summary>
     /// <param name="name">Name of the region.</param>
@@ -166,21 +166,19 @@ public static class RegionFill
         };
     }
 
-    private static Vec3[] Nodes(RegionShape shape, double step)
+    private static Vec3[] Nodes(RegionShape shape, decimal step)
     {
-        (long x0, long x1) = Range(shape.Min.X, shape.Max.X, step);
-        (long y0, long y1) = Range(shape.Min.Y, shape.Max.Y, step);
-        (long z0, long z1) = Range(shape.Min.Z, shape.Max.Z, step);
+        double[] xs = Coordinates(shape.Min.X, shape.Max.X, step);
+        double[] ys = Coordinates(shape.Min.Y, shape.Max.Y, step);
+        double[] zs = Coordinates(shape.Min.Z, shape.Max.Z, step);
         List<Vec3> nodes = [];
-        for (long k = z0; k <= z1; k++)
+        foreach (double z in zs)
         {
-            double z = Si.FromMm(k * step);
-            for (long j = y0; j <= y1; j++)
+            foreach (double y in ys)
             {
-                double y = Si.FromMm(j * step);
-                for (long i = x0; i <= x1; i++)
+                foreach (double x in xs)
                 {
-                    Vec3 node = new(Si.FromMm(i * step), y, z);
+                    Vec3 node = new(x, y, z);
                     if (shape.Contains(node))
                     {
                         nodes.Add(node);
@@ -192,9 +190,13 @@ public static class RegionFill
         return [.. nodes];
     }
 
-    // A node on the box's face must not be lost to rounding: the box is widened by a thousandth of a step.
-    private static (long First, long Last) Range(double low, double high, double step) =>
-        ((long)Math.Ceiling(Si.ToMm(low) / step - 0.001), (long)Math.Floor(Si.ToMm(high) / step + 0.001));
+    /// <summary>Multiples of the step [mm] within an interval [m], in metres: each the double nearest to its decimal number.</summary>
+    private static double[] Coordinates(double low, double high, decimal step)
+    {
+        // A node on the box's face must not be lost to rounding: the box is widened by a thousandth of a step.
+        int first = (int)Math.Ceiling(Si.ToMm(low) / (double)step - 0.001), last = (int)Math.Floor(Si.ToMm(high) / (double)step + 0.001);
+        return [.. Enumerable.Range(first, Math.Max(0, last - first + 1)).Select(i => (double)(i * step / 1000m))];
+    }
 
     private static double Tried(RegionShape shape, double spacing)
     {

@@ -1,19 +1,22 @@
 namespace DeepSourceCheck.Tests.Support;
 
-/// <summary>A test against the label volumes of the Debian package mricron-data; skipped with the reason where it is not installed.</summary>
-[AttributeUsage(AttributeTargets.Method)]
-internal sealed class AtlasFactAttribute : FactAttribute
+/// <summary>The label volumes of the Debian package mricron-data.</summary>
+internal static class Atlas
 {
     /// <summary>Folder of the package's volumes.</summary>
     public const string Folder = "/usr/share/mricron/templates";
 
-    public AtlasFactAttribute()
-    {
-        if (!File.Exists(Path.Combine(Folder, "aal.nii.gz")))
-        {
-            Skip = $"needs {Folder}/aal.nii.gz of the Debian package mricron-data, which is not installed here";
-        }
-    }
+    /// <summary>Why tests against the volumes are skipped, or null.</summary>
+    public static string? WhySkipped { get; } = File.Exists(Path.Combine(Folder, "aal.nii.gz")) && File.Exists(Path.Combine(Folder, "jhu189.nii.gz"))
+        ? null
+        : $"needs the label volumes of the Debian package mricron-data in {Folder}, which is not installed here";
+}
+
+/// <summary>A test against atlas volumes; skipped with the reason where they are not installed.</summary>
+[AttributeUsage(AttributeTargets.Method)]
+internal sealed class AtlasTheoryAttribute : TheoryAttribute
+{
+    public AtlasTheoryAttribute() => Skip = Atlas.WhySkipped;
 }
 
 /// <summary>A test against the sites found on a real head; skipped with the reason where that file does not stand beside the checkout.</summary>
