@@ -53,4 +53,22 @@ public sealed class FilledRegion
 
     /// <summary>What the user must know about this region: losses, side, sphere misfit.</summary>
     public IReadOnlyList<string> Warnings { get; init; } = [];
+
+    /// <summary>The same region with one more warning at the end.</summary>
+    public FilledRegion WithWarning(string warning) => new()
+    {
+        Name = Name,
+        Positions = Positions,
+        Rows = Rows,
+        PointNames = PointNames,
+        SourceIndices = SourceIndices,
+        Dropped = Dropped,
+        Spacing = Spacing,
+        SpacingRefined = SpacingRefined,
+        IsSurface = IsSurface,
+        ShapeVolume = ShapeVolume,
+        Centroid = Centroid,
+        Origin = Origin,
+        Warnings = [.. Warnings, warning],
+    };
 }

@@ -18,6 +18,10 @@ public static class NearestName
         return known.MinBy(candidate => Distance(name, candidate));
     }
 
+    /// <summary>` (nearest: X)`, or nothing where no known name is near.</summary>
+    public static string Hint(string name, IEnumerable<string> known) =>
+        Of(name, known) is { } near && Distance(name, near) <= Math.Max(2, name.Length / 2) ? $" (nearest: {near})" : "";
+
     /// <summary>Insertions, deletions, replacements and swaps of neighbours that turn one name into the other.</summary>
     public static int Distance(string a, string b)
     {
