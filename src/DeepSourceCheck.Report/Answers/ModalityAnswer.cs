@@ -1,0 +1,67 @@
+using DeepSourceCheck.Core.Results;
+
+namespace DeepSourceCheck.Report.Answers;
+
+/// <summary>One verdict with the figures that it stands on.</summary>
+public sealed class ModalityAnswer
+{
+    internal ModalityAnswer(RegionResult region, VerdictResult verdict)
+    {
+        Verdict = verdict;
+        Row = region.Find(verdict.Modality, verdict.Direction, verdict.Measure);
+        Target = Row?.Targets.FirstOrDefault(t => t.Rule == verdict.Rule);
+        Trials = Target?.Trials.P50;
+        Minutes = Target?.Minutes?.P50;
+        bool silent = Trials is null && Row is { SnrDb.P50: null };
+        Outcome = silent ? Outcome.Silent
+            : Trials is null or > Say.MostTrials ? Outcome.OutOfReach
+            : verdict.FitsSession switch { true => Outcome.Fits, false => Outcome.TooLong, null => Outcome.NoSession };
+    }
+
+    /// <summary>The verdict.</summary>
+    public VerdictResult Verdict { get; }
+
+    /// <summary>EEG, MEG or both.</summary>
+    public Modality Modality => Verdict.Modality;
+
+    /// <summary>The row of results, or null where there is none.</summary>
+    public MeasureResult? Row { get; }
+
+    /// <summary>The rule's figures, or null.</summary>
+    public TargetResult? Target { get; }
+
+    /// <summary>Median count.</summary>
+    public long? Trials { get; }
+
+    /// <summary>Median recording minutes; null without a protocol.</summary>
+    public double? Minutes { get; }
+
+    /// <summary>Against the session.</summary>
+    public Outcome Outcome { get; }
+
+    /// <summary>Why figures are missing, or null.</summary>
+    public string? Reason => Target?.Reason ?? Row?.Reason;
+
+    /// <summary>True where a count within reach exists.</summary>
+    public bool HasCount => Outcome is Outcome.Fits or Outcome.TooLong or Outcome.NoSession;
+
+    /// <summary>`303 trials, 0.5 min: fits`.</summary>
+    public string Line()
+    {
+        string count = Trials is { } n && HasCount ? Say.Plural(n, "trial") : "";
+        string minutes = Minutes is { } m ? $", {Say.Minutes(m)} min" : "";
+        return Outcome switch
+        {
+            Outcome.Fits => $"{count}{minutes}: fits",
+            Outcome.TooLong => $"{count}{minutes}: does not fit",
+            Outcome.NoSession => $"{count}{minutes}",
+            Outcome.Silent => "no count: silent in this direction",
+            _ => Say.OutOfReach,
+        };
+    }
+
+    /// <summary>`252 to 371 over the places in the region`, or empty.</summary>
+    public string Range() => HasCount && Target?.Trials is { P05: { } low, P95: var high }
+        ? $"{Say.Count(low)} to {Say.Trials(high)} over 5 to 95 % of places in the region"
+        : "";
+}

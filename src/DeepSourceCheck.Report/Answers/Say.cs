@@ -1,0 +1,128 @@
+using System.Globalization;
+
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
+
+namespace DeepSourceCheck.Report.Answers;
+
+/// <summary>How numbers are written in report, figures and console.</summary>
+/// <remarks>Trials exact with thousands commas; others two significant digits; minus sign U+2212; a space before unit and %.</remarks>
+public static class Say
+{
+    /// <summary>Above this many trials averaging is no plan: `out of reach`.</summary>
+    public const long MostTrials = 10_000_000;
+
+    /// <summary>`out of reach`.</summary>
+    public const string OutOfReach = "out of reach";
+
+    private const char Minus = '\u2212';
+
+    /// <summary>A count, exact: `45,103`; `out of reach` above ten million or where there is none.</summary>
+    public static string Trials(long? count) =>
+        count is { } n && n <= MostTrials ? Count(n) : OutOfReach;
+
+    /// <summary>An integer with thousands commas.</summary>
+    public static string Count(long count) => Signed(count.ToString("N0", CultureInfo.InvariantCulture));
+
+    /// <summary>`1 trial`, `303 trials`.</summary>
+    public static string Plural(long count, string noun) => $"{Count(count)} {noun}{(count == 1 ? "" : "s")}";
+
+    /// <summary>Minutes: `0.5`, `7.5`, `75`, `750`; below 0.1 `under 0.1`.</summary>
+    public static string Minutes(double minutes) => minutes switch
+    {
+        < 0.1 => "under 0.1",
+        < 9.95 => Signed(minutes.ToString("0.0", CultureInfo.InvariantCulture)),
+        _ => Two(minutes),
+    };
+
+    /// <summary>Two significant digits, with thousands commas: `0.25`, `4.8`, `190`, `12,000`.</summary>
+    public static string Two(double value) => Significant(value, 2);
+
+    /// <summary>So many significant digits, trailing zeros kept, no exponent between 1e-4 and 1e9.</summary>
+    public static string Significant(double value, int digits)
+    {
+        if (value == 0)
+        {
+            return "0";
+        }
+
+        if (!double.IsFinite(value))
+        {
+            return "not defined";
+        }
+
+        // The exponent after rounding: 0.0999 to two digits is 0.10.
+        string scientific = value.ToString("E" + (digits - 1).ToString(CultureInfo.InvariantCulture), CultureInfo.InvariantCulture);
+        int exponent = int.Parse(scientific[(scientific.IndexOf('E', StringComparison.Ordinal) + 1)..], CultureInfo.InvariantCulture);
+        if (exponent is < -4 or > 9)
+        {
+            return Signed($"{scientific[..scientific.IndexOf('E', StringComparison.Ordinal)]}e{exponent}");
+        }
+
+        double rounded = double.Parse(scientific, CultureInfo.InvariantCulture);
+        int decimals = Math.Max(0, digits - 1 - exponent);
+        return Signed(rounded.ToString("N" + decimals.ToString(CultureInfo.InvariantCulture), CultureInfo.InvariantCulture));
+    }
+
+    /// <summary>dB with one decimal.</summary>
+    public static string Decibels(double db) => Signed((Math.Round(db, 1) + 0.0).ToString("0.0", CultureInfo.InvariantCulture));
+
+    /// <summary>A value as the study states it, up to 6 significant digits, no trailing zeros.</summary>
+    public static string Stated(double value) => Signed(value.ToString("0.######", CultureInfo.InvariantCulture));
+
+    /// <summary>A share as percent: `10 %`.</summary>
+    public static string Percent(double share) => $"{Stated(Math.Round(100 * share, 1))} %";
+
+    /// <summary>Assurance to 5 %: `at least 95 %`, `70 %`, `at most 5 %`.</summary>
+    public static string Assurance(double share)
+    {
+        int percent = 5 * (int)Math.Round(20 * share, MidpointRounding.AwayFromZero);
+        return percent >= 95 ? "at least 95 %" : percent <= 5 ? "at most 5 %" : $"{percent.ToString(CultureInfo.InvariantCulture)} %";
+    }
+
+    /// <summary>A place or direction in millimetres or as a vector: `[0, 0, 1]`.</summary>
+    public static string Vector(double x, double y, double z) => $"[{Stated(x)}, {Stated(y)}, {Stated(z)}]";
+
+    /// <summary>A moment [A m] in nAm as stated.</summary>
+    public static string Moment(double moment) => $"{Stated(Math.Round(Si.ToNanoAmpereMetres(moment), 9))} nAm";
+
+    /// <summary>`along [0, 0, 1]`, `tangential`.</summary>
+    public static string Direction(DirectionChoice direction) => direction.Vector is { } v
+        ? $"along {Vector(Math.Round(v.X, 3), Math.Round(v.Y, 3), Math.Round(v.Z, 3))}"
+        : Direction(direction.Name);
+
+    /// <summary>Direction in words, for labels.</summary>
+    public static string Direction(DirectionName name) => name switch
+    {
+        DirectionName.QuasiRadial => "quasi-radial",
+        DirectionName.Tangential => "tangential",
+        DirectionName.StrongestTangential => "strongest tangential",
+        DirectionName.Isotropic => "isotropic",
+        DirectionName.Best => "best",
+        _ => "given",
+    };
+
+    /// <summary>What a target asks, in words: `peak = 3 x residual rms`.</summary>
+    public static string Rule(TargetChoice target) => target switch
+    {
+        AmplitudeRatioChoice a => $"peak = {Stated(a.Ratio)} × residual rms",
+        DetectionChoice d => $"detected with power {Percent(d.Power)} at false-alarm rate {Stated(d.Alpha)}{(d.Looks > 1 ? $" over {Stated(d.Looks)} looks" : "")}",
+        _ => "the study's target",
+    };
+
+    /// <summary>The rule's key in results.</summary>
+    public static string RuleKey(TargetChoice target) => target switch
+    {
+        AmplitudeRatioChoice => "amplitude_ratio",
+        DetectionChoice => "detection",
+        _ => "",
+    };
+
+    /// <summary>The rule's key in words.</summary>
+    public static string RuleKey(string key) => key.Replace('_', ' ');
+
+    /// <summary>Unit with the micro sign.</summary>
+    public static string Unit(string unit) => unit.StartsWith('u') ? "µ" + unit[1..] : unit;
+
+    private static string Signed(string text) => text.Replace('-', Minus);
+}

@@ -1,0 +1,37 @@
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Report.Answers;
+
+namespace DeepSourceCheck.Report.Figures;
+
+/// <summary>All figures of an assessment, in the order of the page.</summary>
+public static class FigureSet
+{
+    /// <summary>Figures of one response: trials by each rule, power, SNR.</summary>
+    public static IReadOnlyList<Figure> Of(Assessment assessment, int response)
+    {
+        ResponseResult result = assessment.Responses[response];
+        string suffix = assessment.Responses.Count > 1 ? $"-{response + 1}" : "";
+        string[] rules = [.. assessment.Study.Targets.Select(Say.RuleKey).Concat(result.Regions.SelectMany(r => r.Verdicts).Select(v => v.Rule)).Distinct()];
+        List<Figure?> figures = [];
+        for (int k = 0; k < rules.Length; k++)
+        {
+            figures.Add(TrialsFigure.Make(assessment, result, rules[k], k == 0 ? $"trials{suffix}" : $"trials-{rules[k].Replace('_', '-')}{suffix}"));
+        }
+
+        figures.Add(PowerFigure.Make(assessment, result, $"power{suffix}"));
+        figures.Add(SnrFigure.Make(assessment, result, $"snr{suffix}"));
+        return [.. figures.OfType<Figure>()];
+    }
+
+    /// <summary>Every figure of every response, then the geometry.</summary>
+    public static IReadOnlyList<Figure> All(Assessment assessment)
+    {
+        List<Figure> figures = [.. Enumerable.Range(0, assessment.Responses.Count).SelectMany(k => Of(assessment, k))];
+        if (GeometryFigure.Make(assessment, "geometry") is { } geometry)
+        {
+            figures.Add(geometry);
+        }
+
+        return figures;
+    }
+}

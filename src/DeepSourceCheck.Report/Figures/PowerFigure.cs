@@ -1,0 +1,179 @@
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Report.Answers;
+
+using SkiaSharp;
+
+namespace DeepSourceCheck.Report.Figures;
+
+/// <summary>How detection grows with trials: the power of the one-sided test, never of an amplitude ratio, which has none.</summary>
+public static class PowerFigure
+{
+    // Where the study states no detection target: common practice, no source.
+    private const double DefaultAlpha = 0.01;
+    private const double DefaultPower = 0.9;
+
+    // Two short lines of text beside the last mark [px].
+    private const float LabelRoom = 112;
+
+    // A joint curve this close to the best single one would only hide it.
+    private const double JointGainDrawn = 0.9;
+
+    /// <summary>The figure for the first region of a response; null where no modality has an SNR.</summary>
+    public static Figure? Make(Assessment assessment, ResponseResult response, string name)
+    {
+        RegionAnswer? region = response.Regions.Select(r => new RegionAnswer(assessment, response.Response, r)).FirstOrDefault(r => r.Answers.Any(a => a.Row?.SnrDb.P50 is not null));
+        if (region is null)
+        {
+            return null;
+        }
+
+        DetectionChoice? stated = assessment.Study.Targets.OfType<DetectionChoice>().FirstOrDefault();
+        PowerCurve curve = new(stated?.Alpha ?? DefaultAlpha, stated?.Looks ?? 1);
+        double power = stated?.Power ?? DefaultPower;
+        Line[] all = [.. region.Answers.Where(a => a.Row?.SnrDb.P50 is not null).Select(a => new Line(a.Modality, a.Row!.SnrDb, curve.Trials(power, a.Row.SnrDb.P50!.Value)))];
+        double best = all.Where(l => l.Modality != Modality.Both).Select(l => l.Target).DefaultIfEmpty(double.PositiveInfinity).Min();
+        Line[] lines = [.. all.Where(l => l.Modality != Modality.Both || l.Target < JointGainDrawn * best)];
+        if (lines.Length == 0)
+        {
+            return null;
+        }
+
+        double? perMinute = assessment.Study.Protocol is { } p ? 60 * p.Rate * (1 - p.RejectedFraction) : null;
+        string title = Title(assessment, lines, curve, power, perMinute);
+        string joint = all.Length > lines.Length ? " Both together stay within 10 % of the better one and are not drawn." : "";
+        string from = stated is null ? "the study states no detection target: a false-alarm rate of 0.01 and the mark at 90 % are common practice" : "false-alarm rate, looks and power of the study's detection target";
+        return new Figure(
+            name, title,
+            $"Power of detection (%) against {(perMinute is null ? "accepted trials" : "minutes of recording")}",
+            $"{response.Response.Name}, {region.Region.Region}; one-sided test at false-alarm rate {Say.Stated(curve.Alpha)}{(curve.Looks > 1 ? $" over {Say.Stated(curve.Looks)} looks" : ", channel, latency and polarity fixed beforehand")}"
+            + $" ({from}); power = Φ(√N d − z), d² the SNR of one trial of {string.Join(", ", region.Answers.Where(a => lines.Any(l => l.Modality == a.Modality)).Select(a => $"{RegionAnswer.Words(a.Modality)} {a.Verdict.Measure}"))}; "
+            + $"{Say.Direction(response.Response.Direction)}; {Say.Moment(response.Response.Moment)}{TrialsFigure.Protocol(assessment)}. Line: median dipole; band: 5 to 95 % of places and directions.{joint} "
+            + "An amplitude ratio has no power: its counts stand in the figure of trials.",
+            $"{title}. {string.Join(" ", lines.Take(3).Select(l => $"{RegionAnswer.Words(l.Modality)}: {Say.Percent(power)} after {Span(l.Target, perMinute)}."))}",
+            Table(lines, curve, perMinute), FullWidth: false,
+            width => Draw(width, assessment, lines, curve, power, perMinute));
+    }
+
+    private static string Span(double trials, double? perMinute) => trials > Say.MostTrials ? $"more than {Say.Count(Say.MostTrials)} trials"
+        : perMinute is { } r ? $"{Say.Minutes(Math.Ceiling(trials) / r)} min" : Say.Plural((long)Math.Max(1, Math.Ceiling(trials)), "trial");
+
+    private static string Title(Assessment assessment, Line[] lines, PowerCurve curve, double power, double? perMinute)
+    {
+        if (assessment.SessionTrials is { } session)
+        {
+            return $"At the session's end {string.Join(", ", lines.Select(l => $"{Name(l.Modality)} detects with {Share(curve.At(session, l.Snr.P50!.Value))}"))}";
+        }
+
+        return string.Join("; ", lines.Select(l => $"{Name(l.Modality)}: {Say.Percent(power)} after {Span(l.Target, perMinute)}"));
+    }
+
+    private static string Share(double power) => power >= 0.995 ? "over 99 %" : power < 0.005 ? "under 1 %" : Say.Percent(Math.Round(power, 2));
+
+    private static string Name(Modality m) => m == Modality.Both ? "both" : Names.Of(m);
+
+    private static FigureTable Table(Line[] lines, PowerCurve curve, double? perMinute)
+    {
+        double[] powers = [0.5, 0.8, 0.9, 0.95, 0.99];
+        return new(
+            ["modality", "power", "trials, median dipole", "minutes"],
+            [.. lines.SelectMany(l => powers.Select(p => (IReadOnlyList<string>)
+            [
+                Names.Of(l.Modality), Say.Percent(p), Count(curve.Trials(p, l.Snr.P50!.Value)), perMinute is { } r && curve.Trials(p, l.Snr.P50!.Value) <= Say.MostTrials ? Say.Minutes(Math.Ceiling(curve.Trials(p, l.Snr.P50!.Value)) / r) : "",
+            ]))]);
+    }
+
+    private static string Count(double trials) => trials > Say.MostTrials ? Say.OutOfReach : Say.Count((long)Math.Max(1, Math.Ceiling(trials)));
+
+    private static FigureSheet Draw(int width, Assessment assessment, Line[] lines, PowerCurve curve, double power, double? perMinute)
+    {
+        bool narrow = width < 480;
+        int keyRows = narrow ? lines.Length : lines.Count(l => l.Target > Say.MostTrials);
+        const float Left = 52, Right = 24, Bottom = 46;
+        float top = 30 + (keyRows > 0 ? 10 : 0) + 20 * keyRows;
+        double unit = perMinute ?? 1;
+        double first = lines.Min(l => Math.Max(0.5, curve.Trials(Math.Max(0.1, 2 * curve.Alpha), l.Snr.P95 ?? l.Snr.P50!.Value)));
+        double last = lines.Max(l => Math.Min(Say.MostTrials, curve.Trials(0.98, l.Snr.P50!.Value)));
+        LogAxis axis = new([first / unit, last / unit, (assessment.SessionTrials ?? double.NaN) / unit]);
+        if (!narrow)
+        {
+            double furthest = lines.Where(l => l.Target <= Say.MostTrials).Select(l => Math.Log10(l.Target / unit)).DefaultIfEmpty(axis.Low).Max();
+            axis.MakeRoom(furthest, LabelRoom / (width - Left - Right));
+        }
+
+        FigureSheet sheet = new(width, (int)(top + 224 + Bottom), Left, Right, top, Bottom);
+        sheet.Limits(axis.Low, axis.High, 0, 1.04);
+        sheet.BottomAxis(axis.Ticks);
+        sheet.LeftAxis([(0, "0"), (0.5, "50"), (1, "100 %")]);
+        double? session = assessment.SessionTrials is { } s and > 0 ? Math.Log10(s / unit) : null;
+        sheet.Under(pen =>
+        {
+            if (session is { } x)
+            {
+                pen.Rectangle(pen.X(x), pen.Top, pen.Right, pen.Bottom, Palette.Beyond);
+            }
+        });
+        sheet.Over(pen =>
+        {
+            pen.Text(perMinute is null ? "accepted trials" : "minutes of recording", pen.Left, pen.Bottom + 36, FigurePen.Small, colour: Palette.Ink2);
+            foreach (Line line in lines)
+            {
+                if (line.Snr is { P05: { } low, P95: { } high })
+                {
+                    pen.Area([.. Points(pen, axis, curve, high, unit), .. Points(pen, axis, curve, low, unit).Reverse()], Palette.Of(line.Modality).WithAlpha(56));
+                }
+            }
+
+            foreach (Line line in lines)
+            {
+                pen.Curve([.. Points(pen, axis, curve, line.Snr.P50!.Value, unit)], line.Modality);
+            }
+
+            if (session is { } x)
+            {
+                pen.PlumbLine(pen.X(x), pen.Top - 8, pen.Bottom + 2);
+                string label = assessment.Study.Protocol?.Session is { } seconds ? $"session {Say.Stated(Math.Round(seconds / 60, 6))} min" : "session";
+                bool leftwards = pen.X(x) > (pen.Left + pen.Right) / 2;
+                pen.Text(label, pen.X(x) + (leftwards ? -6 : 6), pen.Top - 12, FigurePen.Label, leftwards ? Anchor.End : Anchor.Start, true);
+            }
+
+            int row = 0;
+            foreach (Line line in lines.OrderBy(l => l.Target))
+            {
+                double at = Math.Log10(line.Target / unit);
+                bool shown = at <= axis.High && line.Target <= Say.MostTrials;
+                if (shown)
+                {
+                    pen.Mark(line.Modality, pen.X(at), pen.Y(power));
+                }
+
+                string name = $"{Name(line.Modality)}: {Say.Percent(power)}", after = $"after {Span(line.Target, perMinute)}";
+                if (narrow || !shown)
+                {
+                    // Above the plot, the mark before the words.
+                    float y = pen.Top - 40 - 20 * (keyRows - 1 - row++);
+                    pen.Mark(line.Modality, 24, y - 4, scale: 0.75f);
+                    pen.Text(line.Target > Say.MostTrials ? $"{name} is {Say.OutOfReach}" : $"{name} {after}", 40, y, FigurePen.Label);
+                }
+                else
+                {
+                    pen.Text(name, pen.X(at) + 14, pen.Y(power) + 24, FigurePen.Label, halo: true);
+                    pen.Text(after, pen.X(at) + 14, pen.Y(power) + 41, FigurePen.Label, halo: true);
+                }
+            }
+        });
+        return sheet;
+    }
+
+    private static IEnumerable<SKPoint> Points(FigurePen pen, LogAxis axis, PowerCurve curve, double snrDb, double unit)
+    {
+        const int Steps = 160;
+        return Enumerable.Range(0, Steps + 1).Select(k =>
+        {
+            double x = axis.Low + (axis.High - axis.Low) * k / Steps;
+            return new SKPoint(pen.X(x), pen.Y(curve.At(Math.Pow(10, x) * unit, snrDb)));
+        });
+    }
+
+    private sealed record Line(Modality Modality, Percentiles Snr, double Target);
+}

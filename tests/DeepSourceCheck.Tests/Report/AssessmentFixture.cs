@@ -1,0 +1,316 @@
+using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
+
+namespace DeepSourceCheck.Tests.Report;
+
+/// <summary>
+/// Invented assessments, consistent in themselves (counts follow from SNR by the amplitude rule), for tests of what is written about them.
+/// Their figures resemble those of the default study; they are no reference values for the physics.
+/// </summary>
+internal static class AssessmentFixture
+{
+    public const double Ratio = 3;
+
+    private static readonly DirectionName[] Directions =
+    [
+        DirectionName.QuasiRadial, DirectionName.Tangential, DirectionName.StrongestTangential, DirectionName.Isotropic, DirectionName.Best, DirectionName.Given,
+    ];
+
+    /// <summary>Two regions, EEG 303 and MEG 45,103 trials, session of 23,976.</summary>
+    public static Assessment Default() => Build(new Options());
+
+    /// <summary>MEG silent in the verdict's direction, with figures at the leak.</summary>
+    public static Assessment Silent() => Build(new Options { Direction = DirectionName.QuasiRadial, MegSilent = true });
+
+    public static Assessment NoProtocol() => Build(new Options { Session = false });
+
+    public static Assessment EegOnly() => Build(new Options { Meg = false });
+
+    public static Assessment MegOnly() => Build(new Options { Eeg = false });
+
+    public static Assessment TwelveRegions() => Build(new Options
+    {
+        Title = "Twelve deep structures & <one> \"title\" that is long enough to need a second line on the page of a telephone",
+        Regions = [.. Enumerable.Range(1, 12).Select(k => $"ventral-posterolateral-thalamus-and-its-border-zone-left-{k}")],
+    });
+
+    public static Assessment NeitherFits() => Build(new Options { EegTrials = 80_000, MegTrials = 1_250_000, JointTrials = 75_000 });
+
+    public static Assessment OutOfReach() => Build(new Options { EegTrials = 400_000, MegTrials = 60_000_000, JointTrials = 397_000 });
+
+    public static Assessment BothFit() => Build(new Options { EegTrials = 900, MegTrials = 450, JointTrials = 300 });
+
+    public static Assessment Imported() => Build(new Options { ImportedHead = true });
+
+    public static Assessment WithDetection() => Build(new Options { Detection = true });
+
+    public static Assessment TwoResponses()
+    {
+        Assessment a = Default();
+        ResponseResult second = Build(new Options { EegTrials = 9_000, MegTrials = 11_000, JointTrials = 5_000 }).Responses[0];
+        return a with { Responses = [a.Responses[0], second with { Response = second.Response with { Name = "slow thalamic response", Key = "responses.slow thalamic response" } }] };
+    }
+
+    internal sealed record Options
+    {
+        public string Title { get; init; } = "Click response of the brainstem, adult volunteers";
+
+        public bool Eeg { get; init; } = true;
+
+        public bool Meg { get; init; } = true;
+
+        public bool Session { get; init; } = true;
+
+        public bool MegSilent { get; init; }
+
+        public bool Detection { get; init; }
+
+        public bool ImportedHead { get; init; }
+
+        public DirectionName Direction { get; init; } = DirectionName.Given;
+
+        public double EegTrials { get; init; } = 303;
+
+        public double MegTrials { get; init; } = 45_103;
+
+        public double JointTrials { get; init; } = 301;
+
+        public IReadOnlyList<string> Regions { get; init; } = ["inferior-colliculus-left", "inferior-colliculus-right"];
+    }
+
+    public static Assessment Build(Options o)
+    {
+        Protocol? protocol = o.Session ? new Protocol { Rate = 11.1, RejectedFraction = 0.1, Session = 2400 } : null;
+        LayeredSphere sphere = new("spheres: adult-4", new(0, -0.018, 0.005),
+        [
+            new("brain", 0.078, 0.33, 0.33), new("csf", 0.080, 1.79, 1.79), new("skull", 0.086, 0.0132, 0.0132), new("scalp", 0.092, 0.43, 0.43),
+        ]);
+        List<TargetChoice> targets = [new AmplitudeRatioChoice(Ratio)];
+        if (o.Detection)
+        {
+            targets.Add(new DetectionChoice(0.01, 0.9, 1));
+        }
+
+        Response response = new()
+        {
+            Name = "wave V",
+            Key = "responses.wave V",
+            Regions = o.Regions,
+            Moment = 3.5e-9,
+            Band = new(100, 1500),
+            Direction = new(o.Direction, o.Direction == DirectionName.Given ? new Vec3(0, 0, 1) : null),
+        };
+        Study study = new()
+        {
+            File = "default study",
+            Folder = ".",
+            Title = o.Title,
+            Head = o.ImportedHead ? new ImportedHeadChoice("eeg.npy", "meg.npy", "points.tsv", "rows.tsv") : new SphereHeadChoice(sphere, "adult-4", 1),
+            Eeg = o.Eeg ? new EegChoice("ten-ten-64", null, null, new(ReferenceKind.Average, [])) : null,
+            Derivations = o.Eeg ? ["Cz-mastoids"] : [],
+            Meg = o.Meg ? new MegChoice(null, new("axial-gradiometer", 200, 0.06, 0.03, 0.17, -0.6)) : null,
+            Responses = [response],
+            Targets = targets,
+            Protocol = protocol,
+        };
+        long? session = o.Session ? 23_976 : null;
+        return new Assessment
+        {
+            Study = study,
+            Version = "0.1.0",
+            Inputs = [new("default study", "9f86d081884c7d659a2feaa0c55ad015a3bf4f1b2b0b822cd15d6c15b0f00a08")],
+            Assumptions =
+            [
+                new("head.spheres.preset", "adult-4", "", true, "stated by the study", null),
+                new("head.spheres.centre_mm", new double[] { 0, -18, 5 }, "mm", false, "fit to the inner skull of a real head", Grade.Derived),
+                new("noise.meg_sensor_fT_per_rtHz", 5.0, "fT/sqrt(Hz)", false, "typical axial gradiometer", Grade.Memory),
+                new("sensors.meg.sites", 200, "", true, "stated by the study", null),
+                new("noise.brain", true, "", false, "on because eeg_total is given", Grade.Derived),
+            ],
+            Warnings = ["The sphere is worst at the low brainstem: results for inferior-colliculus-left carry its misfit of 5.5 mm."],
+            Responses = [new(response, [.. o.Regions.Select((name, k) => Region(o, name, k, session, protocol))])],
+            SessionTrials = session,
+            Scene = Scene(o),
+        };
+    }
+
+    private static RegionResult Region(Options o, string name, int index, long? session, Protocol? protocol)
+    {
+        double factor = index == 0 ? 1 : 1 + 0.02 * index + (o.Regions.Count > 4 ? 0.6 * index : 0);
+        List<MeasureResult> rows = [];
+        List<VerdictResult> verdicts = [];
+        foreach ((Modality modality, double trials, string measure) in Modalities(o))
+        {
+            foreach (DirectionName direction in Directions)
+            {
+                if (direction == DirectionName.Given && o.Direction != DirectionName.Given)
+                {
+                    continue;
+                }
+
+                double gain = direction switch { DirectionName.Best => 0.6, DirectionName.QuasiRadial => 1.4, DirectionName.Isotropic => 1.2, _ => 1.0 };
+                bool silent = modality == Modality.Meg && direction == DirectionName.QuasiRadial && (o.MegSilent || o.Regions.Count <= 4);
+                rows.Add(Row(o, modality, direction, measure, trials * factor * gain, silent, session, protocol));
+                if (modality != Modality.Both)
+                {
+                    rows.Add(Row(o, modality, direction, Names.ChannelMean, trials * factor * gain * 3, silent, session, protocol));
+                }
+            }
+
+            foreach (string rule in o.Detection ? new[] { "amplitude_ratio", "detection" } : ["amplitude_ratio"])
+            {
+                MeasureResult row = rows.First(r => r.Modality == modality && r.Direction == o.Direction && r.Measure == measure);
+                long? count = row.Targets.First(t => t.Rule == rule).Trials.P50;
+                verdicts.Add(new VerdictResult
+                {
+                    Modality = modality,
+                    Rule = rule,
+                    Measure = measure,
+                    Direction = o.Direction,
+                    Text = count is null ? "Silent: a sphere gives no field outside for this direction." : $"{Names.Of(modality)} needs {count} trials by {rule}.",
+                    FitsSession = session is { } s ? count is { } n && n <= s : null,
+                    Chain = Chain(modality, measure, count, protocol),
+                });
+            }
+        }
+
+        return new RegionResult
+        {
+            Region = name,
+            Dipoles = 123 + index,
+            Dropped = index,
+            Spacing = 0.001,
+            Volume = (123 + index) * 1e-9,
+            Split = o.Meg ? new(new(1e-17, null, 2e-17, null, 4e-17), new(0.1, null, 0.2, null, 0.4), 0, 0) : null,
+            FieldCaptured = o.Meg ? 0.72 : null,
+            Results = rows,
+            Verdicts = verdicts,
+            Warnings = index == 0 ? [$"{name}: the field's maximum lies below the array's edge; the array captures 72 % of it."] : [],
+        };
+    }
+
+    private static IEnumerable<(Modality Modality, double Trials, string Measure)> Modalities(Options o)
+    {
+        if (o.Eeg)
+        {
+            yield return (Modality.Eeg, o.EegTrials, "Cz-mastoids");
+        }
+
+        if (o.Meg)
+        {
+            yield return (Modality.Meg, o.MegTrials, Names.BestChannel);
+        }
+
+        if (o.Eeg && o.Meg)
+        {
+            yield return (Modality.Both, o.JointTrials, "both");
+        }
+    }
+
+    private static MeasureResult Row(
+        Options o, Modality modality, DirectionName direction, string measure, double trials, bool silent, long? session, Protocol? protocol)
+    {
+        string unit = modality == Modality.Eeg ? "uV" : "fT";
+        double peak = modality == Modality.Eeg ? 0.2475 : 2.611;
+        if (silent)
+        {
+            const string Reason = "silent: below the rounding of the strongest direction";
+            return new(modality, direction, measure, null, new(null, null, null, null, null), Targets(o, null, session, protocol, Reason), Reason,
+                new LeakResult(0.06, Snr(trials * 280), Targets(o, trials * 280, session, protocol, null)));
+        }
+
+        PeakAmplitude? amplitude = modality == Modality.Both ? null : new(peak, unit, modality == Modality.Eeg ? "Cz-mastoids" : "A117");
+        return new(modality, direction, measure, amplitude, Snr(trials), Targets(o, trials, session, protocol, null, peak), null, null);
+    }
+
+    private static Percentiles Snr(double trials)
+    {
+        double Db(double factor) => 10 * Math.Log10(Ratio * Ratio / (trials * factor - 0.5));
+        return new(Db(1.22), Db(1.1), Db(1), Db(0.93), Db(0.83));
+    }
+
+    private static TargetResult[] Targets(Options o, double? trials, long? session, Protocol? protocol, string? reason, double? peak = null)
+    {
+        double[] factors = [0.83, 0.93, 1, 1.1, 1.22];
+        List<TargetResult> results = [];
+        foreach ((string rule, double scale) in o.Detection ? new[] { ("amplitude_ratio", 1.0), ("detection", 13.017 / 9) } : [("amplitude_ratio", 1.0)])
+        {
+            long?[] n = [.. factors.Select(f => trials is { } t ? (long?)Math.Ceiling(Math.Round(t * f * scale, 6)) : null)];
+            double? Minutes(long? count) => count is { } c && protocol is { } p ? c / (60 * p.Rate * (1 - p.RejectedFraction)) : null;
+            double? share = session is { } s && n[2] is { } median ? Math.Sqrt(median / (double)s) : null;
+            results.Add(new(rule, new(n[0], n[1], n[2], n[3], n[4]),
+                protocol is null ? null : new(Minutes(n[0]), Minutes(n[1]), Minutes(n[2]), Minutes(n[3]), Minutes(n[4])),
+                3.5e-9 * share, peak * share, reason));
+        }
+
+        return [.. results];
+    }
+
+    private static DerivedNumber[] Chain(Modality modality, string measure, long? trials, Protocol? protocol)
+    {
+        string unit = modality == Modality.Eeg ? "uV" : "fT";
+        List<DerivedNumber> chain =
+        [
+            new("q", "moment", 3.5, "nAm", "", "stated by the study", null),
+            new("g", $"amplitude per moment at {measure}", 0.2475 / 3.5, $"{unit}/nAm", "", "layered sphere, series of Legendre polynomials", Grade.Derived),
+            new("A", $"amplitude at {measure}", 0.2475, unit, "A = q g", "linear in the moment", Grade.Derived),
+            new("s", "noise rms in one trial, 100 to 1500 Hz", 1.4360140000000001, unit, "", "eeg_total of the study", null),
+            new("rho", "amplitude ratio wanted", Ratio, "", "", "stated by the study", null),
+        ];
+        if (trials is { } n)
+        {
+            chain.Add(new("N", "accepted trials", n, "trials", "N = ceil((rho s/A)^2)", "averaging of independent noise", Grade.Derived));
+            if (protocol is { } p)
+            {
+                chain.Add(new("r", "accepted trials a minute", 60 * p.Rate * (1 - p.RejectedFraction), "1/min", "r = 60 rate (1 - rejected)", "stated by the study", null));
+                chain.Add(new("T", "recording time", n / (60 * p.Rate * (1 - p.RejectedFraction)), "min", "T = N/r", "arithmetic", Grade.Derived));
+            }
+        }
+
+        return [.. chain];
+    }
+
+    private static Scene Scene(Options o)
+    {
+        Vec3 centre = new(0, -0.018, 0.005);
+        return new Scene
+        {
+            Centre = o.ImportedHead ? null : centre,
+            Layers = o.ImportedHead ? [] : [("brain", 0.078), ("csf", 0.080), ("skull", 0.086), ("scalp", 0.092)],
+            Electrodes = o.Eeg ? [.. Enumerable.Range(0, 64).Select(k => ($"E{k}", centre + 0.092 * GoldenSpiral.Point(k, 64, -0.3)))] : [],
+            CoilSites = o.Meg ? [.. Enumerable.Range(0, 200).Select(k => centre + 0.122 * GoldenSpiral.Point(k, 200, -0.3))] : [],
+            Regions = [.. o.Regions.Select((name, k) => (name, Points(o, k)))],
+        };
+    }
+
+    private static IReadOnlyList<Vec3> Points(Options o, int index)
+    {
+        Vec3 at = o.Regions.Count > 2
+            ? new(0.03 * Math.Cos(index), -0.02 + 0.03 * Math.Sin(2.3 * index), 0.004 * index - 0.03)
+            : new(index == 0 ? -0.006 : 0.006, -0.036, -0.011);
+        return [.. Enumerable.Range(0, 60).Select(k => at + 0.0032 * Math.Cbrt((k + 1) / 60.0) * GoldenSpiral.Point(k, 60))];
+    }
+
+    /// <summary>A chunk of dipoles for the table.</summary>
+    public static DipoleChunk Chunk(int count, int columns, int seed = 1)
+    {
+        Random random = new(seed);
+        double[][] snr = [.. Enumerable.Range(0, columns).Select(_ => Enumerable.Range(0, count).Select(_ => -60 * random.NextDouble()).ToArray())];
+        Vec3 Any() => new(random.NextDouble(), random.NextDouble(), random.NextDouble());
+        return new DipoleChunk
+        {
+            Response = "wave V",
+            Region = "thalamus-left",
+            Count = count,
+            Points = [.. Enumerable.Range(0, count).Select(k => $"p{k}")],
+            Positions = [.. Enumerable.Range(0, count).Select(_ => Si.FromMm(1) * Any())],
+            Directions = [.. Enumerable.Range(0, 3 * count).Select(_ => Any())],
+            SingularValues = [.. Enumerable.Range(0, count).Select(_ => Any())],
+            States = [.. Enumerable.Range(0, count).Select(_ => SplitState.Ok)],
+            SnrDb = snr,
+        };
+    }
+}
