@@ -19,8 +19,8 @@ internal static class UsageErrors
         Command command = parsed.CommandResult.Command;
         string[] options = [.. UnknownOptions(parsed)];
 
-        // Words that follow an unknown option are most often its value: only the option is named then.
-        string[] unknown = options.Length > 0 ? options : [.. parsed.UnmatchedTokens];
+        // Words that follow an unknown option are most often its value, words that follow an unknown command are its own: only the first mistake is named then.
+        string[] unknown = command is RootCommand && parsed.UnmatchedTokens is [{ } first, ..] && first[0] != '-' ? [first] : options.Length > 0 ? options : [.. parsed.UnmatchedTokens];
         foreach (string word in unknown)
         {
             error.WriteLine("error: " + Failure.OneLine(Unknown(word, command)));

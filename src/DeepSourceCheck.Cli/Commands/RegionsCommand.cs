@@ -1,5 +1,6 @@
 using System.CommandLine;
 using System.Globalization;
+using System.Text.Json;
 
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Core.Geometry;
@@ -45,7 +46,7 @@ internal static class RegionsCommand
 
     private static int ListLibrary(bool json, Surroundings surroundings)
     {
-        IReadOnlyList<LibraryRegion> library = RegionLibrary.All;
+        IReadOnlyList<LibraryRegion> library = RegionLibrary.Load().Regions;
         if (json)
         {
             JsonOutput.Object(surroundings.Out, writer =>
@@ -53,14 +54,7 @@ internal static class RegionsCommand
                 writer.WriteStartArray("regions");
                 foreach (LibraryRegion region in library)
                 {
-                    writer.WriteStartObject();
-                    writer.WriteString("name", region.Name);
-                    writer.WriteString("frame", region.Frame);
-                    writer.Point("centre_mm", region.Centre);
-                    writer.Number("volume_mL", Si.ToMillilitres(region.Volume));
-                    writer.WriteString("source", region.Source);
-                    writer.WriteString("grade", Names.Of(region.Grade));
-                    writer.WriteEndObject();
+                    Write(writer, region);
                 }
 
                 writer.WriteEndArray();
@@ -68,11 +62,12 @@ internal static class RegionsCommand
             return ExitStatus.Done;
         }
 
-        surroundings.Out.WriteLine($"{"region",-34}{"mL",8}  {"centre, mm",-18}source");
+        surroundings.Out.WriteLine($"{"region",-34}{"mL",8}  {"centre, mm",-18}source of the volume");
         foreach (LibraryRegion region in library)
         {
-            surroundings.Out.WriteLine(string.Create(CultureInfo.InvariantCulture,
-                $"{region.Name,-34}{Si.ToMillilitres(region.Volume),8:0.000}  {Millimetres(region.Centre, "0.#"),-18}{region.Source} ({Names.Of(region.Grade)})"));
+            string volume = region.Shape is { } shape ? Si.ToMillilitres(shape.Volume).ToString("0.000", CultureInfo.InvariantCulture) : "-";
+            string centre = region.Shape is { } placed ? Millimetres(placed.Centre, "0.#") : "-";
+            surroundings.Out.WriteLine($"{region.Name,-34}{volume,8}  {centre,-18}{region.VolumeSource} ({Names.Of(region.VolumeGrade)})");
         }
 
         surroundings.Out.WriteLine();
@@ -81,20 +76,48 @@ internal static class RegionsCommand
             surroundings.Out.WriteLine("Frame: " + frame);
         }
 
+        foreach (LibraryRegion region in library.Where(r => r.SphereLimits is not null).DistinctBy(r => r.SphereLimits))
+        {
+            surroundings.Out.WriteLine($"On spherical heads, {region.Structure}: {region.SphereLimits}");
+        }
+
         return ExitStatus.Done;
+    }
+
+    private static void Write(Utf8JsonWriter writer, LibraryRegion region)
+    {
+        writer.WriteStartObject();
+        writer.WriteString("name", region.Name);
+        writer.WriteString("side", region.Side);
+        writer.WriteString("frame", region.Frame);
+        if (region.Shape is { } shape)
+        {
+            writer.Point("centre_mm", shape.Centre);
+            writer.Point("semi_axes_mm", shape.SemiAxes);
+        }
+
+        writer.Number("volume_mL", region.Shape is { } whole ? Si.ToMillilitres(whole.Volume) : null);
+        writer.WriteString("volume_source", region.VolumeSource);
+        writer.WriteString("volume_grade", Names.Of(region.VolumeGrade));
+        writer.WriteString("place_source", region.PlaceSource);
+        writer.WriteString("place_grade", Names.Of(region.PlaceGrade));
+        writer.WriteString("sphere_limits", region.SphereLimits);
+        writer.WriteString("note", region.Note);
+        writer.WriteEndObject();
     }
 
     private static int ListMask(string file, bool json, Surroundings surroundings)
     {
         surroundings.Interruption.Token.ThrowIfCancellationRequested();
-        LabelVolume volume = NiftiReader.Read(file);
-        IReadOnlyList<LabelEntry> labels = LabelListing.Of(volume);
+        NiftiVolume volume = NiftiReader.Read(file, file);
+        var listing = LabelListing.Of(volume.Volume);
+        string[] warnings = [.. volume.Warnings, .. listing.Warnings];
         if (json)
         {
             JsonOutput.Object(surroundings.Out, writer =>
             {
                 writer.WriteStartArray("labels");
-                foreach (LabelEntry label in labels)
+                foreach (LabelEntry label in listing.Entries)
                 {
                     writer.WriteStartObject();
                     writer.WriteNumber("label", label.Label);
@@ -106,17 +129,17 @@ internal static class RegionsCommand
                 }
 
                 writer.WriteEndArray();
-                writer.Strings("warnings", volume.Warnings);
+                writer.Strings("warnings", warnings);
             });
             return ExitStatus.Done;
         }
 
-        surroundings.Warn(volume.Warnings);
+        surroundings.Warn(warnings);
         surroundings.Out.WriteLine($"{"label",10}{"voxels",12}{"mL",12}  {"centroid, mm",-26}side");
-        foreach (LabelEntry label in labels)
+        foreach (LabelEntry label in listing.Entries)
         {
             surroundings.Out.WriteLine(string.Create(CultureInfo.InvariantCulture,
-                $"{label.Label,10:0.######}{label.Voxels,12:#,0}{Si.ToMillilitres(label.Volume),12:0.000}  {Millimetres(label.Centroid, "0.0"),-26}{label.Side}"));
+                $"{label.Label,10}{label.Voxels,12:#,0}{Si.ToMillilitres(label.Volume),12:0.000}  {Millimetres(label.Centroid, "0.0"),-26}{label.Side}"));
         }
 
         return ExitStatus.Done;

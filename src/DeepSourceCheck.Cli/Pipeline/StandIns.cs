@@ -78,30 +78,38 @@ namespace DeepSourceCheck.Files.Studies
 
 namespace DeepSourceCheck.Files.Regions
 {
-    internal sealed record LibraryRegion(string Name, string Frame, Core.Geometry.Vec3 Centre, double Volume, string Source, Core.Studies.Grade Grade);
-
-    internal static class RegionLibrary
+    internal sealed class RegionLibrary
     {
-        public static IReadOnlyList<LibraryRegion> All => throw Report.StandIn.Absent();
+        public IReadOnlyList<Core.Regions.LibraryRegion> Regions => throw Report.StandIn.Absent();
+
+        public static RegionLibrary Load() => throw Report.StandIn.Absent();
     }
 }
 
 namespace DeepSourceCheck.Files.Nifti
 {
-    internal sealed record LabelVolume(IReadOnlyList<string> Warnings);
+    internal sealed record NiftiVolume(Core.Regions.ValueVolume Volume, IReadOnlyList<string> Warnings);
 
     internal static class NiftiReader
     {
-        public static LabelVolume Read(string path) => throw Report.StandIn.Absent();
+        public static NiftiVolume Read(string path, string displayName) => throw Report.StandIn.Absent();
     }
 }
 
 namespace DeepSourceCheck.Core.Regions
 {
-    internal sealed record LabelEntry(double Label, long Voxels, double Volume, Geometry.Vec3 Centroid, string Side);
+    internal sealed record ValueVolume;
 
-    internal static class LabelListing
+    internal sealed record Ellipsoid(Geometry.Vec3 Centre, Geometry.Vec3 SemiAxes, double Volume);
+
+    internal sealed record LibraryRegion(
+        string Name, string Structure, string Side, string Frame, Ellipsoid? Shape, string VolumeSource, Studies.Grade VolumeGrade, string PlaceSource, Studies.Grade PlaceGrade,
+        string? SphereLimits, string Note);
+
+    internal sealed record LabelEntry(long Label, int Voxels, double Volume, Geometry.Vec3 Centroid, string Side);
+
+    internal sealed record LabelListing(IReadOnlyList<LabelEntry> Entries, IReadOnlyList<string> Warnings)
     {
-        public static IReadOnlyList<LabelEntry> Of(Files.Nifti.LabelVolume volume) => throw Report.StandIn.Absent();
+        public static LabelListing Of(ValueVolume volume) => throw Report.StandIn.Absent();
     }
 }
