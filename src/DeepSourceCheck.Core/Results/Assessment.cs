@@ -88,7 +88,7 @@ public sealed record VerdictResult
     /// <summary>Whether the median count fits the session; null without a session.</summary>
     public bool? FitsSession { get; init; }
 
-    /// <summary>Share of the sampled unknowns' worlds in which the session suffices; null without unknowns.</summary>
+    /// <summary>Mean power over what is not known, as a fraction; null without unknowns.</summary>
     public double? Assurance { get; init; }
 
     /// <summary>The chain for the dipole at the median: what `why` prints.</summary>
