@@ -1,6 +1,6 @@
 namespace DeepSourceCheck.Core.Geometry;
 
-/// <summary>A rotation of three-dimensional space, as a 3 x 3 orthonormal matrix.</summary>
+/// <summary>A rotation of three-dimensional space, as a 3 x 3 orthonormal matrix without unit; what it turns keeps its unit.</summary>
 /// <param name="Row0">First row.</param>
 /// <param name="Row1">Second row.</param>
 /// <param name="Row2">Third row.</param>

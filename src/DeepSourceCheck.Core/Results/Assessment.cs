@@ -16,7 +16,7 @@ public enum Modality
     Both,
 }
 
-/// <summary>Percentiles by linear interpolation; null where the value is minus infinity or undefined.</summary>
+/// <summary>Percentiles by linear interpolation, in the unit of their quantity; null where the value is minus infinity or undefined.</summary>
 public sealed record Percentiles(double? P05, double? P25, double? P50, double? P75, double? P95);
 
 /// <summary>Percentiles of counts by nearest rank; null where not reachable.</summary>
@@ -88,7 +88,7 @@ public sealed record VerdictResult
     /// <summary>Whether the median count fits the session; null without a session.</summary>
     public bool? FitsSession { get; init; }
 
-    /// <summary>Null without unknowns.</summary>
+    /// <summary>Mean power over what is not known, as a fraction; null without unknowns.</summary>
     public double? Assurance { get; init; }
 
     /// <summary>The chain for the dipole at the median: what `why` prints.</summary>

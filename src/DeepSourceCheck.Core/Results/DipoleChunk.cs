@@ -43,7 +43,7 @@ public sealed class DipoleChunk
     /// <summary>Positions [m].</summary>
     public required Vec3[] Positions { get; init; }
 
-    /// <summary>v1, v2, v3 of each dipole; NaN where undefined.</summary>
+    /// <summary>Unit vectors v1, v2, v3 of each dipole; NaN where undefined.</summary>
     public required Vec3[] Directions { get; init; }
 
     /// <summary>s1, s2, s3 of each dipole [1/(A m)]; NaN where there is no MEG leadfield.</summary>

@@ -14,6 +14,6 @@ public readonly record struct CoilPoint(Vec3 Position, Vec3 Axis, double Share);
 /// <param name="Points">At least one.</param>
 public sealed record MegChannel(string Name, CoilKind Kind, IReadOnlyList<CoilPoint> Points)
 {
-    /// <summary>Where the channel sits: its first point.</summary>
+    /// <summary>Where the channel sits: its first point [m].</summary>
     public Vec3 Site => Points[0].Position;
 }

@@ -148,8 +148,8 @@ public sealed record EegTotalChoice(double Rms, string Derivation, Band Band);
 
 /// <summary>A covariance file.</summary>
 /// <param name="File">Path relative to the study.</param>
-/// <param name="Samples">Independent samples it was estimated from; null: exact.</param>
-/// <param name="AveragedTrials">Trials that were averaged before it was estimated.</param>
+/// <param name="Samples">Number of independent samples it was estimated from; null: exact.</param>
+/// <param name="AveragedTrials">Number of trials that were averaged before it was estimated.</param>
 public sealed record CovarianceChoice(string File, double? Samples, double AveragedTrials);
 
 /// <summary>A region of the study's own. Exactly one of ellipsoid, mask, points.</summary>
@@ -170,7 +170,7 @@ public sealed record RegionChoice
     /// <summary>NIfTI mask: path relative to the study.</summary>
     public string? Mask { get; init; }
 
-    /// <summary>Label in the mask.</summary>
+    /// <summary>Label in the mask, without unit.</summary>
     public double? Label { get; init; }
 
     /// <summary>Threshold of a probability mask: values of at least this are inside.</summary>
@@ -279,7 +279,7 @@ public sealed record AmplitudeRatioChoice(double Ratio) : TargetChoice;
 /// <summary>Detection at known topography and covariance, one-sided.</summary>
 /// <param name="Alpha">False-alarm rate over all looks.</param>
 /// <param name="Power">Probability of detecting the response.</param>
-/// <param name="Looks">Independent looks K that are searched.</param>
+/// <param name="Looks">Number K of independent looks that are searched.</param>
 public sealed record DetectionChoice(double Alpha, double Power, double Looks) : TargetChoice;
 
 /// <summary>What the session affords.</summary>

@@ -1,0 +1,111 @@
+using System.CommandLine;
+
+using DeepSourceCheck.Cli.Output;
+using DeepSourceCheck.Cli.Pipeline;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Report;
+using DeepSourceCheck.Report.Console;
+using DeepSourceCheck.Report.Tables;
+
+namespace DeepSourceCheck.Cli.Commands;
+
+/// <summary>`assess [STUDY]`: the main job, from a study to a folder of results and a summary.</summary>
+internal static class AssessCommand
+{
+    /// <summary>Folder of results where `--out` does not name one.</summary>
+    public const string DefaultFolder = "deepsourcecheck-results";
+
+    /// <summary>Parts of the result that may be left out.</summary>
+    public static readonly IReadOnlyList<string> Parts = ["dipoles", "figures", "report", "maps"];
+
+    public static Command Create(Surroundings surroundings)
+    {
+        Argument<string?> study = SharedOptions.OptionalStudy();
+        Option<string> outFolder = SharedOptions.Out($"Folder of the results; {DefaultFolder} where it is left out. An earlier result is replaced whole, any other existing folder is refused.", required: false);
+        var without = new Option<IReadOnlySet<string>>("--without")
+        {
+            Description = "Leave parts out: dipoles, figures, report, maps; several with commas. regions.csv and assessment.json are always written.",
+            HelpName = "PARTS",
+            CustomParser = SharedOptions.Single<IReadOnlySet<string>>("--without", "one or more of " + string.Join(", ", Parts) + ", separated by commas", ReadParts),
+        };
+        without.CompletionSources.Add([.. Parts]);
+        Option<bool> json = SharedOptions.Json();
+        Option<long?> memory = SharedOptions.Memory();
+        var command = new TaughtCommand("assess", "say whether the response can be detected, with what, in how many trials")
+        {
+            About =
+            [
+                "The main job. Fills each region with dipoles, computes what EEG and MEG see of them, splits the directions, sets the signal against the noise of one trial, and answers for EEG, MEG and both: trials and minutes to the target, whether the session suffices, and the smallest source that it would show.",
+                "Prints the answer and writes a folder: report.html (start there), assessment.json, regions.csv, dipoles.csv and figures. It is written under a temporary name and renamed at the end, so that it is whole or absent.",
+            ],
+            Examples =
+            [
+                new("deepsourcecheck assess", $"The embedded default study, into {DefaultFolder}."),
+                new("deepsourcecheck assess my-study/study.yaml --out my-study/results", "Your own study."),
+                new("deepsourcecheck assess my-study/study.yaml --without dipoles,figures --json", "For scripts: no large files, and the answer as JSON on standard output."),
+            ],
+        };
+        command.Add(study);
+        command.Add(outFolder);
+        command.Add(without);
+        command.Add(json);
+        command.Add(memory);
+        command.SetAction(parsed => Run(
+            parsed.GetValue(study), parsed.GetValue(outFolder) ?? DefaultFolder, parsed.GetValue(without) ?? new HashSet<string>(), parsed.GetValue(json), parsed.GetValue(memory), surroundings));
+        return command;
+    }
+
+    private static int Run(string? study, string outFolder, IReadOnlySet<string> without, bool json, long? memory, Surroundings surroundings)
+    {
+        CancellationToken cancellation = surroundings.Interruption.Token;
+        string? path = SharedOptions.Checked(study);
+        ResultFolder.CheckTarget(outFolder, ResultFolderKind.Assessment);
+        Assessment assessment;
+        using (ProgressLine? line = surroundings.ErrorIsTerminal ? new ProgressLine(surroundings.Error, surroundings.Columns) : null)
+        {
+            var settings = new RunSettings(memory, without, line is null ? null : line.Report, cancellation);
+            PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Assess, settings);
+            SharedOptions.RefuseOverBudget(prepared, memory);
+            using ResultFolder folder = ResultFolder.Create(outFolder, ResultFolderKind.Assessment);
+            using IDisposable guard = surroundings.Interruption.Guard(() => Discard.Whole(folder));
+            assessment = Assess(prepared, settings, folder.Folder, surroundings);
+            line?.Report("writing", 0);
+            ReportWriter.Write(assessment, folder.Folder, without);
+            cancellation.ThrowIfCancellationRequested();
+            folder.Commit();
+        }
+
+        if (json)
+        {
+            using var bytes = new MemoryStream();
+            AssessmentJson.Write(assessment, bytes);
+            JsonOutput.Bytes(surroundings.Out, bytes);
+        }
+        else
+        {
+            surroundings.Warn(assessment.Warnings);
+            string text = ConsoleSummary.Format(assessment, outFolder, surroundings.OutIsTerminal, surroundings.Unicode, surroundings.Color);
+            surroundings.Out.WriteLine(text.TrimEnd());
+        }
+
+        return ExitStatus.Done;
+    }
+
+    private static Assessment Assess(PreparedStudy prepared, RunSettings settings, string folder, Surroundings surroundings)
+    {
+        if (settings.Without.Contains("dipoles"))
+        {
+            return surroundings.Steps.Assess(prepared, settings, null);
+        }
+
+        var stream = new FileStream(Path.Combine(folder, "dipoles.csv"), FileMode.CreateNew, FileAccess.Write, FileShare.Read, 1 << 20);
+        using var dipoles = new DipolesCsv(stream);
+        return surroundings.Steps.Assess(prepared, settings, dipoles);
+    }
+
+    private static HashSet<string>? ReadParts(string text)
+    {
+        string[] parts = text.Split(',', StringSplitOptions.TrimEntries);
+        return parts.All(Parts.Contains) ? [.. parts] : null;
+    }
+}

@@ -1,0 +1,139 @@
+using System.CommandLine;
+using System.Globalization;
+
+using DeepSourceCheck.Cli.Output;
+using DeepSourceCheck.Cli.Pipeline;
+using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Cli.Commands;
+
+/// <summary>`check [STUDY]`: validates everything, computes nothing, prints what would run.</summary>
+internal static class CheckCommand
+{
+    public static Command Create(Surroundings surroundings)
+    {
+        Argument<string?> study = SharedOptions.OptionalStudy();
+        Option<bool> json = SharedOptions.Json();
+        Option<long?> memory = SharedOptions.Memory();
+        var command = new TaughtCommand("check", "validate a study and print what would run, without computing")
+        {
+            About =
+            [
+                "Reads the study and every file that it names, reports all problems at once with file, line, column and key, and warns of implausible values. Of a sound study it prints head, channels, regions, dipoles, every default that would enter the answer, and the time and memory that `assess` would take.",
+                "Nothing is computed and nothing is written.",
+            ],
+            Examples =
+            [
+                new("deepsourcecheck check my-study/study.yaml", "Find mistakes before a long run."),
+                new("deepsourcecheck check my-study/study.yaml --memory 4GB", "Also ask whether it fits into 4 GB: exit status 2 where it does not."),
+            ],
+        };
+        command.Add(study);
+        command.Add(json);
+        command.Add(memory);
+        command.SetAction(parsed => Run(parsed.GetValue(study), parsed.GetValue(json), parsed.GetValue(memory), surroundings));
+        return command;
+    }
+
+    private static int Run(string? study, bool json, long? memory, Surroundings surroundings)
+    {
+        var settings = new RunSettings(memory, new HashSet<string>(), null, surroundings.Interruption.Token);
+        string? path = SharedOptions.Checked(study);
+        PreparedStudy prepared = Prepare(path, settings, surroundings);
+        SharedOptions.RefuseOverBudget(prepared, memory);
+        if (json)
+        {
+            WriteJson(prepared, surroundings);
+        }
+        else
+        {
+            surroundings.Warn(prepared.Warnings);
+            WriteText(prepared, surroundings.Out);
+        }
+
+        return ExitStatus.Done;
+    }
+
+    /// <summary>A study without responses serves `leadfield` alone, and is checked for that.</summary>
+    private static PreparedStudy Prepare(string? path, RunSettings settings, Surroundings surroundings)
+    {
+        PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Leadfield, settings);
+        return prepared.Study.Responses.Count > 0 ? surroundings.Steps.Prepare(path, Purpose.Assess, settings) : prepared;
+    }
+
+    private static void WriteText(PreparedStudy prepared, TextWriter to)
+    {
+        Study study = prepared.Study;
+        void Row(string name, string value) => to.WriteLine($"{name,-12}{value}");
+        to.WriteLine(Failure.OneLine(study.Title));
+        Row("study", study.File);
+        Row("head", HeadName(study));
+        Row("channels", string.Create(CultureInfo.InvariantCulture, $"{prepared.Electrodes:#,0} electrodes, {prepared.MegChannels:#,0} MEG channels"));
+        Row("dipoles", string.Create(CultureInfo.InvariantCulture, $"{prepared.Dipoles:#,0} in {prepared.Regions.Count} region{(prepared.Regions.Count == 1 ? "" : "s")}"));
+        int width = prepared.Regions.Select(r => r.Region.Length).DefaultIfEmpty().Max();
+        foreach ((string region, long dipoles, double? spacing) in prepared.Regions)
+        {
+            string apart = spacing is { } mm ? string.Create(CultureInfo.InvariantCulture, $", {mm:0.###} mm apart") : "";
+            Row("", string.Create(CultureInfo.InvariantCulture, $"{region.PadRight(width)}  {dipoles,9:#,0}{apart}"));
+        }
+
+        Row("responses", study.Responses.Count > 0 ? string.Join(", ", study.Responses.Select(r => r.Name)) : "none: this study serves `leadfield` alone");
+        Row("takes about", $"{Durations.Rough(prepared.PredictedSeconds)}, {MemorySize.Rough(prepared.PredictedMemory)}");
+        Assumption[] defaults = [.. prepared.Assumptions.Where(a => !a.FromStudy)];
+        if (defaults.Length > 0)
+        {
+            to.WriteLine();
+            to.WriteLine("Not stated by the study, so these defaults enter:");
+            foreach (Assumption assumption in defaults)
+            {
+                to.WriteLine("  " + Failure.OneLine(AssumptionText.Line(assumption)));
+            }
+        }
+
+        to.WriteLine();
+        to.WriteLine("The study is sound. Nothing was computed or written.");
+    }
+
+    private static void WriteJson(PreparedStudy prepared, Surroundings surroundings) => JsonOutput.Object(surroundings.Out, json =>
+    {
+        json.WriteString("study", prepared.Study.File);
+        json.WriteString("title", prepared.Study.Title);
+        json.WriteString("head", HeadName(prepared.Study));
+        json.WriteNumber("electrodes", prepared.Electrodes);
+        json.WriteNumber("meg_channels", prepared.MegChannels);
+        json.WriteNumber("dipoles", prepared.Dipoles);
+        json.WriteStartArray("regions");
+        foreach ((string region, long dipoles, double? spacing) in prepared.Regions)
+        {
+            json.WriteStartObject();
+            json.WriteString("region", region);
+            json.WriteNumber("dipoles", dipoles);
+            json.Number("spacing_mm", spacing);
+            json.WriteEndObject();
+        }
+
+        json.WriteEndArray();
+        json.Strings("responses", prepared.Study.Responses.Select(r => r.Name));
+        json.WriteNumber("predicted_memory_bytes", prepared.PredictedMemory);
+        json.Number("predicted_seconds", prepared.PredictedSeconds);
+        json.WriteStartArray("assumptions");
+        foreach (Assumption assumption in prepared.Assumptions)
+        {
+            AssumptionText.Write(json, assumption);
+        }
+
+        json.WriteEndArray();
+        json.Strings("warnings", prepared.Warnings);
+    });
+
+    private static string HeadName(Study study) => study.Head switch
+    {
+        SphereHeadChoice { Preset: { } preset, Sphere: var sphere } => $"spheres: {preset}, {Layers(sphere)}",
+        SphereHeadChoice { Sphere: var sphere } => $"spheres: {Layers(sphere)}",
+        _ => new ImportedHead().Name,
+    };
+
+    private static string Layers(LayeredSphere sphere) =>
+        string.Join(", ", sphere.Layers.Select(l => string.Create(CultureInfo.InvariantCulture, $"{l.Tissue} {Core.Units.Si.ToMm(l.OuterRadius):0.##} mm")));
+}
