@@ -1,4 +1,5 @@
 using DeepSourceCheck.Cli.Pipeline;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Results;
 
 namespace DeepSourceCheck.Cli;

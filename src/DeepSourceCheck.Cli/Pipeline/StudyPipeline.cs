@@ -1,69 +1,75 @@
+using System.Reflection;
+
+using DeepSourceCheck.Core.Planning;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Files.Regions;
+using DeepSourceCheck.Files.Studies;
 
 namespace DeepSourceCheck.Cli.Pipeline;
 
-/// <summary>What a study is prepared for: a leadfield needs no responses, noise, target or protocol.</summary>
-internal enum Purpose
-{
-    /// <summary>The whole assessment.</summary>
-    Assess,
-
-    /// <summary>Leadfields alone.</summary>
-    Leadfield,
-}
-
-/// <summary>How a run goes, apart from what is computed.</summary>
-/// <param name="MemoryBudget">Memory [bytes] against which the run is refused; null: none was stated.</param>
-/// <param name="Without">Parts of the result that are left out: dipoles, figures, report, maps.</param>
-/// <param name="Progress">Told the stage and the fraction of it that is done, 0 to 1; from any thread. Null: nobody watches.</param>
-/// <param name="Cancellation">Ends the run.</param>
-internal sealed record RunSettings(long? MemoryBudget, IReadOnlySet<string> Without, Action<string, double>? Progress, CancellationToken Cancellation);
-
-/// <summary>A study that was read and found sound.</summary>
-internal sealed class PreparedStudy
-{
-    /// <summary>The study.</summary>
-    public required Study Study { get; init; }
-
-    /// <summary>Warnings, gravest first.</summary>
-    public IReadOnlyList<string> Warnings { get; init; } = [];
-
-    /// <summary>Every value that would enter.</summary>
-    public IReadOnlyList<Assumption> Assumptions { get; init; } = [];
-
-    /// <summary>Electrodes in use.</summary>
-    public int Electrodes { get; init; }
-
-    /// <summary>MEG channels in use.</summary>
-    public int MegChannels { get; init; }
-
-    /// <summary>Dipoles in all regions.</summary>
-    public long Dipoles { get; init; }
-
-    /// <summary>Regions with their dipoles and spacing [mm]; null for points.</summary>
-    public IReadOnlyList<(string Region, long Dipoles, double? SpacingMm)> Regions { get; init; } = [];
-
-    /// <summary>Predicted peak memory [bytes].</summary>
-    public long PredictedMemory { get; init; }
-
-    /// <summary>Predicted time [s].</summary>
-    public double PredictedSeconds { get; init; }
-}
-
-/// <summary>The flow from a study file to its results.</summary>
+/// <summary>The flow from a study file to its results, on one page.</summary>
 internal static class StudyPipeline
 {
+    /// <summary>Version of the program.</summary>
+    public static string Version { get; } =
+        typeof(StudyPipeline).Assembly.GetCustomAttribute<AssemblyInformationalVersionAttribute>()?.InformationalVersion ?? "0";
+
     /// <summary>Reads and validates everything that the purpose needs.</summary>
+    /// <param name="studyPath">Study file; null: the embedded default.</param>
+    /// <param name="purpose">What the study is read for.</param>
+    /// <param name="settings">Budget, cancellation.</param>
     /// <exception cref="InputException">The input is wrong.</exception>
-    public static PreparedStudy Prepare(string? studyPath, Purpose purpose, RunSettings settings) =>
-        throw new InvalidOperationException("the pipeline is not part of this branch");
+    public static PreparedStudy Prepare(string? studyPath, Purpose purpose, RunSettings settings)
+    {
+        settings.Progress?.Invoke("reading", 0);
+        RegionLibrary library = RegionLibrary.Load();
+        string[] names = [.. library.Names];
+        StudyReading reading = studyPath is null ? DefaultStudy.Read(purpose, names) : StudyReader.Read(studyPath, purpose, names);
+        var inputs = new InputDigests(reading);
+        var warnings = new List<string>(reading.Warnings);
+        settings.Cancellation.ThrowIfCancellationRequested();
+
+        SensorAssembly sensors = SensorAssembly.Build(reading, inputs, warnings);
+        settings.Cancellation.ThrowIfCancellationRequested();
+        var regions = new RegionAssembly(reading, library, sensors, inputs, purpose, settings);
+        warnings.AddRange(regions.Warnings);
+        StudySetup setup = sensors.Setup(reading.Study, regions.Filled);
+        if (purpose == Purpose.Assess)
+        {
+            setup = setup with { Noise = NoiseAssembly.Build(reading, sensors, inputs, warnings) };
+        }
+
+        return new PreparedStudy
+        {
+            Reading = reading,
+            Setup = setup,
+            Inputs = inputs.Files,
+            Warnings = [.. warnings.Distinct()],
+            PredictedMemory = Prediction.Memory(setup, purpose),
+            PredictedSeconds = Prediction.Seconds(setup, purpose),
+        };
+    }
 
     /// <summary>Computes the assessment; dipole results stream into the sink.</summary>
-    public static Assessment Assess(PreparedStudy prepared, RunSettings settings, IDipoleSink? dipoles) =>
-        throw new InvalidOperationException("the pipeline is not part of this branch");
+    /// <exception cref="InputException">A predicted amplitude is too large to be meant.</exception>
+    public static Assessment Assess(PreparedStudy prepared, RunSettings settings, IDipoleSink? dipoles)
+    {
+        IReadOnlyList<ResponseResult> responses = Assessor.Assess(prepared.Setup, dipoles, settings.Progress, settings.Cancellation);
+        IReadOnlyList<string> amplitudes = AmplitudeCheck.Judge(prepared.Reading, responses);
+        return new Assessment
+        {
+            Study = prepared.Study,
+            Version = Version,
+            Inputs = prepared.Inputs,
+            Assumptions = prepared.Assumptions,
+            Warnings = [.. amplitudes.Concat(prepared.Warnings).Concat(responses.SelectMany(r => r.Regions).SelectMany(r => r.Warnings)).Distinct()],
+            Responses = responses,
+            SessionTrials = SessionPlan.Trials(prepared.Study.Protocol),
+            Scene = prepared.Setup.Scene,
+        };
+    }
 
     /// <summary>Writes the leadfields of every region into a folder that exists.</summary>
-    public static void WriteLeadfield(PreparedStudy prepared, string folder, RunSettings settings) =>
-        throw new InvalidOperationException("the pipeline is not part of this branch");
+    public static void WriteLeadfield(PreparedStudy prepared, string folder, RunSettings settings) => LeadfieldWriter.Write(prepared, folder, settings);
 }

@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
@@ -32,6 +33,9 @@ public sealed record StudySetup
 
     /// <summary>Kinds of the MEG rows.</summary>
     public IReadOnlyList<CoilKind> MegKinds { get; init; } = [];
+
+    /// <summary>Places of the MEG rows [m]; empty where not known.</summary>
+    public IReadOnlyList<Vec3> MegSites { get; init; } = [];
 
     /// <summary>False where the MEG rows are a built-in array that serves the split alone.</summary>
     public bool MegReported { get; init; }

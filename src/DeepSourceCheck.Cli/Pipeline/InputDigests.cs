@@ -1,0 +1,44 @@
+using System.Security.Cryptography;
+using System.Text;
+
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Files.Studies;
+
+namespace DeepSourceCheck.Cli.Pipeline;
+
+/// <summary>Files that a study names: where they are, and the digests of those that were read.</summary>
+internal sealed class InputDigests
+{
+    private readonly StudyReading _reading;
+    private readonly List<InputFile> _files;
+
+    public InputDigests(StudyReading reading)
+    {
+        _reading = reading;
+        _files = [new InputFile(reading.Study.File, Hex(SHA256.HashData(Encoding.UTF8.GetBytes(reading.Text))))];
+    }
+
+    /// <summary>The study, then its files in the order in which they were read.</summary>
+    public IReadOnlyList<InputFile> Files => _files;
+
+    /// <summary>Full path of a file that the study names.</summary>
+    public string Locate(string name) => Path.Combine(_reading.Study.Folder, name);
+
+    /// <summary>Notes a file that was read and returns its path and the name for messages.</summary>
+    public (string Path, string Display) Use(string name)
+    {
+        string path = Locate(name);
+        if (_files.All(f => f.Path != name) && File.Exists(path))
+        {
+            using var stream = new FileStream(path, FileMode.Open, FileAccess.Read, FileShare.Read, 1 << 20, FileOptions.SequentialScan);
+            _files.Add(new InputFile(name, Hex(SHA256.HashData(stream))));
+        }
+
+        return (path, name);
+    }
+
+    /// <summary>Likewise for a file that may not be named.</summary>
+    public (string Path, string Display)? UseIfNamed(string? name) => name is null ? null : Use(name);
+
+    private static string Hex(byte[] digest) => Convert.ToHexStringLower(digest);
+}

@@ -1,0 +1,158 @@
+using System.Globalization;
+
+using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Leadfields.Spheres;
+using DeepSourceCheck.Core.Noise;
+using DeepSourceCheck.Core.Regions;
+using DeepSourceCheck.Core.Sensors;
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
+using DeepSourceCheck.Files.Npy;
+using DeepSourceCheck.Files.Studies;
+
+namespace DeepSourceCheck.Cli.Pipeline;
+
+/// <summary>The noise of a study at its sensors.</summary>
+internal static class NoiseAssembly
+{
+    // Places of the background sources on the cortical shell, and sites of the magnetometers to which the MEG table refers.
+    private const int BackgroundPlaces = 500;
+    private const int TableSites = 200;
+
+    // Least density [V or T per sqrt(Hz)] of the usual instruments: a measured covariance cannot be far below it.
+    private static readonly double QuietestAmplifier = Si.FromNanovolts(2), QuietestSensor = Si.FromFemtotesla(0.2), QuietestPlanar = Si.FromFemtoteslaPerCm(0.5);
+
+    /// <summary>Builds the noise model and judges what the study states.</summary>
+    /// <param name="reading">The study as read.</param>
+    /// <param name="sensors">Sensors and head.</param>
+    /// <param name="inputs">Receives the files that are read.</param>
+    /// <param name="warnings">Receives what the user must know.</param>
+    /// <exception cref="InputException">Noise that contradicts itself or cannot be meant.</exception>
+    public static NoiseModel Build(StudyReading reading, SensorAssembly sensors, InputDigests inputs, List<string> warnings)
+    {
+        Study study = reading.Study;
+        NoiseChoice choice = study.Noise ?? new NoiseChoice();
+        double[]? eegCovariance = Covariance(reading, choice.EegCovariance, "noise.eeg_covariance", sensors.Electrodes.Count, inputs);
+        double[]? megCovariance = sensors.MegReported ? Covariance(reading, choice.MegCovariance, "noise.meg_covariance", sensors.MegNames.Count, inputs) : null;
+        JudgeTotal(reading, choice, warnings);
+        foreach (Response response in study.Responses)
+        {
+            JudgeCovariance(reading, eegCovariance, "noise.eeg_covariance", response, _ => QuietestAmplifier, "V", warnings);
+            JudgeCovariance(reading, megCovariance, "noise.meg_covariance", response,
+                k => sensors.MegKinds[k] == CoilKind.PlanarGradiometer ? QuietestPlanar : QuietestSensor, "T", warnings);
+        }
+
+        double[]? total = choice.EegTotal is { } stated && sensors.Electrodes.Count > 0
+            ? Derivation.Parse(stated.Derivation, [.. sensors.Electrodes.Select(e => e.Name)], study.Eeg?.Layout is not null, "noise.eeg_total.derivation").Weights(sensors.Electrodes)
+            : null;
+        bool spectral = (sensors.Electrodes.Count > 0 && eegCovariance is null && choice.EegRms is null)
+            || (sensors.MegReported && megCovariance is null && choice.MegRms is null);
+        BackgroundField? background = sensors.Sphere is { } sphere && spectral && NoiseBuilder.WantsBrain(choice) ? Background(sphere, sensors) : null;
+        if (sensors.Sphere is null && NoiseBuilder.WantsBrain(choice) && spectral)
+        {
+            warnings.Add("with imported leadfields there is no brain noise: the head in which its sources lie is not known");
+        }
+
+        // The array that only splits directions carries equal noise in every channel: its level does not matter.
+        NoiseChoice effective = sensors.MegReported ? choice : choice with { MegRms = 1e-15, MegDensity = null };
+        var builder = new NoiseBuilder(effective, sensors.Electrodes.Count, sensors.MegKinds, background, total);
+        try
+        {
+            NoiseModel model = builder.Build(eegCovariance, megCovariance, study.Responses);
+            warnings.AddRange(builder.Warnings);
+            CheckSamples(reading, model);
+            return model;
+        }
+        catch (InputException error) when (error.Problems.All(p => p.File is null))
+        {
+            throw new InputException([.. error.Problems.Select(p => reading.Problem(p.Key ?? "noise", p.Message))]);
+        }
+    }
+
+    private static BackgroundField Background(LayeredSphere sphere, SensorAssembly sensors)
+    {
+        double radius = CortexShell.Radius(sphere);
+        Vec3[] places = [.. Enumerable.Range(0, BackgroundPlaces).Select(k => sphere.Centre + radius * GoldenSpiral.Point(k, BackgroundPlaces))];
+        string[] names = ["Cz", "M1", "M2"];
+        Electrode[] electrodes = [.. names.Select(n => new Electrode(n, sphere.Centre + sphere.OuterRadius * ElectrodeLayout.Direction(n), true, 0))];
+        MegChannel[] magnetometers = CoilArray.Generate(
+            new CoilArrayChoice("magnetometer", TableSites, 0, DefaultNoiseTables.MagnetometerGap, CoilArray.DefaultEdgeFront, CoilArray.DefaultEdgeBack), sphere.Centre, sphere.OuterRadius);
+        var tables = new SphereLeadfield(sphere, electrodes, magnetometers);
+        return BackgroundField.Compute(places, sensors.Source, tables, Derivation.Parse(DefaultNoiseTables.Derivation, names).Weights(electrodes));
+    }
+
+    private static double[]? Covariance(StudyReading reading, CovarianceChoice? choice, string key, int rows, InputDigests inputs)
+    {
+        if (choice is null || rows == 0)
+        {
+            return null;
+        }
+
+        try
+        {
+            (string path, string display) = inputs.Use(choice.File);
+            double[] covariance = CovarianceFile.Read(path, display, rows);
+            return choice.AveragedTrials == 1 ? covariance : [.. covariance.Select(c => c * choice.AveragedTrials)];
+        }
+        catch (InputException error)
+        {
+            throw new InputException([.. error.Problems.Select(p => p with { Key = p.Key ?? key })]);
+        }
+    }
+
+    private static void JudgeTotal(StudyReading reading, NoiseChoice choice, List<string> warnings)
+    {
+        if (choice.EegTotal is not { } total)
+        {
+            return;
+        }
+
+        double usual = Si.ToMicrovolts(DefaultNoiseTables.EegTotal.Rms(total.Band.Low, total.Band.High));
+        Judge(reading, warnings, "noise.eeg_total.rms_uV", Si.ToMicrovolts(total.Rms), 0.3 * usual, 3 * usual, "uV", "the total in this band");
+    }
+
+    private static void JudgeCovariance(
+        StudyReading reading, double[]? covariance, string key, Response response, Func<int, double> density, string unit, List<string> warnings)
+    {
+        if (covariance is null)
+        {
+            return;
+        }
+
+        int n = (int)Math.Round(Math.Sqrt(covariance.Length));
+        double root = Math.Sqrt(response.Band.Width);
+        int least = Enumerable.Range(0, n).MinBy(k => covariance[k * n + k] / Math.Pow(density(k), 2));
+        double rms = Math.Sqrt(covariance[least * n + least]), floor = density(least) * root;
+        Judge(reading, warnings, key, rms, floor, double.MaxValue / 100, unit, string.Create(CultureInfo.InvariantCulture,
+            $"row {least + 1}: the root of its variance over the band of {response.Name} against what the quietest usual instrument has:"));
+    }
+
+    private static void Judge(StudyReading reading, List<string> warnings, string key, double value, double low, double high, string unit, string what)
+    {
+        PlausibilityJudgement judgement = Plausibility.Judge(key, value, low, high, unit, reading.Study.AcceptImplausible, what);
+        switch (judgement.Is)
+        {
+            case Plausible.Problem:
+                throw new InputException([reading.Problem(key, judgement.Text)]);
+            case Plausible.Warning:
+                warnings.Add($"{key}: {judgement.Text}");
+                break;
+        }
+    }
+
+    private static void CheckSamples(StudyReading reading, NoiseModel model)
+    {
+        Check(model.EegSamples, model.EegRows, "noise.eeg_covariance.samples");
+        Check(model.MegSamples, model.MegRows, "noise.meg_covariance.samples");
+
+        void Check(double? samples, int rows, string key)
+        {
+            if (samples is { } nu && nu <= rows + 1)
+            {
+                throw new InputException([reading.Problem(key, string.Create(CultureInfo.InvariantCulture,
+                    $"a covariance of {rows} channels from {nu:0.###} independent samples has no usable inverse; more than {rows + 1} samples are needed: use a longer baseline or fewer channels"))]);
+            }
+        }
+    }
+}

@@ -1,0 +1,48 @@
+using DeepSourceCheck.Core.Planning;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
+using DeepSourceCheck.Files.Studies;
+
+namespace DeepSourceCheck.Cli.Pipeline;
+
+/// <summary>A study that was read and found sound, with all of its parts built.</summary>
+internal sealed class PreparedStudy
+{
+    /// <summary>The study as read, with the places of its keys.</summary>
+    public required StudyReading Reading { get; init; }
+
+    /// <summary>The study's parts.</summary>
+    public required StudySetup Setup { get; init; }
+
+    /// <summary>Files that were read.</summary>
+    public required IReadOnlyList<InputFile> Inputs { get; init; }
+
+    /// <summary>The study.</summary>
+    public Study Study => Reading.Study;
+
+    /// <summary>Warnings, gravest first.</summary>
+    public required IReadOnlyList<string> Warnings { get; init; }
+
+    /// <summary>Every value that enters.</summary>
+    public IReadOnlyList<Assumption> Assumptions => Reading.Assumptions;
+
+    /// <summary>Electrodes in use.</summary>
+    public int Electrodes => Setup.Source.EegRows;
+
+    /// <summary>MEG channels in use.</summary>
+    public int MegChannels => Setup.MegReported ? Setup.MegNames.Count : 0;
+
+    /// <summary>Dipoles in all regions.</summary>
+    public long Dipoles => Setup.Regions.Sum(r => (long)r.Positions.Length);
+
+    /// <summary>Regions with their dipoles and spacing [mm]; null for points.</summary>
+    public IReadOnlyList<(string Region, long Dipoles, double? SpacingMm)> Regions =>
+        [.. Setup.Regions.Select(r => (r.Name, (long)r.Positions.Length, r.Spacing is { } h ? Si.ToMm(h) : (double?)null))];
+
+    /// <summary>Predicted peak memory [bytes].</summary>
+    public required long PredictedMemory { get; init; }
+
+    /// <summary>Predicted time [s].</summary>
+    public required double PredictedSeconds { get; init; }
+}
