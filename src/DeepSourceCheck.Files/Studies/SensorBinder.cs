@@ -37,7 +37,7 @@ internal static class SensorBinder
     {
         Section? head = root.Map("head");
         Section? leadfields = head?.Map("leadfields");
-        bool imported = head?.States("leadfields") == true;
+        bool imported = head?.States("leadfields") == true && !head.States("spheres");
         Section? sensors = root.Map("sensors");
         bool hasEeg = imported ? leadfields?.States("eeg") == true : sensors?.States("eeg") == true;
         bool hasMeg = imported ? leadfields?.States("meg") == true : sensors?.States("meg") == true;
@@ -51,7 +51,7 @@ internal static class SensorBinder
         var bound = new BoundSensors(hasEeg, hasMeg, imported, coil);
         return bound with
         {
-            Eeg = imported ? ImportedEeg(sensors, hasEeg) : hasEeg ? Eeg(sensors) : null,
+            Eeg = imported ? ImportedEeg(sensors, hasEeg, hasMeg) : hasEeg ? Eeg(sensors) : null,
             Derivations = Derivations(sensors, hasEeg),
             Meg = imported ? ImportedMeg(sensors, hasMeg) : Meg(sensors, hasMeg),
             EegBandwidth = Bandwidth(sensors, "eeg", hasEeg, NoEeg),
@@ -81,11 +81,11 @@ internal static class SensorBinder
         return reference is not null && (layout ?? electrodes) is not null ? new(layout, electrodes, coordinates, reference) : null;
     }
 
-    private static EegChoice? ImportedEeg(Section sensors, bool hasEeg)
+    private static EegChoice? ImportedEeg(Section sensors, bool hasEeg, bool hasMeg)
     {
         if (!hasEeg)
         {
-            if (sensors.States("eeg"))
+            if (sensors.States("eeg") && hasMeg)
             {
                 sensors.Problem("eeg", "head.leadfields has no eeg array; name it there, or remove this key");
             }

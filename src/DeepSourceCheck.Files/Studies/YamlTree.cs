@@ -18,7 +18,7 @@ public sealed class YamlTree
     public const int DeepestNesting = 32;
 
     /// <summary>Largest number of nodes of a document.</summary>
-    public const int MostNodes = 200_000;
+    public const int MostNodes = 50_000;
 
     private const int MostProblems = 50;
     private const string CoreTag = "tag:yaml.org,2002:";
@@ -209,14 +209,17 @@ public sealed class YamlTree
         }
         catch (YamlException e)
         {
-            string open = openBrackets.TryPeek(out Mark bracket) ? $"; the bracket opened at line {Line(bracket)}, column {Column(bracket)} is not closed" : "";
-            throw Fatal(e.Start, $"this is not YAML: {Sentence(e.Message)}{open}");
+            throw Fatal(e.Start, $"this is not YAML: {Sentence(e.Message)}{OpenBracket()}");
         }
         catch (Exception e) when (e is ArgumentException or InvalidOperationException or FormatException or ArithmeticException or IndexOutOfRangeException or KeyNotFoundException)
         {
-            throw Fatal(parser.Current?.End ?? Mark.Empty, "this is not YAML: the text after this place cannot be read");
+            // The parser throws these instead of its own on some broken texts.
+            throw Fatal(parser.Current?.End ?? Mark.Empty, $"this is not YAML: the text after this place cannot be read{OpenBracket()}");
         }
     }
+
+    private string OpenBracket() =>
+        openBrackets.TryPeek(out Mark bracket) ? $"; the bracket opened at line {Line(bracket)}, column {Column(bracket)} is not closed" : "";
 
     private static string Sentence(string message)
     {

@@ -100,7 +100,6 @@ public class StudyReaderErrorTests
     [InlineData("tables", "points: points.tsv}", "points: points.tsv, spacing_mm: 1}", "regions[0].spacing_mm", "belongs to an ellipsoid or a mask")]
     [InlineData("tables", "points: points.tsv}", "points: points.tsv, label: 1}", "regions[0].label", "belongs to a mask")]
     [InlineData("tables", "label: 1}", "label: 1, threshold: 0.5}", "regions[1].threshold", "beside label")]
-    [InlineData("tables", "name: box", "name: probes", "regions[1].name", "'probes' stands twice")]
     [InlineData("small", "spacing_mm: 1.0", "spacing_mm: 1.0e-6", "regions[0].spacing_mm", "out of range|from 0.05")]
     [InlineData("small", "semi_axes_mm: [4, 3, 2]}, spacing_mm: 1.0", "semi_axes_mm: [40, 30, 20]}, spacing_mm: 0.1", "regions[0].spacing_mm", "100530965 dipoles|wider spacing")]
     [InlineData("small", "direction: tangential", "component_Hz: 50", "responses.wave V.component_Hz", "50 Hz lies outside|100 to 1500 Hz")]
@@ -129,9 +128,9 @@ public class StudyReaderErrorTests
 
     [Theory]
     [InlineData("layout: ten-ten-64", "layout: [1", 0)]
-    [InlineData("{coil: magnetometer}", "{coil: nonsense}", 16)]
+    [InlineData("{coil: magnetometer}", "{coil: nonsense}", 15)]
     [InlineData("moment_nAm: 3.5", "moment_nAm: x", 17)]
-    [InlineData("  - {name: nucleus", "  - {nome: nucleus", 6)]
+    [InlineData("spacing_mm: 1.0", "spacing: 1.0", 86)]
     [InlineData("[pons, nucleus]", "[pons, nucleu]", 21)]
     public void Position_OfAFault_IsWhereItStands(string place, string replacement, int column)
     {
@@ -175,6 +174,14 @@ public class StudyReaderErrorTests
         string text = StudyText.Small.With("  eeg: {layout: ten-ten-64, reference: average}\n  eeg_derivations: [Cz-mastoids, Cz-M1]\n  meg: {coil: magnetometer}\n", "  sampling_Hz: 10000\n");
         Assert.Contains("neither electrodes nor MEG sensors", StudyText.Problem(text).Message, StringComparison.Ordinal);
         Assert.Contains("neither electrodes nor MEG sensors", StudyText.Problem(text, Purpose.Leadfield).Message, StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public void Regions_OfTheSameName_AreRefused()
+    {
+        InputProblem problem = StudyText.Problem(StudyText.Tables.With("name: box", "name: probes").With("[probes, box]", "[probes]"));
+        Assert.Equal("regions[1].name", problem.Key);
+        Assert.Contains("'probes' stands twice", problem.Message, StringComparison.Ordinal);
     }
 
     [Fact]
