@@ -191,6 +191,9 @@ public class RegionLibraryTests
     {
         FilledRegion filled = RegionFill.Fill(r, null, TestHeads.Adult);
         Assert.InRange(filled.Positions.Length, 50, 20_000);
+
+        // The prediction may stand on either side of one halving.
+        Assert.InRange((filled.Positions.Length + filled.Dropped.Count) / (double)RegionFill.PredictCount(r, null, TestHeads.Adult), 0.1, 10);
         Assert.Equal("library", filled.Origin);
         Assert.True(r.Shape is null || Math.Abs((filled.Positions.Length + filled.Dropped.Count) * Math.Pow(filled.Spacing!.Value, 3) / r.Shape.Volume - 1) < 0.2, r.Name);
         Assert.Equal(r.SphereLimits is not null, filled.Warnings.Any(w => w.Contains("misfit", StringComparison.Ordinal)));
@@ -247,6 +250,19 @@ public class RegionLibraryTests
         InvalidDataException error = Assert.Throws<InvalidDataException>(() => LibraryRegionReader.Read("regions/x.yaml", new StringReader(text)));
         Assert.StartsWith("regions/x.yaml", error.Message, StringComparison.Ordinal);
         Assert.Contains(part, error.Message, StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public void RightSide_MayBeStated()
+    {
+        const string text = "structure: x\nframe: MNI\nvolume_mL: {low: 1, high: 2, source: s, grade: memory}\nplace: {source: s, grade: seen}\nnote: n\n"
+            + "left: {centre_mm: [-10, 0, 0], semi_axes_mm: [1, 2, 3], rotation_deg: [0, 0, 0]}\n"
+            + "right: {centre_mm: [12, 1, 0], semi_axes_mm: [1, 2, 4], rotation_deg: [0, 0, 90]}\n";
+        IReadOnlyList<LibraryRegion> sides = LibraryRegionReader.Read("x.yaml", new StringReader(text));
+        Assert.Equal(["x-left", "x-right"], sides.Select(r => r.Name));
+        Assert.Equal(new Vec3(0.012, 0.001, 0), sides[1].Shape!.Centre);
+        Assert.InRange(TestHeads.AngleDeg(sides[1].Shape!.Axis(0), new(0, 1, 0)), 0, 1e-9);
+        Assert.Equal((Grade.Memory, Grade.Seen), (sides[1].VolumeGrade, sides[1].PlaceGrade));
     }
 
     private static Vec3 Mean(Vec3[] points) => points.Aggregate(Vec3.Zero, (sum, p) => sum + p) / points.Length;
