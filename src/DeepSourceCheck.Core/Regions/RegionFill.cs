@@ -118,7 +118,13 @@ public static class RegionFill
 
         FilledRegion all = new()
         {
-            Name = name, Positions = nodes, Rows = [], Spacing = spacing, SpacingRefined = refined, ShapeVolume = shape.Volume, Origin = origin,
+            Name = name,
+            Positions = nodes,
+            Rows = [],
+            Spacing = spacing,
+            SpacingRefined = refined,
+            ShapeVolume = shape.Volume,
+            Origin = origin,
         };
         return Admit(all, head, file, key, warnShare);
     }
