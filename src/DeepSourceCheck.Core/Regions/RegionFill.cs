@@ -53,6 +53,14 @@ public static class RegionFill
         return region.SphereLimits is { } limits && head is LayeredSphere ? filled.WithWarning($"{region.Name}: {limits}") : filled;
     }
 
+    /// <summary>Expected number of dipoles of a library region, before anything is allocated; 0 where the head cannot hold it.</summary>
+    /// <param name="region">Region, already scaled to the head.</param>
+    /// <param name="spacing">Stated spacing [m], or null.</param>
+    /// <param name="head">Head.</param>
+    public static long PredictCount(LibraryRegion region, double? spacing, IHead head) => region.Shape is { } ellipsoid
+        ? GridSpacing.PredictCount(ellipsoid.Volume, spacing)
+        : head is LayeredSphere sphere ? CortexShell.Count(sphere, spacing ?? CortexShell.DefaultSpacing) : 0;
+
     /// <summary>Takes explicit points in their order.</summary>
     /// <param name="name">Name of the region.</param>
     /// <param name="pointNames">Names, as many as positions.</param>
@@ -110,7 +118,13 @@ public static class RegionFill
 
         FilledRegion all = new()
         {
-            Name = name, Positions = nodes, Rows = [], Spacing = spacing, SpacingRefined = refined, ShapeVolume = shape.Volume, Origin = origin,
+            Name = name,
+            Positions = nodes,
+            Rows = [],
+            Spacing = spacing,
+            SpacingRefined = refined,
+            ShapeVolume = shape.Volume,
+            Origin = origin,
         };
         return Admit(all, head, file, key, warnShare);
     }

@@ -22,7 +22,7 @@ public static class ArrayCoverage
     public const double FullShare = 0.999;
 
     // Steps around the edge before the golden-section search: the angle to a smooth edge has at most a few extremes.
-    private const int EdgeSteps = 360;
+    private const int EdgeSteps = 72;
 
     /// <summary>Angle [rad] between the dipole's radial axis and the place of its largest radial field.</summary>
     /// <param name="dipoleRadius">Distance of the dipole from the centre [m], at least 0.</param>

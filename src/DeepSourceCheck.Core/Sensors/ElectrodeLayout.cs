@@ -33,7 +33,10 @@ public static class ElectrodeLayout
     // Names of older papers and their sites: they are refused with the name that the systems use now.
     private static readonly Dictionary<string, string> _older = new(StringComparer.OrdinalIgnoreCase)
     {
-        ["T3"] = "T7", ["T4"] = "T8", ["T5"] = "P7", ["T6"] = "P8",
+        ["T3"] = "T7",
+        ["T4"] = "T8",
+        ["T5"] = "P7",
+        ["T6"] = "P8",
     };
 
     /// <summary>The layouts by name: ten-twenty-21, ten-ten-64, ten-ten-81, ten-five-329.</summary>
