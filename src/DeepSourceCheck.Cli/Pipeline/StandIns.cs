@@ -27,7 +27,11 @@ namespace DeepSourceCheck.Report
 
     internal static class ReportWriter
     {
-        public static void Write(Assessment assessment, string folder, IReadOnlySet<string> without) => throw StandIn.Absent();
+        public const string Dipoles = "dipoles";
+        public const string Figures = "figures";
+        public const string Report = "report";
+
+        public static int Write(Assessment assessment, string folder, IReadOnlySet<string> without, CancellationToken cancel) => throw StandIn.Absent();
     }
 
     internal static class StandIn
@@ -59,12 +63,12 @@ namespace DeepSourceCheck.Report.Console
 {
     internal static class ConsoleSummary
     {
-        public static string Format(Assessment assessment, string outputPath, bool terminal, bool unicode, bool color) => throw StandIn.Absent();
+        public static string Of(Assessment assessment, string outputPath, bool terminal, bool unicode, bool color, int files, bool report) => throw StandIn.Absent();
     }
 
     internal static class WhyText
     {
-        public static string Format(ResponseResult response, RegionResult region, bool unicode) => throw StandIn.Absent();
+        public static string Of(Assessment assessment, ResponseResult response, RegionResult region, bool unicode) => throw StandIn.Absent();
     }
 }
 
