@@ -16,7 +16,7 @@ internal static class AssessCommand
     public const string DefaultFolder = "deepsourcecheck-results";
 
     /// <summary>Parts of the result that may be left out.</summary>
-    public static readonly IReadOnlyList<string> Parts = ["dipoles", "figures", "report", "maps"];
+    public static readonly IReadOnlyList<string> Parts = [ReportWriter.Dipoles, ReportWriter.Figures, ReportWriter.Report, "maps"];
 
     public static Command Create(Surroundings surroundings)
     {
@@ -61,6 +61,7 @@ internal static class AssessCommand
         string? path = SharedOptions.Checked(study);
         ResultFolder.CheckTarget(outFolder, ResultFolderKind.Assessment);
         Assessment assessment;
+        int files;
         using (ProgressLine? line = surroundings.ErrorIsTerminal ? new ProgressLine(surroundings.Error, surroundings.Columns) : null)
         {
             var settings = new RunSettings(memory, without, line is null ? null : line.Report, cancellation);
@@ -70,7 +71,7 @@ internal static class AssessCommand
             using IDisposable guard = surroundings.Interruption.Guard(() => Discard.Whole(folder));
             assessment = Assess(prepared, settings, folder.Folder, surroundings);
             line?.Report("writing", 0);
-            ReportWriter.Write(assessment, folder.Folder, without);
+            files = ReportWriter.Write(assessment, folder.Folder, without, cancellation) + (without.Contains(ReportWriter.Dipoles) ? 0 : 1);
             cancellation.ThrowIfCancellationRequested();
             folder.Commit();
         }
@@ -83,9 +84,14 @@ internal static class AssessCommand
         }
         else
         {
-            surroundings.Warn(assessment.Warnings);
-            string text = ConsoleSummary.Format(assessment, outFolder, surroundings.OutIsTerminal, surroundings.Unicode, surroundings.Color);
-            surroundings.Out.WriteLine(text.TrimEnd());
+            // A terminal shows both streams, and the summary carries the warnings: once is enough there.
+            if (!surroundings.OutIsTerminal)
+            {
+                surroundings.Warn(assessment.Warnings);
+            }
+
+            surroundings.Out.Write(ConsoleSummary.Of(
+                assessment, outFolder, surroundings.OutIsTerminal, surroundings.Unicode, surroundings.Color, files, !without.Contains(ReportWriter.Report)));
         }
 
         return ExitStatus.Done;
@@ -93,7 +99,7 @@ internal static class AssessCommand
 
     private static Assessment Assess(PreparedStudy prepared, RunSettings settings, string folder, Surroundings surroundings)
     {
-        if (settings.Without.Contains("dipoles"))
+        if (settings.Without.Contains(ReportWriter.Dipoles))
         {
             return surroundings.Steps.Assess(prepared, settings, null);
         }

@@ -75,7 +75,7 @@ internal static class WhyCommand
                 surroundings.Out.WriteLine();
             }
 
-            surroundings.Out.WriteLine(WhyText.Format(chosen[i].Response, chosen[i].Region, surroundings.OutIsTerminal && surroundings.Unicode).TrimEnd());
+            surroundings.Out.Write(WhyText.Of(assessment, chosen[i].Response, chosen[i].Region, surroundings.OutIsTerminal && surroundings.Unicode));
         }
 
         return ExitStatus.Done;

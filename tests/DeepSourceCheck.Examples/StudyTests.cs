@@ -1,0 +1,217 @@
+using System.Text.Json;
+
+namespace DeepSourceCheck.Examples;
+
+/// <summary>The numbered studies: each runs, and what it shows holds against figures from outside the project.</summary>
+public class StudyTests
+{
+    private const string WaveV = "wave V";
+
+    [Fact]
+    public void Study01_IsTheEmbeddedDefaultStudy()
+    {
+        AssessedStudy stated = AssessedStudy.Run(SourceTree.Study("01-click-response.yaml"));
+        AssessedStudy embedded = AssessedStudy.Run(null);
+        foreach (string region in (string[])["inferior-colliculus-left", "inferior-colliculus-right"])
+        {
+            Assert.Equal(embedded.Region(WaveV, region).GetRawText(), stated.Region(WaveV, region).GetRawText());
+        }
+    }
+
+    [Fact]
+    public void Study01_EegNeedsHundredsOfSweepsAndMegTensOfThousands()
+    {
+        // EEG: 0.45 uV peak-to-trough on 2.0 uV rms gives some hundreds; band x/: 2.7 about that. Clinics use 1000 to 4000 for replication (guideline, from memory).
+        // MEG: axial gradiometers at a 30 mm gap and 5 fT/sqrt(Hz): some 45,000 for one channel, from the closed form of Sarvas 1987; band x/: 3, so that a factor of 2 in amplitude is caught.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("01-click-response.yaml"));
+        Assert.InRange(AssessedStudy.Trials(study.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids")), 120, 900);
+        Assert.InRange(AssessedStudy.Trials(study.Result(WaveV, "inferior-colliculus-left", "MEG", "given", "best-channel")), 15_000, 135_000);
+    }
+
+    [Fact]
+    public void Study01_WaveVHasThePublishedSize()
+    {
+        // Baseline to peak is half of the 0.3 to 0.6 uV that clinics read from peak to trough (norms, from memory).
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("01-click-response.yaml"));
+        Assert.InRange(AssessedStudy.Peak(study.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids"), "uV"), 0.15, 0.35);
+    }
+
+    [Fact]
+    public void Study01_LeftAndRightAreAlike()
+    {
+        // Head, layout and library are mirror-symmetric up to the generated array's spiral.
+        const double Likeness = 0.05;
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("01-click-response.yaml"));
+        long left = AssessedStudy.Trials(study.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids"));
+        long right = AssessedStudy.Trials(study.Result(WaveV, "inferior-colliculus-right", "EEG", "given", "Cz-mastoids"));
+        Assert.InRange((double)left / right, 1 - Likeness, 1 + Likeness);
+    }
+
+    [Fact]
+    public void Study01_HalfTheMomentNeedsFourTimesTheTrials()
+    {
+        // N goes with 1/A^2; rounding up to whole trials leaves a relative 1/N.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("01-click-response.yaml"));
+        AssessedStudy weaker = AssessedStudy.RunChanged(SourceTree.Study("01-click-response.yaml"), ("moment_nAm: 3.5", "moment_nAm: 1.75"));
+        foreach ((string modality, string measure) in (ReadOnlySpan<(string, string)>)[("EEG", "Cz-mastoids"), ("MEG", "best-channel"), ("EEG", "matched-filter")])
+        {
+            long whole = AssessedStudy.Trials(study.Result(WaveV, "inferior-colliculus-left", modality, "given", measure));
+            long half = AssessedStudy.Trials(weaker.Result(WaveV, "inferior-colliculus-left", modality, "given", measure));
+            Assert.InRange(half, 4 * (whole - 1), 4 * whole);
+        }
+    }
+
+    [Fact]
+    public void Study01_BothTogetherNeedNoMoreThanEither()
+    {
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("01-click-response.yaml"));
+        long both = study.Rows(WaveV, "inferior-colliculus-left").Where(r => r.GetProperty("modality").GetString() == "EEG+MEG" && r.GetProperty("direction").GetString() == "given").Select(r => AssessedStudy.Trials(r)).Min();
+        Assert.True(both <= AssessedStudy.Trials(study.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids")));
+    }
+
+    [Fact]
+    public void Study02_IsCompleteWithMegAloneAndWithoutAProtocol()
+    {
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("02-on-scalp-thalamus.yaml"));
+        JsonElement[] rows = [.. study.Rows("slow thalamic response", "thalamus-left")];
+        Assert.All(rows, r => Assert.Equal("MEG", r.GetProperty("modality").GetString()));
+        Assert.Contains(rows, r => r.GetProperty("direction").GetString() == "strongest-tangential");
+        Assert.All(rows, r => Assert.All(r.GetProperty("targets").EnumerateArray(), t => Assert.True(!t.TryGetProperty("minutes", out JsonElement minutes) || minutes.ValueKind == JsonValueKind.Null)));
+    }
+
+    [Fact]
+    public void Study02_SensorsOnTheScalpGainLessFromDeepSources()
+    {
+        // Peak field of a deep source (less than 35 mm from the centre), scalp against a 30 mm gap, equal coils: 1.4 to 2.2 from the closed form of Sarvas 1987.
+        // Over cortex 2.7 is published (Iivanainen and others 2017, text seen): deep sources gain less.
+        string file = SourceTree.Study("02-on-scalp-thalamus.yaml");
+        double near = AssessedStudy.Peak(Strongest(AssessedStudy.Run(file)), "fT");
+        double far = AssessedStudy.Peak(Strongest(AssessedStudy.RunChanged(file, ("gap_mm: 7", "gap_mm: 30"))), "fT");
+        Assert.InRange(near / far, 1.4, 2.2);
+
+        static JsonElement Strongest(AssessedStudy study) => study.Result("slow thalamic response", "thalamus-left", "MEG", "strongest-tangential", "best-channel");
+    }
+
+    [Fact]
+    public void Study02_RefusesAClickResponseThatItsSensorsDoNotPass()
+    {
+        // Zero-field alkali sensors pass about 0 to 135 Hz (data sheets and Boto and others 2018, from memory): a click response of 100 to 1500 Hz cannot be recorded, whatever their noise.
+        string said = AssessedStudy.Refusal(SourceTree.Study("02-on-scalp-thalamus.yaml"), ("band_Hz: [1, 40]", "band_Hz: [100, 1500]"));
+        Assert.Contains("band", said, StringComparison.Ordinal);
+        Assert.Contains("120", said, StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public void Study03_CortexIsSeenInTensOfTrials()
+    {
+        // 20 nAm at 66 mm (from memory: Hari and Forss 1999; Kakigi 2000), 5 uV and 140 fT rms a trial. One figure of each modality: EEG 2.5 uV gives 36, MEG 270 fT gives 3; bands x/: 2.5 to 3.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("03-median-nerve-control.yaml"));
+        Assert.InRange(AssessedStudy.Trials(study.Result("first cortical response", "hand-area", "EEG", "strongest-tangential", "best-channel")), 15, 100);
+        Assert.InRange(AssessedStudy.Trials(study.Result("first cortical response", "hand-area", "MEG", "strongest-tangential", "best-channel")), 1, 10);
+    }
+
+    [Fact]
+    public void Study03_IsAtLeastTenTimesEasierThanTheBrainstemInMeg()
+    {
+        AssessedStudy cortex = AssessedStudy.Run(SourceTree.Study("03-median-nerve-control.yaml"));
+        AssessedStudy brainstem = AssessedStudy.Run(SourceTree.Study("01-click-response.yaml"));
+        long easy = AssessedStudy.Trials(cortex.Result("first cortical response", "hand-area", "MEG", "strongest-tangential", "best-channel"));
+        long hard = AssessedStudy.Trials(brainstem.Result(WaveV, "inferior-colliculus-left", "MEG", "given", "best-channel"));
+        Assert.True(hard >= 10 * easy, $"{hard} against {easy}");
+    }
+
+    [Fact]
+    public void Study03_MegTrialsDoNotMoveWithTheSkullAndEegTrialsDo()
+    {
+        // MEG in a sphere does not depend on conductivity at all (Sarvas 1987). EEG over a superficial source falls with the skull's conductivity: 0.234 to 0.175 uV/nAm from 0.0132 to 0.008 S/m for a radial one.
+        string file = SourceTree.Study("03-median-nerve-control.yaml");
+        AssessedStudy usual = AssessedStudy.Run(file);
+        AssessedStudy resistive = AssessedStudy.RunChanged(file, ("spheres: {preset: adult-4}",
+            "spheres: {centre_mm: [0, -18, 5], layers: [{tissue: brain, radius_mm: 78, conductivity_S_per_m: 0.33}, {tissue: csf, radius_mm: 80, conductivity_S_per_m: 1.79}, {tissue: skull, radius_mm: 86, conductivity_S_per_m: 0.008}, {tissue: scalp, radius_mm: 92, conductivity_S_per_m: 0.43}]}"));
+        Assert.Equal(Trials(usual, "MEG"), Trials(resistive, "MEG"));
+        Assert.True(Trials(resistive, "EEG") > Trials(usual, "EEG"));
+
+        static long Trials(AssessedStudy study, string modality) => AssessedStudy.Trials(study.Result("first cortical response", "hand-area", modality, "strongest-tangential", "best-channel"));
+    }
+
+    [Fact]
+    public void Study04_TheNewbornsHeadShowsTheSameMomentLarger()
+    {
+        // Potential goes with 1/(conductivity x length^2): (92/56)^2 = 2.7 for the size alone, times up to 2 for a skull that is thinner for its head and conducts 2.5 times better.
+        AssessedStudy newborn = AssessedStudy.Run(SourceTree.Study("04-neonate.yaml"));
+        AssessedStudy adult = AssessedStudy.RunChanged(SourceTree.Study("04-neonate.yaml"), ("preset: neonate", "preset: adult-4"));
+        double ratio = AssessedStudy.Peak(Given(newborn), "uV") / AssessedStudy.Peak(Given(adult), "uV");
+        Assert.InRange(ratio, 2.0, 6.0);
+        Assert.True(newborn.Region(WaveV, "inferior-colliculus-left").GetProperty("volume_mL").GetDouble() < 0.5 * adult.Region(WaveV, "inferior-colliculus-left").GetProperty("volume_mL").GetDouble(),
+            "library regions scale with the head: the volume by (49/78)^3 = 0.25");
+
+        static JsonElement Given(AssessedStudy study) => study.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids");
+    }
+
+    [Fact]
+    public void Study05_OneCoilReadsTheClosedFormsField()
+    {
+        // 1 nAm across the radius, 30 mm from the centre, coil at 112 mm and 50 degrees: 1e-7 Q r sin t / (R^2 + r^2 - 2 R r cos t)^1.5 = 2.6367 fT, the radial part of Sarvas 1987. Here 10 nAm.
+        const double Relative = 1e-12;
+        double t = 50 * Math.PI / 180;
+        double expected = 1e15 * 1e-7 * 10e-9 * 0.030 * Math.Sin(t) / Math.Pow(0.112 * 0.112 + 0.030 * 0.030 - 2 * 0.112 * 0.030 * Math.Cos(t), 1.5);
+        JsonElement row = AssessedStudy.Run(SourceTree.Study("05-tables", "study.yaml")).Result("sideways", "probe", "MEG", "given", "best-channel");
+        Assert.Equal("beside", row.GetProperty("peak_amplitude").GetProperty("channel").GetString());
+        Assert.InRange(AssessedStudy.Peak(row, "fT") / expected, 1 - Relative, 1 + Relative);
+        Assert.Equal((long)Math.Ceiling(9 * 50 * 50 / (expected * expected)), AssessedStudy.Trials(row));
+    }
+
+    [Fact]
+    public void Study05_OneElectrodeReadsTheSphereTablesPotential()
+    {
+        // 1 nAm along the radius, 30 mm from the centre, these four layers, electrode above, reference at infinity: 0.0796 uV, computed independently by a direct solve of the boundary conditions.
+        // Four decimals: half a unit of the last is 6e-4 of the value.
+        const double Relative = 7e-4;
+        JsonElement row = AssessedStudy.Run(SourceTree.Study("05-tables", "study.yaml")).Result("upright", "probe", "EEG", "given", "best-channel");
+        Assert.Equal("above", row.GetProperty("peak_amplitude").GetProperty("channel").GetString());
+        Assert.InRange(AssessedStudy.Peak(row, "uV") / 0.796, 1 - Relative, 1 + Relative);
+    }
+
+    [Fact]
+    public void Study05_AnUprightSourceIsSilentInMegAndItsLeakIsShown()
+    {
+        // A radial source in a sphere has no field outside (Sarvas 1987); realistic heads keep a median of 0.06 of the strongest direction (Ahlfors and others 2010, abstract seen).
+        JsonElement row = AssessedStudy.Run(SourceTree.Study("05-tables", "study.yaml")).Result("upright", "probe", "MEG", "quasi-radial", "best-channel");
+        Assert.Equal(JsonValueKind.Null, row.GetProperty("snr_db").ValueKind == JsonValueKind.Null ? JsonValueKind.Null : row.GetProperty("snr_db").GetProperty("p50").ValueKind);
+        Assert.False(string.IsNullOrEmpty(row.GetProperty("reason").GetString()));
+        Assert.NotEqual(JsonValueKind.Null, row.GetProperty("at_leak").ValueKind);
+    }
+
+    [Fact]
+    public void Study06_EachRuleCountsFromTheSameRatio()
+    {
+        // Normal quantiles of 0.99 and 0.90 (any table): 2.3263478740 + 1.2815515655; squared 13.0169. One dipole, so that every percentile is its own figure.
+        JsonElement row = Row(AssessedStudy.Run(SourceTree.Study("06-detection", "study.yaml")));
+        double power = Math.Pow(10, AssessedStudy.SnrDb(row) / 10);
+        Assert.Equal((long)Math.Ceiling(9 / power), AssessedStudy.Trials(row));
+        Assert.Equal((long)Math.Ceiling(Math.Pow(2.3263478740408408 + 1.2815515655446004, 2) / power), AssessedStudy.Trials(row, "detection"));
+    }
+
+    [Fact]
+    public void Study06_PeakToTroughCarriesTheNoiseOfADifference()
+    {
+        // The noise of a difference of two independent samples is sqrt(2) s: 10 log10 2 = 3.0103 dB at the same amplitude.
+        const double Decibels = 1e-9;
+        string file = SourceTree.Study("06-detection", "study.yaml");
+        double trough = AssessedStudy.SnrDb(Row(AssessedStudy.Run(file)));
+        double baseline = AssessedStudy.SnrDb(Row(AssessedStudy.RunChanged(file, ("measured: peak-to-trough", "measured: baseline-to-peak"))));
+        Assert.InRange(baseline - trough, 10 * Math.Log10(2) - Decibels, 10 * Math.Log10(2) + Decibels);
+    }
+
+    [Fact]
+    public void Study06_MoreLooksNeedMoreTrials()
+    {
+        // Searching 28 independent looks raises the threshold to the quantile of 1 - 0.01/28.
+        string file = SourceTree.Study("06-detection", "study.yaml");
+        long one = AssessedStudy.Trials(Row(AssessedStudy.Run(file)), "detection");
+        long many = AssessedStudy.Trials(Row(AssessedStudy.RunChanged(file, ("looks: 1", "looks: 28"))), "detection");
+        Assert.True(many > one, $"{many} against {one}");
+    }
+
+    private static JsonElement Row(AssessedStudy study) => study.Result(WaveV, "inferior-colliculus-point", "EEG", "given", "Cz-mastoids");
+}
