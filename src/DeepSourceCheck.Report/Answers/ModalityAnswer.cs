@@ -62,6 +62,6 @@ public sealed class ModalityAnswer
 
     /// <summary>`252 to 371 over the places in the region`, or empty.</summary>
     public string Range() => HasCount && Target?.Trials is { P05: { } low, P95: var high }
-        ? $"{Say.Count(low)} to {Say.Trials(high)} over 5 to 95 % of places in the region"
+        ? $"{Say.Count(low)} to {Say.Trials(high)} over 5 to 95 % of places"
         : "";
 }

@@ -101,9 +101,7 @@ public sealed class RegionAnswer
             }
         }
 
-        string noise = parts.Count > 0 ? $"In one trial the noise is {string.Join(" and ", parts)}." : "";
-        string joint = Joint();
-        return string.Join(" ", new[] { noise, joint }.Where(p => p.Length > 0));
+        return parts.Count > 0 ? $"In one trial the noise is {string.Join(" and ", parts)}." : "";
     }
 
     /// <summary>What adding the other modality buys, or empty.</summary>

@@ -87,14 +87,16 @@ public static class PowerFigure
 
     private static FigureSheet Draw(int width, Assessment assessment, Line[] lines, PowerCurve curve, double power, double? perMinute)
     {
-        bool narrow = width < 480;
-        int keyRows = narrow ? lines.Length : lines.Count(l => l.Target > Say.MostTrials);
-        const float Left = 52, Right = 24, Bottom = 46;
-        float top = 30 + (keyRows > 0 ? 10 : 0) + 20 * keyRows;
         double unit = perMinute ?? 1;
         double first = lines.Min(l => Math.Max(0.5, curve.Trials(Math.Max(0.1, 2 * curve.Alpha), l.Snr.P95 ?? l.Snr.P50!.Value)));
         double last = lines.Max(l => Math.Min(Say.MostTrials, curve.Trials(0.98, l.Snr.P50!.Value)));
         LogAxis axis = new([first / unit, last / unit, (assessment.SessionTrials ?? double.NaN) / unit]);
+        // Where the marks stand too close for words beside them, the words go above the plot.
+        double[] shownAt = [.. lines.Where(l => l.Target <= Say.MostTrials).Select(l => Math.Log10(l.Target / unit)).Order()];
+        bool narrow = width < 480 || shownAt.Zip(shownAt.Skip(1)).Any(p => (p.Second - p.First) * (width - 76) / (axis.High - axis.Low) < LabelRoom);
+        int keyRows = narrow ? lines.Length : lines.Count(l => l.Target > Say.MostTrials);
+        const float Left = 52, Right = 24, Bottom = 46;
+        float top = 30 + (keyRows > 0 ? 10 : 0) + 20 * keyRows;
         if (!narrow)
         {
             double furthest = lines.Where(l => l.Target <= Say.MostTrials).Select(l => Math.Log10(l.Target / unit)).DefaultIfEmpty(axis.Low).Max();

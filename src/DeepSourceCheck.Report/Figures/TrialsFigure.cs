@@ -23,8 +23,7 @@ public static class TrialsFigure
         }
 
         ModalityAnswer[] all = [.. regions.SelectMany(r => r.Answers)];
-        double[] counts = [.. all.Where(a => a.HasCount).SelectMany(a => new double?[] { a.Target?.Trials.P05, a.Trials, a.Target?.Trials.P95 }).OfType<double>()];
-        LogAxis axis = new(counts.Append(assessment.SessionTrials ?? double.NaN).Where(c => c <= Say.MostTrials * 10.0));
+        LogAxis axis = AxisOf(assessment, all);
         string title = Title(assessment, regions);
         string session = assessment.SessionTrials is { } s ? $" Shaded: more than the session's {Say.Count(s)} trials." : " The study states no session.";
         return new Figure(
@@ -45,6 +44,68 @@ public static class TrialsFigure
     internal static string Protocol(Assessment assessment) => assessment.Study.Protocol is { } p
         ? $"; {Say.Stated(p.Rate)}/s{(p.RejectedFraction > 0 ? $", {Say.Percent(p.RejectedFraction)} rejected" : "")}"
         : "";
+
+    /// <summary>Height of one verdict beside the strip [px].</summary>
+    public const int StripRow = 84;
+
+    /// <summary>The strip beside the verdicts of one region: one row a verdict, trials below, minutes above.</summary>
+    /// <param name="assessment">The assessment.</param>
+    /// <param name="region">The answer to draw.</param>
+    /// <param name="width">Width [px].</param>
+    /// <param name="named">True where the rows do not stand beside their verdicts and carry their names.</param>
+    public static FigureSheet Strip(Assessment assessment, RegionAnswer region, int width, bool named)
+    {
+        LogAxis axis = AxisOf(assessment, region.Answers);
+        const float Top = 44, Bottom = 40, Right = 34;
+        int rowHeight = named ? 62 : StripRow;
+        FigureSheet sheet = new(width, (int)(Top + Bottom) + rowHeight * region.Answers.Count, named ? 52 : 24, Right, Top, Bottom);
+        sheet.Limits(axis.Low, axis.High, 0, 1);
+        sheet.BottomAxis(axis.Ticks);
+        double? session = assessment.SessionTrials is { } s and > 0 ? Math.Log10(s) : null;
+        sheet.Under(pen =>
+        {
+            if (session is { } x)
+            {
+                pen.Rectangle(pen.X(x), pen.Top, pen.Right, pen.Bottom, Palette.Beyond);
+            }
+
+            for (int k = 1; k < region.Answers.Count; k++)
+            {
+                pen.Line(pen.Left, pen.Top + k * rowHeight, pen.Right, pen.Top + k * rowHeight, Palette.Hair, 1);
+            }
+        });
+        sheet.Over(pen =>
+        {
+            pen.Text("accepted trials", pen.Left, pen.Bottom + 34, FigurePen.Small, colour: Palette.Ink2);
+            if (assessment.Study.Protocol is not null)
+            {
+                MinuteTicks(pen, assessment, axis);
+            }
+
+            float plumb = float.NaN;
+            if (session is { } x)
+            {
+                plumb = pen.X(x);
+                pen.PlumbLine(plumb, pen.Top - 26, pen.Bottom + 2);
+                string minutes = assessment.Study.Protocol?.Session is { } seconds ? $" {Say.Stated(Math.Round(seconds / 60, 6))} min" : "";
+                string label = $"session{minutes}{(named ? "" : $", {Say.Count(assessment.SessionTrials!.Value)} accepted trials")}";
+                bool leftwards = plumb > (pen.Left + pen.Right) / 2;
+                pen.Text(label, plumb + (leftwards ? -6 : 6), pen.Top - 28, FigurePen.Label, leftwards ? Anchor.End : Anchor.Start, semiBold: true, halo: true);
+            }
+
+            for (int k = 0; k < region.Answers.Count; k++)
+            {
+                Row(pen, axis, region.Answers[k], roomy: true, pen.Top + k * rowHeight + (rowHeight - 48) / 2f, plumb, named);
+            }
+        });
+        return sheet;
+    }
+
+    private static LogAxis AxisOf(Assessment assessment, IReadOnlyList<ModalityAnswer> answers)
+    {
+        IEnumerable<double> counts = answers.Where(a => a.HasCount).SelectMany(a => new double?[] { a.Target?.Trials.P05, a.Trials, a.Target?.Trials.P95 }).OfType<double>();
+        return new(counts.Append(assessment.SessionTrials ?? double.NaN).Where(c => c <= Say.MostTrials * 10.0));
+    }
 
     private static string Title(Assessment assessment, RegionAnswer[] regions)
     {
@@ -131,10 +192,14 @@ public static class TrialsFigure
         return sheet;
     }
 
-    private static void Row(FigurePen pen, LogAxis axis, ModalityAnswer answer, bool roomy, float top, float plumb)
+    private static void Row(FigurePen pen, LogAxis axis, ModalityAnswer answer, bool roomy, float top, float plumb, bool named = true)
     {
         float y = top + (roomy ? 26 : 12);
-        pen.Text(answer.Modality == Modality.Both ? "both" : Names.Of(answer.Modality), 16, y + 4, FigurePen.Small, colour: Palette.Ink2);
+        if (named)
+        {
+            pen.Text(answer.Modality == Modality.Both ? "both" : Names.Of(answer.Modality), 16, y + 4, FigurePen.Small, colour: Palette.Ink2);
+        }
+
         if (!answer.HasCount || answer.Trials is not { } trials)
         {
             TargetResult? leak = answer.Row?.AtLeak?.Targets.FirstOrDefault(t => t.Rule == answer.Verdict.Rule);
@@ -149,7 +214,9 @@ public static class TrialsFigure
             }
             else
             {
-                pen.Text(words, pen.Right - 4, y + 4, FigurePen.Small, Anchor.End, halo: true);
+                float end = pen.Right - 4, room = FigurePen.Width(words, FigurePen.Small);
+                bool crosses = plumb > end - room - 6 && plumb < end + 6;
+                pen.Text(words, crosses && plumb - room - 10 > pen.Left ? plumb - 10 : end, y + 4, FigurePen.Small, Anchor.End, halo: true);
             }
 
             return;

@@ -1,0 +1,204 @@
+using System.Text;
+
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
+using DeepSourceCheck.Report.Answers;
+
+namespace DeepSourceCheck.Report.Console;
+
+/// <summary>The answer as `assess` prints it: at most 79 columns, ASCII unless a UTF-8 terminal reads it.</summary>
+/// <remarks>Marks: `o` EEG, `*` MEG, `#` both, `=` 5 to 95 % of places, `|` session, `.` powers of ten. Colour on marks and `!` only.</remarks>
+public static class ConsoleSummary
+{
+    private const int MeasureWidth = 13;
+    private const int MostRegions = 12;
+    private const int MostWarnings = 3;
+
+    /// <summary>The whole text, with a final line break.</summary>
+    /// <param name="assessment">The answer.</param>
+    /// <param name="outputPath">Result folder as the user named it.</param>
+    /// <param name="terminal">True where a terminal reads it.</param>
+    /// <param name="unicode">True where the output is UTF-8.</param>
+    /// <param name="color">True where colour is wanted (NO_COLOR not set); heeded on a terminal only.</param>
+    /// <param name="files">Number of files written; 0: not said.</param>
+    /// <param name="report">False where report.html was left out.</param>
+    public static string Of(Assessment assessment, string outputPath, bool terminal, bool unicode, bool color, int files = 0, bool report = true)
+    {
+        bool wide = terminal && unicode;
+        Ink ink = new(terminal && color);
+        StringBuilder text = new();
+        text.Append(WhyText.Wrap(assessment.Study.Title, 0));
+        foreach (ResponseResult response in assessment.Responses)
+        {
+            Response(text, assessment, response, ink);
+        }
+
+        text.Append('\n');
+        foreach (string warning in assessment.Warnings.Take(MostWarnings))
+        {
+            text.Append(ink.Alert).Append(WhyText.Wrap(warning, 2).AsSpan(1));
+        }
+
+        if (assessment.Warnings.Count > MostWarnings)
+        {
+            text.Append($"  {assessment.Warnings.Count - MostWarnings} more warnings in assessment.json.\n");
+        }
+
+        IReadOnlyList<(string Heading, string Text)> cautions = Cautions.All;
+        string more = report ? $"{cautions.Count - 1} more cautions in report.html." : string.Join(" ", cautions.Skip(1).Select(c => c.Heading));
+        text.Append(ink.Alert).Append(WhyText.Wrap($"{cautions[0].Heading} {more}", 2).AsSpan(1));
+        text.Append($"  {Cautions.InOneLine}\n");
+        string what = string.Join(", ", new[] { report ? "report.html" : "", files > 0 ? Say.Plural(files, "file") : "" }.Where(w => w.Length > 0));
+        text.Append($"Written: {outputPath.TrimEnd('/', '\\')}/{(what.Length > 0 ? $" ({what})" : "")}\n");
+        return WhyText.Plain(text.ToString(), wide);
+    }
+
+    private static void Response(StringBuilder text, Assessment assessment, ResponseResult response, Ink ink)
+    {
+        if (response.Regions.Count == 0)
+        {
+            return;
+        }
+
+        RegionAnswer answer = new(assessment, response.Response, response.Regions[0]);
+        Response stated = response.Response;
+        text.Append(WhyText.Wrap($"{stated.Name}, {answer.Region.Region}: {Say.Plural(answer.Region.Dipoles, "dipole")}, {Say.Moment(stated.Moment)} {Say.Direction(stated.Direction)}", 0));
+        text.Append(WhyText.Wrap(Conditions(assessment, answer), 0));
+        text.Append('\n').Append(WhyText.Wrap(string.Join(" ", answer.Answers.Where(a => a.Modality != Modality.Both || answer.Answers.Count == 1).Select(a => Sentence(assessment, a))), 0)).Append('\n');
+        Table(text, answer);
+        text.Append('\n').Append(ConsoleChart.Of(assessment, answer, ink)).Append('\n');
+        Facts(text, assessment, answer);
+        Others(text, assessment, response, answer);
+    }
+
+    private static string Conditions(Assessment assessment, RegionAnswer answer)
+    {
+        string rule = assessment.Study.Targets.FirstOrDefault(t => Say.RuleKey(t) == answer.Rule) is { } t ? Say.Rule(t) : Say.RuleKey(answer.Rule);
+        if (assessment.Study.Protocol is not { } p)
+        {
+            return $"{rule}; no protocol stated";
+        }
+
+        string rejected = p.RejectedFraction > 0 ? $", {Say.Percent(p.RejectedFraction)} rejected" : "";
+        string session = assessment.SessionTrials is { } n && p.Session is { } s ? $"; session {Say.Stated(Math.Round(s / 60, 6))} min = {Say.Plural(n, "trial")}" : "; no session stated";
+        return $"{rule}; {Say.Stated(p.Rate)}/s{rejected}{session}";
+    }
+
+    private static string Sentence(Assessment assessment, ModalityAnswer a)
+    {
+        string name = Names.Of(a.Modality);
+        string minutes = a.Minutes is { } m ? $"{Say.Minutes(m)} min" : a.Trials is { } n ? Say.Plural(n, "trial") : "";
+        string over = a.Minutes is { } needed && assessment.Study.Protocol?.Session is { } s && OneAcquisition(assessment) && needed > s / 60 ? $": too long by {Say.Minutes(needed - s / 60)} min" : ": too long";
+        return a.Outcome switch
+        {
+            Outcome.Fits => $"{name} reaches the target in {minutes}.",
+            Outcome.TooLong => $"{name} needs {minutes}{over}.",
+            Outcome.NoSession => $"{name} needs {minutes}.",
+            Outcome.Silent => $"{name} is silent in this direction.",
+            _ => $"{name} is {Say.OutOfReach} by averaging.",
+        };
+    }
+
+    // With several conditions or replications the session is shared: minutes of one average do not compare with it.
+    private static bool OneAcquisition(Assessment assessment) => assessment.Study.Protocol is { Conditions: 1, Replications: 1 };
+
+    private static void Table(StringBuilder text, RegionAnswer answer)
+    {
+        text.Append($"{"",-9}{"measure",-MeasureWidth}{"trials",9}{"5-95 % of places",20}{"minutes",9}{"peak",9}  session\n");
+        foreach (ModalityAnswer a in answer.Answers)
+        {
+            string measure = a.Modality == Modality.Both ? "both" : a.Verdict.Measure;
+            if (measure.Length > MeasureWidth)
+            {
+                measure = measure[..(MeasureWidth - 3)] + "...";
+            }
+
+            string peak = a.Row?.Peak is { } p ? $"{Say.Two(p.Value)} {Say.Unit(p.Unit)}" : "-";
+            string minutes = a.Minutes is { } m && a.HasCount ? Say.Minutes(m) : "-";
+            string middle = a.HasCount ? $"{Say.Trials(a.Trials),9}{Spread(a),20}" : $"{(a.Outcome == Outcome.Silent ? "silent in this direction" : Say.OutOfReach),29}";
+            string session = a.Outcome switch { Outcome.Fits => "fits", Outcome.TooLong => "too long", Outcome.NoSession => "-", _ => "no" };
+            text.Append($"{Names.Of(a.Modality),-9}{measure,-MeasureWidth}{middle}{minutes,9}{peak,9}  {session}\n");
+        }
+    }
+
+    private static string Spread(ModalityAnswer a)
+    {
+        if (a.Target?.Trials is not { P05: { } low, P95: var high })
+        {
+            return "-";
+        }
+
+        string from = Say.Count(low), to = high is { } h && h <= Say.MostTrials ? Say.Count(h) : "beyond";
+        return from.Length + to.Length <= 15 ? $"{from} to {to}" : $"{from}-{to}";
+    }
+
+    private static void Facts(StringBuilder text, Assessment assessment, RegionAnswer answer)
+    {
+        ModalityAnswer[] single = [.. answer.Answers.Where(a => a.Modality != Modality.Both && a.Target?.SmallestMoment is not null)];
+        if (assessment.SessionTrials is not null && single.Length > 0)
+        {
+            text.Append(Fact("smallest source in the session", string.Join("   ", single.Select(a =>
+            {
+                string amplitude = a.Target!.SmallestAmplitude is { } v && a.Row?.Peak is { } peak ? $" ({Say.Two(v)} {Say.Unit(peak.Unit)})" : "";
+                return $"{Names.Of(a.Modality)} {Say.Two(Si.ToNanoAmpereMetres(a.Target.SmallestMoment!.Value))} nAm{amplitude}";
+            }))));
+            foreach (ModalityAnswer a in single.Where(a => a.Outcome is Outcome.TooLong or Outcome.OutOfReach))
+            {
+                text.Append(Fact($"{Names.Of(a.Modality)} would fit", $"from {Say.Two(Si.ToNanoAmpereMetres(a.Target!.SmallestMoment!.Value))} nAm"));
+            }
+        }
+
+        foreach (ModalityAnswer a in answer.Answers.Where(a => a.Row?.AtLeak is not null))
+        {
+            LeakResult leak = a.Row!.AtLeak!;
+            string count = leak.Targets.FirstOrDefault(t => t.Rule == a.Verdict.Rule)?.Trials.P50 is { } n && n <= Say.MostTrials ? Say.Plural(n, "trial") : Say.OutOfReach;
+            text.Append(Fact($"{Names.Of(a.Modality)} at the published leak", $"{Say.Stated(leak.Leak)} of the strongest direction: {count}"));
+        }
+
+        double?[] sure = [.. answer.Answers.Select(a => a.Verdict.Assurance)];
+        text.Append(Fact("how sure", sure.Any(s => s is not null)
+            ? string.Join("   ", answer.Answers.Where(a => a.Verdict.Assurance is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Assurance(a.Verdict.Assurance!.Value)}"))
+            : "not asked: the study states no unknowns"));
+    }
+
+    private static string Fact(string name, string words) =>
+        32 + words.Length <= 79 ? $"{name,-32}{words}\n" : $"{name}\n{WhyText.Wrap(words, 4)}";
+
+    private static void Others(StringBuilder text, Assessment assessment, ResponseResult response, RegionAnswer first)
+    {
+        RegionResult[] others = [.. response.Regions.Skip(1)];
+        foreach (RegionResult region in others.Take(MostRegions))
+        {
+            RegionAnswer answer = new(assessment, response.Response, region, first.Rule);
+            text.Append(WhyText.Wrap($"{region.Region}: {Compared(first, answer)}", 0));
+        }
+
+        if (others.Length > MostRegions)
+        {
+            text.Append($"{others.Length - MostRegions} more regions in regions.csv.\n");
+        }
+    }
+
+    // `within 2 %` where every verdict is the same and the counts are close, else each verdict.
+    private static string Compared(RegionAnswer first, RegionAnswer other)
+    {
+        bool same = first.Answers.Count == other.Answers.Count && first.Answers.Zip(other.Answers).All(p => p.First.Outcome == p.Second.Outcome && p.First.HasCount);
+        double apart = same ? first.Answers.Zip(other.Answers).Max(p => Math.Abs(p.Second.Trials!.Value - p.First.Trials!.Value) / (double)p.First.Trials.Value) : double.PositiveInfinity;
+        return apart <= 0.05
+            ? $"within {Math.Max(1, (int)Math.Ceiling(100 * apart - 1e-9))} %"
+            : string.Join("; ", other.Answers.Select(a => $"{Names.Of(a.Modality)} {a.Line()}"));
+    }
+
+    /// <summary>Colour for marks, where it is allowed.</summary>
+    internal sealed record Ink(bool Colour)
+    {
+        /// <summary>The sign before warnings.</summary>
+        public string Alert => Paint("!", 31);
+
+        /// <summary>The mark of a modality.</summary>
+        public string Mark(Modality modality) => modality switch { Modality.Eeg => Paint("o", 33), Modality.Meg => Paint("*", 36), _ => Paint("#", 35) };
+
+        private string Paint(string sign, int code) => Colour ? $"\u001b[{code}m{sign}\u001b[0m" : sign;
+    }
+}

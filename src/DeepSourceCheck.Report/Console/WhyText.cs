@@ -1,0 +1,119 @@
+using System.Globalization;
+using System.Text;
+
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Report.Answers;
+
+namespace DeepSourceCheck.Report.Console;
+
+/// <summary>What `why` prints: each number from moment to minutes, with formula and source, exact enough to recompute the count.</summary>
+public static class WhyText
+{
+    private const int Width = 79;
+    private const int Indent = 8;
+
+    /// <summary>The chains of every verdict of one region.</summary>
+    /// <param name="assessment">The run.</param>
+    /// <param name="response">The response.</param>
+    /// <param name="region">The region.</param>
+    /// <param name="unicode">False: ASCII only.</param>
+    public static string Of(Assessment assessment, ResponseResult response, RegionResult region, bool unicode)
+    {
+        StringBuilder text = new();
+        text.Append(Wrap($"{assessment.Study.Title}: {response.Response.Name}, {region.Region}", 0));
+        text.Append(Wrap($"{Say.Plural(region.Dipoles, "dipole")}. Each line is a number that the run used, for the dipole at the median: symbol = value unit, what it is, "
+            + "then the formula in the symbols of earlier lines and where it comes from. Recomputing the lines gives the count exactly.", 0));
+        foreach (VerdictResult verdict in region.Verdicts)
+        {
+            text.Append('\n').Append(Wrap($"{RegionAnswer.Words(verdict.Modality)}, {Say.RuleKey(verdict.Rule)}, {verdict.Measure}, {Say.Direction(verdict.Direction)} direction", 0));
+            foreach (DerivedNumber step in verdict.Chain)
+            {
+                Step(text, step);
+            }
+
+            text.Append(Wrap(verdict.Chain.Count == 0 ? $"No steps. {verdict.Text}" : verdict.Text, 2));
+        }
+
+        return Plain(text.ToString(), unicode);
+    }
+
+    /// <summary>The number with as many digits as reading it back exactly takes (at most 17).</summary>
+    public static string Exact(double value) => (value + 0.0).ToString("R", CultureInfo.InvariantCulture);
+
+    /// <summary>ASCII where the output needs it.</summary>
+    internal static string Plain(string text, bool unicode)
+    {
+        if (unicode)
+        {
+            return text;
+        }
+
+        StringBuilder ascii = new(text.Length);
+        foreach (Rune rune in text.EnumerateRunes())
+        {
+            ascii.Append(rune.Value switch
+            {
+                < 0x80 => ((char)rune.Value).ToString(),
+                0x2212 or 0x2013 or 0x2014 => "-",
+                0xD7 => "x",
+                0xB5 or 0x3BC => "u",
+                0x221A => "sqrt",
+                0x2018 or 0x2019 => "'",
+                0x201C or 0x201D => "\"",
+                0x2026 => "...",
+                0xA0 => " ",
+                0xB7 => " ",
+                0xB2 => "^2",
+                _ => "?",
+            });
+        }
+
+        return ascii.ToString();
+    }
+
+    /// <summary>Words in lines of at most <see cref="Width"/> signs; later lines indented by two more.</summary>
+    internal static string Wrap(string text, int indent)
+    {
+        StringBuilder lines = new(), line = new(new string(' ', indent));
+        bool empty = true;
+        foreach (string word in text.Split(' ', StringSplitOptions.RemoveEmptyEntries))
+        {
+            if (!empty && line.Length + 1 + word.Length > Width)
+            {
+                lines.Append(line).Append('\n');
+                line.Clear().Append(' ', indent + (indent > 0 ? 2 : 0));
+                empty = true;
+            }
+
+            line.Append(empty ? "" : " ").Append(word);
+            empty = false;
+        }
+
+        return lines.Append(line).Append('\n').ToString();
+    }
+
+    private static void Step(StringBuilder text, DerivedNumber step)
+    {
+        string head = $"  {step.Symbol,-5} = {Exact(step.Value)} {step.Unit}".TrimEnd();
+        const int NameColumn = 40;
+        if (head.Length < NameColumn - 1 && NameColumn + step.Name.Length <= Width)
+        {
+            text.Append(head.PadRight(NameColumn)).Append(step.Name).Append('\n');
+        }
+        else
+        {
+            text.Append(head).Append('\n').Append(Wrap(step.Name, Indent));
+        }
+
+        if (step.Formula.Length > 0)
+        {
+            text.Append(Wrap(step.Formula, Indent));
+        }
+
+        string grade = step.Grade is { } g ? $" ({Names.Of(g)})" : "";
+        if (step.Source.Length > 0)
+        {
+            text.Append(Wrap($"from {step.Source}{grade}", Indent));
+        }
+    }
+}
