@@ -2,6 +2,7 @@ using System.CommandLine;
 
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Report;
 using DeepSourceCheck.Report.Console;

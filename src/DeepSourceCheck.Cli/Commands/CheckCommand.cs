@@ -3,6 +3,7 @@ using System.Globalization;
 
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Studies;
 

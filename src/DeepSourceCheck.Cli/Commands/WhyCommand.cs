@@ -3,6 +3,7 @@ using System.Text.Json;
 
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Report.Console;

@@ -1,7 +1,6 @@
 using System.Globalization;
 
 using DeepSourceCheck.Core.Geometry;
-using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields.Imported;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Studies;

@@ -201,7 +201,7 @@ internal sealed class SensorAssembly
         Regions = [.. regions.Select(r => (r.Name, Picked(r.Positions)))],
     };
 
-    private static IReadOnlyList<Vec3> Picked(Vec3[] positions)
+    private static Vec3[] Picked(Vec3[] positions)
     {
         const int most = 2000;
         return positions.Length <= most ? positions : [.. Enumerable.Range(0, most).Select(k => positions[(long)k * positions.Length / most])];
