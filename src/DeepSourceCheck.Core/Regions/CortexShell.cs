@@ -40,7 +40,8 @@ public static class CortexShell
         {
             throw new InputException(null, null, string.Create(
                 CultureInfo.InvariantCulture,
-                $"region '{name}' would hold {count} points on a sphere of {Si.ToMm(radius):0.#} mm at a spacing of {Si.ToMm(spacing):0.####} mm; 1 to {GridSpacing.MostDipoles} are allowed"));
+                $"region '{name}' would hold {count} points on a sphere of {Si.ToMm(radius):0.#} mm "
+                + $"at a spacing of {Si.ToMm(spacing):0.####} mm; 1 to {GridSpacing.MostDipoles} are allowed"));
         }
 
         Vec3[] points = [.. Enumerable.Range(0, (int)count).Select(k => head.Centre + radius * GoldenSpiral.Point(k, (int)count))];

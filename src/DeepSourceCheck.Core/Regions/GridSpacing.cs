@@ -48,7 +48,8 @@ public static class GridSpacing
             double smallest = Math.Ceiling(1000 * Si.ToMm(Math.Cbrt(volume / MostDipoles))) / 1000;
             throw new InputException(file, key, string.Create(
                 CultureInfo.InvariantCulture,
-                $"region '{region}' would hold {expected:0.0e+0} dipoles; at most {MostDipoles:0.0e+0} are allowed: state a spacing_mm of at least {smallest:0.###}"));
+                $"region '{region}' would hold {expected:0.0e+0} dipoles; at most {MostDipoles:0.0e+0} are allowed: "
+                + $"state a spacing_mm of at least {smallest:0.###}"));
         }
     }
 

@@ -79,7 +79,9 @@ public static class RegionFill
         }
 
         return positions.Count > 0
-            ? Admit(new() { Name = name, Positions = [.. positions], Rows = [], PointNames = [.. pointNames], Origin = origin }, head, file, key, WarnDroppedShare)
+            ? Admit(
+                new() { Name = name, Positions = [.. positions], Rows = [], PointNames = [.. pointNames], Origin = origin },
+                head, file, key, WarnDroppedShare)
             : throw new InputException(file, key, $"region '{name}' has no points; give at least one");
     }
 
@@ -97,12 +99,15 @@ public static class RegionFill
         double spacing = stated ?? GridSpacing.Default;
         if (Tried(shape, spacing) > MostTried)
         {
-            throw new InputException(file, key, $"region '{name}' spreads over a box of more than {MostTried:0e+0} nodes at its spacing; state a larger spacing_mm");
+            throw new InputException(file, key, string.Create(
+                CultureInfo.InvariantCulture,
+                $"region '{name}' spreads over a box of more than {MostTried:0e+0} nodes at its spacing; state a larger spacing_mm"));
         }
 
         Vec3[] nodes = Nodes(shape, GridSpacing.InMillimetres(spacing));
         bool refined = false;
-        for (int k = 0; stated is null && k < GridSpacing.MostHalvings && nodes.Length < GridSpacing.LeastDipoles && Tried(shape, spacing / 2) <= MostRefined; k++)
+        int halvings = stated is null ? GridSpacing.MostHalvings : 0;
+        for (int k = 0; k < halvings && nodes.Length < GridSpacing.LeastDipoles && Tried(shape, spacing / 2) <= MostRefined; k++)
         {
             spacing /= 2;
             refined = true;
@@ -113,7 +118,8 @@ public static class RegionFill
         {
             throw new InputException(file, key, string.Create(
                 CultureInfo.InvariantCulture,
-                $"region '{name}' holds no grid node at a spacing of {Si.ToMm(spacing):0.####} mm: state a smaller spacing_mm, or leave it out to have it refined"));
+                $"region '{name}' holds no grid node at a spacing of {Si.ToMm(spacing):0.####} mm: "
+                + $"state a smaller spacing_mm, or leave it out to have it refined"));
         }
 
         FilledRegion all = new()
@@ -153,15 +159,16 @@ public static class RegionFill
         Vec3 centroid = sum / count;
         if (rows.Count == 0)
         {
-            throw new InputException(file, key,
-                $"region '{all.Name}' keeps no dipole in {head.Name}: its centroid lies {head.WhyRefused(centroid) ?? "inside, but each point is refused: " + dropped[0].Reason}");
+            string where = head.WhyRefused(centroid) ?? "inside, but each point is refused: " + dropped[0].Reason;
+            throw new InputException(file, key, $"region '{all.Name}' keeps no dipole in {head.Name}: its centroid lies {where}");
         }
 
         double share = dropped.Count / (double)count;
         string[] warnings = share <= warnShare ? [] :
         [
             string.Create(CultureInfo.InvariantCulture,
-                $"{all.Name}: {100 * share:0} % of it ({dropped.Count} of {count} dipoles) does not fit {head.Name} and was dropped; the figures stand for the rest"),
+                $"{all.Name}: {100 * share:0} % of it ({dropped.Count} of {count} dipoles) "
+                + $"does not fit {head.Name} and was dropped; the figures stand for the rest"),
         ];
         return new()
         {

@@ -27,6 +27,7 @@ public static class RegionSide
             ? null
             : string.Create(
                 CultureInfo.InvariantCulture,
-                $"{name}: its centroid lies on the {side} (x = {Si.ToMm(centroid.X):0.0} mm with x to the right); check the label, or whether the volume's left and right are swapped");
+                $"{name}: its centroid lies on the {side} (x = {Si.ToMm(centroid.X):0.0} mm with x to the right); "
+                + $"check the label, or whether the volume's left and right are swapped");
     }
 }

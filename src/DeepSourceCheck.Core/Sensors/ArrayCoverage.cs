@@ -71,7 +71,8 @@ public static class ArrayCoverage
     public static (double Share, string? Warning) OfRegion(string region, IReadOnlyList<Vec3> positions, LayeredSphere head, CoilArrayChoice choice)
     {
         int step = Math.Max(1, (positions.Count + 1999) / 2000);
-        double[] shares = [.. Enumerable.Range(0, (positions.Count + step - 1) / step).Select(k => CapturedShare(positions[k * step], head, choice)).Order()];
+        int count = (positions.Count + step - 1) / step;
+        double[] shares = [.. Enumerable.Range(0, count).Select(k => CapturedShare(positions[k * step], head, choice)).Order()];
         double median = (shares[(shares.Length - 1) / 2] + shares[shares.Length / 2]) / 2;
         return (median, median >= FullShare ? null : string.Create(
             CultureInfo.InvariantCulture,

@@ -115,10 +115,12 @@ public static class CoilArray
         Require(Coils.Contains(choice.Coil), Key + ".coil",
             $"there is no coil '{choice.Coil}'{NearestName.Hint(choice.Coil, Coils)}; use one of {string.Join(", ", Coils)}");
         Require(choice.Sites is >= 1 and <= MostSites, Key + ".sites", $"{choice.Sites} sites; 1 to {MostSites} are allowed");
-        Require(choice.Gap > 0 && double.IsFinite(choice.Gap), Key + ".gap_mm", $"a gap of {Mm(choice.Gap)} mm; coils must lie outside the scalp, so give more than 0");
+        Require(choice.Gap > 0 && double.IsFinite(choice.Gap), Key + ".gap_mm",
+            $"a gap of {Mm(choice.Gap)} mm; coils must lie outside the scalp, so give more than 0");
         if (choice.Coil is "axial-gradiometer" or "planar-gradiometer")
         {
-            Require(choice.Baseline > 0 && double.IsFinite(choice.Baseline), Key + ".baseline_mm", $"a baseline of {Mm(choice.Baseline)} mm; give more than 0");
+            Require(choice.Baseline > 0 && double.IsFinite(choice.Baseline), Key + ".baseline_mm",
+                $"a baseline of {Mm(choice.Baseline)} mm; give more than 0");
         }
 
         foreach ((double edge, string end) in new[] { (choice.EdgeFront, "front"), (choice.EdgeBack, "back") })

@@ -56,7 +56,8 @@ public sealed class Derivation
 
         if (readings.Count > 1)
         {
-            throw new InputException(null, key, $"'{text}' can be read as {string.Join(" or ", readings.Select(r => $"'{r.Plus}' against '{r.Minus}'"))}; rename an electrode");
+            string all = string.Join(" or ", readings.Select(r => $"'{r.Plus}' against '{r.Minus}'"));
+            throw new InputException(null, key, $"'{text}' can be read as {all}; rename an electrode");
         }
 
         if (readings.Count == 0)

@@ -54,5 +54,6 @@ public static class ElectrodePlacement
     private static string TooFar(double distance, LayeredSphere head) => string.Create(
         CultureInfo.InvariantCulture,
         $"is {Si.ToMm(Math.Abs(distance - head.OuterRadius)):0.0} mm {(distance > head.OuterRadius ? "outside" : "inside")} the scalp of {head.Name} "
-        + $"(radius {Si.ToMm(head.OuterRadius):0.#} mm); at most {Si.ToMm(LargestMove):0} mm is allowed: check the unit, the frame and the head's centre and radius");
+        + $"(radius {Si.ToMm(head.OuterRadius):0.#} mm); at most {Si.ToMm(LargestMove):0} mm is allowed: "
+        + $"check the unit, the frame and the head's centre and radius");
 }
