@@ -33,13 +33,15 @@ public sealed class AtlasVolumesTests
             volume = abs(numpy.linalg.det(image.affine[:3, :3])) / 1000
             if not numpy.array_equal(data, numpy.round(data)):
                 data = (data >= 0.5).astype(numpy.uint8)
-            flat = data.reshape(-1, order='F').astype(numpy.int64)
+            flat = data.reshape(-1, order='F').astype(numpy.int32)
             keep = numpy.flatnonzero(flat)
-            labels, which = numpy.unique(flat[keep], return_inverse=True)
+            which = flat[keep]
+            n = numpy.bincount(which)
+            labels = numpy.flatnonzero(n)
             nx, ny, nz = data.shape
             ijk = [keep % nx, keep // nx % ny, keep // nx // ny]
-            n = numpy.bincount(which)
-            mean = numpy.array([numpy.bincount(which, weights=a) / n for a in ijk])
+            n = n[labels]
+            mean = numpy.array([numpy.bincount(which, weights=a)[labels] / n for a in ijk])
             xyz = image.affine[:3, :3] @ mean + image.affine[:3, 3:]
             for k, label in enumerate(labels):
                 print(os.path.basename(path), label, n[k], '%.9f %.9f %.9f %.9f' % (n[k] * volume, *xyz[:, k]))

@@ -253,14 +253,13 @@ public sealed class NiftiReaderTests
     public void EveryTruncation_IsRefused()
     {
         byte[] plain = new NiftiBytes().File(), zipped = NiftiBytes.Gzip(plain);
-        for (int length = 0; length < plain.Length; length++)
+        using ScratchFolder folder = new();
+        foreach (byte[] file in new[] { plain, zipped })
         {
-            Assert.Throws<InputException>(() => Read(plain[..length]));
-        }
-
-        for (int length = 0; length < zipped.Length; length++)
-        {
-            Assert.Throws<InputException>(() => Read(zipped[..length]));
+            for (int length = 0; length < file.Length; length++)
+            {
+                Refusal(folder.Write("v.nii", file[..length]), "v.nii");
+            }
         }
     }
 
@@ -273,7 +272,7 @@ public sealed class NiftiReaderTests
         {
             for (int at = 0; at < file.Length; at++)
             {
-                foreach (byte value in new byte[] { 0x00, 0x01, 0x7f, 0x80, 0xff })
+                foreach (byte value in new byte[] { 0x00, 0x7f, 0xff })
                 {
                     byte[] damaged = [.. file];
                     damaged[at] = value;

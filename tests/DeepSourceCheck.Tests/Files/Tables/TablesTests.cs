@@ -61,7 +61,7 @@ public sealed class TablesTests
     [Fact]
     public void LongCellsAndManyProblems_AreCutShort()
     {
-        InputException error = Refused(() => PointsOf("name\tx\ty\tz\n" + string.Concat(Enumerable.Range(0, 1000).Select(n => $"p{n}\t{new string('9', 5000)}x\t1\t2\n"))));
+        InputException error = Refused(() => PointsOf("name\tx\ty\tz\n" + string.Concat(Enumerable.Range(0, 100).Select(n => $"p{n}\t{new string('9', 5000)}x\t1\t2\n"))));
         Assert.InRange(error.Problems.Count, 10, 50);
         Assert.Contains("further problems", error.Problems[^1].Message, StringComparison.Ordinal);
         Assert.InRange(error.Message.Length, 100, 10_000);
