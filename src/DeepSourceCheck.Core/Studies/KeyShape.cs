@@ -10,7 +10,11 @@ public abstract record KeyShape
     public abstract string Allowed(string unit);
 
     /// <summary>A number as study files write it.</summary>
-    public static string Text(double value) => value.ToString(Math.Abs(value) is >= 1e15 or (> 0 and < 1e-4) ? "0.###e+0" : "0.############", CultureInfo.InvariantCulture);
+    public static string Text(double value)
+    {
+        bool extreme = Math.Abs(value) is >= 1e15 or (> 0 and < 1e-4);
+        return value.ToString(extreme ? "0.###e+0" : "0.############", CultureInfo.InvariantCulture);
+    }
 
     private protected static string With(string unit) => unit.Length > 0 ? " " + unit : "";
 }

@@ -1,4 +1,3 @@
-using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Units;
 
@@ -9,13 +8,11 @@ namespace DeepSourceCheck.Core.Studies;
 /// <param name="Layers">Layers, innermost first: tissue, outer radius [mm], conductivity [S/m].</param>
 /// <param name="LibraryScale">Factor by which library regions scale about the centre.</param>
 /// <param name="RadiiSource">Where the radii come from.</param>
-public sealed record SpherePreset(string Name, IReadOnlyList<(string Tissue, double RadiusMm, double Conductivity)> Layers, double LibraryScale, string RadiiSource)
+public sealed record SpherePreset(
+    string Name, IReadOnlyList<(string Tissue, double RadiusMm, double Conductivity)> Layers, double LibraryScale, string RadiiSource)
 {
     /// <summary>Inner radius of the head for which the region library was made [mm].</summary>
     public const double LibraryInnerRadiusMm = 78;
-
-    /// <summary>Centre of every preset [mm], in the frame of the regions.</summary>
-    public static readonly Vec3 CentreMm = new(0, -18, 5);
 
     private const string AdultRadii = "adult head radii 78/80/86/92 mm, textbooks";
 

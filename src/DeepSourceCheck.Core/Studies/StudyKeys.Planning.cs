@@ -15,7 +15,10 @@ public static partial class StudyKeys
             Example = "3",
             Defaults = Default(3.0, "the 3:1 rule; " + CommonPractice, Grade.Memory),
         },
-        new("target.detection", "One-sided test at known topography and covariance.", new MapShape()) { Example = "{alpha: 0.01, power: 0.9, looks: 1}" },
+        new("target.detection", "One-sided test at known topography and covariance.", new MapShape())
+        {
+            Example = "{alpha: 0.01, power: 0.9, looks: 1}",
+        },
         new("target.detection.alpha", "Rate of false alarms over all looks.", new NumberShape(0, 0.5, AboveLow: true, BelowHigh: true))
         {
             Example = "0.01",
@@ -26,7 +29,8 @@ public static partial class StudyKeys
             Example = "0.9",
             Defaults = Default(0.9, "one person against chance; " + CommonPractice, Grade.Memory),
         },
-        new("target.detection.topography", "Known: the field's pattern is given.", new ChoiceShape(["known"]) { NotYet = ["plane", "unknown"] })
+        new("target.detection.topography", "Known: the field's pattern is given.",
+            new ChoiceShape(["known"]) { NotYet = ["plane", "unknown"] })
         {
             Example = "known",
             InsteadOfShape = "only topography: known is acted on",
@@ -43,15 +47,50 @@ public static partial class StudyKeys
             Example = "1",
             Defaults = Default(1.0, "channel, latency and polarity are fixed in advance unless stated", Grade.Derived),
         },
-        new("target.variance_ratio", "The F-ratio rule of averaged evoked responses.", new MapShape()) { Example = "{critical: 3.1, power: 0.9}", NotYet = VarianceRatioNotYet },
-        new("target.variance_ratio.critical", "Critical value of the ratio.", Above0(1e6)) { Example = "3.1", NotYet = VarianceRatioNotYet },
-        new("target.variance_ratio.power", "Probability of passing it.", new NumberShape(0, 1, AboveLow: true, BelowHigh: true)) { Example = "0.9", NotYet = VarianceRatioNotYet },
-        new("target.variance_ratio.window_rms_uV", "rms of the response over the window.", Above0(1e6)) { Unit = "uV", Example = "0.12", NotYet = VarianceRatioNotYet },
-        new("target.variance_ratio.degrees", "Degrees of freedom of the ratio.", new BandShape(Count(1, 1e9))) { Example = "[5, 250]", NotYet = VarianceRatioNotYet },
-        new("target.residual_nV", "Residual noise of the EEG average.", Above0(1e9)) { Unit = "nV", Example = "40", NotYet = VarianceRatioNotYet },
+        new("target.variance_ratio", "The F-ratio rule of averaged evoked responses.", new MapShape())
+        {
+            Example = "{critical: 3.1, power: 0.9}",
+            NotYet = VarianceRatioNotYet,
+        },
+        new("target.variance_ratio.critical", "Critical value of the ratio.", Above0(1e6))
+        {
+            Example = "3.1",
+            NotYet = VarianceRatioNotYet,
+        },
+        new("target.variance_ratio.power", "Probability of passing it.", new NumberShape(0, 1, AboveLow: true, BelowHigh: true))
+        {
+            Example = "0.9",
+            NotYet = VarianceRatioNotYet,
+        },
+        new("target.variance_ratio.window_rms_uV", "rms of the response over the window.", Above0(1e6))
+        {
+            Unit = "uV",
+            Example = "0.12",
+            NotYet = VarianceRatioNotYet,
+        },
+        new("target.variance_ratio.degrees", "Degrees of freedom of the ratio.", new BandShape(Count(1, 1e9)))
+        {
+            Example = "[5, 250]",
+            NotYet = VarianceRatioNotYet,
+        },
+        new("target.residual_nV", "Residual noise of the EEG average.", Above0(1e9))
+        {
+            Unit = "nV",
+            Example = "40",
+            NotYet = VarianceRatioNotYet,
+        },
 
-        new("protocol", "What the session affords; without it no minutes are given.", new MapShape()) { Example = "{rate_per_s: 11.1, rejected_fraction: 0.1, session_min: 40}" },
-        new("protocol.rate_per_s", "Stimuli per second.", Above0(1e5)) { Unit = "1/s", Required = true, Example = "11.1", Typical = new(0.05, 200) },
+        new("protocol", "What the session affords; without it no minutes are given.", new MapShape())
+        {
+            Example = "{rate_per_s: 11.1, rejected_fraction: 0.1, session_min: 40}",
+        },
+        new("protocol.rate_per_s", "Stimuli per second.", Above0(1e5))
+        {
+            Unit = "1/s",
+            Required = true,
+            Example = "11.1",
+            Typical = new(0.05, 200),
+        },
         new("protocol.rejected_fraction", "Share of the trials that are rejected.", new NumberShape(0, 1, BelowHigh: true))
         {
             Example = "0.1",
@@ -60,10 +99,22 @@ public static partial class StudyKeys
         new("protocol.session_min", "Recording time, over all conditions and replications.", Above0(1e5)) { Unit = "min", Example = "40" },
         new("protocol.preparation_min", "Preparation before the recording.", From0(1e5)) { Unit = "min", Example = "30" },
         new("protocol.breaks_min", "Breaks during the session.", From0(1e5)) { Unit = "min", Example = "5" },
-        new("protocol.conditions", "Conditions that share the session.", Count(1, 10_000)) { Example = "2", Defaults = Default(1.0, "one condition unless stated", Grade.Derived) },
-        new("protocol.replications", "Replications of each condition.", Count(1, 10_000)) { Example = "2", Defaults = Default(1.0, "one replication unless stated", Grade.Derived) },
+        new("protocol.conditions", "Conditions that share the session.", Count(1, 10_000))
+        {
+            Example = "2",
+            Defaults = Default(1.0, "one condition unless stated", Grade.Derived),
+        },
+        new("protocol.replications", "Replications of each condition.", Count(1, 10_000))
+        {
+            Example = "2",
+            Defaults = Default(1.0, "one replication unless stated", Grade.Derived),
+        },
         new("protocol.participants", "People who take part.", Count(1, 1e6)) { Example = "20", NotYet = PeopleNotYet },
-        new("protocol.spread_between_people", "Coefficient of variation of the moment between people.", From0(100)) { Example = "0.3", NotYet = PeopleNotYet },
+        new("protocol.spread_between_people", "Coefficient of variation of the moment between people.", From0(100))
+        {
+            Example = "0.3",
+            NotYet = PeopleNotYet,
+        },
     ];
 
     private static StudyKey[] Unknowns() =>
@@ -71,10 +122,24 @@ public static partial class StudyKeys
         new("unknowns", "How far each input may be off.", new MapShape()) { Example = "{head_shift_mm: 5}", NotYet = UnknownsNotYet },
         .. Spread("skull_conductivity_ratio", "Innermost conductivity over the skull's.", "15", "25", "80"),
         .. Spread("noise_factor", "Factor on every noise amplitude.", "0.7", "1", "1.5"),
-        new("unknowns.head_shift_mm", "Standard deviation of the head's place in the array, each axis.", From0(1000)) { Unit = "mm", Example = "5", NotYet = UnknownsNotYet },
-        new("unknowns.centre_shift_mm", "Standard deviation of the sphere's centre, each axis.", From0(1000)) { Unit = "mm", Example = "5", NotYet = UnknownsNotYet },
+        new("unknowns.head_shift_mm", "Standard deviation of the head's place in the array, each axis.", From0(1000))
+        {
+            Unit = "mm",
+            Example = "5",
+            NotYet = UnknownsNotYet,
+        },
+        new("unknowns.centre_shift_mm", "Standard deviation of the sphere's centre, each axis.", From0(1000))
+        {
+            Unit = "mm",
+            Example = "5",
+            NotYet = UnknownsNotYet,
+        },
         new("unknowns.samples", "Draws over the unknowns.", Count(1, 1e6)) { Example = "256", NotYet = UnknownsNotYet },
-        new("variants", "Studies that override keys of this one.", new ListShape("a variant {name, and the keys that it overrides}")) { Example = "[{name: three layers, head: {spheres: {preset: adult-3}}}]", NotYet = VariantsNotYet },
+        new("variants", "Studies that override keys of this one.", new ListShape("a variant {name, and the keys that it overrides}"))
+        {
+            Example = "[{name: three layers, head: {spheres: {preset: adult-3}}}]",
+            NotYet = VariantsNotYet,
+        },
         new("variants[].name", "Name of the variant.", new TextShape("a name")) { Example = "three layers", NotYet = VariantsNotYet },
     ];
 
@@ -83,7 +148,11 @@ public static partial class StudyKeys
         string key = "unknowns." + name;
         return
         [
-            new(key, description, new MapShape()) { Example = $"{{low: {low}, typical: {typical}, high: {high}}}", NotYet = UnknownsNotYet },
+            new(key, description, new MapShape())
+            {
+                Example = $"{{low: {low}, typical: {typical}, high: {high}}}",
+                NotYet = UnknownsNotYet,
+            },
             new(key + ".low", "The 5 % point.", Above0(1e6)) { Example = low, NotYet = UnknownsNotYet },
             new(key + ".typical", "The median.", Above0(1e6)) { Example = typical, NotYet = UnknownsNotYet },
             new(key + ".high", "The 95 % point.", Above0(1e6)) { Example = high, NotYet = UnknownsNotYet },

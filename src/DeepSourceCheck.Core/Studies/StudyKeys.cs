@@ -8,9 +8,10 @@ public static partial class StudyKeys
     private const string CommonPractice = "common practice, no source";
 
     /// <summary>All keys.</summary>
-    public static IReadOnlyList<StudyKey> All { get; } = [.. Top(), .. Head(), .. Sensors(), .. Noise(), .. Regions(), .. Responses(), .. Planning(), .. Unknowns()];
+    public static IReadOnlyList<StudyKey> All { get; } =
+        [.. Top(), .. Head(), .. Sensors(), .. Noise(), .. Regions(), .. Responses(), .. Planning(), .. Unknowns()];
 
-    // After All: static fields of a type are set in the order of their text, in one file only. The other files of this class therefore hold no static fields.
+    // After All: static fields are set in the order of their text, within one file only; the other files of this class therefore hold none.
     private static readonly FrozenDictionary<string, StudyKey> ByPath = All.ToFrozenDictionary(key => key.Path, StringComparer.Ordinal);
 
     private static readonly FrozenDictionary<string, StudyKey[]> ByParent =
@@ -33,7 +34,8 @@ public static partial class StudyKeys
             Example = "Click response of the brainstem, adult volunteers",
             LabelOnly = true,
         },
-        new("accept_implausible", "Keys whose values are meant although they lie more than 10 times outside the usual range.", new TextListShape("the full key of a value in this study"))
+        new("accept_implausible", "Keys whose values are meant although they lie more than 10 times outside the usual range.",
+            new TextListShape("the full key of a value in this study", Fewest: 0))
         {
             Example = "[responses.wave V.moment_nAm]",
         },

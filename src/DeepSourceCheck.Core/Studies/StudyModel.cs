@@ -97,7 +97,7 @@ public sealed record ReferenceChoice(ReferenceKind Kind, IReadOnlyList<string> E
 /// <summary>Electrodes: a layout or a table; neither for imported leadfields.</summary>
 public sealed record EegChoice(string? Layout, string? ElectrodesFile, string? CoordinatesFile, ReferenceChoice Reference);
 
-/// <summary>MEG channels: a table or a generated array.</summary>
+/// <summary>MEG channels: a table or a generated array; neither for imported leadfields.</summary>
 public sealed record MegChoice(string? CoilsFile, CoilArrayChoice? Generated);
 
 /// <summary>A generated array.</summary>

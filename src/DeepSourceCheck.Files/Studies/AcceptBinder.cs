@@ -28,7 +28,8 @@ internal static class AcceptBinder
                 continue;
             }
 
-            string nearest = reading.Problems.Count < 100 && NearestName.Of(entry.Text, reading.Places.Keys.Where(k => k != Name)) is { } near ? $"; the nearest is {Shown.Text(near, 120)}" : "";
+            string? near = reading.Suggests ? NearestName.Of(entry.Text, reading.Places.Keys.Where(k => k != Name)) : null;
+            string nearest = near is null ? "" : $"; the nearest is {Shown.Text(near, 120)}";
             root.ProblemAt(entry, Name, $"{Shown.Quoted(entry.Text)} names no key of this study{nearest}");
         }
 

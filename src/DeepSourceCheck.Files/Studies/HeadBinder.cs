@@ -25,7 +25,8 @@ internal static class HeadBinder
             return null;
         }
 
-        return head.OneOf("write exactly one of spheres and leadfields", "spheres", "leadfields", "voxels") switch
+        string[] kinds = head.States("voxels") ? ["spheres", "leadfields", "voxels"] : ["spheres", "leadfields"];
+        return head.OneOf("write exactly one of spheres and leadfields", kinds) switch
         {
             "spheres" when head.Map("spheres") is { } spheres => Spheres(spheres, reading),
             "leadfields" when head.Map("leadfields") is { } leadfields => Imported(leadfields),
@@ -47,8 +48,7 @@ internal static class HeadBinder
     private static SphereHeadChoice? Spheres(Section section, Reading reading)
     {
         string? which = section.OneOf("write preset for a head by name, or layers for your own", "preset", "layers");
-        Vec3? centreMm = section.Vector("centre_mm");
-        Vec3 centre = Si.FromMm(1) * (centreMm ?? SpherePreset.CentreMm);
+        Vec3 centre = section.Millimetres("centre_mm") ?? Vec3.Zero;
         if (which == "preset" && section.Text("preset") is { } name && SpherePreset.Find(name) is { } preset)
         {
             for (int k = 0; k < preset.Layers.Count; k++)
@@ -85,7 +85,8 @@ internal static class HeadBinder
             double? radius = entry.Number("radius_mm");
             if (radius <= inner)
             {
-                entry.Problem("radius_mm", $"{KeyShape.Text(radius.Value)} mm is not larger than the {KeyShape.Text(inner)} mm of the layer before; list the layers from the innermost to the outermost");
+                entry.Problem("radius_mm", $"{KeyShape.Text(radius.Value)} mm is not larger than the {KeyShape.Text(inner)} mm of the layer before; "
+                    + "list the layers from the innermost to the outermost");
             }
 
             inner = radius ?? inner;

@@ -43,7 +43,8 @@ internal static class NoiseBinder
         if (brain != true && !noise.States("eeg_total") && (eeg == "spectral" || meg == "spectral"))
         {
             string which = eeg == "spectral" && meg == "spectral" ? "EEG and MEG" : eeg == "spectral" ? "EEG" : "MEG";
-            reading.Warn("noise", $"the {which} noise is the instrument's alone, so the trial counts are lower bounds; state eeg_total or brain: default for the noise of a living head");
+            reading.Warn("noise", $"the {which} noise is the instrument's alone, so the trial counts are lower bounds; "
+                + "state eeg_total or brain: default for the noise of a living head");
         }
 
         return choice;
@@ -84,8 +85,8 @@ internal static class NoiseBinder
         foreach (string name in new[] { flat, measured }.Where(noise.States))
         {
             string others = string.Join(", ", stated.Where(other => other != name));
-            string what = name == flat ? "a flat figure is all of the noise, nothing else is added" : "a measured covariance is all of the noise, nothing else is added";
-            noise.Problem(name, $"stands beside {others}: {what}; keep one of them");
+            string what = name == flat ? "a flat figure" : "a measured covariance";
+            noise.Problem(name, $"stands beside {others}: {what} is all of the noise, nothing else is added; keep one of them");
         }
 
         foreach (string name in stated)
@@ -106,7 +107,8 @@ internal static class NoiseBinder
         bool planar = coil == "planar-gradiometer";
         if (planar && meg == "flat")
         {
-            noise.Problem("meg_sensor_fT_rms", "is in fT, but planar gradiometers measure a difference over their baseline, in fT/cm; state meg_planar_fT_per_cm_rtHz instead");
+            noise.Problem("meg_sensor_fT_rms",
+                "is in fT, but planar gradiometers measure a difference over their baseline, in fT/cm; state meg_planar_fT_per_cm_rtHz instead");
         }
 
         if (meg != "spectral")
@@ -143,11 +145,13 @@ internal static class NoiseBinder
         bool on = noise.Text("brain") == "default";
         if (on && sensors.Imported)
         {
-            noise.Problem("brain", "the default tables need a head whose cortex is known; with head.leadfields write brain: none, or give measured covariances");
+            noise.Problem("brain",
+                "the default tables need a head whose cortex is known; with head.leadfields write brain: none, or give measured covariances");
         }
         else if (on && !spectral && (eeg ?? meg) is not null)
         {
-            noise.Problem("brain", "stands beside flat figures or covariances, which are all of the noise, nothing else is added; remove it or state densities");
+            noise.Problem("brain",
+                "stands beside flat figures or covariances, which are all of the noise, nothing else is added; remove it or state densities");
         }
 
         return noise.Raw("brain") is null ? null : on;

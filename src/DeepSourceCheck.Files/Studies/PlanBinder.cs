@@ -74,13 +74,15 @@ internal static class PlanBinder
             string key = response.Key + ".window_ms";
             if (protocol is not null && window * protocol.Rate > 1)
             {
-                reading.Warn(key, $"{KeyShape.Text(window * 1000)} ms is longer than the {Rounded(1000 / protocol.Rate)} ms between stimuli at protocol.rate_per_s; responses overlap in the window");
+                reading.Warn(key, $"{KeyShape.Text(window * 1000)} ms is longer than the {Rounded(1000 / protocol.Rate)} ms between stimuli "
+                    + "at protocol.rate_per_s; responses overlap in the window");
             }
 
             double looks = 2 * response.Band.Width * window;
             if (looks > 1 && targets.OfType<DetectionChoice>().Any(d => d.Looks == 1))
             {
-                reading.Warn(key, $"the window holds about {Rounded(looks)} independent looks (2 x bandwidth x window); target.detection.looks 1 holds only for a latency, channel and polarity fixed in advance");
+                reading.Warn(key, $"the window holds about {Rounded(looks)} independent looks (2 x bandwidth x window); "
+                    + "target.detection.looks 1 holds only for a latency, channel and polarity fixed in advance");
             }
         }
     }

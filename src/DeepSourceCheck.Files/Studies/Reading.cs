@@ -56,8 +56,12 @@ internal sealed class Reading(string file, string folder, Purpose purpose, IRead
 {
     private const int MostKept = 2000;
     private const int MostPrinted = 20;
+    private const int MostSuggestions = 100;
 
     private int dropped;
+
+    /// <summary>False beyond 100 problems: a list of thousands of wrong names needs no thousands of nearest names.</summary>
+    public bool Suggests => Problems.Count < MostSuggestions;
 
     public string File { get; } = file;
 

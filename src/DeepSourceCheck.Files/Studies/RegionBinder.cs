@@ -66,7 +66,8 @@ internal static class RegionBinder
         RegionChoice? region = which switch
         {
             "ellipsoid" when Ellipsoid(entry) is { } ellipsoid => new() { Name = "", Key = entry.Key, Ellipsoid = ellipsoid },
-            "mask" when entry.Text("mask") is { } mask => new() { Name = "", Key = entry.Key, Mask = mask, Label = entry.Number("label"), Threshold = entry.Number("threshold") },
+            "mask" when entry.Text("mask") is { } mask =>
+                new() { Name = "", Key = entry.Key, Mask = mask, Label = entry.Number("label"), Threshold = entry.Number("threshold") },
             "points" when entry.Text("points") is { } points => new() { Name = "", Key = entry.Key, Points = points },
             _ => null,
         };
@@ -76,13 +77,16 @@ internal static class RegionBinder
         }
 
         double? spacing = entry.Number("spacing_mm") is { } mm ? Si.FromMm(mm) : null;
-        if (spacing is { } h && region.Ellipsoid is { SemiAxes: var axes } && 4.0 / 3.0 * Math.PI * axes.X * axes.Y * axes.Z / (h * h * h) is > MostDipoles and var count)
+        if (spacing is { } h && region.Ellipsoid is { } shape && Volume(shape) / (h * h * h) is > MostDipoles and var count)
         {
-            entry.Problem("spacing_mm", $"fills the ellipsoid with about {KeyShape.Text(Math.Round(count))} dipoles, more than {KeyShape.Text(MostDipoles)}; state a wider spacing");
+            entry.Problem("spacing_mm", $"fills the ellipsoid with about {KeyShape.Text(Math.Round(count))} dipoles, "
+                + $"more than {KeyShape.Text(MostDipoles)}; state a wider spacing");
         }
 
         return region with { Spacing = spacing };
     }
+
+    private static double Volume(EllipsoidChoice shape) => 4.0 / 3.0 * Math.PI * shape.SemiAxes.X * shape.SemiAxes.Y * shape.SemiAxes.Z;
 
     private static EllipsoidChoice? Ellipsoid(Section entry)
     {
@@ -91,11 +95,9 @@ internal static class RegionBinder
             return null;
         }
 
-        Vec3? centre = section.Vector("centre_mm"), axes = section.Vector("semi_axes_mm"), turn = section.Vector("rotation_deg");
+        Vec3? centre = section.Millimetres("centre_mm"), axes = section.Millimetres("semi_axes_mm"), turn = section.Vector("rotation_deg");
         return centre is { } c && axes is { } a && turn is { } t
-            ? new(Millimetres(c), Millimetres(a), Rotation.FromFixedAxes(Si.FromDegrees(t.X), Si.FromDegrees(t.Y), Si.FromDegrees(t.Z)))
+            ? new(c, a, Rotation.FromFixedAxes(Si.FromDegrees(t.X), Si.FromDegrees(t.Y), Si.FromDegrees(t.Z)))
             : null;
     }
-
-    private static Vec3 Millimetres(Vec3 v) => new(Si.FromMm(v.X), Si.FromMm(v.Y), Si.FromMm(v.Z));
 }

@@ -72,7 +72,8 @@ internal static class ResponseBinder
         double? window = entry.Number("window_ms");
         Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
         Section measure = entry.Map("measure") ?? entry.Entry("measure");
-        double artefactEeg = Artefact(artefact, "eeg_uV", sensors.HasEeg, "the study has no electrodes"), artefactMeg = Artefact(artefact, "meg_fT", sensors.HasMeg, "the study has no MEG sensors");
+        double artefactEeg = Artefact(artefact, "eeg_uV", sensors.HasEeg, "the study has no electrodes");
+        double artefactMeg = Artefact(artefact, "meg_fT", sensors.HasMeg, "the study has no MEG sensors");
         string? eegMeasure = EegMeasure(measure, sensors), megMeasure = MegMeasure(measure, sensors);
         return name is null || moment is null || band is null || direction is null || regions.Count == 0 ? null : new()
         {
@@ -110,12 +111,13 @@ internal static class ResponseBinder
             }
             else if (sensors.Imported && reading.LibraryRegions.Contains(item.Text))
             {
-                fault = $"the library's region {item.Text} has no place among imported leadfields; list the imported points under regions with points";
+                fault = $"the library's region {item.Text} has no place among imported leadfields; "
+                    + "list the imported points under regions with points";
             }
             else
             {
                 IEnumerable<string> known = sensors.Imported ? own : own.Concat(reading.LibraryRegions.Where(r => !own.Contains(r)));
-                string nearest = reading.Problems.Count < 100 && NearestName.Of(item.Text, known) is { } near ? $"the nearest known one is {Shown.Quoted(near)}; " : "";
+                string nearest = reading.Suggests && NearestName.Of(item.Text, known) is { } near ? $"the nearest known one is {Shown.Quoted(near)}; " : "";
                 fault = $"there is no region {Shown.Quoted(item.Text)}; {nearest}write one of the study's regions"
                     + (sensors.Imported ? "" : " or of the library (`deepsourcecheck regions` lists them)");
             }
@@ -167,7 +169,8 @@ internal static class ResponseBinder
         {
             if (passed is { } p && (band.Low < p.Low || band.High > p.High))
             {
-                entry.Problem("band_Hz", $"the response's band of {Text(band)} lies outside the {Text(p)} that the {what} pass{(modality == "eeg" ? "es" : "")} (sensors.bandwidth_Hz.{modality}); "
+                string passes = modality == "eeg" ? "passes" : "pass";
+                entry.Problem("band_Hz", $"the response's band of {Text(band)} lies outside the {Text(p)} that the {what} {passes} (sensors.bandwidth_Hz.{modality}); "
                     + $"they would not record it: narrow the band to what is passed, or remove sensors.{modality}");
             }
         }

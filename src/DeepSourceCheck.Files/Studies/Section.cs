@@ -1,5 +1,6 @@
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Files.Studies;
 
@@ -26,6 +27,9 @@ internal sealed class Section(Reading reading, PlacedMap map, string path)
     public string? Text(string name, string useCase = "") => Take(name, useCase) as string;
 
     public Vec3? Vector(string name) => Take(name, "") is double[] v ? new Vec3(v[0], v[1], v[2]) : null;
+
+    /// <summary>A place or length in mm, as metres.</summary>
+    public Vec3? Millimetres(string name) => Vector(name) is { } v ? new Vec3(Si.FromMm(v.X), Si.FromMm(v.Y), Si.FromMm(v.Z)) : null;
 
     public Band? Band(string name) => Take(name, "") is double[] v ? new Band(v[0], v[1]) : null;
 

@@ -23,7 +23,8 @@ internal static class Shown
     /// <summary>The text in quotes, shortened.</summary>
     public static string Quoted(string text) => $"'{Text(text)}'";
 
-    /// <summary>Control, format and unpaired characters, which no name or path may hold. (A pair is never split: both halves count.)</summary>
+    /// <summary>Control and invisible characters, which no name or path may hold.</summary>
     public static bool IsHidden(char c) =>
-        char.GetUnicodeCategory(c) is UnicodeCategory.Control or UnicodeCategory.Format or UnicodeCategory.LineSeparator or UnicodeCategory.ParagraphSeparator;
+        char.GetUnicodeCategory(c) is UnicodeCategory.Control or UnicodeCategory.Format
+            or UnicodeCategory.LineSeparator or UnicodeCategory.ParagraphSeparator;
 }

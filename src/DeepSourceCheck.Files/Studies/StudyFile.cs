@@ -44,7 +44,8 @@ public static class StudyFile
     {
         if (bytes.Length > LargestFile)
         {
-            throw new InputException(file, null, $"the file is larger than {LargestFile / (1024 * 1024)} MB; no study is: put data into tables or arrays and name them");
+            throw new InputException(file, null,
+                $"the file is larger than {LargestFile / (1024 * 1024)} MB; no study is: put data into tables or arrays and name them");
         }
 
         if (bytes.StartsWith<byte>([0xFF, 0xFE]) || bytes.StartsWith<byte>([0xFE, 0xFF]) || bytes.StartsWith<byte>([0, 0, 0xFE, 0xFF]))

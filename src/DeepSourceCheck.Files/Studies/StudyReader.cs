@@ -23,7 +23,7 @@ public static class StudyReader
     public static StudyReading ReadText(string text, string fileName, string folder, Purpose purpose, IReadOnlyCollection<string> libraryRegions)
     {
         StudyFile.CheckCharacters(text, fileName);
-        var reading = new Reading(fileName, folder, purpose, libraryRegions as ISet<string> is null ? libraryRegions.ToHashSet(StringComparer.Ordinal) : libraryRegions);
+        var reading = new Reading(fileName, folder, purpose, libraryRegions.ToHashSet(StringComparer.Ordinal));
         if (YamlTree.Parse(text, fileName, reading.Problems) is not { } tree || tree is YamlScalar { IsNull: true })
         {
             throw new InputException([new(fileName, 1, 1, null, "the file is empty; make an example with `deepsourcecheck new FOLDER`")]);

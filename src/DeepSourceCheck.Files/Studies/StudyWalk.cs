@@ -5,9 +5,6 @@ namespace DeepSourceCheck.Files.Studies;
 /// <summary>Walks a YAML tree along the registry of keys: what comes out is admitted by its key and knows its place; everything else is reported.</summary>
 internal sealed class StudyWalk(Reading reading)
 {
-    // Beyond this many problems nearest names are no longer looked for: a list of thousands of wrong names needs no thousands of suggestions.
-    private const int SuggestionsUntil = 100;
-
     /// <summary>The top level.</summary>
     public PlacedMap Root(YamlMap node) => Map(new StudyKey("", "The study.", new MapShape()), "", "", node);
 
@@ -42,7 +39,8 @@ internal sealed class StudyWalk(Reading reading)
 
         foreach (StudyKey child in known.Where(k => k.Required && !map.Entries.ContainsKey(k.Name) && !map.Faulty.Contains(k.Name)))
         {
-            reading.Problem(node.Line, node.Column, Join(key, child.Name), $"is missing; it must be {child.Allowed}, for instance `{child.Name}: {child.Example}`");
+            reading.Problem(node.Line, node.Column, Join(key, child.Name),
+                $"is missing; it must be {child.Allowed}, for instance `{child.Name}: {child.Example}`");
         }
 
         return map;
@@ -70,7 +68,6 @@ internal sealed class StudyWalk(Reading reading)
     private Placed? Scalar(StudyKey spec, string key, YamlScalar scalar)
     {
         string reason = "";
-        bool suggest = reading.Problems.Count < SuggestionsUntil;
         foreach (KeyShape shape in spec.Shapes)
         {
             switch (shape)
@@ -79,7 +76,7 @@ internal sealed class StudyWalk(Reading reading)
                     return new PlacedText(spec, key, scalar.Line, scalar.Column, scalar.Text, isWord: true);
                 case ChoiceShape choice when choice.NotYet.Contains(scalar.Text):
                     return Fault(scalar, key, $"{Shown.Quoted(scalar.Text)} is not supported yet: {spec.InsteadOfShape}");
-                case ChoiceShape choice when suggest && NearestName.Of(scalar.Text, choice.Words) is { } nearest:
+                case ChoiceShape choice when reading.Suggests && choice.Words.Count > 1 && NearestName.Of(scalar.Text, choice.Words) is { } nearest:
                     reason = $"; the nearest is {nearest}";
                     break;
                 case NumberShape number when YamlNumber.Parse(scalar, out string fault) is { } value:
@@ -168,7 +165,9 @@ internal sealed class StudyWalk(Reading reading)
             }
 
             YamlNode item = list.Items[k];
-            string what = item is YamlScalar { Text: var text } ? $"{Shown.Quoted(text)} is not allowed{(reason.Length > 0 ? ": " + reason : "")}" : $"entry {k + 1} is {item.What}";
+            string what = item is YamlScalar { Text: var text }
+                ? $"{Shown.Quoted(text)} is not allowed{(reason.Length > 0 ? ": " + reason : "")}"
+                : $"entry {k + 1} is {item.What}";
             Fault(item, key, $"{what}; it must be {spec.Allowed}");
             return null;
         }
@@ -258,7 +257,7 @@ internal sealed class StudyWalk(Reading reading)
     {
         string name = entry.Name;
         List<string> elsewhere = [.. StudyKeys.Named(name).Select(k => k.Path)];
-        string? nearest = reading.Problems.Count < SuggestionsUntil ? NearestName.Of(name, known.Select(k => k.Name)) : null;
+        string? nearest = reading.Suggests ? NearestName.Of(name, known.Select(k => k.Name)) : null;
         string hint = elsewhere.Count > 0
             ? $"the key {Shown.Quoted(name)} does not belong here; it is known as {string.Join(", ", elsewhere.Take(3))}"
             : $"unknown key {Shown.Quoted(name)}" + (nearest is null ? "" : $"; the nearest known one is {nearest}");

@@ -22,7 +22,8 @@ internal static partial class YamlNumber
             reason = text switch
             {
                 _ when NotFinite().IsMatch(text) => "only finite numbers are allowed",
-                _ when text.Contains('_') && Decimal().IsMatch(text.Replace("_", "", StringComparison.Ordinal)) => "digits are not grouped by _; write them together",
+                _ when text.Contains('_') && Decimal().IsMatch(text.Replace("_", "", StringComparison.Ordinal)) =>
+                    "digits are not grouped by _; write them together",
                 _ when OtherBase().IsMatch(text) => "only decimal numbers are allowed",
                 _ when Comma().IsMatch(text) => "the decimal sign is a point, and digits are not grouped by commas",
                 _ => "it is not a number",

@@ -211,7 +211,8 @@ public sealed class YamlTree
         {
             throw Fatal(e.Start, $"this is not YAML: {Sentence(e.Message)}{OpenBracket()}");
         }
-        catch (Exception e) when (e is ArgumentException or InvalidOperationException or FormatException or ArithmeticException or IndexOutOfRangeException or KeyNotFoundException)
+        catch (Exception e) when (e is ArgumentException or InvalidOperationException or FormatException or ArithmeticException
+            or IndexOutOfRangeException or KeyNotFoundException)
         {
             // The parser throws these instead of its own on some broken texts.
             throw Fatal(parser.Current?.End ?? Mark.Empty, $"this is not YAML: the text after this place cannot be read{OpenBracket()}");

@@ -57,6 +57,7 @@ public class StudyReaderErrorTests
     [InlineData("tables", "radius_mm: 80, conductivity_S_per_m: 1.79", "radius_mm: 80", "head.spheres.layers[1]", "no conductivity|radial_S_per_m and tangential_S_per_m")]
     [InlineData("tables", "radius_mm: 80, conductivity_S_per_m: 1.79", "radius_mm: 80, conductivity_S_per_m: 1.79, radial_S_per_m: 1", "head.spheres.layers[1].conductivity_S_per_m", "beside radial_S_per_m")]
     [InlineData("tables", "radial_S_per_m: 0.0132, ", "", "head.spheres.layers[2].radial_S_per_m", "is missing|together")]
+    [InlineData("small", "title: small", "title: small\naccept_implausible: [head.spheres.preset, \"responses[1]\"]", "accept_implausible", "'responses[1]'")]
     [InlineData("imported", "eeg: eeg.npy, meg: meg.npy, points", "points", "head.leadfields", "neither eeg nor meg")]
     // sensors
     [InlineData("small", "layout: ten-ten-64", "layout: ten-ten-64, electrodes: electrodes.tsv", "sensors.eeg.electrodes", "beside layout")]
@@ -201,6 +202,15 @@ public class StudyReaderErrorTests
         InputProblem problem = StudyText.Problem(text);
         Assert.Equal("head.spheres.layers[3].radius_mm", problem.Key);
         Assert.Contains("the head's radius 0.92 mm is far from the usual 45 to 110 mm", problem.Message, StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public void Head_WithVeryManyLayers_IsRefused()
+    {
+        string layers = string.Join(", ", Enumerable.Range(1, 51).Select(k => $"{{tissue: t, radius_mm: {k}, conductivity_S_per_m: 0.33}}"));
+        InputProblem problem = StudyText.Problem(StudyText.Small.With("preset: adult-4", $"layers: [{layers}]"));
+        Assert.Equal("head.spheres.layers", problem.Key);
+        Assert.Contains("51 layers; at most 50", problem.Message, StringComparison.Ordinal);
     }
 
     [Fact]
