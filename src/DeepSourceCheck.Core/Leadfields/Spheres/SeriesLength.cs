@@ -19,6 +19,9 @@ public sealed class SeriesLength
     /// <summary>Depths tabulated, evenly in -ln(1 - x): 2 % steps of the distance to the inner boundary.</summary>
     private const int Depths = 256;
 
+    /// <summary>The share of <see cref="Tail"/> that the majorant may take.</summary>
+    private const double MajorantShare = 0.1;
+
     private readonly double[] eccentricities = new double[Depths + 1];
     private readonly int[] degrees = new int[Depths + 1];
 
@@ -27,7 +30,7 @@ public sealed class SeriesLength
     {
         LargestEccentricity = LayeredSphere.LargestEccentricity * (1 + 1e-9);
         double first = transfer.Coefficient(1);
-        Longest = MajorantLength(transfer, LargestEccentricity, 0.1 * Tail * first);
+        Longest = MajorantLength(transfer, LargestEccentricity, MajorantShare * Tail * first);
         Coefficients = new double[Longest + 2];
         double[] exponents = new double[Longest + 2];
         for (int n = 1; n < Coefficients.Length; n++)
@@ -36,15 +39,20 @@ public sealed class SeriesLength
             exponents[n] = transfer.Exponent(0, n);
         }
 
+        // From the shallowest depth downwards: what the next deeper one leaves out beyond the same degree shrinks at least as its first neglected power.
         double[] terms = new double[Longest + 1];
-        double step = -Math.Log(1.0 - LargestEccentricity) / Depths;
-        degrees[0] = 1;
-        for (int k = 1; k <= Depths; k++)
+        double step = -Math.Log(1.0 - LargestEccentricity) / Depths, rest = MajorantShare * Tail;
+        int degree = Longest;
+        for (int k = Depths; k >= 1; k--)
         {
             double x = k == Depths ? LargestEccentricity : 1.0 - Math.Exp(-step * k);
             eccentricities[k] = x;
-            degrees[k] = Degree(terms, exponents, x, transfer.InnermostIsIsotropic, 0.9 * Tail);
+            (degree, rest) = Shorten(terms, exponents, x, degree, rest, transfer.InnermostIsIsotropic);
+            degrees[k] = degree;
+            rest *= Math.Pow((1.0 - Math.Exp(-step * (k - 1))) / x, exponents[degree + 1] - exponents[1]);
         }
+
+        degrees[0] = 1;
     }
 
     /// <summary>Largest admitted |r0|/r_1.</summary>
@@ -70,24 +78,23 @@ public sealed class SeriesLength
         return degrees[k >= 0 ? k : ~k];
     }
 
-    private int Degree(double[] terms, double[] exponents, double x, bool isotropic, double allowed)
+    /// <summary>The smallest degree at depth <paramref name="x"/>, at most <paramref name="degree"/>, and what lies beyond it relative to the first term.</summary>
+    private (int Degree, double LeftOut) Shorten(double[] terms, double[] exponents, double x, int degree, double rest, bool isotropic)
     {
         double logX = Math.Log(x), power = 1.0;
-        for (int n = 1; n <= Longest; n++)
+        for (int n = 1; n <= degree; n++)
         {
             double v = exponents[n];
             terms[n] = Coefficients[n] * Math.Sqrt(((double)n * n + v * v) / 2.0) * (isotropic ? power : Math.Exp((v - 1.0) * logX));
             power *= x;
         }
 
-        double rest = 0;
-        int degree = Longest;
-        while (degree > 1 && rest + terms[degree] <= allowed * terms[1])
+        while (degree > 1 && rest + terms[degree] / terms[1] <= Tail)
         {
-            rest += terms[degree--];
+            rest += terms[degree--] / terms[1];
         }
 
-        return degree;
+        return (degree, rest);
     }
 
     private static int MajorantLength(LayerTransfer transfer, double x, double allowed)

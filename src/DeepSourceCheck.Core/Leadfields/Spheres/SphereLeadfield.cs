@@ -1,5 +1,6 @@
 using System.Globalization;
 
+using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
@@ -10,6 +11,10 @@ namespace DeepSourceCheck.Core.Leadfields.Spheres;
 /// <summary>EEG and MEG leadfields of a layered sphere. Either list of sensors may be empty.</summary>
 public sealed class SphereLeadfield : ILeadfieldSource
 {
+    /// <summary>Room for the rounding of a position at the limit itself.</summary>
+    private const double Rounding = 1e-9;
+
+    private readonly LayeredSphere head;
     private readonly EegLayerSeries? eeg;
     private readonly MegSphere? meg;
 
@@ -22,6 +27,7 @@ public sealed class SphereLeadfield : ILeadfieldSource
     public SphereLeadfield(LayeredSphere head, IReadOnlyList<Electrode> electrodes, IReadOnlyList<MegChannel> channels)
     {
         CheckCoils(head, channels);
+        this.head = head;
         eeg = electrodes.Count > 0 ? new EegLayerSeries(head, electrodes) : null;
         meg = channels.Count > 0 ? new MegSphere(head.Centre, channels) : null;
     }
@@ -80,6 +86,15 @@ public sealed class SphereLeadfield : ILeadfieldSource
         {
             throw new ArgumentException(
                 $"The block holds {block.EegRows} electrodes and {block.MegRows} channels; the head has {EegRows} and {MegRows}.", nameof(block));
+        }
+
+        double limit = LayeredSphere.LargestEccentricity * head.InnerRadius * (1 + Rounding);
+        foreach (Vec3 position in block.Positions)
+        {
+            if (!((position - head.Centre).Norm <= limit))
+            {
+                throw new ArgumentOutOfRangeException(nameof(block), position, $"A dipole must stand within {limit} m of the sphere's centre.");
+            }
         }
 
         eeg?.Fill(block);

@@ -63,6 +63,7 @@ public class EegLayerSeriesTests
         }
     }
 
+    // The kernel rests on reciprocity (current through the electrode), the twin on the source itself: their agreement is the reciprocity theorem too.
     [Theory]
     [MemberData(nameof(Heads))]
     public void Leadfield_AtEveryDepth_EqualsTextbookTwin(string name)
@@ -191,6 +192,10 @@ public class EegLayerSeriesTests
         foreach (Vec3 wrong in new[] { head.Centre + new Vec3(0, 0, 0.0779), new Vec3(double.NaN, 0, 0), new Vec3(double.PositiveInfinity, 0, 0) })
         {
             Assert.Throws<ArgumentOutOfRangeException>(() => SphereLeadfields.Eeg(head, [head.Centre, wrong], electrodes));
+            Assert.Throws<ArgumentOutOfRangeException>(() => SphereLeadfields.Meg(head, [head.Centre, wrong], SphereLeadfields.Coils(head, 4)));
+            LeadfieldBlock block = new(4, 0);
+            block.Load([head.Centre, wrong], default);
+            Assert.Throws<ArgumentOutOfRangeException>(() => new EegLayerSeries(head, electrodes).Fill(block));
         }
     }
 

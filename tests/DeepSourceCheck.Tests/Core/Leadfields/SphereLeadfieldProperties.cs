@@ -93,10 +93,10 @@ public class SphereLeadfieldProperties
     }, iter: 200);
 
     [Fact]
-    public void Dipole_AsTwoPolesOfCurrent_IsReciprocalToTheElectrodePair() =>
+    public void Leadfield_OfAnElectrodePair_IsAFieldWithoutCurlAndDivergence() =>
         Gen.Select(Heads, Directions, Gen.Double[0.05, 0.9]).Sample((head, direction, eccentricity) =>
         {
-            // The leadfield of an electrode pair is the field that unit current through the pair would drive at the dipole: it is free of curl and, where the
+            // By reciprocity the leadfield of an electrode pair is the field that unit current through the pair drives at the dipole: it is free of curl and, where the
             // innermost layer is isotropic, of divergence. Central differences of 10 um leave (10 um/depth)^2 and rounding.
             const double step = 1e-5, differencing = 2e-4;
             Vec3 position = head.Centre + eccentricity * head.InnerRadius * direction;
