@@ -197,7 +197,7 @@ internal static class AnswerSection
                 RegionAnswer a = new(assessment, response.Response, r);
                 return (IReadOnlyList<string>)[r.Region, .. modalities.Select(m => a.Of(m)?.Line() ?? ""), string.Join(" ", r.Warnings)];
             }),
-            ["", .. modalities.Select(_ => ""), "long"]);
+            ["", .. modalities.Select(_ => "verdict-cell"), "long"]);
     }
 
     private static void OtherRules(Markup html, Assessment assessment, ResponseResult response, RegionAnswer shown)
