@@ -62,7 +62,7 @@ public static class PowerFigure
     {
         if (assessment.SessionTrials is { } session)
         {
-            return $"At the session's end {string.Join(", ", lines.Select(l => $"{Name(l.Modality)} detects with {Share(curve.At(session, l.Snr.P50!.Value))}"))}";
+            return $"At the session's end the power is {string.Join(", ", lines.Select(l => $"{Share(curve.At(session, l.Snr.P50!.Value))} for {Name(l.Modality)}"))}";
         }
 
         return string.Join("; ", lines.Select(l => $"{Name(l.Modality)}: {Say.Percent(power)} after {Span(l.Target, perMinute)}"));

@@ -45,7 +45,7 @@ internal static class AnswerSection
     {
         Response stated = response.Response;
         RegionResult first = response.Regions[0];
-        string others = response.Regions.Count switch { 1 => "", 2 => $"; the other region, {response.Regions[1].Region}, below", _ => $"; {response.Regions.Count - 1} more regions below" };
+        string others = response.Regions.Count switch { 1 => "", 2 => "; one more region below", _ => $"; {response.Regions.Count - 1} more regions below" };
         html.Open("p", "class", "place").Element("b", assessment.Study.Title)
             .Text($"{stated.Name}, {first.Region}: {Say.Plural(first.Dipoles, "dipole")}, {Say.Moment(stated.Moment)} {Say.Direction(stated.Direction)}, "
                 + $"{(stated.Measured == Measured.PeakToTrough ? "peak to trough" : "baseline to peak")}, {Say.Stated(stated.Band.Low)} to {Say.Stated(stated.Band.High)} Hz{others}").CloseLine();

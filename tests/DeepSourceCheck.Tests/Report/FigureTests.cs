@@ -1,0 +1,141 @@
+using System.Xml.Linq;
+
+using DeepSourceCheck.Report;
+using DeepSourceCheck.Report.Figures;
+using DeepSourceCheck.Tests.Support;
+
+using SkiaSharp;
+
+namespace DeepSourceCheck.Tests.Report;
+
+public class FigureTests
+{
+    public static TheoryData<string> All => PresentationTests.All;
+
+    [Fact]
+    public void Font_ShipsInsideTheProgram_WithItsSigns()
+    {
+        Assert.Equal(FigureFont.Family, FigureFont.Regular.FamilyName);
+        Assert.Equal(FigureFont.Family, FigureFont.SemiBold.FamilyName);
+        const string Signs = "0123456789,.−×µμ%°≥≤√ΦΩ…()[]{}/+-=;:'\"ABCXYZabcxyzäéßñçøžłαβ²";
+        foreach (SKTypeface face in new[] { FigureFont.Regular, FigureFont.SemiBold })
+        {
+            using SKFont font = new(face, 12);
+            Assert.All(Signs, sign => Assert.True(font.GetGlyph(sign) != 0, $"no glyph for {sign}"));
+        }
+    }
+
+    [Fact]
+    public void Digits_AreEquallyWide() =>
+        Assert.Single("0123456789".Select(d => FigurePen.Width(d.ToString(), 100)).Distinct());
+
+    [Theory]
+    [MemberData(nameof(All))]
+    public void Svg_IsOutlinesOnly_WellFormedAndSelfSufficient(string fixture)
+    {
+        foreach (Figure figure in FigureSet.All(PresentationTests.AllFixtures[fixture]()))
+        {
+            foreach (int width in new[] { figure.FileWidth, Figure.PhoneWidth })
+            {
+                using FigureSheet sheet = figure.Draw(width);
+                XElement root = XElement.Parse(FigureFile.Svg(figure, sheet));
+                XNamespace svg = "http://www.w3.org/2000/svg";
+                Assert.Empty(root.Descendants(svg + "text"));
+                Assert.Empty(root.Descendants(svg + "image"));
+                HashSet<string> ids = [.. root.Descendants().Select(e => (string?)e.Attribute("id")).OfType<string>()];
+                string[] uses = [.. root.Descendants(svg + "use").Select(e => (string)e.Attribute("href")!)];
+                Assert.NotEmpty(uses);
+                Assert.All(uses, use => Assert.Contains(use[1..], ids));
+                Assert.Equal(figure.Title, root.Element(svg + "title")!.Value);
+                Assert.Equal(width.ToString(System.Globalization.CultureInfo.InvariantCulture), (string)root.Attribute("width")!);
+            }
+        }
+    }
+
+    [Theory]
+    [InlineData("default")]
+    [InlineData("silent")]
+    public void Figures_DrawnTwice_AreTheSameBytes(string fixture)
+    {
+        IReadOnlyList<Figure> first = FigureSet.All(PresentationTests.AllFixtures[fixture]()), second = FigureSet.All(PresentationTests.AllFixtures[fixture]());
+        Assert.Equal(first.Select(f => f.Name), second.Select(f => f.Name));
+        foreach ((Figure a, Figure b) in first.Zip(second))
+        {
+            using FigureSheet x = a.Draw(a.FileWidth), y = b.Draw(b.FileWidth);
+            Assert.Equal(x.Svg("g"), y.Svg("g"));
+            Assert.Equal(x.Png(), y.Png());
+        }
+    }
+
+    [Fact]
+    public void Png_IsTwiceTheSize()
+    {
+        Figure figure = FigureSet.All(AssessmentFixture.Default())[0];
+        using FigureSheet sheet = figure.Draw(figure.FileWidth);
+        using SKBitmap bitmap = SKBitmap.Decode(sheet.Png());
+        Assert.Equal((2 * sheet.Width, 2 * sheet.Height), (bitmap.Width, bitmap.Height));
+    }
+
+    [Theory]
+    [MemberData(nameof(All))]
+    public void Figures_StateQuantityConditionsAndKeyNumbers(string fixture)
+    {
+        foreach (Figure figure in FigureSet.All(PresentationTests.AllFixtures[fixture]()))
+        {
+            Assert.StartsWith(figure.Title, figure.Alt, StringComparison.Ordinal);
+            Assert.NotEmpty(figure.Conditions);
+            Assert.All(figure.Table.Rows, row => Assert.Equal(figure.Table.Columns.Count, row.Count));
+        }
+    }
+
+    [Fact]
+    public void PowerFigure_NeverDrawsPowerForAnAmplitudeRatio()
+    {
+        Figure power = FigureSet.All(AssessmentFixture.Default()).Single(f => f.Name == "power");
+        Assert.Contains("An amplitude ratio has no power", power.Conditions, StringComparison.Ordinal);
+        Assert.Contains("false-alarm rate 0.01", power.Conditions, StringComparison.Ordinal);
+    }
+
+    // Reference: ((z_0.99 + z_0.9)/d)^2 with z_0.99 = 2.3263478740, z_0.9 = 1.2815515655 (tables of the normal distribution, from memory).
+    [Fact]
+    public void PowerCurve_ReachesThePowerAtTheKnownCount()
+    {
+        const double TableDigits = 1e-9;
+        PowerCurve curve = new(0.01, 1);
+        double expected = Math.Pow(2.3263478740 + 1.2815515655, 2);
+        RelativeAssert.Equal(expected, curve.Trials(0.9, 0), TableDigits);
+        RelativeAssert.Equal(0.9, curve.At(expected, 0), TableDigits);
+        RelativeAssert.Equal(1000 * expected, curve.Trials(0.9, -30), TableDigits);
+        RelativeAssert.Equal(0.01, curve.At(0, 0), TableDigits);
+    }
+
+    [Fact]
+    public void Palette_IsThatOfTheStylesheet()
+    {
+        IReadOnlyDictionary<string, string> light = StylesheetColours.Blocks()[0];
+        Assert.All(Palette.Tokens, t => Assert.Equal(Palette.Hex(t.Colour), light[t.Token]));
+    }
+
+    [Fact]
+    public void Writer_WritesEveryFileAndHeedsWithout()
+    {
+        string folder = Directory.CreateTempSubdirectory("report-").FullName;
+        try
+        {
+            int files = ReportWriter.Write(AssessmentFixture.Default(), folder, new HashSet<string>());
+            string[] names = [.. Directory.EnumerateFiles(folder, "*", SearchOption.AllDirectories).Select(p => Path.GetRelativePath(folder, p).Replace('\\', '/')).Order(StringComparer.Ordinal)];
+            Assert.Equal(
+                ["assessment.json", "figures/geometry.png", "figures/geometry.svg", "figures/power.png", "figures/power.svg", "figures/snr.png", "figures/snr.svg", "figures/trials.png", "figures/trials.svg", "regions.csv", "report.html"],
+                names);
+            Assert.Equal(names.Length, files);
+            Directory.Delete(folder, recursive: true);
+            Directory.CreateDirectory(folder);
+            Assert.Equal(2, ReportWriter.Write(AssessmentFixture.Default(), folder, new HashSet<string> { "figures", "report" }));
+            Assert.Equal(2, Directory.EnumerateFileSystemEntries(folder).Count());
+        }
+        finally
+        {
+            Directory.Delete(folder, recursive: true);
+        }
+    }
+}
