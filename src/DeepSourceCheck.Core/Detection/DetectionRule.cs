@@ -29,7 +29,7 @@ public sealed class DetectionRule : ITargetRule
         _sum = ThresholdZ + Normal.InvCDF(0, 1, power);
     }
 
-    /// <summary>z_(1-alpha/K).</summary>
+    /// <summary>z_(1-alpha/K), without unit.</summary>
     public double ThresholdZ { get; }
 
     /// <inheritdoc/>

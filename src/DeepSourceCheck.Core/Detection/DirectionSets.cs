@@ -17,6 +17,6 @@ public static class DirectionSets
     public static IReadOnlyList<(double Cos, double Sin)> HalfCircle { get; } =
         [.. Enumerable.Range(0, TangentialAngles / 2).Select(k => Math.SinCos(2 * Math.PI * k / TangentialAngles)).Select(p => (p.Cos, p.Sin))];
 
-    /// <summary>The isotropic set: the golden-angle spiral over the whole sphere.</summary>
+    /// <summary>The isotropic set of unit vectors: the golden-angle spiral over the whole sphere.</summary>
     public static IReadOnlyList<Vec3> Isotropic { get; } = [.. Enumerable.Range(0, IsotropicPoints).Select(k => GoldenSpiral.Point(k, IsotropicPoints))];
 }

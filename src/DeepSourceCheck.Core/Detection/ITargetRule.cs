@@ -18,7 +18,7 @@ public interface ITargetRule
     /// <param name="artefact">Artefact power over noise power of the same channel; 0 for none.</param>
     double EffectivePower(double power, double artefact);
 
-    /// <summary>Trials for an effective power, not rounded; infinite at 0.</summary>
+    /// <summary>Number of trials for an effective power, not rounded; infinite at 0.</summary>
     double Trials(double effectivePower);
 
     /// <summary>Factor on the moment at which <paramref name="sessionTrials"/> trials reach the target; infinite for a silent direction.</summary>

@@ -102,7 +102,7 @@ public sealed class QuantileStore
         }
     }
 
-    /// <summary>The value at a rank, 0 the smallest; with classes, a value inside the class.</summary>
+    /// <summary>The value at a rank, 0 the smallest, in the unit of the values; with classes, a value inside the class.</summary>
     public double AtRank(long rank)
     {
         if (_values is not null)

@@ -21,7 +21,7 @@ public sealed class SplitBlock
     /// <summary>Singular value <paramref name="k"/> (0 to 2) of a dipole [1/(A m)].</summary>
     public double S(int k, int lane) => SingularValues[k * Lanes + lane];
 
-    /// <summary>Direction v_(k+1) of a dipole.</summary>
+    /// <summary>Direction v_(k+1) of a dipole, a unit vector.</summary>
     public Vec3 V(int k, int lane)
     {
         int at = k * 3 * Lanes + lane;

@@ -35,10 +35,10 @@ public sealed class ValueVolume
     /// <summary>Values, first axis fastest.</summary>
     public VoxelValues Values { get; }
 
-    /// <summary>Smallest finite value; NaN where there is none.</summary>
+    /// <summary>Smallest finite value, without unit; NaN where there is none.</summary>
     public double Smallest { get; private set; } = double.NaN;
 
-    /// <summary>Largest finite value; NaN where there is none.</summary>
+    /// <summary>Largest finite value, without unit; NaN where there is none.</summary>
     public double Largest { get; private set; } = double.NaN;
 
     /// <summary>True when every finite value is a whole number.</summary>

@@ -11,7 +11,7 @@ public abstract class VoxelValues
     /// <summary>Overwrites <paramref name="target"/> with the values from <paramref name="start"/> on, scaling applied.</summary>
     public abstract void CopyTo(int start, Span<double> target);
 
-    /// <summary>One value, scaling applied.</summary>
+    /// <summary>One value, scaling applied, without unit.</summary>
     public double this[int index]
     {
         get

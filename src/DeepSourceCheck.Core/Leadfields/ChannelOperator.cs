@@ -108,7 +108,7 @@ public sealed class ChannelOperator
         }
     }
 
-    /// <summary>P C P': the covariance of the outputs.</summary>
+    /// <summary>P C P': the covariance of the outputs, in the unit of C.</summary>
     /// <param name="covariance">C, inputs x inputs, row by row.</param>
     /// <returns>Outputs x outputs, row by row.</returns>
     public double[] ApplyToCovariance(double[] covariance)

@@ -16,10 +16,10 @@ public sealed class BackgroundField
         Columns = columns;
     }
 
-    /// <summary>Electrodes x columns; null without EEG.</summary>
+    /// <summary>Electrodes x columns, relative to the tables' derivation and so without unit; null without EEG.</summary>
     public double[]? Eeg { get; }
 
-    /// <summary>MEG channels x columns; null without MEG.</summary>
+    /// <summary>MEG channels x columns, relative to the tables' magnetometers: without unit, planar gradiometers [1/m]; null without MEG.</summary>
     public double[]? Meg { get; }
 
     /// <summary>Three a place.</summary>

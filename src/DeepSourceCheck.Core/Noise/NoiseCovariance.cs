@@ -15,12 +15,12 @@ public sealed class NoiseCovariance
     /// <summary>Covariance of the MEG channels [T^2, (T/m)^2 or mixed], row by row.</summary>
     public required double[] Meg { get; init; }
 
-    /// <summary>Covariance between electrodes and MEG channels, electrodes x channels, row by row; null where independent.</summary>
+    /// <summary>Covariance between electrodes and MEG channels [V T, V T/m], electrodes x channels, row by row; null where independent.</summary>
     public double[]? Cross { get; init; }
 
-    /// <summary>Independent samples from which the EEG covariance was estimated; null for exact.</summary>
+    /// <summary>Number of independent samples from which the EEG covariance was estimated; null for exact.</summary>
     public double? EegSamples { get; init; }
 
-    /// <summary>Independent samples from which the MEG covariance was estimated; null for exact.</summary>
+    /// <summary>Number of independent samples from which the MEG covariance was estimated; null for exact.</summary>
     public double? MegSamples { get; init; }
 }

@@ -18,10 +18,10 @@ public sealed class NoiseModel
     /// <summary>MEG covariance of one trial [T^2 or mixed] that replaces the terms, or null.</summary>
     public double[]? MegPerTrial { get; init; }
 
-    /// <summary>Independent samples of the EEG covariance; null for exact.</summary>
+    /// <summary>Number of independent samples of the EEG covariance; null for exact.</summary>
     public double? EegSamples { get; init; }
 
-    /// <summary>Independent samples of the MEG covariance; null for exact.</summary>
+    /// <summary>Number of independent samples of the MEG covariance; null for exact.</summary>
     public double? MegSamples { get; init; }
 
     /// <summary>Covariance of one trial in a band [Hz].</summary>
@@ -75,7 +75,7 @@ public sealed class NoiseModel
         return causes;
     }
 
-    /// <summary>w' (D + F F') w.</summary>
+    /// <summary>w' (D + F F') w, in the unit of the pattern.</summary>
     /// <param name="pattern">Pattern at unit power.</param>
     /// <param name="weights">w, one a row.</param>
     public static double UnitVariance(NoisePattern pattern, double[] weights)

@@ -26,10 +26,10 @@ public sealed class PivotedCholesky
     /// <summary>The chosen channels, in pivot order.</summary>
     public int[] Channels { get; }
 
-    /// <summary>1 / standard deviation of each chosen channel.</summary>
+    /// <summary>1 / standard deviation of each chosen channel, in the inverse of the unit of the channel.</summary>
     public double[] Scale { get; }
 
-    /// <summary>L of the scaled covariance, rank x rank, row by row, lower triangular.</summary>
+    /// <summary>L of the scaled covariance, without unit, rank x rank, row by row, lower triangular.</summary>
     public double[] Factor { get; }
 
     /// <summary>Factorises a symmetric positive semidefinite matrix.</summary>

@@ -18,7 +18,7 @@ public static class SymmetricEigen3
     /// <summary>Off-diagonal entries below this, with the largest entry between 1 and 2, change no digit of an eigenvalue (their square enters).</summary>
     private const double Negligible = 1e-20;
 
-    /// <summary>Largest eigenvalue of one matrix.</summary>
+    /// <summary>Largest eigenvalue of one matrix, in the unit of the matrix.</summary>
     public static double Largest(double xx, double xy, double xz, double yy, double yz, double zz) => Largest(
         Vector512.Create(xx), Vector512.Create(xy), Vector512.Create(xz), Vector512.Create(yy), Vector512.Create(yz), Vector512.Create(zz))[0];
 

@@ -100,7 +100,7 @@ public sealed class EvaluationPlan
     /// <summary>Measure of the joint verdict, or null without both.</summary>
     public string? BothMeasure { get; }
 
-    /// <summary>Power of the noise of the convention over that of one sample: 2 for a peak-to-trough difference, else 1.</summary>
+    /// <summary>Ratio of the power of the noise of the convention to that of one sample: 2 for a peak-to-trough difference, else 1.</summary>
     public double NoiseFactor => Response.Measured == Measured.PeakToTrough ? 2 : 1;
 
     /// <summary>Squared moment over <see cref="NoiseFactor"/> [(A m)^2].</summary>
@@ -110,7 +110,7 @@ public sealed class EvaluationPlan
     public bool HasArtefact(Modality modality) =>
         (modality != Modality.Meg && Response.LockedArtefactEeg > 0) || (modality != Modality.Eeg && Response.LockedArtefactMeg > 0);
 
-    /// <summary>The given direction, where there is one.</summary>
+    /// <summary>The given direction, a unit vector, where there is one.</summary>
     public Vec3 GivenVector => Response.Direction.Vector ?? default;
 
     /// <summary>Columns of dipoles.csv.</summary>

@@ -10,7 +10,7 @@ namespace DeepSourceCheck.Core.Regions;
 /// </remarks>
 public sealed class Ellipsoid
 {
-    /// <summary>How far q may exceed 1 on the surface.</summary>
+    /// <summary>How far q, which is without unit, may exceed 1 on the surface.</summary>
     public const double SurfaceTolerance = 1e-9;
 
     /// <param name="centre">Centre [m].</param>

@@ -26,7 +26,7 @@ public sealed class LabelListing
     /// <summary>Most labels that are listed; a volume with more is an image.</summary>
     public const int MostLabels = 20_000;
 
-    /// <summary>Value from which a voxel of a fractional volume is inside when the study states no threshold.</summary>
+    /// <summary>Fraction from which a voxel of a fractional volume is inside when the study states no threshold.</summary>
     public const double FractionThreshold = 0.5;
 
     private LabelListing(IReadOnlyList<LabelEntry> entries, IReadOnlyList<string> warnings) => (Entries, Warnings) = (entries, warnings);

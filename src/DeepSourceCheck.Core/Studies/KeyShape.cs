@@ -20,8 +20,8 @@ public abstract record KeyShape
 }
 
 /// <summary>A number in a range, in the key's unit.</summary>
-/// <param name="Low">Smallest value.</param>
-/// <param name="High">Largest value.</param>
+/// <param name="Low">Smallest value, in the unit of the key.</param>
+/// <param name="High">Largest value, in the unit of the key.</param>
 /// <param name="AboveLow">True: the smallest value itself is not allowed.</param>
 /// <param name="BelowHigh">True: the largest value itself is not allowed.</param>
 /// <param name="Whole">True: whole numbers only.</param>

@@ -8,8 +8,8 @@ namespace DeepSourceCheck.Core.Studies;
 public sealed record KeyDefault(object Value, string Source, Grade Grade, string For = "");
 
 /// <summary>Range in which values of a key usually lie, in the key's unit.</summary>
-/// <param name="Low">Smallest usual value.</param>
-/// <param name="High">Largest usual value.</param>
+/// <param name="Low">Smallest usual value, in the unit of the key.</param>
+/// <param name="High">Largest usual value, in the unit of the key.</param>
 public sealed record TypicalRange(double Low, double High);
 
 /// <summary>Everything the program knows about one key of a study file: the reader, the assumptions and every explanation draw on it.</summary>

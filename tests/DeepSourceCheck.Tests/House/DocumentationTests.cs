@@ -141,10 +141,10 @@ public partial class DocumentationTests
     };
 
     [GeneratedRegex(@"\[[^\]]+\]|\b(metres?|millimetres?|volts?|microvolts?|nanovolts?|tesla|femtotesla|ampere|nanoampere|radians?|degrees?|millilitres?|seconds?|minutes?|hertz|decibels?|dB|per cent)\b"
-        + @"|without unit|unit vectors?|in the unit of|in units of|unit by context|unit of the|in Unit\b|relative to|\b(ratio|share|fraction|factor|weight|probability|rate over all|number( \w+)? of|count|cosine|sine|index|exponent|percentile|quantile|power of detecting|times the|degree)\b",
+        + @"|without unit|unit vectors?|in the unit of|in units of|units? by context|unit of the|in Unit\b|in voxels|relative|\b(ratio|share|fraction|factor|weights?|correlation|power SNR|probability|rate over all|number( \w+)? of|counts?|cosine|sine|index|exponent|percentile|quantile|power of detecting|times the|degree)\b",
         RegexOptions.IgnoreCase | RegexOptions.CultureInvariant)]
     private static partial Regex NamesUnit();
 
-    [GeneratedRegex(@"unit by context|without units?\b", RegexOptions.IgnoreCase | RegexOptions.CultureInvariant)]
+    [GeneratedRegex(@"units? by context|without units?\b", RegexOptions.IgnoreCase | RegexOptions.CultureInvariant)]
     private static partial Regex SaysUnitForAll();
 }

@@ -63,10 +63,10 @@ public sealed class LayerTransfer
     /// <summary>True when the innermost layer conducts alike in all directions, so that its exponents are the degrees themselves.</summary>
     public bool InnermostIsIsotropic => ratio[0] == 1.0;
 
-    /// <summary>Tangential over radial conductivity of layer <paramref name="layer"/>.</summary>
+    /// <summary>Ratio of tangential to radial conductivity of layer <paramref name="layer"/>.</summary>
     public double Anisotropy(int layer) => ratio[layer];
 
-    /// <summary>ln of inner over outer radius of layer <paramref name="layer"/>; 0 for the innermost.</summary>
+    /// <summary>ln of the ratio of inner to outer radius of layer <paramref name="layer"/>; 0 for the innermost.</summary>
     public double LogRadiusRatio(int layer) => logQ[layer];
 
     /// <summary>Smallest conductivity of all layers and directions [S/m].</summary>

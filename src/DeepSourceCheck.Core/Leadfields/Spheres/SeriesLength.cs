@@ -55,7 +55,7 @@ public sealed class SeriesLength
         degrees[0] = 1;
     }
 
-    /// <summary>Largest admitted |r0|/r_1.</summary>
+    /// <summary>Largest admitted ratio |r0|/r_1.</summary>
     public double LargestEccentricity { get; }
 
     /// <summary>Largest degree that any admitted depth needs.</summary>
