@@ -27,20 +27,20 @@ public sealed class ResultFolder : IDisposable
     // Left by file browsers, without the user's doing.
     private static readonly HashSet<string> IgnoredNames = [".DS_Store", "Thumbs.db", "desktop.ini"];
 
-    private static int counter;
+    private static int _counter;
 
-    private readonly string target;
-    private readonly ResultFolderKind kind;
-    private readonly string createdParent;
-    private FileStream? running;
-    private bool done;
+    private readonly string _target;
+    private readonly ResultFolderKind _kind;
+    private readonly string _createdParent;
+    private FileStream? _running;
+    private bool _done;
 
     private ResultFolder(string target, ResultFolderKind kind, string folder, FileStream running, string createdParent)
     {
-        this.target = target;
-        this.kind = kind;
-        this.running = running;
-        this.createdParent = createdParent;
+        _target = target;
+        _kind = kind;
+        _running = running;
+        _createdParent = createdParent;
         Folder = folder;
         AppDomain.CurrentDomain.ProcessExit += OnExit;
     }
@@ -49,7 +49,7 @@ public sealed class ResultFolder : IDisposable
     public string Folder { get; }
 
     /// <summary>Where the folder will stand after <see cref="Commit"/>; full path.</summary>
-    public string Target => target;
+    public string Target => _target;
 
     /// <summary>Refuses a target that must not be replaced. Changes nothing; call it before anything is computed.</summary>
     /// <exception cref="InputException">The target is a file, or a folder that is not ours.</exception>
@@ -92,7 +92,7 @@ public sealed class ResultFolder : IDisposable
         {
             Directory.CreateDirectory(parent);
             RemoveStale(full);
-            string folder = Path.Combine(parent, $".{Path.GetFileName(full)}.partial-{Environment.ProcessId}-{Interlocked.Increment(ref counter)}");
+            string folder = Path.Combine(parent, $".{Path.GetFileName(full)}.partial-{Environment.ProcessId}-{Interlocked.Increment(ref _counter)}");
             Directory.CreateDirectory(folder);
             FileStream running = new(Path.Combine(folder, LockName), FileMode.CreateNew, FileAccess.ReadWrite, FileShare.None);
             return new ResultFolder(full, kind, folder, running, createdParent);
@@ -107,23 +107,23 @@ public sealed class ResultFolder : IDisposable
     /// <exception cref="InputException">Something that is not ours has appeared at the target meanwhile.</exception>
     public void Commit()
     {
-        ObjectDisposedException.ThrowIf(done, this);
-        CheckTarget(target, kind);
+        ObjectDisposedException.ThrowIf(_done, this);
+        CheckTarget(_target, _kind);
         Unlock();
         string old = Folder.Replace(".partial-", ".replaced-", StringComparison.Ordinal);
-        bool replaces = Directory.Exists(target);
+        bool replaces = Directory.Exists(_target);
         if (replaces)
         {
-            Directory.Move(target, old);
+            Directory.Move(_target, old);
         }
 
         try
         {
-            Directory.Move(Folder, target);
+            Directory.Move(Folder, _target);
         }
         catch (IOException) when (replaces)
         {
-            Directory.Move(old, target);
+            Directory.Move(old, _target);
             throw;
         }
 
@@ -137,7 +137,7 @@ public sealed class ResultFolder : IDisposable
     /// <summary>Deletes the temporary folder unless it was committed.</summary>
     public void Dispose()
     {
-        if (done)
+        if (_done)
         {
             return;
         }
@@ -270,14 +270,14 @@ public sealed class ResultFolder : IDisposable
 
     private void Finish()
     {
-        done = true;
+        _done = true;
         AppDomain.CurrentDomain.ProcessExit -= OnExit;
     }
 
     private void Unlock()
     {
-        running?.Dispose();
-        running = null;
+        _running?.Dispose();
+        _running = null;
         string file = Path.Combine(Folder, LockName);
         if (File.Exists(file))
         {
@@ -288,7 +288,7 @@ public sealed class ResultFolder : IDisposable
     private void RemoveEmptyParents()
     {
         // Only folders that this run made, and only while they are empty.
-        for (string? f = createdParent.Length > 0 ? Path.GetDirectoryName(target) : null; f is not null && f.Length >= createdParent.Length; f = Path.GetDirectoryName(f))
+        for (string? f = _createdParent.Length > 0 ? Path.GetDirectoryName(_target) : null; f is not null && f.Length >= _createdParent.Length; f = Path.GetDirectoryName(f))
         {
             if (!Directory.Exists(f) || Directory.EnumerateFileSystemEntries(f).Any())
             {

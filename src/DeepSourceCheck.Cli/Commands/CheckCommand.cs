@@ -3,9 +3,10 @@ using System.Globalization;
 
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
-using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Files.Studies;
+using DeepSourceCheck.Report.Tables;
 
 namespace DeepSourceCheck.Cli.Commands;
 
@@ -110,22 +111,16 @@ internal static class CheckCommand
             json.WriteStartObject();
             json.WriteString("region", region);
             json.WriteNumber("dipoles", dipoles);
-            json.Number("spacing_mm", spacing);
+            json.WriteFigure("spacing_mm", spacing);
             json.WriteEndObject();
         }
 
         json.WriteEndArray();
-        json.Strings("responses", prepared.Study.Responses.Select(r => r.Name));
+        json.WriteStrings("responses", prepared.Study.Responses.Select(r => r.Name));
         json.WriteNumber("predicted_memory_bytes", prepared.PredictedMemory);
-        json.Number("predicted_seconds", prepared.PredictedSeconds);
-        json.WriteStartArray("assumptions");
-        foreach (Assumption assumption in prepared.Assumptions)
-        {
-            AssumptionText.Write(json, assumption);
-        }
-
-        json.WriteEndArray();
-        json.Strings("warnings", prepared.Warnings);
+        json.WriteFigure("predicted_seconds", prepared.PredictedSeconds);
+        json.WriteArray("assumptions", prepared.Assumptions, JsonText.WriteAssumption);
+        json.WriteStrings("warnings", prepared.Warnings);
     });
 
     private static string HeadName(Study study) => study.Head switch

@@ -5,6 +5,7 @@ using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Report;
+using DeepSourceCheck.Report.Tables;
 
 namespace DeepSourceCheck.Cli.Commands;
 
@@ -59,11 +60,11 @@ internal static class LeadfieldCommand
             JsonOutput.Object(surroundings.Out, writer =>
             {
                 writer.WriteString("folder", outFolder);
-                writer.Strings("files", files);
+                writer.WriteStrings("files", files);
                 writer.WriteNumber("electrodes", prepared.Electrodes);
                 writer.WriteNumber("meg_channels", prepared.MegChannels);
                 writer.WriteNumber("dipoles", prepared.Dipoles);
-                writer.Strings("warnings", prepared.Warnings);
+                writer.WriteStrings("warnings", prepared.Warnings);
             });
         }
         else

@@ -4,6 +4,7 @@ using System.Text;
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Files.Studies;
+using DeepSourceCheck.Report.Tables;
 
 namespace DeepSourceCheck.Cli.Commands;
 
@@ -68,7 +69,7 @@ internal static class NewCommand
         Write(path, madeFolder ? folder : null, surroundings);
         if (json)
         {
-            JsonOutput.Object(surroundings.Out, writer => writer.Strings("written", [path]));
+            JsonOutput.Object(surroundings.Out, writer => writer.WriteStrings("written", [path]));
         }
         else
         {

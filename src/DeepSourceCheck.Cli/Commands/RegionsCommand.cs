@@ -9,6 +9,7 @@ using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Files.Nifti;
 using DeepSourceCheck.Files.Regions;
+using DeepSourceCheck.Report.Tables;
 
 namespace DeepSourceCheck.Cli.Commands;
 
@@ -96,7 +97,7 @@ internal static class RegionsCommand
             writer.Point("semi_axes_mm", shape.SemiAxes);
         }
 
-        writer.Number("volume_mL", region.Shape is { } whole ? Si.ToMillilitres(whole.Volume) : null);
+        writer.WriteFigure("volume_mL", region.Shape is { } whole ? Si.ToMillilitres(whole.Volume) : null);
         writer.WriteString("volume_source", region.VolumeSource);
         writer.WriteString("volume_grade", Names.Of(region.VolumeGrade));
         writer.WriteString("place_source", region.PlaceSource);
@@ -122,14 +123,14 @@ internal static class RegionsCommand
                     writer.WriteStartObject();
                     writer.WriteNumber("label", label.Label);
                     writer.WriteNumber("voxels", label.Voxels);
-                    writer.Number("volume_mL", Si.ToMillilitres(label.Volume));
+                    writer.WriteFigure("volume_mL", Si.ToMillilitres(label.Volume));
                     writer.Point("centroid_mm", label.Centroid);
                     writer.WriteString("side", label.Side);
                     writer.WriteEndObject();
                 }
 
                 writer.WriteEndArray();
-                writer.Strings("warnings", warnings);
+                writer.WriteStrings("warnings", warnings);
             });
             return ExitStatus.Done;
         }

@@ -1,12 +1,12 @@
 using System.CommandLine;
-using System.Text.Json;
 
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
-using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Report.Console;
+using DeepSourceCheck.Report.Tables;
 
 namespace DeepSourceCheck.Cli.Commands;
 
@@ -114,36 +114,13 @@ internal static class WhyCommand
                 json.WriteStartObject();
                 json.WriteString("response", response.Response.Name);
                 json.WriteString("region", region.Region);
-                json.WriteString("modality", Names.Of(verdict.Modality));
-                json.WriteString("rule", verdict.Rule);
-                json.WriteString("measure", verdict.Measure);
-                json.WriteString("direction", Names.Of(verdict.Direction));
-                json.WriteString("text", verdict.Text);
-                json.WriteStartArray("numbers");
-                foreach (DerivedNumber number in verdict.Chain)
-                {
-                    WriteNumber(json, number);
-                }
-
-                json.WriteEndArray();
+                json.WriteVerdictMembers(verdict);
+                json.WriteArray("numbers", verdict.Chain, JsonText.WriteDerivedNumber);
                 json.WriteEndObject();
             }
         }
 
         json.WriteEndArray();
-        json.Strings("warnings", assessment.Warnings);
+        json.WriteStrings("warnings", assessment.Warnings);
     });
-
-    private static void WriteNumber(Utf8JsonWriter json, DerivedNumber number)
-    {
-        json.WriteStartObject();
-        json.WriteString("symbol", number.Symbol);
-        json.WriteString("name", number.Name);
-        json.Number("value", number.Value);
-        json.WriteString("unit", number.Unit);
-        json.WriteString("formula", number.Formula);
-        json.WriteString("source", number.Source);
-        json.WriteString("grade", number.Grade is { } grade ? Names.Of(grade) : null);
-        json.WriteEndObject();
-    }
 }

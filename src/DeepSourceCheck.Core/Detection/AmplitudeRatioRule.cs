@@ -13,7 +13,7 @@ namespace DeepSourceCheck.Core.Detection;
 public sealed class AmplitudeRatioRule(double ratio) : ITargetRule
 {
     /// <inheritdoc/>
-    public string Name => "amplitude_ratio";
+    public string Name => Names.AmplitudeRatio;
 
     /// <inheritdoc/>
     public string Description => string.Create(CultureInfo.InvariantCulture, $"peak = {ratio:0.###} x residual rms");

@@ -33,7 +33,7 @@ public sealed class DetectionRule : ITargetRule
     public double ThresholdZ { get; }
 
     /// <inheritdoc/>
-    public string Name => "detection";
+    public string Name => Names.Detection;
 
     /// <inheritdoc/>
     public string Description => string.Create(CultureInfo.InvariantCulture,

@@ -9,6 +9,9 @@ public static class TrialCount
     /// <summary>Counts beyond this have no exact integer in double precision and are reported as not reachable.</summary>
     public const double Largest = 9e15;
 
+    /// <summary>Above this count averaging is no plan: words say "out of reach".</summary>
+    public const long MostPlanned = 10_000_000;
+
     /// <summary>Smallest whole number of trials, at least 1; null when not finite or beyond <see cref="Largest"/>.</summary>
     /// <param name="quotient">Trials as a real number.</param>
     public static long? Ceiling(double quotient)

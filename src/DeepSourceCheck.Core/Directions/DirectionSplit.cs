@@ -2,7 +2,6 @@ using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Numerics;
-using DeepSourceCheck.Core.Results;
 
 namespace DeepSourceCheck.Core.Directions;
 

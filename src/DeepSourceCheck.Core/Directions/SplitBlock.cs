@@ -1,6 +1,5 @@
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Leadfields;
-using DeepSourceCheck.Core.Results;
 
 namespace DeepSourceCheck.Core.Directions;
 

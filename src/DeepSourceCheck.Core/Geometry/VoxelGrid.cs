@@ -6,7 +6,7 @@ public sealed class VoxelGrid
     /// <summary>A point this far (in voxels) below the border between two voxels belongs to the upper one: rounding never decides.</summary>
     public const double BorderTolerance = 1e-9;
 
-    private readonly Affine toIndex;
+    private readonly Affine _toIndex;
 
     /// <param name="nx">Voxels along the first axis, at least 1.</param>
     /// <param name="ny">Voxels along the second axis, at least 1.</param>
@@ -26,7 +26,7 @@ public sealed class VoxelGrid
         }
 
         (Nx, Ny, Nz, ToWorld) = (nx, ny, nz, toWorld);
-        toIndex = toWorld.Inverse();
+        _toIndex = toWorld.Inverse();
     }
 
     /// <summary>Voxels along the first axis.</summary>
@@ -62,7 +62,7 @@ public sealed class VoxelGrid
     /// <summary>Position in memory of the voxel that holds a point [m]: floor(i + 0.5 + 1e-9) along each axis; -1 outside the box.</summary>
     public int IndexAt(Vec3 world)
     {
-        Vec3 v = toIndex.Apply(world);
+        Vec3 v = _toIndex.Apply(world);
         double i = Math.Floor(v.X + (0.5 + BorderTolerance));
         double j = Math.Floor(v.Y + (0.5 + BorderTolerance));
         double k = Math.Floor(v.Z + (0.5 + BorderTolerance));

@@ -29,7 +29,7 @@ public abstract class VoxelValues
     private sealed class Typed<T>(T[] stored, double slope, double intercept) : VoxelValues
         where T : unmanaged, INumberBase<T>
     {
-        private readonly bool scaled = slope != 1.0 || intercept != 0.0;
+        private readonly bool _scaled = slope != 1.0 || intercept != 0.0;
 
         public override int Count => stored.Length;
 
@@ -41,7 +41,7 @@ public abstract class VoxelValues
                 target[n] = double.CreateTruncating(source[n]);
             }
 
-            if (scaled)
+            if (_scaled)
             {
                 for (int n = 0; n < target.Length; n++)
                 {

@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;

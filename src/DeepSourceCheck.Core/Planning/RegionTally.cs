@@ -1,6 +1,7 @@
 using System.Runtime.Intrinsics;
 
 using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;

@@ -11,9 +11,6 @@ namespace DeepSourceCheck.Core.Planning;
 /// <summary>The answers for one region: modality by modality, rule by rule, in plain words with their reason and their chain.</summary>
 internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, RegionTally tally)
 {
-    /// <summary>Above this count words say "out of reach".</summary>
-    public const long OutOfReach = 10_000_000;
-
     /// <summary>Writes all verdicts.</summary>
     /// <param name="rows">The region's results; the median count of a verdict's row is that of the dipole whose chain is given.</param>
     /// <param name="cancellation">Stops the search for the dipole at the median.</param>
@@ -92,9 +89,9 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         }
 
         string why = witness is null ? "" : string.Create(CultureInfo.InvariantCulture, $" In one trial {Compare(witness.Power)}.");
-        if (count > OutOfReach)
+        if (count > TrialCount.MostPlanned)
         {
-            return string.Create(CultureInfo.InvariantCulture, $"{reading}: out of reach, more than {OutOfReach:N0} trials.{why}");
+            return string.Create(CultureInfo.InvariantCulture, $"{reading}: out of reach, more than {TrialCount.MostPlanned:N0} trials.{why}");
         }
 
         string trials = string.Create(CultureInfo.InvariantCulture, $"{count:N0} {(count == 1 ? "trial" : "trials")}");

@@ -114,26 +114,26 @@ public sealed class LabelListing
         /// <summary>Distance from x = 0 [m] within which a voxel counts half for each side.</summary>
         private const double OnMidline = 1e-6;
 
-        private long sumI, sumJ, sumK;
-        private int left, right;
+        private long _sumI, _sumJ, _sumK;
+        private int _left, _right;
 
         public int Count { get; private set; }
 
         public void Add(int i, int j, int k, double x)
         {
             Count++;
-            sumI += i;
-            sumJ += j;
-            sumK += k;
-            left += x < -OnMidline ? 1 : 0;
-            right += x > OnMidline ? 1 : 0;
+            _sumI += i;
+            _sumJ += j;
+            _sumK += k;
+            _left += x < -OnMidline ? 1 : 0;
+            _right += x > OnMidline ? 1 : 0;
         }
 
         public readonly LabelEntry Entry(long label, VoxelGrid grid)
         {
-            double n = Count, between = (Count - left - right) / 2.0;
-            string side = left + between > OneSidedShare * n ? "left" : right + between > OneSidedShare * n ? "right" : "midline";
-            return new(label, Count, n * grid.VoxelVolume, grid.ToWorld.Apply(new(sumI / n, sumJ / n, sumK / n)), side);
+            double n = Count, between = (Count - _left - _right) / 2.0;
+            string side = _left + between > OneSidedShare * n ? "left" : _right + between > OneSidedShare * n ? "right" : "midline";
+            return new(label, Count, n * grid.VoxelVolume, grid.ToWorld.Apply(new(_sumI / n, _sumJ / n, _sumK / n)), side);
         }
     }
 }

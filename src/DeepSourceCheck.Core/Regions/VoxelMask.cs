@@ -12,11 +12,11 @@ public sealed class VoxelMask
 {
     private const int ListedLabels = 20;
 
-    private readonly ulong[] bits;
+    private readonly ulong[] _bits;
 
     private VoxelMask(VoxelGrid grid, ulong[] bits, string selection, IReadOnlyList<string> warnings)
     {
-        (Grid, this.bits, Selection, Warnings) = (grid, bits, selection, warnings);
+        (Grid, _bits, Selection, Warnings) = (grid, bits, selection, warnings);
         (int I, int J, int K) low = (int.MaxValue, int.MaxValue, int.MaxValue), high = (-1, -1, -1);
         long sumI = 0, sumJ = 0, sumK = 0;
         for (int word = 0; word < bits.Length; word++)
@@ -61,7 +61,7 @@ public sealed class VoxelMask
     public bool Contains(Vec3 world)
     {
         int index = Grid.IndexAt(world);
-        return index >= 0 && (bits[index >> 6] >> index & 1) != 0;
+        return index >= 0 && (_bits[index >> 6] >> index & 1) != 0;
     }
 
     /// <summary>

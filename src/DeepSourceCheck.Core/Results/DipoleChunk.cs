@@ -1,29 +1,7 @@
+using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 
 namespace DeepSourceCheck.Core.Results;
-
-/// <summary>State of the split of directions at one dipole.</summary>
-public enum SplitState
-{
-    /// <summary>`ok`.</summary>
-    Ok,
-
-    /// <summary>`degenerate`: a gap between neighbouring singular values below 1e-8 of the largest.</summary>
-    Degenerate,
-
-    /// <summary>`undefined`: at the head's symmetry centre, or no MEG leadfield.</summary>
-    Undefined,
-}
-
-/// <summary>A column of SNR in dipoles.csv.</summary>
-/// <param name="Modality">EEG, MEG or both.</param>
-/// <param name="Direction">`quasi-radial` and so on, as results write it.</param>
-/// <param name="Measure">Measure's name.</param>
-public sealed record DipoleColumn(Modality Modality, string Direction, string Measure)
-{
-    /// <summary>`modality|direction|measure`.</summary>
-    public string Name => $"{Names.Of(Modality)}|{Direction}|{Measure}";
-}
 
 /// <summary>Results of a run of consecutive dipoles of one region: the unit in which dipole results stream out.</summary>
 public sealed class DipoleChunk
@@ -54,17 +32,4 @@ public sealed class DipoleChunk
 
     /// <summary>SNR of one trial [dB], [column][dipole]; negative infinity where silent, NaN where undefined.</summary>
     public required double[][] SnrDb { get; init; }
-}
-
-/// <summary>Takes dipole results as they are computed.</summary>
-public interface IDipoleSink
-{
-    /// <summary>Called once, before anything else, with the columns of every chunk.</summary>
-    void Begin(IReadOnlyList<DipoleColumn> columns);
-
-    /// <summary>Turns a chunk into bytes. Pure; may run on several threads at once.</summary>
-    byte[] Format(DipoleChunk chunk);
-
-    /// <summary>Appends formatted chunks; called in the order of the dipoles, from one thread at a time.</summary>
-    void Append(byte[] formatted);
 }

@@ -15,6 +15,12 @@ public static class Names
     /// <summary>The bound that no linear combination of channels exceeds.</summary>
     public const string MatchedFilter = "matched-filter";
 
+    /// <summary>Amplitude against residual rms.</summary>
+    public const string AmplitudeRatio = "amplitude_ratio";
+
+    /// <summary>Detection at a false-alarm rate.</summary>
+    public const string Detection = "detection";
+
     /// <summary>`EEG`, `MEG`, `EEG+MEG`.</summary>
     public static string Of(Modality modality) => modality switch
     {
@@ -41,6 +47,9 @@ public static class Names
         CoilKind.AxialGradiometer => "axial-gradiometer",
         _ => "planar-gradiometer",
     };
+
+    /// <summary>Rule of a target as studies and results write it.</summary>
+    public static string Of(TargetChoice target) => target is AmplitudeRatioChoice ? AmplitudeRatio : Detection;
 
     /// <summary>Grade as results write it.</summary>
     public static string Of(Grade grade) => grade switch

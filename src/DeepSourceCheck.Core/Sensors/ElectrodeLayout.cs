@@ -13,25 +13,25 @@ public static class ElectrodeLayout
 {
     private const string Key = "sensors.eeg.layout";
 
-    private static readonly string[] _twenty =
+    private static readonly string[] Twenty =
         ["Fp1", "Fpz", "Fp2", "F7", "F3", "Fz", "F4", "F8", "T7", "C3", "Cz", "C4", "T8", "P7", "P3", "Pz", "P4", "P8", "O1", "Oz", "O2"];
 
     // The 61 sites of the 10-10 system at or above its 10 % curve, and three below it, where deep and low sources still show: TP9, TP10, Iz.
-    private static readonly string[] _sixtyFour =
+    private static readonly string[] SixtyFour =
     [
         "Fp1", "Fpz", "Fp2", "AF7", "AF3", "AFz", "AF4", "AF8",
         .. TenTenRow("F", "F"), .. TenTenRow("FT", "FC"), .. TenTenRow("T", "C"), .. TenTenRow("TP", "CP"), .. TenTenRow("P", "P"),
         "PO7", "PO3", "POz", "PO4", "PO8", "O1", "Oz", "O2", "TP9", "TP10", "Iz",
     ];
 
-    private static readonly string[] _eightyOne =
+    private static readonly string[] EightyOne =
     [
-        .. _sixtyFour.Where(name => name is not ("TP9" or "TP10" or "Iz")),
+        .. SixtyFour.Where(name => name is not ("TP9" or "TP10" or "Iz")),
         "Nz", "N1", "N2", "AF9", "AF10", "F9", "F10", "FT9", "FT10", "T9", "T10", "TP9", "TP10", "P9", "P10", "PO9", "PO10", "I1", "I2", "Iz",
     ];
 
     // Names of older papers and their sites: they are refused with the name that the systems use now.
-    private static readonly Dictionary<string, string> _older = new(StringComparer.OrdinalIgnoreCase)
+    private static readonly Dictionary<string, string> Older = new(StringComparer.OrdinalIgnoreCase)
     {
         ["T3"] = "T7",
         ["T4"] = "T8",
@@ -49,9 +49,9 @@ public static class ElectrodeLayout
     /// <exception cref="InputException">The layout is not known.</exception>
     public static IReadOnlyList<string> Names(string layout) => layout switch
     {
-        "ten-twenty-21" => _twenty,
-        "ten-ten-64" => _sixtyFour,
-        "ten-ten-81" => _eightyOne,
+        "ten-twenty-21" => Twenty,
+        "ten-ten-64" => SixtyFour,
+        "ten-ten-81" => EightyOne,
         "ten-five-329" => TenFiveSystem.Names,
         _ => throw new InputException(
             null, Key, $"there is no layout '{layout}'{NearestName.Hint(layout, Layouts)}; use one of {string.Join(", ", Layouts)}, or give an electrodes table"),
@@ -89,7 +89,7 @@ public static class ElectrodeLayout
             return $"there is no electrode '{name}' at the ear lobe; the nearest site is the mastoid {(name == "A1" ? "M1" : "M2")}";
         }
 
-        return _older.TryGetValue(name, out string? site) && all.Contains(site)
+        return Older.TryGetValue(name, out string? site) && all.Contains(site)
             ? $"there is no electrode '{name}'; the site is named {site} here"
             : $"there is no electrode '{name}'{NearestName.Hint(name, all)}";
     }

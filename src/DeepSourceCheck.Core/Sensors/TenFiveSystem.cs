@@ -35,20 +35,20 @@ internal static class TenFiveSystem
     public static readonly double MastoidElevation = Si.FromDegrees(-26);
 
     // Rows from front to back; steps of 5 % of the midline from 15 to 85 %. Lateral and medial letters differ over the temporal lobe.
-    private static readonly (string Midline, string Lateral, string Medial)[] _rows =
+    private static readonly (string Midline, string Lateral, string Medial)[] Rows =
     [
         ("AFpz", "AFp", "AFp"), ("AFz", "AF", "AF"), ("AFFz", "AFF", "AFF"), ("Fz", "F", "F"), ("FFCz", "FFT", "FFC"),
         ("FCz", "FT", "FC"), ("FCCz", "FTT", "FCC"), ("Cz", "T", "C"), ("CCPz", "TTP", "CCP"), ("CPz", "TP", "CP"),
         ("CPPz", "TPP", "CPP"), ("Pz", "P", "P"), ("PPOz", "PPO", "PPO"), ("POz", "PO", "PO"), ("POOz", "POO", "POO"),
     ];
 
-    private static readonly Dictionary<string, Vec3> _directions = Build();
+    private static readonly Dictionary<string, Vec3> Directions = Build();
 
     /// <summary>All 329 names: midline from front to back, then each curve and row from front to back, left before right.</summary>
-    public static IReadOnlyList<string> Names { get; } = [.. _directions.Keys.Where(name => name is not ("M1" or "M2"))];
+    public static IReadOnlyList<string> Names { get; } = [.. Directions.Keys.Where(name => name is not ("M1" or "M2"))];
 
     /// <summary>Unit vector of a site or mastoid; false for unknown names.</summary>
-    public static bool TryDirection(string name, out Vec3 direction) => _directions.TryGetValue(name, out direction);
+    public static bool TryDirection(string name, out Vec3 direction) => Directions.TryGetValue(name, out direction);
 
     /// <summary>Unit vector at an azimuth from the front (positive to the right) and an elevation [rad].</summary>
     public static Vec3 Direction(double azimuth, double elevation)
@@ -63,7 +63,7 @@ internal static class TenFiveSystem
         Dictionary<string, Vec3> at = [];
         Vec3 nasion = Direction(0, NasionElevation), inion = Direction(Math.PI, InionElevation);
         SphereArc midline = new(nasion, new(0, 0, 1), inion);
-        string[] midlineNames = ["Nz", "NFpz", "Fpz", .. _rows.Select(row => row.Midline), "Oz", "OIz", "Iz"];
+        string[] midlineNames = ["Nz", "NFpz", "Fpz", .. Rows.Select(row => row.Midline), "Oz", "OIz", "Iz"];
         for (int k = 0; k < midlineNames.Length; k++)
         {
             at.Add(midlineNames[k], OnMidline(midline.At(k / 20.0)));
@@ -74,7 +74,7 @@ internal static class TenFiveSystem
         Lateral(at, "Nz", coronal.At(0), "Iz", ["N1h", "N1"], "9", ["I1", "I1h"]);
         Lateral(at, "NFpz", coronal.At(0.05), "OIz", ["NFp1h", "NFp1"], "9h", ["OI1", "OI1h"]);
         Lateral(at, "Fpz", coronal.At(0.10), "Oz", ["Fp1h", "Fp1"], "7", ["O1", "O1h"]);
-        foreach ((string middle, string lateral, string medial) in _rows)
+        foreach ((string middle, string lateral, string medial) in Rows)
         {
             Row(at, middle, lateral, medial);
         }
@@ -88,7 +88,7 @@ internal static class TenFiveSystem
         Dictionary<string, Vec3> at, string front, Vec3 side, string back, string[] frontNames, string number, string[] backNames)
     {
         SphereArc curve = new(at[front], side, at[back]);
-        string[] names = [.. frontNames, .. _rows.Select(row => row.Lateral + number), .. backNames];
+        string[] names = [.. frontNames, .. Rows.Select(row => row.Lateral + number), .. backNames];
         for (int k = 0; k < names.Length; k++)
         {
             int step = k + 1;

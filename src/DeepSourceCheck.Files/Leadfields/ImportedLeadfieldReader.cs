@@ -83,7 +83,7 @@ public static class ImportedLeadfieldReader
             if (!double.IsFinite(values[n]))
             {
                 int point = n / 3 % reasons.Length;
-                reasons[point] ??= Invariant($"{displayName} holds {values[n]} for it in row {TsvTable.Shorten(rows[n / 3 / reasons.Length].Name)}");
+                reasons[point] ??= Invariant($"{displayName} holds {values[n]} for it in row {Shown.Text(rows[n / 3 / reasons.Length].Name)}");
             }
         }
     }
@@ -94,7 +94,7 @@ public static class ImportedLeadfieldReader
         int[] bad = [.. Enumerable.Range(0, reasons.Length).Where(n => reasons[n] is not null)];
         if (bad.Length > 0)
         {
-            string names = string.Join(", ", bad.Take(Listed).Select(n => TsvTable.Shorten(points.Points[n].Name)));
+            string names = string.Join(", ", bad.Take(Listed).Select(n => Shown.Text(points.Points[n].Name)));
             warnings.Add($"{bad.Length} of {reasons.Length} imported points are unusable: {names}{(bad.Length > Listed ? " and others" : "")}; {reasons[bad[0]]}");
         }
     }

@@ -7,30 +7,30 @@ internal sealed class ByteSource : IDisposable
 {
     private const int SkipStep = 1 << 16;
 
-    private readonly FileStream file;
-    private readonly GzipMembers? gzip;
-    private readonly string displayName;
+    private readonly FileStream _file;
+    private readonly GzipMembers? _gzip;
+    private readonly string _displayName;
 
     public ByteSource(string path, string displayName)
     {
-        this.displayName = displayName;
-        file = InputFileAccess.Open(path, displayName);
-        int high = file.ReadByte(), low = file.ReadByte();
-        file.Seek(0, SeekOrigin.Begin);
-        gzip = (high << 8 | low) == GzipMembers.Magic ? new(file) : null;
+        _displayName = displayName;
+        _file = InputFileAccess.Open(path, displayName);
+        int high = _file.ReadByte(), low = _file.ReadByte();
+        _file.Seek(0, SeekOrigin.Begin);
+        _gzip = (high << 8 | low) == GzipMembers.Magic ? new(_file) : null;
     }
 
     /// <summary>True for a gzip stream.</summary>
-    public bool IsGzip => gzip is not null;
+    public bool IsGzip => _gzip is not null;
 
     /// <summary>Bytes that were read or skipped.</summary>
     public long Consumed { get; private set; }
 
     /// <summary>Bytes of the file on disk.</summary>
-    public long FileLength => file.Length;
+    public long FileLength => _file.Length;
 
     /// <summary>More bytes than this cannot come out of the file.</summary>
-    public long MostBytes => IsGzip ? file.Length * GzipMembers.LargestExpansion : file.Length;
+    public long MostBytes => IsGzip ? _file.Length * GzipMembers.LargestExpansion : _file.Length;
 
     /// <summary>Reads until the target is full or the bytes end; returns the number read.</summary>
     /// <exception cref="InputException">The gzip stream is damaged or cut short.</exception>
@@ -76,35 +76,35 @@ internal sealed class ByteSource : IDisposable
     {
         if (!IsGzip)
         {
-            return file.Length - Consumed;
+            return _file.Length - Consumed;
         }
 
         long rest = Skip(most + 1);
-        return rest > most ? null : rest + (gzip!.HasForeignTail ? 1 : 0);
+        return rest > most ? null : rest + (_gzip!.HasForeignTail ? 1 : 0);
     }
 
     public void Dispose()
     {
-        gzip?.Dispose();
-        file.Dispose();
+        _gzip?.Dispose();
+        _file.Dispose();
     }
 
     private int ReadSome(Span<byte> target)
     {
         try
         {
-            return gzip is null ? file.Read(target) : gzip.Read(target);
+            return _gzip is null ? _file.Read(target) : _gzip.Read(target);
         }
         catch (InvalidDataException error)
         {
             // The platform's inflater speaks of its own internals; only our own messages are shown.
             string reason = error.Message.StartsWith("it", StringComparison.Ordinal) ? error.Message : "its gzip data cannot be unpacked";
-            throw new InputException(displayName, null,
+            throw new InputException(_displayName, null,
                 $"the file is cut short or damaged: {reason}, after {Consumed:N0} unpacked bytes; copy or export it again");
         }
         catch (IOException error)
         {
-            throw new InputException(displayName, null, $"reading failed after {Consumed:N0} bytes: {error.Message.Split('\n')[0]}");
+            throw new InputException(_displayName, null, $"reading failed after {Consumed:N0} bytes: {error.Message.Split('\n')[0]}");
         }
     }
 }

@@ -19,18 +19,18 @@ internal sealed class GzipMembers : IDisposable
     private const int TrailerSize = 8;
     private const int MostEmptyMembers = 1000;
 
-    private readonly FileStream file;
-    private readonly Feed feed;
-    private DeflateStream? member;
-    private uint checksum;
-    private uint size;
-    private int emptyMembers;
-    private bool ended;
+    private readonly FileStream _file;
+    private readonly Feed _feed;
+    private DeflateStream? _member;
+    private uint _checksum;
+    private uint _size;
+    private int _emptyMembers;
+    private bool _ended;
 
     public GzipMembers(FileStream file)
     {
-        this.file = file;
-        feed = new(file);
+        _file = file;
+        _feed = new(file);
     }
 
     /// <summary>True when bytes that are neither padding nor a further member follow the last one.</summary>
@@ -40,22 +40,22 @@ internal sealed class GzipMembers : IDisposable
     /// <exception cref="InvalidDataException">The stream is damaged or cut short.</exception>
     public int Read(Span<byte> target)
     {
-        while (!ended && !target.IsEmpty)
+        while (!_ended && !target.IsEmpty)
         {
-            if (member is null)
+            if (_member is null)
             {
                 if (!BeginMember())
                 {
-                    ended = true;
+                    _ended = true;
                     break;
                 }
             }
 
-            int read = member!.Read(target);
+            int read = _member!.Read(target);
             if (read > 0)
             {
-                checksum = Crc32.Append(checksum, target[..read]);
-                size = unchecked(size + (uint)read);
+                _checksum = Crc32.Append(_checksum, target[..read]);
+                _size = unchecked(_size + (uint)read);
                 return read;
             }
 
@@ -67,17 +67,17 @@ internal sealed class GzipMembers : IDisposable
 
     public void Dispose()
     {
-        member?.Dispose();
-        feed.Dispose();
+        _member?.Dispose();
+        _feed.Dispose();
     }
 
     private bool BeginMember()
     {
-        bool first = file.Position == 0;
-        int value = file.ReadByte();
+        bool first = _file.Position == 0;
+        int value = _file.ReadByte();
         while (value == 0 && !first)
         {
-            value = file.ReadByte();
+            value = _file.ReadByte();
         }
 
         if (value < 0)
@@ -85,7 +85,7 @@ internal sealed class GzipMembers : IDisposable
             return false;
         }
 
-        if (value != Magic >> 8 || file.ReadByte() != (Magic & 0xff))
+        if (value != Magic >> 8 || _file.ReadByte() != (Magic & 0xff))
         {
             HasForeignTail = true;
             return false;
@@ -102,7 +102,7 @@ internal sealed class GzipMembers : IDisposable
         if ((flags & 4) != 0)
         {
             ReadHeaderBytes(rest[..2]);
-            file.Seek(BinaryPrimitives.ReadUInt16LittleEndian(rest), SeekOrigin.Current);
+            _file.Seek(BinaryPrimitives.ReadUInt16LittleEndian(rest), SeekOrigin.Current);
         }
 
         for (int texts = (flags >> 3 & 1) + (flags >> 4 & 1); texts > 0; texts--)
@@ -119,15 +119,15 @@ internal sealed class GzipMembers : IDisposable
             ReadHeaderBytes(rest[..2]);
         }
 
-        (checksum, size) = (0, 0);
-        feed.Restart();
-        member = new(feed, CompressionMode.Decompress, leaveOpen: true);
+        (_checksum, _size) = (0, 0);
+        _feed.Restart();
+        _member = new(_feed, CompressionMode.Decompress, leaveOpen: true);
         return true;
     }
 
     private void ReadHeaderBytes(Span<byte> target)
     {
-        if (file.ReadAtLeast(target, target.Length, throwOnEndOfStream: false) < target.Length)
+        if (_file.ReadAtLeast(target, target.Length, throwOnEndOfStream: false) < target.Length)
         {
             throw new InvalidDataException("it ends inside a gzip header");
         }
@@ -138,23 +138,23 @@ internal sealed class GzipMembers : IDisposable
     /// </summary>
     private void EndMember()
     {
-        member!.Dispose();
-        member = null;
-        emptyMembers = size == 0 ? emptyMembers + 1 : 0;
+        _member!.Dispose();
+        _member = null;
+        _emptyMembers = _size == 0 ? _emptyMembers + 1 : 0;
 
         Span<byte> trailer = stackalloc byte[TrailerSize];
-        BinaryPrimitives.WriteUInt32LittleEndian(trailer, checksum);
-        BinaryPrimitives.WriteUInt32LittleEndian(trailer[4..], size);
-        byte[] piece = new byte[feed.LastCount + TrailerSize];
-        file.Seek(feed.LastStart, SeekOrigin.Begin);
-        int read = file.ReadAtLeast(piece, piece.Length, throwOnEndOfStream: false);
+        BinaryPrimitives.WriteUInt32LittleEndian(trailer, _checksum);
+        BinaryPrimitives.WriteUInt32LittleEndian(trailer[4..], _size);
+        byte[] piece = new byte[_feed.LastCount + TrailerSize];
+        _file.Seek(_feed.LastStart, SeekOrigin.Begin);
+        int read = _file.ReadAtLeast(piece, piece.Length, throwOnEndOfStream: false);
         int at = piece.AsSpan(0, read).IndexOf(trailer);
-        if (at < 0 || emptyMembers > MostEmptyMembers)
+        if (at < 0 || _emptyMembers > MostEmptyMembers)
         {
             throw new InvalidDataException("it ends without the gzip checksum of its data, or with a wrong one");
         }
 
-        file.Seek(feed.LastStart + at + TrailerSize, SeekOrigin.Begin);
+        _file.Seek(_feed.LastStart + at + TrailerSize, SeekOrigin.Begin);
     }
 
     /// <summary>Hands the file to the inflater and remembers the last piece.</summary>

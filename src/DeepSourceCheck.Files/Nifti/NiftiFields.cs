@@ -137,13 +137,13 @@ internal sealed class NiftiFields
     /// <summary>Numbers at byte offsets; real numbers are single precision in NIfTI-1 and double in NIfTI-2.</summary>
     private readonly ref struct Field(ReadOnlySpan<byte> bytes, bool bigEndian, bool single)
     {
-        private readonly ReadOnlySpan<byte> bytes = bytes;
+        private readonly ReadOnlySpan<byte> _bytes = bytes;
 
-        public int Short(int at) => bigEndian ? BinaryPrimitives.ReadInt16BigEndian(bytes[at..]) : BinaryPrimitives.ReadInt16LittleEndian(bytes[at..]);
+        public int Short(int at) => bigEndian ? BinaryPrimitives.ReadInt16BigEndian(_bytes[at..]) : BinaryPrimitives.ReadInt16LittleEndian(_bytes[at..]);
 
-        public int Int(int at) => bigEndian ? BinaryPrimitives.ReadInt32BigEndian(bytes[at..]) : BinaryPrimitives.ReadInt32LittleEndian(bytes[at..]);
+        public int Int(int at) => bigEndian ? BinaryPrimitives.ReadInt32BigEndian(_bytes[at..]) : BinaryPrimitives.ReadInt32LittleEndian(_bytes[at..]);
 
-        public long Long(int at) => bigEndian ? BinaryPrimitives.ReadInt64BigEndian(bytes[at..]) : BinaryPrimitives.ReadInt64LittleEndian(bytes[at..]);
+        public long Long(int at) => bigEndian ? BinaryPrimitives.ReadInt64BigEndian(_bytes[at..]) : BinaryPrimitives.ReadInt64LittleEndian(_bytes[at..]);
 
         public double Real(int at) => single
             ? BitConverter.Int32BitsToSingle(Int(at))

@@ -72,7 +72,7 @@ public static class CovarianceFile
                 column++;
                 if (!double.TryParse(cell, NumberStyles.Float, CultureInfo.InvariantCulture, out double value) || !double.IsFinite(value))
                 {
-                    throw Fault(displayName, line, $"column {column} holds '{Tables.TsvTable.Shorten(cell.ToString())}'; a finite number is expected (a table of numbers, without header)");
+                    throw Fault(displayName, line, $"column {column} holds {Shown.Quoted(cell.ToString())}; a finite number is expected (a table of numbers, without header)");
                 }
 
                 if (row < rows && column <= rows)

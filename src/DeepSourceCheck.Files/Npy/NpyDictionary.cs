@@ -7,8 +7,8 @@ namespace DeepSourceCheck.Files.Npy;
 /// <summary>The dictionary literal in a .npy header: {'descr': '...', 'fortran_order': True, 'shape': (2, 3), }.</summary>
 internal sealed class NpyDictionary(string text, string displayName)
 {
-    private int at;
-    private bool hasDescr, hasOrder, hasShape;
+    private int _at;
+    private bool _hasDescr, _hasOrder, _hasShape;
 
     public string Descr { get; private set; } = "";
 
@@ -28,15 +28,15 @@ internal sealed class NpyDictionary(string text, string displayName)
             Expect(':');
             switch (key)
             {
-                case "descr" when !hasDescr:
-                    (Descr, hasDescr) = (Text(), true);
+                case "descr" when !_hasDescr:
+                    (Descr, _hasDescr) = (Text(), true);
                     break;
-                case "fortran_order" when !hasOrder:
-                    (FortranOrder, hasOrder) = (Boolean(), true);
+                case "fortran_order" when !_hasOrder:
+                    (FortranOrder, _hasOrder) = (Boolean(), true);
                     break;
-                case "shape" when !hasShape:
+                case "shape" when !_hasShape:
                     ReadShape();
-                    hasShape = true;
+                    _hasShape = true;
                     break;
                 default:
                     throw Fault("descr, fortran_order and shape, each once, are expected as keys");
@@ -50,7 +50,7 @@ internal sealed class NpyDictionary(string text, string displayName)
         }
 
         SkipSpace();
-        if (at < text.Length || !(hasDescr && hasOrder && hasShape))
+        if (_at < text.Length || !(_hasDescr && _hasOrder && _hasShape))
         {
             throw Fault("descr, fortran_order and shape, each once and nothing else, are expected");
         }
@@ -62,20 +62,20 @@ internal sealed class NpyDictionary(string text, string displayName)
         while (!TryTake(')'))
         {
             SkipSpace();
-            int start = at;
-            at += at < text.Length && text[at] == '-' ? 1 : 0;
-            while (at < text.Length && char.IsAsciiDigit(text[at]))
+            int start = _at;
+            _at += _at < text.Length && text[_at] == '-' ? 1 : 0;
+            while (_at < text.Length && char.IsAsciiDigit(text[_at]))
             {
-                at++;
+                _at++;
             }
 
-            if (!decimal.TryParse(text.AsSpan(start, at - start), NumberStyles.AllowLeadingSign, CultureInfo.InvariantCulture, out decimal size))
+            if (!decimal.TryParse(text.AsSpan(start, _at - start), NumberStyles.AllowLeadingSign, CultureInfo.InvariantCulture, out decimal size))
             {
                 throw Fault("the shape must be a list of whole numbers");
             }
 
             // The letter that older writers put behind long numbers.
-            at += at < text.Length && text[at] == 'L' ? 1 : 0;
+            _at += _at < text.Length && text[_at] == 'L' ? 1 : 0;
             Shape.Add(size);
             if (!TryTake(','))
             {
@@ -88,15 +88,15 @@ internal sealed class NpyDictionary(string text, string displayName)
     private string Text()
     {
         SkipSpace();
-        char quote = at < text.Length ? text[at] : '\0';
-        int end = quote is '\'' or '"' ? text.IndexOf(quote, at + 1) : -1;
+        char quote = _at < text.Length ? text[_at] : '\0';
+        int end = quote is '\'' or '"' ? text.IndexOf(quote, _at + 1) : -1;
         if (end < 0)
         {
             throw Fault("text in quotes is expected");
         }
 
-        string value = text[(at + 1)..end];
-        at = end + 1;
+        string value = text[(_at + 1)..end];
+        _at = end + 1;
         return value;
     }
 
@@ -105,9 +105,9 @@ internal sealed class NpyDictionary(string text, string displayName)
         SkipSpace();
         foreach ((string word, bool value) in new[] { ("True", true), ("False", false) })
         {
-            if (string.CompareOrdinal(text, at, word, 0, word.Length) == 0)
+            if (string.CompareOrdinal(text, _at, word, 0, word.Length) == 0)
             {
-                at += word.Length;
+                _at += word.Length;
                 return value;
             }
         }
@@ -118,8 +118,8 @@ internal sealed class NpyDictionary(string text, string displayName)
     private bool TryTake(char wanted)
     {
         SkipSpace();
-        bool found = at < text.Length && text[at] == wanted;
-        at += found ? 1 : 0;
+        bool found = _at < text.Length && text[_at] == wanted;
+        _at += found ? 1 : 0;
         return found;
     }
 
@@ -133,11 +133,11 @@ internal sealed class NpyDictionary(string text, string displayName)
 
     private void SkipSpace()
     {
-        while (at < text.Length && text[at] is ' ' or '\n' or '\t' or '\r')
+        while (_at < text.Length && text[_at] is ' ' or '\n' or '\t' or '\r')
         {
-            at++;
+            _at++;
         }
     }
 
-    private InputException Fault(string expected) => new(displayName, "header", $"the header is malformed at character {at + 1}: {expected}");
+    private InputException Fault(string expected) => new(displayName, "header", $"the header is malformed at character {_at + 1}: {expected}");
 }

@@ -46,7 +46,7 @@ internal static class NpyHeaderParser
             ">f8" => (true, 8),
             ">f4" => (true, 4),
             _ => throw new InputException(displayName, "descr",
-                $"numbers of type '{Shorten(descr)}' are not read; save the array as float32 or float64 (<f4, <f8, >f4, >f8), for instance with astype('float64')"),
+                $"numbers of type {Shown.Quoted(descr)} are not read; save the array as float32 or float64 (<f4, <f8, >f4, >f8), for instance with astype('float64')"),
         };
         List<int> shape = [];
         double count = 1;
@@ -73,8 +73,6 @@ internal static class NpyHeaderParser
             Count = (int)count,
         };
     }
-
-    private static string Shorten(string text) => text.Length <= 20 ? text : text[..20] + "...";
 
     private static void Demand(bool condition, string displayName, string? field, string message)
     {

@@ -12,7 +12,7 @@ namespace DeepSourceCheck.Files.Regions;
 /// <summary>Reads one file of the region library: a structure with its sides. The form is described in regions/README.md.</summary>
 public static class LibraryRegionReader
 {
-    private static readonly string[] _keys =
+    private static readonly string[] Keys =
         ["structure", "frame", "left", "right", "midline", "computed", "volume_mL", "place", "sphere_limits", "note"];
 
     /// <summary>The regions of a structure: left and right, or the midline one.</summary>
@@ -24,7 +24,7 @@ public static class LibraryRegionReader
         YamlStream yaml = [];
         yaml.Load(text);
         Node root = new(file, "", (YamlMappingNode)yaml.Documents[0].RootNode);
-        root.AllowOnly(_keys);
+        root.AllowOnly(Keys);
         string structure = root.Text("structure");
         Node volume = root.Map("volume_mL"), place = root.Map("place");
         LibraryRegion Region(string side, Ellipsoid? shape) => new()

@@ -58,7 +58,7 @@ internal sealed class Reading(string file, string folder, Purpose purpose, IRead
     private const int MostPrinted = 20;
     private const int MostSuggestions = 100;
 
-    private int dropped;
+    private int _dropped;
 
     /// <summary>False beyond 100 problems: a list of thousands of wrong names needs no thousands of nearest names.</summary>
     public bool Suggests => Problems.Count < MostSuggestions;
@@ -90,7 +90,7 @@ internal sealed class Reading(string file, string folder, Purpose purpose, IRead
         }
         else
         {
-            dropped++;
+            _dropped++;
         }
     }
 
@@ -119,7 +119,7 @@ internal sealed class Reading(string file, string folder, Purpose purpose, IRead
         }
 
         List<InputProblem> ordered = [.. Problems.OrderBy(p => p.Line).ThenBy(p => p.Column)];
-        int more = ordered.Count - MostPrinted + dropped;
+        int more = ordered.Count - MostPrinted + _dropped;
         if (more > 0)
         {
             ordered.RemoveRange(MostPrinted, ordered.Count - MostPrinted);

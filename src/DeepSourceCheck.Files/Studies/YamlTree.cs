@@ -23,17 +23,17 @@ public sealed class YamlTree
     private const int MostProblems = 50;
     private const string CoreTag = "tag:yaml.org,2002:";
 
-    private readonly string file;
-    private readonly List<InputProblem> problems;
-    private readonly Parser parser;
-    private readonly Stack<Mark> openBrackets = new();
-    private int nodes;
+    private readonly string _file;
+    private readonly List<InputProblem> _problems;
+    private readonly Parser _parser;
+    private readonly Stack<Mark> _openBrackets = new();
+    private int _nodes;
 
     private YamlTree(string text, string file, List<InputProblem> problems)
     {
-        this.file = file;
-        this.problems = problems;
-        parser = new Parser(new StringReader(text));
+        _file = file;
+        _problems = problems;
+        _parser = new Parser(new StringReader(text));
     }
 
     /// <summary>The document's root; null for an empty document.</summary>
@@ -72,7 +72,7 @@ public sealed class YamlTree
 
     private YamlNode Node(ParsingEvent current, int depth)
     {
-        if (++nodes > MostNodes)
+        if (++_nodes > MostNodes)
         {
             throw Fatal(current.Start, $"the file holds more than {MostNodes} values; split it or use tables");
         }
@@ -189,7 +189,7 @@ public sealed class YamlTree
     {
         if (flow)
         {
-            openBrackets.Push(start);
+            _openBrackets.Push(start);
         }
     }
 
@@ -197,7 +197,7 @@ public sealed class YamlTree
     {
         if (flow)
         {
-            openBrackets.Pop();
+            _openBrackets.Pop();
         }
     }
 
@@ -205,7 +205,7 @@ public sealed class YamlTree
     {
         try
         {
-            return parser.MoveNext() && parser.Current is { } current ? current : throw Fatal(Mark.Empty, "the file ends too early");
+            return _parser.MoveNext() && _parser.Current is { } current ? current : throw Fatal(Mark.Empty, "the file ends too early");
         }
         catch (YamlException e)
         {
@@ -215,12 +215,12 @@ public sealed class YamlTree
             or IndexOutOfRangeException or KeyNotFoundException)
         {
             // The parser throws these instead of its own on some broken texts.
-            throw Fatal(parser.Current?.End ?? Mark.Empty, $"this is not YAML: the text after this place cannot be read{OpenBracket()}");
+            throw Fatal(_parser.Current?.End ?? Mark.Empty, $"this is not YAML: the text after this place cannot be read{OpenBracket()}");
         }
     }
 
     private string OpenBracket() =>
-        openBrackets.TryPeek(out Mark bracket) ? $"; the bracket opened at line {Line(bracket)}, column {Column(bracket)} is not closed" : "";
+        _openBrackets.TryPeek(out Mark bracket) ? $"; the bracket opened at line {Line(bracket)}, column {Column(bracket)} is not closed" : "";
 
     private static string Sentence(string message)
     {
@@ -230,10 +230,10 @@ public sealed class YamlTree
 
     private YamlRefused Refuse(Mark mark, string message)
     {
-        problems.Add(new(file, Line(mark), Column(mark), null, message));
-        if (problems.Count >= MostProblems)
+        _problems.Add(new(_file, Line(mark), Column(mark), null, message));
+        if (_problems.Count >= MostProblems)
         {
-            throw new InputException(problems);
+            throw new InputException(_problems);
         }
 
         return new(Line(mark), Column(mark));
@@ -241,8 +241,8 @@ public sealed class YamlTree
 
     private InputException Fatal(Mark mark, string message)
     {
-        problems.Add(new(file, Line(mark), Column(mark), null, message));
-        return new(problems);
+        _problems.Add(new(_file, Line(mark), Column(mark), null, message));
+        return new(_problems);
     }
 
     private static int Line(Mark mark) => (int)Math.Clamp(mark.Line, 1, int.MaxValue);

@@ -37,7 +37,7 @@ public sealed record CoilsTable(IReadOnlyList<MegChannel> Channels, IReadOnlyLis
             }
             else if (kind is { } here && group.Kind is { } before && here != before)
             {
-                table.Problems.Add(row.Line, "kind", $"channel '{TsvTable.Shorten(name)}' is a {Names.Of(here)} here and a {Names.Of(before)} in line {group.Line}; all rows of a channel have one kind");
+                table.Problems.Add(row.Line, "kind", $"channel {Shown.Quoted(name)} is a {Names.Of(here)} here and a {Names.Of(before)} in line {group.Line}; all rows of a channel have one kind");
             }
 
             group.Points.Add(point);
@@ -45,7 +45,7 @@ public sealed record CoilsTable(IReadOnlyList<MegChannel> Channels, IReadOnlyLis
 
         foreach (Group group in ordered.Where(g => g.Points.All(p => p.Share == 0)))
         {
-            table.Problems.Add(group.Line, "share", $"all shares of channel '{TsvTable.Shorten(group.Name)}' are 0; at least one other is needed");
+            table.Problems.Add(group.Line, "share", $"all shares of channel {Shown.Quoted(group.Name)} are 0; at least one other is needed");
         }
 
         table.Problems.ThrowIfAny();
@@ -71,7 +71,7 @@ public sealed record CoilsTable(IReadOnlyList<MegChannel> Channels, IReadOnlyLis
             }
         }
 
-        table.Problems.Add(row.Line, "kind", $"'{TsvTable.Shorten(text)}' is no coil kind; {string.Join(", ", Enum.GetValues<CoilKind>().Select(Names.Of))} are");
+        table.Problems.Add(row.Line, "kind", $"{Shown.Quoted(text)} is no coil kind; {string.Join(", ", Enum.GetValues<CoilKind>().Select(Names.Of))} are");
         return null;
     }
 
@@ -84,7 +84,7 @@ public sealed record CoilsTable(IReadOnlyList<MegChannel> Channels, IReadOnlyLis
                 && Math.Abs(g.Points.Sum(p => p.Share) - wanted) > ShareTolerance * g.Points.Sum(p => Math.Abs(p.Share)))];
             if (odd.Length > 0)
             {
-                warnings.Add(Invariant($"{displayName}: the shares of {odd.Length} {Names.Of(kind)} channels do not add up to {wanted}, first of '{TsvTable.Shorten(odd[0].Name)}' ({odd[0].Points.Sum(p => p.Share):G6}); they are used as they stand"));
+                warnings.Add(Invariant($"{displayName}: the shares of {odd.Length} {Names.Of(kind)} channels do not add up to {wanted}, first of {Shown.Quoted(odd[0].Name)} ({odd[0].Points.Sum(p => p.Share):G6}); they are used as they stand"));
             }
         }
     }

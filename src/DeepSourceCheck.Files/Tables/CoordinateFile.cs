@@ -40,13 +40,13 @@ internal sealed record CoordinateFile(string Unit, string? System, IReadOnlyList
 
         if (unit is not ("m" or "cm" or "mm"))
         {
-            throw new InputException(displayName, UnitKey, $"the unit '{TsvTable.Shorten(unit)}' is not a length that is read; m, cm or mm is expected");
+            throw new InputException(displayName, UnitKey, $"the unit {Shown.Quoted(unit)} is not a length that is read; m, cm or mm is expected");
         }
 
         string? system = Text(root, SystemKey, displayName);
         bool known = system is null or "Other" || system.StartsWith("MNI", StringComparison.Ordinal) || system.StartsWith("ICBM", StringComparison.Ordinal);
         return new(unit, system, known ? [] :
-            [$"{displayName}: the electrodes are in the coordinate system '{TsvTable.Shorten(system!)}' and are used as they stand: the regions' frame has x to the right, y to the front, z up; check that theirs is the same"]);
+            [$"{displayName}: the electrodes are in the coordinate system {Shown.Quoted(system!)} and are used as they stand: the regions' frame has x to the right, y to the front, z up; check that theirs is the same"]);
     }
 
     private static string? Text(JsonElement root, string key, string displayName)

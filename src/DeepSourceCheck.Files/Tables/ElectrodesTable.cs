@@ -33,7 +33,7 @@ public sealed record ElectrodesTable(
             string[] absent = [.. Axes.Where(c => table.Text(row, c) == "n/a")];
             if (absent.Length > 0)
             {
-                table.Problems.Add(row.Line, string.Join(", ", absent), $"electrode '{TsvTable.Shorten(name)}' has no position (n/a); give it one or take its row out");
+                table.Problems.Add(row.Line, string.Join(", ", absent), $"electrode {Shown.Quoted(name)} has no position (n/a); give it one or take its row out");
                 continue;
             }
 

@@ -7,34 +7,34 @@ internal sealed class ProblemList(string file)
 {
     private const int MostListed = 30;
 
-    private readonly List<InputProblem> problems = [];
-    private int unlisted;
+    private readonly List<InputProblem> _problems = [];
+    private int _unlisted;
 
     /// <summary>The file as the user named it.</summary>
     public string File { get; } = file;
 
-    public bool IsEmpty => problems.Count == 0;
+    public bool IsEmpty => _problems.Count == 0;
 
     /// <summary>Notes a problem; line 0 where there is none, column null likewise.</summary>
     public void Add(int line, string? column, string message)
     {
-        if (problems.Count < MostListed)
+        if (_problems.Count < MostListed)
         {
-            problems.Add(new(File, line, 0, column, message));
+            _problems.Add(new(File, line, 0, column, message));
         }
         else
         {
-            unlisted++;
+            _unlisted++;
         }
     }
 
     /// <exception cref="InputException">Something was noted.</exception>
     public void ThrowIfAny()
     {
-        if (problems.Count > 0)
+        if (_problems.Count > 0)
         {
-            InputProblem[] more = unlisted > 0 ? [new(File, 0, 0, null, $"and {unlisted:N0} further problems of this file")] : [];
-            throw new InputException([.. problems, .. more]);
+            InputProblem[] more = _unlisted > 0 ? [new(File, 0, 0, null, $"and {_unlisted:N0} further problems of this file")] : [];
+            throw new InputException([.. _problems, .. more]);
         }
     }
 }

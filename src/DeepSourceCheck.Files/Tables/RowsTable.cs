@@ -31,7 +31,7 @@ public sealed record RowsTable(IReadOnlyList<ImportedRow> Eeg, IReadOnlyList<Imp
                 case "EEG":
                     if (table.Text(row, "kind") != "electrode")
                     {
-                        table.Problems.Add(row.Line, "kind", $"'{TsvTable.Shorten(table.Text(row, "kind"))}' is no kind of an EEG row; electrode is");
+                        table.Problems.Add(row.Line, "kind", $"{Shown.Quoted(table.Text(row, "kind"))} is no kind of an EEG row; electrode is");
                     }
 
                     CheckUnit(table, row, "an electrode", VoltUnits);
@@ -47,7 +47,7 @@ public sealed record RowsTable(IReadOnlyList<ImportedRow> Eeg, IReadOnlyList<Imp
                     meg.Add(new(name, kind, position));
                     break;
                 default:
-                    table.Problems.Add(row.Line, "modality", $"'{TsvTable.Shorten(table.Text(row, "modality"))}' is no modality; EEG or MEG is");
+                    table.Problems.Add(row.Line, "modality", $"{Shown.Quoted(table.Text(row, "modality"))} is no modality; EEG or MEG is");
                     break;
             }
         }
@@ -61,7 +61,7 @@ public sealed record RowsTable(IReadOnlyList<ImportedRow> Eeg, IReadOnlyList<Imp
         string unit = table.Text(row, "unit");
         if (!allowed.Any(u => WithoutSpaces(u) == WithoutSpaces(unit)))
         {
-            table.Problems.Add(row.Line, "unit", $"'{TsvTable.Shorten(unit)}' is no unit of {what}; {string.Join(" or ", allowed)} is expected: scale the array and change the unit");
+            table.Problems.Add(row.Line, "unit", $"{Shown.Quoted(unit)} is no unit of {what}; {string.Join(" or ", allowed)} is expected: scale the array and change the unit");
         }
     }
 

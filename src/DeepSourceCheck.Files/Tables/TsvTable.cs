@@ -8,11 +8,9 @@ namespace DeepSourceCheck.Files.Tables;
 internal sealed class TsvTable
 {
     private const long LargestFile = 1L << 28;
-    private const int LongestShown = 60;
+    private readonly Dictionary<string, int> _columns;
 
-    private readonly Dictionary<string, int> columns;
-
-    private TsvTable(Dictionary<string, int> columns, List<TsvRow> rows, ProblemList problems) => (this.columns, Rows, Problems) = (columns, rows, problems);
+    private TsvTable(Dictionary<string, int> columns, List<TsvRow> rows, ProblemList problems) => (_columns, Rows, Problems) = (columns, rows, problems);
 
     /// <summary>Data rows, in order.</summary>
     public IReadOnlyList<TsvRow> Rows { get; }
@@ -21,7 +19,7 @@ internal sealed class TsvTable
     public ProblemList Problems { get; }
 
     /// <summary>True when the table has the column.</summary>
-    public bool Has(string column) => columns.ContainsKey(column);
+    public bool Has(string column) => _columns.ContainsKey(column);
 
     /// <summary>Reads a table.</summary>
     /// <param name="path">File.</param>
@@ -73,7 +71,7 @@ internal sealed class TsvTable
     }
 
     /// <summary>A cell's text; empty where the table lacks the column.</summary>
-    public string Text(TsvRow row, string column) => columns.TryGetValue(column, out int at) ? row.Cells[at] : "";
+    public string Text(TsvRow row, string column) => _columns.TryGetValue(column, out int at) ? row.Cells[at] : "";
 
     /// <summary>True when a cell is empty or says n/a, or the table lacks the column.</summary>
     public bool IsAbsent(TsvRow row, string column) => Text(row, column) is "" or "n/a";
@@ -91,11 +89,11 @@ internal sealed class TsvTable
         }
         else if (name.Any(char.IsControl))
         {
-            Problems.Add(row.Line, column, $"the name '{Shorten(name)}' holds a control character");
+            Problems.Add(row.Line, column, $"the name {Shown.Quoted(name)} holds a control character");
         }
         else if (seen is not null && !seen.TryAdd(name, row.Line))
         {
-            Problems.Add(row.Line, column, $"the name '{Shorten(name)}' stands already in line {seen[name]}; names must be unique");
+            Problems.Add(row.Line, column, $"the name {Shown.Quoted(name)} stands already in line {seen[name]}; names must be unique");
         }
 
         return name;
@@ -113,24 +111,17 @@ internal sealed class TsvTable
         {
             Problems.Add(row.Line, column, text.Length == 0
                 ? "the cell is empty; a number is expected"
-                : $"'{Shorten(text)}' is not a number{(text.Contains(',') ? " (write a decimal point, no thousands separators)" : "")}");
+                : $"{Shown.Quoted(text)} is not a number{(text.Contains(',') ? " (write a decimal point, no thousands separators)" : "")}");
             return double.NaN;
         }
 
         if (!(Math.Abs(value) <= largest))
         {
-            Problems.Add(row.Line, column, FormattableString.Invariant($"'{Shorten(text)}' is out of range; a finite number of at most {largest:0.######}{(unit.Length > 0 ? " " : "")}{unit} in size is expected"));
+            Problems.Add(row.Line, column, FormattableString.Invariant($"{Shown.Quoted(text)} is out of range; a finite number of at most {largest:0.######}{(unit.Length > 0 ? " " : "")}{unit} in size is expected"));
             return double.NaN;
         }
 
         return value;
-    }
-
-    /// <summary>The text for a message: long cells are cut, control characters replaced.</summary>
-    public static string Shorten(string text)
-    {
-        string clean = new([.. text.Take(LongestShown).Select(c => char.IsControl(c) || char.IsSurrogate(c) ? '?' : c)]);
-        return text.Length > LongestShown ? $"{clean}... ({text.Length:N0} characters)" : clean;
     }
 
     private static Dictionary<string, int> Header(string[] cells, int line, string[] required, ProblemList problems)
@@ -140,13 +131,13 @@ internal sealed class TsvTable
         {
             if (!columns.TryAdd(cells[k], k))
             {
-                problems.Add(line, Shorten(cells[k]), cells[k].Length == 0 ? "two columns of the header have no name" : "the header names this column twice");
+                problems.Add(line, Shown.Text(cells[k]), cells[k].Length == 0 ? "two columns of the header have no name" : "the header names this column twice");
             }
         }
 
         foreach (string column in required.Where(c => !columns.ContainsKey(c)))
         {
-            string found = Shorten(string.Join(", ", cells));
+            string found = Shown.Text(string.Join(", ", cells));
             problems.Add(line, column, $"the column is missing; the header has: {found}{(cells.Length == 1 ? " (columns are separated by tabs)" : "")}");
         }
 

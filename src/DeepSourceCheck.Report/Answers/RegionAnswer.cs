@@ -6,7 +6,7 @@ namespace DeepSourceCheck.Report.Answers;
 /// <summary>The answer of one region under one response and one rule, in words that report, figures and console share.</summary>
 public sealed class RegionAnswer
 {
-    private readonly Assessment assessment;
+    private readonly Assessment _assessment;
 
     /// <summary>The answer by the study's first target.</summary>
     public RegionAnswer(Assessment assessment, Response response, RegionResult region)
@@ -17,7 +17,7 @@ public sealed class RegionAnswer
     /// <summary>The answer by one rule.</summary>
     public RegionAnswer(Assessment assessment, Response response, RegionResult region, string rule)
     {
-        this.assessment = assessment;
+        _assessment = assessment;
         Response = response;
         Region = region;
         Rule = rule;
@@ -44,7 +44,7 @@ public sealed class RegionAnswer
     public ModalityAnswer? Of(Modality modality) => Answers.FirstOrDefault(a => a.Modality == modality);
 
     /// <summary>Session length in words: `40 minutes`, or `the session`.</summary>
-    public string SessionWords => assessment.Study.Protocol?.Session is { } s ? $"{Say.Stated(Math.Round(s / 60, 6))} minutes" : "the session";
+    public string SessionWords => _assessment.Study.Protocol?.Session is { } s ? $"{Say.SessionMinutes(s)} minutes" : "the session";
 
     /// <summary>The finding in one sentence, without a final stop.</summary>
     public string Headline()
@@ -82,10 +82,10 @@ public sealed class RegionAnswer
     {
         if (Winner is { } winner)
         {
-            return assessment.SessionTrials is null ? $"Fewest trials: {Words(winner.Modality)}." : $"Recommended: {Words(winner.Modality)}.";
+            return _assessment.SessionTrials is null ? $"Fewest trials: {Words(winner.Modality)}." : $"Recommended: {Words(winner.Modality)}.";
         }
 
-        return assessment.SessionTrials is null ? "Recommended: none of these." : "Recommended: none within this session.";
+        return _assessment.SessionTrials is null ? "Recommended: none of these." : "Recommended: none within this session.";
     }
 
     /// <summary>The reason from the numbers: noise over response in one trial; empty where there is no SNR.</summary>
@@ -128,7 +128,7 @@ public sealed class RegionAnswer
 
     private static string FirstRule(Assessment assessment, RegionResult region)
     {
-        string wanted = assessment.Study.Targets.Count > 0 ? Say.RuleKey(assessment.Study.Targets[0]) : "";
+        string wanted = assessment.Study.Targets.Count > 0 ? Names.Of(assessment.Study.Targets[0]) : "";
         return region.Verdicts.Any(v => v.Rule == wanted) ? wanted : region.Verdicts.Count > 0 ? region.Verdicts[0].Rule : wanted;
     }
 

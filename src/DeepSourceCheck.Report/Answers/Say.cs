@@ -1,5 +1,7 @@
 using System.Globalization;
 
+using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 
@@ -10,7 +12,7 @@ namespace DeepSourceCheck.Report.Answers;
 public static class Say
 {
     /// <summary>Above this many trials averaging is no plan: `out of reach`.</summary>
-    public const long MostTrials = 10_000_000;
+    public const long MostTrials = TrialCount.MostPlanned;
 
     /// <summary>`out of reach`.</summary>
     public const string OutOfReach = "out of reach";
@@ -34,6 +36,9 @@ public static class Say
         < 9.95 => Signed(minutes.ToString("0.0", CultureInfo.InvariantCulture)),
         _ => Two(minutes),
     };
+
+    /// <summary>A stated length [s] in minutes: `40`.</summary>
+    public static string SessionMinutes(double seconds) => Stated(Math.Round(seconds / 60, 6));
 
     /// <summary>Two significant digits, with thousands commas: `0.25`, `4.8`, `190`, `12,000`.</summary>
     public static string Two(double value) => Significant(value, 2);
@@ -92,15 +97,7 @@ public static class Say
         : Direction(direction.Name);
 
     /// <summary>Direction in words, for labels.</summary>
-    public static string Direction(DirectionName name) => name switch
-    {
-        DirectionName.QuasiRadial => "quasi-radial",
-        DirectionName.Tangential => "tangential",
-        DirectionName.StrongestTangential => "strongest tangential",
-        DirectionName.Isotropic => "isotropic",
-        DirectionName.Best => "best",
-        _ => "given",
-    };
+    public static string Direction(DirectionName name) => name == DirectionName.StrongestTangential ? "strongest tangential" : Names.Of(name);
 
     /// <summary>What a target asks, in words: `peak = 3 x residual rms`.</summary>
     public static string Rule(TargetChoice target) => target switch
@@ -108,14 +105,6 @@ public static class Say
         AmplitudeRatioChoice a => $"peak = {Stated(a.Ratio)} × residual rms",
         DetectionChoice d => $"detected with power {Percent(d.Power)} at false-alarm rate {Stated(d.Alpha)}{(d.Looks > 1 ? $" over {Stated(d.Looks)} looks" : "")}",
         _ => "the study's target",
-    };
-
-    /// <summary>The rule's key in results.</summary>
-    public static string RuleKey(TargetChoice target) => target switch
-    {
-        AmplitudeRatioChoice => "amplitude_ratio",
-        DetectionChoice => "detection",
-        _ => "",
     };
 
     /// <summary>The rule's key in words.</summary>

@@ -74,14 +74,14 @@ public static class ConsoleSummary
 
     private static string Conditions(Assessment assessment, RegionAnswer answer)
     {
-        string rule = assessment.Study.Targets.FirstOrDefault(t => Say.RuleKey(t) == answer.Rule) is { } t ? Say.Rule(t) : Say.RuleKey(answer.Rule);
+        string rule = assessment.Study.Targets.FirstOrDefault(t => Names.Of(t) == answer.Rule) is { } t ? Say.Rule(t) : Say.RuleKey(answer.Rule);
         if (assessment.Study.Protocol is not { } p)
         {
             return $"{rule}; no protocol stated";
         }
 
         string rejected = p.RejectedFraction > 0 ? $", {Say.Percent(p.RejectedFraction)} rejected" : "";
-        string session = assessment.SessionTrials is { } n && p.Session is { } s ? $"; session {Say.Stated(Math.Round(s / 60, 6))} min = {Say.Plural(n, "trial")}" : "; no session stated";
+        string session = assessment.SessionTrials is { } n && p.Session is { } s ? $"; session {Say.SessionMinutes(s)} min = {Say.Plural(n, "trial")}" : "; no session stated";
         return $"{rule}; {Say.Stated(p.Rate)}/s{rejected}{session}";
     }
 

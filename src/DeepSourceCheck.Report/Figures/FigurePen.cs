@@ -28,34 +28,34 @@ public sealed class FigurePen
     /// <summary>Figure labels.</summary>
     public const float Label = 13;
 
-    private readonly SKCanvas canvas;
-    private readonly PixelRect data;
-    private readonly AxisLimits limits;
+    private readonly SKCanvas _canvas;
+    private readonly PixelRect _data;
+    private readonly AxisLimits _limits;
 
     internal FigurePen(RenderPack pack)
     {
-        canvas = pack.Canvas;
-        data = pack.DataRect;
-        limits = pack.Plot.Axes.GetLimits();
+        _canvas = pack.Canvas;
+        _data = pack.DataRect;
+        _limits = pack.Plot.Axes.GetLimits();
     }
 
     /// <summary>Left edge of the plotting area [px].</summary>
-    public float Left => data.Left;
+    public float Left => _data.Left;
 
     /// <summary>Right edge of the plotting area [px].</summary>
-    public float Right => data.Right;
+    public float Right => _data.Right;
 
     /// <summary>Upper edge of the plotting area [px].</summary>
-    public float Top => data.Top;
+    public float Top => _data.Top;
 
     /// <summary>Lower edge of the plotting area [px].</summary>
-    public float Bottom => data.Bottom;
+    public float Bottom => _data.Bottom;
 
     /// <summary>Pixel of an abscissa.</summary>
-    public float X(double x) => (float)(data.Left + (x - limits.Left) / (limits.Right - limits.Left) * (data.Right - data.Left));
+    public float X(double x) => (float)(_data.Left + (x - _limits.Left) / (_limits.Right - _limits.Left) * (_data.Right - _data.Left));
 
     /// <summary>Pixel of an ordinate.</summary>
-    public float Y(double y) => (float)(data.Bottom - (y - limits.Bottom) / (limits.Top - limits.Bottom) * (data.Bottom - data.Top));
+    public float Y(double y) => (float)(_data.Bottom - (y - _limits.Bottom) / (_limits.Top - _limits.Bottom) * (_data.Bottom - _data.Top));
 
     /// <summary>Width of a text [px].</summary>
     public static float Width(string text, float size, bool semiBold = false)
@@ -94,18 +94,18 @@ public sealed class FigurePen
         {
             using SKPaint around = Stroke(Palette.Ground, 4);
             around.StrokeJoin = SKStrokeJoin.Round;
-            canvas.DrawText(text, left, baseline, font, around);
+            _canvas.DrawText(text, left, baseline, font, around);
         }
 
         using SKPaint paint = Fill(colour ?? Palette.Ink);
-        canvas.DrawText(text, left, baseline, font, paint);
+        _canvas.DrawText(text, left, baseline, font, paint);
     }
 
     /// <summary>A straight line.</summary>
     public void Line(float x0, float y0, float x1, float y1, SKColor colour, float width)
     {
         using SKPaint paint = Stroke(colour, width);
-        canvas.DrawLine(x0, y0, x1, y1, paint);
+        _canvas.DrawLine(x0, y0, x1, y1, paint);
     }
 
     /// <summary>A dotted line: an assumption's leader.</summary>
@@ -123,21 +123,21 @@ public sealed class FigurePen
     public void Rectangle(float left, float top, float right, float bottom, SKColor colour)
     {
         using SKPaint paint = Fill(colour);
-        canvas.DrawRect(SKRect.Create(left, top, right - left, bottom - top), paint);
+        _canvas.DrawRect(SKRect.Create(left, top, right - left, bottom - top), paint);
     }
 
     /// <summary>A circle's outline.</summary>
     public void Ring(float x, float y, float radius, SKColor colour, float width)
     {
         using SKPaint paint = Stroke(colour, width);
-        canvas.DrawCircle(x, y, radius, paint);
+        _canvas.DrawCircle(x, y, radius, paint);
     }
 
     /// <summary>A filled disc.</summary>
     public void Disc(float x, float y, float radius, SKColor colour)
     {
         using SKPaint paint = Fill(colour);
-        canvas.DrawCircle(x, y, radius, paint);
+        _canvas.DrawCircle(x, y, radius, paint);
     }
 
     /// <summary>Many equal dots as one path.</summary>
@@ -152,7 +152,7 @@ public sealed class FigurePen
 
         using SKPaint paint = Stroke(colour, 2 * radius);
         paint.StrokeCap = SKStrokeCap.Round;
-        canvas.DrawPath(path, paint);
+        _canvas.DrawPath(path, paint);
 
         static float Tenth(float v) => MathF.Round(v, 1);
     }
@@ -162,7 +162,7 @@ public sealed class FigurePen
     {
         using SKPath path = Path(points, close: true);
         using SKPaint paint = Fill(colour);
-        canvas.DrawPath(path, paint);
+        _canvas.DrawPath(path, paint);
     }
 
     /// <summary>A curve in its modality's line: EEG full, MEG dashed 9 4, both dash-dot 2 3 9 3.</summary>
@@ -173,7 +173,7 @@ public sealed class FigurePen
         foreach (IReadOnlyList<SKPoint> piece in pattern.Length == 0 ? [points] : Dashes(points, pattern))
         {
             using SKPath path = Path(piece, close: false);
-            canvas.DrawPath(path, paint);
+            _canvas.DrawPath(path, paint);
         }
     }
 
@@ -212,7 +212,7 @@ public sealed class FigurePen
             SKPoint p = new(MathF.Round(place.X, 1), MathF.Round(place.Y, 1));
             if (modality == Modality.Eeg)
             {
-                canvas.DrawCircle(p, Ring, edge);
+                _canvas.DrawCircle(p, Ring, edge);
             }
             else
             {
@@ -222,7 +222,7 @@ public sealed class FigurePen
 
         if (!diamonds.IsEmpty)
         {
-            canvas.DrawPath(diamonds, edge);
+            _canvas.DrawPath(diamonds, edge);
         }
     }
 
@@ -258,18 +258,18 @@ public sealed class FigurePen
         switch (modality)
         {
             case Modality.Eeg:
-                canvas.DrawCircle(x, y, 7 * scale, paint);
+                _canvas.DrawCircle(x, y, 7 * scale, paint);
                 break;
             case Modality.Meg:
                 float d = 9 * scale;
                 using (SKPath path = Path([new(x, y - d), new(x + d, y), new(x, y + d), new(x - d, y)], close: true))
                 {
-                    canvas.DrawPath(path, paint);
+                    _canvas.DrawPath(path, paint);
                 }
 
                 break;
             default:
-                canvas.DrawRect(SKRect.Create(x - 7 * scale, y - 7 * scale, 14 * scale, 14 * scale), paint);
+                _canvas.DrawRect(SKRect.Create(x - 7 * scale, y - 7 * scale, 14 * scale, 14 * scale), paint);
                 break;
         }
     }

@@ -1,5 +1,4 @@
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Figures;
 
@@ -11,7 +10,7 @@ public static class FigureSet
     {
         ResponseResult result = assessment.Responses[response];
         string suffix = assessment.Responses.Count > 1 ? $"-{response + 1}" : "";
-        string[] rules = [.. assessment.Study.Targets.Select(Say.RuleKey).Concat(result.Regions.SelectMany(r => r.Verdicts).Select(v => v.Rule)).Distinct()];
+        string[] rules = [.. assessment.Study.Targets.Select(Names.Of).Concat(result.Regions.SelectMany(r => r.Verdicts).Select(v => v.Rule)).Distinct()];
         List<Figure?> figures = [];
         for (int k = 0; k < rules.Length; k++)
         {

@@ -10,7 +10,7 @@ namespace DeepSourceCheck.Report.Figures;
 /// <summary>One drawing at one width: a plot with its axes, and the layers below and above its grid.</summary>
 public sealed class FigureSheet : IDisposable
 {
-    private readonly Plot plot = new();
+    private readonly Plot _plot = new();
 
     /// <summary>A sheet of a size in pixels; the padding is what lies around the plotting area.</summary>
     public FigureSheet(int width, int height, float left, float right, float top, float bottom)
@@ -18,12 +18,12 @@ public sealed class FigureSheet : IDisposable
         FigureFont.Register();
         Width = width;
         Height = height;
-        plot.FigureBackground.Color = Colour(Palette.Ground);
-        plot.DataBackground.Color = Colors.Transparent;
-        plot.Layout.Fixed(new PixelPadding(left, right, bottom, top));
-        plot.Axes.Frameless();
-        plot.HideGrid();
-        plot.HideLegend();
+        _plot.FigureBackground.Color = Colour(Palette.Ground);
+        _plot.DataBackground.Color = Colors.Transparent;
+        _plot.Layout.Fixed(new PixelPadding(left, right, bottom, top));
+        _plot.Axes.Frameless();
+        _plot.HideGrid();
+        _plot.HideLegend();
     }
 
     /// <summary>Width [px].</summary>
@@ -33,24 +33,24 @@ public sealed class FigureSheet : IDisposable
     public int Height { get; }
 
     /// <summary>Sets the range of both axes.</summary>
-    public void Limits(double left, double right, double bottom, double top) => plot.Axes.SetLimits(left, right, bottom, top);
+    public void Limits(double left, double right, double bottom, double top) => _plot.Axes.SetLimits(left, right, bottom, top);
 
     /// <summary>The lower axis: line, ticks with labels, and a grid line at each tick.</summary>
-    public void BottomAxis(IReadOnlyList<(double Position, string Label)> ticks) => Axis(plot.Axes.Bottom, ticks);
+    public void BottomAxis(IReadOnlyList<(double Position, string Label)> ticks) => Axis(_plot.Axes.Bottom, ticks);
 
     /// <summary>The left axis, as <see cref="BottomAxis"/>.</summary>
-    public void LeftAxis(IReadOnlyList<(double Position, string Label)> ticks) => Axis(plot.Axes.Left, ticks);
+    public void LeftAxis(IReadOnlyList<(double Position, string Label)> ticks) => Axis(_plot.Axes.Left, ticks);
 
     /// <summary>Draws below the grid.</summary>
     public void Under(Action<FigurePen> draw)
     {
-        List<IRenderAction> actions = plot.RenderManager.RenderActions;
+        List<IRenderAction> actions = _plot.RenderManager.RenderActions;
         int at = actions.FindIndex(a => a is ScottPlot.Rendering.RenderActions.RenderGridsBelowPlottables);
         actions.Insert(at, new Layer(draw));
     }
 
     /// <summary>Draws above everything.</summary>
-    public void Over(Action<FigurePen> draw) => plot.RenderManager.RenderActions.Add(new Layer(draw));
+    public void Over(Action<FigurePen> draw) => _plot.RenderManager.RenderActions.Add(new Layer(draw));
 
     /// <summary>The drawing as SVG whose text is outlines of the shipped font.</summary>
     /// <param name="prefix">Begins every id, so that several drawings can stand in one page.</param>
@@ -59,7 +59,7 @@ public sealed class FigureSheet : IDisposable
         using MemoryStream stream = new();
         using (SKCanvas canvas = SKSvgCanvas.Create(SKRect.Create(Width, Height), stream))
         {
-            plot.Render(canvas, new PixelRect(0, Width, Height, 0));
+            _plot.Render(canvas, new PixelRect(0, Width, Height, 0));
         }
 
         return SvgOutlines.Replace(Encoding.UTF8.GetString(stream.ToArray()), prefix);
@@ -71,14 +71,14 @@ public sealed class FigureSheet : IDisposable
         const int Scale = 2;
         using SKSurface surface = SKSurface.Create(new SKImageInfo(Width * Scale, Height * Scale, SKColorType.Rgba8888, SKAlphaType.Premul));
         surface.Canvas.Scale(Scale);
-        plot.Render(surface.Canvas, new PixelRect(0, Width, Height, 0));
+        _plot.Render(surface.Canvas, new PixelRect(0, Width, Height, 0));
         using SKImage image = surface.Snapshot();
         using SKData data = image.Encode(SKEncodedImageFormat.Png, 100);
         return data.ToArray();
     }
 
     /// <inheritdoc/>
-    public void Dispose() => plot.Dispose();
+    public void Dispose() => _plot.Dispose();
 
     private static ScottPlot.Color Colour(SKColor c) => new(c.Red, c.Green, c.Blue, c.Alpha);
 
@@ -95,11 +95,11 @@ public sealed class FigureSheet : IDisposable
         axis.TickLabelStyle.FontSize = FigurePen.Small;
         axis.TickLabelStyle.ForeColor = Colour(Palette.Ink2);
         axis.TickGenerator = new NumericManual([.. ticks.Select(t => t.Position)], [.. ticks.Select(t => t.Label)]);
-        plot.Grid.IsVisible = true;
-        plot.Grid.MajorLineColor = Colour(Palette.Hair);
-        plot.Grid.MajorLineWidth = 1;
-        (axis is IXAxis ? plot.Grid.YAxisStyle : plot.Grid.XAxisStyle).IsVisible &= Shown(axis is IXAxis ? plot.Axes.Left : plot.Axes.Bottom);
-        (axis is IXAxis ? plot.Grid.XAxisStyle : plot.Grid.YAxisStyle).IsVisible = true;
+        _plot.Grid.IsVisible = true;
+        _plot.Grid.MajorLineColor = Colour(Palette.Hair);
+        _plot.Grid.MajorLineWidth = 1;
+        (axis is IXAxis ? _plot.Grid.YAxisStyle : _plot.Grid.XAxisStyle).IsVisible &= Shown(axis is IXAxis ? _plot.Axes.Left : _plot.Axes.Bottom);
+        (axis is IXAxis ? _plot.Grid.XAxisStyle : _plot.Grid.YAxisStyle).IsVisible = true;
     }
 
     private static bool Shown(IAxis axis) => axis.TickGenerator is NumericManual;

@@ -133,10 +133,7 @@ public static class PowerFigure
 
             if (session is { } x)
             {
-                pen.PlumbLine(pen.X(x), pen.Top - 8, pen.Bottom + 2);
-                string label = assessment.Study.Protocol?.Session is { } seconds ? $"session {Say.Stated(Math.Round(seconds / 60, 6))} min" : "session";
-                bool leftwards = pen.X(x) > (pen.Left + pen.Right) / 2;
-                pen.Text(label, pen.X(x) + (leftwards ? -6 : 6), pen.Top - 12, FigurePen.Label, leftwards ? Anchor.End : Anchor.Start, true);
+                SessionLine.Draw(pen, pen.X(x), 8, SessionLine.Label(assessment));
             }
 
             int row = 0;

@@ -38,7 +38,7 @@ public static class TrialsFigure
 
     /// <summary>The rule in words, with its numbers where it is a target of the study.</summary>
     internal static string RuleWords(Assessment assessment, string rule) =>
-        assessment.Study.Targets.FirstOrDefault(t => Say.RuleKey(t) == rule) is { } target ? Say.Rule(target) : Say.RuleKey(rule);
+        assessment.Study.Targets.FirstOrDefault(t => Names.Of(t) == rule) is { } target ? Say.Rule(target) : Say.RuleKey(rule);
 
     /// <summary>`; 11.1/s, 10 % rejected`, or empty.</summary>
     internal static string Protocol(Assessment assessment) => assessment.Study.Protocol is { } p
@@ -86,11 +86,8 @@ public static class TrialsFigure
             if (session is { } x)
             {
                 plumb = pen.X(x);
-                pen.PlumbLine(plumb, pen.Top - 26, pen.Bottom + 2);
-                string minutes = assessment.Study.Protocol?.Session is { } seconds ? $" {Say.Stated(Math.Round(seconds / 60, 6))} min" : "";
-                string label = $"session{minutes}{(named ? "" : $", {Say.Count(assessment.SessionTrials!.Value)} accepted trials")}";
-                bool leftwards = plumb > (pen.Left + pen.Right) / 2;
-                pen.Text(label, plumb + (leftwards ? -6 : 6), pen.Top - 28, FigurePen.Label, leftwards ? Anchor.End : Anchor.Start, semiBold: true, halo: true);
+                string trials = named ? "" : $", {Say.Count(assessment.SessionTrials!.Value)} accepted trials";
+                SessionLine.Draw(pen, plumb, 26, SessionLine.Label(assessment) + trials, halo: true);
             }
 
             for (int k = 0; k < region.Answers.Count; k++)
@@ -169,10 +166,7 @@ public static class TrialsFigure
             if (session is { } x)
             {
                 plumb = pen.X(x);
-                pen.PlumbLine(plumb, pen.Top - 24, pen.Bottom + 2);
-                string label = assessment.Study.Protocol?.Session is { } seconds ? $"session {Say.Stated(Math.Round(seconds / 60, 6))} min" : "session";
-                bool leftwards = plumb > (pen.Left + pen.Right) / 2;
-                pen.Text(label, plumb + (leftwards ? -6 : 6), pen.Top - 26, FigurePen.Label, leftwards ? Anchor.End : Anchor.Start, semiBold: true);
+                SessionLine.Draw(pen, plumb, 24, SessionLine.Label(assessment));
             }
 
             float y = pen.Top + 4;

@@ -1,7 +1,5 @@
-using System.Collections;
-using System.Globalization;
-
 using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Html;
 
@@ -16,19 +14,8 @@ internal static class AssumptionSection
             "class", "small");
         HtmlReport.Table(html, "Assumptions", ["key", "value", "unit", "origin", "source", "grade"],
             assessment.Assumptions.Select(a => (IReadOnlyList<string>)
-                [a.Key, Value(a.Value), a.Unit, a.FromStudy ? "study" : "default", a.Source, a.Grade is { } g ? Names.Of(g) : ""]),
+                [a.Key, StudyValue.Text(a.Value, '\u2212'), a.Unit, a.FromStudy ? "study" : "default", a.Source, a.Grade is { } g ? Names.Of(g) : ""]),
             ["key-name", "long", "", "", "long", ""]);
         html.CloseLine();
     }
-
-    /// <summary>A value as the study file would write it.</summary>
-    internal static string Value(object? value) => value switch
-    {
-        null => "none",
-        string text => text,
-        bool flag => flag ? "true" : "false",
-        IEnumerable list => $"[{string.Join(", ", list.Cast<object?>().Select(Value))}]",
-        IFormattable number => number.ToString(null, CultureInfo.InvariantCulture).Replace('-', '\u2212'),
-        _ => value.ToString() ?? "",
-    };
 }

@@ -7,8 +7,8 @@ namespace DeepSourceCheck.Report.Html;
 /// <remarks>What it writes is well-formed XML as well as HTML.</remarks>
 internal sealed class Markup
 {
-    private readonly StringBuilder text = new();
-    private readonly Stack<string> open = new();
+    private readonly StringBuilder _text = new();
+    private readonly Stack<string> _open = new();
 
     /// <summary>Text for element content and quoted attributes.</summary>
     public static string Escape(string value)
@@ -27,14 +27,14 @@ internal sealed class Markup
     public Markup Open(string tag, params ReadOnlySpan<string> attributes)
     {
         Start(tag, attributes).Append('>');
-        open.Push(tag);
+        _open.Push(tag);
         return this;
     }
 
     /// <summary>Closes the innermost element.</summary>
     public Markup Close()
     {
-        text.Append("</").Append(open.Pop()).Append('>');
+        _text.Append("</").Append(_open.Pop()).Append('>');
         return this;
     }
 
@@ -42,7 +42,7 @@ internal sealed class Markup
     public Markup CloseLine()
     {
         Close();
-        text.Append('\n');
+        _text.Append('\n');
         return this;
     }
 
@@ -63,29 +63,29 @@ internal sealed class Markup
     /// <summary>Escaped text.</summary>
     public Markup Text(string content)
     {
-        text.Append(Escape(content));
+        _text.Append(Escape(content));
         return this;
     }
 
     /// <summary>Markup made elsewhere in this program.</summary>
     public Markup Raw(string markup)
     {
-        text.Append(markup);
+        _text.Append(markup);
         return this;
     }
 
     /// <inheritdoc/>
     public override string ToString() =>
-        open.Count == 0 ? text.ToString() : throw new InvalidOperationException($"The element {open.Peek()} is not closed.");
+        _open.Count == 0 ? _text.ToString() : throw new InvalidOperationException($"The element {_open.Peek()} is not closed.");
 
     private StringBuilder Start(string tag, ReadOnlySpan<string> attributes)
     {
-        text.Append('<').Append(tag);
+        _text.Append('<').Append(tag);
         for (int k = 0; k < attributes.Length; k += 2)
         {
-            text.Append(' ').Append(attributes[k]).Append("=\"").Append(Escape(attributes[k + 1])).Append('"');
+            _text.Append(' ').Append(attributes[k]).Append("=\"").Append(Escape(attributes[k + 1])).Append('"');
         }
 
-        return text;
+        return _text;
     }
 }

@@ -1,30 +1,17 @@
-using System.Collections;
-using System.Globalization;
-using System.Text.Encodings.Web;
 using System.Text.Json;
 
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Report.Tables;
 
 /// <summary>assessment.json: the machine-readable answer.</summary>
 /// <remarks>
-/// UTF-8, two spaces of indent, LF. Doubles have the shortest text that reads back to the same double; counts are integers.
+/// UTF-8, written as <see cref="JsonText"/> says.
 /// A figure that does not exist is null, and `reason` beside it says why. Units stand in the keys, or beside the value as `unit`.
 /// </remarks>
 public static class AssessmentJson
 {
-    private static readonly JsonWriterOptions Options = new()
-    {
-        Indented = true,
-        IndentSize = 2,
-        NewLine = "\n",
-        // A file, never markup: signs such as + and the micro sign stay readable.
-        Encoder = JavaScriptEncoder.UnsafeRelaxedJsonEscaping,
-    };
-
     /// <summary>The whole file as UTF-8 bytes, with a final line break.</summary>
     public static byte[] Bytes(Assessment assessment)
     {
@@ -36,19 +23,16 @@ public static class AssessmentJson
     /// <summary>Writes the whole file to a stream.</summary>
     public static void Write(Assessment assessment, Stream stream)
     {
-        using (Utf8JsonWriter json = new(stream, Options))
+        using (Utf8JsonWriter json = new(stream, JsonText.Options))
         {
             json.WriteStartObject();
-            json.WriteStartObject("program");
-            json.WriteString("name", ProgramName.Text);
-            json.WriteString("version", assessment.Version);
-            json.WriteEndObject();
+            json.WriteProgram(assessment.Version);
             json.WriteString("title", assessment.Study.Title);
-            Array(json, "inputs", assessment.Inputs, Input);
-            Array(json, "assumptions", assessment.Assumptions, WriteAssumption);
-            Strings(json, "warnings", assessment.Warnings);
-            Count(json, "session_trials", assessment.SessionTrials);
-            Array(json, "responses", assessment.Responses, WriteResponse);
+            json.WriteArray("inputs", assessment.Inputs, Input);
+            json.WriteArray("assumptions", assessment.Assumptions, JsonText.WriteAssumption);
+            json.WriteStrings("warnings", assessment.Warnings);
+            json.WriteCount("session_trials", assessment.SessionTrials);
+            json.WriteArray("responses", assessment.Responses, WriteResponse);
             json.WriteStartArray("variants");
             json.WriteEndArray();
             json.WriteEndObject();
@@ -65,58 +49,11 @@ public static class AssessmentJson
         json.WriteEndObject();
     }
 
-    private static void WriteAssumption(Utf8JsonWriter json, Assumption assumption)
-    {
-        json.WriteStartObject();
-        json.WriteString("key", assumption.Key);
-        json.WritePropertyName("value");
-        Value(json, assumption.Value);
-        json.WriteString("unit", assumption.Unit);
-        json.WriteString("origin", assumption.FromStudy ? "study" : "default");
-        json.WriteString("source", assumption.Source);
-        json.WriteString("grade", assumption.Grade is { } grade ? Names.Of(grade) : null);
-        json.WriteEndObject();
-    }
-
-    private static void Value(Utf8JsonWriter json, object? value)
-    {
-        switch (value)
-        {
-            case null:
-                json.WriteNullValue();
-                break;
-            case string text:
-                json.WriteStringValue(text);
-                break;
-            case bool flag:
-                json.WriteBooleanValue(flag);
-                break;
-            case double or float:
-                Number(json, Convert.ToDouble(value, CultureInfo.InvariantCulture));
-                break;
-            case int or long or short or byte or uint:
-                json.WriteNumberValue(Convert.ToInt64(value, CultureInfo.InvariantCulture));
-                break;
-            case IEnumerable list:
-                json.WriteStartArray();
-                foreach (object? item in list)
-                {
-                    Value(json, item);
-                }
-
-                json.WriteEndArray();
-                break;
-            default:
-                json.WriteStringValue(Convert.ToString(value, CultureInfo.InvariantCulture));
-                break;
-        }
-    }
-
     private static void WriteResponse(Utf8JsonWriter json, ResponseResult response)
     {
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
-        Array(json, "regions", response.Regions, WriteRegion);
+        json.WriteArray("regions", response.Regions, WriteRegion);
         json.WriteEndObject();
     }
 
@@ -126,9 +63,9 @@ public static class AssessmentJson
         json.WriteString("region", region.Region);
         json.WriteNumber("dipoles", region.Dipoles);
         json.WriteNumber("dropped", region.Dropped);
-        Figure(json, "spacing_mm", region.Spacing is { } h ? Si.ToMm(h) : null);
-        Figure(json, "volume_mL", region.Volume is { } v ? Si.ToMillilitres(v) : null);
-        Figure(json, "captured_field_share", region.FieldCaptured);
+        json.WriteFigure("spacing_mm", region.Spacing is { } h ? Si.ToMm(h) : null);
+        json.WriteFigure("volume_mL", region.Volume is { } v ? Si.ToMillilitres(v) : null);
+        json.WriteFigure("captured_field_share", region.FieldCaptured);
         if (region.Split is { } split)
         {
             json.WriteStartObject("split");
@@ -143,9 +80,9 @@ public static class AssessmentJson
             json.WriteNull("split");
         }
 
-        Array(json, "results", region.Results, WriteMeasure);
-        Array(json, "verdicts", region.Verdicts, WriteVerdict);
-        Strings(json, "warnings", region.Warnings);
+        json.WriteArray("results", region.Results, WriteMeasure);
+        json.WriteArray("verdicts", region.Verdicts, WriteVerdict);
+        json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();
     }
 
@@ -159,7 +96,7 @@ public static class AssessmentJson
         if (row.Peak is { } peak)
         {
             json.WriteStartObject("peak_amplitude");
-            Figure(json, "value", peak.Value);
+            json.WriteFigure("value", peak.Value);
             json.WriteString("unit", peak.Unit);
             json.WriteString("channel", peak.Channel);
             json.WriteEndObject();
@@ -170,7 +107,7 @@ public static class AssessmentJson
         }
 
         WritePercentiles(json, "snr_db", row.SnrDb);
-        Array(json, "targets", row.Targets, (j, t) => WriteTarget(j, t, unit));
+        json.WriteArray("targets", row.Targets, (j, t) => WriteTarget(j, t, unit));
         if (row.Reason is not null)
         {
             json.WriteString("reason", row.Reason);
@@ -181,7 +118,7 @@ public static class AssessmentJson
             json.WriteStartObject("at_leak");
             json.WriteNumber("leak", leak.Leak);
             WritePercentiles(json, "snr_db", leak.SnrDb);
-            Array(json, "targets", leak.Targets, (j, t) => WriteTarget(j, t, unit));
+            json.WriteArray("targets", leak.Targets, (j, t) => WriteTarget(j, t, unit));
             json.WriteEndObject();
         }
 
@@ -193,11 +130,11 @@ public static class AssessmentJson
         json.WriteStartObject();
         json.WriteString("rule", target.Rule);
         json.WriteStartObject("trials");
-        Count(json, "p05", target.Trials.P05);
-        Count(json, "p25", target.Trials.P25);
-        Count(json, "p50", target.Trials.P50);
-        Count(json, "p75", target.Trials.P75);
-        Count(json, "p95", target.Trials.P95);
+        json.WriteCount("p05", target.Trials.P05);
+        json.WriteCount("p25", target.Trials.P25);
+        json.WriteCount("p50", target.Trials.P50);
+        json.WriteCount("p75", target.Trials.P75);
+        json.WriteCount("p95", target.Trials.P95);
         json.WriteEndObject();
         if (target.Minutes is { } minutes)
         {
@@ -208,11 +145,11 @@ public static class AssessmentJson
             json.WriteNull("minutes");
         }
 
-        Figure(json, "smallest_nAm", target.SmallestMoment is { } q ? Si.ToNanoAmpereMetres(q) : null);
+        json.WriteFigure("smallest_nAm", target.SmallestMoment is { } q ? Si.ToNanoAmpereMetres(q) : null);
         if (target.SmallestAmplitude is { } amplitude && unit is not null)
         {
             json.WriteStartObject("smallest_amplitude");
-            Figure(json, "value", amplitude);
+            json.WriteFigure("value", amplitude);
             json.WriteString("unit", unit);
             json.WriteEndObject();
         }
@@ -228,11 +165,7 @@ public static class AssessmentJson
     private static void WriteVerdict(Utf8JsonWriter json, VerdictResult verdict)
     {
         json.WriteStartObject();
-        json.WriteString("modality", Names.Of(verdict.Modality));
-        json.WriteString("rule", verdict.Rule);
-        json.WriteString("measure", verdict.Measure);
-        json.WriteString("direction", Names.Of(verdict.Direction));
-        json.WriteString("text", verdict.Text);
+        json.WriteVerdictMembers(verdict);
         if (verdict.FitsSession is { } fits)
         {
             json.WriteBoolean("fits_session", fits);
@@ -242,92 +175,27 @@ public static class AssessmentJson
             json.WriteNull("fits_session");
         }
 
-        Figure(json, "assurance", verdict.Assurance);
-        Array(json, "why", verdict.Chain, WriteStep);
-        json.WriteEndObject();
-    }
-
-    private static void WriteStep(Utf8JsonWriter json, DerivedNumber step)
-    {
-        json.WriteStartObject();
-        json.WriteString("symbol", step.Symbol);
-        json.WriteString("name", step.Name);
-        Figure(json, "value", step.Value);
-        json.WriteString("unit", step.Unit);
-        json.WriteString("formula", step.Formula);
-        json.WriteString("source", step.Source);
-        json.WriteString("grade", step.Grade is { } grade ? Names.Of(grade) : null);
+        json.WriteFigure("assurance", verdict.Assurance);
+        json.WriteArray("why", verdict.Chain, JsonText.WriteDerivedNumber);
         json.WriteEndObject();
     }
 
     private static void WritePercentiles(Utf8JsonWriter json, string name, Percentiles p, bool allFive = true)
     {
         json.WriteStartObject(name);
-        Figure(json, "p05", p.P05);
+        json.WriteFigure("p05", p.P05);
         if (allFive)
         {
-            Figure(json, "p25", p.P25);
+            json.WriteFigure("p25", p.P25);
         }
 
-        Figure(json, "p50", p.P50);
+        json.WriteFigure("p50", p.P50);
         if (allFive)
         {
-            Figure(json, "p75", p.P75);
+            json.WriteFigure("p75", p.P75);
         }
 
-        Figure(json, "p95", p.P95);
+        json.WriteFigure("p95", p.P95);
         json.WriteEndObject();
-    }
-
-    private static void Array<T>(Utf8JsonWriter json, string name, IReadOnlyList<T> items, Action<Utf8JsonWriter, T> write)
-    {
-        json.WriteStartArray(name);
-        foreach (T item in items)
-        {
-            write(json, item);
-        }
-
-        json.WriteEndArray();
-    }
-
-    private static void Strings(Utf8JsonWriter json, string name, IReadOnlyList<string> items) =>
-        Array(json, name, items, (j, text) => j.WriteStringValue(text));
-
-    private static void Count(Utf8JsonWriter json, string name, long? value)
-    {
-        if (value is { } count)
-        {
-            json.WriteNumber(name, count);
-        }
-        else
-        {
-            json.WriteNull(name);
-        }
-    }
-
-    private static void Figure(Utf8JsonWriter json, string name, double? value)
-    {
-        json.WritePropertyName(name);
-        if (value is { } number)
-        {
-            Number(json, number);
-        }
-        else
-        {
-            json.WriteNullValue();
-        }
-    }
-
-    // JSON has no NaN and no infinity: both are figures that do not exist.
-    private static void Number(Utf8JsonWriter json, double value)
-    {
-        if (double.IsFinite(value))
-        {
-            json.WriteNumberValue(value + 0.0);
-        }
-        else
-        {
-            json.WriteNullValue();
-        }
     }
 }

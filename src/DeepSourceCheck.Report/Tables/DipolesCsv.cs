@@ -1,6 +1,7 @@
 using System.Buffers;
 using System.Text;
 
+using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Units;
@@ -21,26 +22,26 @@ public sealed class DipolesCsv : IDipoleSink, IDisposable
     private const int LongestNumber = 25;
     private const int FixedNumbers = 15;
 
-    private readonly Stream stream;
-    private int columns;
+    private readonly Stream _stream;
+    private int _columns;
 
     /// <summary>Writes to <paramref name="stream"/>, which is closed on <see cref="Dispose"/>.</summary>
-    public DipolesCsv(Stream stream) => this.stream = stream;
+    public DipolesCsv(Stream stream) => _stream = stream;
 
     /// <inheritdoc/>
     public void Begin(IReadOnlyList<DipoleColumn> columns)
     {
-        this.columns = columns.Count;
+        _columns = columns.Count;
         string names = string.Concat(columns.Select(c => "," + CsvField.Quote(c.Name)));
-        stream.Write(Encoding.UTF8.GetBytes(FixedHeader + names + "\n"));
+        _stream.Write(Encoding.UTF8.GetBytes(FixedHeader + names + "\n"));
     }
 
     /// <inheritdoc/>
     public byte[] Format(DipoleChunk chunk)
     {
-        if (chunk.SnrDb.Length != columns)
+        if (chunk.SnrDb.Length != _columns)
         {
-            throw new ArgumentException($"The chunk has {chunk.SnrDb.Length} columns of SNR, {columns} were announced.", nameof(chunk));
+            throw new ArgumentException($"The chunk has {chunk.SnrDb.Length} columns of SNR, {_columns} were announced.", nameof(chunk));
         }
 
         byte[] head = Encoding.UTF8.GetBytes($"{CsvField.Quote(chunk.Response)},{CsvField.Quote(chunk.Region)},");
@@ -50,7 +51,7 @@ public sealed class DipolesCsv : IDipoleSink, IDisposable
             longestName = Math.Max(longestName, Encoding.UTF8.GetByteCount(CsvField.Quote(chunk.Points[k])));
         }
 
-        int longestRow = head.Length + longestName + (FixedNumbers + columns) * (LongestNumber + 1) + 16;
+        int longestRow = head.Length + longestName + (FixedNumbers + _columns) * (LongestNumber + 1) + 16;
         byte[] buffer = ArrayPool<byte>.Shared.Rent(checked(longestRow * Math.Max(1, chunk.Count)));
         try
         {
@@ -69,10 +70,10 @@ public sealed class DipolesCsv : IDipoleSink, IDisposable
     }
 
     /// <inheritdoc/>
-    public void Append(byte[] formatted) => stream.Write(formatted);
+    public void Append(byte[] formatted) => _stream.Write(formatted);
 
     /// <summary>Closes the stream.</summary>
-    public void Dispose() => stream.Dispose();
+    public void Dispose() => _stream.Dispose();
 
     private static int Row(DipoleChunk chunk, int k, byte[] head, byte[] buffer, int n)
     {

@@ -6,24 +6,20 @@ using DeepSourceCheck.Core.Geometry;
 
 namespace DeepSourceCheck.Tests.House;
 
-/// <summary>Arrows point one way: Cli to Report and Files, both to Core; within Core no stage names a later one.</summary>
+/// <summary>Arrows point one way: Cli to Report and Files, both to Core; within Core no folder names a later one.</summary>
 public partial class LayeringTests
 {
-    /// <summary>The stages of Core in the order in which the data flows.</summary>
+    /// <summary>
+    /// The folders of Core in the order in which the data flows: each may name those before it, none after it. Studies (the typed study and its errors) stands as soon as it
+    /// can, after the heads that it holds; Results (the result model and the words that name things) as soon as all that it holds is known.
+    /// </summary>
     private static readonly string[] Stages =
-        ["Units", "Geometry", "Numerics", "Heads", "Sensors", "Regions", "Leadfields", "Directions", "Noise", "Detection", "Planning", "Attribution"];
-
-    /// <summary>The words that stages share, and the stages that these words may name: the typed study and the result model.</summary>
-    private static readonly Dictionary<string, string[]> Vocabulary = new()
-    {
-        ["Studies"] = ["Units", "Geometry", "Heads"],
-        ["Results"] = ["Units", "Geometry", "Heads", "Sensors", "Studies"],
-    };
+        ["Units", "Geometry", "Numerics", "Heads", "Studies", "Sensors", "Regions", "Leadfields", "Directions", "Noise", "Results", "Detection", "Planning"];
 
     [Theory]
     [InlineData("DeepSourceCheck.Core", new[] { "MathNet.Numerics" })]
     [InlineData("DeepSourceCheck.Files", new[] { "DeepSourceCheck.Core", "YamlDotNet" })]
-    [InlineData("DeepSourceCheck.Report", new[] { "DeepSourceCheck.Core", "MathNet.Numerics", "ScottPlot", "SkiaSharp" })] // MathNet: quantiles of the normal distribution for the power curve
+    [InlineData("DeepSourceCheck.Report", new[] { "DeepSourceCheck.Core", "ScottPlot", "SkiaSharp" })]
     [InlineData("deepsourcecheck", new[] { "DeepSourceCheck.Core", "DeepSourceCheck.Files", "DeepSourceCheck.Report", "System.CommandLine" })]
     public void Assembly_ReferencesOnlyWhatItsLayerMay(string assembly, string[] allowed)
     {
@@ -41,11 +37,18 @@ public partial class LayeringTests
     }
 
     [Fact]
-    public void CoreFolder_IsAStageOrVocabulary()
+    public void CoreFolders_AreTheStages()
     {
         string[] folders = [.. Directory.GetDirectories(Repository.At("src", "DeepSourceCheck.Core")).Select(f => Path.GetFileName(f)).Where(f => f is not ("obj" or "bin"))];
-        string[] unknown = [.. folders.Where(f => !Stages.Contains(f) && !Vocabulary.ContainsKey(f))];
-        Assert.True(unknown.Length == 0, $"folders of Core without a place in the order of the data: {string.Join(", ", unknown)}; give them one in {nameof(LayeringTests)}");
+        Assert.Equal(Stages.Order(StringComparer.Ordinal), folders.Order(StringComparer.Ordinal));
+    }
+
+    [Fact]
+    public void DevelopersGuide_ListsTheStagesInTheirOrder()
+    {
+        string guide = File.ReadAllText(Repository.At("DEVELOPERS.md"));
+        string[] listed = [.. TableRow().Matches(guide).Select(m => m.Groups[1].Value).Where(Stages.Contains)];
+        Assert.Equal(Stages, listed);
     }
 
     [Fact]
@@ -59,7 +62,7 @@ public partial class LayeringTests
             foreach (string named in NamedStages(File.ReadAllText(Repository.At(file))).Where(n => n != stage))
             {
                 looked++;
-                if (!MayName(stage, named))
+                if (Array.IndexOf(Stages, named) > Array.IndexOf(Stages, stage))
                 {
                     violations.Add($"{file} names {named}");
                 }
@@ -76,14 +79,13 @@ public partial class LayeringTests
     [InlineData("var x = DeepSourceCheck.Core.Heads.IHead;", "Heads")]
     public void NamedStages_FindsEachWayOfNaming(string source, string stage) => Assert.Contains(stage, NamedStages(source));
 
-    private static bool MayName(string stage, string named) => Vocabulary.TryGetValue(stage, out string[]? allowed)
-        ? allowed.Contains(named)
-        : Vocabulary.ContainsKey(named) || Array.IndexOf(Stages, named) < Array.IndexOf(Stages, stage);
-
     private static IEnumerable<string> NamedStages(string source) => CoreName().Matches(source).Select(m => m.Groups[1].Value).Distinct();
 
     private static bool IsFramework(string name) =>
         name is "netstandard" or "mscorlib" || (name.StartsWith("System.", StringComparison.Ordinal) && name != "System.CommandLine") || name is "Microsoft.Win32.Primitives";
+
+    [GeneratedRegex(@"^\| `(\w+)` \|", RegexOptions.Multiline)]
+    private static partial Regex TableRow();
 
     [GeneratedRegex(@"\bDeepSourceCheck\.Core\.([A-Z]\w*)(?!\w*\.csproj)")]
     private static partial Regex CoreName();

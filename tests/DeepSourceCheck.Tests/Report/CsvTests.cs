@@ -1,6 +1,7 @@
 using System.Globalization;
 using System.Text;
 
+using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Units;

@@ -7,11 +7,11 @@ public sealed class ResultFolderTests : IDisposable
 {
     private const string Ours = """{"program": {"name": "DeepSourceCheck", "version": "0.0.1"}}""";
 
-    private readonly string root = Directory.CreateTempSubdirectory("result-folder-").FullName;
+    private readonly string _root = Directory.CreateTempSubdirectory("result-folder-").FullName;
 
-    private string Target => Path.Combine(root, "out");
+    private string Target => Path.Combine(_root, "out");
 
-    public void Dispose() => Directory.Delete(root, recursive: true);
+    public void Dispose() => Directory.Delete(_root, recursive: true);
 
     [Fact]
     public void Commit_PutsTheWholeFolderAtTheTarget()
@@ -24,7 +24,7 @@ public sealed class ResultFolderTests : IDisposable
         }
 
         Assert.Equal(["assessment.json"], Names(Target));
-        Assert.Equal(["out"], Names(root));
+        Assert.Equal(["out"], Names(_root));
     }
 
     [Fact]
@@ -35,7 +35,7 @@ public sealed class ResultFolderTests : IDisposable
             Fill(folder.Folder);
         }
 
-        Assert.Empty(Names(root));
+        Assert.Empty(Names(_root));
     }
 
     [Fact]
@@ -50,7 +50,7 @@ public sealed class ResultFolderTests : IDisposable
         }
 
         Assert.Equal("old", File.ReadAllText(Path.Combine(Target, "regions.csv")));
-        Assert.Equal(["out"], Names(root));
+        Assert.Equal(["out"], Names(_root));
     }
 
     [Fact]
@@ -63,19 +63,19 @@ public sealed class ResultFolderTests : IDisposable
         Fill(folder.Folder);
         folder.Commit();
         Assert.Equal(["assessment.json"], Names(Target));
-        Assert.Equal(["out"], Names(root));
+        Assert.Equal(["out"], Names(_root));
     }
 
     [Fact]
     public void MissingParents_AreMade_AndGoAgainWithoutCommit()
     {
-        string deep = Path.Combine(root, "a", "b", "out");
+        string deep = Path.Combine(_root, "a", "b", "out");
         using (ResultFolder.Create(deep, ResultFolderKind.Assessment))
         {
-            Assert.True(Directory.Exists(Path.Combine(root, "a", "b")));
+            Assert.True(Directory.Exists(Path.Combine(_root, "a", "b")));
         }
 
-        Assert.Empty(Names(root));
+        Assert.Empty(Names(_root));
         using ResultFolder folder = ResultFolder.Create(deep, ResultFolderKind.Assessment);
         Fill(folder.Folder);
         folder.Commit();
@@ -118,11 +118,11 @@ public sealed class ResultFolderTests : IDisposable
                 break;
         }
 
-        string[] before = Tree(root);
+        string[] before = Tree(_root);
         InputException e = Assert.Throws<InputException>(() => ResultFolder.CheckTarget(target, ResultFolderKind.Assessment));
         Assert.Contains(target, e.Message, StringComparison.Ordinal);
         Assert.Throws<InputException>(() => ResultFolder.Create(target, ResultFolderKind.Assessment));
-        Assert.Equal(before, Tree(root));
+        Assert.Equal(before, Tree(_root));
     }
 
     [Fact]
@@ -143,12 +143,12 @@ public sealed class ResultFolderTests : IDisposable
     [Fact]
     public void Create_RemovesWhatAKilledRunLeft_ButNotALiveRun()
     {
-        string dead = Path.Combine(root, ".out.partial-999999-1");
+        string dead = Path.Combine(_root, ".out.partial-999999-1");
         Directory.CreateDirectory(dead);
         File.WriteAllText(Path.Combine(dead, ".running"), "");
-        string other = Path.Combine(root, ".out2.partial-999999-1");
+        string other = Path.Combine(_root, ".out2.partial-999999-1");
         Directory.CreateDirectory(other);
-        string users = Path.Combine(root, ".out.partial-mine");
+        string users = Path.Combine(_root, ".out.partial-mine");
         Directory.CreateDirectory(users);
         using ResultFolder live = ResultFolder.Create(Target, ResultFolderKind.Assessment);
         using ResultFolder second = ResultFolder.Create(Target, ResultFolderKind.Assessment);
@@ -162,7 +162,7 @@ public sealed class ResultFolderTests : IDisposable
     [Fact]
     public void Create_AfterAKillBetweenTheTwoRenames_PutsTheOldResultBack()
     {
-        string old = Path.Combine(root, ".out.replaced-999999-1");
+        string old = Path.Combine(_root, ".out.replaced-999999-1");
         Directory.CreateDirectory(old);
         Fill(old);
         using (ResultFolder.Create(Target, ResultFolderKind.Assessment))
@@ -170,7 +170,7 @@ public sealed class ResultFolderTests : IDisposable
             Assert.Equal(["assessment.json"], Names(Target));
         }
 
-        Assert.Equal(["out"], Names(root));
+        Assert.Equal(["out"], Names(_root));
     }
 
     [Fact]
@@ -184,7 +184,7 @@ public sealed class ResultFolderTests : IDisposable
         }
 
         Assert.Equal(["notes.txt"], Names(Target));
-        Assert.Equal(["out"], Names(root));
+        Assert.Equal(["out"], Names(_root));
     }
 
     [Fact]
@@ -193,7 +193,7 @@ public sealed class ResultFolderTests : IDisposable
         ResultFolder folder = ResultFolder.Create(Target, ResultFolderKind.Assessment);
         Directory.Delete(folder.Folder, recursive: true);
         folder.Dispose();
-        Assert.Empty(Names(root));
+        Assert.Empty(Names(_root));
     }
 
     private static void Fill(string folder) => File.WriteAllText(Path.Combine(folder, "assessment.json"), Ours);

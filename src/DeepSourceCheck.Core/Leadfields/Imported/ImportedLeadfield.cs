@@ -19,9 +19,9 @@ public sealed record ImportedPoint(string Name, Vec3 Position, string? WhyUnusab
 /// <remarks>Immutable; the arrays are kept, not copied. Blocks must carry the indices of their points (<see cref="LeadfieldBlock.SourceIndices"/>).</remarks>
 public sealed class ImportedLeadfield : ILeadfieldSource
 {
-    private readonly double[] eeg;
-    private readonly double[] meg;
-    private readonly Dictionary<string, int> indexByName;
+    private readonly double[] _eeg;
+    private readonly double[] _meg;
+    private readonly Dictionary<string, int> _indexByName;
 
     /// <param name="points">Points, in the arrays' order; at least one.</param>
     /// <param name="eegChannels">Electrodes, in the array's order; empty without EEG.</param>
@@ -37,11 +37,11 @@ public sealed class ImportedLeadfield : ILeadfieldSource
             throw new ArgumentException("An imported array does not have rows x points x 3 numbers.", eeg.Length != 3L * eegChannels.Count * points.Count ? nameof(eeg) : nameof(meg));
         }
 
-        (Points, EegChannels, MegChannels, this.eeg, this.meg) = (points, eegChannels, megChannels, eeg, meg);
-        indexByName = new(points.Count, StringComparer.Ordinal);
+        (Points, EegChannels, MegChannels, _eeg, _meg) = (points, eegChannels, megChannels, eeg, meg);
+        _indexByName = new(points.Count, StringComparer.Ordinal);
         for (int n = 0; n < points.Count; n++)
         {
-            indexByName.Add(points[n].Name, n);
+            _indexByName.Add(points[n].Name, n);
         }
     }
 
@@ -61,7 +61,7 @@ public sealed class ImportedLeadfield : ILeadfieldSource
     public int MegRows => MegChannels.Count;
 
     /// <summary>Index of a point by its name, or -1.</summary>
-    public int IndexOf(string pointName) => indexByName.GetValueOrDefault(pointName, -1);
+    public int IndexOf(string pointName) => _indexByName.GetValueOrDefault(pointName, -1);
 
     /// <inheritdoc/>
     /// <exception cref="ArgumentException">A lane carries no index of an imported point, or the block has other numbers of rows.</exception>
@@ -80,8 +80,8 @@ public sealed class ImportedLeadfield : ILeadfieldSource
             }
         }
 
-        Gather(eeg, EegRows, block.SourceIndices, block.Eeg);
-        Gather(meg, MegRows, block.SourceIndices, block.Meg);
+        Gather(_eeg, EegRows, block.SourceIndices, block.Eeg);
+        Gather(_meg, MegRows, block.SourceIndices, block.Meg);
     }
 
     private void Gather(double[] source, int rows, int[] points, double[] target)

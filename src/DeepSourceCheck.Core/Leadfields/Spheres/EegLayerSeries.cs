@@ -31,67 +31,67 @@ public sealed class EegLayerSeries
     /// <summary>Electrodes in flight: enough to hide the latency of the recurrence.</summary>
     private const int Flight = 4;
 
-    private readonly Vec3 centre;
-    private readonly double innerRadius;
-    private readonly bool isotropicCore;
-    private readonly SeriesLength length;
-    private readonly double[] onElectrode, onPosition, beta;
-    private readonly double[] exponents = [], onRadius = [];
-    private readonly double[] ex, ey, ez;
+    private readonly Vec3 _centre;
+    private readonly double _innerRadius;
+    private readonly bool _isotropicCore;
+    private readonly SeriesLength _length;
+    private readonly double[] _onElectrode, _onPosition, _beta;
+    private readonly double[] _exponents = [], _onRadius = [];
+    private readonly double[] _ex, _ey, _ez;
 
     /// <summary>Prepares the degree table for <paramref name="head"/> and the directions of <paramref name="electrodes"/>.</summary>
     /// <exception cref="ArgumentException">A layer is impossible, or an electrode has no direction from the centre.</exception>
     public EegLayerSeries(LayeredSphere head, IReadOnlyList<Electrode> electrodes)
     {
         LayerTransfer transfer = new(head);
-        centre = head.Centre;
-        innerRadius = transfer.InnerRadius;
-        isotropicCore = transfer.InnermostIsIsotropic;
-        length = new SeriesLength(transfer);
+        _centre = head.Centre;
+        _innerRadius = transfer.InnerRadius;
+        _isotropicCore = transfer.InnermostIsIsotropic;
+        _length = new SeriesLength(transfer);
         Rows = electrodes.Count;
 
         int padded = (Rows + Flight - 1) / Flight * Flight;
-        ex = new double[padded];
-        ey = new double[padded];
-        ez = new double[padded];
+        _ex = new double[padded];
+        _ey = new double[padded];
+        _ez = new double[padded];
         for (int row = 0; row < padded; row++)
         {
             Electrode electrode = electrodes[Math.Min(row, Rows - 1)];
-            Vec3 offset = electrode.Position - centre;
+            Vec3 offset = electrode.Position - _centre;
             if (!offset.IsFinite || !(offset.Norm > 0))
             {
                 throw new ArgumentException($"Electrode {electrode.Name} has no direction from the sphere's centre.", nameof(electrodes));
             }
 
-            (ex[row], ey[row], ez[row]) = offset.Unit();
+            (_ex[row], _ey[row], _ez[row]) = offset.Unit();
         }
 
-        int top = length.Longest + 1;
-        onElectrode = new double[top];
-        onPosition = new double[top];
-        beta = new double[top];
+        int top = _length.Longest + 1;
+        _onElectrode = new double[top];
+        _onPosition = new double[top];
+        _beta = new double[top];
         double c = 1.0;
         for (int n = 1; n < top; n++)
         {
-            onElectrode[n] = length.Coefficients[n] * c / innerRadius;
-            onPosition[n] = length.Coefficients[n + 1] * c / innerRadius;
-            beta[n] = 4.0 * ((double)n * n - 1.0) / (4.0 * n * n - 1.0);
+            _onElectrode[n] = _length.Coefficients[n] * c / _innerRadius;
+            _onPosition[n] = _length.Coefficients[n + 1] * c / _innerRadius;
+            _beta[n] = 4.0 * ((double)n * n - 1.0) / (4.0 * n * n - 1.0);
             c *= (2.0 * n + 1.0) / (2.0 * n);
         }
 
-        if (!isotropicCore)
+        if (!_isotropicCore)
         {
-            exponents = new double[top + 1];
-            onRadius = new double[top];
+            _exponents = new double[top + 1];
+            _onRadius = new double[top];
             for (int n = 1; n <= top; n++)
             {
-                exponents[n] = transfer.Exponent(0, n);
+                _exponents[n] = transfer.Exponent(0, n);
             }
 
             for (int n = 1; n < top; n++)
             {
-                onRadius[n] = onElectrode[n] * (exponents[n] / n - 1.0);
-                onPosition[n] *= exponents[n + 1] / (n + 1.0);
+                _onRadius[n] = _onElectrode[n] * (_exponents[n] / n - 1.0);
+                _onPosition[n] *= _exponents[n + 1] / (n + 1.0);
             }
         }
     }
@@ -100,7 +100,7 @@ public sealed class EegLayerSeries
     public int Rows { get; }
 
     /// <summary>Degrees that a dipole at <paramref name="position"/> [m] takes.</summary>
-    public int DegreeAt(Vec3 position) => length.DegreeAt((position - centre).Norm / innerRadius);
+    public int DegreeAt(Vec3 position) => _length.DegreeAt((position - _centre).Norm / _innerRadius);
 
     /// <summary>Overwrites the block's EEG values [V/(A m)].</summary>
     /// <exception cref="ArgumentOutOfRangeException">A dipole lies beyond 0.995 of the innermost radius, is not finite, or stands at the centre of an anisotropic innermost layer, where no potential is defined.</exception>
@@ -110,21 +110,21 @@ public sealed class EegLayerSeries
         double outermost = 0, innermost = double.PositiveInfinity;
         for (int lane = 0; lane < Lanes; lane++)
         {
-            Vec3 x = (block.Positions[lane] - centre) / innerRadius;
+            Vec3 x = (block.Positions[lane] - _centre) / _innerRadius;
             double eccentricity = x.Norm;
             (lanes[lane], lanes[Lanes + lane], lanes[2 * Lanes + lane]) = (x.X, x.Y, x.Z);
             outermost = eccentricity > outermost || double.IsNaN(eccentricity) ? eccentricity : outermost;
             innermost = Math.Min(innermost, eccentricity);
         }
 
-        int degree = length.DegreeAt(outermost);
-        if (!isotropicCore && !(innermost > 0))
+        int degree = _length.DegreeAt(outermost);
+        if (!_isotropicCore && !(innermost > 0))
         {
             throw new ArgumentOutOfRangeException(nameof(block), "At the centre of an anisotropic innermost layer no potential is defined.");
         }
 
         double[] table = ArrayPool<double>.Shared.Rent((degree + 1) * Lanes);
-        if (isotropicCore)
+        if (_isotropicCore)
         {
             FillIsotropicCore(block.Eeg, lanes, degree, table);
         }
@@ -145,13 +145,13 @@ public sealed class EegLayerSeries
         Vector512<double> w = Fma(x, x, Fma(y, y, z * z));
         for (int n = 1; n <= degree; n++)
         {
-            (w * -beta[n]).CopyTo(table, n * Lanes);
+            (w * -_beta[n]).CopyTo(table, n * Lanes);
         }
 
         ref double tables = ref MemoryMarshal.GetArrayDataReference(table);
-        ref double alpha = ref MemoryMarshal.GetArrayDataReference(onElectrode);
-        ref double gamma = ref MemoryMarshal.GetArrayDataReference(onPosition);
-        for (int first = 0; first < ex.Length; first += Flight)
+        ref double alpha = ref MemoryMarshal.GetArrayDataReference(_onElectrode);
+        ref double gamma = ref MemoryMarshal.GetArrayDataReference(_onPosition);
+        for (int first = 0; first < _ex.Length; first += Flight)
         {
             Vector512<double> t0 = TwiceCosine(x, y, z, first), t1 = TwiceCosine(x, y, z, first + 1);
             Vector512<double> t2 = TwiceCosine(x, y, z, first + 2), t3 = TwiceCosine(x, y, z, first + 3);
@@ -212,7 +212,7 @@ public sealed class EegLayerSeries
             }
 
             // The last degree adds to e alone: its partner along x belongs to the next one.
-            Vector512<double> last = Vector512.Create(onElectrode[degree]);
+            Vector512<double> last = Vector512.Create(_onElectrode[degree]);
             Store(eeg, first, x, y, z, Fma(last, g0, s0), u0);
             Store(eeg, first + 1, x, y, z, Fma(last, g1, s1), u1);
             Store(eeg, first + 2, x, y, z, Fma(last, g2, s2), u2);
@@ -234,7 +234,7 @@ public sealed class EegLayerSeries
         {
             for (int lane = 0; lane < Lanes; lane++)
             {
-                table[n * Lanes + lane] = Math.Exp((exponents[n] - 1.0) * logNorm[lane]);
+                table[n * Lanes + lane] = Math.Exp((_exponents[n] - 1.0) * logNorm[lane]);
             }
         }
 
@@ -246,14 +246,14 @@ public sealed class EegLayerSeries
             {
                 Vector512<double> weight = Vector512.Create(table, n * Lanes);
                 Vector512<double> weighted = weight * g;
-                s = Fma(Vector512.Create(onElectrode[n]), weighted, s);
-                v = Fma(Vector512.Create(onRadius[n]), weighted, v);
+                s = Fma(Vector512.Create(_onElectrode[n]), weighted, s);
+                v = Fma(Vector512.Create(_onRadius[n]), weighted, v);
                 if (n > 1)
                 {
-                    u = Fma(Vector512.Create(onPosition[n - 1]), weight * p, u);
+                    u = Fma(Vector512.Create(_onPosition[n - 1]), weight * p, u);
                 }
 
-                (g, p) = (Fma(t, g, p * -beta[n]), g);
+                (g, p) = (Fma(t, g, p * -_beta[n]), g);
             }
 
             Store(eeg, row, x, y, z, s, Fma(t * -0.5, v, u));
@@ -262,7 +262,7 @@ public sealed class EegLayerSeries
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private Vector512<double> TwiceCosine(Vector512<double> x, Vector512<double> y, Vector512<double> z, int row) =>
-        2.0 * Fma(x, Vector512.Create(ex[row]), Fma(y, Vector512.Create(ey[row]), z * ez[row]));
+        2.0 * Fma(x, Vector512.Create(_ex[row]), Fma(y, Vector512.Create(_ey[row]), z * _ez[row]));
 
     /// <summary>L = s e - u x; rows beyond the last electrode are padding.</summary>
     private void Store(
@@ -274,8 +274,8 @@ public sealed class EegLayerSeries
         }
 
         int at = LeadfieldBlock.At(row, 0);
-        (s * ex[row] - u * x).CopyTo(eeg, at);
-        (s * ey[row] - u * y).CopyTo(eeg, at + Lanes);
-        (s * ez[row] - u * z).CopyTo(eeg, at + 2 * Lanes);
+        (s * _ex[row] - u * x).CopyTo(eeg, at);
+        (s * _ey[row] - u * y).CopyTo(eeg, at + Lanes);
+        (s * _ez[row] - u * z).CopyTo(eeg, at + 2 * Lanes);
     }
 }

@@ -18,21 +18,21 @@ namespace DeepSourceCheck.Core.Leadfields.Spheres;
 /// <summary>Degree coefficients of the surface potential of a layered sphere, once per head.</summary>
 public sealed class LayerTransfer
 {
-    private readonly double[] outerRadii, radial, ratio, logQ;
+    private readonly double[] _outerRadii, _radial, _ratio, _logQ;
 
     /// <summary>Reads the layers.</summary>
     /// <exception cref="ArgumentException">A radius does not exceed the one before it, or a radius or conductivity is not positive and finite.</exception>
     public LayerTransfer(LayeredSphere head)
     {
         int count = head.Layers.Count;
-        outerRadii = new double[count];
-        radial = new double[count];
-        ratio = new double[count];
-        logQ = new double[count];
+        _outerRadii = new double[count];
+        _radial = new double[count];
+        _ratio = new double[count];
+        _logQ = new double[count];
         for (int j = 0; j < count; j++)
         {
             SphereLayer layer = head.Layers[j];
-            double inside = j == 0 ? 0.0 : outerRadii[j - 1];
+            double inside = j == 0 ? 0.0 : _outerRadii[j - 1];
             if (!(layer.OuterRadius > inside) || !double.IsFinite(layer.OuterRadius))
             {
                 throw new ArgumentException($"Layer {layer.Tissue}: radius {layer.OuterRadius} m must be finite and exceed {inside} m.", nameof(head));
@@ -44,30 +44,30 @@ public sealed class LayerTransfer
                 throw new ArgumentException($"Layer {layer.Tissue}: conductivities must be positive and finite [S/m].", nameof(head));
             }
 
-            outerRadii[j] = layer.OuterRadius;
-            radial[j] = layer.RadialConductivity;
-            ratio[j] = layer.TangentialConductivity / layer.RadialConductivity;
-            logQ[j] = j == 0 ? 0.0 : RatioPowers.LogOfRatio(inside, layer.OuterRadius);
+            _outerRadii[j] = layer.OuterRadius;
+            _radial[j] = layer.RadialConductivity;
+            _ratio[j] = layer.TangentialConductivity / layer.RadialConductivity;
+            _logQ[j] = j == 0 ? 0.0 : RatioPowers.LogOfRatio(inside, layer.OuterRadius);
         }
     }
 
     /// <summary>Number of layers.</summary>
-    public int Layers => outerRadii.Length;
+    public int Layers => _outerRadii.Length;
 
     /// <summary>Radius of the innermost layer [m].</summary>
-    public double InnerRadius => outerRadii[0];
+    public double InnerRadius => _outerRadii[0];
 
     /// <summary>Radius of the outer surface [m].</summary>
-    public double OuterRadius => outerRadii[^1];
+    public double OuterRadius => _outerRadii[^1];
 
     /// <summary>True when the innermost layer conducts alike in all directions, so that its exponents are the degrees themselves.</summary>
-    public bool InnermostIsIsotropic => ratio[0] == 1.0;
+    public bool InnermostIsIsotropic => _ratio[0] == 1.0;
 
     /// <summary>Ratio of tangential to radial conductivity of layer <paramref name="layer"/>.</summary>
-    public double Anisotropy(int layer) => ratio[layer];
+    public double Anisotropy(int layer) => _ratio[layer];
 
     /// <summary>ln of the ratio of inner to outer radius of layer <paramref name="layer"/>; 0 for the innermost.</summary>
-    public double LogRadiusRatio(int layer) => logQ[layer];
+    public double LogRadiusRatio(int layer) => _logQ[layer];
 
     /// <summary>Smallest conductivity of all layers and directions [S/m].</summary>
     public double SmallestConductivity
@@ -75,9 +75,9 @@ public sealed class LayerTransfer
         get
         {
             double smallest = double.PositiveInfinity;
-            for (int j = 0; j < radial.Length; j++)
+            for (int j = 0; j < _radial.Length; j++)
             {
-                smallest = Math.Min(smallest, radial[j] * Math.Min(1.0, ratio[j]));
+                smallest = Math.Min(smallest, _radial[j] * Math.Min(1.0, _ratio[j]));
             }
 
             return smallest;
@@ -87,23 +87,23 @@ public sealed class LayerTransfer
     /// <summary>Exponent v of the growing radial solution of degree <paramref name="n"/> in a layer; exactly n where the layer is isotropic.</summary>
     public double Exponent(int layer, int n)
     {
-        double product = n * (n + 1.0) * ratio[layer];
-        return ratio[layer] == 1.0 ? n : 2.0 * product / (1.0 + Math.Sqrt(1.0 + 4.0 * product));
+        double product = n * (n + 1.0) * _ratio[layer];
+        return _ratio[layer] == 1.0 ? n : 2.0 * product / (1.0 + Math.Sqrt(1.0 + 4.0 * product));
     }
 
     /// <summary>T_n [V/A]: potential on the outer surface per unit of current, degree <paramref name="n"/> >= 1.</summary>
     public double Coefficient(int n)
     {
-        double y = radial[0] * Exponent(0, n);
+        double y = _radial[0] * Exponent(0, n);
         double chain = 1.0;
-        for (int j = 1; j < outerRadii.Length; j++)
+        for (int j = 1; j < _outerRadii.Length; j++)
         {
-            double v = Exponent(j, n), s = radial[j];
+            double v = Exponent(j, n), s = _radial[j];
             double sum = y + s * (v + 1.0);
             double t = (s * v - y) / sum;
             double onePlusT = s * (2.0 * v + 1.0) / sum;
-            double power = Math.Exp((2.0 * v + 1.0) * logQ[j]);
-            double lost = RatioPowers.OneMinusExp((2.0 * v + 1.0) * logQ[j]);
+            double power = Math.Exp((2.0 * v + 1.0) * _logQ[j]);
+            double lost = RatioPowers.OneMinusExp((2.0 * v + 1.0) * _logQ[j]);
             double denominator, numerator;
             if (t >= 0)
             {
@@ -116,7 +116,7 @@ public sealed class LayerTransfer
                 numerator = v - (v + 1.0) * t * power;
             }
 
-            chain *= Math.Exp(v * logQ[j]) * onePlusT / denominator;
+            chain *= Math.Exp(v * _logQ[j]) * onePlusT / denominator;
             y = s * numerator / denominator;
         }
 

@@ -28,42 +28,42 @@ public sealed class MegSphere
     /// <summary>Doubles a point takes in the table: r, |r|, 1/|r|, weighted axis, weighted axis . r.</summary>
     private const int Stride = 9;
 
-    private readonly Vec3 centre;
-    private readonly double[] points;
-    private readonly int[] firstPoint;
+    private readonly Vec3 _centre;
+    private readonly double[] _points;
+    private readonly int[] _firstPoint;
 
     /// <summary>Tabulates the coil points.</summary>
     /// <param name="centre">Centre of the sphere [m].</param>
     /// <param name="channels">Channels; every point must lie outside the conductor (see <see cref="SphereLeadfield.CheckCoils"/>).</param>
     public MegSphere(Vec3 centre, IReadOnlyList<MegChannel> channels)
     {
-        this.centre = centre;
-        firstPoint = new int[channels.Count + 1];
+        _centre = centre;
+        _firstPoint = new int[channels.Count + 1];
         for (int row = 0; row < channels.Count; row++)
         {
-            firstPoint[row + 1] = firstPoint[row] + channels[row].Points.Count;
+            _firstPoint[row + 1] = _firstPoint[row] + channels[row].Points.Count;
         }
 
-        points = new double[firstPoint[^1] * Stride];
+        _points = new double[_firstPoint[^1] * Stride];
         int at = 0;
         foreach (CoilPoint point in channels.SelectMany(channel => channel.Points))
         {
             Vec3 r = point.Position - centre;
             Vec3 axis = point.Axis * (point.Share * Si.Mu0Over4Pi);
-            (points[at], points[at + 1], points[at + 2]) = r;
-            points[at + 3] = r.Norm;
-            points[at + 4] = 1.0 / r.Norm;
-            (points[at + 5], points[at + 6], points[at + 7]) = axis;
-            points[at + 8] = Vec3.Dot(axis, r);
+            (_points[at], _points[at + 1], _points[at + 2]) = r;
+            _points[at + 3] = r.Norm;
+            _points[at + 4] = 1.0 / r.Norm;
+            (_points[at + 5], _points[at + 6], _points[at + 7]) = axis;
+            _points[at + 8] = Vec3.Dot(axis, r);
             at += Stride;
         }
     }
 
     /// <summary>Number of channels.</summary>
-    public int Rows => firstPoint.Length - 1;
+    public int Rows => _firstPoint.Length - 1;
 
     /// <summary>Number of integration points of all channels.</summary>
-    public int Points => firstPoint[^1];
+    public int Points => _firstPoint[^1];
 
     /// <summary>Overwrites the block's MEG values [T/(A m) or T/m/(A m)].</summary>
     public void Fill(LeadfieldBlock block)
@@ -71,15 +71,15 @@ public sealed class MegSphere
         Span<double> lanes = stackalloc double[3 * Lanes];
         for (int lane = 0; lane < Lanes; lane++)
         {
-            (lanes[lane], lanes[Lanes + lane], lanes[2 * Lanes + lane]) = block.Positions[lane] - centre;
+            (lanes[lane], lanes[Lanes + lane], lanes[2 * Lanes + lane]) = block.Positions[lane] - _centre;
         }
 
         Vector512<double> x = Vector512.Create<double>((ReadOnlySpan<double>)lanes), y = Vector512.Create<double>(lanes[Lanes..]), z = Vector512.Create<double>(lanes[(2 * Lanes)..]);
-        ref double table = ref MemoryMarshal.GetArrayDataReference(points);
+        ref double table = ref MemoryMarshal.GetArrayDataReference(_points);
         for (int row = 0; row < Rows; row++)
         {
             Vector512<double> hx = Vector512<double>.Zero, hy = hx, hz = hx;
-            for (int k = firstPoint[row]; k < firstPoint[row + 1]; k++)
+            for (int k = _firstPoint[row]; k < _firstPoint[row + 1]; k++)
             {
                 AddPoint(ref Unsafe.Add(ref table, k * Stride), x, y, z, ref hx, ref hy, ref hz);
             }

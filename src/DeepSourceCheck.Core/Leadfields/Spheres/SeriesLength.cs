@@ -22,8 +22,8 @@ public sealed class SeriesLength
     /// <summary>The share of <see cref="Tail"/> that the majorant may take.</summary>
     private const double MajorantShare = 0.1;
 
-    private readonly double[] eccentricities = new double[Depths + 1];
-    private readonly int[] degrees = new int[Depths + 1];
+    private readonly double[] _eccentricities = new double[Depths + 1];
+    private readonly int[] _degrees = new int[Depths + 1];
 
     /// <summary>Tabulates degrees up to <see cref="LayeredSphere.LargestEccentricity"/>.</summary>
     public SeriesLength(LayerTransfer transfer)
@@ -46,13 +46,13 @@ public sealed class SeriesLength
         for (int k = Depths; k >= 1; k--)
         {
             double x = k == Depths ? LargestEccentricity : 1.0 - Math.Exp(-step * k);
-            eccentricities[k] = x;
+            _eccentricities[k] = x;
             (degree, rest) = Shorten(terms, exponents, x, degree, rest, transfer.InnermostIsIsotropic);
-            degrees[k] = degree;
+            _degrees[k] = degree;
             rest *= Math.Pow((1.0 - Math.Exp(-step * (k - 1))) / x, exponents[degree + 1] - exponents[1]);
         }
 
-        degrees[0] = 1;
+        _degrees[0] = 1;
     }
 
     /// <summary>Largest admitted ratio |r0|/r_1.</summary>
@@ -74,8 +74,8 @@ public sealed class SeriesLength
                 $"A dipole must stand within {LayeredSphere.LargestEccentricity} of the innermost radius.");
         }
 
-        int k = Array.BinarySearch(eccentricities, eccentricity);
-        return degrees[k >= 0 ? k : ~k];
+        int k = Array.BinarySearch(_eccentricities, eccentricity);
+        return _degrees[k >= 0 ? k : ~k];
     }
 
     /// <summary>The smallest degree at depth <paramref name="x"/>, at most <paramref name="degree"/>, and what lies beyond it relative to the first term.</summary>

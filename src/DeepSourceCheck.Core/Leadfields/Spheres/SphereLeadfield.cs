@@ -14,9 +14,9 @@ public sealed class SphereLeadfield : ILeadfieldSource
     /// <summary>Room for the rounding of a position at the limit itself.</summary>
     private const double Rounding = 1e-9;
 
-    private readonly LayeredSphere head;
-    private readonly EegLayerSeries? eeg;
-    private readonly MegSphere? meg;
+    private readonly LayeredSphere _head;
+    private readonly EegLayerSeries? _eeg;
+    private readonly MegSphere? _meg;
 
     /// <summary>Prepares the tables of a head and its sensors.</summary>
     /// <param name="head">Head; sources stand in its innermost layer.</param>
@@ -27,16 +27,16 @@ public sealed class SphereLeadfield : ILeadfieldSource
     public SphereLeadfield(LayeredSphere head, IReadOnlyList<Electrode> electrodes, IReadOnlyList<MegChannel> channels)
     {
         CheckCoils(head, channels);
-        this.head = head;
-        eeg = electrodes.Count > 0 ? new EegLayerSeries(head, electrodes) : null;
-        meg = channels.Count > 0 ? new MegSphere(head.Centre, channels) : null;
+        _head = head;
+        _eeg = electrodes.Count > 0 ? new EegLayerSeries(head, electrodes) : null;
+        _meg = channels.Count > 0 ? new MegSphere(head.Centre, channels) : null;
     }
 
     /// <inheritdoc/>
-    public int EegRows => eeg?.Rows ?? 0;
+    public int EegRows => _eeg?.Rows ?? 0;
 
     /// <inheritdoc/>
-    public int MegRows => meg?.Rows ?? 0;
+    public int MegRows => _meg?.Rows ?? 0;
 
     /// <summary>Refuses coil points that are not outside the outer sphere.</summary>
     /// <param name="head">Head.</param>
@@ -88,16 +88,16 @@ public sealed class SphereLeadfield : ILeadfieldSource
                 $"The block holds {block.EegRows} electrodes and {block.MegRows} channels; the head has {EegRows} and {MegRows}.", nameof(block));
         }
 
-        double limit = LayeredSphere.LargestEccentricity * head.InnerRadius * (1 + Rounding);
+        double limit = LayeredSphere.LargestEccentricity * _head.InnerRadius * (1 + Rounding);
         foreach (Vec3 position in block.Positions)
         {
-            if (!((position - head.Centre).Norm <= limit))
+            if (!((position - _head.Centre).Norm <= limit))
             {
                 throw new ArgumentOutOfRangeException(nameof(block), position, $"A dipole must stand within {limit} m of the sphere's centre.");
             }
         }
 
-        eeg?.Fill(block);
-        meg?.Fill(block);
+        _eeg?.Fill(block);
+        _meg?.Fill(block);
     }
 }

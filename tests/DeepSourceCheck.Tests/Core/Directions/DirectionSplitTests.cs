@@ -3,7 +3,6 @@ using System.Text.Json;
 using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
-using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Tests.Core.Leadfields;
 using DeepSourceCheck.Tests.References;

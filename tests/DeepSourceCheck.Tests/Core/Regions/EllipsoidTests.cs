@@ -8,18 +8,18 @@ namespace DeepSourceCheck.Tests.Core.Regions;
 
 public class EllipsoidTests
 {
-    private static readonly Gen<Ellipsoid> _any =
+    private static readonly Gen<Ellipsoid> Any =
         from c in Gen.Double[-0.05, 0.05].Array[3]
         from s in Gen.Double[0.001, 0.03].Array[3]
         from r in Gen.Double[-3.1, 3.1].Array[3]
         select new Ellipsoid(new(c[0], c[1], c[2]), new(s[0], s[1], s[2]), Rotation.FromFixedAxes(r[0], r[1], r[2]));
 
     [Fact]
-    public void Axes_ReachTheSurface() => _any.Sample(e =>
+    public void Axes_ReachTheSurface() => Any.Sample(e =>
         Enumerable.Range(0, 3).All(a => Math.Abs(e.Q(e.Centre + e.SemiAxes[a] * e.Axis(a)) - 1) < 1e-12), seed: "0000000000000005");
 
     [Fact]
-    public void Box_TouchesTheSurfaceOnEachSideAndHoldsIt() => _any.Sample(e =>
+    public void Box_TouchesTheSurfaceOnEachSideAndHoldsIt() => Any.Sample(e =>
     {
         Vec3 half = e.HalfExtent;
         Vec3[] surface = [.. Enumerable.Range(0, 4000).Select(k =>
@@ -37,14 +37,14 @@ public class EllipsoidTests
     }, seed: "0000000000000006", iter: 30);
 
     [Fact]
-    public void MirrorImage_HoldsTheMirroredPoints() => Gen.Select(_any, Gen.Double[-0.05, 0.05].Array[3]).Sample((e, p) =>
+    public void MirrorImage_HoldsTheMirroredPoints() => Gen.Select(Any, Gen.Double[-0.05, 0.05].Array[3]).Sample((e, p) =>
     {
         Vec3 point = e.Centre + 0.5 * new Vec3(p[0], p[1], p[2]);
         return Math.Abs(e.Q(point) - e.MirrorX().Q(point with { X = -point.X })) <= 1e-9 * (1 + e.Q(point));
     }, seed: "0000000000000007");
 
     [Fact]
-    public void Scaling_KeepsQAndMultipliesTheVolume() => Gen.Select(_any, Gen.Double[0.3, 2]).Sample((e, f) =>
+    public void Scaling_KeepsQAndMultipliesTheVolume() => Gen.Select(Any, Gen.Double[0.3, 2]).Sample((e, f) =>
     {
         Vec3 about = new(0, -0.018, 0.005), point = e.Centre + new Vec3(0.001, 0.002, -0.001);
         Ellipsoid scaled = e.Scaled(f, about);

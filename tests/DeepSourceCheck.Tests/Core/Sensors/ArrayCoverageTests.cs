@@ -12,7 +12,7 @@ public class ArrayCoverageTests
     // Table I.1 of the project's facts: derived there with the closed form to four digits.
     private const double TableDigits = 3e-4;
 
-    private static readonly CoilArrayChoice _helmet = new("magnetometer", 200, 0, 0.030, CoilArray.DefaultEdgeFront, CoilArray.DefaultEdgeBack);
+    private static readonly CoilArrayChoice Helmet = new("magnetometer", 200, 0, 0.030, CoilArray.DefaultEdgeFront, CoilArray.DefaultEdgeBack);
 
     [Theory]
     [InlineData(30, 98.5, 4.121)]
@@ -54,7 +54,7 @@ public class ArrayCoverageTests
         // A lattice of 40,000 directions has 0.018 rad between neighbours; the field is flat at its maximum, at an edge it is not.
         const double LatticeError = 0.02;
         Vec3 position = new(x, y, z), offset = position - TestHeads.Adult.Centre;
-        CapEdge edge = new(_helmet.EdgeFront, _helmet.EdgeBack);
+        CapEdge edge = new(Helmet.EdgeFront, Helmet.EdgeBack);
         double coil = 0.092 + 0.030, onCap = 0, anywhere = 0;
         Vec3 u = offset.Unit(), a = Vec3.Cross(u, new(0.3, 0.4, 0.8)).Unit(), b = Vec3.Cross(u, a);
         for (int k = 0; k < 40_000; k++)
@@ -71,15 +71,15 @@ public class ArrayCoverageTests
             onCap = edge.Contains(n) ? Math.Max(onCap, best) : onCap;
         }
 
-        double share = ArrayCoverage.CapturedShare(position, TestHeads.Adult, _helmet);
+        double share = ArrayCoverage.CapturedShare(position, TestHeads.Adult, Helmet);
         Assert.InRange(share - onCap / anywhere, -LatticeError, LatticeError);
     }
 
     [Fact]
     public void CapturedShare_IsOneForSourcesWellInsideTheCap_AndAtTheCentre()
     {
-        Assert.Equal(1.0, ArrayCoverage.CapturedShare(new(0, -0.018, 0.06), TestHeads.Adult, _helmet));
-        Assert.Equal(1.0, ArrayCoverage.CapturedShare(TestHeads.Adult.Centre, TestHeads.Adult, _helmet));
+        Assert.Equal(1.0, ArrayCoverage.CapturedShare(new(0, -0.018, 0.06), TestHeads.Adult, Helmet));
+        Assert.Equal(1.0, ArrayCoverage.CapturedShare(TestHeads.Adult.Centre, TestHeads.Adult, Helmet));
     }
 
     [Fact]
@@ -88,18 +88,18 @@ public class ArrayCoverageTests
             .Sample((y, z, front, rise) =>
             {
                 Vec3 position = TestHeads.Adult.Centre + new Vec3(0.01, y, z);
-                double low = ArrayCoverage.CapturedShare(position, TestHeads.Adult, _helmet with { EdgeFront = front });
-                double high = ArrayCoverage.CapturedShare(position, TestHeads.Adult, _helmet with { EdgeFront = front + rise });
+                double low = ArrayCoverage.CapturedShare(position, TestHeads.Adult, Helmet with { EdgeFront = front });
+                double high = ArrayCoverage.CapturedShare(position, TestHeads.Adult, Helmet with { EdgeFront = front + rise });
                 return low is > 0 and <= 1 && high <= low + 1e-9;
             }, seed: "0000000000000004");
 
     [Fact]
     public void Region_BelowTheEdge_SaysWhichShareIsCaptured()
     {
-        (double share, string? warning) = ArrayCoverage.OfRegion("deep-below", [new(0, -0.018, -0.065)], TestHeads.Adult, _helmet);
+        (double share, string? warning) = ArrayCoverage.OfRegion("deep-below", [new(0, -0.018, -0.065)], TestHeads.Adult, Helmet);
         Assert.InRange(share, 0.01, 0.95);
         Assert.StartsWith("deep-below:", warning, StringComparison.Ordinal);
         Assert.Contains($"{100 * share:0} %", warning, StringComparison.Ordinal);
-        Assert.Null(ArrayCoverage.OfRegion("high", [new(0, -0.018, 0.04)], TestHeads.Adult, _helmet).Warning);
+        Assert.Null(ArrayCoverage.OfRegion("high", [new(0, -0.018, 0.04)], TestHeads.Adult, Helmet).Warning);
     }
 }

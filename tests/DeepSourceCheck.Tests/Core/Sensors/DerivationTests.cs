@@ -6,7 +6,7 @@ namespace DeepSourceCheck.Tests.Core.Sensors;
 
 public class DerivationTests
 {
-    private static readonly IReadOnlyList<string> _names = ElectrodeLayout.Names("ten-ten-64");
+    private static readonly IReadOnlyList<string> Names = ElectrodeLayout.Names("ten-ten-64");
 
     private static Electrode[] Electrodes(params IEnumerable<string> joined) => ElectrodeLayout.OnSphere("ten-ten-64", TestHeads.Adult, joined);
 
@@ -15,7 +15,7 @@ public class DerivationTests
     [Fact]
     public void Mastoids_AreTheMeanOfM1AndM2_AndJoin()
     {
-        Derivation d = Derivation.Parse("Cz-mastoids", [.. _names]);
+        Derivation d = Derivation.Parse("Cz-mastoids", [.. Names]);
         Assert.Equal(["M1", "M2"], d.Joined);
         Electrode[] electrodes = Electrodes(d.Joined);
         double[] w = d.Weights(electrodes);
@@ -28,7 +28,7 @@ public class DerivationTests
     [Fact]
     public void Average_IsTheMeanOfElectrodesInUse_WithoutJoinedMastoids()
     {
-        Derivation d = Derivation.Parse("Cz-average", [.. _names]);
+        Derivation d = Derivation.Parse("Cz-average", [.. Names]);
         Electrode[] electrodes = Electrodes("M1", "M2");
         double[] w = d.Weights(electrodes);
         Assert.Equal(0.0, Weight(w, electrodes, "M1"));
@@ -44,7 +44,7 @@ public class DerivationTests
     [InlineData("FFC1h-Oz")]
     public void Weights_SumToZero(string text)
     {
-        Derivation d = Derivation.Parse(text, [.. _names]);
+        Derivation d = Derivation.Parse(text, [.. Names]);
         Assert.InRange(Math.Abs(d.Weights(Electrodes(d.Joined)).Sum()), 0, 1e-14);
     }
 
@@ -71,7 +71,7 @@ public class DerivationTests
     [InlineData("Cz-A1", "mastoid M1")]
     public void Malformed_IsRefusedWithWhatToDo(string text, string part)
     {
-        InputException error = Assert.Throws<InputException>(() => Derivation.Parse(text, [.. _names]));
+        InputException error = Assert.Throws<InputException>(() => Derivation.Parse(text, [.. Names]));
         Assert.Contains(part, error.Message, StringComparison.Ordinal);
     }
 
@@ -87,7 +87,7 @@ public class DerivationTests
     public void Reference_OfElectrodes_IsTheirMean()
     {
         ReferenceChoice reference = new(ReferenceKind.Electrodes, ["M1", "M2"]);
-        Assert.Equal(["M1", "M2"], ReferenceWeights.Joined(reference, [.. _names]));
+        Assert.Equal(["M1", "M2"], ReferenceWeights.Joined(reference, [.. Names]));
         Electrode[] electrodes = Electrodes("M1", "M2");
         double[] w = ReferenceWeights.Of(reference, electrodes);
         Assert.Equal(0.5, Weight(w, electrodes, "M1"));
@@ -107,7 +107,7 @@ public class DerivationTests
     [Fact]
     public void Reference_ToAnUnknownElectrode_IsRefusedWithTheNearest()
     {
-        InputException error = Assert.Throws<InputException>(() => ReferenceWeights.Joined(new(ReferenceKind.Electrodes, ["M3x"]), [.. _names]));
+        InputException error = Assert.Throws<InputException>(() => ReferenceWeights.Joined(new(ReferenceKind.Electrodes, ["M3x"]), [.. Names]));
         Assert.Equal("sensors.eeg.reference", error.Problems[0].Key);
         Assert.Contains("M3x", error.Message, StringComparison.Ordinal);
     }

@@ -9,12 +9,12 @@ namespace DeepSourceCheck.Tests.Core.Sensors;
 
 public class ElectrodePlacementTests
 {
-    private static readonly Vec3 _centre = TestHeads.Adult.Centre;
+    private static readonly Vec3 Centre = TestHeads.Adult.Centre;
 
     [Fact]
     public void Electrode_KeepsItsDirectionAndReportsTheDistance()
     {
-        Electrode e = ElectrodePlacement.OnSphere(["A"], [_centre + new Vec3(0.06, 0, 0.08)], TestHeads.Adult)[0];
+        Electrode e = ElectrodePlacement.OnSphere(["A"], [Centre + new Vec3(0.06, 0, 0.08)], TestHeads.Adult)[0];
         RelativeAssert.Equal(0.008, e.MovedBy, 1e-12);
         RelativeAssert.Equal(0.092 * 0.6, e.Position.X, 1e-12);
         RelativeAssert.Equal(0.005 + 0.092 * 0.8, e.Position.Z, 1e-12);
@@ -25,7 +25,7 @@ public class ElectrodePlacementTests
     public void Electrode_MoreThan20MmAway_IsRefusedByNameAndDistance()
     {
         InputException error = Assert.Throws<InputException>(() => ElectrodePlacement.OnSphere(
-            ["near", "far"], [_centre + new Vec3(0, 0, 0.1119), _centre + new Vec3(0, 0, 0.1123)], TestHeads.Adult, "electrodes.tsv"));
+            ["near", "far"], [Centre + new Vec3(0, 0, 0.1119), Centre + new Vec3(0, 0, 0.1123)], TestHeads.Adult, "electrodes.tsv"));
         InputProblem problem = Assert.Single(error.Problems);
         Assert.Equal("electrodes.tsv", problem.File);
         Assert.Contains("'far' is 20.3 mm outside", problem.Message, StringComparison.Ordinal);
@@ -36,7 +36,7 @@ public class ElectrodePlacementTests
     {
         InputException error = Assert.Throws<InputException>(() => ElectrodePlacement.OnSphere(
             ["A", "A", "B", "C"],
-            [_centre + new Vec3(0, 0, 0.092), _centre + new Vec3(0, 0.092, 0), _centre, new(double.NaN, 0, 0)],
+            [Centre + new Vec3(0, 0, 0.092), Centre + new Vec3(0, 0.092, 0), Centre, new(double.NaN, 0, 0)],
             TestHeads.Adult));
         Assert.Equal(3, error.Problems.Count);
         Assert.Contains("listed twice", error.Problems[0].Message, StringComparison.Ordinal);
@@ -50,8 +50,8 @@ public class ElectrodePlacementTests
         {
             double across = Math.Sqrt(1 - z * z);
             Vec3 direction = new(across * Math.Sin(azimuth), across * Math.Cos(azimuth), z);
-            Electrode e = ElectrodePlacement.OnSphere(["A"], [_centre + r * direction], TestHeads.Adult)[0];
-            Vec3 offset = e.Position - _centre;
+            Electrode e = ElectrodePlacement.OnSphere(["A"], [Centre + r * direction], TestHeads.Adult)[0];
+            Vec3 offset = e.Position - Centre;
             return Math.Abs(offset.Norm - 0.092) < 1e-15 * 100 && TestHeads.AngleDeg(offset, direction) < 1e-9 && Math.Abs(e.MovedBy - Math.Abs(r - 0.092)) < 1e-14;
         }, seed: "0000000000000001");
 }

@@ -11,27 +11,27 @@ namespace DeepSourceCheck.Tests.Files.Regions;
 
 public class RegionLibraryTests
 {
-    private static readonly RegionLibrary _library = RegionLibrary.Load();
+    private static readonly RegionLibrary Library = RegionLibrary.Load();
 
     // The names of the contract.
-    private static readonly string[] _sided =
+    private static readonly string[] Sided =
     [
         "thalamus", "ventral-posterolateral-thalamus", "medial-geniculate", "lateral-geniculate", "caudate", "putamen", "pallidum", "accumbens", "hippocampus",
         "amygdala", "subthalamic-nucleus", "substantia-nigra", "red-nucleus", "inferior-colliculus", "superior-colliculus", "cochlear-nucleus", "superior-olive",
         "lateral-lemniscus", "cuneate-nucleus", "cerebellum",
     ];
 
-    private static Ellipsoid Shape(string name) => _library.Find(name)!.Shape!;
+    private static Ellipsoid Shape(string name) => Library.Find(name)!.Shape!;
 
     [Fact]
     public void Names_AreThoseOfTheContract()
     {
-        string[] expected = [.. _sided.SelectMany(s => new[] { s + "-left", s + "-right" }), "midbrain", "pons", "medulla", "cortex"];
-        Assert.Equal(expected.Order(StringComparer.Ordinal), _library.Names.Order(StringComparer.Ordinal));
+        string[] expected = [.. Sided.SelectMany(s => new[] { s + "-left", s + "-right" }), "midbrain", "pons", "medulla", "cortex"];
+        Assert.Equal(expected.Order(StringComparer.Ordinal), Library.Names.Order(StringComparer.Ordinal));
     }
 
     [Fact]
-    public void EveryRegion_SaysWhatIsKnownAboutIt() => Assert.All(_library.Regions, r =>
+    public void EveryRegion_SaysWhatIsKnownAboutIt() => Assert.All(Library.Regions, r =>
     {
         Assert.NotEmpty(r.VolumeSource);
         Assert.NotEmpty(r.PlaceSource);
@@ -66,14 +66,14 @@ public class RegionLibraryTests
     [InlineData("red-nucleus-left", 0.25, 0.33)]
     public void Volume_LiesInThePublishedRange(string name, double low, double high)
     {
-        LibraryRegion region = _library.Find(name)!;
+        LibraryRegion region = Library.Find(name)!;
         Assert.InRange(region.Shape!.Volume * 1e6, low, high);
         RelativeAssert.Equal(low, region.VolumeRange!.Value.Low * 1e6, 1e-12);
         RelativeAssert.Equal(high, region.VolumeRange.Value.High * 1e6, 1e-12);
     }
 
     [Fact]
-    public void Sides_AreMirrorImages_AndOnTheirOwnSide() => Assert.All(_sided, s =>
+    public void Sides_AreMirrorImages_AndOnTheirOwnSide() => Assert.All(Sided, s =>
     {
         Ellipsoid left = Shape(s + "-left"), right = Shape(s + "-right");
         Assert.Equal(left.Centre with { X = -left.Centre.X }, right.Centre);
@@ -179,7 +179,7 @@ public class RegionLibraryTests
         LayeredSphere admits78 = new("78 mm", TestHeads.Adult.Centre, [new("brain", 0.078 / LayeredSphere.LargestEccentricity, 0.33, 0.33)]);
         Assert.InRange(RegionFill.ShareRefused(upright.Shape, admits78), 0.17, 0.19);
 
-        LibraryRegion region = _library.Find("cerebellum-left")!;
+        LibraryRegion region = Library.Find("cerebellum-left")!;
         double share = RegionFill.ShareRefused(region.Shape!.Shape, TestHeads.Adult);
         Assert.InRange(share, 0.14, 0.22);
         FilledRegion filled = RegionFill.Fill(region, null, TestHeads.Adult);
@@ -189,7 +189,7 @@ public class RegionLibraryTests
     }
 
     [Fact]
-    public void EveryRegion_FillsTheDefaultHead() => Assert.All(_library.Regions, r =>
+    public void EveryRegion_FillsTheDefaultHead() => Assert.All(Library.Regions, r =>
     {
         FilledRegion filled = RegionFill.Fill(r, null, TestHeads.Adult);
         Assert.InRange(filled.Positions.Length, 50, 20_000);
@@ -210,7 +210,7 @@ public class RegionLibraryTests
     [InlineData("cochlear-nucleus-right")]
     [InlineData("superior-olive-left")]
     [InlineData("cuneate-nucleus-left")]
-    public void LowRegions_CarryTheLimitsOfASphere(string name) => Assert.Contains("5.5 mm", _library.Find(name)!.SphereLimits, StringComparison.Ordinal);
+    public void LowRegions_CarryTheLimitsOfASphere(string name) => Assert.Contains("5.5 mm", Library.Find(name)!.SphereLimits, StringComparison.Ordinal);
 
     [Theory]
     [InlineData(0.0685, 0.070, 0.080)]
@@ -219,15 +219,15 @@ public class RegionLibraryTests
     {
         LayeredSphere head = new("small", new(0, -0.018, 0.005), [new("brain", brain, 0.33, 0.33), new("csf", skull, 1.79, 1.79), new("skull", scalp, 0.01, 0.01)]);
         double factor = brain / 0.078;
-        foreach (LibraryRegion adult in _library.Regions.Where(r => r.Shape is not null))
+        foreach (LibraryRegion adult in Library.Regions.Where(r => r.Shape is not null))
         {
-            Ellipsoid scaled = _library.Get(adult.Name, factor, head.Centre).Shape!;
+            Ellipsoid scaled = Library.Get(adult.Name, factor, head.Centre).Shape!;
             RelativeAssert.Equal(factor * factor * factor, scaled.Volume / adult.Shape!.Volume, 1e-12, adult.Name);
             RelativeAssert.Equal(factor * (adult.Shape.Centre - head.Centre).Norm, (scaled.Centre - head.Centre).Norm, 1e-9, adult.Name);
         }
 
         // Scaling keeps what fits: the same share of the cerebellum is refused.
-        Assert.InRange(RegionFill.ShareRefused(_library.Get("cerebellum-left", factor, head.Centre).Shape!.Shape, head)
+        Assert.InRange(RegionFill.ShareRefused(Library.Get("cerebellum-left", factor, head.Centre).Shape!.Shape, head)
             - RegionFill.ShareRefused(Shape("cerebellum-left").Shape, TestHeads.Adult), -0.01, 0.01);
     }
 
@@ -237,7 +237,7 @@ public class RegionLibraryTests
     [InlineData("Midbrain", "nearest: midbrain")]
     public void UnknownRegion_IsRefusedWithWhatToWrite(string name, string part)
     {
-        InputException error = Assert.Throws<InputException>(() => _library.Get(name, 1, Vec3.Zero, "responses.r.regions[0]"));
+        InputException error = Assert.Throws<InputException>(() => Library.Get(name, 1, Vec3.Zero, "responses.r.regions[0]"));
         Assert.Contains(part, error.Message, StringComparison.Ordinal);
         Assert.Equal("responses.r.regions[0]", error.Problems[0].Key);
     }

@@ -1,7 +1,7 @@
 using System.Globalization;
 using System.Text;
 
-namespace DeepSourceCheck.Files.Studies;
+namespace DeepSourceCheck.Files;
 
 /// <summary>Text from a file as a message may show it: on one line, short, without control characters.</summary>
 internal static class Shown
@@ -11,13 +11,14 @@ internal static class Shown
     /// <summary>The text, shortened, control and invisible characters replaced by `?`.</summary>
     public static string Text(string text, int longest = Longest)
     {
-        var shown = new StringBuilder();
-        foreach (char c in text.Length > longest ? text.AsSpan(0, longest) : text)
+        int end = text.Length <= longest ? text.Length : char.IsHighSurrogate(text[longest - 1]) ? longest - 1 : longest;
+        var shown = new StringBuilder(end + 3);
+        foreach (char c in text.AsSpan(0, end))
         {
             shown.Append(IsHidden(c) ? '?' : c);
         }
 
-        return text.Length > longest ? shown.Append("...").ToString() : shown.ToString();
+        return end < text.Length ? shown.Append("...").ToString() : shown.ToString();
     }
 
     /// <summary>The text in quotes, shortened.</summary>

@@ -1,0 +1,44 @@
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Core.Results;
+
+/// <summary>All results of one region under one response.</summary>
+public sealed record RegionResult
+{
+    /// <summary>Name; `A + B` where regions act together.</summary>
+    public required string Region { get; init; }
+
+    /// <summary>Kept dipoles.</summary>
+    public required int Dipoles { get; init; }
+
+    /// <summary>Dipoles that the head refused.</summary>
+    public required int Dropped { get; init; }
+
+    /// <summary>Spacing [m], null for points.</summary>
+    public double? Spacing { get; init; }
+
+    /// <summary>Dipoles times spacing cubed [m^3], null for points.</summary>
+    public double? Volume { get; init; }
+
+    /// <summary>Split of directions; null where there is none.</summary>
+    public SplitSummary? Split { get; init; }
+
+    /// <summary>Share of the largest field around the head that the array's cap captures (1 inside it); null without generated MEG.</summary>
+    public double? FieldCaptured { get; init; }
+
+    /// <summary>All figures.</summary>
+    public required IReadOnlyList<MeasureResult> Results { get; init; }
+
+    /// <summary>Answers.</summary>
+    public required IReadOnlyList<VerdictResult> Verdicts { get; init; }
+
+    /// <summary>What the user must know about this region.</summary>
+    public IReadOnlyList<string> Warnings { get; init; } = [];
+
+    /// <summary>The row of a modality, direction and measure, or null.</summary>
+    public MeasureResult? Find(Modality modality, DirectionName direction, string measure) =>
+        Results.FirstOrDefault(r => r.Modality == modality && r.Direction == direction && r.Measure == measure);
+}
+
+/// <summary>How well the directions split in one region.</summary>
+public sealed record SplitSummary(Percentiles WeakestOverStrongest, Percentiles AngleToRadialDeg, int UndefinedDipoles, int DegenerateDipoles);

@@ -1,0 +1,8 @@
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Core.Results;
+
+/// <summary>All regions of one response.</summary>
+/// <param name="Response">As stated.</param>
+/// <param name="Regions">One result a region; a single one where regions act together.</param>
+public sealed record ResponseResult(Response Response, IReadOnlyList<RegionResult> Regions);

@@ -1,0 +1,11 @@
+namespace DeepSourceCheck.Core.Results;
+
+/// <summary>What one rule asks of one measure.</summary>
+/// <param name="Rule">`amplitude_ratio`, `detection`.</param>
+/// <param name="Trials">Accepted trials.</param>
+/// <param name="Minutes">Recording minutes; null without a protocol.</param>
+/// <param name="SmallestMoment">Moment [A m] that the session's trials reach, p50 over dipoles; null without a session or where silent.</param>
+/// <param name="SmallestAmplitude">The peak amplitude at that moment, in the unit of the peak; null likewise.</param>
+/// <param name="Reason">Why a figure is null; null where none is.</param>
+public sealed record TargetResult(
+    string Rule, CountPercentiles Trials, Percentiles? Minutes, double? SmallestMoment, double? SmallestAmplitude, string? Reason);

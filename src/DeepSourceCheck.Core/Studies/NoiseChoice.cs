@@ -1,0 +1,44 @@
+namespace DeepSourceCheck.Core.Studies;
+
+/// <summary>Noise as stated, in SI units; null is "not stated".</summary>
+public sealed record NoiseChoice
+{
+    /// <summary>Amplifier noise per electrode [V/sqrt(Hz)].</summary>
+    public double? EegDensity { get; init; }
+
+    /// <summary>Magnetometers and axial gradiometers [T/sqrt(Hz)].</summary>
+    public double? MegDensity { get; init; }
+
+    /// <summary>Planar gradiometers [T/m/sqrt(Hz)].</summary>
+    public double? MegPlanarDensity { get; init; }
+
+    /// <summary>Everything that is in one EEG trial.</summary>
+    public EegTotalChoice? EegTotal { get; init; }
+
+    /// <summary>True: default brain tables; false: none; null: not stated (on when <see cref="EegTotal"/> is given, else off).</summary>
+    public bool? Brain { get; init; }
+
+    /// <summary>Flat figure per trial, every electrode alike [V].</summary>
+    public double? EegRms { get; init; }
+
+    /// <summary>Flat figure per trial, every channel alike [T].</summary>
+    public double? MegRms { get; init; }
+
+    /// <summary>Measured EEG covariance.</summary>
+    public CovarianceChoice? EegCovariance { get; init; }
+
+    /// <summary>Measured MEG covariance.</summary>
+    public CovarianceChoice? MegCovariance { get; init; }
+}
+
+/// <summary>Total EEG noise in one trial.</summary>
+/// <param name="Rms">rms [V] in the band, in the derivation.</param>
+/// <param name="Derivation">Name of the derivation.</param>
+/// <param name="Band">Band [Hz].</param>
+public sealed record EegTotalChoice(double Rms, string Derivation, Band Band);
+
+/// <summary>A covariance file.</summary>
+/// <param name="File">Path relative to the study.</param>
+/// <param name="Samples">Number of independent samples it was estimated from; null: exact.</param>
+/// <param name="AveragedTrials">Number of trials that were averaged before it was estimated.</param>
+public sealed record CovarianceChoice(string File, double? Samples, double AveragedTrials);
