@@ -56,11 +56,23 @@ internal static class CheckCommand
         return ExitStatus.Done;
     }
 
-    /// <summary>A study without responses serves `leadfield` alone, and is checked for that.</summary>
+    /// <summary>A study without responses serves `leadfield` alone, and is checked for that. Others are read once.</summary>
     private static PreparedStudy Prepare(string? path, RunSettings settings, Surroundings surroundings)
     {
-        PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Leadfield, settings);
-        return prepared.Study.Responses.Count > 0 ? surroundings.Steps.Prepare(path, Purpose.Assess, settings) : prepared;
+        try
+        {
+            return surroundings.Steps.Prepare(path, Purpose.Assess, settings);
+        }
+        catch (InputException e) when (e.Problems.Any(p => p.Key == "responses"))
+        {
+            PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Leadfield, settings);
+            if (prepared.Study.Responses.Count > 0)
+            {
+                throw;
+            }
+
+            return prepared;
+        }
     }
 
     private static void WriteText(PreparedStudy prepared, TextWriter to)
