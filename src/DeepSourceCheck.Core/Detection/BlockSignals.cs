@@ -38,8 +38,10 @@ public sealed class BlockSignals
     private readonly bool _eegAlike, _megAlike;
     private readonly Vector512<double>[][] _grams = [new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6]];
     private readonly bool[] _gramReady = new bool[5];
-    private readonly Vector512<double>?[] _figures = new Vector512<double>?[5];
-    private readonly (Vector512<double> Power, Vector512<double> Index)?[] _largest = new (Vector512<double>, Vector512<double>)?[2];
+    private readonly Vector512<double>[] _figures = new Vector512<double>[5];
+    private readonly bool[] _figureReady = new bool[5];
+    private readonly (Vector512<double> Power, Vector512<double> Index)[] _largest = new (Vector512<double>, Vector512<double>)[2];
+    private readonly bool[] _largestReady = new bool[2];
     private DirectionMode _mode;
     private LaneDirection _direction;
     private Vector512<double> _audible;
@@ -135,8 +137,8 @@ public sealed class BlockSignals
     {
         _mode = mode;
         _direction = direction;
-        Array.Clear(_figures);
-        Array.Clear(_largest);
+        Array.Clear(_figureReady);
+        Array.Clear(_largestReady);
         if (mode == DirectionMode.Alone && _megReported)
         {
             // Below the rounding of the strongest direction a field is no field: silent is exactly zero.
@@ -146,6 +148,7 @@ public sealed class BlockSignals
             Vector512<double> power = Lanes.ProjectedPower(_megScaled, _space.MegSd.Length, direction);
             _audible = Vector512.GreaterThan(power, limit * limit);
             _figures[1] = power & _audible;
+            _figureReady[1] = true;
         }
         else
         {
@@ -201,17 +204,18 @@ public sealed class BlockSignals
     public Vector512<double> BestChannel(Modality modality, out Vector512<double> index)
     {
         int slot = modality == Modality.Eeg ? 0 : 1;
-        if (_largest[slot] is not { } known)
+        if (!_largestReady[slot])
         {
             double[] rows = slot == 0 ? _eegScaled : _megScaled;
             int count = slot == 0 ? _space.EegChannels.Length : _space.MegSd.Length;
             Vector512<double> at;
             Vector512<double> power = _mode == DirectionMode.Best ? Lanes.LargestNorm(rows, count, out at) : Lanes.Largest(rows, count, _direction, out at);
-            _largest[slot] = known = (slot == 1 ? power & _audible : power, at);
+            _largest[slot] = (slot == 1 ? power & _audible : power, at);
+            _largestReady[slot] = true;
         }
 
-        index = known.Index;
-        return known.Power;
+        index = _largest[slot].Index;
+        return _largest[slot].Power;
     }
 
     /// <summary>Largest |channel|^2 [(V/(A m))^2, (T/(A m))^2 or per metre] and its channel.</summary>
@@ -322,14 +326,15 @@ public sealed class BlockSignals
             return LargestEigenvalue(Gram(slot, rows, count));
         }
 
-        if (_figures[slot] is { } known)
+        if (_figureReady[slot])
         {
-            return known;
+            return _figures[slot];
         }
 
         Vector512<double> power = _mode == DirectionMode.Alone ? Lanes.ProjectedPower(rows, count, _direction) : Lanes.Quadratic(Gram(slot, rows, count), _direction);
         power = megOnly && slot is 1 or 3 ? power & _audible : power;
         _figures[slot] = power;
+        _figureReady[slot] = true;
         return power;
     }
 

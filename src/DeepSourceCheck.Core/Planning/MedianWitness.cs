@@ -55,11 +55,12 @@ internal sealed record MedianWitness(
             block.Load(region.Positions.AsSpan(from, n), region.SourceIndices.Length == 0 ? default : region.SourceIndices.AsSpan(from, n));
             source.Fill(block);
             signals.Load(block);
-            foreach ((DirectionMode mode, LaneDirection u) in reader.DirectionsOf(direction, signals))
+            (DirectionMode mode, LaneDirection[] directions) = reader.DirectionsOf(direction, signals);
+            foreach (LaneDirection u in directions)
             {
                 signals.Ask(mode, u);
-                Vector512<double> power = measure.Power(signals, out ArtefactScale scale) * Vector512.Create(plan.Gain);
-                Vector512<double> artefact = reader.ArtefactPower(scale);
+                Vector512<double> power = measure.Power(signals) * Vector512.Create(plan.Gain);
+                Vector512<double> artefact = reader.ArtefactPower(measure.InverseVariance(signals));
                 for (int lane = 0; lane < n; lane++)
                 {
                     double value = cell.Effective is null ? power[lane] : plan.Rules[rule].EffectivePower(power[lane], artefact[lane]);
