@@ -297,21 +297,52 @@ public sealed class BlockSignals
         return Vector512.Create<double>(power);
     }
 
-    // The largest eigenvalue of the two readings' 2 x 2 Gram matrix, over all channels that may be chosen.
+    // The largest eigenvalue of the two readings' 2 x 2 Gram matrix, over all channels that may be chosen. It never exceeds the trace, so that pairs of weak channels are passed over;
+    // the strongest EEG channels come first.
     private Vector512<double> BestPair(int derivation)
     {
         ReadOnlySpan<Vector512<double>> eeg = Lanes.View(derivation >= 0 ? _derivations : _eegScaled), meg = Lanes.View(_megScaled);
-        int from = Math.Max(derivation, 0), to = derivation >= 0 ? derivation + 1 : _space.EegChannels.Length;
+        int first = Math.Max(derivation, 0), count = derivation >= 0 ? 1 : _space.EegChannels.Length;
+        Span<int> order = stackalloc int[count];
+        Span<double> strength = stackalloc double[count];
+        for (int i = 0; i < count; i++)
+        {
+            int row = first + i;
+            order[i] = row;
+            strength[i] = -Vector512.Sum(eeg[3 * row] * eeg[3 * row] + eeg[3 * row + 1] * eeg[3 * row + 1] + eeg[3 * row + 2] * eeg[3 * row + 2]);
+        }
+
+        strength.Sort(order);
+        bool independent = _space.ChannelCorrelation is null;
+        Vector512<double> strongest = Lanes.LargestNorm(_megScaled, _space.MegSd.Length, out _);
         Vector512<double> best = default, half = Vector512.Create(0.5), four = Vector512.Create(4.0);
-        for (int i = from; i < to; i++)
+        foreach (int i in order)
         {
             Vector512<double> ex = eeg[3 * i], ey = eeg[3 * i + 1], ez = eeg[3 * i + 2], ee = ex * ex + ey * ey + ez * ez;
+            if (independent && Vector512.LessThanAll(ee + strongest, best))
+            {
+                continue;
+            }
+
             for (int k = 0; k < _space.MegSd.Length; k++)
             {
-                double rho = Correlation(derivation, i, k);
-                Vector512<double> r = Vector512.Create(rho), w = Vector512.Create(1 / Math.Sqrt(1 - rho * rho));
-                Vector512<double> x = w * (meg[3 * k] - r * ex), y = w * (meg[3 * k + 1] - r * ey), z = w * (meg[3 * k + 2] - r * ez);
-                Vector512<double> mm = x * x + y * y + z * z, em = ex * x + ey * y + ez * z, difference = ee - mm;
+                Vector512<double> x = meg[3 * k], y = meg[3 * k + 1], z = meg[3 * k + 2];
+                if (!independent)
+                {
+                    double rho = Correlation(derivation, i, k);
+                    Vector512<double> r = Vector512.Create(rho), w = Vector512.Create(1 / Math.Sqrt(1 - rho * rho));
+                    x = w * (x - r * ex);
+                    y = w * (y - r * ey);
+                    z = w * (z - r * ez);
+                }
+
+                Vector512<double> mm = x * x + y * y + z * z;
+                if (Vector512.LessThanAll(ee + mm, best))
+                {
+                    continue;
+                }
+
+                Vector512<double> em = ex * x + ey * y + ez * z, difference = ee - mm;
                 best = Vector512.Max(best, half * (ee + mm + Vector512.Sqrt(difference * difference + four * em * em)));
             }
         }
