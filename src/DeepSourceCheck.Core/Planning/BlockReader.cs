@@ -49,31 +49,37 @@ internal sealed class BlockReader
     /// <summary>Reads the block that <paramref name="signals"/> holds.</summary>
     /// <param name="signals">Channels of the block.</param>
     /// <param name="lanes">Dipoles in the block.</param>
+    /// <param name="block">Index of the block in its region.</param>
     /// <param name="tally">Receives every figure.</param>
     /// <param name="snrDb">[column][dipole]: mean over the direction's set [dB], or null.</param>
     /// <param name="offset">Index of the block's first dipole in <paramref name="snrDb"/>.</param>
-    public void Read(BlockSignals signals, int lanes, RegionTally tally, double[][]? snrDb, int offset)
+    public void Read(BlockSignals signals, int lanes, long block, RegionTally tally, double[][]? snrDb, int offset)
     {
         for (int d = 0; d < _plan.Directions.Count; d++)
         {
             DirectionName name = _plan.Directions[d];
             Vector512<double> counted = Counted(signals, lanes, name is DirectionName.QuasiRadial or DirectionName.Tangential or DirectionName.StrongestTangential);
             (DirectionMode mode, LaneDirection[] directions) = DirectionsOf(name, signals);
-            for (int u = 0; u < directions.Length; u++)
+            int stride = tally.Strides[d], start = DirectionSets.Start(block, stride), taken = directions.Length / stride;
+            if (snrDb is not null)
             {
-                signals.Ask(mode, directions[u]);
-                ReadOne(signals, u * Lanes, counted);
+                ReadAll(signals, mode, directions, 0, 1, counted);
+                for (int m = 0; m < _plan.Measures.Count; m++)
+                {
+                    Mean(_powers[m].AsSpan(0, directions.Length * Lanes), lanes, snrDb[_column[d * _plan.Measures.Count + m]].AsSpan(offset, lanes));
+                }
+
+                Thin(start, stride, taken);
+            }
+            else
+            {
+                ReadAll(signals, mode, directions, start, stride, counted);
             }
 
-            int length = directions.Length * Lanes;
+            int length = taken * Lanes;
             for (int m = 0; m < _plan.Measures.Count; m++)
             {
-                ReadOnlySpan<double> powers = _powers[m].AsSpan(0, length);
-                tally.Cells[d][m].Add(powers, _artefact ? _artefacts[m].AsSpan(0, length) : default);
-                if (snrDb is not null)
-                {
-                    Mean(powers, lanes, snrDb[_column[d * _plan.Measures.Count + m]].AsSpan(offset, lanes));
-                }
+                tally.Cells[d][m].Add(_powers[m].AsSpan(0, length), _artefact ? _artefacts[m].AsSpan(0, length) : default);
             }
 
             for (int k = 0; k < 2; k++)
@@ -82,6 +88,32 @@ internal sealed class BlockReader
                 {
                     tally.Peaks[d][k].Add(_peaks[k].AsSpan(0, length), _peakChannels[k].AsSpan(0, length));
                 }
+            }
+        }
+    }
+
+    private void ReadAll(BlockSignals signals, DirectionMode mode, LaneDirection[] directions, int start, int stride, Vector512<double> counted)
+    {
+        for (int u = start, at = 0; u < directions.Length; u += stride, at += Lanes)
+        {
+            signals.Ask(mode, directions[u]);
+            ReadOne(signals, at, counted);
+        }
+    }
+
+    // Moves every n-th direction to the front of the buffers.
+    private void Thin(int start, int stride, int taken)
+    {
+        if (stride == 1)
+        {
+            return;
+        }
+
+        foreach (double[] buffer in _powers.Concat(_artefacts).Concat(_peaks).Concat(_peakChannels))
+        {
+            for (int i = 0; buffer.Length > 0 && i < taken; i++)
+            {
+                buffer.AsSpan((start + i * stride) * Lanes, Lanes).CopyTo(buffer.AsSpan(i * Lanes));
             }
         }
     }

@@ -56,8 +56,10 @@ internal sealed record MedianWitness(
             source.Fill(block);
             signals.Load(block);
             (DirectionMode mode, LaneDirection[] directions) = reader.DirectionsOf(direction, signals);
-            foreach (LaneDirection u in directions)
+            int stride = tally.Strides[plan.Directions.ToList().IndexOf(direction)];
+            for (int k = DirectionSets.Start(from / LeadfieldBlock.Lanes, stride); k < directions.Length; k += stride)
             {
+                LaneDirection u = directions[k];
                 signals.Ask(mode, u);
                 Vector512<double> power = measure.Power(signals) * Vector512.Create(plan.Gain);
                 Vector512<double> artefact = reader.ArtefactPower(measure.InverseVariance(signals));

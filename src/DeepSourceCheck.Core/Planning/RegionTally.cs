@@ -15,14 +15,12 @@ internal sealed class RegionTally
         _plan = plan;
         Cells = new MeasureTally[plan.Directions.Count][];
         Peaks = new PeakTally[plan.Directions.Count][];
+        Strides = new int[plan.Directions.Count];
         for (int d = 0; d < Cells.Length; d++)
         {
-            (long announced, int multiplicity) = plan.Directions[d] switch
-            {
-                DirectionName.Tangential => (dipoles * DirectionSets.HalfCircle.Count, 2),
-                DirectionName.Isotropic => (dipoles * DirectionSets.IsotropicPoints, 1),
-                _ => (dipoles, 1),
-            };
+            int size = SetSize(plan.Directions[d]), multiplicity = plan.Directions[d] == DirectionName.Tangential ? 2 : 1;
+            Strides[d] = DirectionSets.Stride(dipoles, size);
+            long announced = dipoles * (size / Strides[d]);
             Cells[d] = [.. plan.Measures.Select(m => new MeasureTally(plan, m, announced, multiplicity))];
             Peaks[d] =
             [
@@ -40,6 +38,9 @@ internal sealed class RegionTally
 
     /// <summary>[direction][EEG, MEG]: largest channel.</summary>
     public PeakTally[][] Peaks { get; }
+
+    /// <summary>Every n-th direction of each set enters the percentiles.</summary>
+    public int[] Strides { get; }
 
     /// <summary>s3/s1.</summary>
     public QuantileStore WeakestOverStrongest { get; }
@@ -72,6 +73,13 @@ internal sealed class RegionTally
         Undefined += other.Undefined;
         Degenerate += other.Degenerate;
     }
+
+    private static int SetSize(DirectionName direction) => direction switch
+    {
+        DirectionName.Tangential => DirectionSets.HalfCircle.Count,
+        DirectionName.Isotropic => DirectionSets.IsotropicPoints,
+        _ => 1,
+    };
 
     /// <summary>Index of a direction and measure.</summary>
     public MeasureTally Cell(DirectionName direction, IMeasure measure) =>
