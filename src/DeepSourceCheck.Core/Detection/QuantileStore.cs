@@ -13,7 +13,7 @@ namespace DeepSourceCheck.Core.Detection;
 public sealed class QuantileStore
 {
     /// <summary>Largest number of values that are kept one by one.</summary>
-    public const long ExactLimit = 1 << 19;
+    public const long ExactLimit = 1 << 18;
 
     private const int Shift = 52 - 13;
     private const int ClassesAnExponent = 1 << 13;

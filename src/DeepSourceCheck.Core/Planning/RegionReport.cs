@@ -60,7 +60,8 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
         List<TargetResult> targets = [.. plan.Rules.Select((rule, r) => Target(rule, r, cell, measure, peakPerMoment))];
         string? reason = cell.Power.Count == 0 ? UndefinedReason
             : silent ? SilentReason
-            : snr.P05 is null ? "some dipoles or directions are silent: percentiles that fall on them are null" : null;
+            : snr.P05 is null ? "some dipoles or directions are silent: percentiles that fall on them are null"
+            : targets.FirstOrDefault(t => t.Trials.P50 is null)?.Reason;
         LeakResult? leak = null;
         if (silent && measure.Modality == Modality.Meg && plan.Directions.Contains(DirectionName.StrongestTangential))
         {
