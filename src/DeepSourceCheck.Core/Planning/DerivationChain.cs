@@ -75,6 +75,11 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise)
 
     private double Correlation(MedianWitness witness, PairMeasure pair)
     {
+        if (witness.MegRow == Vec3.Zero)
+        {
+            return 0;                                           // a silent reading adds nothing, as in the run
+        }
+
         double[]? table = pair.DerivationIndex >= 0 ? plan.Space.DerivationCorrelation : plan.Space.ChannelCorrelation;
         int row = pair.DerivationIndex >= 0 ? pair.DerivationIndex : witness.EegChannel;
         return table is null ? 0 : table[row * plan.Space.MegSd.Length + witness.MegChannel];

@@ -19,7 +19,7 @@ namespace DeepSourceCheck.Core.Planning;
 /// <param name="EegChannel">EEG channel that was read, counted among the used ones; -1 for none or a derivation.</param>
 /// <param name="EegRow">Its leadfield over its noise [1/(A m)], one value an axis.</param>
 /// <param name="MegChannel">MEG channel that was read; -1 for none.</param>
-/// <param name="MegRow">Its leadfield over its noise [1/(A m)].</param>
+/// <param name="MegRow">Its leadfield over its noise [1/(A m)]; zero where the direction is silent.</param>
 internal sealed record MedianWitness(
     string Point, Vec3 Position, Vec3 Direction, double Power, double Artefact, int EegChannel, Vec3 EegRow, int MegChannel, Vec3 MegRow)
 {
@@ -98,9 +98,9 @@ internal sealed record MedianWitness(
 
         if (readsMeg)
         {
-            signals.BestChannel(Modality.Meg, out Vector512<double> index);
+            Vector512<double> audible = signals.BestChannel(Modality.Meg, out Vector512<double> index);
             meg = (int)index[lane];
-            megRow = signals.ReadingRow(Modality.Meg, -1, meg, lane);
+            megRow = audible[lane] > 0 ? signals.ReadingRow(Modality.Meg, -1, meg, lane) : default;     // silent: zero, not its rounding
         }
 
         Vec3 direction = mode != DirectionMode.Best ? new(u.X[lane], u.Y[lane], u.Z[lane])
