@@ -12,7 +12,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
     public const double PublishedLeak = 0.06;
 
     private const string SilentReason =
-        "silent: in a spherical head MEG does not see this direction (below the rounding of the strongest); realistic heads leak, see at_leak";
+        "silent: in a spherical head MEG does not see this direction (below the rounding of the strongest); realistic heads leak: at_leak holds the figures at the published leak";
 
     private const string UndefinedReason = "the directions are undefined here: at the centre of a spherical head every MEG field vanishes";
 
