@@ -6,6 +6,7 @@ using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Report.Console;
 
 namespace DeepSourceCheck.Cli.Commands;
 
@@ -100,7 +101,7 @@ internal static class CheckCommand
             to.WriteLine("Not stated by the study, so these defaults enter:");
             foreach (Assumption assumption in defaults)
             {
-                to.WriteLine("  " + Failure.OneLine(AssumptionText.Line(assumption)));
+                to.Write(WhyText.Wrap(Failure.OneLine(AssumptionText.Line(assumption)), 2));
             }
         }
 

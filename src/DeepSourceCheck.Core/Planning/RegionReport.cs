@@ -12,7 +12,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
     public const double PublishedLeak = 0.06;
 
     private const string SilentMegReason =
-        "silent: MEG does not see this direction (below the rounding of the strongest; so it is in a spherical head); realistic heads leak, see at_leak";
+        "silent: MEG does not see this direction (below the rounding of the strongest; so it is in a spherical head); realistic heads leak: at_leak holds the figures at the published leak";
 
     private const string SilentReason = "silent: what is read is exactly zero for this direction";
 
