@@ -48,7 +48,7 @@ internal static class InputFileAccess
     {
         FileInfo file = Guard(displayName, () => new FileInfo(path));
         string? fault = Directory.Exists(path) ? "is a folder; a file is needed"
-            : !file.Exists ? "the file does not exist; check the name and that it is relative to the study file"
+            : !file.Exists ? "the file does not exist; check the name: a path in a study is relative to the study file, one on the command line to the current folder"
             : file.Length == 0 ? "the file is empty (0 bytes)"
             : null;
         if (fault is not null)

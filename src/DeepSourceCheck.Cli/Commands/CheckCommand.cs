@@ -6,6 +6,7 @@ using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Files.Studies;
+using DeepSourceCheck.Report.Console;
 using DeepSourceCheck.Report.Tables;
 
 namespace DeepSourceCheck.Cli.Commands;
@@ -57,11 +58,23 @@ internal static class CheckCommand
         return ExitStatus.Done;
     }
 
-    /// <summary>A study without responses serves `leadfield` alone, and is checked for that.</summary>
+    /// <summary>A study without responses serves `leadfield` alone, and is checked for that. Others are read once.</summary>
     private static PreparedStudy Prepare(string? path, RunSettings settings, Surroundings surroundings)
     {
-        PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Leadfield, settings);
-        return prepared.Study.Responses.Count > 0 ? surroundings.Steps.Prepare(path, Purpose.Assess, settings) : prepared;
+        try
+        {
+            return surroundings.Steps.Prepare(path, Purpose.Assess, settings);
+        }
+        catch (InputException e) when (e.Problems.Any(p => p.Key == "responses"))
+        {
+            PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Leadfield, settings);
+            if (prepared.Study.Responses.Count > 0)
+            {
+                throw;
+            }
+
+            return prepared;
+        }
     }
 
     private static void WriteText(PreparedStudy prepared, TextWriter to)
@@ -89,7 +102,7 @@ internal static class CheckCommand
             to.WriteLine("Not stated by the study, so these defaults enter:");
             foreach (Assumption assumption in defaults)
             {
-                to.WriteLine("  " + Failure.OneLine(AssumptionText.Line(assumption)));
+                to.Write(WhyText.Wrap(Failure.OneLine(AssumptionText.Line(assumption)), 2));
             }
         }
 

@@ -9,6 +9,8 @@ using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Files.Nifti;
 using DeepSourceCheck.Files.Regions;
+using DeepSourceCheck.Report.Answers;
+using DeepSourceCheck.Report.Console;
 using DeepSourceCheck.Report.Tables;
 
 namespace DeepSourceCheck.Cli.Commands;
@@ -63,23 +65,31 @@ internal static class RegionsCommand
             return ExitStatus.Done;
         }
 
-        surroundings.Out.WriteLine($"{"region",-34}{"mL",8}  {"centre, mm",-18}source of the volume");
+        surroundings.Out.WriteLine($"{"region",-38}{"mL",8}  {"published mL",-14}centre, mm");
         foreach (LibraryRegion region in library)
         {
             string volume = region.Shape is { } shape ? Si.ToMillilitres(shape.Volume).ToString("0.000", CultureInfo.InvariantCulture) : "-";
+            string published = region.VolumeRange is (var low, var high) ? string.Create(CultureInfo.InvariantCulture, $"{Si.ToMillilitres(low):0.###} to {Si.ToMillilitres(high):0.###}") : "-";
             string centre = region.Shape is { } placed ? Millimetres(placed.Centre, "0.#") : "-";
-            surroundings.Out.WriteLine($"{region.Name,-34}{volume,8}  {centre,-18}{region.VolumeSource} ({Names.Of(region.VolumeGrade)})");
+            surroundings.Out.WriteLine($"{region.Name,-38}{volume,8}  {published,-14}{centre}");
         }
 
         surroundings.Out.WriteLine();
         foreach (string frame in library.Select(r => r.Frame).Distinct())
         {
-            surroundings.Out.WriteLine("Frame: " + frame);
+            surroundings.Out.Write(WhyText.Wrap("Frame: " + frame, 0));
         }
 
-        foreach (LibraryRegion region in library.Where(r => r.SphereLimits is not null).DistinctBy(r => r.SphereLimits))
+        surroundings.Out.WriteLine("\nSources of the volumes (grade)");
+        foreach (LibraryRegion region in library.DistinctBy(r => r.Structure))
         {
-            surroundings.Out.WriteLine($"On spherical heads, {region.Structure}: {region.SphereLimits}");
+            surroundings.Out.Write(WhyText.Wrap($"{region.Structure}: {region.VolumeSource} ({Names.Of(region.VolumeGrade)})", 2));
+        }
+
+        surroundings.Out.WriteLine("\nOn spherical heads");
+        foreach (string limits in WarningText.Grouped(library.Where(r => r.SphereLimits is not null).DistinctBy(r => r.Structure).Select(r => $"{r.Structure}: {r.SphereLimits}")))
+        {
+            surroundings.Out.Write(WhyText.Wrap(limits, 2));
         }
 
         return ExitStatus.Done;

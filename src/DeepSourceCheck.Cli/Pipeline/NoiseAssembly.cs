@@ -23,6 +23,11 @@ internal static class NoiseAssembly
     // Least density [V or T per sqrt(Hz)] of the usual instruments: a measured covariance cannot be far below it.
     private static readonly double QuietestAmplifier = Si.FromNanovolts(2), QuietestSensor = Si.FromFemtotesla(0.2), QuietestPlanar = Si.FromFemtoteslaPerCm(0.5);
 
+    // Largest rms [V, T, T/m] that a trial may have: what lies beyond is mostly a covariance in uV^2 or fT^2.
+    private const double LoudestElectrode = 1e-3, LoudestSensor = 1e-8, LoudestPlanar = 1e-6;
+
+    private const string EegCovarianceKey = "noise.eeg_covariance", MegCovarianceKey = "noise.meg_covariance";
+
     /// <summary>Builds the noise model and judges what the study states.</summary>
     /// <param name="reading">The study as read.</param>
     /// <param name="sensors">Sensors and head.</param>
@@ -33,15 +38,18 @@ internal static class NoiseAssembly
     {
         Study study = reading.Study;
         NoiseChoice choice = study.Noise ?? new NoiseChoice();
-        double[]? eegCovariance = Covariance(reading, choice.EegCovariance, "noise.eeg_covariance", sensors.Electrodes.Count, inputs);
-        double[]? megCovariance = sensors.MegReported ? Covariance(reading, choice.MegCovariance, "noise.meg_covariance", sensors.MegNames.Count, inputs) : null;
+        double[]? eegCovariance = Covariance(choice.EegCovariance, EegCovarianceKey, sensors.Electrodes.Count, inputs);
+        double[]? megCovariance = sensors.MegReported ? Covariance(choice.MegCovariance, MegCovarianceKey, sensors.MegNames.Count, inputs) : null;
         JudgeTotal(reading, choice, warnings);
         foreach (Response response in study.Responses)
         {
-            JudgeCovariance(reading, eegCovariance, "noise.eeg_covariance", response, _ => QuietestAmplifier, "V", warnings);
-            JudgeCovariance(reading, megCovariance, "noise.meg_covariance", response,
-                k => sensors.MegKinds[k] == CoilKind.PlanarGradiometer ? QuietestPlanar : QuietestSensor, "T", warnings);
+            JudgeCovariance(reading, eegCovariance, EegCovarianceKey, response, _ => (QuietestAmplifier, LoudestElectrode, "V"), warnings);
+            JudgeCovariance(reading, megCovariance, MegCovarianceKey, response,
+                k => sensors.MegKinds[k] == CoilKind.PlanarGradiometer ? (QuietestPlanar, LoudestPlanar, "T/m") : (QuietestSensor, LoudestSensor, "T"), warnings);
         }
+
+        JudgeReference(reading, sensors, eegCovariance, warnings);
+        CheckDerivations(reading, sensors, eegCovariance);
 
         double[]? total = choice.EegTotal is { } stated && sensors.Electrodes.Count > 0
             ? Derivation.Parse(stated.Derivation, [.. sensors.Electrodes.Select(e => e.Name)], study.Eeg?.Layout is not null, "noise.eeg_total.derivation").Weights(sensors.Electrodes)
@@ -82,7 +90,7 @@ internal static class NoiseAssembly
         return BackgroundField.Compute(places, sensors.Source, tables, Derivation.Parse(DefaultNoiseTables.Derivation, names).Weights(electrodes));
     }
 
-    private static double[]? Covariance(StudyReading reading, CovarianceChoice? choice, string key, int rows, InputDigests inputs)
+    private static double[]? Covariance(CovarianceChoice? choice, string key, int rows, InputDigests inputs)
     {
         if (choice is null || rows == 0)
         {
@@ -92,7 +100,7 @@ internal static class NoiseAssembly
         try
         {
             (string path, string display) = inputs.Use(choice.File);
-            double[] covariance = CovarianceFile.Read(path, display, rows);
+            double[] covariance = CovarianceFile.Read(path, display, rows, mayHoldReference: key == EegCovarianceKey);
             return choice.AveragedTrials == 1 ? covariance : [.. covariance.Select(c => c * choice.AveragedTrials)];
         }
         catch (InputException error)
@@ -113,19 +121,74 @@ internal static class NoiseAssembly
     }
 
     private static void JudgeCovariance(
-        StudyReading reading, double[]? covariance, string key, Response response, Func<int, double> density, string unit, List<string> warnings)
+        StudyReading reading, double[]? covariance, string key, Response response, Func<int, (double Density, double Loudest, string Unit)> usual, List<string> warnings)
     {
         if (covariance is null)
         {
             return;
         }
 
+        // A row that is exactly zero is the reference of the recording, not a quiet channel.
         int n = (int)Math.Round(Math.Sqrt(covariance.Length));
+        int[] rows = [.. Enumerable.Range(0, n).Where(k => covariance[k * n + k] > 0)];
         double root = Math.Sqrt(response.Band.Width);
-        int least = Enumerable.Range(0, n).MinBy(k => covariance[k * n + k] / Math.Pow(density(k), 2));
-        double rms = Math.Sqrt(covariance[least * n + least]), floor = density(least) * root;
-        Judge(reading, warnings, key, rms, floor, double.MaxValue / 100, unit, string.Create(CultureInfo.InvariantCulture,
-            $"row {least + 1}: the root of its variance over the band of {response.Name} against what the quietest usual instrument has:"));
+        JudgeRow(rows.MinBy(k => covariance[k * n + k] / Math.Pow(usual(k).Density, 2)));
+        JudgeRow(rows.MaxBy(k => covariance[k * n + k] / Math.Pow(usual(k).Loudest, 2)));
+
+        void JudgeRow(int row)
+        {
+            (double density, double loudest, string unit) = usual(row);
+            Judge(reading, warnings, key, Digits(Math.Sqrt(covariance[row * n + row])), Digits(density * root), loudest, unit,
+                $"row {row + 1}: the root of its variance, against instruments and recordings over the band of {response.Name},");
+        }
+
+        static double Digits(double value) => double.Parse(value.ToString("G3", CultureInfo.InvariantCulture), CultureInfo.InvariantCulture);
+    }
+
+    // Signal and noise must have the same reference. Referencing again is harmless; a referenced covariance beside an unreferenced leadfield is not.
+    private static void JudgeReference(StudyReading reading, SensorAssembly sensors, double[]? covariance, List<string> warnings)
+    {
+        if (covariance is null || sensors.Sphere is null || reading.Study.Eeg?.Reference.Kind != ReferenceKind.None)
+        {
+            return;
+        }
+
+        int n = sensors.Electrodes.Count;
+        int zero = Enumerable.Range(0, n).FirstOrDefault(k => covariance[k * n + k] == 0, -1);
+        bool average = n > 1 && covariance.Sum() <= 1e-5 * Enumerable.Range(0, n).Sum(k => covariance[k * n + k]);
+        if (zero >= 0 || average)
+        {
+            warnings.Add($"{EegCovarianceKey} is that of a referenced recording ({(zero >= 0 ? $"{sensors.Electrodes[zero].Name} has no variance" : "its electrodes sum to zero")}) "
+                + "while sensors.eeg.reference is none: state the recording's reference, or signal and noise do not match");
+        }
+    }
+
+    // A derivation that is exactly zero in the recording has neither signal nor noise.
+    private static void CheckDerivations(StudyReading reading, SensorAssembly sensors, double[]? covariance)
+    {
+        if (covariance is null)
+        {
+            return;
+        }
+
+        int n = sensors.Electrodes.Count;
+        foreach ((string name, double[] w) in sensors.Derivations)
+        {
+            double variance = 0, scale = 0;
+            for (int i = 0; i < n; i++)
+            {
+                scale += w[i] * w[i] * covariance[i * n + i];
+                for (int j = 0; j < n; j++)
+                {
+                    variance += w[i] * w[j] * covariance[i * n + j];
+                }
+            }
+
+            if (!(variance > 1e-12 * scale))
+            {
+                throw new InputException([reading.Problem(EegCovarianceKey, $"the derivation {name} has no variance in it; leave the derivation out, or give the covariance of all electrodes")]);
+            }
+        }
     }
 
     private static void Judge(StudyReading reading, List<string> warnings, string key, double value, double low, double high, string unit, string what)

@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
@@ -88,6 +89,9 @@ internal sealed class SensorAssembly
         FieldCaptured = Sphere is { } sphere && Generated is { } array && MegReported
             ? region => ArrayCoverage.OfRegion(region.Name, region.Positions, sphere, array).Share
             : _ => null,
+        CentreSensitivity = (region, deviations) => Sphere is { } sphere && MegReported && (region.Centroid - sphere.Centre).Norm <= CentreShift.Near
+            ? CentreShift.Of(region.Centroid, sphere.Centre, Channels, deviations)
+            : null,
         Scene = Scene(regions),
     };
 

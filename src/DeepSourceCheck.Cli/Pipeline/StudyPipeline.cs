@@ -37,6 +37,7 @@ internal static class StudyPipeline
         StudySetup setup = sensors.Setup(reading.Study, regions.Filled);
         if (purpose == Purpose.Assess)
         {
+            warnings.AddRange(MomentCheck.Judge(reading, setup));
             setup = setup with { Noise = NoiseAssembly.Build(reading, sensors, inputs, warnings) };
         }
 

@@ -38,8 +38,10 @@ public sealed class BlockSignals
     private readonly bool _eegAlike, _megAlike;
     private readonly Vector512<double>[][] _grams = [new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6]];
     private readonly bool[] _gramReady = new bool[5];
-    private readonly Vector512<double>?[] _figures = new Vector512<double>?[5];
-    private readonly (Vector512<double> Power, Vector512<double> Index)?[] _largest = new (Vector512<double>, Vector512<double>)?[2];
+    private readonly Vector512<double>[] _figures = new Vector512<double>[5];
+    private readonly bool[] _figureReady = new bool[5];
+    private readonly (Vector512<double> Power, Vector512<double> Index)[] _largest = new (Vector512<double>, Vector512<double>)[2];
+    private readonly bool[] _largestReady = new bool[2];
     private DirectionMode _mode;
     private LaneDirection _direction;
     private Vector512<double> _audible;
@@ -135,8 +137,8 @@ public sealed class BlockSignals
     {
         _mode = mode;
         _direction = direction;
-        Array.Clear(_figures);
-        Array.Clear(_largest);
+        Array.Clear(_figureReady);
+        Array.Clear(_largestReady);
         if (mode == DirectionMode.Alone && _megReported)
         {
             // Below the rounding of the strongest direction a field is no field: silent is exactly zero.
@@ -146,6 +148,7 @@ public sealed class BlockSignals
             Vector512<double> power = Lanes.ProjectedPower(_megScaled, _space.MegSd.Length, direction);
             _audible = Vector512.GreaterThan(power, limit * limit);
             _figures[1] = power & _audible;
+            _figureReady[1] = true;
         }
         else
         {
@@ -201,17 +204,18 @@ public sealed class BlockSignals
     public Vector512<double> BestChannel(Modality modality, out Vector512<double> index)
     {
         int slot = modality == Modality.Eeg ? 0 : 1;
-        if (_largest[slot] is not { } known)
+        if (!_largestReady[slot])
         {
             double[] rows = slot == 0 ? _eegScaled : _megScaled;
             int count = slot == 0 ? _space.EegChannels.Length : _space.MegSd.Length;
             Vector512<double> at;
             Vector512<double> power = _mode == DirectionMode.Best ? Lanes.LargestNorm(rows, count, out at) : Lanes.Largest(rows, count, _direction, out at);
-            _largest[slot] = known = (slot == 1 ? power & _audible : power, at);
+            _largest[slot] = (slot == 1 ? power & _audible : power, at);
+            _largestReady[slot] = true;
         }
 
-        index = known.Index;
-        return known.Power;
+        index = _largest[slot].Index;
+        return _largest[slot].Power;
     }
 
     /// <summary>Largest |channel|^2 [(V/(A m))^2, (T/(A m))^2 or per metre] and its channel.</summary>
@@ -293,21 +297,52 @@ public sealed class BlockSignals
         return Vector512.Create<double>(power);
     }
 
-    // The largest eigenvalue of the two readings' 2 x 2 Gram matrix, over all channels that may be chosen.
+    // The largest eigenvalue of the two readings' 2 x 2 Gram matrix, over all channels that may be chosen. It never exceeds the trace, so that pairs of weak channels are passed over;
+    // the strongest EEG channels come first.
     private Vector512<double> BestPair(int derivation)
     {
         ReadOnlySpan<Vector512<double>> eeg = Lanes.View(derivation >= 0 ? _derivations : _eegScaled), meg = Lanes.View(_megScaled);
-        int from = Math.Max(derivation, 0), to = derivation >= 0 ? derivation + 1 : _space.EegChannels.Length;
+        int first = Math.Max(derivation, 0), count = derivation >= 0 ? 1 : _space.EegChannels.Length;
+        Span<int> order = stackalloc int[count];
+        Span<double> strength = stackalloc double[count];
+        for (int i = 0; i < count; i++)
+        {
+            int row = first + i;
+            order[i] = row;
+            strength[i] = -Vector512.Sum(eeg[3 * row] * eeg[3 * row] + eeg[3 * row + 1] * eeg[3 * row + 1] + eeg[3 * row + 2] * eeg[3 * row + 2]);
+        }
+
+        strength.Sort(order);
+        bool independent = _space.ChannelCorrelation is null;
+        Vector512<double> strongest = Lanes.LargestNorm(_megScaled, _space.MegSd.Length, out _);
         Vector512<double> best = default, half = Vector512.Create(0.5), four = Vector512.Create(4.0);
-        for (int i = from; i < to; i++)
+        foreach (int i in order)
         {
             Vector512<double> ex = eeg[3 * i], ey = eeg[3 * i + 1], ez = eeg[3 * i + 2], ee = ex * ex + ey * ey + ez * ez;
+            if (independent && Vector512.LessThanAll(ee + strongest, best))
+            {
+                continue;
+            }
+
             for (int k = 0; k < _space.MegSd.Length; k++)
             {
-                double rho = Correlation(derivation, i, k);
-                Vector512<double> r = Vector512.Create(rho), w = Vector512.Create(1 / Math.Sqrt(1 - rho * rho));
-                Vector512<double> x = w * (meg[3 * k] - r * ex), y = w * (meg[3 * k + 1] - r * ey), z = w * (meg[3 * k + 2] - r * ez);
-                Vector512<double> mm = x * x + y * y + z * z, em = ex * x + ey * y + ez * z, difference = ee - mm;
+                Vector512<double> x = meg[3 * k], y = meg[3 * k + 1], z = meg[3 * k + 2];
+                if (!independent)
+                {
+                    double rho = Correlation(derivation, i, k);
+                    Vector512<double> r = Vector512.Create(rho), w = Vector512.Create(1 / Math.Sqrt(1 - rho * rho));
+                    x = w * (x - r * ex);
+                    y = w * (y - r * ey);
+                    z = w * (z - r * ez);
+                }
+
+                Vector512<double> mm = x * x + y * y + z * z;
+                if (Vector512.LessThanAll(ee + mm, best))
+                {
+                    continue;
+                }
+
+                Vector512<double> em = ex * x + ey * y + ez * z, difference = ee - mm;
                 best = Vector512.Max(best, half * (ee + mm + Vector512.Sqrt(difference * difference + four * em * em)));
             }
         }
@@ -322,14 +357,15 @@ public sealed class BlockSignals
             return LargestEigenvalue(Gram(slot, rows, count));
         }
 
-        if (_figures[slot] is { } known)
+        if (_figureReady[slot])
         {
-            return known;
+            return _figures[slot];
         }
 
         Vector512<double> power = _mode == DirectionMode.Alone ? Lanes.ProjectedPower(rows, count, _direction) : Lanes.Quadratic(Gram(slot, rows, count), _direction);
         power = megOnly && slot is 1 or 3 ? power & _audible : power;
         _figures[slot] = power;
+        _figureReady[slot] = true;
         return power;
     }
 

@@ -19,4 +19,39 @@ public static class DirectionSets
 
     /// <summary>The isotropic set of unit vectors: the golden-angle spiral over the whole sphere.</summary>
     public static IReadOnlyList<Vec3> Isotropic { get; } = [.. Enumerable.Range(0, IsotropicPoints).Select(k => GoldenSpiral.Point(k, IsotropicPoints))];
+
+    /// <summary>
+    /// Largest number of (dipole, direction) values that percentiles of one measure are made of. Beyond it each block of dipoles takes every n-th direction of a set, the start moving on
+    /// from block to block, so that all directions are used alike and the time no longer grows with the set.
+    /// </summary>
+    /// <remarks>Four million values place a percentile to 0.02 % in rank, some 0.003 dB for a spread of 20 dB.</remarks>
+    public const long MostValues = 1 << 22;
+
+    /// <summary>n: 1 takes the whole set; else a power of two, at most the set's size.</summary>
+    /// <param name="dipoles">Dipoles of the region.</param>
+    /// <param name="directions">Directions of the set, a power of two.</param>
+    public static int Stride(long dipoles, int directions)
+    {
+        int stride = 1;
+        while (stride < directions && dipoles * (directions / stride) > MostValues)
+        {
+            stride *= 2;
+        }
+
+        return stride;
+    }
+
+    /// <summary>The first direction of a block: bit-reversed counting, which visits the starts evenly.</summary>
+    /// <param name="block">Index of the block of dipoles in its region.</param>
+    /// <param name="stride">n, a power of two.</param>
+    public static int Start(long block, int stride)
+    {
+        int start = 0;
+        for (int half = stride / 2, bits = (int)(block % stride); half > 0; half /= 2, bits /= 2)
+        {
+            start += (bits & 1) * half;
+        }
+
+        return start;
+    }
 }

@@ -13,13 +13,12 @@ public interface IMeasure
     /// <summary>Name in results.</summary>
     string Name { get; }
 
-    /// <summary>Whether the level of a locked artefact, stated for one channel, means something to this measure.</summary>
-    bool KnowsArtefact { get; }
-
     /// <summary>Power per squared moment [1/(A m)^2] of eight dipoles in the direction that was asked last.</summary>
     /// <param name="signals">Channels of the block.</param>
-    /// <param name="inverseVariance">1/s^2 of what was read [1/V^2, 1/T^2 or 1/(T/m)^2]; NaN where not defined. By it a locked artefact is scaled.</param>
-    Vector512<double> Power(BlockSignals signals, out ArtefactScale inverseVariance);
+    Vector512<double> Power(BlockSignals signals);
+
+    /// <summary>1/s^2 of what was read in that direction [1/V^2, 1/T^2 or 1/(T/m)^2]; NaN where not defined. By it a locked artefact is scaled.</summary>
+    ArtefactScale InverseVariance(BlockSignals signals);
 }
 
 /// <summary>1/s^2 of the EEG and the MEG reading of eight dipoles; zero for a modality that is not read.</summary>

@@ -1,3 +1,4 @@
+using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
 using System.Runtime.Intrinsics;
 
@@ -76,26 +77,58 @@ public static class Lanes
     }
 
     /// <summary>Largest (row . u)^2 and the row that has it.</summary>
+    /// <remarks>Four rows at a time, each with a running maximum of its own: one maximum alone would wait for every comparison in turn.</remarks>
     /// <param name="rows">[row][axis][lane].</param>
     /// <param name="count">Number of rows, at least 1.</param>
     /// <param name="u">Direction of each lane.</param>
     /// <param name="index">Row of the largest value, as a double; the first among equals.</param>
     public static Vector512<double> Largest(ReadOnlySpan<double> rows, int count, in LaneDirection u, out Vector512<double> index)
     {
-        ReadOnlySpan<Vector512<double>> x = View(rows);
-        Vector512<double> best = Vector512.Create(-1.0), at = default, number = default, one = Vector512.Create(1.0);
-        for (int k = 0; k < count; k++)
+        ref Vector512<double> x = ref MemoryMarshal.GetReference(View(rows));
+        Vector512<double> ux = u.X, uy = u.Y, uz = u.Z, none = Vector512.Create(-1.0), four = Vector512.Create(4.0);
+        Vector512<double> best0 = none, best1 = none, best2 = none, best3 = none, at0 = default, at1 = default, at2 = default, at3 = default;
+        Vector512<double> number = default;                     // rows k, k + 1, k + 2, k + 3 share it: their offsets are added at the end
+        int k = 0;
+        for (; k + 3 < count; k += 4)
         {
-            Vector512<double> a = x[3 * k] * u.X + x[3 * k + 1] * u.Y + x[3 * k + 2] * u.Z;
-            a *= a;
-            Vector512<double> larger = Vector512.GreaterThan(a, best);
-            best = Vector512.ConditionalSelect(larger, a, best);
-            at = Vector512.ConditionalSelect(larger, number, at);
-            number += one;
+            ref Vector512<double> row = ref Unsafe.Add(ref x, 3 * k);
+            Vector512<double> a = Square(ref row, ux, uy, uz), b = Square(ref Unsafe.Add(ref row, 3), ux, uy, uz);
+            Vector512<double> c = Square(ref Unsafe.Add(ref row, 6), ux, uy, uz), d = Square(ref Unsafe.Add(ref row, 9), ux, uy, uz);
+            at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), number, at0);
+            at1 = Vector512.ConditionalSelect(Vector512.GreaterThan(b, best1), number, at1);
+            at2 = Vector512.ConditionalSelect(Vector512.GreaterThan(c, best2), number, at2);
+            at3 = Vector512.ConditionalSelect(Vector512.GreaterThan(d, best3), number, at3);
+            best0 = Vector512.Max(best0, a);
+            best1 = Vector512.Max(best1, b);
+            best2 = Vector512.Max(best2, c);
+            best3 = Vector512.Max(best3, d);
+            number += four;
         }
 
-        index = at;
-        return best;
+        for (; k < count; k++)
+        {
+            Vector512<double> a = Square(ref Unsafe.Add(ref x, 3 * k), ux, uy, uz);
+            at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), Vector512.Create((double)k), at0);
+            best0 = Vector512.Max(best0, a);
+        }
+
+        (best0, at0) = Larger(best0, at0, best1, at1 + Vector512.Create(1.0));
+        (best2, at2) = Larger(best2, at2 + Vector512.Create(2.0), best3, at3 + Vector512.Create(3.0));
+        (best0, index) = Larger(best0, at0, best2, at2);
+        return best0;
+    }
+
+    private static Vector512<double> Square(ref Vector512<double> row, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz)
+    {
+        Vector512<double> a = row * ux + Unsafe.Add(ref row, 1) * uy + Unsafe.Add(ref row, 2) * uz;
+        return a * a;
+    }
+
+    private static (Vector512<double> Value, Vector512<double> Index) Larger(
+        Vector512<double> a, Vector512<double> atA, Vector512<double> b, Vector512<double> atB)
+    {
+        Vector512<double> second = Vector512.GreaterThan(b, a) | (Vector512.Equals(a, b) & Vector512.LessThan(atB, atA));
+        return (Vector512.ConditionalSelect(second, b, a), Vector512.ConditionalSelect(second, atB, atA));
     }
 
     /// <summary>Largest |row|^2 and the row that has it: the best channel over all directions.</summary>

@@ -16,14 +16,11 @@ public sealed class ChannelMeanMeasure(SignalSpace space, Modality modality) : I
     public string Name => Names.ChannelMean;
 
     /// <inheritdoc/>
-    public bool KnowsArtefact => true;
+    public Vector512<double> Power(BlockSignals signals) => signals.ChannelMean(modality);
 
     /// <inheritdoc/>
-    public Vector512<double> Power(BlockSignals signals, out ArtefactScale inverseVariance)
-    {
-        inverseVariance = modality == Modality.Eeg ? new(Vector512.Create(_meanInverse), default) : new(default, Vector512.Create(_meanInverse));
-        return signals.ChannelMean(modality);
-    }
+    public ArtefactScale InverseVariance(BlockSignals signals) =>
+        modality == Modality.Eeg ? new(Vector512.Create(_meanInverse), default) : new(default, Vector512.Create(_meanInverse));
 }
 
 /// <summary>Largest power ratio over channels: what is read off the best trace.</summary>
@@ -38,15 +35,14 @@ public sealed class BestChannelMeasure(SignalSpace space, Modality modality) : I
     public string Name => Names.BestChannel;
 
     /// <inheritdoc/>
-    public bool KnowsArtefact => true;
+    public Vector512<double> Power(BlockSignals signals) => signals.BestChannel(modality, out _);
 
     /// <inheritdoc/>
-    public Vector512<double> Power(BlockSignals signals, out ArtefactScale inverseVariance)
+    public ArtefactScale InverseVariance(BlockSignals signals)
     {
-        Vector512<double> power = signals.BestChannel(modality, out Vector512<double> index);
+        signals.BestChannel(modality, out Vector512<double> index);
         Vector512<double> chosen = Pick(_inverse, index);
-        inverseVariance = modality == Modality.Eeg ? new(chosen, default) : new(default, chosen);
-        return power;
+        return modality == Modality.Eeg ? new(chosen, default) : new(default, chosen);
     }
 
     internal static Vector512<double> Pick(double[] table, Vector512<double> index)
@@ -76,14 +72,10 @@ public sealed class DerivationMeasure(SignalSpace space, int index) : IMeasure
     public string Name => space.Derivations!.Names[index];
 
     /// <inheritdoc/>
-    public bool KnowsArtefact => true;
+    public Vector512<double> Power(BlockSignals signals) => signals.Derivation(index);
 
     /// <inheritdoc/>
-    public Vector512<double> Power(BlockSignals signals, out ArtefactScale inverseVariance)
-    {
-        inverseVariance = new(_inverse, default);
-        return signals.Derivation(index);
-    }
+    public ArtefactScale InverseVariance(BlockSignals signals) => new(_inverse, default);
 }
 
 /// <summary>Matched filter b' C^-1 b: the bound that no linear combination of channels exceeds. Does not change with the reference.</summary>
@@ -96,14 +88,13 @@ public sealed class MatchedFilterMeasure(Modality modality) : IMeasure
     public string Name => Names.MatchedFilter;
 
     /// <inheritdoc/>
-    public bool KnowsArtefact => false;
+    public Vector512<double> Power(BlockSignals signals) => signals.MatchedFilter(modality);
 
     /// <inheritdoc/>
-    public Vector512<double> Power(BlockSignals signals, out ArtefactScale inverseVariance)
+    public ArtefactScale InverseVariance(BlockSignals signals)
     {
         Vector512<double> unknown = Vector512.Create(double.NaN);
-        inverseVariance = modality switch { Modality.Eeg => new(unknown, default), Modality.Meg => new(default, unknown), _ => new(unknown, unknown) };
-        return signals.MatchedFilter(modality);
+        return modality switch { Modality.Eeg => new(unknown, default), Modality.Meg => new(default, unknown), _ => new(unknown, unknown) };
     }
 }
 
@@ -123,12 +114,11 @@ public sealed class PairMeasure(SignalSpace space, int derivation) : IMeasure
     public string Name => derivation >= 0 ? space.Derivations!.Names[derivation] : Names.BestChannel;
 
     /// <inheritdoc/>
-    public bool KnowsArtefact => true;
+    public Vector512<double> Power(BlockSignals signals) => signals.Pair(derivation);
 
     /// <inheritdoc/>
-    public Vector512<double> Power(BlockSignals signals, out ArtefactScale inverseVariance)
+    public ArtefactScale InverseVariance(BlockSignals signals)
     {
-        Vector512<double> power = signals.Pair(derivation);
         Vector512<double> eegIndex = Vector512.Create((double)Math.Max(derivation, 0));
         if (derivation < 0)
         {
@@ -136,7 +126,6 @@ public sealed class PairMeasure(SignalSpace space, int derivation) : IMeasure
         }
 
         signals.BestChannel(Modality.Meg, out Vector512<double> megIndex);
-        inverseVariance = new(BestChannelMeasure.Pick(_eeg, eegIndex), BestChannelMeasure.Pick(_meg, megIndex));
-        return power;
+        return new(BestChannelMeasure.Pick(_eeg, eegIndex), BestChannelMeasure.Pick(_meg, megIndex));
     }
 }

@@ -6,6 +6,7 @@ using DeepSourceCheck.Core.Noise;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Core.Planning;
 
@@ -45,10 +46,11 @@ public static class Assessor
             foreach ((FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts) in Sources(setup, response, cancellation))
             {
                 long before = done;
-                RegionTally tally = new RegionRun(plan, setup.Head, source)
+                StudySetup own = source is SummedSource ? setup with { Head = new SummedHead(setup.Head) } : setup;
+                RegionTally tally = new RegionRun(plan, own.Head, source)
                     .Run(region, Adapt(sink, plan, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
                 done += region.Positions.Length;
-                regions.Add(Result(setup, plan, region, source, parts, tally, cancellation));
+                regions.Add(Result(own, plan, region, source, parts, tally, cancellation));
             }
 
             results.Add(new ResponseResult(response, regions));
@@ -112,7 +114,7 @@ public static class Assessor
             FieldCaptured = captured.Min(),
             Results = rows,
             Verdicts = verdicts,
-            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split)],
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts)],
         };
     }
 
@@ -131,7 +133,7 @@ public static class Assessor
         if (split is { UndefinedDipoles: > 0 })
         {
             yield return string.Create(CultureInfo.InvariantCulture,
-                $"{name}: {split.UndefinedDipoles} of its dipoles lie at the centre of the sphere, where directions are undefined and MEG sees nothing");
+                $"{name}: at {split.UndefinedDipoles} of its dipoles MEG sees nothing and directions are undefined: they lie at the centre of a spherical head, or summed fields cancel");
         }
 
         if (split is { DegenerateDipoles: > 0 })
@@ -145,6 +147,24 @@ public static class Assessor
             yield return string.Create(CultureInfo.InvariantCulture,
                 $"{name}: the direction that the array sees least stands {angle:0} degrees from the radius; read quasi-radial as least visible (partial coverage or a source near the centre)");
         }
+    }
+
+    private static IEnumerable<string> CentreWarnings(StudySetup setup, EvaluationPlan plan, IReadOnlyList<FilledRegion> parts)
+    {
+        foreach (FilledRegion region in parts.Where(_ => plan.MegReported))
+        {
+            if (setup.CentreSensitivity(region, plan.Space.MegSd) is not { } found)
+            {
+                continue;
+            }
+
+            string ranges = found.Ranges.Count == 0 ? "changes it from nothing to something" : string.Join(", ", found.Ranges.Select(r => string.Create(
+                CultureInfo.InvariantCulture, $"of {Si.ToMm(r.Shift):0} mm changes its MEG power by {Change(r.LowestDb)} to {Change(r.HighestDb)}")));
+            yield return string.Create(CultureInfo.InvariantCulture,
+                $"{region.Name}: {Si.ToMm(found.Distance):0} mm from the sphere's centre, where MEG vanishes: a shift of the centre {ranges} (best channel, strongest tangential direction)");
+        }
+
+        static string Change(double db) => db < -60 ? "down to nothing" : string.Create(CultureInfo.InvariantCulture, $"{db:+0.0;-0.0;0.0} dB");
     }
 
     private sealed class ColumnAdapter(IDipoleSink inner, int[] own) : IDipoleSink

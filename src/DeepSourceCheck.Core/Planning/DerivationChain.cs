@@ -66,7 +66,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise)
             double trials = _lines[^1].Value;
             Input("r", "stimuli per second", protocol.Rate, "1/s", "protocol.rate_per_s");
             Input("f", "share of trials that are rejected", protocol.RejectedFraction, "", "protocol.rejected_fraction");
-            Add("presented", "presented trials", trials / (1 - protocol.RejectedFraction), "", "N / (1 - f)", "definition", Grade.Derived);
+            Add("M", "presented trials", trials / (1 - protocol.RejectedFraction), "", "N / (1 - f)", "definition", Grade.Derived);
             Add("T", "recording time", SessionPlan.Minutes(protocol, trials), "min", "N / (60 r (1 - f))", "definition", Grade.Derived);
         }
 
@@ -75,6 +75,11 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise)
 
     private double Correlation(MedianWitness witness, PairMeasure pair)
     {
+        if (witness.MegRow == Vec3.Zero)
+        {
+            return 0;                                           // a silent reading adds nothing, as in the run
+        }
+
         double[]? table = pair.DerivationIndex >= 0 ? plan.Space.DerivationCorrelation : plan.Space.ChannelCorrelation;
         int row = pair.DerivationIndex >= 0 ? pair.DerivationIndex : witness.EegChannel;
         return table is null ? 0 : table[row * plan.Space.MegSd.Length + witness.MegChannel];

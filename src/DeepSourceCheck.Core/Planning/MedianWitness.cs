@@ -19,7 +19,7 @@ namespace DeepSourceCheck.Core.Planning;
 /// <param name="EegChannel">EEG channel that was read, counted among the used ones; -1 for none or a derivation.</param>
 /// <param name="EegRow">Its leadfield over its noise [1/(A m)], one value an axis.</param>
 /// <param name="MegChannel">MEG channel that was read; -1 for none.</param>
-/// <param name="MegRow">Its leadfield over its noise [1/(A m)].</param>
+/// <param name="MegRow">Its leadfield over its noise [1/(A m)]; zero where the direction is silent.</param>
 internal sealed record MedianWitness(
     string Point, Vec3 Position, Vec3 Direction, double Power, double Artefact, int EegChannel, Vec3 EegRow, int MegChannel, Vec3 MegRow)
 {
@@ -55,11 +55,14 @@ internal sealed record MedianWitness(
             block.Load(region.Positions.AsSpan(from, n), region.SourceIndices.Length == 0 ? default : region.SourceIndices.AsSpan(from, n));
             source.Fill(block);
             signals.Load(block);
-            foreach ((DirectionMode mode, LaneDirection u) in reader.DirectionsOf(direction, signals))
+            (DirectionMode mode, LaneDirection[] directions) = reader.DirectionsOf(direction, signals);
+            int stride = tally.Strides[plan.Directions.ToList().IndexOf(direction)];
+            for (int k = DirectionSets.Start(from / LeadfieldBlock.Lanes, stride); k < directions.Length; k += stride)
             {
+                LaneDirection u = directions[k];
                 signals.Ask(mode, u);
-                Vector512<double> power = measure.Power(signals, out ArtefactScale scale) * Vector512.Create(plan.Gain);
-                Vector512<double> artefact = reader.ArtefactPower(scale);
+                Vector512<double> power = measure.Power(signals) * Vector512.Create(plan.Gain);
+                Vector512<double> artefact = reader.ArtefactPower(measure.InverseVariance(signals));
                 for (int lane = 0; lane < n; lane++)
                 {
                     double value = cell.Effective is null ? power[lane] : plan.Rules[rule].EffectivePower(power[lane], artefact[lane]);
@@ -95,9 +98,9 @@ internal sealed record MedianWitness(
 
         if (readsMeg)
         {
-            signals.BestChannel(Modality.Meg, out Vector512<double> index);
+            Vector512<double> audible = signals.BestChannel(Modality.Meg, out Vector512<double> index);
             meg = (int)index[lane];
-            megRow = signals.ReadingRow(Modality.Meg, -1, meg, lane);
+            megRow = audible[lane] > 0 ? signals.ReadingRow(Modality.Meg, -1, meg, lane) : default;     // silent: zero, not its rounding
         }
 
         Vec3 direction = mode != DirectionMode.Best ? new(u.X[lane], u.Y[lane], u.Z[lane])

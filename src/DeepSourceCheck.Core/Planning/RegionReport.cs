@@ -11,10 +11,12 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
     /// <summary>Amplitude of the least against the most sensitive direction in realistic heads: published median over cortex (Ahlfors et al. 2010, Brain Topogr 23:227).</summary>
     public const double PublishedLeak = 0.06;
 
-    private const string SilentReason =
-        "silent: in a spherical head MEG does not see this direction (below the rounding of the strongest); realistic heads leak, see at_leak";
+    private const string SilentMegReason =
+        "silent: MEG does not see this direction (below the rounding of the strongest; so it is in a spherical head); realistic heads leak: at_leak holds the figures at the published leak";
 
-    private const string UndefinedReason = "the directions are undefined here: at the centre of a spherical head every MEG field vanishes";
+    private const string SilentReason = "silent: what is read is exactly zero for this direction";
+
+    private const string UndefinedReason = "the directions are undefined here: no MEG channel sees anything (the centre of a spherical head, or summed fields that cancel)";
 
     private const string ArtefactReason = "a locked artefact is stated for one channel; what a filter over all channels makes of it is not known";
 
@@ -59,10 +61,11 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
         double? peakPerMoment = peak?.Value / plan.Response.Moment;
         List<TargetResult> targets = [.. plan.Rules.Select((rule, r) => Target(rule, r, cell, measure, peakPerMoment))];
         string? reason = cell.Power.Count == 0 ? UndefinedReason
-            : silent ? SilentReason
-            : snr.P05 is null ? "some dipoles or directions are silent: percentiles that fall on them are null" : null;
+            : silent ? Silent(measure)
+            : snr.P05 is null ? "some dipoles or directions are silent: percentiles that fall on them are null"
+            : targets.FirstOrDefault(t => t.Trials.P50 is null)?.Reason;
         LeakResult? leak = null;
-        if (silent && measure.Modality == Modality.Meg && plan.Directions.Contains(DirectionName.StrongestTangential))
+        if (cell.Power.Count > 0 && snr.P50 is null && measure.Modality == Modality.Meg && plan.Directions.Contains(DirectionName.StrongestTangential))
         {
             leak = Leak(tally.Cell(DirectionName.StrongestTangential, measure), measure);
         }
@@ -91,13 +94,15 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
         if (trials.P50 is null || trials.P95 is null)
         {
             reason = cell.Power.Count == 0 ? UndefinedReason
-                : cell.Power.NearestRankFromTop(0.95) == 0 ? SilentReason
+                : cell.Power.NearestRankFromTop(0.95) == 0 ? Silent(measure)
                 : effective.Count == 0 ? ArtefactReason
                 : plan.HasArtefact(measure.Modality) ? BuriedReason : BeyondReason;
         }
 
         return new TargetResult(rule.Name, trials, minutes, smallest, smallest * peakPerMoment, reason);
     }
+
+    private static string Silent(IMeasure measure) => measure.Modality == Modality.Meg ? SilentMegReason : SilentReason;
 
     private LeakResult Leak(MeasureTally strongest, IMeasure measure)
     {

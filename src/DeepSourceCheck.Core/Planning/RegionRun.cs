@@ -91,7 +91,7 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
                 _block.Load(region.Positions.AsSpan(start + done, n), sources);
                 source.Fill(_block);
                 _signals.Load(_block);
-                _reader.Read(_signals, n, Tally, snr, done);
+                _reader.Read(_signals, n, (start + done) / LeadfieldBlock.Lanes, Tally, snr, done);
                 Summarise(n);
                 for (int lane = 0; keep && lane < n; lane++)
                 {

@@ -1,9 +1,4 @@
-using System.Runtime.Intrinsics;
-
 using DeepSourceCheck.Core.Detection;
-using DeepSourceCheck.Core.Directions;
-using DeepSourceCheck.Core.Leadfields;
-using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Planning;
@@ -20,16 +15,18 @@ internal sealed class RegionTally
         _plan = plan;
         Cells = new MeasureTally[plan.Directions.Count][];
         Peaks = new PeakTally[plan.Directions.Count][];
+        Strides = new int[plan.Directions.Count];
         for (int d = 0; d < Cells.Length; d++)
         {
-            (long announced, int multiplicity) = plan.Directions[d] switch
-            {
-                DirectionName.Tangential => (dipoles * DirectionSets.HalfCircle.Count, 2),
-                DirectionName.Isotropic => (dipoles * DirectionSets.IsotropicPoints, 1),
-                _ => (dipoles, 1),
-            };
+            int size = SetSize(plan.Directions[d]), multiplicity = plan.Directions[d] == DirectionName.Tangential ? 2 : 1;
+            Strides[d] = DirectionSets.Stride(dipoles, size);
+            long announced = dipoles * (size / Strides[d]);
             Cells[d] = [.. plan.Measures.Select(m => new MeasureTally(plan, m, announced, multiplicity))];
-            Peaks[d] = [new PeakTally(announced, multiplicity), new PeakTally(announced, multiplicity)];
+            Peaks[d] =
+            [
+                new PeakTally(announced, multiplicity, plan.Space.EegChannels.Length),
+                new PeakTally(announced, multiplicity, plan.MegReported ? plan.Space.MegSd.Length : 0),
+            ];
         }
 
         WeakestOverStrongest = new QuantileStore(dipoles);
@@ -41,6 +38,9 @@ internal sealed class RegionTally
 
     /// <summary>[direction][EEG, MEG]: largest channel.</summary>
     public PeakTally[][] Peaks { get; }
+
+    /// <summary>Every n-th direction of each set enters the percentiles.</summary>
+    public int[] Strides { get; }
 
     /// <summary>s3/s1.</summary>
     public QuantileStore WeakestOverStrongest { get; }
@@ -74,6 +74,13 @@ internal sealed class RegionTally
         Degenerate += other.Degenerate;
     }
 
+    private static int SetSize(DirectionName direction) => direction switch
+    {
+        DirectionName.Tangential => DirectionSets.HalfCircle.Count,
+        DirectionName.Isotropic => DirectionSets.IsotropicPoints,
+        _ => 1,
+    };
+
     /// <summary>Index of a direction and measure.</summary>
     public MeasureTally Cell(DirectionName direction, IMeasure measure) =>
         Cells[_plan.Directions.ToList().IndexOf(direction)][_plan.Measures.ToList().IndexOf(measure)];
@@ -106,22 +113,22 @@ internal sealed class MeasureTally
     /// <summary>1 / squared factor on the moment that the session reaches; null without artefact.</summary>
     public QuantileStore[]? Scales { get; }
 
-    public void Add(double power, double artefact)
+    /// <summary>Adds powers and, where an artefact bears on the measure, its powers; NaN powers are left out.</summary>
+    public void Add(ReadOnlySpan<double> powers, ReadOnlySpan<double> artefacts)
     {
-        Power.Add(power);
-        if (!_artefact || double.IsNaN(power))
-        {
-            return;
-        }
-
-        for (int r = 0; r < Effective!.Length; r++)
+        Power.Add(powers);
+        for (int r = 0; _artefact && r < Effective!.Length; r++)
         {
             ITargetRule rule = _plan.Rules[r];
-            Effective[r].Add(double.IsNaN(artefact) ? double.NaN : rule.EffectivePower(power, artefact));
-            if (_plan.SessionTrials is { } session && session > 0 && !double.IsNaN(artefact))
+            for (int k = 0; k < powers.Length; k++)
             {
-                double scale = rule.SmallestScale(power, artefact, session);
-                Scales![r].Add(1 / (scale * scale));
+                double power = powers[k], artefact = artefacts[k];
+                Effective[r].Add(double.IsNaN(artefact) ? double.NaN : rule.EffectivePower(power, artefact));
+                if (_plan.SessionTrials is { } session && session > 0 && !double.IsNaN(artefact))
+                {
+                    double scale = rule.SmallestScale(power, artefact, session);
+                    Scales![r].Add(1 / (scale * scale));
+                }
             }
         }
     }
@@ -138,30 +145,25 @@ internal sealed class MeasureTally
 }
 
 /// <summary>Largest channel of one direction.</summary>
-internal sealed class PeakTally(long announced, int multiplicity)
+internal sealed class PeakTally(long announced, int multiplicity, int channels)
 {
-    private readonly SortedDictionary<int, long> _channels = [];
+    private readonly long[] _channels = new long[channels];
 
     /// <summary>Squared amplitude per squared moment.</summary>
     public QuantileStore Power { get; } = new(announced, multiplicity);
 
     /// <summary>The channel that is most often the largest, the first among equals; -1 where none was.</summary>
-    public int MostOften => _channels.Count == 0 ? -1 : _channels.MaxBy(p => (p.Value, -p.Key)).Key;
+    public int MostOften => _channels.Length > 0 && _channels.Max() is > 0 and { } most ? Array.IndexOf(_channels, most) : -1;
 
-    public void Add(Vector512<double> power, Vector512<double> index, int lanes, ReadOnlySpan<bool> skip)
+    /// <summary>Adds squared amplitudes and the channels that had them; NaN is left out.</summary>
+    public void Add(ReadOnlySpan<double> powers, ReadOnlySpan<double> indices)
     {
-        for (int lane = 0; lane < lanes; lane++)
+        Power.Add(powers);
+        for (int k = 0; k < powers.Length; k++)
         {
-            if (skip[lane])
+            if (powers[k] > 0)
             {
-                continue;
-            }
-
-            Power.Add(power[lane]);
-            if (power[lane] > 0)
-            {
-                int k = (int)index[lane];
-                _channels[k] = _channels.GetValueOrDefault(k) + 1;
+                _channels[(int)indices[k]]++;
             }
         }
     }
@@ -169,137 +171,9 @@ internal sealed class PeakTally(long announced, int multiplicity)
     public void Merge(PeakTally other)
     {
         Power.Merge(other.Power);
-        foreach ((int k, long n) in other._channels)
+        for (int k = 0; k < _channels.Length; k++)
         {
-            _channels[k] = _channels.GetValueOrDefault(k) + n;
+            _channels[k] += other._channels[k];
         }
-    }
-}
-
-/// <summary>Reads all directions and measures of one block into a tally and, where asked, into a chunk of dipole results.</summary>
-internal sealed class BlockReader
-{
-    private readonly EvaluationPlan _plan;
-    private readonly double[] _artefactLevels;
-    private readonly int[] _column;
-
-    public BlockReader(EvaluationPlan plan)
-    {
-        _plan = plan;
-        _artefactLevels = [plan.Response.LockedArtefactEeg, plan.Response.LockedArtefactMeg];
-        IReadOnlyList<DipoleColumn> columns = plan.Columns;
-        _column = new int[plan.Directions.Count * plan.Measures.Count];
-        for (int d = 0; d < plan.Directions.Count; d++)
-        {
-            for (int m = 0; m < plan.Measures.Count; m++)
-            {
-                IMeasure measure = plan.Measures[m];
-                _column[d * plan.Measures.Count + m] = columns.ToList().IndexOf(new DipoleColumn(measure.Modality, Names.Of(plan.Directions[d]), measure.Name));
-            }
-        }
-    }
-
-    /// <summary>Reads the block that <paramref name="signals"/> holds.</summary>
-    /// <param name="signals">Channels of the block.</param>
-    /// <param name="lanes">Dipoles in the block.</param>
-    /// <param name="tally">Receives every figure.</param>
-    /// <param name="snrDb">[column][dipole]: mean over the direction's set [dB], or null.</param>
-    /// <param name="offset">Index of the block's first dipole in <paramref name="snrDb"/>.</param>
-    public void Read(BlockSignals signals, int lanes, RegionTally tally, double[][]? snrDb, int offset)
-    {
-        Span<bool> undefined = stackalloc bool[LeadfieldBlock.Lanes];
-        for (int lane = 0; lane < lanes; lane++)
-        {
-            undefined[lane] = signals.Split.States[lane] == SplitState.Undefined;
-        }
-
-        Span<bool> skip = stackalloc bool[LeadfieldBlock.Lanes];
-        for (int d = 0; d < _plan.Directions.Count; d++)
-        {
-            DirectionName name = _plan.Directions[d];
-            skip.Clear();
-            if (name is DirectionName.QuasiRadial or DirectionName.Tangential or DirectionName.StrongestTangential)
-            {
-                undefined.CopyTo(skip);
-            }
-
-            var sums = new Vector512<double>[_plan.Measures.Count];
-            int directions = 0;
-            foreach ((DirectionMode mode, LaneDirection u) in DirectionsOf(name, signals))
-            {
-                signals.Ask(mode, u);
-                directions++;
-                for (int m = 0; m < _plan.Measures.Count; m++)
-                {
-                    Vector512<double> power = _plan.Measures[m].Power(signals, out ArtefactScale scale) * Vector512.Create(_plan.Gain);
-                    sums[m] += power;
-                    Vector512<double> artefact = ArtefactPower(scale);
-                    MeasureTally cell = tally.Cells[d][m];
-                    for (int lane = 0; lane < lanes; lane++)
-                    {
-                        if (!skip[lane])
-                        {
-                            cell.Add(power[lane], artefact[lane]);
-                        }
-                    }
-                }
-
-                if (_plan.EegMeasure is not null)
-                {
-                    tally.Peaks[d][0].Add(signals.PeakPower(Modality.Eeg, out Vector512<double> index), index, lanes, skip);
-                }
-
-                if (_plan.MegReported)
-                {
-                    tally.Peaks[d][1].Add(signals.PeakPower(Modality.Meg, out Vector512<double> index), index, lanes, skip);
-                }
-            }
-
-            for (int m = 0; snrDb is not null && m < sums.Length; m++)
-            {
-                double[] column = snrDb[_column[d * sums.Length + m]];
-                for (int lane = 0; lane < lanes; lane++)
-                {
-                    column[offset + lane] = skip[lane] ? double.NaN : 10 * Math.Log10(sums[m][lane] / directions);
-                }
-            }
-        }
-    }
-
-    /// <summary>The directions that stand behind a name, and how they are asked.</summary>
-    public IEnumerable<(DirectionMode Mode, LaneDirection Direction)> DirectionsOf(DirectionName name, BlockSignals signals) => name switch
-    {
-        DirectionName.QuasiRadial => [(DirectionMode.Alone, signals.Axis(2))],
-        DirectionName.StrongestTangential => [(DirectionMode.Alone, signals.Axis(0))],
-        DirectionName.Tangential => Tangential(signals),
-        DirectionName.Isotropic => Isotropic,
-        DirectionName.Best => [(DirectionMode.Best, default)],
-        _ => [(DirectionMode.Alone, LaneDirection.Same(_plan.GivenVector))],
-    };
-
-    private static readonly (DirectionMode Mode, LaneDirection Direction)[] Isotropic =
-        [.. DirectionSets.Isotropic.Select(u => (DirectionMode.OfSet, LaneDirection.Same(u)))];
-
-    private static IEnumerable<(DirectionMode Mode, LaneDirection Direction)> Tangential(BlockSignals signals)
-    {
-        LaneDirection v1 = signals.Axis(0), v2 = signals.Axis(1);
-        foreach ((double cos, double sin) in DirectionSets.HalfCircle)
-        {
-            yield return (DirectionMode.OfSet, LaneDirection.Turned(v1, v2, cos, sin));
-        }
-    }
-
-    /// <summary>Artefact power over the noise power of the convention.</summary>
-    public Vector512<double> ArtefactPower(ArtefactScale scale)
-    {
-        double e = _artefactLevels[0], m = _artefactLevels[1];
-        if (e == 0 && m == 0)
-        {
-            return default;
-        }
-
-        Vector512<double> eeg = e == 0 ? default : Vector512.Create(e * e / _plan.NoiseFactor) * scale.Eeg;
-        Vector512<double> meg = m == 0 ? default : Vector512.Create(m * m / _plan.NoiseFactor) * scale.Meg;
-        return eeg + meg;
     }
 }

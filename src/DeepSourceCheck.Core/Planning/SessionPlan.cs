@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Planning;
@@ -16,7 +17,7 @@ public static class SessionPlan
 
         double trials = seconds * protocol.Rate * (1 - protocol.RejectedFraction) / ((double)protocol.Conditions * protocol.Replications);
         double nearest = Math.Round(trials);
-        return (long)(Math.Abs(trials - nearest) <= 1e-12 * trials ? nearest : Math.Floor(trials));
+        return (long)(Math.Abs(trials - nearest) <= TrialCount.IntegerTolerance * trials ? nearest : Math.Floor(trials));
     }
 
     /// <summary>Recording minutes for accepted trials: N / (60 rate (1 - rejected)).</summary>

@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
@@ -48,6 +49,9 @@ public sealed record StudySetup
 
     /// <summary>Share of the largest field around the head that a generated array captures of a region; null where not known.</summary>
     public Func<FilledRegion, double?> FieldCaptured { get; init; } = _ => null;
+
+    /// <summary>What becomes of a region's MEG when the sphere's centre moves, for the noise standard deviation of each channel; null where that is not asked.</summary>
+    public Func<FilledRegion, IReadOnlyList<double>, CentreSensitivity?> CentreSensitivity { get; init; } = (_, _) => null;
 
     /// <summary>Geometry for figures.</summary>
     public Scene Scene { get; init; } = new();

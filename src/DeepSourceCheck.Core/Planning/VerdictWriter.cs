@@ -100,10 +100,12 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             return $"{reading}: {trials}.{why}";
         }
 
-        string session = plan.Protocol!.Session is { } seconds && plan.SessionTrials is { } afforded
-            ? string.Create(CultureInfo.InvariantCulture, $": {(fits == true ? "fits" : "does not fit")} the session of {seconds / 60:0.#} min ({afforded:N0} trials)")
+        string averages = Rounded.Averages(plan.Protocol!.Conditions, plan.Protocol.Replications);
+        string each = averages.Length > 0 ? $" for {averages}" : "";
+        string session = plan.Protocol.Session is { } seconds && plan.SessionTrials is { } afforded
+            ? string.Create(CultureInfo.InvariantCulture, $": {(fits == true ? "fits" : "does not fit")} the session of {seconds / 60:0.######} min ({afforded:N0} trials{(each.Length > 0 ? " each" : "")})")
             : "";
-        return $"{reading}: {trials}, {Minutes(minutes)} min{session}.{why}";
+        return $"{reading}: {trials}, {Rounded.Minutes(minutes)} min{each}{session}.{why}";
     }
 
     private static string Reading(MeasureResult row) => row.Modality == Modality.Both && row.Measure != Names.MatchedFilter
@@ -113,15 +115,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     {
         double ratio = 1 / Math.Sqrt(power);
         return ratio >= 1
-            ? string.Create(CultureInfo.InvariantCulture, $"the noise is {Two(ratio)} times the response")
-            : string.Create(CultureInfo.InvariantCulture, $"the response is {Two(1 / ratio)} times the noise");
-    }
-
-    private static string Minutes(double minutes) => Two(minutes);
-
-    private static string Two(double value)
-    {
-        int digits = value > 0 ? Math.Clamp(1 - (int)Math.Floor(Math.Log10(value)), 0, 4) : 0;
-        return Math.Round(value, digits).ToString(value >= 1000 ? "N0" : "0.####", CultureInfo.InvariantCulture);
+            ? string.Create(CultureInfo.InvariantCulture, $"the noise is {Rounded.Two(ratio)} times the response")
+            : string.Create(CultureInfo.InvariantCulture, $"the response is {Rounded.Two(1 / ratio)} times the noise");
     }
 }

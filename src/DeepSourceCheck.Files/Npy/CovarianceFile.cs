@@ -21,12 +21,13 @@ public static class CovarianceFile
     /// <param name="path">File.</param>
     /// <param name="displayName">As the user named it.</param>
     /// <param name="expectedRows">Number of channels.</param>
+    /// <param name="mayHoldReference">Whether rows that are exactly zero throughout are kept: the reference of a recording that is already referenced.</param>
     /// <returns>expectedRows^2 numbers, in the unit of the file (V^2, T^2).</returns>
     /// <exception cref="InputException">Not square, wrong size, not finite, asymmetric, a variance that is not positive, or clearly not positive semidefinite.</exception>
-    public static double[] Read(string path, string displayName, int expectedRows)
+    public static double[] Read(string path, string displayName, int expectedRows, bool mayHoldReference = false)
     {
         double[] matrix = IsNpy(path, displayName) ? ReadArray(path, displayName, expectedRows) : ReadText(path, displayName, expectedRows);
-        Check(matrix, expectedRows, displayName);
+        Check(matrix, expectedRows, displayName, mayHoldReference);
         return matrix;
     }
 
@@ -91,18 +92,31 @@ public static class CovarianceFile
         return row == rows ? matrix : throw new InputException(displayName, null, $"the table has {row} rows; a covariance of {rows} channels has {rows}");
     }
 
-    private static void Check(double[] matrix, int n, string displayName)
+    private static void Check(double[] matrix, int n, string displayName, bool mayHoldReference)
     {
         double[] deviation = new double[n];
+        int zeros = 0;
         for (int i = 0; i < n; i++)
         {
             double variance = matrix[i * n + i];
+            if (mayHoldReference && variance == 0 && IsZero(matrix, n, i))
+            {
+                deviation[i] = 1;
+                zeros++;
+                continue;
+            }
+
             if (!(variance > 0))
             {
                 throw new InputException(displayName, null, Invariant($"the variance of row {i + 1} is {variance:G6}; every variance must be above 0: leave out channels without noise"));
             }
 
             deviation[i] = Math.Sqrt(variance);
+        }
+
+        if (zeros == n)
+        {
+            throw new InputException(displayName, null, "every variance is 0: no recording is without noise; check what was written");
         }
 
         (double worst, int worstI, int worstJ) = (0, 0, 0);
@@ -134,6 +148,8 @@ public static class CovarianceFile
                 $"the matrix is no covariance: some combination of rows 1 to {row + 1} would have a negative variance, beyond rounding");
         }
     }
+
+    private static bool IsZero(double[] matrix, int n, int row) => Enumerable.Range(0, n).All(k => matrix[row * n + k] == 0 && matrix[k * n + row] == 0);
 
     /// <summary>
     /// Cholesky factorisation of the correlation matrix plus a shift by what single precision may have taken from it: fails at the first row where even that is not positive definite; -1 where none is.

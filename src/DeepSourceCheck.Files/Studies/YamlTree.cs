@@ -209,7 +209,7 @@ public sealed class YamlTree
         }
         catch (YamlException e)
         {
-            throw Fatal(e.Start, $"this is not YAML: {Sentence(e.Message)}{OpenBracket()}");
+            throw Fatal(e.Start, $"this is not YAML: {Sentence(e.Message)}{OpenBracket()}{Indentation(e.Message)}");
         }
         catch (Exception e) when (e is ArgumentException or InvalidOperationException or FormatException or ArithmeticException
             or IndexOutOfRangeException or KeyNotFoundException)
@@ -221,6 +221,12 @@ public sealed class YamlTree
 
     private string OpenBracket() =>
         _openBrackets.TryPeek(out Mark bracket) ? $"; the bracket opened at line {Line(bracket)}, column {Column(bracket)} is not closed" : "";
+
+    // What a beginner's broken indentation looks like to the parser.
+    private string Indentation(string message) =>
+        message.Contains("tab", StringComparison.OrdinalIgnoreCase) ? "; indent with spaces, never with tabs"
+        : _openBrackets.Count == 0 && message.Contains("expected key", StringComparison.OrdinalIgnoreCase)
+            ? "; keys of one section start in one column: check the spaces before this line and the one above" : "";
 
     private static string Sentence(string message)
     {

@@ -60,8 +60,11 @@ public sealed class ModalityAnswer
         };
     }
 
-    /// <summary>`252 to 371 over the places in the region`, or empty.</summary>
-    public string Range() => HasCount && Target?.Trials is { P05: { } low, P95: var high }
-        ? $"{Say.Count(low)} to {Say.Trials(high)} over 5 to 95 % of places"
+    /// <summary>What is read: the measure; for both together the two readings that are combined.</summary>
+    public string Reading() => Modality == Modality.Both && Verdict.Measure != Names.MatchedFilter ? $"{Verdict.Measure} and best MEG channel" : Verdict.Measure;
+
+    /// <summary>`252 to 371 in 5 to 95 % of places`, or empty.</summary>
+    public string Range() => HasCount && Target?.Trials is { P05: { } low, P95: var high } && low != high
+        ? $"{Say.Count(low)} to {Say.Trials(high)} in 5 to 95 % of {Say.Spread(Verdict.Direction)}"
         : "";
 }

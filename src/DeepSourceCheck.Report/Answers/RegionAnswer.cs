@@ -44,7 +44,12 @@ public sealed class RegionAnswer
     public ModalityAnswer? Of(Modality modality) => Answers.FirstOrDefault(a => a.Modality == modality);
 
     /// <summary>Session length in words: `40 minutes`, or `the session`.</summary>
-    public string SessionWords => _assessment.Study.Protocol?.Session is { } s ? $"{Say.SessionMinutes(s)} minutes" : "the session";
+    public string SessionWords => _assessment.Study.Protocol?.Session is { } s
+        ? $"{Say.SessionMinutes(s)} minutes{(Averages > 1 ? $" shared by {Averages} averages" : "")}"
+        : "the session";
+
+    // Conditions times replications: so many averages share the session.
+    private int Averages => _assessment.Study.Protocol is { } p ? p.Conditions * p.Replications : 1;
 
     /// <summary>The finding in one sentence, without a final stop.</summary>
     public string Headline()
@@ -134,8 +139,8 @@ public sealed class RegionAnswer
 
     private static bool Reaches(ModalityAnswer answer) => answer.Outcome is Outcome.Fits or Outcome.NoSession;
 
-    private static string In(ModalityAnswer answer) =>
-        answer.Minutes is { } m ? $"in {Say.Minutes(m)} min" : $"in {Say.Plural(answer.Trials!.Value, "trial")}";
+    private string In(ModalityAnswer answer) =>
+        answer.Minutes is { } m ? $"in {Say.Minutes(m)} min{(Averages > 1 ? " per average" : "")}" : $"in {Say.Plural(answer.Trials!.Value, "trial")}";
 
     private string Fails(ModalityAnswer answer, bool alone) => answer.Outcome switch
     {

@@ -30,12 +30,7 @@ public static class Say
     public static string Plural(long count, string noun) => $"{Count(count)} {noun}{(count == 1 ? "" : "s")}";
 
     /// <summary>Minutes: `0.5`, `7.5`, `75`, `750`; below 0.1 `under 0.1`.</summary>
-    public static string Minutes(double minutes) => minutes switch
-    {
-        < 0.1 => "under 0.1",
-        < 9.95 => Signed(minutes.ToString("0.0", CultureInfo.InvariantCulture)),
-        _ => Two(minutes),
-    };
+    public static string Minutes(double minutes) => Signed(Rounded.Minutes(minutes));
 
     /// <summary>A stated length [s] in minutes: `40`.</summary>
     public static string SessionMinutes(double seconds) => Stated(Math.Round(seconds / 60, 6));
@@ -44,30 +39,7 @@ public static class Say
     public static string Two(double value) => Significant(value, 2);
 
     /// <summary>So many significant digits, trailing zeros kept, no exponent between 1e-4 and 1e9.</summary>
-    public static string Significant(double value, int digits)
-    {
-        if (value == 0)
-        {
-            return "0";
-        }
-
-        if (!double.IsFinite(value))
-        {
-            return "not defined";
-        }
-
-        // The exponent after rounding: 0.0999 to two digits is 0.10.
-        string scientific = value.ToString("E" + (digits - 1).ToString(CultureInfo.InvariantCulture), CultureInfo.InvariantCulture);
-        int exponent = int.Parse(scientific[(scientific.IndexOf('E', StringComparison.Ordinal) + 1)..], CultureInfo.InvariantCulture);
-        if (exponent is < -4 or > 9)
-        {
-            return Signed($"{scientific[..scientific.IndexOf('E', StringComparison.Ordinal)]}e{exponent}");
-        }
-
-        double rounded = double.Parse(scientific, CultureInfo.InvariantCulture);
-        int decimals = Math.Max(0, digits - 1 - exponent);
-        return Signed(rounded.ToString("N" + decimals.ToString(CultureInfo.InvariantCulture), CultureInfo.InvariantCulture));
-    }
+    public static string Significant(double value, int digits) => Signed(Rounded.Significant(value, digits));
 
     /// <summary>dB with one decimal.</summary>
     public static string Decibels(double db) => Signed((Math.Round(db, 1) + 0.0).ToString("0.0", CultureInfo.InvariantCulture));
@@ -100,12 +72,31 @@ public static class Say
     public static string Direction(DirectionName name) => name == DirectionName.StrongestTangential ? "strongest tangential" : Names.Of(name);
 
     /// <summary>What a target asks, in words: `peak = 3 x residual rms`.</summary>
-    public static string Rule(TargetChoice target) => target switch
+    /// <param name="target">The target.</param>
+    /// <param name="measured">Convention of the amplitude: a peak-to-trough difference carries sqrt(2) of the noise of one point.</param>
+    public static string Rule(TargetChoice target, Measured measured) => target switch
     {
+        AmplitudeRatioChoice a when measured == Measured.PeakToTrough => $"peak-to-trough = {Stated(a.Ratio)} × sqrt(2) × residual rms",
         AmplitudeRatioChoice a => $"peak = {Stated(a.Ratio)} × residual rms",
         DetectionChoice d => $"detected with power {Percent(d.Power)} at false-alarm rate {Stated(d.Alpha)}{(d.Looks > 1 ? $" over {Stated(d.Looks)} looks" : "")}",
         _ => "the study's target",
     };
+
+    /// <summary>How amplitudes are read: `peak to trough`, `baseline to peak`.</summary>
+    public static string Convention(Measured measured) => measured == Measured.PeakToTrough ? "peak to trough" : "baseline to peak";
+
+    /// <summary>What a range of 5 to 95 % runs over: `places`, or `places and directions` where the direction is a set.</summary>
+    public static string Spread(DirectionName direction) => direction is DirectionName.Tangential or DirectionName.Isotropic ? "places and directions" : "places";
+
+    /// <summary>`each of 4 averages (2 conditions, 2 replications)`, or empty where the session holds a single average.</summary>
+    public static string Averages(Protocol? protocol) => protocol is { } p ? Rounded.Averages(p.Conditions, p.Replications) : "";
+
+    /// <summary>What the session affords: `session 40 min = 23,976 trials`, `... for each of 2 conditions`.</summary>
+    public static string Session(Protocol protocol, long trials)
+    {
+        string length = protocol.Session is { } seconds ? $" {SessionMinutes(seconds)} min" : "";
+        return $"session{length} = {Plural(trials, "trial")}{(Averages(protocol) is { Length: > 0 } each ? $" for {each}" : "")}";
+    }
 
     /// <summary>The rule's key in words.</summary>
     public static string RuleKey(string key) => key.Replace('_', ' ');

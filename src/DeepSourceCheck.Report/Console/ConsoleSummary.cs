@@ -12,6 +12,7 @@ namespace DeepSourceCheck.Report.Console;
 public static class ConsoleSummary
 {
     private const int MeasureWidth = 13;
+    private const int NameWidth = 32;
     private const int MostRegions = 12;
     private const int MostWarnings = 3;
 
@@ -35,14 +36,15 @@ public static class ConsoleSummary
         }
 
         text.Append('\n');
-        foreach (string warning in assessment.Warnings.Take(MostWarnings))
+        IReadOnlyList<string> warnings = WarningText.Grouped(assessment.Warnings);
+        foreach (string warning in warnings.Take(MostWarnings))
         {
             text.Append(ink.Alert).Append(WhyText.Wrap(warning, 2).AsSpan(1));
         }
 
-        if (assessment.Warnings.Count > MostWarnings)
+        if (warnings.Count > MostWarnings)
         {
-            text.Append($"  {assessment.Warnings.Count - MostWarnings} more warnings in assessment.json.\n");
+            text.Append($"  {Say.Plural(warnings.Count - MostWarnings, "more warning")} in {(report ? "report.html" : "assessment.json")}.\n");
         }
 
         IReadOnlyList<(string Heading, string Text)> cautions = Cautions.All;
@@ -74,22 +76,24 @@ public static class ConsoleSummary
 
     private static string Conditions(Assessment assessment, RegionAnswer answer)
     {
-        string rule = assessment.Study.Targets.FirstOrDefault(t => Names.Of(t) == answer.Rule) is { } t ? Say.Rule(t) : Say.RuleKey(answer.Rule);
+        string rule = assessment.Study.Targets.FirstOrDefault(t => Names.Of(t) == answer.Rule) is { } t ? Say.Rule(t, answer.Response.Measured) : Say.RuleKey(answer.Rule);
         if (assessment.Study.Protocol is not { } p)
         {
             return $"{rule}; no protocol stated";
         }
 
         string rejected = p.RejectedFraction > 0 ? $", {Say.Percent(p.RejectedFraction)} rejected" : "";
-        string session = assessment.SessionTrials is { } n && p.Session is { } s ? $"; session {Say.SessionMinutes(s)} min = {Say.Plural(n, "trial")}" : "; no session stated";
+        string session = assessment.SessionTrials is { } n ? $"; {Say.Session(p, n)}" : "; no session stated";
         return $"{rule}; {Say.Stated(p.Rate)}/s{rejected}{session}";
     }
 
     private static string Sentence(Assessment assessment, ModalityAnswer a)
     {
         string name = Names.Of(a.Modality);
-        string minutes = a.Minutes is { } m ? $"{Say.Minutes(m)} min" : a.Trials is { } n ? Say.Plural(n, "trial") : "";
-        string over = a.Minutes is { } needed && assessment.Study.Protocol?.Session is { } s && OneAcquisition(assessment) && needed > s / 60 ? $": too long by {Say.Minutes(needed - s / 60)} min" : ": too long";
+        string each = OneAcquisition(assessment) ? "" : " per average";
+        string minutes = a.Minutes is { } m ? $"{Say.Minutes(m)} min{each}" : a.Trials is { } n ? Say.Plural(n, "trial") : "";
+        // An excess that rounds away is not named.
+        string over = a.Minutes is { } needed && assessment.Study.Protocol?.Session is { } s && OneAcquisition(assessment) && needed - s / 60 >= 0.1 ? $": too long by {Say.Minutes(needed - s / 60)} min" : ": too long";
         return a.Outcome switch
         {
             Outcome.Fits => $"{name} reaches the target in {minutes}.",
@@ -105,7 +109,7 @@ public static class ConsoleSummary
 
     private static void Table(StringBuilder text, RegionAnswer answer)
     {
-        text.Append($"{"",-9}{"measure",-MeasureWidth}{"trials",9}{"5-95 % of places",20}{"minutes",9}{"peak",9}  session\n");
+        text.Append($"{"",-9}{"measure",-MeasureWidth}{"trials",9}{"5 to 95 %",20}{"minutes",9}{"peak",10} session\n");
         foreach (ModalityAnswer a in answer.Answers)
         {
             string measure = a.Modality == Modality.Both ? "both" : a.Verdict.Measure;
@@ -118,7 +122,13 @@ public static class ConsoleSummary
             string minutes = a.Minutes is { } m && a.HasCount ? Say.Minutes(m) : "-";
             string middle = a.HasCount ? $"{Say.Trials(a.Trials),9}{Spread(a),20}" : $"{(a.Outcome == Outcome.Silent ? "silent in this direction" : Say.OutOfReach),29}";
             string session = a.Outcome switch { Outcome.Fits => "fits", Outcome.TooLong => "too long", Outcome.NoSession => "-", _ => "no" };
-            text.Append($"{Names.Of(a.Modality),-9}{measure,-MeasureWidth}{middle}{minutes,9}{peak,9}  {session}\n");
+            text.Append($"{Names.Of(a.Modality),-9}{measure,-MeasureWidth}{middle}{minutes,9}{peak,10} {session}\n");
+        }
+
+        // A lone dipole in one direction has no spread to explain.
+        if (answer.Answers.FirstOrDefault(a => a.Range().Length > 0) is { } spread)
+        {
+            text.Append(WhyText.Wrap($"trials: median and 5 to 95 % over {Say.Spread(spread.Verdict.Direction)}, not over unknowns", 0));
         }
     }
 
@@ -138,11 +148,22 @@ public static class ConsoleSummary
         ModalityAnswer[] single = [.. answer.Answers.Where(a => a.Modality != Modality.Both && a.Target?.SmallestMoment is not null)];
         if (assessment.SessionTrials is not null && single.Length > 0)
         {
-            text.Append(Fact("smallest source in the session", string.Join("   ", single.Select(a =>
+            string[] smallest = [.. single.Select(a =>
             {
                 string amplitude = a.Target!.SmallestAmplitude is { } v && a.Row?.Peak is { } peak ? $" ({Say.Two(v)} {Say.Unit(peak.Unit)})" : "";
                 return $"{Names.Of(a.Modality)} {Say.Two(Si.ToNanoAmpereMetres(a.Target.SmallestMoment!.Value))} nAm{amplitude}";
-            }))));
+            })];
+            string inOne = string.Join("   ", smallest);
+            if (NameWidth + inOne.Length <= 79)
+            {
+                smallest = [inOne];
+            }
+
+            for (int k = 0; k < smallest.Length; k++)
+            {
+                text.Append(Fact(k == 0 ? "smallest source in the session" : "", smallest[k]));
+            }
+
             foreach (ModalityAnswer a in single.Where(a => a.Outcome is Outcome.TooLong or Outcome.OutOfReach))
             {
                 text.Append(Fact($"{Names.Of(a.Modality)} would fit", $"from {Say.Two(Si.ToNanoAmpereMetres(a.Target!.SmallestMoment!.Value))} nAm"));
@@ -163,7 +184,7 @@ public static class ConsoleSummary
     }
 
     private static string Fact(string name, string words) =>
-        32 + words.Length <= 79 ? $"{name,-32}{words}\n" : $"{name}\n{WhyText.Wrap(words, 4)}";
+        NameWidth + words.Length <= 79 ? $"{name,-NameWidth}{words}\n" : $"{name}\n{WhyText.Wrap(words, 4)}";
 
     private static void Others(StringBuilder text, Assessment assessment, ResponseResult response, RegionAnswer first)
     {

@@ -21,14 +21,16 @@ public static class WhyText
     {
         StringBuilder text = new();
         text.Append(Wrap($"{assessment.Study.Title}: {response.Response.Name}, {region.Region}", 0));
-        text.Append(Wrap($"{Say.Plural(region.Dipoles, "dipole")}. Each line is a number that the run used, for the dipole at the median: symbol = value unit, what it is, "
-            + "then the formula in the symbols of earlier lines and where it comes from. Recomputing the lines gives the count exactly.", 0));
+        text.Append(Wrap($"{Say.Plural(region.Dipoles, "dipole")}. Below stands every number from the moment to the minutes as the run used it, for the dipole whose count is the median "
+            + "(so that EEG and MEG may show different dipoles): symbol = value unit, what it is; then, after a further =, its formula in the symbols of earlier lines "
+            + "(a space multiplies; ceil rounds up); in square brackets where it comes from. Recomputing the lines gives N exactly.", 0));
         foreach (VerdictResult verdict in region.Verdicts)
         {
-            text.Append('\n').Append(Wrap($"{RegionAnswer.Words(verdict.Modality)}, {Say.RuleKey(verdict.Rule)}, {verdict.Measure}, {Say.Direction(verdict.Direction)} direction", 0));
-            foreach (DerivedNumber step in verdict.Chain)
+            ModalityAnswer answer = new(region, verdict);
+            text.Append('\n').Append(Wrap($"{RegionAnswer.Words(verdict.Modality)}: {answer.Reading()}, {Say.RuleKey(verdict.Rule)}, {Say.Direction(verdict.Direction)} direction", 0));
+            for (int k = 0; k < verdict.Chain.Count; k++)
             {
-                Step(text, step);
+                Step(text, verdict.Chain[k], k + 1 < verdict.Chain.Count ? verdict.Chain[k + 1] : null);
             }
 
             text.Append(Wrap(verdict.Chain.Count == 0 ? $"No steps. {verdict.Text}" : verdict.Text, 2));
@@ -71,8 +73,8 @@ public static class WhyText
         return ascii.ToString();
     }
 
-    /// <summary>Words in lines of at most <see cref="Width"/> signs; later lines indented by two more.</summary>
-    internal static string Wrap(string text, int indent)
+    /// <summary>Words in lines of at most 79 signs, with a final line break; later lines of indented text are indented by two more.</summary>
+    public static string Wrap(string text, int indent)
     {
         StringBuilder lines = new(), line = new(new string(' ', indent));
         bool empty = true;
@@ -92,11 +94,15 @@ public static class WhyText
         return lines.Append(line).Append('\n').ToString();
     }
 
-    private static void Step(StringBuilder text, DerivedNumber step)
+    private static void Step(StringBuilder text, DerivedNumber step, DerivedNumber? next)
     {
-        string head = $"  {step.Symbol,-5} = {Exact(step.Value)} {step.Unit}".TrimEnd();
-        const int NameColumn = 40;
-        if (head.Length < NameColumn - 1 && NameColumn + step.Name.Length <= Width)
+        string head = $"  {step.Symbol,-4} = {Exact(step.Value)} {step.Unit}".TrimEnd();
+        const int NameColumn = 39;
+        if (step.Name.Length == 0)
+        {
+            text.Append(head).Append('\n');
+        }
+        else if (head.Length < NameColumn - 1 && NameColumn + step.Name.Length <= Width)
         {
             text.Append(head.PadRight(NameColumn)).Append(step.Name).Append('\n');
         }
@@ -105,15 +111,25 @@ public static class WhyText
             text.Append(head).Append('\n').Append(Wrap(step.Name, Indent));
         }
 
+        // Lines of one origin, such as the three components of a vector, name it once, after the last.
+        bool shared = next is not null && next.Formula.Length == 0 && step.Formula.Length == 0 && next.Source == step.Source && next.Grade == step.Grade;
+        string grade = step.Grade is { } g ? $"; {Names.Of(g)}" : "";
+        string source = step.Source.Length > 0 && !shared ? $"[{step.Source}{grade}]" : "";
         if (step.Formula.Length > 0)
         {
-            text.Append(Wrap(step.Formula, Indent));
+            string formula = $"{new string(' ', Indent)}= {step.Formula}";
+            if (source.Length > 0 && formula.Length + 3 + source.Length <= Width)
+            {
+                text.Append($"{formula}   {source}\n");
+                return;
+            }
+
+            text.Append(Wrap($"= {step.Formula}", Indent));
         }
 
-        string grade = step.Grade is { } g ? $" ({Names.Of(g)})" : "";
-        if (step.Source.Length > 0)
+        if (source.Length > 0)
         {
-            text.Append(Wrap($"from {step.Source}{grade}", Indent));
+            text.Append(Wrap(source, Indent));
         }
     }
 }

@@ -6,9 +6,13 @@ namespace DeepSourceCheck.Report.Figures;
 /// <summary>The plumb line at the session's end, with its words on the side that has room.</summary>
 internal static class SessionLine
 {
-    /// <summary>`session 40 min`, or `session` where its length is not stated.</summary>
-    public static string Label(Assessment assessment) =>
-        assessment.Study.Protocol?.Session is { } seconds ? $"session {Say.SessionMinutes(seconds)} min" : "session";
+    /// <summary>`session 40 min`; `session 45 min / 4 averages` where it holds several, whose counts the axis shows; `session` where its length is not stated.</summary>
+    public static string Label(Assessment assessment) => assessment.Study.Protocol is { Session: { } seconds } p
+        ? $"session {Say.SessionMinutes(seconds)} min{(IsShared(assessment) ? $" / {Say.Stated(p.Conditions * p.Replications)} averages" : "")}"
+        : "session";
+
+    /// <summary>Whether the session holds several averages.</summary>
+    public static bool IsShared(Assessment assessment) => assessment.Study.Protocol is { } p && p.Conditions * p.Replications > 1;
 
     /// <summary>Draws it.</summary>
     /// <param name="pen">Pen.</param>

@@ -25,20 +25,20 @@ public static class TrialsFigure
         ModalityAnswer[] all = [.. regions.SelectMany(r => r.Answers)];
         LogAxis axis = AxisOf(assessment, all);
         string title = Title(assessment, regions);
-        string session = assessment.SessionTrials is { } s ? $" Shaded: more than the session's {Say.Count(s)} trials." : " The study states no session.";
+        string session = assessment.SessionTrials is { } s ? $" Shaded: more than the session's {Say.Plural(s, "trial")}{(Say.Averages(assessment.Study.Protocol) is { Length: > 0 } each ? $" for {each}" : "")}." : " The study states no session.";
         return new Figure(
             name, title,
             "Accepted trials against region",
-            $"{response.Response.Name}; rule: {RuleWords(assessment, rule)}; {Say.Direction(response.Response.Direction)}; {Say.Moment(response.Response.Moment)} in each dipole in turn"
-            + $"{Protocol(assessment)}. Mark: median over the region's dipoles; solid bar: 5 to 95 % of places and directions, gaps at the quartiles.{session}",
+            $"{response.Response.Name}; rule: {RuleWords(assessment, response.Response, rule)}; {Say.Direction(response.Response.Direction)}; {Say.Moment(response.Response.Moment)} in each dipole in turn"
+            + $"{Protocol(assessment)}. Mark: median over the region's dipoles; solid bar: 5 to 95 % of {Say.Spread(response.Response.Direction.Name)}, gaps at the quartiles.{session}",
             $"{title}. {string.Join(" ", all.Take(3).Select(a => $"{RegionAnswer.Words(a.Modality)}: {a.Line()}."))}",
             Table(regions), FullWidth: false,
             width => Draw(width, assessment, regions, axis));
     }
 
     /// <summary>The rule in words, with its numbers where it is a target of the study.</summary>
-    internal static string RuleWords(Assessment assessment, string rule) =>
-        assessment.Study.Targets.FirstOrDefault(t => Names.Of(t) == rule) is { } target ? Say.Rule(target) : Say.RuleKey(rule);
+    internal static string RuleWords(Assessment assessment, Core.Studies.Response response, string rule) =>
+        assessment.Study.Targets.FirstOrDefault(t => Names.Of(t) == rule) is { } target ? Say.Rule(target, response.Measured) : Say.RuleKey(rule);
 
     /// <summary>`; 11.1/s, 10 % rejected`, or empty.</summary>
     internal static string Protocol(Assessment assessment) => assessment.Study.Protocol is { } p
@@ -79,14 +79,14 @@ public static class TrialsFigure
             pen.Text("accepted trials", pen.Left, pen.Bottom + 34, FigurePen.Small, colour: Palette.Ink2);
             if (assessment.Study.Protocol is not null)
             {
-                MinuteTicks(pen, assessment, axis);
+                MinuteTicks(pen, assessment, axis, session is { } at ? pen.X(at) : float.NaN);
             }
 
             float plumb = float.NaN;
             if (session is { } x)
             {
                 plumb = pen.X(x);
-                string trials = named ? "" : $", {Say.Count(assessment.SessionTrials!.Value)} accepted trials";
+                string trials = named ? "" : $", {Say.Count(assessment.SessionTrials!.Value)} accepted trials{(SessionLine.IsShared(assessment) ? " each" : "")}";
                 SessionLine.Draw(pen, plumb, 26, SessionLine.Label(assessment) + trials, halo: true);
             }
 
@@ -159,7 +159,7 @@ public static class TrialsFigure
             pen.Text("accepted trials", 16, pen.Bottom + 36, FigurePen.Small, colour: Palette.Ink2);
             if (assessment.Study.Protocol is not null)
             {
-                MinuteTicks(pen, assessment, axis);
+                MinuteTicks(pen, assessment, axis, session is { } at ? pen.X(at) : float.NaN);
             }
 
             float plumb = float.NaN;
@@ -231,11 +231,35 @@ public static class TrialsFigure
         pen.Text(Say.Trials(trials), middle, y - 13, FigurePen.Label, Anchor.Middle, semiBold: true, halo: true);
         if (n.P05 is { } from && n.P95 is { } to && from < to)
         {
-            pen.Text(Say.Trials(from), Math.Min(low, middle - 6) - 6, y + 18, FigurePen.Small, Anchor.End, colour: Palette.Ink2, halo: true);
-            pen.Text(Say.Trials(to), Math.Max(high, middle + 6) + 6, y + 18, FigurePen.Small, colour: Palette.Ink2, halo: true);
+            Ends(pen, Say.Trials(from), Say.Trials(to), Math.Min(low, middle - 6) - 6, Math.Max(high, middle + 6) + 6, y + 18, plumb);
         }
 
         float? Quartile(long? count) => count is { } c ? pen.X(Math.Log10(c)) : null;
+    }
+
+    // Labels of a bar's ends beside it; where the sheet or the plumb line leaves no room there, both in one line below the bar.
+    private static void Ends(FigurePen pen, string from, string to, float left, float right, float y, float plumb)
+    {
+        float before = FigurePen.Width(from, FigurePen.Small), after = FigurePen.Width(to, FigurePen.Small);
+        bool room = right + after <= pen.Right + 28 && left - before >= pen.Left - 24;
+        bool clear = !(plumb > left - before - 3 && plumb < left + 3) && !(plumb > right - 3 && plumb < right + after + 3);
+        if (room && clear)
+        {
+            pen.Text(from, left, y, FigurePen.Small, Anchor.End, colour: Palette.Ink2, halo: true);
+            pen.Text(to, right, y, FigurePen.Small, colour: Palette.Ink2, halo: true);
+            return;
+        }
+
+        string both = $"{from} to {to}";
+        float half = FigurePen.Width(both, FigurePen.Small) / 2;
+        float x = Math.Clamp((left + right) / 2, pen.Left - 20 + half, pen.Right + 26 - half);
+        if (plumb > x - half - 4 && plumb < x + half + 4)
+        {
+            float beyond = plumb + half + 6;
+            x = beyond + half <= pen.Right + 26 ? beyond : Math.Max(pen.Left - 20 + half, plumb - half - 6);
+        }
+
+        pen.Text(both, x, y + 13, FigurePen.Small, Anchor.Middle, colour: Palette.Ink2, halo: true);
     }
 
     // On the side that keeps clear of the edge and, if it can, of the plumb line.
@@ -248,7 +272,7 @@ public static class TrialsFigure
         pen.Text(text, after ? to + 8 : from - 8, y + 4, FigurePen.Small, after ? Anchor.Start : Anchor.End, halo: true);
     }
 
-    private static void MinuteTicks(FigurePen pen, Assessment assessment, LogAxis axis)
+    private static void MinuteTicks(FigurePen pen, Assessment assessment, LogAxis axis, float plumb)
     {
         Core.Studies.Protocol p = assessment.Study.Protocol!;
         double perMinute = Math.Log10(60 * p.Rate * (1 - p.RejectedFraction));
@@ -265,6 +289,12 @@ public static class TrialsFigure
             }
 
             pen.Line(x, pen.Top, x, pen.Top - 4, Palette.Edge, 1);
+            // The plumb line would run through the number: the tick stands alone.
+            if (plumb > x - half - 3 && plumb < x + half + 3)
+            {
+                continue;
+            }
+
             pen.Text(text, x, pen.Top - 8, FigurePen.Small, Anchor.Middle, colour: Palette.Ink2, halo: true);
             last = x + half;
         }

@@ -48,7 +48,7 @@ internal static class AnswerSection
         string others = response.Regions.Count switch { 1 => "", 2 => "; one more region below", _ => $"; {response.Regions.Count - 1} more regions below" };
         html.Open("p", "class", "place").Element("b", assessment.Study.Title)
             .Text($"{stated.Name}, {first.Region}: {Say.Plural(first.Dipoles, "dipole")}, {Say.Moment(stated.Moment)} {Say.Direction(stated.Direction)}, "
-                + $"{(stated.Measured == Measured.PeakToTrough ? "peak to trough" : "baseline to peak")}, {Say.Stated(stated.Band.Low)} to {Say.Stated(stated.Band.High)} Hz{others}").CloseLine();
+                + $"{Say.Convention(stated.Measured)}, {Say.Stated(stated.Band.Low)} to {Say.Stated(stated.Band.High)} Hz{others}").CloseLine();
     }
 
     private static void Strip(Markup html, Assessment assessment, RegionAnswer answer, int index)
@@ -63,7 +63,7 @@ internal static class AnswerSection
         }
 
         string sure = answer.Answers.All(a => a.Verdict.Assurance is null) ? " How sure: not asked, the study states no unknowns." : "";
-        html.Element("p", $"Accepted trials, to {TrialsFigure.RuleWords(assessment, answer.Rule)}{TrialsFigure.Protocol(assessment)}.{sure}", "class", "small under");
+        html.Element("p", $"Accepted trials. Target: {TrialsFigure.RuleWords(assessment, answer.Response, answer.Rule)}{TrialsFigure.Protocol(assessment)}.{Shared(assessment)}{sure}", "class", "small under");
         html.CloseLine();
         string alt = $"Trials on a logarithmic axis. {string.Join(" ", answer.Answers.Select(a => $"{RegionAnswer.Words(a.Modality)}: {a.Line()}."))}";
         html.Open("figure", "style", "border:0;padding:0");
@@ -78,7 +78,7 @@ internal static class AnswerSection
         }
 
         html.Open("figcaption").Open("span", "class", "key");
-        Key(html, InlineFigure.PlaceKey, "place in the region and direction, 5 to 95 %, gaps at the quartiles");
+        Key(html, InlineFigure.PlaceKey, $"{Say.Spread(answer.Answers[0].Verdict.Direction)} in the region, 5 to 95 %, gaps at the quartiles");
         if (assessment.SessionTrials is not null)
         {
             Key(html, InlineFigure.PlumbKey, "longer than the session");
@@ -87,6 +87,9 @@ internal static class AnswerSection
         html.Close().Close().CloseLine();
         html.CloseLine();
     }
+
+    // Counts and minutes are those of one average: said wherever a session holds several.
+    private static string Shared(Assessment assessment) => Say.Averages(assessment.Study.Protocol) is { Length: > 0 } each ? $" Trials and minutes are for {each}." : "";
 
     internal static void Key(Markup html, string picture, string words) => html.Open("span").Raw(picture).Text(words).Close();
 
@@ -105,7 +108,7 @@ internal static class AnswerSection
 
     private static void Peaks(Markup html, RegionAnswer answer)
     {
-        html.Open("div").Element("h3", "Predicted peak").Element("p", "largest channel, one response without noise, median over the region", "class", "small").Open("div", "class", "pairs");
+        html.Open("div").Element("h3", "Predicted peak").Element("p", $"largest channel, {Say.Convention(answer.Response.Measured)}, without noise, median over the region", "class", "small").Open("div", "class", "pairs");
         foreach (ModalityAnswer a in answer.Answers.Where(a => a.Modality != Modality.Both))
         {
             html.Raw(InlineFigure.Mark(a.Modality)).Open("div");
@@ -190,14 +193,15 @@ internal static class AnswerSection
     {
         html.Element("h3", "By region", "class", "ruled", "style", "margin-top:28px");
         Modality[] modalities = [.. response.Regions.SelectMany(r => r.Verdicts).Select(v => v.Modality).Distinct().Order()];
+        string[] note = response.Regions.Any(r => r.Warnings.Count > 0) ? ["note"] : [], noteClass = note.Length > 0 ? ["long"] : [];
         HtmlReport.Table(html, $"Verdicts by region, {response.Response.Name}",
-            ["region", .. modalities.Select(RegionAnswer.Words), "note"],
+            ["region", .. modalities.Select(RegionAnswer.Words), .. note],
             response.Regions.Select(r =>
             {
                 RegionAnswer a = new(assessment, response.Response, r);
-                return (IReadOnlyList<string>)[r.Region, .. modalities.Select(m => a.Of(m)?.Line() ?? ""), string.Join(" ", r.Warnings)];
+                return (IReadOnlyList<string>)[r.Region, .. modalities.Select(m => a.Of(m)?.Line() ?? ""), .. note.Select(_ => WarningText.InRow(r.Region, r.Warnings))];
             }),
-            ["", .. modalities.Select(_ => "verdict-cell"), "long"]);
+            ["", .. modalities.Select(_ => "verdict-cell"), .. noteClass]);
     }
 
     private static void OtherRules(Markup html, Assessment assessment, ResponseResult response, RegionAnswer shown)
@@ -205,10 +209,10 @@ internal static class AnswerSection
         string[] rules = [.. response.Regions.SelectMany(r => r.Verdicts).Select(v => v.Rule).Distinct().Where(r => r != shown.Rule)];
         foreach (string rule in rules)
         {
-            html.Element("h3", $"By another target: {TrialsFigure.RuleWords(assessment, rule)}", "class", "ruled", "style", "margin-top:28px");
+            html.Element("h3", $"By another target: {TrialsFigure.RuleWords(assessment, response.Response, rule)}", "class", "ruled", "style", "margin-top:28px");
             HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range"],
                 response.Regions.SelectMany(r => new RegionAnswer(assessment, response.Response, r, rule).Answers.Select(a => (IReadOnlyList<string>)
-                    [r.Region, RegionAnswer.Words(a.Modality), a.Verdict.Measure, a.Line(), a.Range()])));
+                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range()])));
         }
     }
 }

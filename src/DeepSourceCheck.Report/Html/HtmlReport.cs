@@ -34,7 +34,7 @@ public static class HtmlReport
         if (assessment.Warnings.Count > 0)
         {
             Section(html, "warnings", "What to know about this run");
-            List(html, assessment.Warnings);
+            List(html, WarningText.Grouped(assessment.Warnings));
             html.CloseLine();
         }
 

@@ -42,6 +42,6 @@ internal static class LimitSection
         region.Split?.WeakestOverStrongest.P50 is { } w ? Say.Two(w) : "",
         region.Split?.AngleToRadialDeg.P50 is { } angle ? Say.Two(angle) : "",
         region.Split is { } s ? (s.UndefinedDipoles + s.DegenerateDipoles).ToString(CultureInfo.InvariantCulture) : "",
-        string.Join(" ", region.Warnings),
+        WarningText.InRow(region.Region, region.Warnings),
     ];
 }

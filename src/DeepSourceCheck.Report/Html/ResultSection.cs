@@ -14,7 +14,7 @@ internal static class ResultSection
     public static void Write(Markup html, Assessment assessment)
     {
         HtmlReport.Section(html, "results", "Results by region");
-        html.Element("p", "Every measure, direction and rule. Channel-mean is for comparing modalities and maps; no verdict stands on it. Ranges are 5 to 95 % over the region's dipoles and directions.", "class", "small");
+        html.Element("p", "Every measure, direction and rule. Channel-mean is for comparing modalities and maps; no verdict stands on it. Matched-filter is the bound that no combination of channels exceeds, not a plan. In brackets: 5 to 95 % over the region's dipoles, and over directions where the direction is tangential or isotropic.", "class", "small");
         int shown = 0;
         foreach (ResponseResult response in assessment.Responses)
         {
@@ -44,19 +44,22 @@ internal static class ResultSection
             html.Element("p", verdict.Text);
         }
 
+        // A single rule needs no column: the verdicts above name it.
+        bool rules = region.Results.Any(row => row.Targets.Count > 1);
+        string[] rule = rules ? ["rule"] : [], plain = rules ? [""] : [];
         HtmlReport.Table(html, $"Figures of {region.Region}",
-            ["modality", "direction", "measure", "peak", "SNR of one trial, dB", "rule", "trials", "minutes", "smallest source, nAm", "note"],
-            region.Results.SelectMany(row => row.Targets.Select(t => Cells(row, t))),
-            ["", "", "", "n", "n", "", "n", "n", "n", "long"]);
+            ["modality", "direction", "measure", "peak", "SNR of one trial, dB", .. rule, "trials", "minutes", "smallest source, nAm", "note"],
+            region.Results.SelectMany(row => row.Targets.Select(t => Cells(row, t, rules))),
+            ["", "", "", "n", "n", .. plain, "n", "n", "n", "long"]);
         Steps(html, region);
         html.CloseLine();
     }
 
-    private static IReadOnlyList<string> Cells(MeasureResult row, TargetResult target) =>
+    private static IReadOnlyList<string> Cells(MeasureResult row, TargetResult target, bool rules) =>
     [
         Names.Of(row.Modality), Say.Direction(row.Direction), row.Measure,
         row.Peak is { } p ? $"{Say.Two(p.Value)} {Say.Unit(p.Unit)} at {p.Channel}" : "",
-        Spread(row.SnrDb, Say.Decibels), Say.RuleKey(target.Rule),
+        Spread(row.SnrDb, Say.Decibels), .. rules ? new[] { Say.RuleKey(target.Rule) } : [],
         target.Trials.P50 is { } n ? n > Say.MostTrials ? Say.OutOfReach : $"{Say.Count(n)} ({Say.Trials(target.Trials.P05)} to {Say.Trials(target.Trials.P95)})" : row.SnrDb.P50 is null ? "" : Say.OutOfReach,
         target.Trials.P50 <= Say.MostTrials && target.Minutes is { P50: { } } m ? Say.Minutes(m.P50!.Value) : "",
         target.SmallestMoment is { } q ? Say.Two(Si.ToNanoAmpereMetres(q)) : "",
@@ -72,7 +75,7 @@ internal static class ResultSection
         }
 
         long? count = leak.Targets.FirstOrDefault(t => t.Rule == target.Rule)?.Trials.P50;
-        return $"{reason}; at leak {Say.Stated(leak.Leak)}: {(leak.SnrDb.P50 is { } db ? Say.Decibels(db) + " dB" : "no SNR")}, {(count <= Say.MostTrials ? Say.Plural(count!.Value, "trial") : Say.OutOfReach)}";
+        return $"silent in the sphere; at the published leak of {Say.Stated(leak.Leak)}: {(leak.SnrDb.P50 is { } db ? Say.Decibels(db) + " dB" : "no SNR")}, {(count <= Say.MostTrials ? Say.Plural(count!.Value, "trial") : Say.OutOfReach)}";
     }
 
     private static string Spread(Percentiles p, Func<double, string> write) =>

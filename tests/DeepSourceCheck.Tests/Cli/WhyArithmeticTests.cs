@@ -1,0 +1,128 @@
+using System.Globalization;
+using System.Text.RegularExpressions;
+
+using DeepSourceCheck.Cli;
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Tests.Support;
+
+namespace DeepSourceCheck.Tests.Cli;
+
+/// <summary>What a reviewer does with `why`: reads the printed text, nothing else, and recomputes the count by hand.</summary>
+public sealed partial class WhyArithmeticTests : IDisposable
+{
+    private const int Columns = 80;
+
+    private readonly string _folder = Directory.CreateTempSubdirectory("dsc-why-").FullName;
+
+    public void Dispose() => Directory.Delete(_folder, recursive: true);
+
+    [Fact]
+    public void Why_OnTheDefaultStudy_RecomputesEveryCountFromThePrintedText()
+    {
+        IReadOnlyList<PrintedChain> chains = Chains(Print("why"));
+        Assert.Equal(["EEG", "MEG", "EEG and MEG together"], chains.Select(c => c.Heading[..c.Heading.IndexOf(':', StringComparison.Ordinal)]));
+        Assert.All(chains, Recomputes);
+    }
+
+    [Theory]
+    // Each changes which lines stand in the chain: the convention's noise, the rule, the direction, the measure, the shared session.
+    [InlineData("measured: baseline-to-peak", "measured: peak-to-trough")]
+    [InlineData("target: {amplitude_ratio: 3}", "target: {amplitude_ratio: 2.5, detection: {alpha: 0.01, power: 0.9, looks: 28}}")]
+    [InlineData("direction: [0, 0, 1]", "direction: isotropic")]
+    [InlineData("direction: [0, 0, 1]", "direction: best")]
+    [InlineData("direction: [0, 0, 1]", "direction: tangential\n    locked_artefact: {eeg_uV: 0.01, meg_fT: 0.1}")]
+    [InlineData("direction: [0, 0, 1]", "direction: [1, 2, 2]\n    measure: {eeg: matched-filter, meg: matched-filter}")]
+    [InlineData("session_min: 40}", "session_min: 40, conditions: 2, replications: 3}")]
+    public void Why_OnAChangedStudy_RecomputesEveryCountFromThePrintedText(string from, string to)
+    {
+        string written = EmbeddedStudy.Replace("\r", "", StringComparison.Ordinal);
+        Assert.Contains(from, written, StringComparison.Ordinal);
+        string file = Path.Combine(_folder, "study.yaml");
+        File.WriteAllText(file, written.Replace(from, to, StringComparison.Ordinal));
+        IReadOnlyList<PrintedChain> chains = Chains(Print("why", file));
+        Assert.True(chains.Count >= 3, "EEG, MEG and both");
+        Assert.All(chains, Recomputes);
+    }
+
+    private static void Recomputes(PrintedChain chain)
+    {
+        Dictionary<string, double> values = ChainArithmetic.Recompute(chain.Lines);
+        Assert.True(values.ContainsKey("a") && values.ContainsKey("T"), $"{chain.Heading}: from the moment a to the minutes T");
+        Match said = Trials().Match(chain.Verdict);
+        Assert.True(said.Success, chain.Verdict);
+        Assert.Equal(double.Parse(said.Groups[1].Value, NumberStyles.AllowThousands, CultureInfo.InvariantCulture), values["N"]);
+        Assert.Equal(chain.Lines.Single(l => l.Symbol == "N").Value, values["N"]);
+    }
+
+    private static string EmbeddedStudy { get; } = File.ReadAllText(Path.Combine(Root(), "tests", "DeepSourceCheck.Examples", "Studies", "01-click-response.yaml"));
+
+    private static string Root()
+    {
+        string? folder = AppContext.BaseDirectory;
+        while (folder is not null && !File.Exists(Path.Combine(folder, "DeepSourceCheck.sln")))
+        {
+            folder = Path.GetDirectoryName(folder);
+        }
+
+        return folder ?? throw new InvalidOperationException("no DeepSourceCheck.sln above the tests");
+    }
+
+    private static string Print(params string[] arguments)
+    {
+        using var output = new StringWriter { NewLine = "\n" };
+        using var error = new StringWriter { NewLine = "\n" };
+        int status = CommandLine.Run(arguments, new Surroundings { Out = output, Error = error });
+        Assert.True(status == ExitStatus.Done, error.ToString());
+        string text = output.ToString();
+        Assert.All(text.Split('\n'), line => Assert.True(line.Length < Columns && line == line.TrimEnd(), $"'{line}'"));
+        return text;
+    }
+
+    /// <summary>The text's own rules: a chain starts after an empty line; `  symbol = value unit`; `        = formula   [source]`; the verdict, indented by two, ends it.</summary>
+    private static List<PrintedChain> Chains(string text) =>
+        [.. text.Split("\n\n").Skip(1).Select(block =>
+        {
+            string[] printed = block.Split('\n', StringSplitOptions.RemoveEmptyEntries);
+            var lines = new List<DerivedNumber>();
+            var verdict = new List<string>();
+            bool inFormula = false;
+            foreach (string line in printed.Skip(1))
+            {
+                if (Head().Match(line) is { Success: true } head)
+                {
+                    lines.Add(new(head.Groups[1].Value, "", double.Parse(head.Groups[2].Value, NumberStyles.Float, CultureInfo.InvariantCulture), "", "", "", null));
+                    inFormula = false;
+                }
+                else if (Formula().Match(line) is { Success: true } formula)
+                {
+                    lines[^1] = lines[^1] with { Formula = formula.Groups[1].Value };
+                    inFormula = formula.Groups[2].Length == 0;
+                }
+                else if (inFormula && line.StartsWith("          ", StringComparison.Ordinal))
+                {
+                    lines[^1] = lines[^1] with { Formula = lines[^1].Formula + " " + line.Trim() };
+                }
+                else if (!line.StartsWith("        ", StringComparison.Ordinal) && lines.Count > 0)
+                {
+                    verdict.Add(line.Trim());
+                }
+                else
+                {
+                    inFormula = false;
+                }
+            }
+
+            return new PrintedChain(printed[0], lines, string.Join(" ", verdict));
+        })];
+
+    private sealed record PrintedChain(string Heading, IReadOnlyList<DerivedNumber> Lines, string Verdict);
+
+    [GeneratedRegex(@"^  (\w+) += (\S+)")]
+    private static partial Regex Head();
+
+    [GeneratedRegex(@"^        = (.+?)(   \[.*)?$")]
+    private static partial Regex Formula();
+
+    [GeneratedRegex(@": ([\d,]+) trials?\b")]
+    private static partial Regex Trials();
+}
