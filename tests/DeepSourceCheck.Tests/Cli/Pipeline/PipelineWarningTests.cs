@@ -42,7 +42,7 @@ public sealed class PipelineWarningTests : IDisposable
 
     [Fact]
     public void ImportedLeadfields_SayThatThereIsNoBrainNoise() =>
-        Says(_text.WithImported().Warnings(PreparedText.ImportedStudy, ("eeg_sensor_uV_rms: 2", "eeg_sensor_nV_per_rtHz: 20, brain: default")), "with imported leadfields there is no brain noise");
+        Says(_text.WithImported().Warnings(PreparedText.ImportedStudy, ("eeg_sensor_uV_rms: 2", "eeg_total: {rms_uV: 10, derivation: E1-E2, band_Hz: [1, 100]}, eeg_sensor_nV_per_rtHz: 20")), "with imported leadfields there is no brain noise");
 
     [Fact]
     public void ImportedRegionThatLosesPoints_SaysSo_AndOneThatLosesAllIsRefused()
@@ -61,7 +61,7 @@ public sealed class PipelineWarningTests : IDisposable
         _text.WithImported().With("points.tsv", "name\tx\ty\tz\nunknown\t20\t-20\t30\n");
         Assert.Contains("'unknown' is not among the imported points", _text.Refusal(PreparedText.ImportedStudy), StringComparison.Ordinal);
         Assert.Contains("imported", _text.Refusal(PreparedText.ImportedStudy, ("points: points.tsv}]", "ellipsoid: {centre_mm: [0, 0, 0], semi_axes_mm: [3, 3, 3]}}]")), StringComparison.Ordinal);
-        Assert.Contains("'pons' is one of the library", _text.Refusal(PreparedText.ImportedStudy, ("regions: [probe]", "regions: [pons]")), StringComparison.Ordinal);
+        Assert.Contains("the library's region pons has no place among imported leadfields", _text.Refusal(PreparedText.ImportedStudy, ("regions: [probe]", "regions: [pons]")), StringComparison.Ordinal);
     }
 
     [Fact]
