@@ -122,10 +122,14 @@ public sealed class NoiseBuilder
             return;
         }
 
-        string parts = string.Join(", ", terms.SkipLast(1).Where(t => t.Eeg is not null).Select(t => string.Create(CultureInfo.InvariantCulture,
-            $"{t.Name} {Si.ToMicrovolts(Math.Sqrt(BandIntegral.Of(f => t.At(f).Eeg, low, high, t.Breakpoints) * NoiseModel.UnitVariance(t.Eeg!, _totalDerivation!))):0.###} uV")));
+        (string Name, double Variance)[] known = [.. terms.SkipLast(1).Where(t => t.Eeg is not null).Select(t =>
+            (t.Name, BandIntegral.Of(f => t.At(f).Eeg, low, high, t.Breakpoints) * NoiseModel.UnitVariance(t.Eeg!, _totalDerivation!)))];
+        string parts = string.Join(", ", known.Select(k => string.Create(CultureInfo.InvariantCulture, $"{k.Name} {Si.ToMicrovolts(Math.Sqrt(k.Variance)):0.###} uV")));
+        // The stated rms scales a table of fixed shape: so much of it would just hold what is known.
+        EegTotalChoice stated = _choice.EegTotal!;
+        double enough = stated.Rms * Math.Sqrt(known.Sum(k => k.Variance)) / total.Rms(low, high);
         throw new InputException(null, "noise.eeg_total.rms_uV", string.Create(CultureInfo.InvariantCulture,
-            $"over the band of {response.Name}, {low:0.###} to {high:0.###} Hz, the stated total is {Si.ToMicrovolts(total.Rms(low, high)):0.###} uV rms in {_choice.EegTotal!.Derivation}, less than what is in it ({parts}); nothing is left for muscle and electrodes: state a total measured in this band, or noise.brain: none"));
+            $"over the band of {response.Name}, {low:0.###} to {high:0.###} Hz, the stated total comes to {Si.ToMicrovolts(total.Rms(low, high)):0.###} uV rms in {stated.Derivation}, less than what is in it ({parts}); nothing is left for muscle and electrodes: state what you measure, above {Si.ToMicrovolts(enough):0.##} uV here, or noise.brain: none if your participants' brains are quieter than the default tables"));
     }
 
     // The brain dominates a modality where it has more power than everything else together, in the tables' own reading.

@@ -85,7 +85,9 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         string reading = $"{Names.Of(row.Modality)}, {Reading(row)}";
         if (target.Trials.P50 is not { } count)
         {
-            return $"{reading}: out of reach by averaging ({target.Reason ?? row.Reason ?? "no signal"}).";
+            const string Said = "not reachable by averaging: ";
+            string reason = target.Reason ?? row.Reason ?? "no signal";
+            return $"{reading}: out of reach by averaging ({(reason.StartsWith(Said, StringComparison.Ordinal) ? reason[Said.Length..] : reason)}).";
         }
 
         string why = witness is null ? "" : string.Create(CultureInfo.InvariantCulture, $" In one trial {Compare(witness.Power)}.");

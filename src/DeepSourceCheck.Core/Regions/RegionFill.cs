@@ -167,8 +167,8 @@ public static class RegionFill
         string[] warnings = share <= warnShare ? [] :
         [
             string.Create(CultureInfo.InvariantCulture,
-                $"{all.Name}: {100 * share:0} % of it ({dropped.Count} of {count} dipoles) "
-                + $"does not fit {head.Name} and was dropped; the figures stand for the rest"),
+                $"{all.Name}: {100 * share:0} % of it ({dropped.Count:N0} of {count:N0} dipoles) "
+                + $"does not fit into the head ({head.Name}) and was dropped; the figures stand for the rest"),
         ];
         return new()
         {

@@ -253,10 +253,10 @@ public static class TrialsFigure
         string both = $"{from} to {to}";
         float half = FigurePen.Width(both, FigurePen.Small) / 2;
         float x = Math.Clamp((left + right) / 2, pen.Left - 20 + half, pen.Right + 26 - half);
-        if (plumb > x - half - 4 && plumb < x + half + 4)
+        float beyond = plumb + half + 6;
+        if (plumb > x - half - 4 && plumb < x + half + 4 && beyond + half <= pen.Right + 26)
         {
-            float beyond = plumb + half + 6;
-            x = beyond + half <= pen.Right + 26 ? beyond : Math.Max(pen.Left - 20 + half, plumb - half - 6);
+            x = beyond;
         }
 
         pen.Text(both, x, y + 13, FigurePen.Small, Anchor.Middle, colour: Palette.Ink2, halo: true);

@@ -19,7 +19,7 @@ internal static class FigureSection
 
         HtmlReport.Section(html, "figures", "Figures");
         html.Open("div", "class", "key");
-        foreach (Modality modality in new[] { Modality.Eeg, Modality.Meg, Modality.Both })
+        foreach (Modality modality in assessment.Responses.SelectMany(r => r.Regions).SelectMany(r => r.Verdicts).Select(v => v.Modality).Distinct().Order())
         {
             html.Open("span").Raw(InlineFigure.Mark(modality)).Raw(InlineFigure.Line(modality)).Text(modality == Modality.Both ? "both together" : Names.Of(modality)).Close();
         }

@@ -57,13 +57,14 @@ public class DefaultStudyTests
     }
 
     [Fact]
-    public void SkullConductivity_HardlyMovesMeg_AndMovesEegAboutFourfold()
+    public void SkullConductivity_HardlyMovesMeg_AndMovesEegByWhatThePotentialSays()
     {
-        // Noise is a measured fact: it does not move with the head. Radial dipole 23 mm from the centre: 0.052 uV/nAm at 0.004 S/m, 0.105 at 0.033 S/m, fourfold in trials
-        // (series computed apart from this program).
+        // Noise is a measured fact: it does not move with the head. A radial dipole below the electrode moves fourfold in trials over this range; the vertical one between Cz and the
+        // mastoids moves less: 0.05040 and 0.08015 uV/nAm at the region's centre, boundary conditions solved degree by degree apart from this program.
         WholeChain resistive = WithSkull(0.004), conductive = WithSkull(0.033);
         Assert.InRange(Meg(resistive) / (double)Meg(conductive), 0.999, 1.001);
-        Assert.InRange(Eeg(resistive) / (double)Eeg(conductive), 3.0, 6.0);
+        const double roundingOfCounts = 0.01, expected = 80.14553695117371 * 80.14553695117371 / (50.39504351078803 * 50.39504351078803);
+        Assert.InRange(Eeg(resistive) / (double)Eeg(conductive) / expected, 1 - roundingOfCounts, 1 + roundingOfCounts);
 
         static WholeChain WithSkull(double conductivity) => WholeChain.Default(("spheres: {preset: adult-4}", FormattableString.Invariant(
             $"spheres: {{centre_mm: [0, -18, 5], layers: [{{tissue: brain, radius_mm: 78, conductivity_S_per_m: 0.33}}, {{tissue: csf, radius_mm: 80, conductivity_S_per_m: 1.79}}, {{tissue: skull, radius_mm: 86, conductivity_S_per_m: {conductivity}}}, {{tissue: scalp, radius_mm: 92, conductivity_S_per_m: 0.43}}]}}")));

@@ -57,6 +57,21 @@ public sealed class CovarianceFileTests
         Assert.StartsWith("c.npy", error.Message, StringComparison.Ordinal);
     }
 
+    [Fact]
+    public void RowOfZeros_IsKeptOnlyWhereAReferenceMayStand()
+    {
+        double[] referenced = [0, 0, 0, 0, 2 * Tiny, Tiny, 0, Tiny, 2 * Tiny];
+        using ScratchFolder folder = new();
+        NpyWriter.Write(folder.At("c.npy"), [3, 3], referenced);
+        Assert.Equal(referenced, CovarianceFile.Read(folder.At("c.npy"), "c.npy", 3, mayHoldReference: true));
+        Assert.Contains("variance of row 1", Assert.Throws<InputException>(() => CovarianceFile.Read(folder.At("c.npy"), "c.npy", 3)).Message, StringComparison.Ordinal);
+
+        NpyWriter.Write(folder.At("z.npy"), [2, 2], new double[4]);
+        Assert.Contains("every variance is 0", Assert.Throws<InputException>(() => CovarianceFile.Read(folder.At("z.npy"), "z.npy", 2, mayHoldReference: true)).Message, StringComparison.Ordinal);
+        NpyWriter.Write(folder.At("half.npy"), [2, 2], [0, Tiny, Tiny, 2 * Tiny]);
+        Assert.Contains("variance of row 1", Assert.Throws<InputException>(() => CovarianceFile.Read(folder.At("half.npy"), "half.npy", 2, mayHoldReference: true)).Message, StringComparison.Ordinal);
+    }
+
     [Theory]
     [InlineData("1,0\n0,1\n", 3, "3")]
     [InlineData("1,0\n0\n", 2, "c.csv:2")]
