@@ -1,11 +1,10 @@
 using System.CommandLine;
 using System.Globalization;
-
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
-using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Report.Console;
 
 namespace DeepSourceCheck.Cli.Commands;

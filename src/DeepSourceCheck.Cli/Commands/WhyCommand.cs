@@ -1,11 +1,10 @@
 using System.CommandLine;
 using System.Text.Json;
-
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
-using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Report.Console;
 
 namespace DeepSourceCheck.Cli.Commands;
