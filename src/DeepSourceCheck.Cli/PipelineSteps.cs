@@ -1,6 +1,6 @@
 using DeepSourceCheck.Cli.Pipeline;
-using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Files.Studies;
 
 namespace DeepSourceCheck.Cli;
 

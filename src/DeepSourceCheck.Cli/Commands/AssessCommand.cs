@@ -1,9 +1,8 @@
 using System.CommandLine;
-
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
-using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Report;
 using DeepSourceCheck.Report.Console;
 using DeepSourceCheck.Report.Tables;
