@@ -28,8 +28,8 @@ public sealed record PointsTable(IReadOnlyList<TablePoint> Points, IReadOnlyList
             table.Problems.Add(0, string.Join(", ", DirectionColumns.Where(c => !table.Has(c))), "the column is missing: a direction needs all three of direction_x, direction_y, direction_z");
         }
 
-        Dictionary<string, int> seen = new(StringComparer.Ordinal);
-        List<TablePoint> points = [];
+        Dictionary<string, int> seen = new(table.Rows.Count, StringComparer.Ordinal);
+        List<TablePoint> points = new(table.Rows.Count);
         int rounded = 0;
         foreach (TsvRow row in table.Rows)
         {
