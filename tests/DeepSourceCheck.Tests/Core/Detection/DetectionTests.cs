@@ -62,7 +62,11 @@ public class DetectionTests
     public void SessionTrials_FollowTheContract(double minutes, double rate, double rejected, int conditions, int replications, long trials) =>
         Assert.Equal(trials, SessionPlan.Trials(new Protocol
         {
-            Session = 60 * minutes, Rate = rate, RejectedFraction = rejected, Conditions = conditions, Replications = replications,
+            Session = 60 * minutes,
+            Rate = rate,
+            RejectedFraction = rejected,
+            Conditions = conditions,
+            Replications = replications,
         }));
 
     [Fact]

@@ -14,12 +14,19 @@ public class NoiseTests
 
     private static readonly Response Click = new()
     {
-        Name = "click", Key = "responses.click", Regions = [], Moment = 1e-9, Band = new Band(100, 1500), Direction = new DirectionChoice(DirectionName.Isotropic, null),
+        Name = "click",
+        Key = "responses.click",
+        Regions = [],
+        Moment = 1e-9,
+        Band = new Band(100, 1500),
+        Direction = new DirectionChoice(DirectionName.Isotropic, null),
     };
 
     private static readonly NoiseChoice Default = new()
     {
-        EegDensity = 20e-9, MegDensity = 5e-15, EegTotal = new EegTotalChoice(2e-6, "Cz-mastoids", new Band(100, 3000)),
+        EegDensity = 20e-9,
+        MegDensity = 5e-15,
+        EegTotal = new EegTotalChoice(2e-6, "Cz-mastoids", new Band(100, 3000)),
     };
 
     private static readonly double[] CzMastoids = [1, -0.5, -0.5];

@@ -47,8 +47,22 @@ public class StudyKeysTests
     // Units as they end a key's name, with the unit that the registry must state.
     private static readonly Dictionary<string, string> UnitOfEnding = new()
     {
-        ["_mm"] = "mm", ["_deg"] = "deg", ["_Hz"] = "Hz", ["_S_per_m"] = "S/m", ["_nV_per_rtHz"] = "nV/sqrt(Hz)", ["_fT_per_rtHz"] = "fT/sqrt(Hz)", ["_fT_per_cm_rtHz"] = "fT/cm/sqrt(Hz)",
-        ["_uV"] = "uV", ["_fT"] = "fT", ["_nAm"] = "nAm", ["_ms"] = "ms", ["_min"] = "min", ["_per_s"] = "1/s", ["_uV_rms"] = "uV", ["_fT_rms"] = "fT", ["_nV"] = "nV",
+        ["_mm"] = "mm",
+        ["_deg"] = "deg",
+        ["_Hz"] = "Hz",
+        ["_S_per_m"] = "S/m",
+        ["_nV_per_rtHz"] = "nV/sqrt(Hz)",
+        ["_fT_per_rtHz"] = "fT/sqrt(Hz)",
+        ["_fT_per_cm_rtHz"] = "fT/cm/sqrt(Hz)",
+        ["_uV"] = "uV",
+        ["_fT"] = "fT",
+        ["_nAm"] = "nAm",
+        ["_ms"] = "ms",
+        ["_min"] = "min",
+        ["_per_s"] = "1/s",
+        ["_uV_rms"] = "uV",
+        ["_fT_rms"] = "fT",
+        ["_nV"] = "nV",
     };
 
     [Fact]
