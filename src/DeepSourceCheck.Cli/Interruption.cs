@@ -68,7 +68,7 @@ internal sealed class Interruption : IDisposable
         var watchdog = new Thread(() =>
         {
             Thread.Sleep(Grace);
-            EndNow(attempts: 8);
+            EndNow(attempts: 50);
         })
         { IsBackground = true, Name = "interruption" };
         watchdog.Start();

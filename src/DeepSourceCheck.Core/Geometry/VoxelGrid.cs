@@ -47,9 +47,6 @@ public sealed class VoxelGrid
     /// <summary>Volume of one voxel [m^3].</summary>
     public double VoxelVolume => Math.Abs(ToWorld.Determinant);
 
-    /// <summary>Edge lengths of one voxel [m].</summary>
-    public Vec3 VoxelSize => new(ToWorld.Column(0).Norm, ToWorld.Column(1).Norm, ToWorld.Column(2).Norm);
-
     /// <summary>Position in memory of voxel (i, j, k), which must lie in the box.</summary>
     public int Index(int i, int j, int k) => i + Nx * (j + Ny * k);
 

@@ -32,12 +32,6 @@ public static class CoilArray
     public static IReadOnlyList<string> Coils { get; } =
         ["magnetometer", "axial-gradiometer", "planar-gradiometer", "on-scalp", "on-scalp-triaxial"];
 
-    /// <summary>Gap from the scalp to the nearest coil [m] where the study states none: 7 mm on the scalp, else 30 mm (typical of cryogenic arrays).</summary>
-    public static double DefaultGap(string coil) => coil is "on-scalp" or "on-scalp-triaxial" ? 0.007 : 0.030;
-
-    /// <summary>Baseline of a gradiometer [m] where the study states none: 60 mm axial, 15 mm planar; 0 for others.</summary>
-    public static double DefaultBaseline(string coil) => coil switch { "axial-gradiometer" => 0.060, "planar-gradiometer" => 0.015, _ => 0.0 };
-
     /// <summary>Channels of an array, one integration point a loop, from the top of the cap downwards.</summary>
     /// <param name="choice">Coil, sites, baseline, gap and edge.</param>
     /// <param name="centre">Centre of the head [m].</param>

@@ -108,17 +108,6 @@ public sealed class FigurePen
         _canvas.DrawLine(x0, y0, x1, y1, paint);
     }
 
-    /// <summary>A dotted line: an assumption's leader.</summary>
-    public void Dotted(float x0, float y0, float x1, float y1, SKColor colour)
-    {
-        float length = MathF.Sqrt((x1 - x0) * (x1 - x0) + (y1 - y0) * (y1 - y0));
-        for (float s = 0; s < length; s += 4)
-        {
-            float a = s / length, b = Math.Min(length, s + 1.5f) / length;
-            Line(x0 + a * (x1 - x0), y0 + a * (y1 - y0), x0 + b * (x1 - x0), y0 + b * (y1 - y0), colour, 1.2f);
-        }
-    }
-
     /// <summary>A filled rectangle.</summary>
     public void Rectangle(float left, float top, float right, float bottom, SKColor colour)
     {

@@ -54,7 +54,6 @@ public sealed class VoxelGridTests
     {
         VoxelGrid grid = new(2, 2, 2, new(new(0, 0.003, 0), new(-0.002, 0, 0), new(0, 0, 0.004), Vec3.Zero));
         RelativeAssert.Equal(24e-9, grid.VoxelVolume, Rounding);
-        Assert.Equal(new Vec3(0.002, 0.003, 0.004), grid.VoxelSize);
         (Vec3 low, Vec3 high) = grid.WorldBounds();
         RelativeAssert.Close([-0.0015, -0.003, -0.002], [low.X, low.Y, low.Z], Rounding);
         RelativeAssert.Close([0.0045, 0.001, 0.006], [high.X, high.Y, high.Z], Rounding);

@@ -13,7 +13,7 @@ public class CoilArrayTests
     private static readonly Vec3 Centre = new(0.001, -0.018, 0.005);
 
     private static CoilArrayChoice Choice(string coil, int sites = 200) =>
-        new(coil, sites, CoilArray.DefaultBaseline(coil), CoilArray.DefaultGap(coil), Default.Front, Default.Back);
+        new(coil, sites, coil switch { "axial-gradiometer" => 0.060, "planar-gradiometer" => 0.015, _ => 0 }, coil.StartsWith("on-scalp", StringComparison.Ordinal) ? 0.007 : 0.030, Default.Front, Default.Back);
 
     [Fact]
     public void Sites_AreExactlyAsManyAsAskedAndAboveTheEdge() =>
