@@ -27,5 +27,5 @@ public class KernelBenchmarks
     public void DenseWhitening() => _work.Whiten();
 
     [Benchmark]
-    public double MultiplyAddPeak() => KernelWork.MultiplyAdds();
+    public double MultiplyAddPeak() => _work.MultiplyAdds();
 }

@@ -13,7 +13,7 @@ internal static class KernelTable
     {
         var work = new KernelWork();
         double dipoles = KernelWork.Dipoles;
-        double peak = Time(() => KernelWork.MultiplyAdds())[0];
+        double peak = Time(() => work.MultiplyAdds())[0];
         double peakRate = 2e-9 * KernelWork.PeakMultiplyAdds / peak;
         var least = new Dictionary<string, double>();
         output.WriteLine($"kernel                                         least   median     most   goal   unit, one thread; {work.Degrees:0.0} degrees on average");

@@ -10,28 +10,16 @@ internal static class Yardstick
     public static int Run(TextWriter output)
     {
         string script = Path.Combine(AppContext.BaseDirectory, "yardstick.py");
-        string[] lines;
-        try
+        string[]? lines = null;
+        string reason = "";
+        foreach (string python in new[] { "python3", "/usr/bin/python3" }.TakeWhile(_ => lines is null))
         {
-            var start = new ProcessStartInfo("python3", [script]) { RedirectStandardOutput = true, RedirectStandardError = true };
-            foreach (string variable in new[] { "OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS" })
-            {
-                start.Environment[variable] = "1";
-            }
-
-            using Process process = Process.Start(start)!;
-            Task<string> errors = process.StandardError.ReadToEndAsync();
-            lines = process.StandardOutput.ReadToEnd().Split('\n', StringSplitOptions.RemoveEmptyEntries);
-            process.WaitForExit();
-            if (process.ExitCode != 0)
-            {
-                output.WriteLine($"yardstick skipped: {errors.Result.Trim().Split('\n')[^1]} (apt-get install python3-numpy)");
-                return 0;
-            }
+            lines = Lines(python, script, ref reason);
         }
-        catch (System.ComponentModel.Win32Exception error)
+
+        if (lines is null)
         {
-            output.WriteLine($"yardstick skipped: python3 does not start: {error.Message}");
+            output.WriteLine($"yardstick skipped: {reason}; apt-get install python3-numpy");
             return 0;
         }
 
@@ -44,5 +32,29 @@ internal static class Yardstick
         }
 
         return 0;
+    }
+
+    private static string[]? Lines(string python, string script, ref string reason)
+    {
+        var start = new ProcessStartInfo(python, [script]) { RedirectStandardOutput = true, RedirectStandardError = true };
+        foreach (string variable in new[] { "OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS" })
+        {
+            start.Environment[variable] = "1";
+        }
+
+        try
+        {
+            using Process process = Process.Start(start)!;
+            Task<string> errors = process.StandardError.ReadToEndAsync();
+            string[] lines = process.StandardOutput.ReadToEnd().Split('\n', StringSplitOptions.RemoveEmptyEntries);
+            process.WaitForExit();
+            reason = errors.Result.Trim().Split('\n')[^1];
+            return process.ExitCode == 0 ? lines : null;
+        }
+        catch (System.ComponentModel.Win32Exception error)
+        {
+            reason = error.Message;
+            return null;
+        }
     }
 }
