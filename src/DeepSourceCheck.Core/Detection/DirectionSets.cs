@@ -26,7 +26,7 @@ public static class DirectionSets
     /// </summary>
     /// <remarks>
     /// A million values place a percentile to 0.05 % in rank, some 0.01 dB for a spread of 20 dB. Measured on 300,000 dipoles (2 of 32 and of 256 directions each) against four times as
-    /// many values: at most 0.003 dB.
+    /// many values: at most 0.014 dB at the 5th percentile, 0.003 dB at the others.
     /// </remarks>
     public const long MostValues = 1 << 20;
 
