@@ -1,5 +1,4 @@
 using System.CommandLine;
-
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Core.Results;

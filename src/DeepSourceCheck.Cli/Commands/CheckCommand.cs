@@ -1,6 +1,5 @@
 using System.CommandLine;
 using System.Globalization;
-
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Core.Heads;

@@ -66,12 +66,23 @@ internal sealed class SensorAssembly
     /// <param name="inputs">Receives the files that are read.</param>
     /// <param name="warnings">Receives what the user must know.</param>
     /// <exception cref="InputException">A table is wrong, or sensors and head do not fit.</exception>
-    public static SensorAssembly Build(StudyReading reading, InputDigests inputs, List<string> warnings) => reading.Study.Head switch
+    public static SensorAssembly Build(StudyReading reading, InputDigests inputs, List<string> warnings)
     {
-        SphereHeadChoice choice => OnSphere(reading, choice.Sphere, inputs, warnings),
-        ImportedHeadChoice choice => FromImport(reading, choice, inputs, warnings),
-        _ => throw new InvalidOperationException($"no sensors for {reading.Study.Head.GetType().Name}"),
-    };
+        try
+        {
+            return reading.Study.Head switch
+            {
+                SphereHeadChoice choice => OnSphere(reading, choice.Sphere, inputs, warnings),
+                ImportedHeadChoice choice => FromImport(reading, choice, inputs, warnings),
+                _ => throw new InvalidOperationException($"no sensors for {reading.Study.Head.GetType().Name}"),
+            };
+        }
+        catch (InputException error) when (error.Problems.All(p => p.File is null))
+        {
+            // The electrodes know no files: the study gives the place of their keys.
+            throw new InputException([.. error.Problems.Select(p => reading.Problem(p.Key ?? "sensors", p.Message))]);
+        }
+    }
 
     /// <summary>The study's parts, without noise.</summary>
     public StudySetup Setup(Study study, IReadOnlyList<FilledRegion> regions) => new()

@@ -28,7 +28,7 @@ public enum DirectionMode
 /// The channels of one block of eight dipoles in one response: referenced, scaled to unit noise, whitened, split. Measures ask it for powers per squared moment [1/(A m)^2].
 /// One a thread; figures of the current direction are computed once, however many measures ask.
 /// </summary>
-public sealed class BlockSignals
+public sealed partial class BlockSignals
 {
     private readonly SignalSpace _space;
     private readonly IHead _head;
@@ -36,6 +36,8 @@ public sealed class BlockSignals
     private readonly double[] _reference, _eegScaled, _eegAmplitude, _derivations, _eegWhite, _megScaled, _megWhite, _megAmplitude, _joint, _jointWhite;
     private readonly int[] _peakMeg;
     private readonly bool _eegAlike, _megAlike;
+    private readonly int _eegWhiteSlot = 2, _megWhiteSlot = 3;
+    private readonly PairSearch _pairs = new();
     private readonly Vector512<double>[][] _grams = [new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6], new Vector512<double>[6]];
     private readonly bool[] _gramReady = new bool[5];
     private readonly Vector512<double>[] _figures = new Vector512<double>[5];
@@ -60,9 +62,25 @@ public sealed class BlockSignals
         _eegScaled = new double[eeg * width];
         _eegAmplitude = new double[eeg * width];
         _derivations = new double[(space.Derivations?.Outputs ?? 0) * width];
-        _eegWhite = new double[(space.EegWhitener?.Rank ?? 0) * width];
+        if (space.EegWhitener is { } eegWhitener && eegWhitener.OnlyScales(electrodes) && eeg == electrodes)
+        {
+            (_eegWhite, _eegWhiteSlot) = (_eegScaled, 0);       // independent channels: whitened is scaled
+        }
+        else
+        {
+            _eegWhite = new double[(space.EegWhitener?.Rank ?? 0) * width];
+        }
+
         _megScaled = new double[meg * width];
-        _megWhite = new double[(space.MegWhitener?.Rank ?? 0) * width];
+        if (space.MegWhitener is { } megWhitener && megWhitener.OnlyScales(meg))
+        {
+            (_megWhite, _megWhiteSlot) = (_megScaled, 1);
+        }
+        else
+        {
+            _megWhite = new double[(space.MegWhitener?.Rank ?? 0) * width];
+        }
+
         _joint = new double[space.JointWhitener is null ? 0 : (electrodes + meg) * width];
         _jointWhite = new double[(space.JointWhitener?.Rank ?? 0) * width];
 
@@ -93,7 +111,11 @@ public sealed class BlockSignals
                 Scale(_reference, _space.EegChannels, null, _eegAmplitude);
             }
 
-            _space.EegWhitener!.Apply(_reference, _eegWhite);
+            if (_eegWhiteSlot != 0)
+            {
+                _space.EegWhitener!.Apply(_reference, _eegWhite);
+            }
+
             if (_space.Derivations is { } derivations)
             {
                 derivations.Apply(block.Eeg, _derivations);
@@ -111,7 +133,10 @@ public sealed class BlockSignals
                     Scale(block.Meg, _peakMeg, null, _megAmplitude);
                 }
 
-                megWhitener.Apply(block.Meg, _megWhite);
+                if (_megWhiteSlot != 1)
+                {
+                    megWhitener.Apply(block.Meg, _megWhite);
+                }
             }
         }
 
@@ -175,8 +200,8 @@ public sealed class BlockSignals
 
             if (_mode == DirectionMode.Best)
             {
-                Vector512<double>[] total = new Vector512<double>[6];
-                ReadOnlySpan<Vector512<double>> e = Gram(2, _eegWhite, _space.EegWhitener!.Rank), m = Gram(3, _megWhite, _space.MegWhitener!.Rank);
+                Span<Vector512<double>> total = stackalloc Vector512<double>[6];
+                ReadOnlySpan<Vector512<double>> e = Gram(_eegWhiteSlot, _eegWhite, _space.EegWhitener!.Rank), m = Gram(_megWhiteSlot, _megWhite, _space.MegWhitener!.Rank);
                 for (int k = 0; k < 6; k++)
                 {
                     total[k] = Vector512.Create(_space.EegCorrection) * e[k] + Vector512.Create(_space.MegCorrection) * m[k];
@@ -189,8 +214,8 @@ public sealed class BlockSignals
         }
 
         return modality == Modality.Eeg
-            ? Sum(2, _eegWhite, _space.EegWhitener!.Rank) * Vector512.Create(_space.EegCorrection)
-            : Sum(3, _megWhite, _space.MegWhitener!.Rank) * Vector512.Create(_space.MegCorrection);
+            ? Sum(_eegWhiteSlot, _eegWhite, _space.EegWhitener!.Rank) * Vector512.Create(_space.EegCorrection)
+            : Sum(_megWhiteSlot, _megWhite, _space.MegWhitener!.Rank) * Vector512.Create(_space.MegCorrection);
     }
 
     /// <summary>(derivation / noise)^2.</summary>
@@ -297,49 +322,33 @@ public sealed class BlockSignals
         return Vector512.Create<double>(power);
     }
 
-    // The largest eigenvalue of the two readings' 2 x 2 Gram matrix, over all channels that may be chosen. It never exceeds the trace, so that pairs of weak channels are passed over;
-    // the strongest EEG channels come first.
+    // The largest eigenvalue of the two readings' 2 x 2 Gram matrix, over all channels that may be chosen.
     private Vector512<double> BestPair(int derivation)
     {
         ReadOnlySpan<Vector512<double>> eeg = Lanes.View(derivation >= 0 ? _derivations : _eegScaled), meg = Lanes.View(_megScaled);
         int first = Math.Max(derivation, 0), count = derivation >= 0 ? 1 : _space.EegChannels.Length;
-        Span<int> order = stackalloc int[count];
-        Span<double> strength = stackalloc double[count];
-        for (int i = 0; i < count; i++)
+        ReadOnlySpan<Vector512<double>> rows = eeg.Slice(3 * first, 3 * count);
+        if (_space.ChannelCorrelation is null)
         {
-            int row = first + i;
-            order[i] = row;
-            strength[i] = -Vector512.Sum(eeg[3 * row] * eeg[3 * row] + eeg[3 * row + 1] * eeg[3 * row + 1] + eeg[3 * row + 2] * eeg[3 * row + 2]);
+            // A direction that the array does not see at all is one to which every MEG row is orthogonal: the search may use it.
+            LaneDirection weakest = Axis(2);
+            Vector512<double> known = Vector512.Equals(Lanes.View(Split.SingularValues)[2], default) & Vector512.Equals(weakest.X, weakest.X);
+            return _pairs.Largest(rows, count, meg, _space.MegSd.Length, new(weakest.X & known, weakest.Y & known, weakest.Z & known));
         }
 
-        strength.Sort(order);
-        bool independent = _space.ChannelCorrelation is null;
-        Vector512<double> strongest = Lanes.LargestNorm(_megScaled, _space.MegSd.Length, out _);
         Vector512<double> best = default, half = Vector512.Create(0.5), four = Vector512.Create(4.0);
-        foreach (int i in order)
+        for (int i = 0; i < count; i++)
         {
-            Vector512<double> ex = eeg[3 * i], ey = eeg[3 * i + 1], ez = eeg[3 * i + 2], ee = ex * ex + ey * ey + ez * ez;
-            if (independent && Vector512.LessThanAll(ee + strongest, best))
-            {
-                continue;
-            }
-
+            Vector512<double> ex = rows[3 * i], ey = rows[3 * i + 1], ez = rows[3 * i + 2], ee = ex * ex + ey * ey + ez * ez;
             for (int k = 0; k < _space.MegSd.Length; k++)
             {
-                Vector512<double> x = meg[3 * k], y = meg[3 * k + 1], z = meg[3 * k + 2];
-                if (!independent)
-                {
-                    double rho = Correlation(derivation, i, k);
-                    Vector512<double> r = Vector512.Create(rho), w = Vector512.Create(1 / Math.Sqrt(1 - rho * rho));
-                    x = w * (x - r * ex);
-                    y = w * (y - r * ey);
-                    z = w * (z - r * ez);
-                }
-
+                double rho = Correlation(derivation, i, k);
+                Vector512<double> r = Vector512.Create(rho), w = Vector512.Create(1 / Math.Sqrt(1 - rho * rho));
+                Vector512<double> x = w * (meg[3 * k] - r * ex), y = w * (meg[3 * k + 1] - r * ey), z = w * (meg[3 * k + 2] - r * ez);
                 Vector512<double> mm = x * x + y * y + z * z;
                 if (Vector512.LessThanAll(ee + mm, best))
                 {
-                    continue;
+                    continue;                                   // the largest eigenvalue never exceeds the trace
                 }
 
                 Vector512<double> em = ex * x + ey * y + ez * z, difference = ee - mm;

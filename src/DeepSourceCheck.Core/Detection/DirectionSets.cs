@@ -24,8 +24,11 @@ public static class DirectionSets
     /// Largest number of (dipole, direction) values that percentiles of one measure are made of. Beyond it each block of dipoles takes every n-th direction of a set, the start moving on
     /// from block to block, so that all directions are used alike and the time no longer grows with the set.
     /// </summary>
-    /// <remarks>Four million values place a percentile to 0.02 % in rank, some 0.003 dB for a spread of 20 dB.</remarks>
-    public const long MostValues = 1 << 22;
+    /// <remarks>
+    /// A million values place a percentile to 0.05 % in rank, some 0.01 dB for a spread of 20 dB. Measured on 300,000 dipoles (2 of 32 and of 256 directions each) against four times as
+    /// many values: at most 0.014 dB at the 5th percentile, 0.003 dB at the others.
+    /// </remarks>
+    public const long MostValues = 1 << 20;
 
     /// <summary>n: 1 takes the whole set; else a power of two, at most the set's size.</summary>
     /// <param name="dipoles">Dipoles of the region.</param>

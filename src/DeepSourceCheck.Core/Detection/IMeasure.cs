@@ -17,6 +17,25 @@ public interface IMeasure
     /// <param name="signals">Channels of the block.</param>
     Vector512<double> Power(BlockSignals signals);
 
+    /// <summary>Mean of <see cref="Power"/> over the set that was asked with <see cref="BlockSignals.AskSet"/>; may leave another direction asked.</summary>
+    /// <param name="signals">Channels of the block.</param>
+    Vector512<double> Mean(BlockSignals signals) => MeanOfEach(this, signals);
+
+    /// <summary>The same, direction by direction.</summary>
+    /// <param name="measure">Measure.</param>
+    /// <param name="signals">Channels of the block.</param>
+    static Vector512<double> MeanOfEach(IMeasure measure, BlockSignals signals)
+    {
+        Vector512<double> sum = default;
+        foreach (LaneDirection u in signals.Set)
+        {
+            signals.Ask(DirectionMode.OfSet, u);
+            sum += measure.Power(signals);
+        }
+
+        return sum / Vector512.Create((double)signals.Set.Length);
+    }
+
     /// <summary>1/s^2 of what was read in that direction [1/V^2, 1/T^2 or 1/(T/m)^2]; NaN where not defined. By it a locked artefact is scaled.</summary>
     ArtefactScale InverseVariance(BlockSignals signals);
 }

@@ -34,16 +34,16 @@ public static class Lanes
         int k = 0;
         for (; k + 1 < count; k += 2)
         {
-            Vector512<double> a = x[3 * k] * u.X + x[3 * k + 1] * u.Y + x[3 * k + 2] * u.Z;
-            Vector512<double> b = x[3 * k + 3] * u.X + x[3 * k + 4] * u.Y + x[3 * k + 5] * u.Z;
-            even += a * a;
-            odd += b * b;
+            Vector512<double> a = Fma(x[3 * k], u.X, Fma(x[3 * k + 1], u.Y, x[3 * k + 2] * u.Z));
+            Vector512<double> b = Fma(x[3 * k + 3], u.X, Fma(x[3 * k + 4], u.Y, x[3 * k + 5] * u.Z));
+            even = Fma(a, a, even);
+            odd = Fma(b, b, odd);
         }
 
         if (k < count)
         {
-            Vector512<double> a = x[3 * k] * u.X + x[3 * k + 1] * u.Y + x[3 * k + 2] * u.Z;
-            even += a * a;
+            Vector512<double> a = Fma(x[3 * k], u.X, Fma(x[3 * k + 1], u.Y, x[3 * k + 2] * u.Z));
+            even = Fma(a, a, even);
         }
 
         return even + odd;
@@ -57,12 +57,12 @@ public static class Lanes
         for (int k = 0; k < count; k++)
         {
             Vector512<double> x = v[3 * k], y = v[3 * k + 1], z = v[3 * k + 2];
-            xx += x * x;
-            yy += y * y;
-            zz += z * z;
-            xy += x * y;
-            xz += x * z;
-            yz += y * z;
+            xx = Fma(x, x, xx);
+            yy = Fma(y, y, yy);
+            zz = Fma(z, z, zz);
+            xy = Fma(x, y, xy);
+            xz = Fma(x, z, xz);
+            yz = Fma(y, z, yz);
         }
 
         (gram[0], gram[1], gram[2], gram[3], gram[4], gram[5]) = (xx, yy, zz, xy, xz, yz);
@@ -118,9 +118,54 @@ public static class Lanes
         return best0;
     }
 
+    /// <summary>Sum over directions of the largest (row . u)^2: what <see cref="Largest"/> gives, without the row, four directions a pass.</summary>
+    /// <param name="rows">[row][axis][lane].</param>
+    /// <param name="count">Number of rows, at least 1.</param>
+    /// <param name="set">Directions of each lane.</param>
+    public static Vector512<double> SumOfLargest(ReadOnlySpan<double> rows, int count, ReadOnlySpan<LaneDirection> set)
+    {
+        ref Vector512<double> x = ref MemoryMarshal.GetReference(View(rows));
+        Vector512<double> sum = default;
+        int at = 0;
+        for (; at + 3 < set.Length; at += 4)
+        {
+            Vector512<double> ax = set[at].X, ay = set[at].Y, az = set[at].Z, bx = set[at + 1].X, by = set[at + 1].Y, bz = set[at + 1].Z;
+            Vector512<double> cx = set[at + 2].X, cy = set[at + 2].Y, cz = set[at + 2].Z, dx = set[at + 3].X, dy = set[at + 3].Y, dz = set[at + 3].Z;
+            Vector512<double> a = default, b = default, c = default, d = default;
+            for (int k = 0; k < count; k++)
+            {
+                ref Vector512<double> row = ref Unsafe.Add(ref x, 3 * k);
+                Vector512<double> x0 = row, x1 = Unsafe.Add(ref row, 1), x2 = Unsafe.Add(ref row, 2);
+                a = Further(a, x0, x1, x2, ax, ay, az);
+                b = Further(b, x0, x1, x2, bx, by, bz);
+                c = Further(c, x0, x1, x2, cx, cy, cz);
+                d = Further(d, x0, x1, x2, dx, dy, dz);
+            }
+
+            sum += a * a + b * b + c * c + d * d;
+        }
+
+        for (; at < set.Length; at++)
+        {
+            sum += Largest(rows, count, set[at], out _);
+        }
+
+        return sum;
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<double> Fma(Vector512<double> a, Vector512<double> b, Vector512<double> c) => Vector512.MultiplyAddEstimate(a, b, c);
+
+    // max(best, |row . u|)
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<double> Further(
+        Vector512<double> best, Vector512<double> x0, Vector512<double> x1, Vector512<double> x2, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz) =>
+        Vector512.Max(best, Vector512.Abs(Fma(x0, ux, Fma(x1, uy, x2 * uz))));
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static Vector512<double> Square(ref Vector512<double> row, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz)
     {
-        Vector512<double> a = row * ux + Unsafe.Add(ref row, 1) * uy + Unsafe.Add(ref row, 2) * uz;
+        Vector512<double> a = Fma(row, ux, Fma(Unsafe.Add(ref row, 1), uy, Unsafe.Add(ref row, 2) * uz));
         return a * a;
     }
 
@@ -138,7 +183,7 @@ public static class Lanes
         Vector512<double> best = Vector512.Create(-1.0), at = default, number = default, one = Vector512.Create(1.0);
         for (int k = 0; k < count; k++)
         {
-            Vector512<double> a = x[3 * k] * x[3 * k] + x[3 * k + 1] * x[3 * k + 1] + x[3 * k + 2] * x[3 * k + 2];
+            Vector512<double> a = Fma(x[3 * k], x[3 * k], Fma(x[3 * k + 1], x[3 * k + 1], x[3 * k + 2] * x[3 * k + 2]));
             Vector512<double> larger = Vector512.GreaterThan(a, best);
             best = Vector512.ConditionalSelect(larger, a, best);
             at = Vector512.ConditionalSelect(larger, number, at);

@@ -19,6 +19,9 @@ public sealed class ChannelMeanMeasure(SignalSpace space, Modality modality) : I
     public Vector512<double> Power(BlockSignals signals) => signals.ChannelMean(modality);
 
     /// <inheritdoc/>
+    public Vector512<double> Mean(BlockSignals signals) => signals.MeanChannelMean(modality);
+
+    /// <inheritdoc/>
     public ArtefactScale InverseVariance(BlockSignals signals) =>
         modality == Modality.Eeg ? new(Vector512.Create(_meanInverse), default) : new(default, Vector512.Create(_meanInverse));
 }
@@ -36,6 +39,9 @@ public sealed class BestChannelMeasure(SignalSpace space, Modality modality) : I
 
     /// <inheritdoc/>
     public Vector512<double> Power(BlockSignals signals) => signals.BestChannel(modality, out _);
+
+    /// <inheritdoc/>
+    public Vector512<double> Mean(BlockSignals signals) => signals.MeanBestChannel(modality);
 
     /// <inheritdoc/>
     public ArtefactScale InverseVariance(BlockSignals signals)
@@ -75,6 +81,9 @@ public sealed class DerivationMeasure(SignalSpace space, int index) : IMeasure
     public Vector512<double> Power(BlockSignals signals) => signals.Derivation(index);
 
     /// <inheritdoc/>
+    public Vector512<double> Mean(BlockSignals signals) => signals.MeanDerivation(index);
+
+    /// <inheritdoc/>
     public ArtefactScale InverseVariance(BlockSignals signals) => new(_inverse, default);
 }
 
@@ -89,6 +98,9 @@ public sealed class MatchedFilterMeasure(Modality modality) : IMeasure
 
     /// <inheritdoc/>
     public Vector512<double> Power(BlockSignals signals) => signals.MatchedFilter(modality);
+
+    /// <inheritdoc/>
+    public Vector512<double> Mean(BlockSignals signals) => signals.MeanMatchedFilter(modality);
 
     /// <inheritdoc/>
     public ArtefactScale InverseVariance(BlockSignals signals)
@@ -115,6 +127,9 @@ public sealed class PairMeasure(SignalSpace space, int derivation) : IMeasure
 
     /// <inheritdoc/>
     public Vector512<double> Power(BlockSignals signals) => signals.Pair(derivation);
+
+    /// <inheritdoc/>
+    public Vector512<double> Mean(BlockSignals signals) => signals.MeanPair(derivation) ?? IMeasure.MeanOfEach(this, signals);
 
     /// <inheritdoc/>
     public ArtefactScale InverseVariance(BlockSignals signals)

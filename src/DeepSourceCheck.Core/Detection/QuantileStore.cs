@@ -7,7 +7,8 @@ namespace DeepSourceCheck.Core.Detection;
 /// with the number of dipoles. Which of the two is decided by the announced total, so that the number of threads never changes a byte.
 /// </summary>
 /// <remarks>
-/// Classes are the leading 13 bits of the mantissa: positive doubles order like their bits. A percentile is then off by at most 0.0006 dB. A page of classes (64 kB) serves one binary exponent.
+/// Classes are the leading 13 bits of the mantissa: positive doubles order like their bits. A percentile is then off by at most 0.0006 dB. A page of classes (32 kB) serves one binary exponent;
+/// a class counts up to 4e9 values, twice what an array of dipoles can hold.
 /// One store a thread; <see cref="Merge"/> adds stores in any order with the same result. NaN is left out, zero stands for "silent".
 /// </remarks>
 public sealed class QuantileStore
@@ -20,7 +21,7 @@ public sealed class QuantileStore
     private const int Exponents = 1 << 11;
 
     private readonly List<double>? _values;
-    private readonly long[]?[]? _pages;
+    private readonly uint[]?[]? _pages;
     private double[]? _sorted;
 
     /// <param name="announced">Number of values that all threads together will add.</param>
@@ -34,7 +35,7 @@ public sealed class QuantileStore
         }
         else
         {
-            _pages = new long[Exponents][];
+            _pages = new uint[Exponents][];
         }
     }
 
@@ -67,7 +68,7 @@ public sealed class QuantileStore
         }
         else
         {
-            long[]?[] pages = _pages!;
+            uint[]?[] pages = _pages!;
             foreach (double value in values)
             {
                 if (double.IsNaN(value))
@@ -76,7 +77,7 @@ public sealed class QuantileStore
                 }
 
                 long bits = BitConverter.DoubleToInt64Bits(value) & long.MaxValue;      // -0 is 0
-                long[] page = pages[bits >> 52] ??= new long[ClassesAnExponent];
+                uint[] page = pages[bits >> 52] ??= new uint[ClassesAnExponent];
                 page[(bits >> Shift) & (ClassesAnExponent - 1)]++;
                 added++;
             }
@@ -99,7 +100,7 @@ public sealed class QuantileStore
         {
             if (other._pages![exponent] is { } page)
             {
-                long[] own = _pages![exponent] ??= new long[ClassesAnExponent];
+                uint[] own = _pages![exponent] ??= new uint[ClassesAnExponent];
                 for (int k = 0; k < page.Length; k++)
                 {
                     own[k] += page[k];
@@ -125,7 +126,7 @@ public sealed class QuantileStore
         long left = rank / Multiplicity;
         for (long exponent = 0; exponent < Exponents; exponent++)
         {
-            long[] page = _pages![exponent] ?? [];
+            uint[] page = _pages![exponent] ?? [];
             for (int k = 0; k < page.Length; k++)
             {
                 if (left < page[k])

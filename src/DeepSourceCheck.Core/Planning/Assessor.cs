@@ -158,13 +158,14 @@ public static class Assessor
                 continue;
             }
 
-            string ranges = found.Ranges.Count == 0 ? "changes it from nothing to something" : string.Join(", ", found.Ranges.Select(r => string.Create(
-                CultureInfo.InvariantCulture, $"of {Si.ToMm(r.Shift):0} mm changes its MEG power by {Change(r.LowestDb)} to {Change(r.HighestDb)}")));
+            // Whole decibels: the misfit of a sphere is no better known.
+            string ranges = found.Ranges.Count == 0 ? "that is off makes something of nothing" : string.Join(", ", found.Ranges.Select((r, k) => string.Create(
+                CultureInfo.InvariantCulture, $"{(k == 0 ? "off by" : "by")} {Si.ToMm(r.Shift):0} mm{(k == 0 ? " changes its MEG power by" : "")} {Change(r.LowestDb)} to {Change(r.HighestDb)} dB")));
             yield return string.Create(CultureInfo.InvariantCulture,
-                $"{region.Name}: {Si.ToMm(found.Distance):0} mm from the sphere's centre, where MEG vanishes: a shift of the centre {ranges} (best channel, strongest tangential direction)");
+                $"{region.Name}: {Si.ToMm(found.Distance):0} mm from the sphere's centre, where MEG vanishes; a centre {ranges} (best channel, strongest tangential direction)");
         }
 
-        static string Change(double db) => db < -60 ? "down to nothing" : string.Create(CultureInfo.InvariantCulture, $"{db:+0.0;-0.0;0.0} dB");
+        static string Change(double db) => db < -60 ? "minus infinity" : string.Create(CultureInfo.InvariantCulture, $"{db:+0;-0;0}");
     }
 
     private sealed class ColumnAdapter(IDipoleSink inner, int[] own) : IDipoleSink

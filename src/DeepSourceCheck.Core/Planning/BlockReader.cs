@@ -12,7 +12,8 @@ namespace DeepSourceCheck.Core.Planning;
 /// <summary>Reads all directions and measures of one block of dipoles into a tally and, where asked, into a chunk of dipole results.</summary>
 /// <remarks>
 /// All directions of a set are read first, measure by measure, into a buffer of [measure][direction][lane]; then each measure's tally takes its values in one run, so that the classes
-/// of one measure stay near the processor. Lanes that do not count are NaN, which tallies leave out.
+/// of one measure stay near the processor. Lanes that do not count are NaN, which tallies leave out. In huge regions the tally takes every n-th direction of a set; the mean of a
+/// dipole, which dipoles.csv holds, always runs over the whole set.
 /// </remarks>
 internal sealed class BlockReader
 {
@@ -62,19 +63,24 @@ internal sealed class BlockReader
             Vector512<double> counted = Counted(signals, lanes, name is DirectionName.QuasiRadial or DirectionName.Tangential or DirectionName.StrongestTangential);
             (DirectionMode mode, LaneDirection[] directions) = DirectionsOf(name, signals);
             int stride = tally.Strides[d], start = DirectionSets.Start(block, stride), taken = directions.Length / stride;
-            if (snrDb is not null)
+            ReadAll(signals, mode, directions, start, stride, counted);
+            for (int m = 0; snrDb is not null && m < _plan.Measures.Count; m++)
             {
-                ReadAll(signals, mode, directions, 0, 1, counted);
-                for (int m = 0; m < _plan.Measures.Count; m++)
+                Span<double> column = snrDb[_column[d * _plan.Measures.Count + m]].AsSpan(offset, lanes);
+                if (stride == 1)
                 {
-                    Mean(_powers[m].AsSpan(0, directions.Length * Lanes), lanes, snrDb[_column[d * _plan.Measures.Count + m]].AsSpan(offset, lanes));
+                    Decibels(Mean(_powers[m].AsSpan(0, directions.Length * Lanes)), column);
                 }
+                else
+                {
+                    if (m == 0)
+                    {
+                        signals.AskSet(directions);
+                    }
 
-                Thin(start, stride, taken);
-            }
-            else
-            {
-                ReadAll(signals, mode, directions, start, stride, counted);
+                    Vector512<double> mean = _plan.Measures[m].Mean(signals) * Vector512.Create(_plan.Gain);
+                    Decibels(Vector512.ConditionalSelect(counted, mean, Vector512.Create(double.NaN)), column);
+                }
             }
 
             int length = taken * Lanes;
@@ -99,23 +105,6 @@ internal sealed class BlockReader
         {
             signals.Ask(mode, directions[u]);
             ReadOne(signals, at, counted);
-        }
-    }
-
-    // Moves every n-th direction to the front of the buffers.
-    private void Thin(int start, int stride, int taken)
-    {
-        if (stride == 1)
-        {
-            return;
-        }
-
-        foreach (double[] buffer in _powers.Concat(_artefacts).Concat(_peaks).Concat(_peakChannels))
-        {
-            for (int i = 0; buffer.Length > 0 && i < taken; i++)
-            {
-                buffer.AsSpan((start + i * stride) * Lanes, Lanes).CopyTo(buffer.AsSpan(i * Lanes));
-            }
         }
     }
 
@@ -192,7 +181,7 @@ internal sealed class BlockReader
         return MemoryMarshal.Cast<long, Vector512<long>>(mask)[0].AsDouble();
     }
 
-    private static void Mean(ReadOnlySpan<double> powers, int lanes, Span<double> decibels)
+    private static Vector512<double> Mean(ReadOnlySpan<double> powers)
     {
         ReadOnlySpan<Vector512<double>> values = MemoryMarshal.Cast<double, Vector512<double>>(powers);
         Vector512<double> sum = default;
@@ -201,9 +190,14 @@ internal sealed class BlockReader
             sum += value;
         }
 
-        for (int lane = 0; lane < lanes; lane++)
+        return sum / Vector512.Create((double)values.Length);
+    }
+
+    private static void Decibels(Vector512<double> powers, Span<double> decibels)
+    {
+        for (int lane = 0; lane < decibels.Length; lane++)
         {
-            decibels[lane] = 10 * Math.Log10(sum[lane] / values.Length);
+            decibels[lane] = 10 * Math.Log10(powers[lane]);
         }
     }
 }

@@ -24,7 +24,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise)
         _lines.Clear();
         Response response = plan.Response;
         Input("a", "dipole moment", Si.ToNanoAmpereMetres(response.Moment), "nAm", "responses.moment_nAm");
-        Input("x", $"place of the dipole at the median count (point {witness.Point})", Si.ToMm(witness.Position.X), "mm", "region");
+        Input("x", response.Together ? "centroid of the regions, which act together" : $"place of the dipole at the median count (point {witness.Point})", Si.ToMm(witness.Position.X), "mm", "region");
         Input("y", "", Si.ToMm(witness.Position.Y), "mm", "region");
         Input("z", "", Si.ToMm(witness.Position.Z), "mm", "region");
         bool oriented = witness.Direction != Vec3.Zero;

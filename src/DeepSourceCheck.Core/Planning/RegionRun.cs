@@ -32,7 +32,7 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
         var total = new RegionTally(plan, dipoles);
         var idle = new System.Collections.Concurrent.ConcurrentBag<Worker>();
         var made = new List<Worker>();
-        int wave = workers * 4;
+        int wave = workers * (sink is null ? 64 : 16);          // with a sink a wave's formatted rows are held until they are written
         byte[]?[] formatted = new byte[wave][];
         for (int from = 0; from < chunks; from += wave)
         {

@@ -175,7 +175,7 @@ public static class RegionFill
             Name = all.Name,
             Positions = dropped.Count == 0 ? all.Positions : [.. rows.Select(row => all.Positions[row])],
             Rows = [.. rows],
-            PointNames = all.PointNames.Length == 0 ? [] : [.. rows.Select(row => all.PointNames[row])],
+            PointNames = all.PointNames.Length == 0 ? [] : dropped.Count == 0 ? all.PointNames : [.. rows.Select(row => all.PointNames[row])],
             Dropped = dropped,
             Spacing = all.Spacing,
             SpacingRefined = all.SpacingRefined,

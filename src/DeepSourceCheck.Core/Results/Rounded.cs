@@ -15,6 +15,9 @@ public static class Rounded
         _ => Two(minutes),
     };
 
+    /// <summary>The minutes that <see cref="Minutes"/> writes, as a number [min]; for differences that have to add up beside them.</summary>
+    public static double AsWritten(double minutes) => minutes < 0.1 ? minutes : double.Parse(Minutes(minutes), NumberStyles.Float | NumberStyles.AllowThousands, CultureInfo.InvariantCulture);
+
     /// <summary>Two significant digits, with thousands commas: `0.25`, `4.8`, `190`, `12,000`.</summary>
     public static string Two(double value) => Significant(value, 2);
 

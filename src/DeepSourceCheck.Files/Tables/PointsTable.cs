@@ -8,7 +8,7 @@ namespace DeepSourceCheck.Files.Tables;
 /// <param name="Position">Place [m], in the frame of the regions.</param>
 /// <param name="Direction">Unit vector, or null where the table gives none.</param>
 /// <param name="Line">Line in the file.</param>
-public sealed record TablePoint(string Name, Vec3 Position, Vec3? Direction, int Line);
+public readonly record struct TablePoint(string Name, Vec3 Position, Vec3? Direction, int Line);
 
 /// <summary>points.tsv: `name x y z` in mm, optionally `direction_x direction_y direction_z`.</summary>
 /// <param name="Points">In the order of the file, at least one.</param>
@@ -28,8 +28,8 @@ public sealed record PointsTable(IReadOnlyList<TablePoint> Points, IReadOnlyList
             table.Problems.Add(0, string.Join(", ", DirectionColumns.Where(c => !table.Has(c))), "the column is missing: a direction needs all three of direction_x, direction_y, direction_z");
         }
 
-        Dictionary<string, int> seen = new(StringComparer.Ordinal);
-        List<TablePoint> points = [];
+        Dictionary<string, int> seen = new(table.Rows.Count, StringComparer.Ordinal);
+        List<TablePoint> points = new(table.Rows.Count);
         int rounded = 0;
         foreach (TsvRow row in table.Rows)
         {

@@ -10,7 +10,10 @@ internal sealed class TsvTable
     private const long LargestFile = 1L << 28;
     private readonly Dictionary<string, int> _columns;
 
-    private TsvTable(Dictionary<string, int> columns, List<TsvRow> rows, ProblemList problems) => (_columns, Rows, Problems) = (columns, rows, problems);
+    private readonly string _text;
+
+    private TsvTable(string text, Dictionary<string, int> columns, List<TsvRow> rows, ProblemList problems) =>
+        (_text, _columns, Rows, Problems) = (text, columns, rows, problems);
 
     /// <summary>Data rows, in order.</summary>
     public IReadOnlyList<TsvRow> Rows { get; }
@@ -41,19 +44,21 @@ internal sealed class TsvTable
                 continue;
             }
 
-            string[] cells = line.ToString().Split('\t', StringSplitOptions.TrimEntries);
             if (columns is null)
             {
-                columns = Header(cells, number, required, problems);
+                columns = Header(line.ToString().Split('\t', StringSplitOptions.TrimEntries), number, required, problems);
                 problems.ThrowIfAny();
+                continue;
             }
-            else if (cells.Length != columns.Count)
+
+            int cells = line.Count('\t') + 1;
+            if (cells != columns.Count)
             {
-                problems.Add(number, null, $"the row has {cells.Length} cells and the header {columns.Count}; separate cells by single tabs");
+                problems.Add(number, null, $"the row has {cells} cells and the header {columns.Count}; separate cells by single tabs");
             }
             else
             {
-                rows.Add(new(number, cells));
+                rows.Add(new(number, StartOf(text, line), line.Length));
             }
         }
 
@@ -67,14 +72,14 @@ internal sealed class TsvTable
             problems.ThrowIfAny();
         }
 
-        return new(columns!, rows, problems);
+        return new(text, columns!, rows, problems);
     }
 
     /// <summary>A cell's text; empty where the table lacks the column.</summary>
-    public string Text(TsvRow row, string column) => _columns.TryGetValue(column, out int at) ? row.Cells[at] : "";
+    public string Text(TsvRow row, string column) => Cell(row, column).ToString();
 
     /// <summary>True when a cell is empty or says n/a, or the table lacks the column.</summary>
-    public bool IsAbsent(TsvRow row, string column) => Text(row, column) is "" or "n/a";
+    public bool IsAbsent(TsvRow row, string column) => Cell(row, column) is "" or "n/a";
 
     /// <summary>A name: not empty, without control characters, unlike all earlier ones.</summary>
     /// <param name="row">Row.</param>
@@ -87,7 +92,7 @@ internal sealed class TsvTable
         {
             Problems.Add(row.Line, column, "the name is empty");
         }
-        else if (name.Any(char.IsControl))
+        else if (name.AsSpan().IndexOfAnyInRange('\0', '\u001f') >= 0 || name.AsSpan().IndexOfAnyInRange('\u007f', '\u009f') >= 0)
         {
             Problems.Add(row.Line, column, $"the name {Shown.Quoted(name)} holds a control character");
         }
@@ -106,9 +111,10 @@ internal sealed class TsvTable
     /// <param name="unit">The column's unit, for the message.</param>
     public double Number(TsvRow row, string column, double largest, string unit)
     {
-        string text = Text(row, column);
-        if (!double.TryParse(text, NumberStyles.Float, CultureInfo.InvariantCulture, out double value))
+        ReadOnlySpan<char> cell = Cell(row, column);
+        if (!double.TryParse(cell, NumberStyles.Float, CultureInfo.InvariantCulture, out double value))
         {
+            string text = cell.ToString();
             Problems.Add(row.Line, column, text.Length == 0
                 ? "the cell is empty; a number is expected"
                 : $"{Shown.Quoted(text)} is not a number{(text.Contains(',') ? " (write a decimal point, no thousands separators)" : "")}");
@@ -117,11 +123,35 @@ internal sealed class TsvTable
 
         if (!(Math.Abs(value) <= largest))
         {
-            Problems.Add(row.Line, column, FormattableString.Invariant($"{Shown.Quoted(text)} is out of range; a finite number of at most {largest:0.######}{(unit.Length > 0 ? " " : "")}{unit} in size is expected"));
+            Problems.Add(row.Line, column, FormattableString.Invariant($"'{Shown.Text(cell.ToString())}' is out of range; a finite number of at most {largest:0.######}{(unit.Length > 0 ? " " : "")}{unit} in size is expected"));
             return double.NaN;
         }
 
         return value;
+    }
+
+    // A cell is cut out of the file's text when it is asked for: a table of many rows holds no string a cell.
+    private ReadOnlySpan<char> Cell(TsvRow row, string column)
+    {
+        if (!_columns.TryGetValue(column, out int at))
+        {
+            return default;
+        }
+
+        ReadOnlySpan<char> rest = _text.AsSpan(row.Start, row.Length);
+        for (; at > 0; at--)
+        {
+            rest = rest[(rest.IndexOf('\t') + 1)..];
+        }
+
+        int end = rest.IndexOf('\t');
+        return (end < 0 ? rest : rest[..end]).Trim();
+    }
+
+    private static int StartOf(string text, ReadOnlySpan<char> line)
+    {
+        text.AsSpan().Overlaps(line, out int start);
+        return start;
     }
 
     private static Dictionary<string, int> Header(string[] cells, int line, string[] required, ProblemList problems)
@@ -147,5 +177,6 @@ internal sealed class TsvTable
 
 /// <summary>One row of a table.</summary>
 /// <param name="Line">Line in the file, from 1.</param>
-/// <param name="Cells">Texts, trimmed.</param>
-internal sealed record TsvRow(int Line, string[] Cells);
+/// <param name="Start">Its first character in the text.</param>
+/// <param name="Length">Its characters.</param>
+internal readonly record struct TsvRow(int Line, int Start, int Length);

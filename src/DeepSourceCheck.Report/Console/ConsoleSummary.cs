@@ -11,7 +11,7 @@ namespace DeepSourceCheck.Report.Console;
 /// <remarks>Marks: `o` EEG, `*` MEG, `#` both, `=` 5 to 95 % of places, `|` session, `.` powers of ten. Colour on marks and `!` only.</remarks>
 public static class ConsoleSummary
 {
-    private const int MeasureWidth = 13;
+    private const int MeasureWidth = 14;
     private const int NameWidth = 32;
     private const int MostRegions = 12;
     private const int MostWarnings = 3;
@@ -92,8 +92,9 @@ public static class ConsoleSummary
         string name = Names.Of(a.Modality);
         string each = OneAcquisition(assessment) ? "" : " per average";
         string minutes = a.Minutes is { } m ? $"{Say.Minutes(m)} min{each}" : a.Trials is { } n ? Say.Plural(n, "trial") : "";
-        // An excess that rounds away is not named.
-        string over = a.Minutes is { } needed && assessment.Study.Protocol?.Session is { } s && OneAcquisition(assessment) && needed - s / 60 >= 0.1 ? $": too long by {Say.Minutes(needed - s / 60)} min" : ": too long";
+        // The excess of the minutes as they are written, so that the sentence adds up; one that rounds away is not named.
+        string over = a.Minutes is { } needed && assessment.Study.Protocol?.Session is { } s && OneAcquisition(assessment) && Rounded.AsWritten(needed) - s / 60 is >= 0.1 and var excess
+            ? $": too long by {Say.Minutes(excess)} min" : ": too long";
         return a.Outcome switch
         {
             Outcome.Fits => $"{name} reaches the target in {minutes}.",
@@ -109,7 +110,7 @@ public static class ConsoleSummary
 
     private static void Table(StringBuilder text, RegionAnswer answer)
     {
-        text.Append($"{"",-9}{"measure",-MeasureWidth}{"trials",9}{"5 to 95 %",20}{"minutes",9}{"peak",10} session\n");
+        text.Append($"{"",-8}{"measure",-MeasureWidth}{"trials",9}{"5 to 95 %",20}{"minutes",9}{"peak",10} session\n");
         foreach (ModalityAnswer a in answer.Answers)
         {
             string measure = a.Modality == Modality.Both ? "both" : a.Verdict.Measure;
@@ -119,10 +120,11 @@ public static class ConsoleSummary
             }
 
             string peak = a.Row?.Peak is { } p ? $"{Say.Two(p.Value)} {Say.Unit(p.Unit)}" : "-";
-            string minutes = a.Minutes is { } m && a.HasCount ? Say.Minutes(m) : "-";
+            // `under 0.1` would fill its column and run into the next.
+            string minutes = a.Minutes is { } m && a.HasCount ? m < 0.1 ? "< 0.1" : Say.Minutes(m) : "-";
             string middle = a.HasCount ? $"{Say.Trials(a.Trials),9}{Spread(a),20}" : $"{(a.Outcome == Outcome.Silent ? "silent in this direction" : Say.OutOfReach),29}";
             string session = a.Outcome switch { Outcome.Fits => "fits", Outcome.TooLong => "too long", Outcome.NoSession => "-", _ => "no" };
-            text.Append($"{Names.Of(a.Modality),-9}{measure,-MeasureWidth}{middle}{minutes,9}{peak,10} {session}\n");
+            text.Append($"{Names.Of(a.Modality),-8}{measure,-MeasureWidth}{middle}{minutes,9}{peak,10} {session}\n");
         }
 
         // A lone dipole in one direction has no spread to explain.
@@ -134,7 +136,7 @@ public static class ConsoleSummary
 
     private static string Spread(ModalityAnswer a)
     {
-        if (a.Target?.Trials is not { P05: { } low, P95: var high })
+        if (a.Target?.Trials is not { P05: { } low, P95: var high } || low == high)
         {
             return "-";
         }

@@ -94,10 +94,10 @@ public class PresentationTests
 
             EEG reaches the target in 0.5 min. MEG needs 75 min: too long by 35 min.
 
-                     measure         trials           5 to 95 %  minutes      peak session
-            EEG      Cz-mastoids        303          252 to 370      0.5   0.25 uV fits
-            MEG      best-channel    45,103    37,436 to 55,026       75    2.6 fT too long
-            EEG+MEG  both               301          250 to 368      0.5         - fits
+                    measure          trials           5 to 95 %  minutes      peak session
+            EEG     Cz-mastoids         303          252 to 370      0.5   0.25 uV fits
+            MEG     best-channel     45,103    37,436 to 55,026       75    2.6 fT too long
+            EEG+MEG both                301          250 to 368      0.5         - fits
             trials: median and 5 to 95 % over places, not over unknowns
 
             """;

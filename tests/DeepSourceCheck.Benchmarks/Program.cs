@@ -1,0 +1,19 @@
+using BenchmarkDotNet.Running;
+
+using DeepSourceCheck.Benchmarks;
+
+// kernels: a table of the kernels in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
+// anything else goes to BenchmarkDotNet, for instance --filter '*'.
+switch (args.FirstOrDefault())
+{
+    case "kernels":
+        KernelTable.Print(Console.Out);
+        return 0;
+    case "whole":
+        return WholeProcess.Run(args[1..], Console.Out);
+    case "yardstick":
+        return Yardstick.Run(Console.Out);
+    default:
+        BenchmarkSwitcher.FromAssembly(typeof(KernelBenchmarks).Assembly).Run(args);
+        return 0;
+}
