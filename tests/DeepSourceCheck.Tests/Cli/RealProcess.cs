@@ -1,4 +1,5 @@
 using System.Diagnostics;
+using System.Globalization;
 
 namespace DeepSourceCheck.Tests.Cli;
 
@@ -13,9 +14,10 @@ internal static class RealProcess
 
     public static Process Start(string folder, params string[] arguments)
     {
-        var start = new ProcessStartInfo(DotNet()) { WorkingDirectory = folder, RedirectStandardOutput = true, RedirectStandardError = true, RedirectStandardInput = true };
-        start.ArgumentList.Add(Assembly);
-        foreach (string argument in arguments)
+        // A job that a script starts in the background ignores SIGINT, and so does all that it starts: the program must be asked as a terminal asks it.
+        string[] command = IgnoresInterrupts() ? ["env", "--default-signal=INT", DotNet(), Assembly] : [DotNet(), Assembly];
+        var start = new ProcessStartInfo(command[0]) { WorkingDirectory = folder, RedirectStandardOutput = true, RedirectStandardError = true, RedirectStandardInput = true };
+        foreach (string argument in command.Skip(1).Concat(arguments))
         {
             start.ArgumentList.Add(argument);
         }
@@ -51,6 +53,14 @@ internal static class RealProcess
     {
         using Process process = Process.Start(name, arguments);
         Assert.True(process.WaitForExit(Longest) && process.ExitCode == 0, $"{name} {string.Join(' ', arguments)} failed");
+    }
+
+    /// <summary>Whether this process ignores SIGINT (number 2, hence bit 1 of the mask that Linux shows).</summary>
+    private static bool IgnoresInterrupts()
+    {
+        const string Status = "/proc/self/status", Mask = "SigIgn:";
+        string? line = File.Exists(Status) ? File.ReadLines(Status).FirstOrDefault(l => l.StartsWith(Mask, StringComparison.Ordinal)) : null;
+        return line is not null && (ulong.Parse(line[Mask.Length..].Trim(), NumberStyles.HexNumber, CultureInfo.InvariantCulture) & 0b10) != 0;
     }
 
     /// <summary>The host that runs this test also runs the program.</summary>
