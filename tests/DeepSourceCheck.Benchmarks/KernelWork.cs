@@ -31,7 +31,8 @@ public sealed class KernelWork
 
     private const int Lanes = LeadfieldBlock.Lanes;
     private readonly LayeredSphere _head;
-    private readonly SphereLeadfield _eeg, _meg;
+    private readonly EegLayerSeries _eeg;
+    private readonly MegSphere _meg;
     private readonly LeadfieldBlock[] _blocks = new LeadfieldBlock[Dipoles / Lanes];
     private readonly LeadfieldBlock _filled;
     private readonly SplitBlock _split = new();
@@ -50,8 +51,8 @@ public sealed class KernelWork
             Vec3 axis = GoldenSpiral.Point(k, Channels, -0.4);
             return new MegChannel($"M{k}", CoilKind.AxialGradiometer, [new(0.122 * axis, axis, 1), new(0.182 * axis, axis, -1)]);
         })];
-        _eeg = new SphereLeadfield(_head, electrodes, []);
-        _meg = new SphereLeadfield(_head, [], channels);
+        _eeg = new EegLayerSeries(_head, electrodes);
+        _meg = new MegSphere(_head.Centre, channels);
         var random = new Random(1);
         Vec3[] positions = [.. Enumerable.Range(0, Dipoles)
             .Select(k => 0.6 * 0.078 * Math.Cbrt(random.NextDouble()) * GoldenSpiral.Point(k * 1999 % Dipoles, Dipoles)).OrderBy(p => p.Norm)];
@@ -64,8 +65,7 @@ public sealed class KernelWork
         _filled = _blocks[^1];
         _eeg.Fill(_filled);
         _meg.Fill(_filled);
-        var series = new EegLayerSeries(_head, electrodes);
-        Degrees = _blocks.Average(block => block.Positions.Max(series.DegreeAt));
+        Degrees = _blocks.Average(block => block.Positions.Max(_eeg.DegreeAt));
         _whitener = Whitener.Of(Covariance(random), Channels);
     }
 
@@ -76,10 +76,10 @@ public sealed class KernelWork
     public static double WhiteningFlops => 2.0 * 3 * Channels * (Channels + 1) / 2;
 
     /// <summary>EEG leadfields.</summary>
-    public void Eeg() => Fill(_eeg);
+    public void Eeg() => Fill(_eeg.Fill);
 
     /// <summary>MEG leadfields.</summary>
-    public void Meg() => Fill(_meg);
+    public void Meg() => Fill(_meg.Fill);
 
     /// <summary>Split of directions of 291 x 3.</summary>
     public void Split()
@@ -140,12 +140,12 @@ public sealed class KernelWork
         return (a0 + a1 + a2 + a3 + a4 + a5 + a6 + a7 + b0 + b1 + b2 + b3 + b4 + b5 + b6 + b7)[0];
     }
 
-    private void Fill(SphereLeadfield source)
+    private void Fill(Action<LeadfieldBlock> kernel)
     {
         // Every block fills the same kind of buffer; positions differ, so that depths and series do.
         foreach (LeadfieldBlock block in _blocks)
         {
-            source.Fill(block);
+            kernel(block);
         }
     }
 

@@ -1,4 +1,5 @@
 using System.CommandLine;
+
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Core.Results;

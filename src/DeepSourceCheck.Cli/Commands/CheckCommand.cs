@@ -1,5 +1,6 @@
 using System.CommandLine;
 using System.Globalization;
+
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Core.Heads;
