@@ -33,8 +33,8 @@ public sealed class KernelWork
     private readonly LayeredSphere _head;
     private readonly EegLayerSeries _eeg;
     private readonly MegSphere _meg;
-    private readonly LeadfieldBlock[] _blocks = new LeadfieldBlock[Dipoles / Lanes];
-    private readonly LeadfieldBlock _filled;
+    private readonly Vec3[] _positions;
+    private readonly LeadfieldBlock _block = new(Electrodes, Channels), _filled = new(Electrodes, Channels);
     private readonly SplitBlock _split = new();
     private readonly Whitener _whitener;
     private readonly double _multiplier = 0.999999;
@@ -52,20 +52,13 @@ public sealed class KernelWork
             return new MegChannel($"M{k}", CoilKind.AxialGradiometer, [new(0.122 * axis, axis, 1), new(0.182 * axis, axis, -1)]);
         })];
         _eeg = new EegLayerSeries(_head, electrodes);
-        _meg = new MegSphere(_head.Centre, channels);
+        _meg = new MegSphere(Vec3.Zero, channels);
         var random = new Random(1);
-        Vec3[] positions = [.. Enumerable.Range(0, Dipoles)
+        _positions = [.. Enumerable.Range(0, Dipoles)
             .Select(k => 0.6 * 0.078 * Math.Cbrt(random.NextDouble()) * GoldenSpiral.Point(k * 1999 % Dipoles, Dipoles)).OrderBy(p => p.Norm)];
-        for (int k = 0; k < _blocks.Length; k++)
-        {
-            _blocks[k] = new LeadfieldBlock(Electrodes, Channels);
-            _blocks[k].Load(positions.AsSpan(k * Lanes, Lanes), default);
-        }
-
-        _filled = _blocks[^1];
-        _eeg.Fill(_filled);
+        _filled.Load(_positions.AsSpan(Dipoles - Lanes), default);
         _meg.Fill(_filled);
-        Degrees = _blocks.Average(block => block.Positions.Max(_eeg.DegreeAt));
+        Degrees = _positions.Chunk(Lanes).Average(block => block.Max(_eeg.DegreeAt));
         _whitener = Whitener.Of(Covariance(random), Channels);
     }
 
@@ -76,15 +69,29 @@ public sealed class KernelWork
     public static double WhiteningFlops => 2.0 * 3 * Channels * (Channels + 1) / 2;
 
     /// <summary>EEG leadfields.</summary>
-    public void Eeg() => Fill(_eeg.Fill);
+    public void Eeg()
+    {
+        for (int k = 0; k < Dipoles; k += Lanes)
+        {
+            _block.Load(_positions.AsSpan(k, Lanes), default);
+            _eeg.Fill(_block);
+        }
+    }
 
     /// <summary>MEG leadfields.</summary>
-    public void Meg() => Fill(_meg.Fill);
+    public void Meg()
+    {
+        for (int k = 0; k < Dipoles; k += Lanes)
+        {
+            _block.Load(_positions.AsSpan(k, Lanes), default);
+            _meg.Fill(_block);
+        }
+    }
 
     /// <summary>Split of directions of 291 x 3.</summary>
     public void Split()
     {
-        for (int k = 0; k < _blocks.Length; k++)
+        for (int k = 0; k < Dipoles; k += Lanes)
         {
             DirectionSplit.Compute(_filled.Meg, Channels, _filled, _head, _split);
         }
@@ -94,7 +101,7 @@ public sealed class KernelWork
     public double Project()
     {
         Vector512<double> sum = default;
-        for (int k = 0; k < _blocks.Length; k++)
+        for (int k = 0; k < Dipoles; k += Lanes)
         {
             sum += DeepSourceCheck.Core.Detection.Lanes.ProjectedPower(_filled.Meg, Channels, _direction);
             sum += DeepSourceCheck.Core.Detection.Lanes.Largest(_filled.Meg, Channels, _direction, out Vector512<double> index) + index;
@@ -106,7 +113,7 @@ public sealed class KernelWork
     /// <summary>Dense whitening of 291 channels.</summary>
     public void Whiten()
     {
-        for (int k = 0; k < _blocks.Length; k++)
+        for (int k = 0; k < Dipoles; k += Lanes)
         {
             _whitener.Apply(_filled.Meg, _white);
         }
@@ -138,15 +145,6 @@ public sealed class KernelWork
         }
 
         return (a0 + a1 + a2 + a3 + a4 + a5 + a6 + a7 + b0 + b1 + b2 + b3 + b4 + b5 + b6 + b7)[0];
-    }
-
-    private void Fill(Action<LeadfieldBlock> kernel)
-    {
-        // Every block fills the same kind of buffer; positions differ, so that depths and series do.
-        foreach (LeadfieldBlock block in _blocks)
-        {
-            kernel(block);
-        }
     }
 
     private static double[] Covariance(Random random)

@@ -10,7 +10,8 @@ namespace DeepSourceCheck.Core.Detection;
 //   For b not below e.e and m.m: L > b exactly where (e.m)^2 > (b - e.e)(b - m.m). So no root is taken for pairs that are no better than the best so far.
 //   Order of search: the strongest MEG row against every EEG row, the best of these against every MEG row, that one against every EEG row again. This finds the
 //   best pair nearly always. The proof follows: where w is a direction to which all MEG rows are orthogonal, (e.m)^2 <= t m.m with t = e.e - (e.w)^2, else t = e.e.
-//   Rows that cannot beat the best with the strongest partner are left out; the rest are compared pair by pair.
+//   EEG rows that cannot beat the best with the strongest MEG row are left out, then MEG rows that cannot beat it with the strongest of the EEG rows left;
+//   the rest are compared pair by pair.
 //   Eight dipoles a vector; a row is left out only where it is beaten in all eight. The plain double loop stands in the tests.
 
 /// <summary>Largest power of a pair of one EEG and one MEG channel over all directions. One a thread: keeps its buffers.</summary>
@@ -49,13 +50,11 @@ public sealed class PairSearch
             strongest.Take(Vector512.GreaterThan(row.Power, strongest.Power), row);
         }
 
-        Vector512<double> most = strongest.Power, best = most, eegMost = default, tangentialMost = default;
+        Vector512<double> most = strongest.Power, best = most, eegMost, tangentialMost;
         Row chosen = default;
         for (int i = 0; i < eegCount; i++)
         {
             Row row = Row.At(ref e, i);
-            eegMost = Vector512.Max(eegMost, row.Power);
-            tangentialMost = Vector512.Max(tangentialMost, Tangential(row, unseen));
             best = Vector512.Max(best, row.Power);
             chosen.Take(Vector512.GreaterThan(row.Power, chosen.Power), row);
         }
@@ -65,21 +64,26 @@ public sealed class PairSearch
         strongest = Improve(ref m, megCount, chosen, strongest, ref best);
         Improve(ref e, eegCount, strongest, chosen, ref best);
 
+        // EEG rows that may still win with the strongest MEG row, and per dipole the strongest of them; then MEG rows that may win with those.
         int megLeft = 0, eegLeft = 0;
-        Vector512<double> room = best - eegMost;
-        for (int k = 0; k < megCount; k++)
+        Vector512<double> room = best - most;
+        eegMost = tangentialMost = default;
+        for (int i = 0; i < eegCount; i++)
+        {
+            Row row = Row.At(ref e, i);
+            Vector512<double> tangential = Tangential(row, unseen), may = Vector512.GreaterThan(tangential * most, room * (best - row.Power));
+            eegMost = Vector512.Max(eegMost, row.Power & may);
+            tangentialMost = Vector512.Max(tangentialMost, tangential & may);
+            _eegLeft[eegLeft] = i;
+            eegLeft += Vector512.EqualsAll(may.AsUInt64(), Vector512<ulong>.Zero) ? 0 : 1;
+        }
+
+        room = best - eegMost;
+        for (int k = 0; k < megCount && eegLeft > 0; k++)
         {
             Vector512<double> power = Unsafe.Add(ref mm, k);
             _megLeft[megLeft] = k;
             megLeft += Vector512.GreaterThanAny(tangentialMost * power, room * (best - power)) ? 1 : 0;
-        }
-
-        room = best - most;
-        for (int i = 0; i < eegCount; i++)
-        {
-            Row row = Row.At(ref e, i);
-            _eegLeft[eegLeft] = i;
-            eegLeft += Vector512.GreaterThanAny(Tangential(row, unseen) * most, room * (best - row.Power)) ? 1 : 0;
         }
 
         foreach (int i in _eegLeft.AsSpan(0, eegLeft))

@@ -23,6 +23,8 @@ public sealed class QuantileStore
     private readonly List<double>? _values;
     private readonly uint[]?[]? _pages;
     private double[]? _sorted;
+    private long[]? _pageCounts;
+    private long _counted;
 
     /// <param name="announced">Number of values that all threads together will add.</param>
     /// <param name="multiplicity">How often each value counts.</param>
@@ -124,9 +126,21 @@ public sealed class QuantileStore
         }
 
         long left = rank / Multiplicity;
+        if (_pageCounts is null || _counted != Count)
+        {
+            _pageCounts = [.. _pages!.Select(page => page is null ? 0 : page.Sum(n => (long)n))];
+            _counted = Count;
+        }
+
         for (long exponent = 0; exponent < Exponents; exponent++)
         {
-            uint[] page = _pages![exponent] ?? [];
+            if (left >= _pageCounts[exponent])
+            {
+                left -= _pageCounts[exponent];
+                continue;
+            }
+
+            uint[] page = _pages![exponent]!;
             for (int k = 0; k < page.Length; k++)
             {
                 if (left < page[k])

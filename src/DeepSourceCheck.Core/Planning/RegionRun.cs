@@ -29,7 +29,6 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
         int dipoles = region.Positions.Length;
         int chunks = (dipoles + ChunkSize - 1) / ChunkSize;
         int workers = Math.Max(1, Math.Min(Environment.ProcessorCount, chunks));
-        var total = new RegionTally(plan, dipoles);
         var idle = new System.Collections.Concurrent.ConcurrentBag<Worker>();
         var made = new List<Worker>();
         int wave = workers * (sink is null ? 64 : 16);          // with a sink a wave's formatted rows are held until they are written
@@ -62,7 +61,8 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
             progress?.Invoke(Math.Min((long)to * ChunkSize, dipoles));
         }
 
-        foreach (Worker worker in made)
+        RegionTally total = made.Count > 0 ? made[0].Tally : new RegionTally(plan, dipoles);
+        foreach (Worker worker in made.Skip(1))
         {
             total.Merge(worker.Tally);
         }

@@ -8,7 +8,9 @@ namespace DeepSourceCheck.Files.Tables;
 internal sealed class TsvTable
 {
     private const long LargestFile = 1L << 28;
+    private const int MostAsked = 16;
     private readonly Dictionary<string, int> _columns;
+    private readonly List<(string Name, int At)> _asked = [];
 
     private readonly string _text;
 
@@ -112,7 +114,7 @@ internal sealed class TsvTable
     public double Number(TsvRow row, string column, double largest, string unit)
     {
         ReadOnlySpan<char> cell = Cell(row, column);
-        if (!double.TryParse(cell, NumberStyles.Float, CultureInfo.InvariantCulture, out double value))
+        if (!PlainDecimal.TryParse(cell, out double value) && !double.TryParse(cell, NumberStyles.Float, CultureInfo.InvariantCulture, out value))
         {
             string text = cell.ToString();
             Problems.Add(row.Line, column, text.Length == 0
@@ -133,7 +135,8 @@ internal sealed class TsvTable
     // A cell is cut out of the file's text when it is asked for: a table of many rows holds no string a cell.
     private ReadOnlySpan<char> Cell(TsvRow row, string column)
     {
-        if (!_columns.TryGetValue(column, out int at))
+        int at = IndexOf(column);
+        if (at < 0)
         {
             return default;
         }
@@ -146,6 +149,26 @@ internal sealed class TsvTable
 
         int end = rest.IndexOf('\t');
         return (end < 0 ? rest : rest[..end]).Trim();
+    }
+
+    // Readers ask for the same few names row by row: the very strings, which are recognised without being compared.
+    private int IndexOf(string column)
+    {
+        foreach ((string name, int at) in _asked)
+        {
+            if (ReferenceEquals(name, column))
+            {
+                return at;
+            }
+        }
+
+        int found = _columns.GetValueOrDefault(column, -1);
+        if (_asked.Count < MostAsked)
+        {
+            _asked.Add((column, found));
+        }
+
+        return found;
     }
 
     private static int StartOf(string text, ReadOnlySpan<char> line)
