@@ -54,7 +54,7 @@ internal static class WholeProcess
     {
         string project = Path.Combine(Root(), "src", "DeepSourceCheck.Cli");
         output.WriteLine("publishing, ready to run ...");
-        using Process process = Process.Start(new ProcessStartInfo("dotnet", $"publish \"{project}\" -c Release --use-current-runtime --self-contained false -o \"{folder}\" --nologo -v q -nodeReuse:false"))!;
+        using Process process = Process.Start(new ProcessStartInfo("dotnet", $"publish \"{project}\" -c Release -r {System.Runtime.InteropServices.RuntimeInformation.RuntimeIdentifier} --self-contained false -o \"{folder}\" --nologo -v q -nodeReuse:false"))!;
         process.WaitForExit();
         return process.ExitCode == 0 ? Path.Combine(folder, "deepsourcecheck") : throw new InvalidOperationException("the program could not be published");
     }
