@@ -30,6 +30,11 @@ internal static class PlanBinder
                 double? alpha = detection.Number("alpha"), power = detection.Number("power"), looks = detection.Number("looks");
                 if (alpha is { } a && power is { } p && looks is { } k)
                 {
+                    if (p <= a)
+                    {
+                        detection.Problem("power", FormattableString.Invariant($"the probability of detection {p:0.######} is not above the false-alarm rate alpha {a:0.######}, which chance alone reaches; 0.8 or 0.9 are usual"));
+                    }
+
                     rules.Add(new DetectionChoice(a, p, k));
                 }
             }

@@ -48,6 +48,7 @@ public class StudyReaderErrorTests
     [InlineData("small", "rate_per_s: 11.1", "rejected_fraction: 0.1", "protocol.rate_per_s", "is missing")]
     [InlineData("small", "rate_per_s: 11.1", "rate_per_s: 11.1, rejected_fraction: 1", "protocol.rejected_fraction", "out of range|to below 1")]
     [InlineData("small", "{amplitude_ratio: 3}", "{}", "target", "states no rule|amplitude_ratio")]
+    [InlineData("small", "{amplitude_ratio: 3}", "{detection: {alpha: 0.2, power: 0.1}}", "target.detection.power", "0.1 is not above|alpha 0.2")]
     // head
     [InlineData("small", "{spheres: {preset: adult-4}}", "{}", "head", "none of spheres, leadfields")]
     [InlineData("small", "{spheres: {preset: adult-4}}", "{spheres: {preset: adult-4}, leadfields: {eeg: eeg.npy, points: points.tsv, rows: rows.tsv}}", "head.leadfields", "beside spheres|exactly one")]
