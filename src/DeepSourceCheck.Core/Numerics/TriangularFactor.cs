@@ -88,17 +88,18 @@ internal struct TriangularFactor
     {
         const nuint stride = 3 * 8;
         nuint end = (nuint)rows * stride;
-        Vector512<double> zero = Vector512<double>.Zero, aa = zero, ab = zero, ac = zero, bb = zero, bc = zero, cc = zero, total = zero;
+        Vector512<double> zero = Vector512<double>.Zero, aa = zero, ab = zero, ac = zero, bb = zero, bc = zero, cc = zero, ofB = zero, ofC = zero;
         for (nuint at = 0; at < end; at += stride)
         {
             Vector512<double> a = Vector512.LoadUnsafe(ref matrix, at), b = Vector512.LoadUnsafe(ref matrix, at + 8), c = Vector512.LoadUnsafe(ref matrix, at + 16);
             aa = Fma(a, a, aa);
             ab = Fma(a, b, ab);
             ac = Fma(a, c, ac);
-            total = Fma(b, b, Fma(c, c, total));
+            ofB = Fma(b, b, ofB);                               // a sum each: one sum of both would wait twice a row
+            ofC = Fma(c, c, ofC);
         }
 
-        total += aa;
+        Vector512<double> total = aa + ofB + ofC;
         Vector512<double> f = Quotient(ab, aa), g = Quotient(ac, aa);
         for (nuint at = 0; at < end; at += stride)
         {
