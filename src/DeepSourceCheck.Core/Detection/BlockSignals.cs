@@ -263,9 +263,6 @@ public sealed partial class BlockSignals
     public string PeakChannelName(Modality modality, int index) =>
         modality == Modality.Eeg ? _space.EegNames[index] : _space.MegNames[_megAlike ? index : _peakMeg[index]];
 
-    /// <summary>Number of channels that <see cref="PeakPower"/> chooses from.</summary>
-    public int PeakChannels(Modality modality) => modality == Modality.Eeg ? _space.EegChannels.Length : _peakMeg.Length;
-
     /// <summary>Both readings together: x' R^-1 x for the chosen EEG reading and the best MEG channel, R their 2 x 2 correlation.</summary>
     /// <param name="derivation">Index of the derivation, or -1 for the best EEG channel.</param>
     public Vector512<double> Pair(int derivation)

@@ -10,7 +10,7 @@ namespace DeepSourceCheck.Core.Detection;
 /// <summary>One-sided detection at known topography and covariance: N = ((z_(1-alpha/K) + z_power) / d)^2, rounded up, d^2 = P.</summary>
 /// <remarks>
 /// K looks are searched (Bonferroni): K = 1 only where channel, latency and polarity are fixed beforehand. A locked artefact of relative level sqrt(R) may mimic the response or oppose
-/// it: d becomes sqrt(P) - sqrt(R), so that neither errors rate grows (derived here, worst case).
+/// it: d becomes sqrt(P) - sqrt(R), so that neither error rate grows (derived here, worst case).
 /// Source: Kay 1998, Fundamentals of Statistical Signal Processing II, chapter 4 (from memory); (z_a + z_b)^2 = 13.0 for alpha .01 and power .9.
 /// </remarks>
 public sealed class DetectionRule : ITargetRule

@@ -30,6 +30,15 @@ public sealed class NiftiReaderTests
         }
     }
 
+    [Fact]
+    public void WholeNumbersBeyondDoublePrecision_AreSaidInAWarning()
+    {
+        double[] values = new double[24];
+        values[3] = Math.Pow(2, 54);
+        NiftiVolume volume = Read(new NiftiBytes { DataType = 1280, Bitpix = 64, Values = values }.File());
+        Assert.Contains("beyond 2^53", Assert.Single(volume.Warnings), StringComparison.Ordinal);
+    }
+
     [Theory]
     [MemberData(nameof(Kinds))]
     public void EveryTypeOrderVersionAndPacking_GivesTheValues(int type, bool bigEndian, bool version2, bool gzip)
