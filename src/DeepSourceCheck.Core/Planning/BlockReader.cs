@@ -24,6 +24,7 @@ internal sealed class BlockReader
     private readonly EvaluationPlan _plan;
     private readonly int[] _column;
     private readonly bool _artefact;
+    private readonly MeasureTally.Reading[][] _readings;
     private readonly LaneDirection[] _one = new LaneDirection[1], _tangential = new LaneDirection[DirectionSets.HalfCircle.Count];
     private readonly double[][] _powers, _artefacts, _peaks, _peakChannels;
 
@@ -34,6 +35,8 @@ internal sealed class BlockReader
         _artefact = plan.HasArtefact(Modality.Both);
         _powers = [.. plan.Measures.Select(_ => new double[most])];
         _artefacts = [.. plan.Measures.Select(_ => new double[_artefact ? most : 0])];
+        _readings = [.. plan.Measures.Select((m, k) => plan.Fallbacks(m).Select(f => plan.Measures.ToList().IndexOf(f)).Prepend(k)
+            .Select(r => new MeasureTally.Reading(_powers[r], _artefacts[r])).ToArray())];
         _peaks = [new double[plan.EegMeasure is null ? 0 : most], new double[plan.MegReported ? most : 0]];
         _peakChannels = [new double[_peaks[0].Length], new double[_peaks[1].Length]];
         IReadOnlyList<DipoleColumn> columns = plan.Columns;
@@ -86,7 +89,7 @@ internal sealed class BlockReader
             int length = taken * Lanes;
             for (int m = 0; m < _plan.Measures.Count; m++)
             {
-                tally.Cells[d][m].Add(_powers[m].AsSpan(0, length), _artefact ? _artefacts[m].AsSpan(0, length) : default);
+                tally.Cells[d][m].Add(_readings[m], length);
             }
 
             for (int k = 0; k < 2; k++)

@@ -110,6 +110,10 @@ public sealed class EvaluationPlan
     public bool HasArtefact(Modality modality) =>
         (modality != Modality.Meg && Response.LockedArtefactEeg > 0) || (modality != Modality.Eeg && Response.LockedArtefactMeg > 0);
 
+    /// <summary>Single readings that the pair of both modalities falls back to where a locked artefact buries one of them; empty for other measures.</summary>
+    public IReadOnlyList<IMeasure> Fallbacks(IMeasure measure) => measure is not PairMeasure ? [] :
+        [Measures.First(m => m.Modality == Modality.Eeg && m.Name == EegMeasure), Measures.First(m => m.Modality == Modality.Meg && m.Name == MegMeasure)];
+
     /// <summary>The given direction, a unit vector, where there is one.</summary>
     public Vec3 GivenVector => Response.Direction.Vector ?? default;
 

@@ -20,8 +20,9 @@ namespace DeepSourceCheck.Core.Planning;
 /// <param name="EegRow">Its leadfield over its noise [1/(A m)], one value an axis.</param>
 /// <param name="MegChannel">MEG channel that was read; -1 for none.</param>
 /// <param name="MegRow">Its leadfield over its noise [1/(A m)]; zero where the direction is silent.</param>
+/// <param name="Read">The measure that was read: the verdict's, or the single reading that a pair falls back to where a locked artefact buries the other.</param>
 internal sealed record MedianWitness(
-    string Point, Vec3 Position, Vec3 Direction, double Power, double Artefact, int EegChannel, Vec3 EegRow, int MegChannel, Vec3 MegRow)
+    IMeasure Read, string Point, Vec3 Position, Vec3 Direction, double Power, double Artefact, int EegChannel, Vec3 EegRow, int MegChannel, Vec3 MegRow)
 {
     /// <summary>Streams the region again until the median is met.</summary>
     /// <param name="plan">What was read.</param>
@@ -61,14 +62,17 @@ internal sealed record MedianWitness(
             {
                 LaneDirection u = directions[k];
                 signals.Ask(mode, u);
-                Vector512<double> power = measure.Power(signals) * Vector512.Create(plan.Gain);
-                Vector512<double> artefact = reader.ArtefactPower(measure.InverseVariance(signals));
-                for (int lane = 0; lane < n; lane++)
+                foreach (IMeasure read in cell.Effective is null ? [measure] : plan.Fallbacks(measure).Prepend(measure))
                 {
-                    double value = cell.Effective is null ? power[lane] : plan.Rules[rule].EffectivePower(power[lane], artefact[lane]);
-                    if (store.Matches(median, value))
+                    Vector512<double> power = read.Power(signals) * Vector512.Create(plan.Gain);
+                    Vector512<double> artefact = reader.ArtefactPower(read.InverseVariance(signals));
+                    for (int lane = 0; lane < n; lane++)
                     {
-                        return Describe(plan, signals, measure, mode, u, lane, RegionRun.PointName(region, from + lane), region.Positions[from + lane], power[lane], artefact[lane]);
+                        double value = cell.Effective is null ? power[lane] : plan.Rules[rule].EffectivePower(power[lane], artefact[lane]);
+                        if (store.Matches(median, value))
+                        {
+                            return Describe(plan, signals, read, mode, u, lane, RegionRun.PointName(region, from + lane), region.Positions[from + lane], power[lane], artefact[lane]);
+                        }
                     }
                 }
             }
@@ -105,6 +109,6 @@ internal sealed record MedianWitness(
 
         Vec3 direction = mode != DirectionMode.Best ? new(u.X[lane], u.Y[lane], u.Z[lane])
             : measure is DerivationMeasure or BestChannelMeasure ? (measure.Modality == Modality.Eeg ? eegRow : megRow).Unit() : default;
-        return new MedianWitness(point, position, direction, power, artefact, eeg, eegRow, meg, megRow);
+        return new MedianWitness(measure, point, position, direction, power, artefact, eeg, eegRow, meg, megRow);
     }
 }

@@ -114,24 +114,36 @@ internal sealed class MeasureTally
     public QuantileStore[]? Scales { get; }
 
     /// <summary>Adds powers and, where an artefact bears on the measure, its powers; NaN powers are left out.</summary>
-    public void Add(ReadOnlySpan<double> powers, ReadOnlySpan<double> artefacts)
+    /// <param name="readings">The measure itself, then the single readings that it may fall back to: two modalities together are never worse than one of them alone.</param>
+    /// <param name="length">Number of values in use.</param>
+    public void Add(Reading[] readings, int length)
     {
-        Power.Add(powers);
+        Power.Add(readings[0].Powers.AsSpan(0, length));
         for (int r = 0; _artefact && r < Effective!.Length; r++)
         {
             ITargetRule rule = _plan.Rules[r];
-            for (int k = 0; k < powers.Length; k++)
+            for (int k = 0; k < length; k++)
             {
-                double power = powers[k], artefact = artefacts[k];
-                Effective[r].Add(double.IsNaN(artefact) ? double.NaN : rule.EffectivePower(power, artefact));
-                if (_plan.SessionTrials is { } session && session > 0 && !double.IsNaN(artefact))
+                double effective = double.NaN, scale = double.NaN;
+                foreach (Reading reading in readings)
                 {
-                    double scale = rule.SmallestScale(power, artefact, session);
-                    Scales![r].Add(1 / (scale * scale));
+                    double power = reading.Powers[k], artefact = reading.Artefacts[k];
+                    if (!double.IsNaN(power) && !double.IsNaN(artefact))
+                    {
+                        effective = double.IsNaN(effective) ? rule.EffectivePower(power, artefact) : Math.Max(effective, rule.EffectivePower(power, artefact));
+                        double smallest = _plan.SessionTrials is > 0 and { } session ? rule.SmallestScale(power, artefact, session) : double.NaN;
+                        scale = double.IsNaN(scale) ? smallest : Math.Min(scale, smallest);
+                    }
                 }
+
+                Effective[r].Add(effective);
+                Scales![r].Add(1 / (scale * scale));
             }
         }
     }
+
+    /// <summary>Powers and artefact powers of one measure, value by value.</summary>
+    internal sealed record Reading(double[] Powers, double[] Artefacts);
 
     public void Merge(MeasureTally other)
     {

@@ -29,7 +29,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             for (int r = 0; r < plan.Rules.Count; r++)
             {
                 MedianWitness? witness = MedianWitness.Find(plan, setup.Head, source, region, tally, measure, direction, r, cancellation);
-                IReadOnlyList<DerivedNumber> chain = witness is null ? [] : new DerivationChain(plan, setup.Noise!).Of(witness, measure, plan.Rules[r]);
+                IReadOnlyList<DerivedNumber> chain = witness is null ? [] : new DerivationChain(plan, setup.Noise!).Of(witness, witness.Read, plan.Rules[r]);
                 rows = Reconcile(rows, modality, direction, name, r, witness);
                 MeasureResult row = rows.First(x => x.Modality == modality && x.Direction == direction && x.Measure == name);
                 verdicts.Add(Verdict(row, r, witness, chain));

@@ -337,6 +337,26 @@ public class AssessorTests
         Assert.Contains("filter", filter.Reason, StringComparison.Ordinal);
     }
 
+    [Theory]
+    [InlineData(0, 0)]
+    [InlineData(1e-3, 0)]                                       // EEG buried: MEG alone remains
+    [InlineData(0, 1e-9)]                                       // MEG buried: EEG alone remains
+    [InlineData(1e-8, 0)]
+    public void Pair_UnderALockedArtefact_IsNeverWorseThanOneReadingAlone(double eegVolts, double megTesla)
+    {
+        SmallStudy study = Random(17, points: 11) with { ArtefactEeg = eegVolts, ArtefactMeg = megTesla, Targets = [new AmplitudeRatioChoice(3), new DetectionChoice(0.01, 0.9, 1)] };
+        RegionResult region = study.Assess();
+        for (int rule = 0; rule < 2; rule++)
+        {
+            TargetResult Of(Modality modality, string measure) => region.Find(modality, DirectionName.Given, measure)!.Targets[rule];
+            TargetResult eeg = Of(Modality.Eeg, "E0-E1"), meg = Of(Modality.Meg, Names.BestChannel), pair = Of(Modality.Both, "E0-E1");
+            Assert.True(pair.Trials.P50 <= Math.Min(eeg.Trials.P50 ?? long.MaxValue, meg.Trials.P50 ?? long.MaxValue), $"{eeg.Trials.P50} {meg.Trials.P50} {pair.Trials.P50}");
+            Assert.True(pair.SmallestMoment <= Math.Min(eeg.SmallestMoment ?? double.MaxValue, meg.SmallestMoment ?? double.MaxValue) * (1 + 1e-12));
+            VerdictResult verdict = region.Verdicts.Where(v => v.Modality == Modality.Both).ElementAt(rule);
+            Assert.Equal(pair.Trials.P50, (long)ChainArithmetic.Recompute(verdict.Chain)["N"]);
+        }
+    }
+
     [Fact]
     public void FiniteSamples_LowerTheFilterAsPublished()
     {
