@@ -9,8 +9,8 @@ namespace DeepSourceCheck.Core.Heads.Voxels;
 //  Nz   the deepest point of the first hollow of the midline profile below the forehead: hollow means below a tape over forehead and nose, by 0.01 L at least.
 //       Without a hollow (no face in the volume): 0.69 L below the top.
 //  Iz   the midline scalp at the back, 0.075 L above Nz. The bump itself is often not to be felt, still less to be seen in a label volume.
-//  PA   the scalp 0.51 of the way from Iz to Nz and 0.105 L below that line, to either side. Where the ear shows as a pit (0.012 L below tapes over the side in both
-//       directions) within 0.13 L of there: 0.025 L in front of the pit's front edge, level with its top.
+//  PA   the scalp 0.51 of the way from Iz to Nz and 0.105 L below that line, to either side. Where the ear shows as a pit (0.025 L, 5 mm, below tapes over the side in
+//       both directions; the temple is a shallower hollow) within 0.13 L of there: 0.025 L in front of the pit's front edge, level with its top.
 // The ratios without a hollow or a pit are those of the landmarks on this program's spherical heads (elevations -23, -14 and -32 degrees, R = L/2), which
 // were taken from a real head in MNI space: 1/2 (1 + sin 23), 1/2 (sin 23 - sin 14), cos 14/(cos 14 + cos 23), and the height of that line above PA.
 // They hold for heads in the usual upright orientation; 5 degrees of nodding move Iz by 0.08 L.
@@ -31,19 +31,21 @@ public static class LandmarkFinder
     /// <summary>Depth of the preauricular points below the line from inion to nasion, as a ratio to the head's length.</summary>
     public const double PreauricularBelow = 0.105;
 
-    private const double HollowDepth = 0.01, PitDepth = 0.012, PitWindow = 0.13, BeforePit = 0.025;
+    private const double HollowDepth = 0.01, PitDepth = 0.025, PitWindow = 0.13, BeforePit = 0.025;
 
     // How far each may be off, in head lengths (200 mm): 3 mm for a nasion that is seen, 9 mm for an inion by its ratio, 6 mm in front of a pit, 12 mm without one.
     private const double SeenNasion = 0.015, GuessedNasion = 0.075, GuessedInion = 0.045, SeenEar = 0.03, GuessedEar = 0.06;
 
     /// <summary>The four landmarks.</summary>
     /// <param name="scalp">Scalp.</param>
-    /// <returns>The landmarks, found ones with their uncertainty, and warnings.</returns>
-    public static HeadLandmarks Find(ScalpSurface scalp)
+    /// <param name="knownNasion">Nz [m] where it is known: the others are measured from it.</param>
+    /// <param name="knownInion">Iz [m] where it is known.</param>
+    /// <returns>The landmarks with their uncertainty, and warnings.</returns>
+    public static HeadLandmarks Find(ScalpSurface scalp, Vec3? knownNasion = null, Vec3? knownInion = null)
     {
         HeadFrame frame = new(scalp);
         List<string> warnings = [.. frame.Contradictions()];
-        (Landmark nasion, bool seen) = Nasion(frame);
+        (Landmark nasion, bool seen) = knownNasion is { } known ? (new("Nz", known, true, 0, 0), true) : Nasion(frame);
         if (!seen)
         {
             warnings.Add(Hollow(frame, -1) is not null
@@ -52,7 +54,7 @@ public static class LandmarkFinder
                     + string.Create(CultureInfo.InvariantCulture, $"{Si.ToMm(nasion.Uncertainty):0} mm; give landmarks_mm for exact sites"));
         }
 
-        Vec3 inion = Behind(frame, nasion.Position.Z + InionAboveNasion * frame.Length);
+        Vec3 inion = knownInion ?? OnMidline(frame, nasion.Position.Z + InionAboveNasion * frame.Length, -1);
         (Landmark left, Landmark right) = Preauricular(frame, nasion.Position, inion);
         Vec3 across = right.Position - left.Position;
         if (Math.Abs(across.Y) > 0.08 * frame.Length || Math.Abs(across.Z) > 0.08 * frame.Length)
@@ -61,14 +63,12 @@ public static class LandmarkFinder
                 $"the preauricular points found differ by {Si.ToMm(Math.Abs(across.Y)):0} mm front to back and {Si.ToMm(Math.Abs(across.Z)):0} mm in height; look at them, or give landmarks_mm"));
         }
 
-        return new(nasion, new("Iz", inion, false, GuessedInion * frame.Length, 0), left, right, warnings);
+        return new(nasion, new("Iz", inion, knownInion is not null, knownInion is null ? GuessedInion * frame.Length : 0, 0), left, right, warnings);
     }
 
     private static (Landmark Nasion, bool Seen) Nasion(HeadFrame frame) => Hollow(frame, 1) is { } hollow
         ? (new("Nz", hollow, false, SeenNasion * frame.Length, 0), true)
         : (new("Nz", OnMidline(frame, frame.Top - NasionBelowTop * frame.Length, 1), false, GuessedNasion * frame.Length, 0), false);
-
-    private static Vec3 Behind(HeadFrame frame, double height) => OnMidline(frame, height, -1);
 
     /// <summary>The midline scalp at a height, in front (1) or at the back (-1).</summary>
     private static Vec3 OnMidline(HeadFrame frame, double height, int side)

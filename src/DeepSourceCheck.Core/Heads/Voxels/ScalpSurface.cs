@@ -19,7 +19,7 @@ public sealed class ScalpSurface
     public const double LeastSmoothing = 0.0015;
 
     /// <summary>Standard deviation of the smoothing in voxels, where these are larger.</summary>
-    public const double SmoothingVoxels = 0.75;
+    public const double SmoothingVoxels = 1.0;
 
     private const int MostFaces = 20_000;
 
@@ -86,6 +86,21 @@ public sealed class ScalpSurface
 
         // A gradient turns with the inverse transpose: the rows of the inverse map are what it is a combination of.
         return (g.X * _toBox.Row0 + g.Y * _toBox.Row1 + g.Z * _toBox.Row2).Unit();
+    }
+
+    /// <summary>Mean outward unit normal of the surface within a radius of a point: what a flat sensor of that size lies along. Terraces of voxels average out.</summary>
+    /// <param name="point">World [m], on the surface.</param>
+    /// <param name="radius">Radius of the patch [m].</param>
+    public Vec3 PatchNormal(Vec3 point, double radius)
+    {
+        Vec3 sum = Normal(point);
+        foreach (Vec3 sample in _samples)
+        {
+            Vec3 d = sample - point;
+            sum += d.X * d.X + d.Y * d.Y + d.Z * d.Z < radius * radius ? Normal(sample) : Vec3.Zero;
+        }
+
+        return sum.Unit();
     }
 
     /// <summary>The outermost place where a ray leaves the head.</summary>
