@@ -11,9 +11,9 @@ namespace DeepSourceCheck.Core.Sensors;
 // one, in turn, until it moves by less than 0.01 mm (Jurcak, Tsuzuki & Dan 2007, NeuroImage 34:1600, from memory).
 //
 // Mastoids. The contract of the spherical head places M1 and M2 at azimuth 95 and elevation -26 degrees. The same place in terms of sites: with LPA = T9 (start of the
-// coronal curve), T9h (5 % of it) and TP9 (a fifth of the way from T9 to Iz),
+// coronal curve), T9h (5 % of it) and TP9 (a fifth of the way from T9 back to Iz),
 //   M1 = scalp nearest to T9 + a (T9h - T9) + b (TP9 - T9),
-// a and b such that on the sphere M1 lies in exactly that direction (a = 0.53, b = 0.29): behind and slightly above the preauricular point, whatever the head's shape.
+// a and b such that on the sphere M1 lies in exactly that direction (a = 0.47, b = 0.28): behind and slightly above the preauricular point, whatever the head's shape.
 
 /// <summary>Sites of the 10-20, 10-10 and 10-5 systems and the mastoids on the scalp of a real head.</summary>
 /// <remarks>Source of the rules: Jurcak, Tsuzuki &amp; Dan 2007, NeuroImage 34:1600. Immutable.</remarks>
@@ -77,7 +77,7 @@ public sealed class ScalpSites
         return new(scalp, landmarks, at, midline, coronal);
     }
 
-    /// <summary>The point about which outlines are followed: half way from the middle of the landmarks to the top of the head.</summary>
+    /// <summary>The point about which outlines are followed: a third of the way from the middle of the landmarks to the top of the head (a sphere's centre, nearly).</summary>
     private static Vec3 Inside(ScalpSurface scalp, Vec3 nasion, Vec3 inion, Vec3 left, Vec3 right, out Vec3 up)
     {
         up = Vec3.Cross(right - left, nasion - inion).Unit();

@@ -6,8 +6,8 @@ using DeepSourceCheck.Core.Units;
 namespace DeepSourceCheck.Core.Heads.Voxels;
 
 // Lengths are in head lengths L (front-back extent of the upper head), so that children's and scaled heads are served alike.
-//  Nz   the deepest point of the first hollow of the midline profile below the forehead: hollow means below a tape over forehead and nose, by 0.01 L at least.
-//       Without a hollow (no face in the volume): 0.69 L below the top.
+//  Nz   the deepest point of the first hollow of the midline profile below the forehead: hollow means below a tape over forehead and nose, by 0.01 L at least, 0.45
+//       to 0.88 L below the top. Without a hollow (no face in the volume): 0.69 L below the top.
 //  Iz   the midline scalp at the back, 0.075 L above Nz. The bump itself is often not to be felt, still less to be seen in a label volume.
 //  PA   the scalp 0.51 of the way from Iz to Nz and 0.105 L below that line, to either side. Where the ear shows as a pit (0.025 L, 5 mm, below tapes over the side in
 //       both directions; the temple is a shallower hollow) within 0.13 L of there: 0.025 L in front of the pit's front edge, level with its top.
@@ -31,6 +31,9 @@ public static class LandmarkFinder
     /// <summary>Depth of the preauricular points below the line from inion to nasion, as a ratio to the head's length.</summary>
     public const double PreauricularBelow = 0.105;
 
+    // A hollow higher than this below the top is a dent of the forehead, a lower one the mouth or the neck: nodding by 10 degrees moves a nasion by 0.09 L.
+    private const double HighestNasion = 0.45, LowestNasion = 0.88;
+
     private const double HollowDepth = 0.01, PitDepth = 0.025, PitWindow = 0.13, BeforePit = 0.025;
 
     // How far each may be off, in head lengths (200 mm): 3 mm for a nasion that is seen, 9 mm for an inion by its ratio, 6 mm in front of a pit, 12 mm without one.
@@ -48,10 +51,8 @@ public static class LandmarkFinder
         (Landmark nasion, bool seen) = knownNasion is { } known ? (new("Nz", known, true, 0, 0), true) : Nasion(frame);
         if (!seen)
         {
-            warnings.Add(Hollow(frame, -1) is not null
-                ? "no hollow of a nasion in front, but one at the back: y may not point to the front; give landmarks_mm"
-                : "no nasion shows in the head's profile; it was placed by the head's proportions, to about "
-                    + string.Create(CultureInfo.InvariantCulture, $"{Si.ToMm(nasion.Uncertainty):0} mm; give landmarks_mm for exact sites"));
+            warnings.Add(string.Create(CultureInfo.InvariantCulture,
+                $"no nasion shows in the head's profile (a volume without a face, or y does not point to the front); it was placed by the head's proportions, to about {Si.ToMm(nasion.Uncertainty):0} mm; give landmarks_mm for exact sites"));
         }
 
         Vec3 inion = knownInion ?? OnMidline(frame, nasion.Position.Z + InionAboveNasion * frame.Length, -1);
@@ -66,7 +67,7 @@ public static class LandmarkFinder
         return new(nasion, new("Iz", inion, knownInion is not null, knownInion is null ? GuessedInion * frame.Length : 0, 0), left, right, warnings);
     }
 
-    private static (Landmark Nasion, bool Seen) Nasion(HeadFrame frame) => Hollow(frame, 1) is { } hollow
+    private static (Landmark Nasion, bool Seen) Nasion(HeadFrame frame) => Hollow(frame) is { } hollow
         ? (new("Nz", hollow, false, SeenNasion * frame.Length, 0), true)
         : (new("Nz", OnMidline(frame, frame.Top - NasionBelowTop * frame.Length, 1), false, GuessedNasion * frame.Length, 0), false);
 
@@ -78,12 +79,12 @@ public static class LandmarkFinder
         return frame.Scalp.Outermost(from, outwards) ?? frame.Scalp.Nearest(from + frame.Length / 2 * outwards).Point;
     }
 
-    /// <summary>The deepest point of the first hollow of the midline profile below the forehead, in front (1) or at the back (-1).</summary>
-    private static Vec3? Hollow(HeadFrame frame, int side)
+    /// <summary>The deepest point of the first hollow of the midline profile below the forehead; null where it is no nasion.</summary>
+    private static Vec3? Hollow(HeadFrame frame)
     {
         const int Steps = 720;      // a quarter of a degree
-        Vec3 outwards = side * Vec3.Cross(new(0, 0, 1), frame.Rightwards).Unit(), down = side * Vec3.Cross(outwards, frame.Rightwards);
-        ScalpSection section = new(frame.Scalp, frame.Centre, -down, outwards);
+        Vec3 forwards = Vec3.Cross(new(0, 0, 1), frame.Rightwards).Unit(), up = Vec3.Cross(frame.Rightwards, forwards);
+        ScalpSection section = new(frame.Scalp, frame.Centre, up, forwards);
         List<Vec3> profile = [];
         for (int n = 0; n <= Steps && section.At(Math.PI * n / Steps) is { } point; n++)
         {
@@ -101,13 +102,14 @@ public static class LandmarkFinder
             double depth = 0;
             for (int k = tape[n - 1] + 1; k < tape[n]; k++)
             {
-                double below = Math.Abs((outline[k].U - u0) * dv - (outline[k].V - v0) * du) / length;
-                (deepest, depth) = below > depth ? (k, below) : (deepest, depth);
+                double under = Math.Abs((outline[k].U - u0) * dv - (outline[k].V - v0) * du) / length;
+                (deepest, depth) = under > depth ? (k, under) : (deepest, depth);
             }
 
-            if (depth >= HollowDepth * frame.Length && profile[deepest].Z < frame.Top - 0.3 * frame.Length)
+            double below = (frame.Top - profile[deepest].Z) / frame.Length;
+            if (depth >= HollowDepth * frame.Length && below > HighestNasion)
             {
-                return profile[deepest].Z > frame.Top - frame.Length ? profile[deepest] : null;
+                return below < LowestNasion ? profile[deepest] : null;
             }
         }
 
