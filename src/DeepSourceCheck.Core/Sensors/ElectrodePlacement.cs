@@ -105,6 +105,12 @@ public static class ElectrodePlacement
             }
         }
 
+        string[] cut = [.. electrodes.Where(e => e is { IsInterior: false } && scalp.IsOnCut(e.Position)).Select(e => e.Name)];
+        if (cut.Length > 0)
+        {
+            warnings.Add($"{(file is null ? "" : file + ": ")}{string.Join(", ", cut)}: the nearest scalp is where the volume cuts the neck; use a volume that reaches lower, or leave these electrodes out");
+        }
+
         if (problems.Count == 0)
         {
             Describe([.. electrodes.Where(e => e.IsInterior)], scalp, warnings, problems, file);

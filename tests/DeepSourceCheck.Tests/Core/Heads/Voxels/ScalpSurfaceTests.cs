@@ -100,7 +100,29 @@ public class ScalpSurfaceTests
         Assert.True(scalp.Contains(new(0, 0.02, -0.02)));
         Assert.True(scalp.Contains(new(0, 0.02, -0.034)));
         Assert.False(scalp.Contains(new(0, 0, end - 0.003)));
+        Assert.True(scalp.IsOnCut(scalp.Nearest(new(0.03, 0, end - 0.01)).Point));
+        Assert.False(scalp.IsOnCut(scalp.Nearest(new(0, 0, 0.1)).Point));
         Assert.False(scalp.Contains(new(0.098, 0, 0)));
+    }
+
+    // A flap of 5 mm that stands off the side like an auricle, with a wedge of air behind it.
+    [Theory]
+    [InlineData(0.001)]
+    [InlineData(0.002)]
+    public void Auricle_IsLeftOut(double voxel)
+    {
+        Vec3 root = new(0.090, 0, 0), along = new Vec3(0.6, -0.8, 0), across = new Vec3(0.8, 0.6, 0);
+        bool Flap(Vec3 p) => Math.Abs(Vec3.Dot(p - root, across)) < 0.0025 && Vec3.Dot(p - root, along) is > -0.01 and < 0.025 && Math.Abs(p.Z) < 0.03;
+        TissueVolume volume = LabelledHeads.Of(voxel, 0.110, p => p.Norm < Radius || Flap(p) ? 1 : 0);
+        Vec3 tip = root + 0.022 * along;
+        Assert.Equal(TissueKind.Scalp, volume.At(tip).Kind);
+        ScalpSurface scalp = ScalpSurface.Of(volume);
+        Assert.False(scalp.Contains(tip));
+        for (int step = -6; step <= 6; step++)
+        {
+            Vec3 direction = new Vec3(Math.Cos(0.05 * step), Math.Sin(0.05 * step), 0);
+            Assert.InRange(scalp.Outermost(Vec3.Zero, direction)!.Value.Norm - Radius, -0.001, 0.004);
+        }
     }
 
     [Fact]
