@@ -14,7 +14,7 @@ namespace DeepSourceCheck.Core.Heads.Voxels;
 /// </summary>
 /// <remarks>
 /// World coordinates [m]. Where the volume cuts the neck, the cut is part of the surface. Immutable. Measured on labelled spheres of 92 mm with voxels of 1, 2 and 4 mm:
-/// radius to 0.05, 0.15 and 0.34 mm rms, 0.3, 0.8 and 1.2 mm at worst (in the middle of a terrace, where the surface runs along a layer of voxels); normals to 1.8, 3.6 and
+/// radius to 0.06, 0.15 and 0.35 mm rms, 0.5, 0.8 and 1.2 mm at worst (in the middle of a terrace, where the surface runs along a layer of voxels); normals to 1.8, 3.6 and
 /// 3.7 degrees rms, patch normals of 8 mm within 2.3, 6.6 and 13 degrees.
 /// </remarks>
 public sealed class ScalpSurface
