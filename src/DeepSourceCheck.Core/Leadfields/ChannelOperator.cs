@@ -98,7 +98,7 @@ public sealed class ChannelOperator
         }
     }
 
-    private void Apply<T>(ref double input, ref double output)
+    internal void Apply<T>(ref double input, ref double output)
         where T : struct, ILaneVector<T>
     {
         for (int lane = 0; lane < LeadfieldBlock.Lanes; lane += T.Count)

@@ -9,13 +9,14 @@ namespace DeepSourceCheck.Core.Noise;
 /// <summary>Turns signals into units of independent noise: W C W' = I on the range of C.</summary>
 /// <remarks>
 /// Diagonal covariances are scaled only. Dense ones go through the inverse Cholesky factor W, lower triangular, in panels of eight rows: 24 sums stay in registers (eight rows, three
-/// axes, eight dipoles a vector), and every loaded vector serves eight of them. W is packed in the order in which it is read. In place, the last panel first: row i needs only
+/// axes, eight dipoles a vector), and every loaded vector serves eight of them; half a panel and 12 sums where there are sixteen registers. W is packed in the order in which it is read. In place, the last panel first: row i needs only
 /// rows j up to i, which are still unwhitened then. A plain twin stands in the tests.
 /// </remarks>
 public sealed class Whitener
 {
     private const int Panel = 8, Stride = 3 * LeadfieldBlock.Lanes;
     private readonly int[] _channels;
+    private readonly int _inputs;
     private readonly double[] _scale;
     private double[]? _panels;
     private int[]? _panelStart;
@@ -23,6 +24,7 @@ public sealed class Whitener
     private Whitener(int[] channels, double[] scale, double[]? inverse)
     {
         _channels = channels;
+        _inputs = channels.Length == 0 ? 0 : channels.Max() + 1;
         _scale = scale;
         if (inverse is not null)
         {
@@ -63,9 +65,10 @@ public sealed class Whitener
     /// <summary>Whitens the leadfields of eight dipoles.</summary>
     /// <param name="input">[channel][axis][lane].</param>
     /// <param name="output">[whitened row][axis][lane], at least <see cref="Rank"/> rows; overwritten. Must not overlap the input.</param>
+    /// <exception cref="ArgumentException">A span is too short.</exception>
     public void Apply(ReadOnlySpan<double> input, Span<double> output)
     {
-        if (input.Length < Stride * (Rank == 0 ? 0 : _channels.Max() + 1) || output.Length < Stride * Rank)
+        if (input.Length < Stride * _inputs || output.Length < Stride * Rank)
         {
             throw new ArgumentException($"{Rank} rows need {Stride} values each and the channels that they are made of; {input.Length} and {output.Length} were given.", nameof(input));
         }
@@ -84,7 +87,7 @@ public sealed class Whitener
         }
     }
 
-    private void Apply<T>(ref double input, ref double output)
+    internal void Apply<T>(ref double input, ref double output)
         where T : struct, ILaneVector<T>
     {
         for (int lane = 0; lane < LeadfieldBlock.Lanes; lane += T.Count)

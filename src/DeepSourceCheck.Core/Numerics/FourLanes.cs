@@ -1,5 +1,6 @@
 using System.Runtime.CompilerServices;
 using System.Runtime.Intrinsics;
+using System.Runtime.Intrinsics.X86;
 
 namespace DeepSourceCheck.Core.Numerics;
 
@@ -12,7 +13,7 @@ internal readonly struct FourLanes(Vector256<double> value) : ILaneVector<FourLa
     public static int Count => 4;
 
     /// <inheritdoc/>
-    public static bool ManyRegisters => Vector512.IsHardwareAccelerated;
+    public static bool ManyRegisters => Avx512F.VL.IsSupported;
 
     /// <summary>The register.</summary>
     public Vector256<double> Value => _value;

@@ -1,5 +1,6 @@
 using System.Runtime.CompilerServices;
 using System.Runtime.Intrinsics;
+using System.Runtime.Intrinsics.X86;
 
 namespace DeepSourceCheck.Core.Numerics;
 
@@ -12,7 +13,7 @@ internal readonly struct TwoLanes(Vector128<double> value) : ILaneVector<TwoLane
     public static int Count => 2;
 
     /// <inheritdoc/>
-    public static bool ManyRegisters => !System.Runtime.Intrinsics.X86.X86Base.IsSupported;
+    public static bool ManyRegisters => !X86Base.IsSupported || Avx512F.VL.IsSupported;
 
     /// <summary>The register.</summary>
     public Vector128<double> Value => _value;

@@ -28,7 +28,7 @@ public sealed class EegLayerSeries
 {
     private const int Lanes = LeadfieldBlock.Lanes;
 
-    /// <summary>Electrodes come in fours: as many are in flight at most, enough to hide the latency of the recurrence.</summary>
+    /// <summary>Most electrodes in flight: enough to hide the latency of the recurrence.</summary>
     private const int Flight = 4;
 
     private readonly Vec3 _centre;
@@ -50,7 +50,7 @@ public sealed class EegLayerSeries
         _length = new SeriesLength(transfer);
         Rows = electrodes.Count;
 
-        int padded = (Rows + Flight - 1) / Flight * Flight;
+        int padded = Rows == 0 ? 0 : Rows + Flight - 1;       // the last ones in flight may be repeated
         _ex = new double[padded];
         _ey = new double[padded];
         _ez = new double[padded];
@@ -179,7 +179,7 @@ public sealed class EegLayerSeries
         }
         else
         {
-            TwoInFlight(eeg, lane, x, y, z, degree, ref weights);
+            ThreeInFlight(eeg, lane, x, y, z, degree, ref weights);
         }
     }
 
@@ -189,7 +189,7 @@ public sealed class EegLayerSeries
     {
         ref double alpha = ref MemoryMarshal.GetArrayDataReference(_onElectrode);
         ref double gamma = ref MemoryMarshal.GetArrayDataReference(_onPosition);
-        for (int row = 0; row < _ex.Length; row += 4)
+        for (int row = 0; row < Rows; row += Flight)
         {
             T t0 = TwiceCosine(x, y, z, row), t1 = TwiceCosine(x, y, z, row + 1), t2 = TwiceCosine(x, y, z, row + 2), t3 = TwiceCosine(x, y, z, row + 3);
             T g0 = T.All(1), g1 = g0, g2 = g0, g3 = g0;         // G_n
@@ -255,52 +255,66 @@ public sealed class EegLayerSeries
         }
     }
 
-    /// <summary>The same, two electrodes at a time, for sixteen registers.</summary>
-    private void TwoInFlight<T>(double[] eeg, int lane, T x, T y, T z, int degree, ref double weights)
+    /// <summary>The same, three electrodes at a time, for sixteen registers.</summary>
+    private void ThreeInFlight<T>(double[] eeg, int lane, T x, T y, T z, int degree, ref double weights)
         where T : struct, ILaneVector<T>
     {
         ref double alpha = ref MemoryMarshal.GetArrayDataReference(_onElectrode);
         ref double gamma = ref MemoryMarshal.GetArrayDataReference(_onPosition);
-        for (int row = 0; row < _ex.Length; row += 2)
+        for (int row = 0; row < Rows; row += 3)
         {
-            T t0 = TwiceCosine(x, y, z, row), t1 = TwiceCosine(x, y, z, row + 1), g0 = T.All(1), g1 = g0;
-            T p0 = default, p1 = default, s0 = default, s1 = default, u0 = default, u1 = default;
+            T t0 = TwiceCosine(x, y, z, row), t1 = TwiceCosine(x, y, z, row + 1), t2 = TwiceCosine(x, y, z, row + 2), g0 = T.All(1), g1 = g0, g2 = g0;
+            T p0 = default, p1 = default, p2 = default, s0 = default, s1 = default, s2 = default, u0 = default, u1 = default, u2 = default;
             int n = 1;
             for (; n + 1 < degree; n += 2)
             {
-                T a = T.All(Unsafe.Add(ref alpha, n)), b = T.All(Unsafe.Add(ref gamma, n)), q = T.Load(ref weights, (nuint)(n * T.Count));
-                s0 = T.MultiplyAdd(a, g0, s0);
-                s1 = T.MultiplyAdd(a, g1, s1);
-                u0 = T.MultiplyAdd(b, g0, u0);
-                u1 = T.MultiplyAdd(b, g1, u1);
-                p0 = T.MultiplyAdd(t0, g0, q * p0);
-                p1 = T.MultiplyAdd(t1, g1, q * p1);
+                T c = T.All(Unsafe.Add(ref alpha, n));
+                s0 = T.MultiplyAdd(c, g0, s0);
+                s1 = T.MultiplyAdd(c, g1, s1);
+                s2 = T.MultiplyAdd(c, g2, s2);
+                c = T.All(Unsafe.Add(ref gamma, n));
+                u0 = T.MultiplyAdd(c, g0, u0);
+                u1 = T.MultiplyAdd(c, g1, u1);
+                u2 = T.MultiplyAdd(c, g2, u2);
+                c = T.Load(ref weights, (nuint)(n * T.Count));
+                p0 = T.MultiplyAdd(t0, g0, c * p0);
+                p1 = T.MultiplyAdd(t1, g1, c * p1);
+                p2 = T.MultiplyAdd(t2, g2, c * p2);
 
-                a = T.All(Unsafe.Add(ref alpha, n + 1));
-                b = T.All(Unsafe.Add(ref gamma, n + 1));
-                q = T.Load(ref weights, (nuint)((n + 1) * T.Count));
-                s0 = T.MultiplyAdd(a, p0, s0);
-                s1 = T.MultiplyAdd(a, p1, s1);
-                u0 = T.MultiplyAdd(b, p0, u0);
-                u1 = T.MultiplyAdd(b, p1, u1);
-                g0 = T.MultiplyAdd(t0, p0, q * g0);
-                g1 = T.MultiplyAdd(t1, p1, q * g1);
+                c = T.All(Unsafe.Add(ref alpha, n + 1));
+                s0 = T.MultiplyAdd(c, p0, s0);
+                s1 = T.MultiplyAdd(c, p1, s1);
+                s2 = T.MultiplyAdd(c, p2, s2);
+                c = T.All(Unsafe.Add(ref gamma, n + 1));
+                u0 = T.MultiplyAdd(c, p0, u0);
+                u1 = T.MultiplyAdd(c, p1, u1);
+                u2 = T.MultiplyAdd(c, p2, u2);
+                c = T.Load(ref weights, (nuint)((n + 1) * T.Count));
+                g0 = T.MultiplyAdd(t0, p0, c * g0);
+                g1 = T.MultiplyAdd(t1, p1, c * g1);
+                g2 = T.MultiplyAdd(t2, p2, c * g2);
             }
 
             if (n < degree)
             {
-                T a = T.All(Unsafe.Add(ref alpha, n)), b = T.All(Unsafe.Add(ref gamma, n)), q = T.Load(ref weights, (nuint)(n * T.Count));
-                s0 = T.MultiplyAdd(a, g0, s0);
-                s1 = T.MultiplyAdd(a, g1, s1);
-                u0 = T.MultiplyAdd(b, g0, u0);
-                u1 = T.MultiplyAdd(b, g1, u1);
-                g0 = T.MultiplyAdd(t0, g0, q * p0);
-                g1 = T.MultiplyAdd(t1, g1, q * p1);
+                T c = T.All(Unsafe.Add(ref alpha, n));
+                s0 = T.MultiplyAdd(c, g0, s0);
+                s1 = T.MultiplyAdd(c, g1, s1);
+                s2 = T.MultiplyAdd(c, g2, s2);
+                c = T.All(Unsafe.Add(ref gamma, n));
+                u0 = T.MultiplyAdd(c, g0, u0);
+                u1 = T.MultiplyAdd(c, g1, u1);
+                u2 = T.MultiplyAdd(c, g2, u2);
+                c = T.Load(ref weights, (nuint)(n * T.Count));
+                g0 = T.MultiplyAdd(t0, g0, c * p0);
+                g1 = T.MultiplyAdd(t1, g1, c * p1);
+                g2 = T.MultiplyAdd(t2, g2, c * p2);
             }
 
             T last = T.All(Unsafe.Add(ref alpha, degree));
             Store(eeg, row, lane, x, y, z, T.MultiplyAdd(last, g0, s0), u0);
             Store(eeg, row + 1, lane, x, y, z, T.MultiplyAdd(last, g1, s1), u1);
+            Store(eeg, row + 2, lane, x, y, z, T.MultiplyAdd(last, g2, s2), u2);
         }
     }
 

@@ -135,11 +135,11 @@ public sealed class MegSphere
         T inverseF = T.All(1) / (a * m);
         T b = T.MultiplyAdd(ar, m * inverseF, T.MultiplyAdd(T.All(2), r, a)); // a.r/|a| = a.r m/F
         T alpha = T.MultiplyAdd(a2, oneOverR, b + a);
-        T gradient = alpha * kr - b * k0;
-        T onR = gradient * inverseF * inverseF;
-        hx += T.MultiplyAdd(inverseF, kx, -(onR * rx));
-        hy += T.MultiplyAdd(inverseF, ky, -(onR * ry));
-        hz += T.MultiplyAdd(inverseF, kz, -(onR * rz));
+        T gradient = T.MultiplyAdd(alpha, kr, -(b * k0));
+        T onR = -(gradient * inverseF) * inverseF;
+        hx = T.MultiplyAdd(onR, rx, T.MultiplyAdd(inverseF, kx, hx));
+        hy = T.MultiplyAdd(onR, ry, T.MultiplyAdd(inverseF, ky, hy));
+        hz = T.MultiplyAdd(onR, rz, T.MultiplyAdd(inverseF, kz, hz));
     }
 
     /// <summary>a b - c d to about one unit in the last place of the result (Kahan's scheme): keeps every row orthogonal to r0.</summary>
