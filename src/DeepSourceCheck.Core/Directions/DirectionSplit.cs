@@ -38,13 +38,13 @@ public static class DirectionSplit
         for (int lane = 0; lane < LeadfieldBlock.Lanes; lane++)
         {
             Vec3 position = block.Positions[lane];
-            if (head.IsSymmetryCentre(position))
-            {
-                undefined |= 1 << lane;
-            }
-            else if (head.Outward(position) is { } normal)
+            if (head.Outward(position) is { } normal)
             {
                 (outward[lane], outward[LeadfieldBlock.Lanes + lane], outward[2 * LeadfieldBlock.Lanes + lane]) = normal;
+            }
+            else if (head.IsSymmetryCentre(position))
+            {
+                undefined |= 1 << lane;
             }
         }
 

@@ -63,12 +63,12 @@ internal static class SingularTriple<T>
     }
 
     /// <summary>Power of two at or below the largest entry.</summary>
-    [MethodImpl(MethodImplOptions.NoInlining)]
+    [MethodImpl(MethodImplOptions.NoInlining | MethodImplOptions.AggressiveOptimization)]
     private static T SizeOf(in TriangularFactor<T> r) => LaneVector.PowerOfTwo(
         T.Max(T.Max(T.Max(r.R11, r.R22), T.Max(r.R33, T.Abs(r.R12))), T.Max(T.Abs(r.R13), T.Abs(r.R23))));
 
-    /// <summary>Puts the largest first. It and the one above stand apart: the compiler inlines only so much into one method.</summary>
-    [MethodImpl(MethodImplOptions.NoInlining)]
+    /// <summary>Puts the largest first. It and the one above stand apart, since the compiler inlines only so much into one method, and have no loop that would have them optimised at once.</summary>
+    [MethodImpl(MethodImplOptions.NoInlining | MethodImplOptions.AggressiveOptimization)]
     private static void Sort(ref double values, ref double axes)
     {
         Order(ref values, ref axes, 0, 1);
