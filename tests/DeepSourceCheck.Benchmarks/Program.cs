@@ -2,12 +2,15 @@ using BenchmarkDotNet.Running;
 
 using DeepSourceCheck.Benchmarks;
 
-// kernels: a table of the kernels in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
+// kernels: a table of the kernels at every width of registers, in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
 // anything else goes to BenchmarkDotNet, for instance --filter '*'.
 switch (args.FirstOrDefault())
 {
     case "kernels":
         KernelTable.Print(Console.Out);
+        return 0;
+    case KernelTable.LinesArgument:
+        KernelTable.PrintLines(Console.Out);
         return 0;
     case "whole":
         return WholeProcess.Run(args[1..], Console.Out);
