@@ -1,3 +1,4 @@
+using BenchmarkDotNet.Configs;
 using BenchmarkDotNet.Running;
 
 using DeepSourceCheck.Benchmarks;
@@ -17,6 +18,8 @@ switch (args.FirstOrDefault())
     case "yardstick":
         return Yardstick.Run(Console.Out);
     default:
-        BenchmarkSwitcher.FromAssembly(typeof(KernelBenchmarks).Assembly).Run(args);
+        // Its logs and tables go beside the program: the folder of the repository stays clean.
+        BenchmarkSwitcher.FromAssembly(typeof(KernelBenchmarks).Assembly)
+            .Run(args, DefaultConfig.Instance.WithArtifactsPath(Path.Combine(AppContext.BaseDirectory, "BenchmarkDotNet.Artifacts")));
         return 0;
 }
