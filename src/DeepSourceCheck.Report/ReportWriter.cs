@@ -25,28 +25,29 @@ public static class ReportWriter
     /// <returns>The number of files written.</returns>
     public static int Write(Assessment assessment, string folder, IReadOnlySet<string> without, CancellationToken cancel = default)
     {
+        bool figures = !without.Contains(Figures), report = !without.Contains(Report);
+        FigureDrawings? drawings = figures || report ? FigureDrawings.Begin(assessment, figures, report, cancel) : null;
         int files = 2;
         File.WriteAllBytes(Path.Combine(folder, "assessment.json"), AssessmentJson.Bytes(assessment));
         File.WriteAllText(Path.Combine(folder, "regions.csv"), RegionsCsv.Text(assessment));
-        bool figures = !without.Contains(Figures);
+        if (report)
+        {
+            // First: the page's own text is written while others draw.
+            File.WriteAllText(Path.Combine(folder, "report.html"), HtmlReport.Text(assessment, figures, drawings!));
+            files++;
+        }
+
         if (figures)
         {
             string place = Directory.CreateDirectory(Path.Combine(folder, "figures")).FullName;
-            foreach (Figure figure in FigureSet.All(assessment))
+            for (int k = 0; k < drawings!.Figures.Count; k++)
             {
                 cancel.ThrowIfCancellationRequested();
-                using FigureSheet sheet = figure.Draw(figure.FileWidth);
-                File.WriteAllText(Path.Combine(place, figure.Name + ".svg"), FigureFile.Svg(figure, sheet));
-                File.WriteAllBytes(Path.Combine(place, figure.Name + ".png"), sheet.Png());
+                string name = Path.Combine(place, drawings.Figures[k].Name);
+                File.WriteAllText(name + ".svg", drawings.Svg(k));
+                File.WriteAllBytes(name + ".png", drawings.Png(k));
                 files += 2;
             }
-        }
-
-        cancel.ThrowIfCancellationRequested();
-        if (!without.Contains(Report))
-        {
-            File.WriteAllText(Path.Combine(folder, "report.html"), HtmlReport.Text(assessment, figures));
-            files++;
         }
 
         return files;
