@@ -37,6 +37,28 @@ internal sealed class InputDigests
         return (path, name);
     }
 
+    /// <summary>Reads a file that is digested beside being parsed, without being read twice.</summary>
+    /// <param name="name">As the study names it.</param>
+    /// <param name="read">Reads the file at a path, with its name for messages, and hands out its bytes before it parses them.</param>
+    /// <exception cref="Core.Studies.InputException">As the reader says; the file is not noted then.</exception>
+    public T UseOnce<T>(string name, Func<string, string, Action<byte[]>?, T> read)
+    {
+        string path = Locate(name);
+        if (!_files.TrueForAll(f => f.Path != name))
+        {
+            return read(path, name, null);
+        }
+
+        Task<string>? digest = null;
+        T result = read(path, name, bytes => digest = Task.Run(() => Hex(SHA256.HashData(bytes))));
+        if (digest is not null)
+        {
+            _files.Add(new InputFile(name, digest.GetAwaiter().GetResult()));
+        }
+
+        return result;
+    }
+
     /// <summary>Likewise for a file that may not be named.</summary>
     public (string Path, string Display)? UseIfNamed(string? name) => name is null ? null : Use(name);
 
