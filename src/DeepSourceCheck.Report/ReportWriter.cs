@@ -17,6 +17,17 @@ public static class ReportWriter
     /// <summary>Leaves out report.html.</summary>
     public const string Report = "report";
 
+    /// <summary>Loads and runs what drawing needs whatever is drawn: font, plotting library, its native code. Only saves time; may run beside anything.</summary>
+    public static void Warm()
+    {
+        using FigureSheet sheet = new(64, 64, 8, 8, 8, 8);
+        sheet.Limits(0, 1, 0, 1);
+        sheet.BottomAxis([(0, "0"), (1, "1")]);
+        sheet.Over(pen => pen.Text("a", pen.Left, pen.Bottom));
+        InlineFigure.Svg(sheet, "w", "", "");
+        sheet.Png();
+    }
+
     /// <summary>Writes assessment.json, regions.csv, figures/*.svg and .png, report.html.</summary>
     /// <param name="assessment">What to write.</param>
     /// <param name="folder">An existing folder, usually <see cref="ResultFolder.Folder"/>.</param>
