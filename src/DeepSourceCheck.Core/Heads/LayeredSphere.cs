@@ -14,6 +14,9 @@ public sealed class LayeredSphere : IHead
     /// <summary>Distance from the centre [m] within which the split of directions is undefined.</summary>
     public const double CentreTolerance = 1e-6;
 
+    /// <summary>Depth of the cortex below the inner skull [m].</summary>
+    public const double CortexDepth = 0.006;
+
     public LayeredSphere(string name, Vec3 centre, IReadOnlyList<SphereLayer> layers)
     {
         if (layers.Count == 0)
@@ -74,6 +77,16 @@ public sealed class LayeredSphere : IHead
                 $"{Si.ToMm(r):0.0} mm from the sphere's centre, {Si.ToMm(r - limit):0.0} mm beyond the {Si.ToMm(limit):0.0} mm that the innermost layer admits");
     }
 
+    /// <summary>Radius of the shell that stands for the cortex [m].</summary>
+    public double CortexRadius => InnerSkullRadius - CortexDepth;
+
+    /// <inheritdoc/>
+    public string? TissueAt(Vec3 point)
+    {
+        double r = (point - Centre).Norm;
+        return Layers.FirstOrDefault(layer => r <= layer.OuterRadius)?.Tissue ?? "outside";
+    }
+
     /// <inheritdoc/>
     public Vec3? Outward(Vec3 point) => IsSymmetryCentre(point) ? null : (point - Centre).Unit();
 
@@ -82,4 +95,11 @@ public sealed class LayeredSphere : IHead
 
     /// <inheritdoc/>
     public double? Depth(Vec3 point) => OuterRadius - (point - Centre).Norm;
+
+    /// <inheritdoc/>
+    public double? DepthBelowInnerSkull(Vec3 point) => InnerSkullRadius - (point - Centre).Norm is >= 0 and double depth ? depth : null;
+
+    /// <inheritdoc/>
+    public IReadOnlyList<Vec3> BackgroundPlaces(int count) =>
+        [.. Enumerable.Range(0, count).Select(k => Centre + CortexRadius * GoldenSpiral.Point(k, count))];
 }
