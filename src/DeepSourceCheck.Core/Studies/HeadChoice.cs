@@ -34,8 +34,8 @@ public sealed record VoxelHeadChoice : HeadChoice
     /// <summary>Conductivity tensors, or null.</summary>
     public TensorChoice? Tensors { get; init; }
 
-    /// <summary>Landmarks that the study gives; the others are found.</summary>
-    public LandmarkChoice Landmarks { get; init; } = new(null, null, null, null);
+    /// <summary>Landmarks that the study gives [m], by name: Nz, Iz, LPA, RPA; the others are found.</summary>
+    public IReadOnlyDictionary<string, Vec3> Landmarks { get; init; } = new Dictionary<string, Vec3>();
 
     /// <summary>Masks that replace the tissue, in order.</summary>
     public IReadOnlyList<OverlayChoice> Overlays { get; init; } = [];
@@ -61,10 +61,3 @@ public sealed record TensorChoice(string File, IReadOnlyList<string> Tissues);
 /// <param name="Tissue">The tissue inside.</param>
 /// <param name="Key">Key of the overlay in the study, for messages: `head.voxels.overlays[0]`.</param>
 public sealed record OverlayChoice(string Mask, Tissue Tissue, string Key);
-
-/// <summary>Landmarks of a head; null where the study gives none.</summary>
-/// <param name="Nasion">Nz [m].</param>
-/// <param name="Inion">Iz [m].</param>
-/// <param name="LeftPreauricular">LPA [m].</param>
-/// <param name="RightPreauricular">RPA [m].</param>
-public sealed record LandmarkChoice(Vec3? Nasion, Vec3? Inion, Vec3? LeftPreauricular, Vec3? RightPreauricular);

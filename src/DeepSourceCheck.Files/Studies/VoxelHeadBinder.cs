@@ -10,6 +10,8 @@ internal static class VoxelHeadBinder
     private const double LeastConductivity = 1e-6;
     private const string ConductivityKey = "conductivity_S_per_m";
 
+    private static readonly string[] LandmarkNames = ["Nz", "Iz", "LPA", "RPA"];
+
     // Usual conductivities at body temperature [S/m] (common six-compartment set and its published spread, from memory): a value far off is mostly a wrong unit.
     private static readonly Dictionary<TissueKind, TypicalRange> Usual = new()
     {
@@ -36,7 +38,7 @@ internal static class VoxelHeadBinder
 
         List<OverlayChoice> overlays = Overlays(section, tissues, reading);
         TensorChoice? tensors = Tensors(section, tissues, reading);
-        LandmarkChoice landmarks = Landmarks(section);
+        Dictionary<string, Vec3> landmarks = Landmarks(section);
         return labels is null ? null : new()
         {
             Labels = labels,
@@ -215,25 +217,33 @@ internal static class VoxelHeadBinder
         return sound && file is not null && names.Count > 0 ? new(file, [.. names.Select(n => n.Text).Distinct()]) : null;
     }
 
-    private static LandmarkChoice Landmarks(Section section)
+    private static Dictionary<string, Vec3> Landmarks(Section section)
     {
+        var places = new Dictionary<string, Vec3>();
         if (section.Map("landmarks_mm") is not { } landmarks)
         {
-            return new(null, null, null, null);
+            return places;
         }
 
-        Vec3? nasion = landmarks.Millimetres("Nz"), inion = landmarks.Millimetres("Iz"), left = landmarks.Millimetres("LPA"), right = landmarks.Millimetres("RPA");
-        if (left is { } l && right is { } r && l.X >= r.X)
+        foreach (string name in LandmarkNames)
+        {
+            if (landmarks.Millimetres(name) is { } place)
+            {
+                places[name] = place;
+            }
+        }
+
+        if (places.TryGetValue("LPA", out Vec3 left) && places.TryGetValue("RPA", out Vec3 right) && left.X >= right.X)
         {
             landmarks.Problem("LPA", "lies to the right of RPA: x grows to the right; exchange them");
         }
 
-        if (nasion is { } front && inion is { } back && front.Y <= back.Y)
+        if (places.TryGetValue("Nz", out Vec3 nasion) && places.TryGetValue("Iz", out Vec3 inion) && nasion.Y <= inion.Y)
         {
             landmarks.Problem("Nz", "lies behind Iz: y grows to the front; exchange them");
         }
 
-        return new(nasion, inion, left, right);
+        return places;
     }
 
     private static string Nearest(string name, List<Tissue> tissues, Reading reading) =>

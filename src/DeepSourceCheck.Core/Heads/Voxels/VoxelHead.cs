@@ -24,6 +24,7 @@ public sealed class VoxelHead : IHead
 
     private readonly string?[] _refusals;
     private readonly double _halfVoxel;
+    private readonly Lazy<bool[]> _outside;
     private readonly Lazy<ScalarField> _toAir, _toBone, _smoothed, _toHead;
 
     /// <param name="name">How the head is named in results.</param>
@@ -40,9 +41,10 @@ public sealed class VoxelHead : IHead
         VoxelGrid grid = volume.Grid;
         _halfVoxel = Math.Cbrt(grid.VoxelVolume) / 2;
         _refusals = [.. volume.Tissues.Select(t => IsSource(t.Kind) ? null : $"in {t.Name}, where no source stands")];
+        _outside = new(() => OutsideAir(volume));
         _toAir = new(() =>
         {
-            bool[] outside = OutsideAir(volume);
+            bool[] outside = _outside.Value;
             return new(grid, DistanceTransform.ToSet(grid, at => outside[at]));
         });
         _toBone = new(() =>
@@ -93,6 +95,10 @@ public sealed class VoxelHead : IHead
 
     /// <inheritdoc/>
     public string? TissueAt(Vec3 point) => Volume.At(point).Name;
+
+    /// <summary>True in the air around the head: beyond its volume, or in air that is open to the outside.</summary>
+    /// <param name="point">Place [m].</param>
+    public bool IsOutside(Vec3 point) => Volume.Grid.IndexAt(point) is var at && (at < 0 || _outside.Value[at]);
 
     /// <inheritdoc/>
     public Vec3? Outward(Vec3 point)
