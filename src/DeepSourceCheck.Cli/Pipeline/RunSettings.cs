@@ -9,4 +9,7 @@ internal sealed record RunSettings(long? MemoryBudget, IReadOnlySet<string> With
 {
     /// <summary>True: nothing costly is computed; the study is read, checked and its cost predicted.</summary>
     public bool CheckOnly { get; init; }
+
+    /// <summary>What heads of voxels are computed with; null: they are refused.</summary>
+    public VoxelParts? VoxelParts { get; init; } = VoxelParts.Present;
 }

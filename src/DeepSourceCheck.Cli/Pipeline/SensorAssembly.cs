@@ -102,7 +102,7 @@ internal abstract class SensorAssembly
             return reading.Study.Head switch
             {
                 SphereHeadChoice choice => new OnSphere(reading.Study, choice, inputs, warnings),
-                VoxelHeadChoice choice => new OnVoxels(reading, choice, VoxelHeadAssembly.Build(reading, choice, inputs, settings, warnings), VoxelParts.Present, inputs, warnings),
+                VoxelHeadChoice choice => new OnVoxels(reading, choice, VoxelHeadAssembly.Build(reading, choice, inputs, settings, warnings), settings.VoxelParts, inputs, warnings),
                 ImportedHeadChoice choice => new FromImport(reading.Study, choice, inputs, warnings),
                 _ => throw new InvalidOperationException($"no sensors for {reading.Study.Head.GetType().Name}"),
             };
