@@ -100,6 +100,10 @@ public sealed class LayeredSphere : IHead
     public double? DepthBelowInnerSkull(Vec3 point) => InnerSkullRadius - (point - Centre).Norm is >= 0 and double depth ? depth : null;
 
     /// <inheritdoc/>
-    public IReadOnlyList<Vec3> BackgroundPlaces(int count) =>
-        [.. Enumerable.Range(0, count).Select(k => Centre + CortexRadius * GoldenSpiral.Point(k, count))];
+    /// <remarks>On the shell of the cortex; where the fluid is thicker than that, on the outermost sphere that admits sources.</remarks>
+    public IReadOnlyList<Vec3> BackgroundPlaces(int count)
+    {
+        double radius = Math.Min(CortexRadius, LargestEccentricity * InnerRadius);
+        return [.. Enumerable.Range(0, count).Select(k => Centre + radius * GoldenSpiral.Point(k, count))];
+    }
 }

@@ -58,11 +58,14 @@ public class HeadChecksTests
     [Fact]
     public void ThinSkull_IsMeasuredAgainstTwoVoxels()
     {
-        double[] thin = [0.092, 0.083, 0.0785, 0.070], two = [0.092, 0.083, 0.075, 0.068];
-        SkullThickness one = Thickness(SphereVolumes.Of(Edge, thin)), both = Thickness(SphereVolumes.Of(Edge, two)), three = Thickness(Good);
+        double[] thin = [0.092, 0.083, 0.0785, 0.070], two = [0.092, 0.083, 0.075, 0.068], more = [0.092, 0.083, 0.073, 0.066];
+        SkullThickness one = Thickness(SphereVolumes.Of(Edge, thin)), both = Thickness(SphereVolumes.Of(Edge, two));
         Assert.True(one.Share > 0.9, $"one voxel: {one.Share}");
-        Assert.InRange(both.Share, 0, 0.35);
-        Assert.Equal(0, three.Thin);
+
+        // Exactly two voxels stand at the limit: as voxels fall, some of it is thinner and some thicker. A wall as thick as the reach is never thin.
+        Assert.InRange(both.Share, 0.1, 0.9);
+        Assert.Equal(0, Thickness(SphereVolumes.Of(Edge, more)).Thin);
+        Assert.Equal(0, Thickness(Good).Thin);
         Assert.Contains(SphereVolumes.Findings(SphereVolumes.Of(Edge, thin)).Warnings, w => w.Contains("thinner than two voxels behind", StringComparison.Ordinal));
     }
 
@@ -82,8 +85,8 @@ public class HeadChecksTests
 
     [Fact]
     public void Holes_AreCounted() =>
-        Assert.Contains("1 hole of at most 8 voxels of air (1 voxel together; the largest, 1 voxel, at (2, 2, 88) mm)",
-            Assert.Single(SphereVolumes.Findings(SphereVolumes.Of(Edge, [0.1, 0.083, 0.071, 0.064]).With((new(0.002, 0.002, 0.088), 0))).Warnings), StringComparison.Ordinal);
+        Assert.Contains("1 hole of at most 8 voxels of air (1 voxel together; the largest, 1 voxel, at (2, 2, 90) mm)",
+            Assert.Single(SphereVolumes.Findings(SphereVolumes.Of(Edge, [0.1, 0.083, 0.071, 0.064]).With((new(0.002, 0.002, 0.090), 0))).Warnings), StringComparison.Ordinal);
 
     [Fact]
     public void BrainIslands_AreCounted() =>
