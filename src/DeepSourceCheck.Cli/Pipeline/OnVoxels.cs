@@ -36,7 +36,7 @@ internal sealed class OnVoxels : SensorAssembly
         (_reading, _choice, _built) = (reading, choice, built);
         _parts = parts ?? throw new InputException(null, "head.voxels", "not supported yet: heads from a label volume are read and checked, but not computed with; use head.spheres or head.leadfields");
         Study study = reading.Study;
-        _sensors = _parts.Sensors(built.Head, choice.Landmarks);
+        _sensors = _parts.Sensors(built, choice.Landmarks);
         Electrodes = study.Eeg is null ? [] : Place(study, inputs, warnings);
         Channels = study.Meg is null ? _sensors.Array(SplitArray) : MegChannels(study.Meg, inputs, warnings);
         if (study.Meg is null)
@@ -143,7 +143,7 @@ internal sealed class OnVoxels : SensorAssembly
         (string path, string display) = inputs.Use(choice.CoilsFile!);
         CoilsTable table = CoilsTable.Read(path, display);
         warnings.AddRange(table.Warnings);
-        CoilsOutside.Check(_built.Head, table.Channels, display);
+        _sensors.CheckCoils(table.Channels, display);
         return table.Channels;
     }
 

@@ -10,8 +10,9 @@ namespace DeepSourceCheck.Cli.Pipeline;
 
 /// <summary>A head of voxels as its files give it.</summary>
 /// <param name="Head">The head.</param>
+/// <param name="AsInFile">Its volume without the margin that was made up where the file cuts the head.</param>
 /// <param name="Tensors">Conductivity tensors, or null.</param>
-internal sealed record BuiltVoxelHead(VoxelHead Head, ConductivityTensors? Tensors);
+internal sealed record BuiltVoxelHead(VoxelHead Head, TissueVolume AsInFile, ConductivityTensors? Tensors);
 
 /// <summary>Reads and checks a head of voxels: labels, overlays in order, cut, pieces, checks, tensors.</summary>
 internal static class VoxelHeadAssembly
@@ -55,7 +56,10 @@ internal static class VoxelHeadAssembly
         warnings.AddRange(findings.Warnings.Select(w => $"{display}: {w}"));
         JudgeSize(reading, pieces.Volume, warnings);
         settings.Cancellation.ThrowIfCancellationRequested();
-        return new(new($"voxels: {display}", pieces.Volume), choice.Tensors is null ? null : Tensors(reading, choice, grid, pieces.Volume, inputs, warnings));
+        return new(
+            new($"voxels: {display}", pieces.Volume, cropped.Touched),
+            HeadCrop.AsInFile(pieces.Volume, cropped.Touched),
+            choice.Tensors is null ? null : Tensors(reading, choice, grid, pieces.Volume, inputs, warnings));
     }
 
     private static void RefuseOverBudget(NiftiHeader header, string display, long? budget)

@@ -24,6 +24,12 @@ internal interface IVoxelSensors
     /// <summary>A generated array about the head, at the stated gap from the scalp.</summary>
     IReadOnlyList<MegChannel> Array(CoilArrayChoice choice);
 
+    /// <summary>Refuses coils that do not lie in the air around the head.</summary>
+    /// <param name="channels">Channels of a table.</param>
+    /// <param name="file">The table, for messages.</param>
+    /// <exception cref="InputException">Names every such channel, with the depth.</exception>
+    void CheckCoils(IReadOnlyList<MegChannel> channels, string file);
+
     /// <summary>What the user must know: which landmarks were found rather than given, with their uncertainty; how far electrodes were moved. Asked for last.</summary>
     IReadOnlyList<string> Warnings { get; }
 }
@@ -48,7 +54,7 @@ internal interface IVoxelSolver
 /// <summary>What a head of voxels needs beside its volume.</summary>
 /// <param name="Sensors">Makes the sensors' placement for a head and the landmarks that the study gives [m].</param>
 /// <param name="Solver">Solver.</param>
-internal sealed record VoxelParts(Func<VoxelHead, IReadOnlyDictionary<string, Vec3>, IVoxelSensors> Sensors, IVoxelSolver Solver)
+internal sealed record VoxelParts(Func<BuiltVoxelHead, IReadOnlyDictionary<string, Vec3>, IVoxelSensors> Sensors, IVoxelSolver Solver)
 {
     /// <summary>The program's own; null while they are not part of it.</summary>
     public static VoxelParts? Present => null;

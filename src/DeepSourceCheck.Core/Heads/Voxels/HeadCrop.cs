@@ -46,6 +46,35 @@ public static class HeadCrop
         return new(new(cropped, cells, volume.Tissues), Touched(volume, low, high));
     }
 
+    /// <summary>A cut head without the margin that was made up: where the file's volume cuts it, the volume ends with it, as in the file.</summary>
+    /// <param name="volume">The head with its margin.</param>
+    /// <param name="touched">Faces of the file's volume that the head touches.</param>
+    public static TissueVolume AsInFile(TissueVolume volume, IReadOnlyList<TouchedFace> touched)
+    {
+        if (touched.Count == 0)
+        {
+            return volume;
+        }
+
+        VoxelGrid grid = volume.Grid;
+        int[] low = new int[3], size = [grid.Nx, grid.Ny, grid.Nz];
+        foreach (TouchedFace face in touched)
+        {
+            low[face.Axis] += face.AtEnd ? 0 : Margin;
+            size[face.Axis] -= Margin;
+        }
+
+        var cut = new VoxelGrid(size[0], size[1], size[2], grid.ToWorld with { Offset = grid.Centre(low[0], low[1], low[2]) });
+        var cells = new byte[cut.Count];
+        for (int row = 0; row < size[1] * size[2]; row++)
+        {
+            int from = grid.Index(low[0], low[1] + row % size[1], low[2] + row / size[1]);
+            volume.Cells.Slice(from, size[0]).CopyTo(cells.AsSpan(row * size[0]));
+        }
+
+        return new(cut, cells, volume.Tissues);
+    }
+
     /// <summary>True when the outermost layer of voxels is air.</summary>
     public static bool HasMargin(TissueVolume volume)
     {

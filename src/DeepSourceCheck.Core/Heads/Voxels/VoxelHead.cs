@@ -7,7 +7,7 @@ namespace DeepSourceCheck.Core.Heads.Voxels;
 
 // VoxelHead.cs - what a labelled head knows about places.
 //   Depth below the scalp: D(p) - h/2, D the exact Euclidean distance to the nearest voxel of the outside air, h the cube root of a voxel's volume: the surface lies half a
-//   voxel before the first air centre. Depth below the inner skull: likewise from the nearest voxel of bone. Both are trilinear between voxel centres and right to about half
+//   voxel before the first air centre; where the file cuts the neck there is none. Depth below the inner skull: likewise from the nearest voxel of bone. Both are trilinear between voxel centres and right to about half
 //   a voxel.
 //   Outward: minus the gradient of the distance to bone, smoothed to a standard deviation of 4 mm, so that it does not show the steps of the voxels: the normal of the inner
 //   skull as the point sees it. Deep sources take that of the bone nearest to them, the base of the skull included.
@@ -24,27 +24,26 @@ public sealed class VoxelHead : IHead
 
     private readonly string?[] _refusals;
     private readonly double _halfVoxel;
-    private readonly Lazy<bool[]> _outside;
     private readonly Lazy<ScalarField> _toAir, _toBone, _smoothed, _toHead;
 
     /// <param name="name">How the head is named in results.</param>
     /// <param name="volume">Its tissues; the outermost layer of voxels must be air.</param>
+    /// <param name="touched">Faces of the file's volume that cut the head: no scalp lies there. Null: none.</param>
     /// <exception cref="ArgumentException">A voxel at a face of the volume is not air.</exception>
-    public VoxelHead(string name, TissueVolume volume)
+    public VoxelHead(string name, TissueVolume volume, IReadOnlyList<TouchedFace>? touched = null)
     {
         if (!HeadCrop.HasMargin(volume))
         {
             throw new ArgumentException("The head reaches the face of its volume; a margin of air is needed.", nameof(volume));
         }
 
-        (Name, Volume) = (name, volume);
+        (Name, Volume, Touched) = (name, volume, touched ?? []);
         VoxelGrid grid = volume.Grid;
         _halfVoxel = Math.Cbrt(grid.VoxelVolume) / 2;
         _refusals = [.. volume.Tissues.Select(t => IsSource(t.Kind) ? null : $"in {t.Name}, where no source stands")];
-        _outside = new(() => OutsideAir(volume));
         _toAir = new(() =>
         {
-            bool[] outside = _outside.Value;
+            bool[] outside = OutsideAir(volume, Touched);
             return new(grid, DistanceTransform.ToSet(grid, at => outside[at]));
         });
         _toBone = new(() =>
@@ -68,6 +67,9 @@ public sealed class VoxelHead : IHead
 
     /// <summary>Its tissues.</summary>
     public TissueVolume Volume { get; }
+
+    /// <summary>Faces of the file's volume that cut the head.</summary>
+    public IReadOnlyList<TouchedFace> Touched { get; }
 
     /// <summary>True where a voxel is bone: without bone there is no depth below the skull and no direction.</summary>
     public bool HasSkull { get; }
@@ -95,10 +97,6 @@ public sealed class VoxelHead : IHead
 
     /// <inheritdoc/>
     public string? TissueAt(Vec3 point) => Volume.At(point).Name;
-
-    /// <summary>True in the air around the head: beyond its volume, or in air that is open to the outside.</summary>
-    /// <param name="point">Place [m].</param>
-    public bool IsOutside(Vec3 point) => Volume.Grid.IndexAt(point) is var at && (at < 0 || _outside.Value[at]);
 
     /// <inheritdoc/>
     public Vec3? Outward(Vec3 point)
@@ -190,16 +188,21 @@ public sealed class VoxelHead : IHead
         return Math.Max(0, (point - inside).Norm + _toHead.Value.At(inside) - _halfVoxel);
     }
 
-    private static bool[] OutsideAir(TissueVolume volume)
+    private static bool[] OutsideAir(TissueVolume volume, IReadOnlyList<TouchedFace> touched)
     {
+        VoxelGrid grid = volume.Grid;
         bool[] air = [.. volume.Tissues.Select(t => t.Kind == TissueKind.Air)];
-        var outside = new bool[volume.Grid.Count];
+        var outside = new bool[grid.Count];
+        var known = new KnownBox(grid, touched);
 
-        // The margin makes one piece of all air that is open to the outside, and it holds the first voxel.
-        VoxelPiece piece = ConnectedVoxels.Find(volume.Grid, at => air[volume.Cells[at]], corners: false).First(p => p.Runs[0].Start == 0);
+        // The margin makes one piece of all air that is open to the outside, and it holds the first voxel. Where the file cuts the head, the margin is made up.
+        VoxelPiece piece = ConnectedVoxels.Find(grid, at => air[volume.Cells[at]], corners: false).First(p => p.Runs[0].Start == 0);
         foreach ((int start, int length) in piece.Runs)
         {
-            outside.AsSpan(start, length).Fill(true);
+            for (int at = start; at < start + length; at++)
+            {
+                outside[at] = known.Holds(grid.Voxel(at));
+            }
         }
 
         return outside;

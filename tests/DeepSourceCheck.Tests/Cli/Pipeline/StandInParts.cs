@@ -27,6 +27,8 @@ internal sealed class StandInParts(LayeredSphere sphere) : IVoxelSensors, IVoxel
 
     public IReadOnlyList<MegChannel> Array(CoilArrayChoice choice) => CoilArray.Generate(choice, sphere.Centre, sphere.OuterRadius);
 
+    public void CheckCoils(IReadOnlyList<MegChannel> channels, string file) => SphereLeadfield.CheckCoils(sphere, channels, file);
+
     public ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings)
     {
         Solved.Add(problem);

@@ -188,7 +188,7 @@ public sealed class VoxelPipelineTests : IDisposable
             .Replace("derivation: Cz-mastoids", "derivation: E001-E003", StringComparison.Ordinal)), StringComparison.Ordinal);
         _folder.Write("coils.tsv", "channel\tkind\tx_mm\ty_mm\tz_mm\taxis_x\taxis_y\taxis_z\tshare\nS001\tmagnetometer\t0\t0\t120\t0\t0\t1\t1\nS007\tmagnetometer\t0\t60\t0\t0\t1\t0\t1\n");
         string coils = Refusal(Voxels().Replace("{coil: magnetometer, sites: 40, gap_mm: 20}", "{coils: coils.tsv}", StringComparison.Ordinal));
-        Assert.Matches("coils.tsv.*S007 has a coil point inside the head", coils);
+        Assert.Matches("coils.tsv.*S007 has a coil point 60 mm from the sphere's centre", coils);
         Assert.DoesNotContain("S001", coils, StringComparison.Ordinal);
     }
 

@@ -56,6 +56,29 @@ public class HeadChecksTests
     }
 
     [Fact]
+    public void CutHead_EndsAsInItsFile_AndHasNoScalpThere()
+    {
+        TissueVolume cut = Cut(Good, 14);
+        CroppedHead cropped = HeadCrop.Of(cut)!;
+        TouchedFace below = Assert.Single(cropped.Touched);
+        Assert.Equal((2, false, "below"), (below.Axis, below.AtEnd, below.Side));
+        Assert.Equal(Enumerable.Range(0, cut.Grid.Nx * cut.Grid.Ny).Count(at => cut.Cells[at] != 0), below.Voxels);
+        TissueVolume flush = HeadCrop.AsInFile(cropped.Volume, cropped.Touched);
+        Assert.Equal(cropped.Volume.Grid.Nz - 1, flush.Grid.Nz);
+        RelativeAssert.Equal(cut.Grid.Centre(0, 0, 0).Z, flush.Grid.Centre(0, 0, 0).Z, 1e-12);
+        Assert.All(Enumerable.Range(0, 200), k =>
+        {
+            Vec3 p = 0.1 * Math.Cbrt((k + 0.5) / 200) * GoldenSpiral.Point(k, 200);
+            Assert.Equal(cut.At(p), flush.At(p));
+        });
+
+        // Just above the cut, on the axis: as far from the scalp as the sphere's side, not as the cut.
+        Vec3 above = new(0.002, 0.002, cut.Grid.Centre(0, 0, 1).Z);
+        Assert.True(new VoxelHead("cut", cropped.Volume, cropped.Touched).Depth(above) > 0.06);
+        Assert.True(new VoxelHead("cut", cropped.Volume).Depth(above) < 0.01);
+    }
+
+    [Fact]
     public void ThinSkull_IsMeasuredAgainstTwoVoxels()
     {
         double[] thin = [0.092, 0.083, 0.0785, 0.070], two = [0.092, 0.083, 0.075, 0.068], more = [0.092, 0.083, 0.073, 0.066];
