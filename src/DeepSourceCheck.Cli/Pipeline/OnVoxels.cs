@@ -3,7 +3,6 @@ using System.Globalization;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
-using DeepSourceCheck.Core.Noise;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Sensors;

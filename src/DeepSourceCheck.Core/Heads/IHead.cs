@@ -14,7 +14,7 @@ public interface IHead
     /// <summary>Name of the tissue at <paramref name="point"/> [m]; `outside` beyond the head, null where the head knows no tissues.</summary>
     string? TissueAt(Vec3 point);
 
-    /// <summary>Outward unit vector at <paramref name="point"/> [m]; null where the head does not define one.</summary>
+    /// <summary>Outward unit vector at <paramref name="point"/> [m]; null where the head does not define one, as at its symmetry centre.</summary>
     Vec3? Outward(Vec3 point);
 
     /// <summary>True where the directions of the split vanish by symmetry: within 1e-6 m of a sphere's centre.</summary>

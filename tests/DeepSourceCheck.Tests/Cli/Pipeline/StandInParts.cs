@@ -1,7 +1,6 @@
 using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
-using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Leadfields.Spheres;
 using DeepSourceCheck.Core.Sensors;
