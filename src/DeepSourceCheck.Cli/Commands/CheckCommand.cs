@@ -3,7 +3,9 @@ using System.Globalization;
 
 using DeepSourceCheck.Cli.Output;
 using DeepSourceCheck.Cli.Pipeline;
+using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Report.Console;
@@ -41,7 +43,7 @@ internal static class CheckCommand
 
     private static int Run(string? study, bool json, long? memory, Surroundings surroundings)
     {
-        var settings = new RunSettings(memory, new HashSet<string>(), null, surroundings.Interruption.Token);
+        var settings = new RunSettings(memory, new HashSet<string>(), null, surroundings.Interruption.Token) { CheckOnly = true };
         string? path = SharedOptions.Checked(study);
         PreparedStudy prepared = Prepare(path, settings, surroundings);
         SharedOptions.RefuseOverBudget(prepared, memory);
@@ -83,7 +85,7 @@ internal static class CheckCommand
         void Row(string name, string value) => to.WriteLine($"{name,-12}{value}");
         to.WriteLine(Failure.OneLine(study.Title));
         Row("study", study.File);
-        Row("head", HeadName(study));
+        Row("head", HeadName(prepared));
         Row("channels", string.Create(CultureInfo.InvariantCulture, $"{prepared.Electrodes:#,0} electrodes, {prepared.MegChannels:#,0} MEG channels"));
         Row("dipoles", string.Create(CultureInfo.InvariantCulture, $"{prepared.Dipoles:#,0} in {prepared.Regions.Count} region{(prepared.Regions.Count == 1 ? "" : "s")}"));
         int width = prepared.Regions.Select(r => r.Region.Length).DefaultIfEmpty().Max();
@@ -119,7 +121,7 @@ internal static class CheckCommand
     {
         json.WriteString("study", prepared.Study.File);
         json.WriteString("title", prepared.Study.Title);
-        json.WriteString("head", HeadName(prepared.Study));
+        json.WriteString("head", HeadName(prepared));
         json.WriteNumber("electrodes", prepared.Electrodes);
         json.WriteNumber("meg_channels", prepared.MegChannels);
         json.WriteNumber("dipoles", prepared.Dipoles);
@@ -142,12 +144,29 @@ internal static class CheckCommand
         json.WriteStrings("warnings", prepared.Warnings);
     });
 
-    private static string HeadName(Study study) => study.Head switch
+    private static string HeadName(PreparedStudy prepared) => prepared.Study.Head switch
     {
         SphereHeadChoice { Preset: { } preset, Sphere: var sphere } => $"spheres: {preset}, {Layers(sphere)}",
         SphereHeadChoice { Sphere: var sphere } => $"spheres: {Layers(sphere)}",
+        VoxelHeadChoice voxels => Voxels(voxels, prepared.Setup.Head as VoxelHead),
         _ => new ImportedHead().Name,
     };
+
+    /// <summary>File, elements, voxel size and tissues.</summary>
+    private static string Voxels(VoxelHeadChoice choice, VoxelHead? head)
+    {
+        string tissues = string.Join(", ", choice.Tissues.Where(t => t.Kind != TissueKind.Air).Select(t => t.Name).Distinct());
+        if (head is null)
+        {
+            return $"voxels: {choice.Labels}, {tissues}";
+        }
+
+        VoxelGrid grid = head.Volume.Grid;
+        int elements = grid.Count - head.Volume.Cells.Count((byte)0);
+        string[] edges = [.. Enumerable.Range(0, 3).Select(axis => string.Create(CultureInfo.InvariantCulture, $"{Core.Units.Si.ToMm(grid.ToWorld.Column(axis).Norm):0.##}"))];
+        string size = edges.Distinct().Count() == 1 ? edges[0] : string.Join(" x ", edges);
+        return string.Create(CultureInfo.InvariantCulture, $"voxels: {choice.Labels}, {elements:#,0} elements of {size} mm, {tissues}");
+    }
 
     private static string Layers(LayeredSphere sphere) =>
         string.Join(", ", sphere.Layers.Select(l => string.Create(CultureInfo.InvariantCulture, $"{l.Tissue} {Core.Units.Si.ToMm(l.OuterRadius):0.##} mm")));

@@ -1,10 +1,6 @@
 using System.Globalization;
 
-using DeepSourceCheck.Core.Geometry;
-using DeepSourceCheck.Core.Heads;
-using DeepSourceCheck.Core.Leadfields.Spheres;
 using DeepSourceCheck.Core.Noise;
-using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -16,9 +12,8 @@ namespace DeepSourceCheck.Cli.Pipeline;
 /// <summary>The noise of a study at its sensors.</summary>
 internal static class NoiseAssembly
 {
-    // Places of the background sources on the cortical shell, and sites of the magnetometers to which the MEG table refers.
-    private const int BackgroundPlaces = 500;
-    private const int TableSites = 200;
+    /// <summary>Places of the background sources.</summary>
+    public const int BackgroundPlaces = 500;
 
     // Least density [V or T per sqrt(Hz)] of the usual instruments: a measured covariance cannot be far below it.
     private static readonly double QuietestAmplifier = Si.FromNanovolts(2), QuietestSensor = Si.FromFemtotesla(0.2), QuietestPlanar = Si.FromFemtoteslaPerCm(0.5);
@@ -33,8 +28,9 @@ internal static class NoiseAssembly
     /// <param name="sensors">Sensors and head.</param>
     /// <param name="inputs">Receives the files that are read.</param>
     /// <param name="warnings">Receives what the user must know.</param>
+    /// <returns>The model; null where it needs leadfields that a check does not compute.</returns>
     /// <exception cref="InputException">Noise that contradicts itself or cannot be meant.</exception>
-    public static NoiseModel Build(StudyReading reading, SensorAssembly sensors, InputDigests inputs, List<string> warnings)
+    public static NoiseModel? Build(StudyReading reading, SensorAssembly sensors, InputDigests inputs, List<string> warnings)
     {
         Study study = reading.Study;
         NoiseChoice choice = study.Noise ?? new NoiseChoice();
@@ -54,17 +50,21 @@ internal static class NoiseAssembly
         double[]? total = choice.EegTotal is { } stated && sensors.Electrodes.Count > 0
             ? Derivation.Parse(stated.Derivation, [.. sensors.Electrodes.Select(e => e.Name)], study.Eeg?.Layout is not null, "noise.eeg_total.derivation").Weights(sensors.Electrodes)
             : null;
-        bool spectral = (sensors.Electrodes.Count > 0 && eegCovariance is null && choice.EegRms is null)
-            || (sensors.MegReported && megCovariance is null && choice.MegRms is null);
-        BackgroundField? background = sensors.Sphere is { } sphere && spectral && NoiseBuilder.WantsBrain(choice) ? Background(sphere, sensors) : null;
-        if (sensors.Sphere is null && NoiseBuilder.WantsBrain(choice) && spectral)
+        bool background = WantsBackground(study, sensors);
+        if (background && !sensors.IsComputed)
+        {
+            return null;
+        }
+
+        BackgroundField? field = background && sensors.Tables() is { } tables ? Background(tables, sensors) : null;
+        if (background && field is null)
         {
             warnings.Add("with imported leadfields there is no brain noise: the head in which its sources lie is not known");
         }
 
         // The array that only splits directions carries equal noise in every channel: its level does not matter.
         NoiseChoice effective = sensors.MegReported ? choice : choice with { MegRms = 1e-15, MegDensity = null };
-        var builder = new NoiseBuilder(effective, sensors.Electrodes.Count, sensors.MegKinds, background, total);
+        var builder = new NoiseBuilder(effective, sensors.Electrodes.Count, sensors.MegKinds, field, total);
         try
         {
             NoiseModel model = builder.Build(eegCovariance, megCovariance, study.Responses);
@@ -78,17 +78,20 @@ internal static class NoiseAssembly
         }
     }
 
-    private static BackgroundField Background(LayeredSphere sphere, SensorAssembly sensors)
+    /// <summary>True where a study's noise holds the brain's own field: it is on, and a modality's noise comes from densities.</summary>
+    /// <param name="study">The study.</param>
+    /// <param name="sensors">Its sensors.</param>
+    public static bool WantsBackground(Study study, SensorAssembly sensors)
     {
-        double radius = CortexShell.Radius(sphere);
-        Vec3[] places = [.. Enumerable.Range(0, BackgroundPlaces).Select(k => sphere.Centre + radius * GoldenSpiral.Point(k, BackgroundPlaces))];
-        string[] names = ["Cz", "M1", "M2"];
-        Electrode[] electrodes = [.. names.Select(n => new Electrode(n, sphere.Centre + sphere.OuterRadius * ElectrodeLayout.Direction(n), true, 0))];
-        MegChannel[] magnetometers = CoilArray.Generate(
-            new CoilArrayChoice("magnetometer", TableSites, 0, DefaultNoiseTables.MagnetometerGap, CoilArray.DefaultEdgeFront, CoilArray.DefaultEdgeBack), sphere.Centre, sphere.OuterRadius);
-        var tables = new SphereLeadfield(sphere, electrodes, magnetometers);
-        return BackgroundField.Compute(places, sensors.Source, tables, Derivation.Parse(DefaultNoiseTables.Derivation, names).Weights(electrodes));
+        NoiseChoice choice = study.Noise ?? new NoiseChoice();
+        return NoiseBuilder.WantsBrain(choice)
+            && ((sensors.Electrodes.Count > 0 && choice.EegCovariance is null && choice.EegRms is null)
+                || (sensors.MegReported && choice.MegCovariance is null && choice.MegRms is null));
     }
+
+    private static BackgroundField Background(TableSensors tables, SensorAssembly sensors) => BackgroundField.Compute(
+        sensors.Head.BackgroundPlaces(BackgroundPlaces), sensors.Source, tables.Source,
+        Derivation.Parse(DefaultNoiseTables.Derivation, TableSensors.Names).Weights(tables.Electrodes));
 
     private static double[]? Covariance(CovarianceChoice? choice, string key, int rows, InputDigests inputs)
     {
@@ -148,7 +151,7 @@ internal static class NoiseAssembly
     // Signal and noise must have the same reference. Referencing again is harmless; a referenced covariance beside an unreferenced leadfield is not.
     private static void JudgeReference(StudyReading reading, SensorAssembly sensors, double[]? covariance, List<string> warnings)
     {
-        if (covariance is null || sensors.Sphere is null || reading.Study.Eeg?.Reference.Kind != ReferenceKind.None)
+        if (covariance is null || sensors.Imported is not null || reading.Study.Eeg?.Reference.Kind != ReferenceKind.None)
         {
             return;
         }

@@ -47,19 +47,18 @@ internal sealed class RegionAssembly
             Add(Own(choice));
         }
 
-        double scale = reading.Study.Head is SphereHeadChoice head ? head.LibraryScale : 1;
         HashSet<string> named = [.. reading.Study.Regions.Select(r => r.Name)];
         foreach ((string name, string key) in reading.Study.Responses.SelectMany(r => r.Regions.Select(name => (name, r.Key + ".regions"))))
         {
             if (named.Add(name))
             {
                 settings.Cancellation.ThrowIfCancellationRequested();
-                if (sensors.Sphere is null)
+                if (sensors.Imported is not null)
                 {
                     throw Problem(key, $"region '{name}' is one of the library; with imported leadfields a region selects imported points by name (regions: - {{name: ..., points: ...}})");
                 }
 
-                Add(RegionFill.Fill(library.Get(name, scale, sensors.Sphere.Centre, key), null, sensors.Head));
+                Add(RegionFill.Fill(library.Get(name, sensors.LibraryScale, sensors.LibraryCentre, key), null, sensors.Head));
             }
         }
 
@@ -92,7 +91,7 @@ internal sealed class RegionAssembly
                 return Points(choice, points);
             }
 
-            if (_sensors.Sphere is null)
+            if (_sensors.Imported is not null)
             {
                 throw Problem(choice.Key, $"region '{choice.Name}': with imported leadfields a region selects imported points by name; give `points: FILE`");
             }

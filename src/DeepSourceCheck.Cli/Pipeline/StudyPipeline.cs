@@ -48,10 +48,11 @@ internal static class StudyPipeline
         var warnings = new List<string>(reading.Warnings);
         settings.Cancellation.ThrowIfCancellationRequested();
 
-        SensorAssembly sensors = SensorAssembly.Build(reading, inputs, warnings);
+        SensorAssembly sensors = SensorAssembly.Build(reading, inputs, settings, warnings);
         settings.Cancellation.ThrowIfCancellationRequested();
         var regions = new RegionAssembly(reading, library, sensors, inputs, purpose, settings);
         warnings.AddRange(regions.Warnings);
+        sensors.Compute(regions.Filled, settings);
         StudySetup setup = sensors.Setup(reading.Study, regions.Filled);
         if (purpose == Purpose.Assess)
         {
@@ -59,14 +60,15 @@ internal static class StudyPipeline
             setup = setup with { Noise = NoiseAssembly.Build(reading, sensors, inputs, warnings) };
         }
 
+        LeadfieldCost cost = sensors.Cost(regions.Filled);
         return new PreparedStudy
         {
             Reading = reading,
             Setup = setup,
             Inputs = inputs.Files,
             Warnings = [.. warnings.Distinct()],
-            PredictedMemory = Prediction.Memory(setup, purpose),
-            PredictedSeconds = Prediction.Seconds(setup, purpose),
+            PredictedMemory = Prediction.Memory(setup, purpose) + cost.Bytes,
+            PredictedSeconds = Prediction.Seconds(setup, purpose) + cost.Seconds,
         };
     }
 

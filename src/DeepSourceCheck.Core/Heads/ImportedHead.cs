@@ -12,6 +12,9 @@ public sealed class ImportedHead : IHead
     public string? WhyRefused(Vec3 point) => null;
 
     /// <inheritdoc/>
+    public string? TissueAt(Vec3 point) => null;
+
+    /// <inheritdoc/>
     public Vec3? Outward(Vec3 point) => null;
 
     /// <inheritdoc/>
@@ -19,4 +22,10 @@ public sealed class ImportedHead : IHead
 
     /// <inheritdoc/>
     public double? Depth(Vec3 point) => null;
+
+    /// <inheritdoc/>
+    public double? DepthBelowInnerSkull(Vec3 point) => null;
+
+    /// <inheritdoc/>
+    public IReadOnlyList<Vec3> BackgroundPlaces(int count) => [];
 }

@@ -15,6 +15,9 @@ public sealed class LayeredSphere : IHead
     /// <summary>Distance from the centre [m] within which the split of directions is undefined.</summary>
     public const double CentreTolerance = 1e-6;
 
+    /// <summary>Depth of the cortex below the inner skull [m].</summary>
+    public const double CortexDepth = 0.006;
+
     public LayeredSphere(string name, Vec3 centre, IReadOnlyList<SphereLayer> layers)
     {
         if (layers.Count == 0)
@@ -75,6 +78,16 @@ public sealed class LayeredSphere : IHead
                 $"{Si.ToMm(r):0.0} mm from the sphere's centre, {Si.ToMm(r - limit):0.0} mm beyond the {Si.ToMm(limit):0.0} mm that the innermost layer admits");
     }
 
+    /// <summary>Radius of the shell that stands for the cortex [m].</summary>
+    public double CortexRadius => InnerSkullRadius - CortexDepth;
+
+    /// <inheritdoc/>
+    public string? TissueAt(Vec3 point)
+    {
+        double r = (point - Centre).Norm;
+        return Layers.FirstOrDefault(layer => r <= layer.OuterRadius)?.Tissue ?? "outside";
+    }
+
     /// <inheritdoc/>
     /// <remarks>Asked once a dipole: optimised from the first call on.</remarks>
     [MethodImpl(MethodImplOptions.AggressiveOptimization)]
@@ -90,4 +103,15 @@ public sealed class LayeredSphere : IHead
 
     /// <inheritdoc/>
     public double? Depth(Vec3 point) => OuterRadius - (point - Centre).Norm;
+
+    /// <inheritdoc/>
+    public double? DepthBelowInnerSkull(Vec3 point) => InnerSkullRadius - (point - Centre).Norm is >= 0 and double depth ? depth : null;
+
+    /// <inheritdoc/>
+    /// <remarks>On the shell of the cortex; where the fluid is thicker than that, on the outermost sphere that admits sources.</remarks>
+    public IReadOnlyList<Vec3> BackgroundPlaces(int count)
+    {
+        double radius = Math.Min(CortexRadius, LargestEccentricity * InnerRadius);
+        return [.. Enumerable.Range(0, count).Select(k => Centre + radius * GoldenSpiral.Point(k, count))];
+    }
 }

@@ -16,6 +16,9 @@ internal sealed class SummedHead(IHead inner) : IHead
     public string? WhyRefused(Vec3 point) => inner.WhyRefused(point);
 
     /// <inheritdoc/>
+    public string? TissueAt(Vec3 point) => inner.TissueAt(point);
+
+    /// <inheritdoc/>
     public Vec3? Outward(Vec3 point) => inner.Outward(point);
 
     /// <inheritdoc/>
@@ -23,4 +26,10 @@ internal sealed class SummedHead(IHead inner) : IHead
 
     /// <inheritdoc/>
     public double? Depth(Vec3 point) => inner.Depth(point);
+
+    /// <inheritdoc/>
+    public double? DepthBelowInnerSkull(Vec3 point) => inner.DepthBelowInnerSkull(point);
+
+    /// <inheritdoc/>
+    public IReadOnlyList<Vec3> BackgroundPlaces(int count) => inner.BackgroundPlaces(count);
 }

@@ -12,13 +12,13 @@ namespace DeepSourceCheck.Core.Regions;
 public static class CortexShell
 {
     /// <summary>Depth below the inner skull [m].</summary>
-    public const double Depth = 0.006;
+    public const double Depth = LayeredSphere.CortexDepth;
 
     /// <summary>Spacing where none is stated [m].</summary>
     public const double DefaultSpacing = 0.006;
 
     /// <summary>Radius of the shell [m].</summary>
-    public static double Radius(LayeredSphere head) => head.InnerSkullRadius - Depth;
+    public static double Radius(LayeredSphere head) => head.CortexRadius;
 
     /// <summary>Number of points: round(4 pi r^2 / h^2), so that each stands for an area of h^2; saturates at the largest integer.</summary>
     public static long Count(LayeredSphere head, double spacing)

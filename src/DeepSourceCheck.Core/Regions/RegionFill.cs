@@ -2,6 +2,7 @@ using System.Globalization;
 
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 
@@ -35,18 +36,21 @@ public static class RegionFill
         string name, RegionShape shape, double? spacing, IHead head, string origin, string? file = null, string? key = null) =>
         Fill(name, shape, spacing, head, origin, file, key, WarnDroppedShare);
 
-    /// <summary>Fills a region of the library: an ellipsoid, or the cortex of a spherical head.</summary>
+    /// <summary>Fills a region of the library: an ellipsoid, or the cortex of the head.</summary>
     /// <param name="region">Region, already scaled to the head.</param>
     /// <param name="spacing">Stated spacing [m], or null.</param>
-    /// <param name="head">Head; cortex needs a spherical one.</param>
-    /// <exception cref="InputException">As for shapes; cortex on a head that is not spherical.</exception>
+    /// <param name="head">Head; cortex needs one that knows its brain: spheres or voxels.</param>
+    /// <exception cref="InputException">As for shapes; cortex on imported leadfields.</exception>
     public static FilledRegion Fill(LibraryRegion region, double? spacing, IHead head)
     {
         if (region.Shape is not { } ellipsoid)
         {
-            return head is LayeredSphere sphere
-                ? CortexShell.Fill(sphere, spacing ?? CortexShell.DefaultSpacing, region.Name)
-                : throw new InputException(null, "responses", $"region '{region.Name}' is computed for spherical heads only; give a region of your own");
+            return head switch
+            {
+                LayeredSphere sphere => CortexShell.Fill(sphere, spacing ?? CortexShell.DefaultSpacing, region.Name),
+                VoxelHead voxels => CortexVoxels.Fill(voxels, spacing ?? CortexShell.DefaultSpacing, region.Name),
+                _ => throw new InputException(null, "responses", $"region '{region.Name}' is computed for heads of spheres or voxels; give a region of your own"),
+            };
         }
 
         FilledRegion filled = Fill(region.Name, ellipsoid.Shape, spacing, head, "library", null, null, WarnDroppedShareOfLibrary);
@@ -59,7 +63,12 @@ public static class RegionFill
     /// <param name="head">Head.</param>
     public static long PredictCount(LibraryRegion region, double? spacing, IHead head) => region.Shape is { } ellipsoid
         ? GridSpacing.PredictCount(ellipsoid.Volume, spacing)
-        : head is LayeredSphere sphere ? CortexShell.Count(sphere, spacing ?? CortexShell.DefaultSpacing) : 0;
+        : head switch
+        {
+            LayeredSphere sphere => CortexShell.Count(sphere, spacing ?? CortexShell.DefaultSpacing),
+            VoxelHead voxels => CortexVoxels.Count(voxels, spacing ?? CortexShell.DefaultSpacing),
+            _ => 0,
+        };
 
     /// <summary>Takes explicit points in their order.</summary>
     /// <param name="name">Name of the region.</param>
@@ -165,13 +174,7 @@ public static class RegionFill
         }
 
         Array.Resize(ref rows, kept);
-        double share = dropped.Count / (double)count;
-        string[] warnings = share <= warnShare ? [] :
-        [
-            string.Create(CultureInfo.InvariantCulture,
-                $"{all.Name}: {100 * share:0} % of it ({dropped.Count:N0} of {count:N0} dipoles) "
-                + $"does not fit into the head ({head.Name}) and was dropped; the figures stand for the rest"),
-        ];
+        string[] warnings = Losses(all.Name, dropped, count, head, warnShare);
         return new()
         {
             Name = all.Name,
@@ -188,6 +191,28 @@ public static class RegionFill
             Warnings = warnings,
         };
     }
+
+    /// <summary>What a region lost; in a head of voxels always, and to which tissues.</summary>
+    private static string[] Losses(string name, List<DroppedPoint> dropped, int count, IHead head, double warnShare)
+    {
+        double share = dropped.Count / (double)count;
+        if (dropped.Count == 0 || (share <= warnShare && head is not VoxelHead))
+        {
+            return [];
+        }
+
+        string what = string.Create(CultureInfo.InvariantCulture, $"{name}: {Percent(share)} of it ({dropped.Count:N0} of {count:N0} dipoles)");
+        if (head is not VoxelHead)
+        {
+            return [$"{what} does not fit into the head ({head.Name}) and was dropped; the figures stand for the rest"];
+        }
+
+        IEnumerable<string> tissues = dropped.CountBy(p => head.TissueAt(p.Position) ?? "no tissue").OrderByDescending(t => t.Value).ThenBy(t => t.Key, StringComparer.Ordinal)
+            .Select(t => string.Create(CultureInfo.InvariantCulture, $"{t.Key} ({Percent(t.Value / (double)count)})"));
+        return [$"{what} fell into {string.Join(", ", tissues)}, where no source stands, and was dropped; the figures stand for the rest"];
+    }
+
+    private static string Percent(double share) => (100 * share).ToString(share < 0.01 ? "0.##" : "0", CultureInfo.InvariantCulture) + " %";
 
     private static Vec3[] Nodes(RegionShape shape, decimal step)
     {

@@ -26,6 +26,7 @@ internal sealed class NiftiFields
             Pixdim[k] = h.Real(first ? 76 + 4 * k : 104 + 8 * k);
         }
 
+        IntentCode = first ? h.Short(68) : h.Int(504);
         DataType = h.Short(first ? 70 : 12);
         Bitpix = h.Short(first ? 72 : 14);
         VoxOffset = first ? h.Real(108) : h.Long(168);
@@ -57,6 +58,9 @@ internal sealed class NiftiFields
     public long[] Dim { get; } = new long[8];
 
     public double[] Pixdim { get; } = new double[8];
+
+    /// <summary>What the values mean; 1005: symmetric matrices.</summary>
+    public int IntentCode { get; }
 
     public int DataType { get; }
 

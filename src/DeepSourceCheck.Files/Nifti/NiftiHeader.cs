@@ -33,6 +33,9 @@ public sealed record NiftiHeader
     /// <summary>Where the place in space comes from.</summary>
     public required NiftiOrientation Orientation { get; init; }
 
+    /// <summary>Values of each voxel: 1, or 6 for symmetric 3 x 3 matrices, one volume after the other.</summary>
+    public int Components { get; init; } = 1;
+
     /// <summary>Type of the stored values.</summary>
     public required NiftiDataType DataType { get; init; }
 
@@ -49,7 +52,7 @@ public sealed record NiftiHeader
     public required IReadOnlyList<string> Warnings { get; init; }
 
     /// <summary>Bytes of the data.</summary>
-    public long DataBytes => (long)Grid.Count * DataType.Size();
+    public long DataBytes => (long)Grid.Count * Components * DataType.Size();
 
     /// <summary>True when the orientation suffices to place a region.</summary>
     public bool IsPlaced => Orientation != NiftiOrientation.VoxelSizesOnly;

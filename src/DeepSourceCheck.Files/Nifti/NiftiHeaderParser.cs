@@ -11,21 +11,34 @@ internal static class NiftiHeaderParser
     /// <summary>Header extensions longer than this [bytes] are taken for a damaged offset.</summary>
     private const double LargestOffset = 1 << 26;
 
+    /// <summary>Intent code of symmetric matrices.</summary>
+    private const int SymmetricMatrix = 1005;
+
+    /// <summary>Entries of the lower triangle of a 3 x 3 matrix.</summary>
+    private const int MatrixEntries = 6;
+
     /// <summary>Reads and judges the header at the start of a source.</summary>
     /// <param name="source">The header's file, at its start.</param>
     /// <param name="displayName">The header's file as the user named it.</param>
+    /// <param name="tensors">True: a volume of symmetric 3 x 3 matrices is wanted; false: one value a voxel.</param>
     /// <exception cref="InputException">Malformed or not supported; names the field.</exception>
-    public static NiftiHeader Parse(ByteSource source, string displayName)
+    public static NiftiHeader Parse(ByteSource source, string displayName, bool tensors = false)
     {
         NiftiFields fields = NiftiFields.Read(source, displayName);
         List<string> warnings = [];
-        int[] dims = Dims(fields, displayName);
+        int components = tensors ? MatrixEntries : 1;
+        if (tensors)
+        {
+            CheckTensors(fields, displayName);
+        }
+
+        int[] dims = Dims(fields, components, displayName);
         NiftiDataType type = DataType(fields, displayName, warnings);
         long offset = DataOffset(fields, displayName, warnings);
         double voxels = (double)dims[0] * dims[1] * dims[2];
         if (!fields.IsPair)
         {
-            CheckRoom(source, offset, voxels, dims, type, displayName);
+            CheckRoom(source, offset, voxels * components, dims, type, displayName);
         }
 
         if (voxels > Array.MaxLength)
@@ -42,6 +55,7 @@ internal static class NiftiHeaderParser
             IsPair = fields.IsPair,
             Grid = new(dims[0], dims[1], dims[2], toWorld),
             Orientation = orientation,
+            Components = components,
             DataType = type,
             DataOffset = offset,
             Slope = slope,
@@ -52,9 +66,9 @@ internal static class NiftiHeaderParser
 
     /// <summary>Refuses data that cannot be in the file, before anything is allocated.</summary>
     /// <exception cref="InputException">The data end beyond the file's end or what it can unpack to.</exception>
-    public static void CheckRoom(ByteSource source, double offset, double voxels, int[] dims, NiftiDataType type, string displayName)
+    public static void CheckRoom(ByteSource source, double offset, double values, int[] dims, NiftiDataType type, string displayName)
     {
-        double needed = voxels * type.Size();
+        double needed = values * type.Size();
         if (!source.IsGzip && offset >= source.FileLength)
         {
             throw new InputException(displayName, "vox_offset", Invariant($"the data should begin at byte {offset:N0}, but the file has {source.FileLength:N0} bytes: it is cut short or the header is damaged"));
@@ -70,7 +84,23 @@ internal static class NiftiHeaderParser
         }
     }
 
-    private static int[] Dims(NiftiFields fields, string displayName)
+    /// <summary>A tensor file is a volume in five dimensions whose fifth holds the lower triangle, marked by its intent code.</summary>
+    private static void CheckTensors(NiftiFields fields, string displayName)
+    {
+        const string Wanted = "tensors are a volume of five dimensions, nx x ny x nz x 1 x 6, with intent code 1005 (symmetric matrix: xx, xy, yy, xz, yz, zz)";
+        if (fields.IntentCode != SymmetricMatrix)
+        {
+            throw new InputException(displayName, "intent_code", $"the intent code is {fields.IntentCode}: {Wanted}");
+        }
+
+        if (fields.Dim[0] != 5 || fields.Dim[4] != 1 || fields.Dim[5] != MatrixEntries)
+        {
+            string sizes = string.Join(" x ", fields.Dim.Skip(1).Take((int)Math.Clamp(fields.Dim[0], 0, 7)));
+            throw new InputException(displayName, "dim", $"the file has {fields.Dim[0]} dimensions ({sizes}): {Wanted}");
+        }
+    }
+
+    private static int[] Dims(NiftiFields fields, int components, string displayName)
     {
         long count = fields.Dim[0];
         if (count is < 1 or > 7)
@@ -87,7 +117,7 @@ internal static class NiftiHeaderParser
                 throw new InputException(displayName, $"dim[{k}]", $"the size is {size}; at least 1 is needed: the header is damaged");
             }
 
-            if (k > 3 && size > 1)
+            if (k > 3 && size > (k == 5 ? components : 1))
             {
                 throw new InputException(displayName, $"dim[{k}]", k == 4
                     ? $"the file holds {size} volumes; one is needed: extract it and name that file"

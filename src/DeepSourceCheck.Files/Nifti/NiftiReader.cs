@@ -69,10 +69,58 @@ public static class NiftiReader
         return new(header, volume, warnings);
     }
 
+    /// <summary>Reads a volume of symmetric 3 x 3 matrices, one entry of the lower triangle after the other: xx, xy, yy, xz, yz, zz.</summary>
+    /// <param name="path">The file; of a pair, either.</param>
+    /// <param name="displayName">As the user named it.</param>
+    /// <param name="accept">Judges the header before any value is read.</param>
+    /// <param name="take">Takes an entry's number, 0 to 5, and its values, first axis fastest; they are not kept here.</param>
+    /// <returns>What the user must know.</returns>
+    /// <exception cref="InputException">As <see cref="Read"/>, or the file holds no symmetric matrices.</exception>
+    public static IReadOnlyList<string> ReadTensors(string path, string displayName, Action<NiftiHeader> accept, Action<int, VoxelValues> take)
+    {
+        NamedFile file = NiftiFileNames.Header(path, displayName);
+        using ByteSource source = new(file.Path, file.Display);
+        NiftiHeader header = NiftiHeaderParser.Parse(source, file.Display, tensors: true);
+        List<string> warnings = [.. header.Warnings];
+        accept(header);
+        if (header.IsPair)
+        {
+            NamedFile data = NiftiFileNames.Data(file);
+            using ByteSource image = new(data.Path, data.Display);
+            CheckRoom(image, header, data.Display);
+            ReadComponents(image, header, data.Display, take, warnings);
+        }
+        else
+        {
+            ReadComponents(source, header, file.Display, take, warnings);
+        }
+
+        return warnings;
+    }
+
+    private static void ReadComponents(ByteSource source, NiftiHeader header, string displayName, Action<int, VoxelValues> take, List<string> warnings)
+    {
+        SkipToData(source, header, displayName);
+        for (int component = 0; component < header.Components; component++)
+        {
+            take(component, ReadVolume(source, header, component, displayName));
+        }
+
+        Finish(source, displayName, warnings);
+    }
+
     private static void CheckRoom(ByteSource image, NiftiHeader header, string displayName) => NiftiHeaderParser.CheckRoom(
-        image, header.DataOffset, header.Grid.Count, [header.Grid.Nx, header.Grid.Ny, header.Grid.Nz], header.DataType, displayName);
+        image, header.DataOffset, (double)header.Grid.Count * header.Components, [header.Grid.Nx, header.Grid.Ny, header.Grid.Nz], header.DataType, displayName);
 
     private static VoxelValues ReadValues(ByteSource source, NiftiHeader header, string displayName, List<string> warnings)
+    {
+        SkipToData(source, header, displayName);
+        VoxelValues values = ReadVolume(source, header, 0, displayName);
+        Finish(source, displayName, warnings);
+        return values;
+    }
+
+    private static void SkipToData(ByteSource source, NiftiHeader header, string displayName)
     {
         long skipped = source.Skip(header.DataOffset - source.Consumed);
         if (source.Consumed < header.DataOffset)
@@ -80,20 +128,24 @@ public static class NiftiReader
             throw new InputException(displayName, "vox_offset",
                 $"the data should begin at byte {header.DataOffset:N0}, but the file unpacks to {source.Consumed:N0} bytes ({skipped:N0} after the header): it is cut short or the header is damaged");
         }
+    }
 
-        VoxelValues values = header.DataType switch
-        {
-            NiftiDataType.UInt8 => ReadAs<byte>(source, header, displayName),
-            NiftiDataType.Int8 => ReadAs<sbyte>(source, header, displayName),
-            NiftiDataType.Int16 => ReadAs<short>(source, header, displayName),
-            NiftiDataType.UInt16 => ReadAs<ushort>(source, header, displayName),
-            NiftiDataType.Int32 => ReadAs<int>(source, header, displayName),
-            NiftiDataType.UInt32 => ReadAs<uint>(source, header, displayName),
-            NiftiDataType.Int64 => ReadAs<long>(source, header, displayName),
-            NiftiDataType.UInt64 => ReadAs<ulong>(source, header, displayName),
-            NiftiDataType.Float32 => ReadAs<float>(source, header, displayName),
-            _ => ReadAs<double>(source, header, displayName),
-        };
+    private static VoxelValues ReadVolume(ByteSource source, NiftiHeader header, int component, string displayName) => header.DataType switch
+    {
+        NiftiDataType.UInt8 => ReadAs<byte>(source, header, component, displayName),
+        NiftiDataType.Int8 => ReadAs<sbyte>(source, header, component, displayName),
+        NiftiDataType.Int16 => ReadAs<short>(source, header, component, displayName),
+        NiftiDataType.UInt16 => ReadAs<ushort>(source, header, component, displayName),
+        NiftiDataType.Int32 => ReadAs<int>(source, header, component, displayName),
+        NiftiDataType.UInt32 => ReadAs<uint>(source, header, component, displayName),
+        NiftiDataType.Int64 => ReadAs<long>(source, header, component, displayName),
+        NiftiDataType.UInt64 => ReadAs<ulong>(source, header, component, displayName),
+        NiftiDataType.Float32 => ReadAs<float>(source, header, component, displayName),
+        _ => ReadAs<double>(source, header, component, displayName),
+    };
+
+    private static void Finish(ByteSource source, string displayName, List<string> warnings)
+    {
         switch (source.Finish(Slack))
         {
             case null:
@@ -105,16 +157,14 @@ public static class NiftiReader
             default:
                 break;
         }
-
-        return values;
     }
 
-    private static VoxelValues ReadAs<T>(ByteSource source, NiftiHeader header, string displayName)
+    private static VoxelValues ReadAs<T>(ByteSource source, NiftiHeader header, int component, string displayName)
         where T : unmanaged, INumberBase<T>
     {
         int count = header.Grid.Count, size = header.DataType.Size();
         T[] stored = new T[Math.Min(count, FirstAllocation / size)];
-        long have = 0;
+        long have = 0, wanted = (long)count * size;
         while (true)
         {
             // Array.MaxLength holds for elements, so spans of bytes are taken in pieces below 2^31.
@@ -125,10 +175,10 @@ public static class NiftiReader
             if (read < piece * size)
             {
                 throw new InputException(displayName, null,
-                    $"the file ends after {have:N0} of {header.DataBytes:N0} bytes of data ({header.Grid.Nx} x {header.Grid.Ny} x {header.Grid.Nz} voxels of {header.DataType.ToString().ToLowerInvariant()}): it is cut short or the header is damaged; copy or export it again");
+                    $"the file ends after {component * wanted + have:N0} of {header.DataBytes:N0} bytes of data ({header.Grid.Nx} x {header.Grid.Ny} x {header.Grid.Nz} voxels of {header.DataType.ToString().ToLowerInvariant()}): it is cut short or the header is damaged; copy or export it again");
             }
 
-            if (have == header.DataBytes)
+            if (have == wanted)
             {
                 break;
             }

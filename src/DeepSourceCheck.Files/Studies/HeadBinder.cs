@@ -7,7 +7,7 @@ using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Files.Studies;
 
-/// <summary>`head`: spheres by preset or layers, or imported leadfields.</summary>
+/// <summary>`head`: spheres by preset or layers, a label volume, or imported leadfields.</summary>
 internal static class HeadBinder
 {
     private const string Skull = "skull";
@@ -16,7 +16,7 @@ internal static class HeadBinder
     private static readonly string[] Anisotropic = ["radial_S_per_m", "tangential_S_per_m"];
 
     // Innermost conductivity over the skull's: usual range of the study file's plausibility rules.
-    private static readonly TypicalRange SkullRatio = new(5, 120);
+    internal static readonly TypicalRange SkullRatio = new(5, 120);
 
     public static HeadChoice? Bind(Section root, Reading reading)
     {
@@ -25,10 +25,10 @@ internal static class HeadBinder
             return null;
         }
 
-        string[] kinds = head.States("voxels") ? ["spheres", "leadfields", "voxels"] : ["spheres", "leadfields"];
-        return head.OneOf("write exactly one of spheres and leadfields", kinds) switch
+        return head.OneOf("write exactly one of spheres, voxels and leadfields", "spheres", "voxels", "leadfields") switch
         {
             "spheres" when head.Map("spheres") is { } spheres => Spheres(spheres, reading),
+            "voxels" when head.Map("voxels") is { } voxels => VoxelHeadBinder.Bind(voxels, reading),
             "leadfields" when head.Map("leadfields") is { } leadfields => Imported(leadfields),
             _ => null,
         };

@@ -14,6 +14,8 @@ internal sealed class NiftiBytes
 
     public long[] Dim { get; init; } = [3, 4, 3, 2, 1, 1, 1, 1];
 
+    public int Intent { get; init; }
+
     public int DataType { get; init; } = 2;
 
     public int Bitpix { get; init; } = 8;
@@ -74,6 +76,7 @@ internal sealed class NiftiBytes
             }
 
             Int(h, 500, Units);
+            Int(h, 504, Intent);
             return h;
         }
 
@@ -83,6 +86,7 @@ internal sealed class NiftiBytes
             Single(h, 76 + 4 * k, Pixdim[k]);
         }
 
+        Short(h, 68, Intent);
         Short(h, 70, DataType);
         Short(h, 72, Bitpix);
         Single(h, 108, VoxOffset);

@@ -6,7 +6,6 @@ namespace DeepSourceCheck.Tests.Files.Studies;
 public class NotSupportedYetTests
 {
     [Theory]
-    [InlineData("{spheres: {preset: adult-4}}", "{voxels: {labels: head.nii.gz, grid: plain}}", "head.voxels")]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    kind: steady-state", "responses.wave V.kind")]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    frequency_Hz: 40", "responses.wave V.frequency_Hz")]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    seconds: 10", "responses.wave V.seconds")]

@@ -50,7 +50,7 @@ public class StudyReaderErrorTests
     [InlineData("small", "{amplitude_ratio: 3}", "{}", "target", "states no rule|amplitude_ratio")]
     [InlineData("small", "{amplitude_ratio: 3}", "{detection: {alpha: 0.2, power: 0.1}}", "target.detection.power", "0.1 is not above|alpha 0.2")]
     // head
-    [InlineData("small", "{spheres: {preset: adult-4}}", "{}", "head", "none of spheres, leadfields")]
+    [InlineData("small", "{spheres: {preset: adult-4}}", "{}", "head", "none of spheres, voxels, leadfields")]
     [InlineData("small", "{spheres: {preset: adult-4}}", "{spheres: {preset: adult-4}, leadfields: {eeg: eeg.npy, points: points.tsv, rows: rows.tsv}}", "head.leadfields", "beside spheres|exactly one")]
     [InlineData("small", "{preset: adult-4}", "{preset: adult-5}", "head.spheres.preset", "'adult-5'|nearest is adult-4")]
     [InlineData("small", "{preset: adult-4}", "{preset: adult-4, layers: [{tissue: brain, radius_mm: 80, conductivity_S_per_m: 0.33}]}", "head.spheres.layers", "beside preset")]

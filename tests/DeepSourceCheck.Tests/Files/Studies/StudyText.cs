@@ -110,7 +110,7 @@ internal static class StudyText
     private static string MakeFolder()
     {
         string folder = Directory.CreateTempSubdirectory("dsc-study-").FullName;
-        foreach (string name in new[] { "electrodes.tsv", "coordsystem.json", "coils.tsv", "points.tsv", "rows.tsv", "mask.nii.gz", "eeg.npy", "meg.npy" })
+        foreach (string name in new[] { "electrodes.tsv", "coordsystem.json", "coils.tsv", "points.tsv", "rows.tsv", "mask.nii.gz", "head.nii.gz", "tensors.nii.gz", "eeg.npy", "meg.npy" })
         {
             File.WriteAllText(Path.Combine(folder, name), "");
         }

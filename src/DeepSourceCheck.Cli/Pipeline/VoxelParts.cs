@@ -1,0 +1,61 @@
+using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Heads.Voxels;
+using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Sensors;
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Cli.Pipeline;
+
+/// <summary>Places sensors about one real head.</summary>
+internal interface IVoxelSensors
+{
+    /// <summary>Places [m] of sites of the 10-5 system, M1 and M2 on the scalp.</summary>
+    /// <param name="names">Names of sites, all known.</param>
+    /// <exception cref="InputException">The landmarks do not suit the head.</exception>
+    IReadOnlyList<Vec3> Sites(IReadOnlyList<string> names);
+
+    /// <summary>Sets measured positions on the scalp; contacts within the head stay where they are.</summary>
+    /// <param name="names">Names of the electrodes.</param>
+    /// <param name="positions">Their positions [m].</param>
+    /// <param name="file">Table that they come from, for messages.</param>
+    /// <exception cref="InputException">Names every electrode farther than 20 mm from the scalp, with the distance.</exception>
+    IReadOnlyList<Electrode> Project(IReadOnlyList<string> names, IReadOnlyList<Vec3> positions, string file);
+
+    /// <summary>A generated array about the head, at the stated gap from the scalp.</summary>
+    IReadOnlyList<MegChannel> Array(CoilArrayChoice choice);
+
+    /// <summary>Refuses coils that do not lie in the air around the head.</summary>
+    /// <param name="channels">Channels of a table.</param>
+    /// <param name="file">The table, for messages.</param>
+    /// <exception cref="InputException">Names every such channel, with the depth.</exception>
+    void CheckCoils(IReadOnlyList<MegChannel> channels, string file);
+
+    /// <summary>What the user must know: which landmarks were found rather than given, with their uncertainty; how far electrodes were moved. Asked for last.</summary>
+    IReadOnlyList<string> Warnings { get; }
+}
+
+/// <summary>What the finite elements are solved for.</summary>
+/// <param name="Head">The head.</param>
+/// <param name="Tensors">Conductivity tensors, or null.</param>
+/// <param name="Choice">Grid and load of the dipole.</param>
+/// <param name="Electrodes">Electrodes; may be empty.</param>
+/// <param name="Channels">MEG channels; may be empty.</param>
+/// <param name="Places">Where dipoles will stand [m]: rows are kept for the nodes that these use.</param>
+internal sealed record VoxelProblem(
+    VoxelHead Head, ConductivityTensors? Tensors, VoxelHeadChoice Choice, IReadOnlyList<Electrode> Electrodes, IReadOnlyList<MegChannel> Channels, IReadOnlyList<Vec3> Places);
+
+/// <summary>Solves a row for every sensor, or takes it from the cache.</summary>
+internal interface IVoxelSolver
+{
+    /// <summary>Leadfields at the problem's places, unreferenced.</summary>
+    ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings);
+}
+
+/// <summary>What a head of voxels needs beside its volume.</summary>
+/// <param name="Sensors">Makes the sensors' placement for a head and the landmarks that the study gives [m].</param>
+/// <param name="Solver">Solver.</param>
+internal sealed record VoxelParts(Func<BuiltVoxelHead, IReadOnlyDictionary<string, Vec3>, IVoxelSensors> Sensors, IVoxelSolver Solver)
+{
+    /// <summary>The program's own; null while they are not part of it.</summary>
+    public static VoxelParts? Present => null;
+}

@@ -1,0 +1,210 @@
+using System.Globalization;
+
+using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Units;
+
+namespace DeepSourceCheck.Core.Heads.Voxels;
+
+// VoxelHead.cs - what a labelled head knows about places.
+//   Depth below the scalp: D(p) - h/2, D the exact Euclidean distance to the nearest voxel of the outside air, h the cube root of a voxel's volume: the surface lies half a
+//   voxel before the first air centre; where the file cuts the neck there is none. Depth below the inner skull: likewise from the nearest voxel of bone. Both are trilinear between voxel centres and right to about half
+//   a voxel.
+//   Outward: minus the gradient of the distance to bone, smoothed to a standard deviation of 4 mm, so that it does not show the steps of the voxels: the normal of the inner
+//   skull as the point sees it. Deep sources take that of the bone nearest to them, the base of the skull included.
+
+/// <summary>A head from a label volume.</summary>
+/// <remarks>Immutable; the distances are computed when they are first asked for. Safe for any number of threads.</remarks>
+public sealed class VoxelHead : IHead
+{
+    /// <summary>Standard deviation to which the distance to bone is smoothed for normals [m].</summary>
+    public const double NormalSmoothing = 0.004;
+
+    // Below this slope (1 where there is one nearest bone) the distance has a ridge or a plateau and no direction.
+    private const double LeastSlope = 0.02;
+
+    private readonly string?[] _refusals;
+    private readonly double _halfVoxel;
+    private readonly Lazy<ScalarField> _toAir, _toBone, _smoothed, _toHead;
+
+    /// <param name="name">How the head is named in results.</param>
+    /// <param name="volume">Its tissues; the outermost layer of voxels must be air.</param>
+    /// <param name="touched">Faces of the file's volume that cut the head: no scalp lies there. Null: none.</param>
+    /// <exception cref="ArgumentException">A voxel at a face of the volume is not air.</exception>
+    public VoxelHead(string name, TissueVolume volume, IReadOnlyList<TouchedFace>? touched = null)
+    {
+        if (!HeadCrop.HasMargin(volume))
+        {
+            throw new ArgumentException("The head reaches the face of its volume; a margin of air is needed.", nameof(volume));
+        }
+
+        (Name, Volume, Touched) = (name, volume, touched ?? []);
+        VoxelGrid grid = volume.Grid;
+        _halfVoxel = Math.Cbrt(grid.VoxelVolume) / 2;
+        _refusals = [.. volume.Tissues.Select(t => IsSource(t.Kind) ? null : $"in {t.Name}, where no source stands")];
+        _toAir = new(() =>
+        {
+            bool[] outside = OutsideAir(volume, Touched);
+            return new(grid, DistanceTransform.ToSet(grid, at => outside[at]));
+        });
+        _toBone = new(() =>
+        {
+            bool[] bone = [.. volume.Tissues.Select(t => t.Kind == TissueKind.Skull)];
+            return new(grid, DistanceTransform.ToSet(grid, at => bone[volume.Cells[at]]));
+        });
+        _smoothed = new(() =>
+        {
+            bool[] bone = [.. volume.Tissues.Select(t => t.Kind == TissueKind.Skull)];
+            float[] distance = DistanceTransform.ToSet(grid, at => bone[volume.Cells[at]]);
+            BoxBlur.Smooth(grid, distance, NormalSmoothing);
+            return new(grid, distance);
+        });
+        _toHead = new(() => new(grid, DistanceTransform.ToSet(grid, at => volume.Cells[at] != 0)));
+        HasSkull = Any(TissueKind.Skull);
+    }
+
+    /// <inheritdoc/>
+    public string Name { get; }
+
+    /// <summary>Its tissues.</summary>
+    public TissueVolume Volume { get; }
+
+    /// <summary>Faces of the file's volume that cut the head.</summary>
+    public IReadOnlyList<TouchedFace> Touched { get; }
+
+    /// <summary>True where a voxel is bone: without bone there is no depth below the skull and no direction.</summary>
+    public bool HasSkull { get; }
+
+    /// <summary>Whether a source may stand in a tissue: grey and white matter.</summary>
+    /// <remarks>Deep nuclei are often labelled white in a segmentation, so white is no ground for refusal; CSF, bone, scalp and air are.</remarks>
+    public static bool IsSource(TissueKind kind) => kind is TissueKind.Grey or TissueKind.White;
+
+    /// <summary>Whether a tissue lies within the skull: CSF, grey and white matter.</summary>
+    public static bool IsInSkull(TissueKind kind) => kind is TissueKind.Csf or TissueKind.Grey or TissueKind.White;
+
+    /// <inheritdoc/>
+    public string? WhyRefused(Vec3 point)
+    {
+        int at = Volume.Grid.IndexAt(point);
+        int tissue = at < 0 ? 0 : Volume.Cells[at];
+        if (_refusals[tissue] is not { } refusal)
+        {
+            return null;
+        }
+
+        return Volume.Tissues[tissue].Kind != TissueKind.Air ? refusal : string.Create(
+            CultureInfo.InvariantCulture, $"in air, {Si.ToMm(DistanceToHead(point)):0.0} mm from the nearest tissue of the head");
+    }
+
+    /// <inheritdoc/>
+    public string? TissueAt(Vec3 point) => Volume.At(point).Name;
+
+    /// <inheritdoc/>
+    public Vec3? Outward(Vec3 point)
+    {
+        if (!HasSkull)
+        {
+            return null;
+        }
+
+        Vec3 gradient = _smoothed.Value.Gradient(point, 2 * _halfVoxel);
+        return gradient.Norm >= LeastSlope ? -gradient.Unit() : null;
+    }
+
+    /// <inheritdoc/>
+    public bool IsSymmetryCentre(Vec3 point) => false;
+
+    /// <inheritdoc/>
+    public double? Depth(Vec3 point) => Volume.Grid.IndexAt(point) < 0 ? null : _toAir.Value.At(point) - _halfVoxel;
+
+    /// <inheritdoc/>
+    public double? DepthBelowInnerSkull(Vec3 point) =>
+        HasSkull && IsInSkull(Volume.At(point).Kind) ? Math.Max(0, _toBone.Value.At(point) - _halfVoxel) : null;
+
+    /// <inheritdoc/>
+    /// <remarks>Grey voxels, evenly picked; white ones where no voxel is grey.</remarks>
+    public IReadOnlyList<Vec3> BackgroundPlaces(int count) => GreyPlaces(count, double.PositiveInfinity);
+
+    /// <summary>Centres of grey voxels [m] down to a depth: every n-th of them in the order of memory, which spreads them evenly over the head. White voxels where none is grey.</summary>
+    /// <param name="count">How many are wanted; all of them where there are fewer.</param>
+    /// <param name="deepest">Largest depth below the inner skull [m]; without bone every depth is taken.</param>
+    public IReadOnlyList<Vec3> GreyPlaces(long count, double deepest)
+    {
+        long all = GreyVoxels(deepest), wanted = Math.Min(count, all);
+        List<Vec3> places = [];
+        long seen = 0;
+        foreach (int at in Grey(deepest))
+        {
+            // Place k of the wanted ones is voxel floor((k + 1/2) all / wanted).
+            if (places.Count < wanted && seen == (2L * places.Count + 1) * all / (2 * wanted))
+            {
+                (int i, int j, int k) = Volume.Grid.Voxel(at);
+                places.Add(Volume.Grid.Centre(i, j, k));
+            }
+
+            seen++;
+        }
+
+        return places;
+    }
+
+    /// <summary>Number of the voxels that <see cref="GreyPlaces"/> picks from.</summary>
+    /// <param name="deepest">Largest depth below the inner skull [m].</param>
+    public long GreyVoxels(double deepest) => Grey(deepest).LongCount();
+
+    private IEnumerable<int> Grey(double deepest)
+    {
+        TissueKind kind = Any(TissueKind.Grey) ? TissueKind.Grey : TissueKind.White;
+        bool[] chosen = [.. Volume.Tissues.Select(t => t.Kind == kind)];
+        bool every = double.IsPositiveInfinity(deepest) || !HasSkull;
+        ScalarField? bone = every ? null : _toBone.Value;
+        for (int at = 0; at < Volume.Grid.Count; at++)
+        {
+            if (chosen[Volume.Cells[at]] && (bone is null || bone[at] - _halfVoxel <= deepest))
+            {
+                yield return at;
+            }
+        }
+    }
+
+    private bool Any(TissueKind kind)
+    {
+        for (int tissue = 0; tissue < Volume.Tissues.Count; tissue++)
+        {
+            if (Volume.Tissues[tissue].Kind == kind && Volume.Cells.Contains((byte)tissue))
+            {
+                return true;
+            }
+        }
+
+        return false;
+    }
+
+    /// <summary>Distance [m] to the nearest voxel that is not air, less half a voxel; beyond the volume at most as far as over its nearest face.</summary>
+    private double DistanceToHead(Vec3 point)
+    {
+        VoxelGrid grid = Volume.Grid;
+        Vec3 v = grid.ToWorld.Inverse().Apply(point);
+        Vec3 inside = grid.ToWorld.Apply(new(Math.Clamp(v.X, 0, grid.Nx - 1), Math.Clamp(v.Y, 0, grid.Ny - 1), Math.Clamp(v.Z, 0, grid.Nz - 1)));
+        return Math.Max(0, (point - inside).Norm + _toHead.Value.At(inside) - _halfVoxel);
+    }
+
+    private static bool[] OutsideAir(TissueVolume volume, IReadOnlyList<TouchedFace> touched)
+    {
+        VoxelGrid grid = volume.Grid;
+        bool[] air = [.. volume.Tissues.Select(t => t.Kind == TissueKind.Air)];
+        var outside = new bool[grid.Count];
+        var known = new KnownBox(grid, touched);
+
+        // The margin makes one piece of all air that is open to the outside, and it holds the first voxel. Where the file cuts the head, the margin is made up.
+        VoxelPiece piece = ConnectedVoxels.Find(grid, at => air[volume.Cells[at]], corners: false).First(p => p.Runs[0].Start == 0);
+        foreach ((int start, int length) in piece.Runs)
+        {
+            for (int at = start; at < start + length; at++)
+            {
+                outside[at] = known.Holds(grid.Voxel(at));
+            }
+        }
+
+        return outside;
+    }
+}

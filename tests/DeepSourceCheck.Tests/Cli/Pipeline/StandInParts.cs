@@ -1,0 +1,36 @@
+using DeepSourceCheck.Cli.Pipeline;
+using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Leadfields.Spheres;
+using DeepSourceCheck.Core.Sensors;
+using DeepSourceCheck.Core.Studies;
+
+namespace DeepSourceCheck.Tests.Cli.Pipeline;
+
+/// <summary>
+/// A head of voxels that holds a layered sphere, computed with the sphere's own series: whatever differs between a study on it and the same study on spheres comes from the stages around the
+/// leadfield, which must not know which head they have.
+/// </summary>
+internal sealed class StandInParts(LayeredSphere sphere) : IVoxelSensors, IVoxelSolver
+{
+    public List<VoxelProblem> Solved { get; } = [];
+
+    public VoxelParts Parts => new((_, _) => this, this);
+
+    public IReadOnlyList<string> Warnings => ["the stand-in placed the sensors"];
+
+    public IReadOnlyList<Vec3> Sites(IReadOnlyList<string> names) => [.. names.Select(n => sphere.Centre + sphere.OuterRadius * ElectrodeLayout.Direction(n))];
+
+    public IReadOnlyList<Electrode> Project(IReadOnlyList<string> names, IReadOnlyList<Vec3> positions, string file) => ElectrodePlacement.OnSphere(names, positions, sphere, file);
+
+    public IReadOnlyList<MegChannel> Array(CoilArrayChoice choice) => CoilArray.Generate(choice, sphere.Centre, sphere.OuterRadius);
+
+    public void CheckCoils(IReadOnlyList<MegChannel> channels, string file) => SphereLeadfield.CheckCoils(sphere, channels, file);
+
+    public ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings)
+    {
+        Solved.Add(problem);
+        return new SphereLeadfield(sphere, problem.Electrodes, problem.Channels);
+    }
+}
