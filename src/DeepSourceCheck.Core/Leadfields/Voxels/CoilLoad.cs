@@ -17,7 +17,8 @@ namespace DeepSourceCheck.Core.Leadfields.Voxels;
 //     r_j = -mu0/(4 pi) sum over faces (sigma_c - sigma_c') int psi_j g . n dS:
 //   faces between elements that conduct alike drop out, and the load lives on the nodes of interfaces. Exact on any grid; elements with a tensor are integrated
 //   over their volume (TensorCoilLoad).
-//   Gauss points of a face do not sum to a flux of exactly zero out of each element: what is left (below 1e-5 of the load) is taken evenly from the interface nodes.
+//   Gauss points of a face do not sum to a flux of exactly zero out of each element: what is left (below 1e-5 of the load) is taken evenly from the interface nodes
+//   of each connected piece, for a net current into a piece has no solution.
 // Source: [Weinstein et al. 2000], [Gencer & Acar 2004] for the transfer matrix of MEG; the surface form is derived here.
 
 /// <summary>Right-hand sides that read the magnetic field of volume currents at MEG channels, without the factor mu0/(4 pi).</summary>
@@ -135,7 +136,7 @@ public sealed class CoilLoad
         ref Vector512<float> coil = ref MemoryMarshal.GetReference(coils);
         ref Vector512<float> node = ref MemoryMarshal.GetReference(values);
         ref float place = ref MemoryMarshal.GetArrayDataReference(_faces.Points);
-        Vector512<double> lowLeft = default, highLeft = default;
+        var left = new (Vector512<double> Low, Vector512<double> High, int Nodes)[_faces.Pieces];
         for (int face = 0; face < _faces.Count; face++)
         {
             Vector512<float> f0 = Flux(ref place, ref coil, points), f1 = Flux(ref Unsafe.Add(ref place, InterfaceFaces.Stride), ref coil, points);
@@ -150,18 +151,20 @@ public sealed class CoilLoad
             Unsafe.Add(ref node, at[2]) -= Near * f2 + Beside * along + Far * f1;
             Unsafe.Add(ref node, at[3]) -= Near * f3 + Beside * across + Far * f0;
             (Vector512<double> low, Vector512<double> high) = Vector512.Widen(across + along);
-            lowLeft += low;
-            highLeft += high;
+            ref (Vector512<double> Low, Vector512<double> High, int Nodes) piece = ref left[_faces.PieceOfFace[face]];
+            piece.Low += low;
+            piece.High += high;
         }
 
-        if (_faces.Count > 0)
+        foreach (int piece in _faces.PieceOfTouched)
         {
-            Vector512<double> nodes = Vector512.Create((double)_faces.Touched.Length);
-            Vector512<float> left = Vector512.Narrow(lowLeft / nodes, highLeft / nodes);
-            foreach (int at in _faces.Touched)
-            {
-                Unsafe.Add(ref node, at) += left;
-            }
+            left[piece].Nodes++;
+        }
+
+        Vector512<float>[] shares = [.. left.Select(l => Vector512.Narrow(l.Low / Math.Max(1, l.Nodes), l.High / Math.Max(1, l.Nodes)))];
+        for (int n = 0; n < _faces.Touched.Length; n++)
+        {
+            Unsafe.Add(ref node, _faces.Touched[n]) += shares[_faces.PieceOfTouched[n]];
         }
     }
 

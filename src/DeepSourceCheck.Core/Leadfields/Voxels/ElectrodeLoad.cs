@@ -6,23 +6,22 @@ using DeepSourceCheck.Core.Sensors;
 namespace DeepSourceCheck.Core.Leadfields.Voxels;
 
 // ElectrodeLoad.cs - right-hand sides of electrodes.
-//   r_e = psi(x_e) - s,  s_n = (1/A) sum over exposed faces of the integral of psi_n:  the potential at x_e minus its mean over the head's surface.
+//   r_e = psi(x_e) - s,  s_n = (1/A) sum over exposed faces of the integral of psi_n:  the potential at x_e minus its mean over the surface of the conductor it stands on.
 //   x_e: the place of the conductor nearest to the electrode. psi(x_e) has at most eight entries, the trilinear weights of that place.
 // Source: [Weinstein et al. 2000], the lead field basis by reciprocity; interpolation in the element in place of its nearest node.
 
 /// <summary>Right-hand sides that read the potential at electrodes, on the scalp or within the head.</summary>
 /// <remarks>
 /// Every electrode stands against the mean potential of the surface, as those of a sphere do: a common term that any reference removes. The surface is every face between a
-/// voxel and air, cavities included; all faces along one axis count by their plain area. Values without unit. Immutable.
+/// voxel and air, cavities included, of the connected piece that the electrode stands on; a face counts by the area of its plain voxel. Values without unit. Immutable.
 /// </remarks>
 public sealed class ElectrodeLoad
 {
     private const int Corners = TrilinearHexahedron.Corners;
 
-    private readonly int[] _nodes;
+    private readonly int[] _nodes, _pieceOf;
     private readonly double[] _weights, _moved;
-    private readonly int[] _surfaceNodes;
-    private readonly float[] _surfaceShares;
+    private readonly (int Node, float Share)[][] _surfaces;
 
     /// <param name="mesh">Elements.</param>
     /// <param name="electrodes">Electrodes, at the scalp or at a place within the head.</param>
@@ -32,6 +31,8 @@ public sealed class ElectrodeLoad
         _nodes = new int[electrodes.Count * Corners];
         _weights = new double[electrodes.Count * Corners];
         _moved = new double[electrodes.Count];
+        _pieceOf = new int[electrodes.Count];
+        ConductorPieces pieces = new(mesh);
         NearestElement conductor = new(mesh, _ => true);
         Span<Vec3> places = stackalloc Vec3[Corners];
         for (int e = 0; e < electrodes.Count; e++)
@@ -45,9 +46,10 @@ public sealed class ElectrodeLoad
             TrilinearHexahedron.Load(mesh, at.I, at.J, at.K, _nodes.AsSpan(e * Corners, Corners), places);
             TrilinearHexahedron.Shape(at.Natural, _weights.AsSpan(e * Corners, Corners));
             _moved[e] = at.Distance;
+            _pieceOf[e] = pieces.Of(_nodes[e * Corners]);
         }
 
-        (_surfaceNodes, _surfaceShares) = electrodes.Count > 0 ? Surface(mesh) : ([], []);
+        _surfaces = electrodes.Count > 0 ? Surfaces(mesh, pieces) : [];
     }
 
     /// <summary>Number of electrodes.</summary>
@@ -69,12 +71,24 @@ public sealed class ElectrodeLoad
     /// <param name="values">[node][16 lanes].</param>
     public void Add(int first, int count, int lane, Span<float> values)
     {
-        for (int n = 0; n < _surfaceNodes.Length; n++)
+        int end = first + count;
+        for (int e = first; e < end;)
         {
-            values.Slice(_surfaceNodes[n] * ILoadBlocks.Lanes + lane, count).Fill(-_surfaceShares[n]);
+            int same = e + 1;                                // electrodes on one piece share its surface: all of them, but in a volume with islands
+            while (same < end && _pieceOf[same] == _pieceOf[e])
+            {
+                same++;
+            }
+
+            foreach ((int node, float share) in _surfaces[_pieceOf[e]])
+            {
+                values.Slice(node * ILoadBlocks.Lanes + lane + e - first, same - e).Fill(-share);
+            }
+
+            e = same;
         }
 
-        for (int e = first; e < first + count; e++)
+        for (int e = first; e < end; e++)
         {
             for (int c = 0; c < Corners; c++)
             {
@@ -83,47 +97,51 @@ public sealed class ElectrodeLoad
         }
     }
 
-    // A quarter of every exposed face to each of its corners, by area.
-    private static (int[] Nodes, float[] Shares) Surface(HexMesh mesh)
+    // By piece: a quarter of every exposed face to each of its corners, by area, over the whole.
+    private static (int Node, float Share)[][] Surfaces(HexMesh mesh, ConductorPieces pieces)
     {
         VoxelGrid grid = mesh.Volume.Grid;
-        RowGrid nodes = mesh.Nodes;
-        ReadOnlySpan<byte> cells = mesh.Volume.Cells;
         Vec3 x = grid.ToWorld.Column(0), y = grid.ToWorld.Column(1), z = grid.ToWorld.Column(2);
         Span<double> areas = [Vec3.Cross(y, z).Norm, Vec3.Cross(z, x).Norm, Vec3.Cross(x, y).Norm];
-        var sums = new double[nodes.Count];
-        double total = 0;
-        for (int k = 0; k < grid.Nz; k++)
+        var sums = new double[mesh.Nodes.Count];
+        for (int cell = 0; cell < grid.Count; cell++)
         {
-            for (int j = 0; j < grid.Ny; j++)
+            if (mesh.Volume.Cells[cell] == 0)
             {
-                for (int i = 0; i < grid.Nx; i++)
+                continue;
+            }
+
+            (int i, int j, int k) = grid.Voxel(cell);
+            for (int face = 0; face < 6; face++)
+            {
+                int axis = face >> 1, side = face & 1, step = 2 * side - 1;
+                bool exposed = IsAir(mesh.Volume, i + (axis == 0 ? step : 0), j + (axis == 1 ? step : 0), k + (axis == 2 ? step : 0));
+                for (int c = 0; exposed && c < Corners; c++)
                 {
-                    if (cells[grid.Index(i, j, k)] == 0)
+                    if ((c >> axis & 1) == side)
                     {
-                        continue;
-                    }
-
-                    for (int face = 0; face < 6; face++)
-                    {
-                        int axis = face >> 1, side = face & 1, step = 2 * side - 1;
-                        int ni = i + (axis == 0 ? step : 0), nj = j + (axis == 1 ? step : 0), nk = k + (axis == 2 ? step : 0);
-                        bool exposed = (uint)ni >= (uint)grid.Nx || (uint)nj >= (uint)grid.Ny || (uint)nk >= (uint)grid.Nz || cells[grid.Index(ni, nj, nk)] == 0;
-                        for (int c = 0; exposed && c < Corners; c++)
-                        {
-                            if ((c >> axis & 1) == side)
-                            {
-                                sums[nodes.IndexOf(i + (c & 1), j + (c >> 1 & 1), k + (c >> 2))] += areas[axis] / 4;
-                            }
-                        }
-
-                        total += exposed ? areas[axis] : 0;
+                        sums[mesh.Nodes.IndexOf(i + (c & 1), j + (c >> 1 & 1), k + (c >> 2))] += areas[axis] / 4;
                     }
                 }
             }
         }
 
-        int[] touched = [.. Enumerable.Range(0, sums.Length).Where(n => sums[n] > 0)];
-        return (touched, [.. touched.Select(n => (float)(sums[n] / total))]);
+        var totals = new double[pieces.Count];
+        for (int n = 0; n < sums.Length; n++)
+        {
+            if (sums[n] > 0)
+            {
+                totals[pieces.Of(n)] += sums[n];
+            }
+        }
+
+        ILookup<int, int> touched = Enumerable.Range(0, sums.Length).Where(n => sums[n] > 0).ToLookup(pieces.Of);
+        return [.. totals.Select((total, piece) => touched[piece].Select(n => (n, (float)(sums[n] / total))).ToArray())];
+    }
+
+    private static bool IsAir(TissueVolume volume, int i, int j, int k)
+    {
+        VoxelGrid grid = volume.Grid;
+        return (uint)i >= (uint)grid.Nx || (uint)j >= (uint)grid.Ny || (uint)k >= (uint)grid.Nz || volume.Cells[grid.Index(i, j, k)] == 0;
     }
 }

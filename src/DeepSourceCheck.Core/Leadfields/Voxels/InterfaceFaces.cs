@@ -50,6 +50,10 @@ internal sealed class InterfaceFaces
         Nodes = [.. nodes];
         Points = [.. points];
         Touched = [.. Nodes.Distinct().Order()];
+        ConductorPieces pieces = new(mesh);
+        Pieces = pieces.Count;
+        PieceOfFace = [.. Enumerable.Range(0, Count).Select(face => pieces.Of(Nodes[face * PerFace]))];
+        PieceOfTouched = [.. Touched.Select(pieces.Of)];
 
         double Conductivity(int i, int j, int k)
         {
@@ -77,6 +81,15 @@ internal sealed class InterfaceFaces
 
     /// <summary>Nodes of any face, ascending.</summary>
     public int[] Touched { get; }
+
+    /// <summary>Number of unconnected pieces of the conductor.</summary>
+    public int Pieces { get; }
+
+    /// <summary>Piece of each face.</summary>
+    public int[] PieceOfFace { get; }
+
+    /// <summary>Piece of each of the <see cref="Touched"/> nodes.</summary>
+    public int[] PieceOfTouched { get; }
 
     // The upper face of voxel (i, j, k) along an axis a; its own axes b and c follow in cyclic order, so that x_b x x_c points outward in a right-handed frame.
     private void Append(HexMesh mesh, int i, int j, int k, int axis, double jump, List<int> nodes, List<float> points)
