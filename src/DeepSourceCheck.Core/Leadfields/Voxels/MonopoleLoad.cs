@@ -22,10 +22,13 @@ public sealed class MonopoleLoad : DipoleLoad
     // w_0^2: keeps a node that the dipole stands on from taking everything.
     private const double NodeWeight = 0.1;
 
-    private const double HardRidge = 1e-9, SoftRidge = 1e-4;
+    private const double HardRidge = 1e-12, SoftRidge = 1e-4;
 
     // The moment that the nodes must reproduce: far below the error of discretisation.
     private const double MomentTolerance = 1e-4;
+
+    // Nodes that lie nearly in a plane give a moment across it by large opposed currents, which see other fields than the dipole: largest |q| of a load, which else is about 1.
+    private const double LargestShare = 2;
 
     private readonly double _length;
     private readonly ElementGradientLoad _element;
@@ -127,7 +130,7 @@ public sealed class MonopoleLoad : DipoleLoad
         return count;
     }
 
-    /// <summary>Weights [1/m] for the three axes; false where the nodes do not reproduce the moment.</summary>
+    /// <summary>Weights [1/m] for the three axes; false where the nodes do not reproduce the moment, or only by currents out of proportion.</summary>
     private bool Solve(ReadOnlySpan<Vec3> offsets, Span<Vec3> weights)
     {
         if (offsets.Length < 4)
@@ -180,6 +183,11 @@ public sealed class MonopoleLoad : DipoleLoad
             }
 
             Vec3 q = share * new Vec3(x, y, z);
+            if (!(q.Norm <= LargestShare))
+            {
+                return false;
+            }
+
             weights[n] = q / _length;
             sum += q;
             alongX += s.X * q;
