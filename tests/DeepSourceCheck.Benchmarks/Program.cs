@@ -2,7 +2,7 @@ using BenchmarkDotNet.Running;
 
 using DeepSourceCheck.Benchmarks;
 
-// kernels: a table of the kernels in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
+// kernels: a table of the kernels in a minute; whole: the published program as a process; yardstick: numpy beside the kernels; voxels: the solver of voxel heads;
 // anything else goes to BenchmarkDotNet, for instance --filter '*'.
 switch (args.FirstOrDefault())
 {
@@ -13,6 +13,8 @@ switch (args.FirstOrDefault())
         return WholeProcess.Run(args[1..], Console.Out);
     case "yardstick":
         return Yardstick.Run(Console.Out);
+    case "voxels":
+        return VoxelTable.Run(args[1..], Console.Out);
     default:
         BenchmarkSwitcher.FromAssembly(typeof(KernelBenchmarks).Assembly).Run(args);
         return 0;
