@@ -8,24 +8,27 @@ using DeepSourceCheck.Core.Numerics.Multigrid;
 
 namespace DeepSourceCheck.Benchmarks;
 
-/// <summary>What the voxel solver is timed on: a layered sphere as a labelled volume, 64 pairs of points and 291 dense smooth loads.</summary>
+/// <summary>What the voxel solver is timed on: a layered sphere as a labelled volume, 64 pairs of points and 291 coils of a magnetometer helmet.</summary>
 internal sealed class VoxelWork : ILoadBlocks
 {
     /// <summary>Pairs of points: electrodes against a reference.</summary>
     public const int Pairs = 64;
 
-    /// <summary>Dense smooth loads.</summary>
+    /// <summary>Coils: dense loads, smooth within a tissue.</summary>
     public const int Dense = 291;
 
     private const double Scalp = 0.092;
     private readonly Vector3[] _nodes;
     private readonly bool[] _live;
-    private readonly int[] _electrodes;
+    private readonly int[] _electrodes, _rows;
+    private readonly HexMesh _mesh;
 
     /// <param name="mesh">The sphere's mesh.</param>
     public VoxelWork(HexMesh mesh)
     {
         RowGrid grid = mesh.Nodes;
+        _mesh = mesh;
+        _rows = new int[grid.Ny * grid.Nz];
         _nodes = new Vector3[grid.Count];
         _live = new bool[grid.Count];
         VoxelGrid voxels = mesh.Volume.Grid;
@@ -46,6 +49,7 @@ internal sealed class VoxelWork : ILoadBlocks
             for (int y = 0; y < grid.Ny; y++)
             {
                 (int first, int length, int offset) = grid.Row(y, z);
+                _rows[y + grid.Ny * z] = offset - first;
                 for (int n = 0; n < length; n++)
                 {
                     // From the plain places: both grids and both programs get the same loads.
@@ -111,50 +115,72 @@ internal sealed class VoxelWork : ILoadBlocks
     public void Fill(int block, Span<float> values)
     {
         values.Clear();
-        Span<float> weights = stackalloc float[ILoadBlocks.Lanes];
-        Span<float> px = stackalloc float[ILoadBlocks.Lanes], py = stackalloc float[ILoadBlocks.Lanes], pz = stackalloc float[ILoadBlocks.Lanes];
-        for (int lane = 0; lane < ILoadBlocks.Lanes; lane++)
+        int first = block * ILoadBlocks.Lanes;
+        if (first + ILoadBlocks.Lanes > Pairs)
         {
-            int load = block * ILoadBlocks.Lanes + lane;
-            Vec3 pole = 0.12 * GoldenSpiral.Point(Math.Max(0, load - Pairs) % Dense, Dense, -0.4);
-            (px[lane], py[lane], pz[lane]) = ((float)pole.X, (float)pole.Y, (float)pole.Z);
-            weights[lane] = load >= Pairs && load < Count ? 1 : 0;
+            Span<float> lanes = stackalloc float[6 * ILoadBlocks.Lanes];
+            for (int lane = 0; lane < ILoadBlocks.Lanes; lane++)
+            {
+                int coil = first + lane - Pairs;
+                if (coil is >= 0 and < Dense)
+                {
+                    Vec3 axis = GoldenSpiral.Point(coil, Dense, -0.4);
+                    for (int k = 0; k < 3; k++)
+                    {
+                        lanes[k * ILoadBlocks.Lanes + lane] = (float)(0.12 * axis[k]);
+                        lanes[(3 + k) * ILoadBlocks.Lanes + lane] = (float)axis[(k + 1) % 3];
+                    }
+                }
+                else
+                {
+                    lanes[lane] = 1;        // far from every element, without moment
+                }
+            }
+
+            AddCoils(values, lanes);
         }
 
-        FillDense(values, Vector512.Create<float>(weights), Vector512.Create<float>(px), Vector512.Create<float>(py), Vector512.Create<float>(pz));
-        for (int lane = 0; lane < ILoadBlocks.Lanes && block * ILoadBlocks.Lanes + lane < Pairs; lane++)
+        for (int lane = 0; lane < ILoadBlocks.Lanes && first + lane < Pairs; lane++)
         {
-            values[_electrodes[block * ILoadBlocks.Lanes + lane] * ILoadBlocks.Lanes + lane] += 1;
+            values[_electrodes[first + lane] * ILoadBlocks.Lanes + lane] += 1;
             values[_electrodes[Pairs] * ILoadBlocks.Lanes + lane] -= 1;
         }
     }
 
-    /// <summary>Live nodes get 0.12 m / distance to a pole outside the head, less the mean.</summary>
-    private void FillDense(Span<float> values, Vector512<float> weight, Vector512<float> px, Vector512<float> py, Vector512<float> pz)
+    /// <summary>Coils at R with moment m: sigma (R - r) x m / |R - r|^3 in the middle of each element, spread over its corners with their gradients there.</summary>
+    private void AddCoils(Span<float> values, ReadOnlySpan<float> lanes)
     {
-        if (weight == Vector512<float>.Zero)
-        {
-            return;
-        }
-
         Span<Vector512<float>> nodes = MemoryMarshal.Cast<float, Vector512<float>>(values);
-        Vector512<double> low = Vector512<double>.Zero, high = low;
-        int count = 0;
-        for (int n = 0; n < nodes.Length; n++)
+        ReadOnlySpan<Vector512<float>> coil = MemoryMarshal.Cast<float, Vector512<float>>(lanes);
+        (Vector512<float> px, Vector512<float> py, Vector512<float> pz, Vector512<float> mx, Vector512<float> my, Vector512<float> mz) = (coil[0], coil[1], coil[2], coil[3], coil[4], coil[5]);
+        VoxelGrid grid = _mesh.Volume.Grid;
+        var edge = (float)grid.ToWorld.Row0.X;
+        for (int k = 0; k < grid.Nz; k++)
         {
-            if (_live[n])
+            for (int j = 0; j < grid.Ny; j++)
             {
-                Vector512<float> dx = px - Vector512.Create(_nodes[n].X), dy = py - Vector512.Create(_nodes[n].Y), dz = pz - Vector512.Create(_nodes[n].Z);
-                nodes[n] = weight * Vector512.Create(0.12f) / Vector512.Sqrt(dx * dx + dy * dy + dz * dz);
-                (Vector512<double> l, Vector512<double> h) = Vector512.Widen(nodes[n]);
-                (low, high, count) = (low + l, high + h, count + 1);
-            }
-        }
+                for (int i = 0; i < grid.Nx; i++)
+                {
+                    byte tissue = _mesh.Volume.Cells[grid.Index(i, j, k)];
+                    if (tissue == 0)
+                    {
+                        continue;
+                    }
 
-        Vector512<float> mean = Vector512.Narrow(low / count, high / count);
-        for (int n = 0; n < nodes.Length; n++)
-        {
-            nodes[n] = _live[n] ? nodes[n] - mean : Vector512<float>.Zero;
+                    Vec3 centre = grid.Centre(i, j, k);
+                    Vector512<float> x = px - Vector512.Create((float)centre.X), y = py - Vector512.Create((float)centre.Y), z = pz - Vector512.Create((float)centre.Z);
+                    Vector512<float> square = x * x + y * y + z * z;
+                    Vector512<float> scale = Vector512.Create((float)(_mesh.Volume.Tissues[tissue].Conductivity * edge * edge / 4)) / (square * Vector512.Sqrt(square));
+                    Vector512<float> fx = scale * (y * mz - z * my), fy = scale * (z * mx - x * mz), fz = scale * (x * my - y * mx);
+                    for (int line = 0; line < 4; line++)
+                    {
+                        int node = _rows[j + (line & 1) + _mesh.Nodes.Ny * (k + (line >> 1))] + i;
+                        Vector512<float> across = ((line & 1) == 0 ? -fy : fy) + ((line & 2) == 0 ? -fz : fz);
+                        nodes[node] += across - fx;
+                        nodes[node + 1] += across + fx;
+                    }
+                }
+            }
         }
     }
 

@@ -7,20 +7,51 @@ namespace DeepSourceCheck.Core.Numerics.Multigrid;
 /// <summary>The vector updates of conjugate gradients over a stretch of nodes, each lane with its own factor.</summary>
 internal static unsafe class LaneUpdates
 {
-    /// <summary>r -= alpha q; adds r . r to the sums.</summary>
-    public static void ReduceResidual(int start, int length, Vector512<float> alpha, float* q, float* r, ref LaneSums sums)
+    /// <summary>r -= alpha q + mean; adds r . r, and r itself to its piece's total.</summary>
+    /// <param name="start">First node.</param>
+    /// <param name="length">Nodes.</param>
+    /// <param name="alpha">Factors.</param>
+    /// <param name="q">A p.</param>
+    /// <param name="r">Residual.</param>
+    /// <param name="pieces">Piece of node 0 and on, or null where all nodes are of piece 0; nodes of piece -1 stay zero.</param>
+    /// <param name="means">What is taken off the nodes of each piece.</param>
+    /// <param name="totals">Sums of r over each piece.</param>
+    /// <param name="squares">Sums of r . r.</param>
+    public static void ReduceResidual(
+        int start, int length, Vector512<float> alpha, float* q, float* r, int* pieces, ReadOnlySpan<Vector512<float>> means, Span<LaneSums> totals, ref LaneSums squares)
     {
-        LaneSums local = sums;
+        LaneSums local = squares;
         float* to = r + (nint)start * Lanes;
         float* from = q + (nint)start * Lanes;
-        for (int n = 0; n < length; n++, to += Lanes, from += Lanes)
+        if (pieces == null)
         {
-            Vector512<float> value = Fma(-alpha, Load(from), Load(to));
-            value.Store(to);
-            local.Add(value * value);
+            Vector512<float> mean = means[0], total = Vector512<float>.Zero;        // a row is short: its sum loses nothing in single precision
+            for (int n = 0; n < length; n++, to += Lanes, from += Lanes)
+            {
+                Vector512<float> value = Fma(-alpha, Load(from), Load(to) - mean);
+                value.Store(to);
+                total += value;
+                local.Add(value * value);
+            }
+
+            totals[0].Add(total);
+        }
+        else
+        {
+            for (int n = 0; n < length; n++, to += Lanes, from += Lanes)
+            {
+                int piece = pieces[start + n];
+                if (piece >= 0)
+                {
+                    Vector512<float> value = Fma(-alpha, Load(from), Load(to) - means[piece]);
+                    value.Store(to);
+                    totals[piece].Add(value);
+                    local.Add(value * value);
+                }
+            }
         }
 
-        sums = local;
+        squares = local;
     }
 
     /// <summary>x += alpha p, then p = z + beta p.</summary>

@@ -5,7 +5,18 @@ internal sealed class Pieces
 {
     private readonly int[]? _pieces;
 
-    private Pieces(int[]? pieces, int[] sizes) => (_pieces, Sizes) = (pieces, sizes);
+    private Pieces(int[]? pieces, int[] sizes)
+    {
+        Sizes = sizes;
+        if (pieces is not null)
+        {
+            _pieces = GC.AllocateUninitializedArray<int>(pieces.Length, pinned: true);
+            pieces.CopyTo(_pieces, 0);
+        }
+    }
+
+    /// <summary>Piece of node 0 and on; null where all nodes are of piece 0. Lives as long as this object.</summary>
+    public unsafe int* Map => _pieces is null ? null : (int*)System.Runtime.CompilerServices.Unsafe.AsPointer(ref System.Runtime.InteropServices.MemoryMarshal.GetArrayDataReference(_pieces));
 
     /// <summary>Nodes of each piece, in the order of their first nodes.</summary>
     public IReadOnlyList<int> Sizes { get; }

@@ -59,13 +59,13 @@ internal static unsafe class StencilProduct
         }
     }
 
-    /// <summary>r = b - A x with differences, products and sums in double precision; adds r . r to the sums.</summary>
-    public static void ExactResidual(StencilOperator a, int row, int start, int length, float* b, float* x, float* r, ref LaneSums sums)
+    /// <summary>r = b - A x with differences, products and sums in double precision; adds r . r to the sums, and to the others the squares of a_ii x_i.</summary>
+    public static void ExactResidual(StencilOperator a, int row, int start, int length, float* b, float* x, float* r, ref LaneSums sums, ref LaneSums sizes)
     {
         float* table = a.Table;
         int* index = a.Index + start;
         nint* step = a.Rows.Steps + (nint)StencilRows.Around * row;
-        LaneSums local = sums;
+        LaneSums local = sums, size = sizes;
         for (int n = 0; n < length; n++)
         {
             float* c = table + (nint)index[n] * Stencil.Stride;
@@ -86,9 +86,11 @@ internal static unsafe class StencilProduct
             local.Low += low * low;
             local.High += high * high;
             Vector512.Narrow(low, high).Store(r + (nint)(start + n) * Lanes);
+            Vector512<float> diagonal = c[Stencil.Centre] > 0 ? Vector512.Create(1 / c[Stencil.Centre]) * Load(u) : Vector512<float>.Zero;
+            size.Add(diagonal * diagonal);
         }
 
-        sums = local;
+        (sums, sizes) = (local, size);
     }
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
