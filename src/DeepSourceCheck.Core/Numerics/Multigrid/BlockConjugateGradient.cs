@@ -30,7 +30,7 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
     private const double LargestNet = 1e-4;
 
     private readonly Vector512<float>[] _means = new Vector512<float>[pieces.Count];
-    private readonly LaneSums[] _totals = new LaneSums[pieces.Count];
+    private readonly LaneSums[] _totals = new LaneSums[pieces.Count], _shifts = new LaneSums[pieces.Count];
     private readonly double[] _norm = new double[Lanes], _rr = new double[Lanes], _rz = new double[Lanes], _pq = new double[Lanes], _sums = new double[Lanes], _floor = new double[Lanes];
     private readonly float[] _alpha = new float[Lanes], _beta = new float[Lanes];
     private readonly bool[] _done = new bool[Lanes];
@@ -57,6 +57,7 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
 
         Dot(v.Load, v.Load, _norm);
         NestedIteration.Start(levels, v);
+        MeanProjection.Apply(pieces, v.Solution, _sums);
         StartResidual();
         Array.Clear(Iterations);
         Array.Clear(_floor);
@@ -90,6 +91,7 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
         Array.Clear(_alpha);
         Array.Clear(_beta);
         Array.Clear(_totals);
+        Array.Clear(_shifts);
         double least = double.PositiveInfinity;
         int since = 0;
         for (int lane = 0; lane < Lanes; lane++)
@@ -148,7 +150,7 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
     /// <summary>r -= alpha q, r.r; forward sweep for z; restriction of its residual; corrections on the coarser levels.</summary>
     private void SweepDown(Vector512<float> alpha, double[] rr)
     {
-        TakeMeans();
+        TakeMeans(_totals);
         var sums = default(LaneSums);
         bool direct = levels.Levels == 1;
         if (!direct)
@@ -183,13 +185,14 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
         if (levels.Levels == 1)
         {
             levels.Coarsest.Apply(v.Residual.At, v.Work.At);
-            Dot(v.Work, v.Residual, rz);
+            Dot(v.Work, v.Residual, rz);           // the inverse returns no mean
             return;
         }
 
         int last = A.Grid.Nz - 1;
         WCycle.RestrictResidual(levels, v, 0, last, sweptFromZero: true);
         WCycle.Correct(levels, v, 0);
+        Array.Clear(_shifts);
         var sums = default(LaneSums);
         WCycle.Prolong(levels, v, 0, last);
         for (int plane = last; plane >= 0; plane--)
@@ -199,7 +202,7 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
             {
                 A.Rows.Row(y, plane, out int start, out int length);
                 GaussSeidel.Backward(A, y + A.Grid.Ny * plane, start, length, v.Residual.At, v.Work.At);
-                LaneUpdates.Dot(start, length, v.Work.At, v.Residual.At, ref sums);
+                LaneUpdates.DotAndTotal(start, length, v.Work.At, v.Residual.At, pieces.Map, _shifts, ref sums);
             }
         }
 
@@ -209,6 +212,7 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
     /// <summary>x += alpha p; p = z + beta p; q = A p; p.q.</summary>
     private void Multiply(Vector512<float> alpha, Vector512<float> beta, double[] pq)
     {
+        TakeMeans(_shifts);
         var sums = default(LaneSums);
         for (int plane = 0; plane <= A.Grid.Nz; plane++)
         {
@@ -217,7 +221,7 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
                 if (plane < A.Grid.Nz)
                 {
                     A.Rows.Row(y, plane, out int start, out int length);
-                    LaneUpdates.Advance(start, length, alpha, beta, v.Solution.At, v.Direction.At, v.Work.At);
+                    LaneUpdates.Advance(start, length, alpha, beta, v.Solution.At, v.Direction.At, v.Work.At, pieces.Map, _means);
                 }
             }
 
@@ -232,16 +236,16 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
     }
 
     /// <summary>
-    /// The means over each piece of the last residual, taken off in the next pass. Right-hand sides rounded to single precision are not exactly free of a mean; left in r, it would
-    /// become a direction without energy and an alpha without bound.
+    /// Makes means of totals over each piece; the next pass takes them off. Right-hand sides rounded to single precision are not exactly free of a mean: left in r, it would become a
+    /// direction without energy and an alpha without bound; left in z, it would grow in x and drown the differences.
     /// </summary>
-    private void TakeMeans()
+    private void TakeMeans(LaneSums[] totals)
     {
         for (int piece = 0; piece < _means.Length; piece++)
         {
             var count = Vector512.Create((double)pieces.Sizes[piece]);
-            _means[piece] = Vector512.Narrow(_totals[piece].Low / count, _totals[piece].High / count);
-            _totals[piece] = default;
+            _means[piece] = Vector512.Narrow(totals[piece].Low / count, totals[piece].High / count);
+            totals[piece] = default;
         }
     }
 

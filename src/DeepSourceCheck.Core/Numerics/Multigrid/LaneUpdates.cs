@@ -54,15 +54,36 @@ internal static unsafe class LaneUpdates
         squares = local;
     }
 
-    /// <summary>x += alpha p, then p = z + beta p.</summary>
-    public static void Advance(int start, int length, Vector512<float> alpha, Vector512<float> beta, float* x, float* p, float* z)
+    /// <summary>x += alpha p, then p = z - mean + beta p.</summary>
+    /// <param name="start">First node.</param>
+    /// <param name="length">Nodes.</param>
+    /// <param name="alpha">Factors for x.</param>
+    /// <param name="beta">Factors for p.</param>
+    /// <param name="x">Solution.</param>
+    /// <param name="p">Direction.</param>
+    /// <param name="z">Preconditioned residual.</param>
+    /// <param name="pieces">As in <see cref="ReduceResidual"/>.</param>
+    /// <param name="means">What is taken off the nodes of each piece.</param>
+    public static void Advance(int start, int length, Vector512<float> alpha, Vector512<float> beta, float* x, float* p, float* z, int* pieces, ReadOnlySpan<Vector512<float>> means)
     {
         nint at = (nint)start * Lanes;
+        Vector512<float> mean = means[0];
         for (int n = 0; n < length; n++, at += Lanes)
         {
+            if (pieces != null)
+            {
+                int piece = pieces[start + n];
+                if (piece < 0)
+                {
+                    continue;
+                }
+
+                mean = means[piece];
+            }
+
             Vector512<float> direction = Load(p + at);
             Fma(alpha, direction, Load(x + at)).Store(x + at);
-            Fma(beta, direction, Load(z + at)).Store(p + at);
+            Fma(beta, direction, Load(z + at) - mean).Store(p + at);
         }
     }
 
@@ -86,6 +107,37 @@ internal static unsafe class LaneUpdates
             local.Add(Load(a + at) * Load(b + at));
         }
 
+        sums = local;
+    }
+
+    /// <summary>Adds z . r to the sums, and z itself to its piece's total.</summary>
+    /// <param name="start">First node.</param>
+    /// <param name="length">Nodes.</param>
+    /// <param name="z">Preconditioned residual.</param>
+    /// <param name="r">Residual.</param>
+    /// <param name="pieces">As in <see cref="ReduceResidual"/>.</param>
+    /// <param name="totals">Sums of z over each piece.</param>
+    /// <param name="sums">Sums of z . r.</param>
+    public static void DotAndTotal(int start, int length, float* z, float* r, int* pieces, Span<LaneSums> totals, ref LaneSums sums)
+    {
+        LaneSums local = sums;
+        nint at = (nint)start * Lanes;
+        Vector512<float> total = Vector512<float>.Zero;
+        for (int n = 0; n < length; n++, at += Lanes)
+        {
+            Vector512<float> value = Load(z + at);
+            local.Add(value * Load(r + at));
+            if (pieces == null)
+            {
+                total += value;
+            }
+            else if (pieces[start + n] is >= 0 and int piece)
+            {
+                totals[piece].Add(value);
+            }
+        }
+
+        totals[0].Add(total);
         sums = local;
     }
 }
