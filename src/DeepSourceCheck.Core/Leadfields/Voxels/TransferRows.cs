@@ -81,14 +81,11 @@ public sealed class TransferRows
         }
     }
 
-    /// <summary>Overwrites values from a store, which must hold those of the same nodes and sensors; for reading a cache.</summary>
+    /// <summary>Overwrites values from a store, which must hold those of the same nodes and sensors; for reading a cache. Several threads may, each with its own stretch.</summary>
     /// <param name="start">First value.</param>
-    /// <param name="read">Overwrites what it is given.</param>
     /// <param name="count">Number of values.</param>
-    public void Load(int start, int count, SpanReader read) => read(Whole.Slice(start, count));
-
-    /// <summary>Overwrites a stretch of values [V/A], [T/A] or [T/m/A].</summary>
-    public delegate void SpanReader(Span<float> values);
+    /// <param name="read">Overwrites what it is given.</param>
+    public void Load(int start, int count, Action<Span<float>> read) => read(Whole.Slice(start, count));
 
     private static int Padded(int sensors) => (sensors + Lanes - 1) / Lanes * Lanes;
 }

@@ -1,3 +1,4 @@
+using System.Globalization;
 using System.Runtime.InteropServices;
 
 using DeepSourceCheck.Core.Geometry;
@@ -22,7 +23,7 @@ public class RowCacheTests
         return new(grid, [.. Enumerable.Repeat((byte)1, grid.Count)], [new(0, "air", TissueKind.Air, 0), new(1, "grey", TissueKind.Grey, 0.33)]);
     }
 
-    private static string Key(int n) => n.ToString("x64", null);
+    private static string Key(int n) => n.ToString("x64", CultureInfo.InvariantCulture);
 
     private static TransferRows Rows(int seed = 1)
     {
