@@ -1,6 +1,5 @@
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads.Voxels;
-using DeepSourceCheck.Core.Numerics.Multigrid;
 
 namespace DeepSourceCheck.Core.Leadfields.Voxels;
 
