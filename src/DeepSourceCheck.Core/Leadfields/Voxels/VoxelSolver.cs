@@ -50,7 +50,8 @@ public sealed class VoxelSolver
         var classes = new NodeClasses(mesh, tensors);
         long table = (long)(classes.Shared + classes.Own) * Stencil.Stride * sizeof(float) + mesh.Nodes.Count * (long)sizeof(int);
         long setUp = (mesh.IsAdapted ? 24L * mesh.Nodes.Count : 0) + mesh.Volume.Grid.Count + 4L * mesh.Nodes.Count;
-        return table + setUp + MultigridHierarchy.PredictCoarse(mesh.Nodes.Count) + threads * CycleVectors.Predict(mesh.Nodes.Count, mesh.Nodes.Nx);
+        IReadOnlyList<RowGrid> grids = MultigridHierarchy.Grids(mesh.Nodes);
+        return table + setUp + MultigridHierarchy.PredictCoarse(grids) + threads * CycleVectors.Predict(grids);
     }
 
     /// <summary>Solves for all loads.</summary>

@@ -9,6 +9,9 @@ namespace DeepSourceCheck.Core.Numerics.Multigrid;
 /// <summary>Operator-dependent interpolation for a 27-point operator.</summary>
 internal static class BlackBoxInterpolation
 {
+    /// <summary>Weights below this are rounding of couplings that cancel, or carry nothing; kept, their products would sink below the range of single precision on coarser levels.</summary>
+    private const double LeastWeight = 1e-4;
+
     /// <summary>The interpolation to the grid of an operator from its coarsened grid.</summary>
     /// <param name="fine">The operator.</param>
     /// <param name="threads">Threads; the result does not depend on them.</param>
@@ -82,11 +85,16 @@ internal static class BlackBoxInterpolation
             }
         }
 
-        double total = 0;
+        double largest = 0, total = 0;
         int count = 0;
         for (int corner = 0; corner < 8; corner++)
         {
-            sums[corner] = Math.Max(0, sums[corner]);
+            largest = Math.Max(largest, sums[corner]);
+        }
+
+        for (int corner = 0; corner < 8; corner++)
+        {
+            sums[corner] = sums[corner] < LeastWeight * largest ? 0 : sums[corner];
             total += sums[corner];
             count += corners[corner] >= 0 ? 1 : 0;
         }
@@ -95,7 +103,7 @@ internal static class BlackBoxInterpolation
         {
             if (corners[corner] >= 0)
             {
-                double weight = total > 0 ? sums[corner] / total : 1.0 / count;
+                double weight = largest > 0 ? sums[corner] / total : 1.0 / count;
                 weights[corners[corner] * Stencil.Stride + PlaceOf(at, corner)] = (float)weight;
             }
         }

@@ -45,8 +45,12 @@ internal sealed unsafe class CycleVectors : IDisposable
     /// <summary>Residuals of one row of nodes.</summary>
     public LaneVector Row { get; }
 
-    /// <summary>Memory [bytes] for a grid, at most.</summary>
-    public static long Predict(long nodes, int nx) => (long)((FinestVectors + 2 * 1.2 / 7) * (nodes + 2.0 * (nx + 2)) * ILoadBlocks.Lanes * sizeof(float));
+    /// <summary>Memory [bytes].</summary>
+    public long Bytes => _all.Sum(v => v.Bytes);
+
+    /// <summary>Memory [bytes] for the grids of all levels, the finest first.</summary>
+    public static long Predict(IReadOnlyList<RowGrid> grids) =>
+        grids.Select((g, level) => (level == 0 ? FinestVectors : 2) * LaneVector.BytesOf(g.Count, g.Nx + 2)).Sum() + LaneVector.BytesOf(grids[0].Nx, 4);
 
     /// <inheritdoc/>
     public void Dispose() => _all.ForEach(v => v.Dispose());

@@ -12,8 +12,9 @@ internal static class GalerkinProduct
     /// <summary>P' A P.</summary>
     /// <param name="fine">A.</param>
     /// <param name="transfer">P.</param>
+    /// <param name="negligible">Couplings below this are zero, in the unit of A: nodes that carry nothing are left out instead of sinking below the range of single precision.</param>
     /// <param name="threads">Threads; the result does not depend on them.</param>
-    public static StencilOperator Of(StencilOperator fine, GridTransfer transfer, int threads)
+    public static StencilOperator Of(StencilOperator fine, GridTransfer transfer, double negligible, int threads)
     {
         RowGrid coarse = transfer.Coarse;
         float[] table = GC.AllocateArray<float>(coarse.Count * Stencil.Stride, pinned: true);
@@ -28,7 +29,7 @@ internal static class GalerkinProduct
                 {
                     int node = offset + n;
                     index[node] = node;
-                    Node(fine, transfer, (first + n, y, z), node, b, table.AsSpan(node * Stencil.Stride, Stencil.Size));
+                    Node(fine, transfer, negligible, (first + n, y, z), node, b, table.AsSpan(node * Stencil.Stride, Stencil.Size));
                 }
             }
         });
@@ -36,7 +37,7 @@ internal static class GalerkinProduct
         return new StencilOperator(coarse, table, index);
     }
 
-    private static void Node(StencilOperator fine, GridTransfer transfer, (int X, int Y, int Z) at, int node, Span<double> b, Span<float> row)
+    private static void Node(StencilOperator fine, GridTransfer transfer, double negligible, (int X, int Y, int Z) at, int node, Span<double> b, Span<float> row)
     {
         b.Clear();
         bool any = false;
@@ -69,7 +70,8 @@ internal static class GalerkinProduct
                 int other = transfer.Coarse.IndexOf(at.X + cx, at.Y + cy, at.Z + cz);
                 if (other >= 0 && (cx, cy, cz) != (0, 0, 0))
                 {
-                    row[3 * line + cx + 1] = (float)-Gather(transfer.Weights(other), b, cx, cy, cz);
+                    double coupling = -Gather(transfer.Weights(other), b, cx, cy, cz);
+                    row[3 * line + cx + 1] = Math.Abs(coupling) < negligible ? 0 : (float)coupling;
                 }
             }
         }

@@ -20,16 +20,17 @@ internal sealed unsafe class LaneVector : IDisposable
         _memory = NativeMemory.AlignedAlloc(bytes, 4096);
         NativeMemory.Clear(_memory, bytes);
         GC.AddMemoryPressure((long)bytes);
-        _pressure = (long)bytes;
+        Bytes = (long)bytes;
         At = (float*)_memory + (nint)margin * ILoadBlocks.Lanes;
     }
-
-    private readonly long _pressure;
 
     ~LaneVector() => Free();
 
     /// <summary>Nodes.</summary>
     public int Nodes { get; }
+
+    /// <summary>Memory [bytes].</summary>
+    public long Bytes { get; }
 
     /// <summary>Lane 0 of node 0.</summary>
     public float* At { get; }
@@ -53,7 +54,7 @@ internal sealed unsafe class LaneVector : IDisposable
         {
             NativeMemory.AlignedFree(_memory);
             _memory = null;
-            GC.RemoveMemoryPressure(_pressure);
+            GC.RemoveMemoryPressure(Bytes);
         }
     }
 }

@@ -63,6 +63,18 @@ internal sealed unsafe class StencilOperator
         row[Stencil.Centre] = diagonal > 0 ? (float)(1.0 / diagonal) : 0;
     }
 
+    /// <summary>The largest a_ii.</summary>
+    public double LargestDiagonal()
+    {
+        double least = double.PositiveInfinity;
+        for (int at = Stencil.Centre; at < _table.Length; at += Stencil.Stride)
+        {
+            least = _table[at] > 0 ? Math.Min(least, _table[at]) : least;
+        }
+
+        return 1 / least;
+    }
+
     /// <summary>a_ii: the sum of the couplings.</summary>
     public static double Diagonal(ReadOnlySpan<float> row)
     {

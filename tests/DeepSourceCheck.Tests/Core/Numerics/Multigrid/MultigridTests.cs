@@ -1,12 +1,17 @@
 using DeepSourceCheck.Core.Leadfields.Voxels;
 using DeepSourceCheck.Core.Numerics.Multigrid;
 using DeepSourceCheck.Tests.Core.Leadfields.Voxels;
+using DeepSourceCheck.Tests.References;
+using DeepSourceCheck.Tests.Support;
 
 namespace DeepSourceCheck.Tests.Core.Numerics.Multigrid;
 
 /// <summary>The parts of the cycle: each against its plain scalar twin or the property it must have.</summary>
 public class MultigridTests
 {
+    /// <summary>Single against double precision over a whole cycle, relative to the largest value.</summary>
+    private const double CycleRounding = 1e-4;
+
     public static TheoryData<string, bool, bool> Cases => HexStiffnessTests.Cases;
 
     [Theory]
@@ -92,6 +97,38 @@ public class MultigridTests
             }
         }
     }
+
+    [Theory]
+    [InlineData("cubes", false)]
+    [InlineData("flat", true)]
+    [InlineData("oblique", true)]
+    public void Cycle_IsTheScalarTwin(string map, bool adapted)
+    {
+        // Large enough for three levels: the second one is visited twice, from zero and from what it holds.
+        HexMesh mesh = HexMesh.Plain(LabelledHeads.Layered(21, 18, 23, map == "cubes" ? LabelledHeads.Cubes : map == "flat" ? LabelledHeads.Flat : LabelledHeads.Oblique));
+        var levels = new MultigridHierarchy(HexStiffness.Assemble(adapted ? AdaptedNodes.Adapt(mesh) : mesh, null, 1), 2);
+        Assert.Equal(3, levels.Levels);
+        using var v = new CycleVectors(levels);
+        Randomise(v.Residual, levels.Operators[0], 4);
+        Pieces pieces = Pieces.Of(levels.Operators[0]);
+        MeanProjection.Apply(pieces, v.Residual, stackalloc double[ILoadBlocks.Lanes]);
+        WCycle.Cycle(levels, v, 0, true);
+        foreach (int lane in new[] { 0, 7, 15 })
+        {
+            double[] slow = PlainMultigrid.Cycle(levels, 0, Lane(v.Residual, lane));
+            RelativeAssert.Close(slow, Lane(v.Work, lane), CycleRounding, $"lane {lane}");
+        }
+    }
+
+    [Fact]
+    public void Coarsening_EndsWithAtMostFourHundredNodes()
+    {
+        MultigridHierarchy levels = Levels("cubes", true, false);
+        Assert.True(levels.Coarsest.Nodes <= 400);
+        Assert.True(levels.Operators[0].Grid.Count > 400);
+    }
+
+    private static double[] Lane(LaneVector vector, int lane) => [.. Enumerable.Range(0, vector.Nodes).Select(n => (double)vector.Span[n * ILoadBlocks.Lanes + lane])];
 
     internal static MultigridHierarchy Levels(string map, bool adapted, bool anisotropic)
     {
