@@ -54,6 +54,49 @@ public sealed class RowGrid
         return (_first[row], _length[row], _offset[row]);
     }
 
+    /// <summary>Number that node (0, y, z) would have: the number of node (x, y, z) is this plus x, wherever the row runs; null for an empty row or one outside the grid.</summary>
+    internal int? Base(int y, int z)
+    {
+        if ((uint)y >= (uint)Ny || (uint)z >= (uint)Nz)
+        {
+            return null;
+        }
+
+        int row = y + Ny * z;
+        return _length[row] > 0 ? _offset[row] - _first[row] : null;
+    }
+
+    /// <summary>The grid of every second node along each axis, wide enough that each node of this one lies on or between nodes of it.</summary>
+    internal RowGrid Coarsened()
+    {
+        int nx = Nx / 2 + 1, ny = Ny / 2 + 1, nz = Nz / 2 + 1;
+        var first = new int[ny * nz];
+        var length = new int[ny * nz];
+        for (int z = 0; z < nz; z++)
+        {
+            for (int y = 0; y < ny; y++)
+            {
+                int from = int.MaxValue, to = -1;
+                for (int fz = Math.Max(0, 2 * z - 1); fz <= Math.Min(Nz - 1, 2 * z + 1); fz++)
+                {
+                    for (int fy = Math.Max(0, 2 * y - 1); fy <= Math.Min(Ny - 1, 2 * y + 1); fy++)
+                    {
+                        int row = fy + Ny * fz;
+                        if (_length[row] > 0)
+                        {
+                            from = Math.Min(from, _first[row] / 2);
+                            to = Math.Max(to, (_first[row] + _length[row]) / 2);
+                        }
+                    }
+                }
+
+                (first[y + ny * z], length[y + ny * z]) = to >= 0 ? (from, to - from + 1) : (0, 0);
+            }
+        }
+
+        return new RowGrid(nx, ny, nz, first, length);
+    }
+
     /// <summary>Number of node (x, y, z); -1 where there is none.</summary>
     public int IndexOf(int x, int y, int z)
     {

@@ -1,0 +1,156 @@
+using System.Runtime.CompilerServices;
+using System.Runtime.InteropServices;
+using System.Runtime.Intrinsics;
+
+using static DeepSourceCheck.Core.Numerics.Multigrid.LaneMath;
+
+namespace DeepSourceCheck.Core.Numerics.Multigrid;
+
+// DenseCoarseInverse.cs - the coarsest level, solved exactly.
+//   Constants on each unconnected piece are in the kernel of A. With s the mean diagonal and 1 the constant of a piece of m nodes, A + sum_pieces s 1 1'/m is regular; from
+//   its inverse sum_pieces 1 1'/(s m) is taken off again: what remains is the pseudo-inverse, which returns no constant and answers none.
+
+/// <summary>The pseudo-inverse of the coarsest operator as a dense matrix.</summary>
+internal sealed unsafe class DenseCoarseInverse
+{
+    /// <summary>Nodes below which a level is solved this way: 400 x 400 floats stay in the second-level cache.</summary>
+    public const int MostNodes = 400;
+
+    private readonly float[] _inverse;
+
+    /// <param name="a">The coarsest operator.</param>
+    public DenseCoarseInverse(StencilOperator a)
+    {
+        int n = a.Grid.Count;
+        var matrix = new double[n, n];
+        double trace = 0;
+        for (int node = 0; node < n; node++)
+        {
+            (int x, int y, int z) = a.Grid.Node(node);
+            ReadOnlySpan<float> row = a.Row(node);
+            for (int k = 0; k < Stencil.Size; k++)
+            {
+                (int dx, int dy, int dz) = Stencil.Step(k);
+                if (k != Stencil.Centre && row[k] != 0 && a.Grid.IndexOf(x + dx, y + dy, z + dz) is >= 0 and int other)
+                {
+                    // Both triangles rounded to single precision apart: their mean is symmetric to the last bit.
+                    matrix[node, other] -= 0.5 * row[k];
+                    matrix[other, node] -= 0.5 * row[k];
+                    matrix[node, node] += 0.5 * row[k];
+                    matrix[other, other] += 0.5 * row[k];
+                    trace += row[k];
+                }
+            }
+        }
+
+        double scale = trace > 0 ? trace / n : 1.0;
+        int[][] pieces = [.. Pieces.Of(a).Members()];
+        AddConstants(matrix, pieces, scale);
+        Invert(matrix, n);
+        AddConstants(matrix, pieces, -1.0 / scale);
+        _inverse = GC.AllocateUninitializedArray<float>(n * n, pinned: true);
+        for (int i = 0; i < n; i++)
+        {
+            for (int j = 0; j < n; j++)
+            {
+                _inverse[i * n + j] = (float)(0.5 * (matrix[i, j] + matrix[j, i]));
+            }
+        }
+
+        Nodes = n;
+    }
+
+    /// <summary>Nodes.</summary>
+    public int Nodes { get; }
+
+    /// <summary>z = pseudo-inverse times b.</summary>
+    public void Apply(float* b, float* z)
+    {
+        float* m = (float*)Unsafe.AsPointer(ref MemoryMarshal.GetArrayDataReference(_inverse));
+        int n = Nodes, i = 0;
+        for (; i + 4 <= n; i += 4)
+        {
+            Vector512<float> s0 = Vector512<float>.Zero, s1 = s0, s2 = s0, s3 = s0;
+            float* m0 = m + (nint)i * n;
+            for (int j = 0; j < n; j++)
+            {
+                Vector512<float> v = Load(b + (nint)j * Lanes);
+                s0 = Fma(All(m0 + j), v, s0);
+                s1 = Fma(All(m0 + n + j), v, s1);
+                s2 = Fma(All(m0 + 2 * n + j), v, s2);
+                s3 = Fma(All(m0 + 3 * n + j), v, s3);
+            }
+
+            float* to = z + (nint)i * Lanes;
+            s0.Store(to);
+            s1.Store(to + Lanes);
+            s2.Store(to + 2 * Lanes);
+            s3.Store(to + 3 * Lanes);
+        }
+
+        for (; i < n; i++)
+        {
+            Vector512<float> sum = Vector512<float>.Zero;
+            for (int j = 0; j < n; j++)
+            {
+                sum = Fma(All(m + (nint)i * n + j), Load(b + (nint)j * Lanes), sum);
+            }
+
+            sum.Store(z + (nint)i * Lanes);
+        }
+    }
+
+    private static void AddConstants(double[,] matrix, int[][] pieces, double scale)
+    {
+        foreach (int[] piece in pieces)
+        {
+            foreach (int i in piece)
+            {
+                foreach (int j in piece)
+                {
+                    matrix[i, j] += scale / piece.Length;
+                }
+            }
+        }
+    }
+
+    /// <summary>Gauss-Jordan in place, without pivoting: the matrix is positive definite.</summary>
+    private static void Invert(double[,] m, int n)
+    {
+        for (int k = 0; k < n; k++)
+        {
+            double pivot = 1.0 / m[k, k];
+            m[k, k] = 1.0;
+            Span<double> row = MemoryMarshal.CreateSpan(ref m[k, 0], n);
+            for (int j = 0; j < n; j++)
+            {
+                row[j] *= pivot;
+            }
+
+            for (int i = 0; i < n; i++)
+            {
+                double factor = m[i, k];
+                if (i != k && factor != 0)
+                {
+                    m[i, k] = 0;
+                    Subtract(factor, row, MemoryMarshal.CreateSpan(ref m[i, 0], n));
+                }
+            }
+        }
+    }
+
+    private static void Subtract(double factor, Span<double> row, Span<double> from)
+    {
+        int wide = row.Length - row.Length % Vector512<double>.Count;
+        var times = Vector512.Create(factor);
+        for (int j = 0; j < wide; j += Vector512<double>.Count)
+        {
+            (Vector512.Create<double>(from[j..]) - times * Vector512.Create<double>(row[j..])).CopyTo(from[j..]);
+        }
+
+        for (int j = wide; j < row.Length; j++)
+        {
+            from[j] -= factor * row[j];
+        }
+    }
+}
