@@ -18,10 +18,10 @@ internal static class PhantomCerebellum
     public static double Hull(Vec3 p, double cavity)
     {
         Vec3 a = p with { X = Math.Abs(p.X) };
-        double d = Ellipsoid(Lean.ApplyInverse(a - new Vec3(25.5, -62.5, -35)), new(29, 34, 26));
-        d = Union(d, Ellipsoid(p - new Vec3(0, -66, -30), new(14, 25, 25)), 6);
+        double d = Ellipsoid(Lean.ApplyInverse(a - new Vec3(25, -67, -36)), new(33, 36, 30));
+        d = Union(d, Ellipsoid(p - new Vec3(0, -68, -33), new(16, 26, 29)), 6);
         d = Intersection(d, cavity + 1.7, 3);
-        d = Intersection(d, p.Z - PhantomCortex.Tentorium(p) + 1.4, 3);
+        d = Intersection(d, p.Z - PhantomCortex.Tentorium(p) + 0.9, 3);
 
         // The notch between the halves behind and below.
         return Difference(d, Ellipsoid(p - new Vec3(0, -96, -50), new(4, 14, 22)), 5);
@@ -43,7 +43,7 @@ internal static class PhantomCerebellum
         bool deep = (long)whole % 3 == 0;
         double reach = Math.Min(deep ? 17 : 8, rho - 5);
         double below = Math.Max(depth - reach, 0);
-        double pial = Math.Max(hull, (deep ? 0.6 : 0.35) - Math.Sqrt(across * across + below * below));
+        double pial = Math.Max(hull, (deep ? 0.45 : 0.25) - Math.Sqrt(across * across + below * below));
         return pial > 0 ? TissueKind.Csf : pial > -Grey ? TissueKind.Grey : TissueKind.White;
     }
 }

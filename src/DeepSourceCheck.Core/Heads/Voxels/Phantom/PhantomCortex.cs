@@ -27,12 +27,12 @@ internal sealed class PhantomCortex(double sulcusWidth)
     /// <summary>Distance to the hull of the hemispheres: the cavity without its lining of fluid, the fissure between them, what lies below the tentorium, and the cisterns.</summary>
     public static double Hull(Vec3 p, double cavity)
     {
-        double lining = 1.9 + 0.6 * Gap.Value(p) + 1.0 * Step(40, 75, p.Z) + 0.8 * Step(75, 105, -p.Y);
+        double lining = 1.3 + 0.5 * Gap.Value(p) + 0.8 * Step(40, 75, p.Z) + 0.8 * Step(75, 105, -p.Y);
         double hull = cavity + Math.Max(lining, 0.8);
         double x = Math.Abs(p.X);
-        double fissure = Math.Max(x - 1.2 - 0.4 * Step(10, 60, PhantomMidline.CallosalOutline(p)), -PhantomMidline.CallosalOutline(p));
+        double fissure = Math.Max(x - 1.1 - 0.4 * Step(10, 60, PhantomMidline.CallosalOutline(p)), -PhantomMidline.CallosalOutline(p));
         hull = Difference(hull, fissure, 4);
-        hull = Difference(hull, Math.Max(p.Z - Tentorium(p) - 1.4, p.Y - (-16 - 0.72 * Math.Max(x - 20, 0))), 5);
+        hull = Difference(hull, Math.Max(p.Z - Tentorium(p) - 0.9, p.Y - (-24 - 0.6 * Math.Max(x - 20, 0))), 5);
         return Difference(hull, PhantomMidline.Cistern(p), 3);
     }
 
@@ -68,7 +68,7 @@ internal sealed class PhantomCortex(double sulcusWidth)
         double reach = Math.Clamp(14.5 + 4.5 * Depths.Value(q), 3, DeepestSulcus) * silence;
         double sheet = reach < 2 ? double.PositiveInfinity : Sheet(across, depth, reach);
         thickness = Math.Clamp(2.9 + 0.3 * Ribbon.Value(q), 2.5, 3.6);
-        return Difference(hull, Math.Min(sheet, named), 2.2);
+        return Difference(hull, Math.Min(sheet, named), 1.8);
     }
 
     private double Sheet(double across, double depth, double reach)
@@ -83,34 +83,32 @@ internal sealed class PhantomCortex(double sulcusWidth)
         double x = Math.Abs(p.X), qx = Math.Abs(q.X), wiggle = Wiggle.Value(q);
         double nearest = double.PositiveInfinity, d = double.PositiveInfinity;
 
-        void Add(double across, double reach, bool here)
+        // How far outside its stretch of the surface a sulcus is makes its end round.
+        void Add(double across, double reach, double outside)
         {
-            if (here)
-            {
-                nearest = Math.Min(nearest, Math.Abs(across));
-                d = Math.Min(d, Sheet(across, depth, reach));
-            }
+            double away = Math.Sqrt(across * across + Square(Math.Max(outside, 0)));
+            nearest = Math.Min(nearest, away);
+            d = Math.Min(d, Sheet(away, depth, reach));
         }
 
         // Sylvian fissure: from the side inwards, then up and down over the insula.
-        double sylvian = (p.Z - SylvianHeight(p.Y)) / 1.08;
-        if (x > 30 && p.Y is > -42 and < 30)
+        double rise = p.Z - SylvianHeight(p.Y) - 1.2 * wiggle, sylvian = rise / 1.08;
+        if (x > 24 && p.Y is > -50 and < 36)
         {
             double span = Math.Max(Math.Max(36.5 + 0.004 * Square(p.Y) - x, p.Y - 24), -38 - p.Y);
             double fissure = Math.Max(Math.Abs(sylvian) - _halfWidth - 0.8 * Step(-5, 20, p.Y), span);
-            double insula = Math.Max(Math.Max(Math.Abs(x - 37.5 - 0.004 * Square(p.Y)) - _halfWidth, Math.Abs(p.Z - SylvianHeight(p.Y)) - 12), Math.Max(p.Y - 22, -24 - p.Y));
+            double insula = Math.Max(Math.Max(Math.Abs(x - 37.5 - 0.004 * Square(p.Y)) - _halfWidth, Math.Abs(rise) - 12), Math.Max(p.Y - 22, -24 - p.Y));
             d = Math.Min(d, Math.Min(fissure, insula));
-            nearest = Math.Min(nearest, Math.Min(Math.Max(Math.Abs(sylvian), 36 - x), Math.Max(Math.Abs(x - 37) - 2, Math.Abs(sylvian) - 12)));
+            nearest = Math.Min(nearest, Math.Min(Math.Max(Math.Abs(sylvian), span), Math.Max(Math.Abs(x - 37) - 2, Math.Abs(sylvian) - 12)));
         }
 
-        bool convex = qx > 12;
-        Add((q.Y + 36 - 0.42 * (78 - q.Z) + 2.5 * wiggle) / 1.08, 17, convex && q.Z > 14);
-        Add((q.Z - SylvianHeight(q.Y) + 17 + 1.5 * wiggle) / 1.08, 14, qx > 40 && q.Y is > -60 and < 16 && q.Z < 20);
-        bool medial = qx < 16;
-        Add(PhantomMidline.CallosalOutline(q) - 13 + 1.5 * wiggle, 10, medial && q.Z > -5 && q.Y > -34);
-        Add(q.Z - 4 - 0.06 * (q.Y + 80) + 1.5 * wiggle, 16, medial && q.Y < -56);
-        Add((q.Y + 66 + 0.55 * (q.Z - 6) + 1.5 * wiggle) / 1.14, 13, medial && q.Z > 6 && q.Y < -50);
-        silence = Step(4.5, 9, nearest);
+        double medial = qx - 14;
+        Add((q.Y + 36 - 0.42 * (78 - q.Z) + 2.5 * wiggle) / 1.08, 17, Math.Max(14 - qx, 16 - q.Z));
+        Add((q.Z - SylvianHeight(q.Y) + 17 + 1.5 * wiggle) / 1.08, 14, Math.Max(42 - qx, Math.Max(-58 - q.Y, q.Y - 14)));
+        Add(PhantomMidline.CallosalOutline(q) - 13 + 1.5 * wiggle, 10, Math.Max(medial, Math.Max(-4 - q.Z, -34 - q.Y)));
+        Add(q.Z - 4 - 0.06 * (q.Y + 80) + 1.5 * wiggle, 16, Math.Max(medial, q.Y + 58));
+        Add((q.Y + 66 + 0.55 * (q.Z - 6) + 1.5 * wiggle) / 1.14, 13, Math.Max(medial, 6 - q.Z));
+        silence = Step(3.5, 7.5, nearest);
         return d;
     }
 

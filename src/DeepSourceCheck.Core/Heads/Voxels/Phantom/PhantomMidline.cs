@@ -19,6 +19,11 @@ internal static class PhantomMidline
     public static double LateralVentricle(Vec3 p)
     {
         Vec3 a = p with { X = Math.Abs(p.X) };
+        if (a.X > 44 || p.Y is < -80 or > 38 || p.Z is < -24 or > 32)
+        {
+            return double.PositiveInfinity;
+        }
+
         return Math.Min(Tube(a, Body), Math.Min(Tube(a, OccipitalHorn), Tube(a, TemporalHorn)));
     }
 
@@ -26,6 +31,11 @@ internal static class PhantomMidline
     public static double MidlineVentricles(Vec3 p)
     {
         Vec3 a = p with { X = Math.Abs(p.X) };
+        if (a.X > 16)
+        {
+            return double.PositiveInfinity;
+        }
+
         double third = Ellipsoid(p - new Vec3(0, -12, 2), new(2.4, 17, 12));
         double foramen = Capsule(a, new(0, 2, 9), new(8.5, 6, 16), 1.6, 1.6);
         double aqueduct = Math.Min(Capsule(p, new(0, -27, -1), new(0, -31.5, -11), 1.3, 1.2), Capsule(p, new(0, -31.5, -11), new(0, -40, -27), 1.2, 1.6));
@@ -45,7 +55,7 @@ internal static class PhantomMidline
         double e = CallosalOutline(p);
         double thickness = 5.5 + 3 * Step(20, 32, p.Y) + 3 * Step(-30, -38, p.Y);
         double band = Math.Max(e, -(e + thickness));
-        return Math.Max(Math.Max(band, Math.Abs(p.X) - 16), 1 - p.Z);
+        return Math.Max(Intersection(band, Math.Abs(p.X) - 18, 6), 1 - p.Z);
     }
 
     /// <summary>Fluid around the brainstem and in the notch behind it.</summary>

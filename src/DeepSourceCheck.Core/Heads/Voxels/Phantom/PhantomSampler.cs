@@ -13,6 +13,8 @@ internal sealed class PhantomSampler
     // Pieces of a tissue below this volume [mm^3 of the adult frame] are debris of sampling.
     private const double SmallestPiece = 160;
 
+    private const double ThinnestSkin = 3;
+
     private readonly double _scale, _voxel;
     private readonly PhantomKind _kind;
     private readonly PhantomSkull _skull;
@@ -29,7 +31,7 @@ internal sealed class PhantomSampler
         double thinnest = kind == PhantomKind.Adult && _voxel <= 2 ? 2 * _voxel : 1.05 * Math.Sqrt(3) * _voxel;
         ThinnestBone = thinnest * _scale / 1000;
         _skull = new(kind, thinnest, _voxel);
-        _cortex = new(Math.Clamp(0.9 * _voxel, 1.2, 2));
+        _cortex = new(Math.Clamp(0.7 * _voxel, 1, 1.6));
 
         (int low, int high) X = Range(0), Y = Range(1), Z = Range(2);
         Vec3 corner = new(X.low * voxel, Y.low * voxel, Z.low * voxel);
@@ -83,6 +85,11 @@ internal sealed class PhantomSampler
 
     private (byte Label, byte Region) At(Vec3 p)
     {
+        if (PhantomSkull.IsFarAbove(p))
+        {
+            return (PhantomHead.Air, 0);
+        }
+
         double cavity = PhantomSkull.Cavity(p, out double smoothed);
         return cavity <= 0 ? Inside(p, cavity) : (Outside(p, cavity, smoothed), (byte)0);
     }
@@ -95,11 +102,14 @@ internal sealed class PhantomSampler
         }
 
         double thickness = _skull.Thickness(p);
-        double bone = PhantomSkull.Bone(p, smoothed, thickness);
-        if (bone > 0 && _skull.Outer(p, smoothed, thickness) > 0)
+        double outer = _skull.Outer(p, smoothed, thickness);
+        if (outer > 0)
         {
             return PhantomHead.Air;
         }
+
+        // Skin covers every bone, the cheek bones too.
+        double bone = Math.Max(PhantomSkull.Bone(p, smoothed, thickness), outer + ThinnestSkin);
 
         return _skull.Air(p, cavity, bone) < 0 ? PhantomHead.Air
             : bone > 0 ? PhantomHead.Scalp
@@ -126,13 +136,13 @@ internal sealed class PhantomSampler
             return (PhantomHead.White, 0);
         }
 
-        if (p.Z < 8 && PhantomMidline.Brainstem(p) is <= 0 and double stem)
+        double side = Math.Abs(p.X);
+        if (p.Z < 8 && side < 36 && p.Y is > -70 and < 5 && PhantomMidline.Brainstem(p) is <= 0 and double stem)
         {
             return (PhantomMidline.IsGrey(p, midline, stem) ? PhantomHead.Grey : PhantomHead.White, Brainstem(p));
         }
 
-        double hull = PhantomCerebellum.Hull(p, cavity);
-        if (hull <= 0)
+        if (p.Z < 0 && p.Y < -20 && PhantomCerebellum.Hull(p, cavity) is <= 0 and double hull)
         {
             TissueKind tissue = PhantomCerebellum.At(p, hull);
             byte region = (byte)(1 + 2 * PhantomNuclei.Count + (right ? 1 : 0));

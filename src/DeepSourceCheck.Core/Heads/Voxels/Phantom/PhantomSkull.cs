@@ -29,10 +29,10 @@ internal sealed class PhantomSkull(PhantomKind kind, double thinnest, double tab
         Vec3 a = p with { X = x };
         double t = Math.Clamp((p.Y + 17) / 89, -1.2, 1.2);
         double width = 1.02 - 0.07 * t - 0.07 * t * t;
-        double d = Ellipsoid(new(x / width, p.Y + 17, p.Z - 8), new(69, 88, p.Z > 8 ? 72 : 40));
+        double d = Ellipsoid(new(x / width, p.Y + 17, p.Z - 8), new(68, 87, p.Z > 8 ? 71 : 40));
         d = Union(d, Ellipsoid(a - new Vec3(0, 36, -4), new(44, 35, 23)), 12);
         double temporal = Ellipsoid(a - new Vec3(38, -12, -22), new(28, 37, 26));
-        double posterior = Ellipsoid(a - new Vec3(0, -60, -36), new(52, 38.5, 31.5));
+        double posterior = Ellipsoid(a - new Vec3(0, -60, -36), new(51, 37.5, 30.5));
         smoothed = Union(Union(d, temporal, 16), posterior, 28);
         d = Union(Union(d, temporal, 9), posterior, 7);
         d = Union(d, Ellipsoid(a - new Vec3(0, -27, -34), new(20, 17.5, 33)), 7);
@@ -42,6 +42,9 @@ internal sealed class PhantomSkull(PhantomKind kind, double thinnest, double tab
         smoothed = Math.Min(smoothed, d);
         return d;
     }
+
+    /// <summary>Whether a point above the ears lies far outside the vault; a cheap test that spares the shapes.</summary>
+    public static bool IsFarAbove(Vec3 p) => p.Z > 0 && Square(p.X / 88) + Square((p.Y + 14) / 112) + Square(p.Z / 100) > 1.1;
 
     /// <summary>Distance to the petrous ridge, the dense bone between the middle and the posterior fossa.</summary>
     public static double Petrous(Vec3 p) => Capsule(p with { X = Math.Abs(p.X) }, new(24, -16, -49), new(60, -42, -43), 5, 8);
@@ -60,9 +63,10 @@ internal sealed class PhantomSkull(PhantomKind kind, double thinnest, double tab
         double occiput = Step(0.45, 0.95, -u.Y) * Step(-0.75, -0.1, u.Z);
         double squama = Math.Exp(-8 * (Square(side - 0.93) + Square(u.Y - 0.08) + Square(u.Z + 0.28)));
         double forehead = Step(0.6, 0.95, u.Y);
+        double brow = Math.Exp(-14 * (0.6 * u.X * u.X + Square(u.Z + 0.22))) * Step(0, 0.5, u.Y);
         double bottom = Step(0.45, 0.8, -u.Z);
         double t = 5.7 + 2.2 * occiput - 3.1 * squama + 0.8 * forehead - 0.4 * bottom + 0.5 * bumps;
-        return Math.Max(thinnest, Math.Clamp(t, 2.5, 9.2));
+        return Math.Max(thinnest, Math.Clamp(t, 2.5, 9.2) + 4.5 * brow);
     }
 
     /// <summary>Distance to the surface of all bone, facial bone and the first vertebrae included; the cavity is not cut out.</summary>
@@ -74,7 +78,7 @@ internal sealed class PhantomSkull(PhantomKind kind, double thinnest, double tab
         Vec3 a = p with { X = Math.Abs(p.X) };
         double cranial = Cranial(p, smoothed, thickness);
         double d = Union(cranial, Petrous(a) - 4.5, 4);
-        d = Union(d, Ellipsoid(a - new Vec3(56, -44, -52), new(12, 15, 17)), 5);
+        d = Union(d, Ellipsoid(a - new Vec3(59, -44, -52), new(12, 15, 17)), 5);
         d = Union(d, Ellipsoid(a - new Vec3(0, 9, -42), new(25, 22, 15)), 6);
 
         // Face: upper jaw and cheek bones, without the orbits.
@@ -124,15 +128,15 @@ internal sealed class PhantomSkull(PhantomKind kind, double thinnest, double tab
     private static double Face(Vec3 p)
     {
         Vec3 a = p with { X = Math.Abs(p.X) };
-        double d = Union(Ellipsoid(a - new Vec3(0, 31, -66), new(62, 53, 70)), Capsule(p, new(0, 79, -42), new(0, 100, -68), 4, 9), 7);
-        Vec3 ear = a - new Vec3(80, -33, -38);
+        double d = Union(Ellipsoid(a - new Vec3(0, 33, -66), new(67, 53, 70)), Capsule(p, new(0, 82, -45), new(0, 97, -68), 4, 9), 7);
+        Vec3 ear = a - new Vec3(83, -33, -38);
         return Math.Min(d, Ellipsoid(new(ear.X + 0.42 * ear.Y, ear.Y, ear.Z + 0.25 * ear.Y), new(4.5, 15, 27)));
     }
 
     private static double Neck(Vec3 p)
     {
         double y = p.Y + 37 - 0.16 * (p.Z + 70);
-        return Intersection(Ellipsoid(new(p.X, y, 0), new(58, 64, 1e4)), p.Z + 30, 20);
+        return Intersection(Ellipsoid(new(p.X, y, 0), new(64, 64, 1e4)), p.Z + 30, 20);
     }
 
     private static double Square(double x) => x * x;
