@@ -97,10 +97,10 @@ internal static class PhantomMidline
     public static double Midbrain(Vec3 p) => Tilted(p, new(0, -24, -11.5), new(15, 12, 10.5), -18);
 
     /// <summary>The pons.</summary>
-    public static double Pons(Vec3 p) => Tilted(p, new(0, -25.5, -32.5), new(17, 14.5, 17), -15);
+    public static double Pons(Vec3 p) => Tilted(p, new(0, -25.5, -32.5), new(16.4, 13.9, 16.4), -15);
 
     /// <summary>The medulla.</summary>
-    public static double Medulla(Vec3 p) => Tilted(p, new(0, -39, -55), new(10, 10, 15.5), -18);
+    public static double Medulla(Vec3 p) => Tilted(p, new(0, -39, -55), new(9.4, 9.4, 14.4), -18);
 
     private static double Tilted(Vec3 p, Vec3 centre, Vec3 semiAxes, double degreesAboutX)
     {

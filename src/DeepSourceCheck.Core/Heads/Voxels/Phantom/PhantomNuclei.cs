@@ -13,15 +13,15 @@ internal static class PhantomNuclei
 {
     private static readonly Nucleus[] All =
     [
-        new("inferior-colliculus", new(6, -33, -11), new(3.7, 3.7, 3.7), Vec3.Zero),
-        new("superior-colliculus", new(6, -30, -4), new(4.2, 3.7, 4.6), Vec3.Zero),
+        new("inferior-colliculus", new(6, -33, -11), new(3.3, 3.3, 3.3), Vec3.Zero),
+        new("superior-colliculus", new(6, -30, -4), new(3.6, 3.1, 4.1), Vec3.Zero),
         new("red-nucleus", new(5, -20, -8), new(3.8, 4.2, 4.5), Vec3.Zero),
-        new("subthalamic-nucleus", new(11, -14, -7), new(2.6, 3.3, 4.8), new(25, 30, 0)),
+        new("subthalamic-nucleus", new(11, -14, -7), new(2.4, 3.1, 4.6), new(25, 30, 0)),
         new("substantia-nigra", new(10.5, -16.5, -10), new(3.2, 6.5, 6.5), new(0, 0, 35)),
-        new("medial-geniculate", new(15, -25, -6), new(3.2, 3.6, 3.6), Vec3.Zero),
-        new("lateral-geniculate", new(23, -25, -6), new(3.4, 3.4, 3.4), Vec3.Zero),
-        new("cochlear-nucleus", new(10, -39, -45), new(2, 4.4, 2.4), Vec3.Zero),
-        new("accumbens", new(10, 10.5, -8), new(5, 6.5, 5.5), Vec3.Zero),
+        new("medial-geniculate", new(15, -25, -6), new(2.7, 3.1, 3.1), Vec3.Zero),
+        new("lateral-geniculate", new(23, -25, -6), new(2.9, 2.9, 2.9), Vec3.Zero),
+        new("cochlear-nucleus", new(10, -39, -45), new(1.6, 4, 2), Vec3.Zero),
+        new("accumbens", new(10, 10.5, -8), new(4.7, 6.2, 5.2), Vec3.Zero),
         new("pallidum", new(19.5, -1.5, 0), new(5.5, 10, 7), new(0, 5, 35)),
         new("thalamus", new(12, -18, 7.5), new(10.2, 15.2, 11.2), new(10, 0, 25)),
         new("caudate", new(13, 11, 9.5), new(5.2, 18.2, 10.2), new(-45, 20, -10)),

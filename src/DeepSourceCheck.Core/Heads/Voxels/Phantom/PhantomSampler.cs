@@ -158,7 +158,7 @@ internal sealed class PhantomSampler
         double midbrain = PhantomMidline.Midbrain(p), pons = PhantomMidline.Pons(p), medulla = PhantomMidline.Medulla(p);
         double least = Math.Min(midbrain, Math.Min(pons, medulla));
         int first = 1 + 2 * (PhantomNuclei.Count + 1);
-        return (byte)(least > 1 ? 0 : least == midbrain ? first : least == pons ? first + 1 : first + 2);
+        return (byte)(least > 0 ? 0 : least == midbrain ? first : least == pons ? first + 1 : first + 2);
     }
 
     /// <summary>Turns soft tissue and air that touch the inside of the skull, corners included, into bone, except at the opening of the base.</summary>
