@@ -76,6 +76,7 @@ internal static class PhantomMidline
         d = Union(d, Capsule(a, new(8, -19, -10), new(17, -13, 3), 7, 8), 4);
         d = Union(d, Capsule(a, new(10, -29, -34), new(25, -51, -37), 9.5, 8), 4);
         d = Union(d, Capsule(a, new(8, -39, -52), new(17, -48, -39), 6.5, 6), 3);
+        d = Union(d, Capsule(a, new(10, -32, -34), new(8, -31, -17), 4.6, 4.6), 3);
         d = Union(d, Capsule(a, new(5, -36, -18), new(13, -52, -30), 3.5, 4), 3);
         return Union(d, Capsule(p, new(0, -44, -64), new(0, -51, -150), 6.5, 5.5), 4);
     }

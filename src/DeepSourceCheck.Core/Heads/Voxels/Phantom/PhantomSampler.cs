@@ -12,6 +12,7 @@ internal sealed class PhantomSampler
 
     // Pieces of a tissue below this volume [mm^3 of the adult frame] are debris of sampling.
     private const double SmallestPiece = 160;
+    private const int SmallestPieceVoxels = 12;
 
     private const double ThinnestSkin = 3;
 
@@ -31,7 +32,7 @@ internal sealed class PhantomSampler
         double thinnest = kind == PhantomKind.Adult && _voxel <= 2 ? 2 * _voxel : 1.05 * Math.Sqrt(3) * _voxel;
         ThinnestBone = thinnest * _scale / 1000;
         _skull = new(kind, thinnest, _voxel);
-        _cortex = new(Math.Clamp(0.7 * _voxel, 1, 1.6));
+        _cortex = new(Math.Clamp(0.7 * _voxel, 1, 2.1));
 
         (int low, int high) X = Range(0), Y = Range(1), Z = Range(2);
         Vec3 corner = new(X.low * voxel, Y.low * voxel, Z.low * voxel);
@@ -74,7 +75,7 @@ internal sealed class PhantomSampler
                 }
             }
         });
-        LabelPieces.Absorb(labels, Grid, (int)(SmallestPiece / (_voxel * _voxel * _voxel)));
+        LabelPieces.Absorb(labels, Grid, Math.Max(SmallestPieceVoxels, (int)(SmallestPiece / (_voxel * _voxel * _voxel))));
         cancellation.ThrowIfCancellationRequested();
         Seal(labels, options);
         DropLostRegions(labels, regions);
