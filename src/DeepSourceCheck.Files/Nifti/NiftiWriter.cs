@@ -23,7 +23,7 @@ public enum NiftiIntent
 /// <summary>Writes NIfTI-1 single files, .nii or .nii.gz: three-dimensional volumes of uint8, int16 or float32.</summary>
 /// <remarks>
 /// Source: the NIfTI-1 standard (byte offsets of the fields; quaternion of a rotation matrix). Little-endian, millimetres, sform code 2 (aligned coordinates). The qform says the
-/// same where the map is a rotation with voxel sizes, else its code is 0. The gzip header holds no time and no system (RFC 1952), so that the same volume gives the same bytes.
+/// same where the map is a rotation with voxel sizes, else (and where single precision cannot tell it) its code is 0. The gzip header holds no time and no system (RFC 1952), so that the same volume gives the same bytes.
 /// </remarks>
 public static class NiftiWriter
 {
@@ -38,6 +38,9 @@ public static class NiftiWriter
 
     /// <summary>Cosine between two axes from which a quaternion no longer tells the map.</summary>
     private const double Oblique = 1e-6;
+
+    /// <summary>Distance [mm] at a corner of the volume up to which the qform may differ from the sform: near half a turn, single precision tells a rotation badly.</summary>
+    private const double QformTolerance = 0.01;
 
     /// <summary>Writes a file; its name decides whether it is compressed.</summary>
     /// <typeparam name="T">byte, short or float.</typeparam>
@@ -162,21 +165,23 @@ public static class NiftiWriter
         h[123] = 2;
         Text(h, 148, description, DescriptionSize);
         Text(h, 328, intentName, NameSize);
-        WritePlacement(h, map);
+        WritePlacement(h, map, grid);
         "n+1\0"u8.CopyTo(h.AsSpan(344));
         return h;
     }
 
-    private static void WritePlacement(byte[] h, Affine map)
+    private static void WritePlacement(byte[] h, Affine map, VoxelGrid grid)
     {
         Vec3 x = map.Column(0).Unit(), y = map.Column(1).Unit(), z = map.Column(2).Unit();
         double handedness = map.Determinant < 0 ? -1 : 1;
         Real(h, 76, handedness);
         if (Math.Abs(Vec3.Dot(x, y)) < Oblique && Math.Abs(Vec3.Dot(y, z)) < Oblique && Math.Abs(Vec3.Dot(z, x)) < Oblique)
         {
-            Short(h, 252, Aligned);
             (double b, double c, double d) = Quaternion(x, y, handedness * z);
             double[] q = [b, c, d, map.Offset.X, map.Offset.Y, map.Offset.Z];
+            Vec3 spacing = new(map.Column(0).Norm, map.Column(1).Norm, map.Column(2).Norm);
+            Affine asRead = Affine.FromQuaternion((float)b, (float)c, (float)d, map.Offset, spacing, handedness);
+            Short(h, 252, Distance(asRead, map, grid) <= QformTolerance ? Aligned : (short)0);
             for (int k = 0; k < q.Length; k++)
             {
                 Real(h, 256 + 4 * k, q[k]);
@@ -194,6 +199,19 @@ public static class NiftiWriter
 
             Real(h, 292 + 16 * row, map.Offset[row]);
         }
+    }
+
+    /// <summary>Largest distance between the images of the volume's corners.</summary>
+    private static double Distance(Affine a, Affine b, VoxelGrid grid)
+    {
+        double worst = 0;
+        for (int corner = 0; corner < 8; corner++)
+        {
+            Vec3 v = new((corner & 1) * (grid.Nx - 1.0), (corner >> 1 & 1) * (grid.Ny - 1.0), (corner >> 2) * (grid.Nz - 1.0));
+            worst = Math.Max(worst, (a.Apply(v) - b.Apply(v)).Norm);
+        }
+
+        return worst;
     }
 
     /// <summary>b, c, d of the rotation with these columns; a is not negative.</summary>

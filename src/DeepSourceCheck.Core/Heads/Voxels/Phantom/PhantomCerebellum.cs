@@ -20,7 +20,7 @@ internal static class PhantomCerebellum
         Vec3 a = p with { X = Math.Abs(p.X) };
         double d = Ellipsoid(Lean.ApplyInverse(a - new Vec3(25, -67, -36)), new(33, 36, 30));
         d = Union(d, Ellipsoid(p - new Vec3(0, -68, -33), new(16, 26, 29)), 6);
-        d = Intersection(d, cavity + 2, 3);
+        d = Intersection(d, cavity + 1.8, 3);
         d = Intersection(d, p.Z - PhantomCortex.Tentorium(p) + 0.9, 3);
 
         // The notch between the halves behind and below.
@@ -43,7 +43,7 @@ internal static class PhantomCerebellum
         bool deep = (long)whole % 3 == 0;
         double reach = Math.Min(deep ? 17 : 8, rho - 5);
         double below = Math.Max(depth - reach, 0);
-        double pial = Math.Max(hull, (deep ? 0.45 : 0.25) - Math.Sqrt(across * across + below * below));
+        double pial = Math.Max(hull, (deep ? 0.4 : 0.2) - Math.Sqrt(across * across + below * below));
         return pial > 0 ? TissueKind.Csf : pial > -Grey ? TissueKind.Grey : TissueKind.White;
     }
 }

@@ -102,6 +102,12 @@ public sealed class PhantomHead
                 $"with voxels of {1000 * voxel:0.##} mm thin parts of the skull measure less than two voxels and are drawn {1000 * sampler.ThinnestBone:0.##} mm thick; choose 2 mm or less for anything but a quick look"));
         }
 
+        string[] lost = [.. Regions.Where(region => Array.IndexOf(regions, (byte)region.Label) < 0).Select(region => region.Name)];
+        if (lost.Length > 0)
+        {
+            warnings.Add($"no voxel of {string.Join(", ", lost)} is left at this voxel size; choose a smaller one");
+        }
+
         return new(kind, sampler.Grid, labels, regions, warnings);
     }
 

@@ -121,6 +121,15 @@ public class PhantomHeadTests
         Assert.Contains("two voxels", Assert.Single(PhantomHead.Generate(PhantomKind.Adult, 0.003).Warnings), StringComparison.Ordinal);
     }
 
+    [Fact]
+    public void RegionsTooSmallForTheVoxels_AreNamed()
+    {
+        PhantomHead head = PhantomHead.Generate(PhantomKind.Neonate, 0.003);
+        string[] lost = [.. PhantomHead.Regions.Where(r => !head.RegionLabels.Contains((byte)r.Label)).Select(r => r.Name)];
+        Assert.NotEmpty(lost);
+        Assert.All(lost, name => Assert.Contains(name, head.Warnings[^1], StringComparison.Ordinal));
+    }
+
     [Theory]
     [InlineData(PhantomKind.Adult, 7)]
     [InlineData(PhantomKind.Neonate, 6)]
