@@ -14,7 +14,7 @@ internal static class PhantomLandmarks
         double Outer(Vec3 p)
         {
             PhantomSkull.Cavity(p, out double smoothed);
-            return skull.Outer(p, smoothed, skull.Thickness(p));
+            return PhantomSkull.Outer(p, smoothed, skull.Thickness(p));
         }
 
         Vec3 Skin(Vec3 from, Vec3 direction)

@@ -1,7 +1,5 @@
 using DeepSourceCheck.Core.Geometry;
 
-using static DeepSourceCheck.Core.Heads.Voxels.Phantom.SolidDistance;
-
 namespace DeepSourceCheck.Core.Heads.Voxels.Phantom;
 
 /// <summary>Samples the phantom's shapes at the centres of voxels, slab by slab.</summary>
@@ -103,7 +101,7 @@ internal sealed class PhantomSampler
         }
 
         double thickness = _skull.Thickness(p);
-        double outer = _skull.Outer(p, smoothed, thickness);
+        double outer = PhantomSkull.Outer(p, smoothed, thickness);
         if (outer > 0)
         {
             return PhantomHead.Air;

@@ -107,7 +107,7 @@ internal sealed class PhantomSkull(PhantomKind kind, double thinnest, double tab
     }
 
     /// <summary>Distance to the head's outer surface: skin over bone, face, nose, ears and neck.</summary>
-    public double Outer(Vec3 p, double smoothed, double thickness)
+    public static double Outer(Vec3 p, double smoothed, double thickness)
     {
         Vec3 u = (p - Centre).Unit();
         double skin = 5.2 + 0.7 * Skin.Value(80 * u) + 4.5 * Math.Exp(-7 * (Square(Math.Abs(u.X) - 0.86) + Square(u.Y - 0.28) + Square(u.Z + 0.35)));
