@@ -26,8 +26,8 @@ internal sealed class PhantomSampler
         (_kind, _scale) = (kind, kind.Scale());
         _voxel = 1000 * voxel / _scale;
 
-        // Two voxels where that leaves a skull; else just what no diagonal step between voxel centres jumps over.
-        double thinnest = kind == PhantomKind.Adult && _voxel <= 2 ? 2 * _voxel : 1.05 * Math.Sqrt(3) * _voxel;
+        // Two voxels and a quarter for slanting surfaces, where that leaves a skull; else just what no diagonal step between voxel centres jumps over.
+        double thinnest = kind == PhantomKind.Adult && _voxel <= 2 ? 2.25 * _voxel : 1.05 * Math.Sqrt(3) * _voxel;
         ThinnestBone = thinnest * _scale / 1000;
         _skull = new(kind, thinnest, _voxel);
         _cortex = new(Math.Clamp(0.7 * _voxel, 1, 2.1));

@@ -33,7 +33,7 @@ internal sealed class PhantomSkull(PhantomKind kind, double thinnest, double tab
         d = Union(d, Ellipsoid(a - new Vec3(0, 36, -4), new(44, 35, 23)), 12);
         double temporal = Ellipsoid(a - new Vec3(38, -12, -22), new(28, 37, 26));
         double posterior = Ellipsoid(a - new Vec3(0, -60, -36), new(51, 37.5, 30.5));
-        smoothed = Union(Union(d, temporal, 16), posterior, 28);
+        smoothed = Union(Union(d, temporal, 10), posterior, 28);
         d = Union(Union(d, temporal, 9), posterior, 7);
         d = Union(d, Ellipsoid(a - new Vec3(0, -27, -34), new(20, 17.5, 33)), 7);
         d = Union(d, Capsule(p, new(0, -37, -54), new(0, -44, -76), 15, 13), 8);
@@ -61,11 +61,11 @@ internal sealed class PhantomSkull(PhantomKind kind, double thinnest, double tab
 
         double side = Math.Abs(u.X);
         double occiput = Step(0.45, 0.95, -u.Y) * Step(-0.75, -0.1, u.Z);
-        double squama = Math.Exp(-8 * (Square(side - 0.93) + Square(u.Y - 0.08) + Square(u.Z + 0.28)));
+        double squama = Math.Exp(-7 * (Square(side - 0.96) + Square(u.Y - 0.1) + Square(u.Z + 0.15)));
         double forehead = Step(0.6, 0.95, u.Y);
         double brow = Math.Exp(-14 * (0.6 * u.X * u.X + Square(u.Z + 0.22))) * Step(0, 0.5, u.Y);
         double bottom = Step(0.45, 0.8, -u.Z);
-        double t = 5.7 + 2.2 * occiput - 3.1 * squama + 0.8 * forehead - 0.4 * bottom + 0.5 * bumps;
+        double t = 5.7 + 2.2 * occiput - 3.8 * squama + 0.8 * forehead - 0.4 * bottom + 0.5 * bumps;
         return Math.Max(thinnest, Math.Clamp(t, 2.5, 9.2) + 4.5 * brow);
     }
 
