@@ -29,7 +29,7 @@ public class HelpTests
     }
 
     [Theory]
-    [InlineData("new", "FOLDER --head --json")]
+    [InlineData("new", "FOLDER --head --voxel-mm --json")]
     [InlineData("check", "STUDY --json --memory")]
     [InlineData("assess", "STUDY --out --without --json --memory")]
     [InlineData("leadfield", "STUDY --out --json --memory")]
