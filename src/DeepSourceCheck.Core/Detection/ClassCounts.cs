@@ -30,7 +30,7 @@ internal sealed class ClassCounts
     private const int Stretch = 64;
 
     private readonly uint[]?[] _pages = new uint[Exponents][];
-    private readonly long[] _pageCounts = new long[Exponents];
+    private long[]? _pageCounts;
     private uint[] _classes = [];
     private int _collected;
     private long _count;
@@ -43,6 +43,14 @@ internal sealed class ClassCounts
             Settle();
             return _count;
         }
+    }
+
+    /// <summary>No values will follow: from here on several threads may read.</summary>
+    public void Complete()
+    {
+        Settle();
+        _classes = [];
+        _pageCounts = [.. _pages.Select(page => page is null ? 0L : Sum(page))];
     }
 
     /// <summary>The class of a value of at least 0.</summary>
@@ -75,11 +83,11 @@ internal sealed class ClassCounts
         Settle();
         other.Settle();
         _count += other._count;
+        _pageCounts = null;
         for (int exponent = 0; exponent < Exponents; exponent++)
         {
             if (other._pages[exponent] is { } page)
             {
-                _pageCounts[exponent] += other._pageCounts[exponent];
                 if (_pages[exponent] is not { } own)
                 {
                     _pages[exponent] = page.AsSpan().ToArray();
@@ -100,11 +108,15 @@ internal sealed class ClassCounts
     /// <exception cref="ArgumentOutOfRangeException">The rank is not below <see cref="Count"/>.</exception>
     public double AtRank(long rank)
     {
-        Settle();
+        if (_pageCounts is null)
+        {
+            Complete();
+        }
+
         ArgumentOutOfRangeException.ThrowIfNegative(rank);
         ArgumentOutOfRangeException.ThrowIfGreaterThanOrEqual(rank, _count);
         long exponent = 0;
-        for (; rank >= _pageCounts[exponent]; exponent++)
+        for (; rank >= _pageCounts![exponent]; exponent++)
         {
             rank -= _pageCounts[exponent];
         }
@@ -145,22 +157,28 @@ internal sealed class ClassCounts
     // Counts what was collected.
     private void Settle()
     {
+        if (_collected == 0)
+        {
+            return;
+        }
+
         uint[]?[] pages = _pages;
+        int none = 0;
         foreach (uint c in _classes.AsSpan(0, _collected))
         {
             if (c > Infinity)
             {
+                none++;
                 continue;
             }
 
-            uint exponent = c >> MantissaBits;
-            uint[] page = pages[exponent] ?? NewPage(exponent);
+            uint[] page = pages[c >> MantissaBits] ?? NewPage(c >> MantissaBits);
             page[c & (ClassesAPage - 1)]++;
-            _pageCounts[exponent]++;
-            _count++;
         }
 
+        _count += _collected - none;
         _collected = 0;
+        _pageCounts = null;
     }
 
     private uint[] NewPage(uint exponent) => _pages[exponent] = new uint[ClassesAPage];

@@ -87,11 +87,24 @@ public sealed class QuantileStore
 
         if (_sorted is null || _sorted.Length != _values!.Count)
         {
-            _sorted = [.. _values!];
-            Array.Sort(_sorted);
+            Complete();
         }
 
-        return _sorted[rank / Multiplicity];
+        return _sorted![rank / Multiplicity];
+    }
+
+    /// <summary>No values will follow: from here on several threads may read.</summary>
+    public void Complete()
+    {
+        if (_classes is not null)
+        {
+            _classes.Complete();
+            return;
+        }
+
+        double[] sorted = [.. _values!];
+        Array.Sort(sorted);
+        _sorted = sorted;
     }
 
     /// <summary>Whether a value may stand for <see cref="AtRank"/>: equal, or in the same class.</summary>
