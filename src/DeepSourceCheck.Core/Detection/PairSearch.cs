@@ -34,9 +34,22 @@ public sealed class PairSearch
         ReadOnlySpan<Vector512<double>> eeg, int eegCount, ReadOnlySpan<Vector512<double>> meg, int megCount, in LaneDirection unseen)
     {
         Prepare(eegCount, megCount);
-        ref Vector512<double> e = ref MemoryMarshal.GetReference(eeg), m = ref MemoryMarshal.GetReference(meg);
-        ref Vector512<double> ee = ref First(_eegPower), mm = ref First(_megPower);
-        Row strongest = Strongest(ref m, megCount, ref mm), chosen = Strongest(ref e, eegCount, ref ee);
+        Lanes.LargestNorm(MemoryMarshal.Cast<Vector512<double>, double>(eeg), eegCount, _eegPower, out Vector512<double> chosen);
+        Lanes.LargestNorm(MemoryMarshal.Cast<Vector512<double>, double>(meg), megCount, _megPower, out Vector512<double> strongest);
+        return Largest(new NormedRows(eeg, eegCount, Lanes.View(_eegPower), chosen), new NormedRows(meg, megCount, Lanes.View(_megPower), strongest), unseen);
+    }
+
+    /// <summary>The same for rows whose powers are known.</summary>
+    /// <param name="eeg">EEG rows.</param>
+    /// <param name="meg">MEG rows.</param>
+    /// <param name="unseen">Unit vector to which all MEG rows are orthogonal to rounding; zero in lanes where there is none.</param>
+    public Vector512<double> Largest(in NormedRows eeg, in NormedRows meg, in LaneDirection unseen)
+    {
+        int eegCount = eeg.Count, megCount = meg.Count;
+        Prepare(eegCount, megCount);
+        ref Vector512<double> e = ref MemoryMarshal.GetReference(eeg.Rows), m = ref MemoryMarshal.GetReference(meg.Rows);
+        ref Vector512<double> ee = ref MemoryMarshal.GetReference(eeg.Powers), mm = ref MemoryMarshal.GetReference(meg.Powers);
+        Row strongest = Row.OfEach(ref m, meg.Strongest), chosen = Row.OfEach(ref e, eeg.Strongest);
         Vector512<double> most = strongest.Power, best = Vector512.Max(most, chosen.Power);
 
         best = Vector512.Max(best, Larger(chosen, strongest));
@@ -76,7 +89,7 @@ public sealed class PairSearch
     {
         if (_megLeft.Length < megCount)
         {
-            _megPower = GC.AllocateUninitializedArray<double>(megCount * 8);
+            _megPower = GC.AllocateUninitializedArray<double>(megCount * 8);   // of rows that come without powers
             _megLeft = new int[megCount];
         }
 
@@ -137,23 +150,6 @@ public sealed class PairSearch
         return left;
     }
 
-    /// <summary>Powers of all rows, and the strongest row of each dipole.</summary>
-    private static Row Strongest(ref Vector512<double> rows, int count, ref Vector512<double> powers)
-    {
-        Vector512<double> most = Vector512.Create(-1.0), at = default, number = default;
-        for (int k = 0; k < count; k++)
-        {
-            ref Vector512<double> row = ref Unsafe.Add(ref rows, 3 * k);
-            Vector512<double> x = row, y = Unsafe.Add(ref row, 1), z = Unsafe.Add(ref row, 2), power = Fma(x, x, Fma(y, y, z * z));
-            Unsafe.Add(ref powers, k) = power;
-            at = Vector512.ConditionalSelect(Vector512.GreaterThan(power, most), number, at);
-            most = Vector512.Max(most, power);
-            number += Vector512<double>.One;
-        }
-
-        return Row.OfEach(ref rows, at);
-    }
-
     /// <summary>Tries the row that most exceeds the best with one partner; returns the row of the best pair, or the one given where none is better.</summary>
     private static Row Improve(ref Vector512<double> rows, ref Vector512<double> powers, int count, in Row partner, Row chosen, ref Vector512<double> best)
     {
@@ -204,6 +200,26 @@ public sealed class PairSearch
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static ref Vector512<double> First(double[] lanes) => ref Unsafe.As<double, Vector512<double>>(ref MemoryMarshal.GetArrayDataReference(lanes));
+
+    /// <summary>Rows of one modality with their powers.</summary>
+    /// <param name="rows">[row][axis], eight dipoles a vector.</param>
+    /// <param name="count">Number of rows, at least 1.</param>
+    /// <param name="powers">Every |row|^2.</param>
+    /// <param name="strongest">Row of the largest power of each dipole, as a double.</param>
+    public readonly ref struct NormedRows(ReadOnlySpan<Vector512<double>> rows, int count, ReadOnlySpan<Vector512<double>> powers, Vector512<double> strongest)
+    {
+        /// <summary>Rows.</summary>
+        public ReadOnlySpan<Vector512<double>> Rows { get; } = rows;
+
+        /// <summary>Number of rows.</summary>
+        public int Count { get; } = count;
+
+        /// <summary>Powers.</summary>
+        public ReadOnlySpan<Vector512<double>> Powers { get; } = powers;
+
+        /// <summary>The strongest row of each dipole.</summary>
+        public Vector512<double> Strongest { get; } = strongest;
+    }
 
     private struct Row
     {

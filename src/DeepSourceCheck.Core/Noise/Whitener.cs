@@ -147,6 +147,7 @@ public sealed class Whitener
         Store(ref to, 7, end - first, a70, a71, a72);
     }
 
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static void Store(ref Vector512<double> panel, int row, int rows, Vector512<double> x, Vector512<double> y, Vector512<double> z)
     {
         if (row < rows)

@@ -265,6 +265,7 @@ public sealed class EegLayerSeries
         2.0 * Fma(x, Vector512.Create(_ex[row]), Fma(y, Vector512.Create(_ey[row]), z * _ez[row]));
 
     /// <summary>L = s e - u x; rows beyond the last electrode are padding.</summary>
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private void Store(
         double[] eeg, int row, Vector512<double> x, Vector512<double> y, Vector512<double> z, Vector512<double> s, Vector512<double> u)
     {
