@@ -99,10 +99,10 @@ public static class Lanes
             at1 = Vector512.ConditionalSelect(Vector512.GreaterThan(b, best1), number, at1);
             at2 = Vector512.ConditionalSelect(Vector512.GreaterThan(c, best2), number, at2);
             at3 = Vector512.ConditionalSelect(Vector512.GreaterThan(d, best3), number, at3);
-            best0 = Vector512.Max(best0, a);
-            best1 = Vector512.Max(best1, b);
-            best2 = Vector512.Max(best2, c);
-            best3 = Vector512.Max(best3, d);
+            best0 = Vector512.MaxNative(best0, a);
+            best1 = Vector512.MaxNative(best1, b);
+            best2 = Vector512.MaxNative(best2, c);
+            best3 = Vector512.MaxNative(best3, d);
             number += four;
         }
 
@@ -110,7 +110,7 @@ public static class Lanes
         {
             Vector512<double> a = Square(ref Unsafe.Add(ref x, 3 * k), ux, uy, uz);
             at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), Vector512.Create((double)k), at0);
-            best0 = Vector512.Max(best0, a);
+            best0 = Vector512.MaxNative(best0, a);
         }
 
         (best0, at0) = Larger(best0, at0, best1, at1 + Vector512.Create(1.0));
@@ -161,7 +161,7 @@ public static class Lanes
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static Vector512<double> Further(
         Vector512<double> best, Vector512<double> x0, Vector512<double> x1, Vector512<double> x2, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz) =>
-        Vector512.Max(best, Vector512.Abs(Fma(x0, ux, Fma(x1, uy, x2 * uz))));
+        Vector512.MaxNative(best, Vector512.Abs(Fma(x0, ux, Fma(x1, uy, x2 * uz))));
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static Vector512<double> Projected(ref Vector512<double> row, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz) =>
@@ -211,8 +211,8 @@ public static class Lanes
             b *= b;
             at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), number, at0);
             at1 = Vector512.ConditionalSelect(Vector512.GreaterThan(b, best1), number, at1);
-            best0 = Vector512.Max(best0, a);
-            best1 = Vector512.Max(best1, b);
+            best0 = Vector512.MaxNative(best0, a);
+            best1 = Vector512.MaxNative(best1, b);
             number += two;
         }
 
@@ -222,7 +222,7 @@ public static class Lanes
             even = Fma(a, a, even);
             a *= a;
             at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), Vector512.Create((double)k), at0);
-            best0 = Vector512.Max(best0, a);
+            best0 = Vector512.MaxNative(best0, a);
         }
 
         (largest, index) = Larger(best0, at0, best1, at1 + Vector512<double>.One);
@@ -246,8 +246,8 @@ public static class Lanes
             Vector512<double> a = Norm(ref row), b = Norm(ref Unsafe.Add(ref row, 3));
             at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), number, at0);
             at1 = Vector512.ConditionalSelect(Vector512.GreaterThan(b, best1), number, at1);
-            best0 = Vector512.Max(best0, a);
-            best1 = Vector512.Max(best1, b);
+            best0 = Vector512.MaxNative(best0, a);
+            best1 = Vector512.MaxNative(best1, b);
             number += two;
             if (k + 1 < norms.Length)
             {
@@ -259,7 +259,7 @@ public static class Lanes
         {
             Vector512<double> a = Norm(ref Unsafe.Add(ref x, 3 * k));
             at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), Vector512.Create((double)k), at0);
-            best0 = Vector512.Max(best0, a);
+            best0 = Vector512.MaxNative(best0, a);
             if (k < norms.Length)
             {
                 norms[k] = a;

@@ -50,9 +50,9 @@ public sealed class PairSearch
         ref Vector512<double> e = ref MemoryMarshal.GetReference(eeg.Rows), m = ref MemoryMarshal.GetReference(meg.Rows);
         ref Vector512<double> ee = ref MemoryMarshal.GetReference(eeg.Powers), mm = ref MemoryMarshal.GetReference(meg.Powers);
         Row strongest = Row.OfEach(ref m, meg.Strongest), chosen = Row.OfEach(ref e, eeg.Strongest);
-        Vector512<double> most = strongest.Power, best = Vector512.Max(most, chosen.Power);
+        Vector512<double> most = strongest.Power, best = Vector512.MaxNative(most, chosen.Power);
 
-        best = Vector512.Max(best, Larger(chosen, strongest));
+        best = Vector512.MaxNative(best, Larger(chosen, strongest));
         chosen = Improve(ref e, ref ee, eegCount, strongest, chosen, ref best);
         strongest = Improve(ref m, ref mm, megCount, chosen, strongest, ref best);
         Improve(ref e, ref ee, eegCount, strongest, chosen, ref best);
@@ -67,17 +67,17 @@ public sealed class PairSearch
             for (int i = 0; i < eegLeft; i += 2)
             {
                 ref Vector512<double> pair = ref Unsafe.Add(ref scaled, 3 * i);
-                even = Vector512.Max(even, Vector512.Abs(Fma(x, pair, Fma(y, Unsafe.Add(ref pair, 1), z * Unsafe.Add(ref pair, 2)))));
-                odd = Vector512.Max(odd, Vector512.Abs(Fma(x, Unsafe.Add(ref pair, 3), Fma(y, Unsafe.Add(ref pair, 4), z * Unsafe.Add(ref pair, 5)))));
+                even = Vector512.MaxNative(even, Vector512.Abs(Fma(x, pair, Fma(y, Unsafe.Add(ref pair, 1), z * Unsafe.Add(ref pair, 2)))));
+                odd = Vector512.MaxNative(odd, Vector512.Abs(Fma(x, Unsafe.Add(ref pair, 3), Fma(y, Unsafe.Add(ref pair, 4), z * Unsafe.Add(ref pair, 5)))));
             }
 
-            Vector512<double> most2 = Vector512.Max(even, odd);
+            Vector512<double> most2 = Vector512.MaxNative(even, odd);
             if (Vector512.GreaterThanAny(Fma(most2, most2, Unsafe.Add(ref mm, k)), best))
             {
                 Row found = Row.At(ref m, k);
                 foreach (int i in _eegLeft.AsSpan(0, eegLeft))
                 {
-                    best = Vector512.Max(best, Larger(Row.At(ref e, i), found));
+                    best = Vector512.MaxNative(best, Larger(Row.At(ref e, i), found));
                 }
             }
         }
@@ -120,9 +120,9 @@ public sealed class PairSearch
                 continue;
             }
 
-            powerMost = Vector512.Max(powerMost, power & may);
-            acrossMost = Vector512.Max(acrossMost, tangential & may);
-            Vector512<double> scale = (Vector512<double>.One / Vector512.Sqrt(Vector512.Max(own, least))) & may;
+            powerMost = Vector512.MaxNative(powerMost, power & may);
+            acrossMost = Vector512.MaxNative(acrossMost, tangential & may);
+            Vector512<double> scale = (Vector512<double>.One / Vector512.Sqrt(Vector512.MaxNative(own, least))) & may;
             ref Vector512<double> to = ref Unsafe.Add(ref scaled, 3 * left);
             (to, Unsafe.Add(ref to, 1), Unsafe.Add(ref to, 2)) = (scale * x, scale * y, scale * z);
             _eegLeft[left++] = i;
@@ -153,7 +153,7 @@ public sealed class PairSearch
     /// <summary>Tries the row that most exceeds the best with one partner; returns the row of the best pair, or the one given where none is better.</summary>
     private static Row Improve(ref Vector512<double> rows, ref Vector512<double> powers, int count, in Row partner, Row chosen, ref Vector512<double> best)
     {
-        Vector512<double> scale = Vector512<double>.One / Vector512.Sqrt(Vector512.Max(best - partner.Power, best * Vector512.Create(LeastRoom)));
+        Vector512<double> scale = Vector512<double>.One / Vector512.Sqrt(Vector512.MaxNative(best - partner.Power, best * Vector512.Create(LeastRoom)));
         Vector512<double> px = scale * partner.X, py = scale * partner.Y, pz = scale * partner.Z;
         Vector512<double> most0 = Vector512.Create(-1.0), most1 = most0, at0 = default, at1 = default, number = default, two = Vector512.Create(2.0);
         int k = 0;
@@ -166,13 +166,13 @@ public sealed class PairSearch
             b = Fma(b, b, Unsafe.Add(ref powers, k + 1));
             at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, most0), number, at0);
             at1 = Vector512.ConditionalSelect(Vector512.GreaterThan(b, most1), number, at1);
-            most0 = Vector512.Max(most0, a);
-            most1 = Vector512.Max(most1, b);
+            most0 = Vector512.MaxNative(most0, a);
+            most1 = Vector512.MaxNative(most1, b);
             number += two;
         }
 
         at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(most1, most0), at1 + Vector512<double>.One, at0);
-        most0 = Vector512.Max(most0, most1);
+        most0 = Vector512.MaxNative(most0, most1);
         if (k < count)
         {
             ref Vector512<double> row = ref Unsafe.Add(ref rows, 3 * k);
@@ -183,7 +183,7 @@ public sealed class PairSearch
         Row found = Row.OfEach(ref rows, at0);
         Vector512<double> larger = Larger(found, partner);
         chosen.Take(Vector512.GreaterThan(larger, best), found);
-        best = Vector512.Max(best, larger);
+        best = Vector512.MaxNative(best, larger);
         return chosen;
     }
 
