@@ -17,7 +17,7 @@ public static class ReportWriter
     /// <summary>Leaves out report.html.</summary>
     public const string Report = "report";
 
-    /// <summary>Writes assessment.json, regions.csv, figures/*.svg and .png, report.html.</summary>
+    /// <summary>Writes assessment.json, regions.csv, variants.csv where the study has variants, figures/*.svg and .png, report.html.</summary>
     /// <param name="assessment">What to write.</param>
     /// <param name="folder">An existing folder, usually <see cref="ResultFolder.Folder"/>.</param>
     /// <param name="without">Any of <see cref="Figures"/> and <see cref="Report"/>; other words are ignored here.</param>
@@ -28,6 +28,12 @@ public static class ReportWriter
         int files = 2;
         File.WriteAllBytes(Path.Combine(folder, "assessment.json"), AssessmentJson.Bytes(assessment));
         File.WriteAllText(Path.Combine(folder, "regions.csv"), RegionsCsv.Text(assessment));
+        if (assessment.Variants.Count > 0)
+        {
+            File.WriteAllText(Path.Combine(folder, "variants.csv"), RegionsCsv.Variants(assessment));
+            files++;
+        }
+
         bool figures = !without.Contains(Figures);
         if (figures)
         {

@@ -31,6 +31,7 @@ public static class HtmlReport
             AnswerSection.Write(html, assessment, k);
         }
 
+        VariantSection.Write(html, assessment);
         if (assessment.Warnings.Count > 0)
         {
             Section(html, "warnings", "What to know about this run");
