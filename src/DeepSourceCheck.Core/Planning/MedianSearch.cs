@@ -40,7 +40,7 @@ internal sealed class MedianSearch(
     {
         Hunt[] hunts = [.. questions.Select(q => new Hunt(plan, tally.Cell(direction, q.Measure), q))];
         int chunks = (region.Positions.Length + RegionRun.ChunkSize - 1) / RegionRun.ChunkSize;
-        int threads = Math.Max(1, Math.Min(Environment.ProcessorCount, chunks));
+        int threads = RegionRun.Threads(chunks);
         Parallel.For(0, threads, new ParallelOptions { MaxDegreeOfParallelism = threads, CancellationToken = cancellation }, _ => Search(hunts, chunks, cancellation));
         return [.. hunts.Select(h => h.Found)];
     }

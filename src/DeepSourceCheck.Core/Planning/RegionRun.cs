@@ -31,7 +31,7 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
     {
         int dipoles = region.Positions.Length;
         int chunks = (dipoles + ChunkSize - 1) / ChunkSize;
-        int threads = Math.Max(1, Math.Min(Environment.ProcessorCount, chunks));
+        int threads = Threads(chunks);
         var tallies = new RegionTally[threads];
         ChunkLine? line = sink is null ? null : new ChunkLine(sink, ChunksAheadPerThread * threads);
         int claimed = 0, done = 0;
@@ -67,6 +67,9 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
         progress?.Invoke(dipoles);
         return RegionTally.Sum(tallies, cancellation);
     }
+
+    /// <summary>Threads that share so many chunks: what they find does not depend on their number.</summary>
+    internal static int Threads(int chunks) => Math.Max(1, Math.Min(Environment.ProcessorCount, chunks));
 
     /// <summary>Name of a kept point: the study's, or its row in the region.</summary>
     internal static string PointName(FilledRegion region, int k) =>
