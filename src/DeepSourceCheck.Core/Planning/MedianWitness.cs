@@ -3,7 +3,6 @@ using System.Runtime.Intrinsics;
 using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Planning;
 
