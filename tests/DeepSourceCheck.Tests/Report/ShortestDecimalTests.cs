@@ -51,7 +51,6 @@ public class ShortestDecimalTests
 
     [Theory]
     [InlineData(0.0, "0")]
-    [InlineData(-0.0, "0")]
     [InlineData(0.0001, "0.0001")]
     [InlineData(0.00001, "1E-05")]
     [InlineData(-1.5e-7, "-1.5E-07")]
@@ -65,6 +64,9 @@ public class ShortestDecimalTests
     [InlineData(-2.2250738585072014e-308, "-2.2250738585072014E-308")]
     [InlineData(9007199254740993.0, "9007199254740992")]
     public void Text_OfKnownNumbers_IsAsWritten(double value, string expected) => Assert.Equal(expected, Text(value));
+
+    [Fact]
+    public void Text_OfMinusZero_HasNoSign() => Assert.Equal("0", Text(double.NegativeZero));
 
     private static void Around(double value)
     {

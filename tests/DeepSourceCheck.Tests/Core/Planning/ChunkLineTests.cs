@@ -12,7 +12,7 @@ public class ChunkLineTests
     private static readonly TimeSpan Patience = TimeSpan.FromSeconds(30);
 
     [Fact]
-    public void Chunks_HandedInByManyThreads_AreWrittenInOrderByOneAtATime()
+    public async Task Chunks_HandedInByManyThreads_AreWrittenInOrderByOneAtATime()
     {
         const int chunks = 400, threads = 4;
         var sink = new NumberSink();
@@ -25,20 +25,20 @@ public class ChunkLineTests
                 line.Add(chunk, NumberSink.Chunk(chunk));
             }
         }))];
-        Assert.True(Task.WaitAll(tasks, Patience), "a thread waits for ever");
+        await Task.WhenAll(tasks).WaitAsync(Patience);
         Assert.Equal(Enumerable.Range(0, chunks), sink.Written);
     }
 
     [Fact]
-    public void ThreadThatIsTooFarAhead_WaitsUntilTheLineIsStopped()
+    public async Task ThreadThatIsTooFarAhead_WaitsUntilTheLineIsStopped()
     {
         var sink = new NumberSink();
         var line = new ChunkLine(sink, 2);
         line.Add(1, NumberSink.Chunk(1));
         Task ahead = Task.Run(() => line.Add(2, NumberSink.Chunk(2)));
-        Assert.False(ahead.Wait(TimeSpan.FromMilliseconds(100)), "chunk 2 has to wait for chunk 0");
+        Assert.NotSame(ahead, await Task.WhenAny(ahead, Task.Delay(TimeSpan.FromMilliseconds(100))));   // chunk 2 has to wait for chunk 0
         line.Stop();
-        Assert.True(ahead.Wait(Patience));
+        await ahead.WaitAsync(Patience);
         Assert.Empty(sink.Written);
     }
 
