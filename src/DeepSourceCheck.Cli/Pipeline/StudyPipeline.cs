@@ -24,8 +24,7 @@ internal static class StudyPipeline
     {
         settings.Progress?.Invoke("reading", 0);
         RegionLibrary library = RegionLibrary.Load();
-        string[] names = [.. library.Names];
-        StudyReading reading = studyPath is null ? DefaultStudy.Read(purpose, names) : StudyReader.Read(studyPath, purpose, names);
+        StudyReading reading = studyPath is null ? DefaultStudy.Read(purpose, library.Names) : StudyReader.Read(studyPath, purpose, library.Names);
         PreparedStudy study = Prepare(reading, library, purpose, settings);
         var variants = new List<PreparedVariant>();
         foreach (VariantReading variant in purpose == Purpose.Assess ? reading.Variants : [])
