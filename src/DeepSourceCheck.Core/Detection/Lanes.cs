@@ -1,6 +1,7 @@
 using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
 using System.Runtime.Intrinsics;
+using System.Runtime.Intrinsics.X86;
 
 using DeepSourceCheck.Core.Geometry;
 
@@ -20,9 +21,13 @@ public readonly record struct LaneDirection(Vector512<double> X, Vector512<doubl
     }
 }
 
-/// <summary>Sums over rows of leadfields of eight dipoles, layout [row][axis][lane].</summary>
+/// <summary>Sums and maxima over rows of leadfields of eight dipoles, layout [row][axis][lane].</summary>
+/// <remarks>Native maxima: the framework's own carry NaN, which costs twice as much and is not needed, since lanes of undefined directions are left out later.</remarks>
 public static class Lanes
 {
+    /// <summary>Control of the range instruction: the larger magnitude, without its sign.</summary>
+    private const byte LargestMagnitude = 0b1011;
+
     /// <summary>Views lanes as vectors of eight.</summary>
     public static ReadOnlySpan<Vector512<double>> View(ReadOnlySpan<double> lanes) => MemoryMarshal.Cast<double, Vector512<double>>(lanes);
 
@@ -69,6 +74,7 @@ public static class Lanes
     }
 
     /// <summary>u' G u for the six sums of <see cref="Gram"/>.</summary>
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
     public static Vector512<double> Quadratic(ReadOnlySpan<Vector512<double>> gram, in LaneDirection u)
     {
         Vector512<double> diagonal = gram[0] * u.X * u.X + gram[1] * u.Y * u.Y + gram[2] * u.Z * u.Z;
@@ -98,10 +104,10 @@ public static class Lanes
             at1 = Vector512.ConditionalSelect(Vector512.GreaterThan(b, best1), number, at1);
             at2 = Vector512.ConditionalSelect(Vector512.GreaterThan(c, best2), number, at2);
             at3 = Vector512.ConditionalSelect(Vector512.GreaterThan(d, best3), number, at3);
-            best0 = Vector512.Max(best0, a);
-            best1 = Vector512.Max(best1, b);
-            best2 = Vector512.Max(best2, c);
-            best3 = Vector512.Max(best3, d);
+            best0 = Vector512.MaxNative(best0, a);
+            best1 = Vector512.MaxNative(best1, b);
+            best2 = Vector512.MaxNative(best2, c);
+            best3 = Vector512.MaxNative(best3, d);
             number += four;
         }
 
@@ -109,7 +115,7 @@ public static class Lanes
         {
             Vector512<double> a = Square(ref Unsafe.Add(ref x, 3 * k), ux, uy, uz);
             at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), Vector512.Create((double)k), at0);
-            best0 = Vector512.Max(best0, a);
+            best0 = Vector512.MaxNative(best0, a);
         }
 
         (best0, at0) = Larger(best0, at0, best1, at1 + Vector512.Create(1.0));
@@ -159,16 +165,31 @@ public static class Lanes
     // max(best, |row . u|)
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static Vector512<double> Further(
-        Vector512<double> best, Vector512<double> x0, Vector512<double> x1, Vector512<double> x2, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz) =>
-        Vector512.Max(best, Vector512.Abs(Fma(x0, ux, Fma(x1, uy, x2 * uz))));
+        Vector512<double> best, Vector512<double> x0, Vector512<double> x1, Vector512<double> x2, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz)
+    {
+        Vector512<double> a = Fma(x0, ux, Fma(x1, uy, x2 * uz));
+        return Avx512DQ.IsSupported ? Avx512DQ.Range(best, a, LargestMagnitude) : Vector512.MaxNative(best, Vector512.Abs(a));
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<double> Projected(ref Vector512<double> row, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz) =>
+        Fma(row, ux, Fma(Unsafe.Add(ref row, 1), uy, Unsafe.Add(ref row, 2) * uz));
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static Vector512<double> Square(ref Vector512<double> row, Vector512<double> ux, Vector512<double> uy, Vector512<double> uz)
     {
-        Vector512<double> a = Fma(row, ux, Fma(Unsafe.Add(ref row, 1), uy, Unsafe.Add(ref row, 2) * uz));
+        Vector512<double> a = Projected(ref row, ux, uy, uz);
         return a * a;
     }
 
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static Vector512<double> Norm(ref Vector512<double> row)
+    {
+        Vector512<double> x = row, y = Unsafe.Add(ref row, 1), z = Unsafe.Add(ref row, 2);
+        return Fma(x, x, Fma(y, y, z * z));
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static (Vector512<double> Value, Vector512<double> Index) Larger(
         Vector512<double> a, Vector512<double> atA, Vector512<double> b, Vector512<double> atB)
     {
@@ -176,21 +197,84 @@ public static class Lanes
         return (Vector512.ConditionalSelect(second, b, a), Vector512.ConditionalSelect(second, atB, atA));
     }
 
-    /// <summary>Largest |row|^2 and the row that has it: the best channel over all directions.</summary>
-    public static Vector512<double> LargestNorm(ReadOnlySpan<double> rows, int count, out Vector512<double> index)
+    /// <summary>What <see cref="ProjectedPower"/> and <see cref="Largest"/> give, in one pass over the rows.</summary>
+    /// <param name="rows">[row][axis][lane].</param>
+    /// <param name="count">Number of rows, at least 1.</param>
+    /// <param name="u">Direction of each lane.</param>
+    /// <param name="largest">Largest (row . u)^2.</param>
+    /// <param name="index">Its row, as a double; the first among equals.</param>
+    public static Vector512<double> PowerAndLargest(ReadOnlySpan<double> rows, int count, in LaneDirection u, out Vector512<double> largest, out Vector512<double> index)
     {
-        ReadOnlySpan<Vector512<double>> x = View(rows);
-        Vector512<double> best = Vector512.Create(-1.0), at = default, number = default, one = Vector512.Create(1.0);
-        for (int k = 0; k < count; k++)
+        ref Vector512<double> x = ref MemoryMarshal.GetReference(View(rows));
+        Vector512<double> ux = u.X, uy = u.Y, uz = u.Z, none = Vector512.Create(-1.0), two = Vector512.Create(2.0);
+        Vector512<double> best0 = none, best1 = none, at0 = default, at1 = default, number = default, even = default, odd = default;
+        int k = 0;
+        for (; k + 1 < count; k += 2)
         {
-            Vector512<double> a = Fma(x[3 * k], x[3 * k], Fma(x[3 * k + 1], x[3 * k + 1], x[3 * k + 2] * x[3 * k + 2]));
-            Vector512<double> larger = Vector512.GreaterThan(a, best);
-            best = Vector512.ConditionalSelect(larger, a, best);
-            at = Vector512.ConditionalSelect(larger, number, at);
-            number += one;
+            ref Vector512<double> row = ref Unsafe.Add(ref x, 3 * k);
+            Vector512<double> a = Projected(ref row, ux, uy, uz), b = Projected(ref Unsafe.Add(ref row, 3), ux, uy, uz);
+            even = Fma(a, a, even);
+            odd = Fma(b, b, odd);
+            a *= a;
+            b *= b;
+            at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), number, at0);
+            at1 = Vector512.ConditionalSelect(Vector512.GreaterThan(b, best1), number, at1);
+            best0 = Vector512.MaxNative(best0, a);
+            best1 = Vector512.MaxNative(best1, b);
+            number += two;
         }
 
-        index = at;
-        return best;
+        if (k < count)
+        {
+            Vector512<double> a = Projected(ref Unsafe.Add(ref x, 3 * k), ux, uy, uz);
+            even = Fma(a, a, even);
+            a *= a;
+            at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), Vector512.Create((double)k), at0);
+            best0 = Vector512.MaxNative(best0, a);
+        }
+
+        (largest, index) = Larger(best0, at0, best1, at1 + Vector512<double>.One);
+        return even + odd;
+    }
+
+    /// <summary>Largest |row|^2 and the row that has it: the best channel over all directions.</summary>
+    /// <param name="rows">[row][axis][lane].</param>
+    /// <param name="count">Number of rows, at least 1.</param>
+    /// <param name="powers">[row][lane]: receives every |row|^2; empty where they are not wanted.</param>
+    /// <param name="index">Row of the largest value, as a double; the first among equals.</param>
+    public static Vector512<double> LargestNorm(ReadOnlySpan<double> rows, int count, Span<double> powers, out Vector512<double> index)
+    {
+        ref Vector512<double> x = ref MemoryMarshal.GetReference(View(rows));
+        Span<Vector512<double>> norms = MemoryMarshal.Cast<double, Vector512<double>>(powers);
+        Vector512<double> best0 = Vector512.Create(-1.0), best1 = best0, at0 = default, at1 = default, number = default, two = Vector512.Create(2.0);
+        int k = 0;
+        for (; k + 1 < count; k += 2)
+        {
+            ref Vector512<double> row = ref Unsafe.Add(ref x, 3 * k);
+            Vector512<double> a = Norm(ref row), b = Norm(ref Unsafe.Add(ref row, 3));
+            at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), number, at0);
+            at1 = Vector512.ConditionalSelect(Vector512.GreaterThan(b, best1), number, at1);
+            best0 = Vector512.MaxNative(best0, a);
+            best1 = Vector512.MaxNative(best1, b);
+            number += two;
+            if (k + 1 < norms.Length)
+            {
+                (norms[k], norms[k + 1]) = (a, b);
+            }
+        }
+
+        if (k < count)
+        {
+            Vector512<double> a = Norm(ref Unsafe.Add(ref x, 3 * k));
+            at0 = Vector512.ConditionalSelect(Vector512.GreaterThan(a, best0), Vector512.Create((double)k), at0);
+            best0 = Vector512.MaxNative(best0, a);
+            if (k < norms.Length)
+            {
+                norms[k] = a;
+            }
+        }
+
+        (best0, index) = Larger(best0, at0, best1, at1 + Vector512<double>.One);
+        return best0;
     }
 }

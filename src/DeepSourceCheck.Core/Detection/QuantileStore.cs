@@ -7,8 +7,7 @@ namespace DeepSourceCheck.Core.Detection;
 /// with the number of dipoles. Which of the two is decided by the announced total, so that the number of threads never changes a byte.
 /// </summary>
 /// <remarks>
-/// Classes are the leading 13 bits of the mantissa: positive doubles order like their bits. A percentile is then off by at most 0.0006 dB. A page of classes (32 kB) serves one binary exponent;
-/// a class counts up to 4e9 values, twice what an array of dipoles can hold.
+/// A percentile from <see cref="ClassCounts"/> is off by at most 0.0006 dB. A class counts up to 4e9 values, twice what an array of dipoles can hold.
 /// One store a thread; <see cref="Merge"/> adds stores in any order with the same result. NaN is left out, zero stands for "silent".
 /// </remarks>
 public sealed class QuantileStore
@@ -16,15 +15,9 @@ public sealed class QuantileStore
     /// <summary>Largest number of values that are kept one by one.</summary>
     public const long ExactLimit = 1 << 18;
 
-    private const int Shift = 52 - 13;
-    private const int ClassesAnExponent = 1 << 13;
-    private const int Exponents = 1 << 11;
-
     private readonly List<double>? _values;
-    private readonly uint[]?[]? _pages;
+    private readonly ClassCounts? _classes;
     private double[]? _sorted;
-    private long[]? _pageCounts;
-    private long _counted;
 
     /// <param name="announced">Number of values that all threads together will add.</param>
     /// <param name="multiplicity">How often each value counts.</param>
@@ -37,7 +30,7 @@ public sealed class QuantileStore
         }
         else
         {
-            _pages = new uint[Exponents][];
+            _classes = new ClassCounts();
         }
     }
 
@@ -48,7 +41,7 @@ public sealed class QuantileStore
     public int Multiplicity { get; }
 
     /// <summary>Number of values, with multiplicity.</summary>
-    public long Count { get; private set; }
+    public long Count => (_values?.Count ?? _classes!.Count) * Multiplicity;
 
     /// <summary>Adds a value of at least 0; NaN is ignored.</summary>
     public void Add(double value) => Add([value]);
@@ -56,139 +49,97 @@ public sealed class QuantileStore
     /// <summary>Adds values of at least 0; NaN is ignored.</summary>
     public void Add(ReadOnlySpan<double> values)
     {
-        int added = 0;
-        if (_values is not null)
+        if (_classes is not null)
         {
-            foreach (double value in values)
-            {
-                if (!double.IsNaN(value))
-                {
-                    _values.Add(value);
-                    added++;
-                }
-            }
-        }
-        else
-        {
-            uint[]?[] pages = _pages!;
-            foreach (double value in values)
-            {
-                if (double.IsNaN(value))
-                {
-                    continue;
-                }
-
-                long bits = BitConverter.DoubleToInt64Bits(value) & long.MaxValue;      // -0 is 0
-                uint[] page = pages[bits >> 52] ??= new uint[ClassesAnExponent];
-                page[(bits >> Shift) & (ClassesAnExponent - 1)]++;
-                added++;
-            }
+            _classes.Add(values);
+            return;
         }
 
-        Count += (long)added * Multiplicity;
+        foreach (double value in values)
+        {
+            if (!double.IsNaN(value))
+            {
+                _values!.Add(value);
+            }
+        }
     }
 
     /// <summary>Adds all that another store holds.</summary>
     public void Merge(QuantileStore other)
     {
-        Count += other.Count;
-        if (_values is not null)
+        if (_classes is not null)
         {
-            _values.AddRange(other._values!);
-            return;
+            _classes.Merge(other._classes!);
         }
-
-        for (int exponent = 0; exponent < Exponents; exponent++)
+        else
         {
-            if (other._pages![exponent] is { } page)
-            {
-                uint[] own = _pages![exponent] ??= new uint[ClassesAnExponent];
-                for (int k = 0; k < page.Length; k++)
-                {
-                    own[k] += page[k];
-                }
-            }
+            _values!.AddRange(other._values!);
         }
     }
 
     /// <summary>The value at a rank, 0 the smallest, in the unit of the values; with classes, a value inside the class.</summary>
     public double AtRank(long rank)
     {
-        if (_values is not null)
+        if (_classes is not null)
         {
-            if (_sorted is null || _sorted.Length != _values.Count)
-            {
-                _sorted = [.. _values];
-                Array.Sort(_sorted);
-            }
-
-            return _sorted[rank / Multiplicity];
+            return _classes.AtRank(rank / Multiplicity);
         }
 
-        long left = rank / Multiplicity;
-        if (_pageCounts is null || _counted != Count)
+        if (_sorted is null || _sorted.Length != _values!.Count)
         {
-            _pageCounts = [.. _pages!.Select(page => page is null ? 0 : page.Sum(n => (long)n))];
-            _counted = Count;
+            Complete();
         }
 
-        for (long exponent = 0; exponent < Exponents; exponent++)
+        return _sorted![rank / Multiplicity];
+    }
+
+    /// <summary>No values will follow: from here on several threads may read.</summary>
+    public void Complete()
+    {
+        if (_classes is not null)
         {
-            if (left >= _pageCounts[exponent])
-            {
-                left -= _pageCounts[exponent];
-                continue;
-            }
-
-            uint[] page = _pages![exponent]!;
-            for (int k = 0; k < page.Length; k++)
-            {
-                if (left < page[k])
-                {
-                    double low = BitConverter.Int64BitsToDouble((exponent << 52) | ((long)k << Shift));
-                    double high = BitConverter.Int64BitsToDouble(((exponent << 52) | ((long)k << Shift)) + (1L << Shift));
-                    return low == 0 ? 0 : low + (high - low) * (left + 0.5) / page[k];
-                }
-
-                left -= page[k];
-            }
+            _classes.Complete();
+            return;
         }
 
-        throw new ArgumentOutOfRangeException(nameof(rank));
+        double[] sorted = [.. _values!];
+        Array.Sort(sorted);
+        _sorted = sorted;
     }
 
     /// <summary>Whether a value may stand for <see cref="AtRank"/>: equal, or in the same class.</summary>
-    public bool Matches(double atRank, double value) =>
-        IsExact ? atRank == value : BitConverter.DoubleToInt64Bits(atRank) >> Shift == BitConverter.DoubleToInt64Bits(value) >> Shift;
+    public bool Matches(double atRank, double value) => IsExact ? atRank == value : ClassCounts.ClassOf(atRank) == ClassCounts.ClassOf(value);
 
     /// <summary>Percentile by linear interpolation of f(value) between ranks; null where empty or not finite.</summary>
     /// <param name="share">0 to 1.</param>
     /// <param name="map">Monotone map, for instance to dB.</param>
     public double? Interpolated(double share, Func<double, double> map)
     {
-        if (Count == 0)
+        long count = Count;
+        if (count == 0)
         {
             return null;
         }
 
-        double position = share * (Count - 1);
+        double position = share * (count - 1);
         long below = (long)Math.Floor(position);
         double t = position - below;
         double a = map(AtRank(below));
-        double value = t == 0 ? a : a + t * (map(AtRank(Math.Min(below + 1, Count - 1))) - a);
+        double value = t == 0 ? a : a + t * (map(AtRank(Math.Min(below + 1, count - 1))) - a);
         return double.IsFinite(value) ? value : null;
     }
 
     /// <summary>Nearest-rank percentile, counted from the largest value downwards: the value that <paramref name="share"/> of all values reach or exceed; null where empty.</summary>
     public double? NearestRankFromTop(double share)
     {
-        if (Count == 0)
+        long count = Count;
+        if (count == 0)
         {
             return null;
         }
 
-        long rank = Math.Clamp((long)Math.Ceiling(share * Count - 1e-9), 1, Count);
-        return AtRank(Count - rank);
+        long rank = Math.Clamp((long)Math.Ceiling(share * count - 1e-9), 1, count);
+        return AtRank(count - rank);
     }
 
     /// <summary>The five reported percentiles of f(value), by linear interpolation.</summary>

@@ -1,3 +1,4 @@
+using System.Buffers;
 using System.Globalization;
 
 using DeepSourceCheck.Core.Detection;
@@ -172,10 +173,10 @@ public static class Assessor
     {
         public void Begin(IReadOnlyList<DipoleColumn> columns) => inner.Begin(columns);
 
-        public byte[] Format(DipoleChunk chunk)
+        public void Format(DipoleChunk chunk, IBufferWriter<byte> text)
         {
             double[] absent = [.. Enumerable.Repeat(double.NaN, chunk.Count)];
-            return inner.Format(new DipoleChunk
+            inner.Format(new DipoleChunk
             {
                 Response = chunk.Response,
                 Region = chunk.Region,
@@ -186,9 +187,9 @@ public static class Assessor
                 SingularValues = chunk.SingularValues,
                 States = chunk.States,
                 SnrDb = [.. own.Select(k => k < 0 ? absent : chunk.SnrDb[k])],
-            });
+            }, text);
         }
 
-        public void Append(byte[] formatted) => inner.Append(formatted);
+        public void Append(ReadOnlySpan<byte> formatted) => inner.Append(formatted);
     }
 }

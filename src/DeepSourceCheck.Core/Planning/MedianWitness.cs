@@ -2,11 +2,7 @@ using System.Runtime.Intrinsics;
 
 using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Geometry;
-using DeepSourceCheck.Core.Heads;
-using DeepSourceCheck.Core.Leadfields;
-using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Planning;
 
@@ -24,64 +20,18 @@ namespace DeepSourceCheck.Core.Planning;
 internal sealed record MedianWitness(
     IMeasure Read, string Point, Vec3 Position, Vec3 Direction, double Power, double Artefact, int EegChannel, Vec3 EegRow, int MegChannel, Vec3 MegRow)
 {
-    /// <summary>Streams the region again until the median is met.</summary>
-    /// <param name="plan">What was read.</param>
-    /// <param name="head">Head.</param>
-    /// <param name="source">Leadfields.</param>
-    /// <param name="region">The region.</param>
-    /// <param name="tally">What the run found.</param>
-    /// <param name="measure">Measure of the verdict.</param>
-    /// <param name="direction">Direction of the verdict.</param>
-    /// <param name="rule">Index of the rule.</param>
-    /// <param name="cancellation">Stops between blocks.</param>
-    /// <returns>Null where the median is silent or undefined.</returns>
-    public static MedianWitness? Find(
-        EvaluationPlan plan, IHead head, ILeadfieldSource source, FilledRegion region, RegionTally tally, IMeasure measure, DirectionName direction, int rule,
-        CancellationToken cancellation)
-    {
-        MeasureTally cell = tally.Cell(direction, measure);
-        QuantileStore store = cell.Effective?[rule] ?? cell.Power;
-        if (store.NearestRankFromTop(0.5) is not { } median || median <= 0)
-        {
-            return null;
-        }
-
-        var block = new LeadfieldBlock(source.EegRows, source.MegRows);
-        var signals = new BlockSignals(plan.Space, head, plan.MegReported);
-        var reader = new BlockReader(plan);
-        for (int from = 0; from < region.Positions.Length; from += LeadfieldBlock.Lanes)
-        {
-            cancellation.ThrowIfCancellationRequested();
-            int n = Math.Min(LeadfieldBlock.Lanes, region.Positions.Length - from);
-            block.Load(region.Positions.AsSpan(from, n), region.SourceIndices.Length == 0 ? default : region.SourceIndices.AsSpan(from, n));
-            source.Fill(block);
-            signals.Load(block);
-            (DirectionMode mode, LaneDirection[] directions) = reader.DirectionsOf(direction, signals);
-            int stride = tally.Strides[plan.Directions.ToList().IndexOf(direction)];
-            for (int k = DirectionSets.Start(from / LeadfieldBlock.Lanes, stride); k < directions.Length; k += stride)
-            {
-                LaneDirection u = directions[k];
-                signals.Ask(mode, u);
-                foreach (IMeasure read in cell.Effective is null ? [measure] : plan.Fallbacks(measure).Prepend(measure))
-                {
-                    Vector512<double> power = read.Power(signals) * Vector512.Create(plan.Gain);
-                    Vector512<double> artefact = reader.ArtefactPower(read.InverseVariance(signals));
-                    for (int lane = 0; lane < n; lane++)
-                    {
-                        double value = cell.Effective is null ? power[lane] : plan.Rules[rule].EffectivePower(power[lane], artefact[lane]);
-                        if (store.Matches(median, value))
-                        {
-                            return Describe(plan, signals, read, mode, u, lane, RegionRun.PointName(region, from + lane), region.Positions[from + lane], power[lane], artefact[lane]);
-                        }
-                    }
-                }
-            }
-        }
-
-        return null;
-    }
-
-    private static MedianWitness Describe(
+    /// <summary>Describes what was read.</summary>
+    /// <param name="plan">What is read.</param>
+    /// <param name="signals">The block, with the direction asked.</param>
+    /// <param name="measure">The measure that was read.</param>
+    /// <param name="mode">How the direction was asked.</param>
+    /// <param name="u">The direction.</param>
+    /// <param name="lane">The dipole's lane in the block.</param>
+    /// <param name="point">Its name.</param>
+    /// <param name="position">Its place [m].</param>
+    /// <param name="power">What was read: power SNR of one trial.</param>
+    /// <param name="artefact">Artefact power over noise power of the convention.</param>
+    public static MedianWitness Of(
         EvaluationPlan plan, BlockSignals signals, IMeasure measure, DirectionMode mode, LaneDirection u, int lane, string point, Vec3 position, double power, double artefact)
     {
         int derivation = measure switch { DerivationMeasure d => d.Index, PairMeasure p => p.DerivationIndex, _ => -1 };

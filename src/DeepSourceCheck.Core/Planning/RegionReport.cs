@@ -27,21 +27,16 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
     /// <summary>Every row: modality, then direction, then measure.</summary>
     public IReadOnlyList<MeasureResult> Rows()
     {
-        var rows = new List<MeasureResult>();
-        foreach (Modality modality in Enum.GetValues<Modality>())
-        {
-            for (int d = 0; d < plan.Directions.Count; d++)
-            {
-                for (int m = 0; m < plan.Measures.Count; m++)
-                {
-                    if (plan.Measures[m].Modality == modality)
-                    {
-                        rows.Add(Row(d, m));
-                    }
-                }
-            }
-        }
-
+        (int Direction, int Measure)[] order =
+        [
+            .. from modality in Enum.GetValues<Modality>()
+               from d in Enumerable.Range(0, plan.Directions.Count)
+               from m in Enumerable.Range(0, plan.Measures.Count)
+               where plan.Measures[m].Modality == modality
+               select (d, m),
+        ];
+        var rows = new MeasureResult[order.Length];
+        Parallel.For(0, rows.Length, k => rows[k] = Row(order[k].Direction, order[k].Measure));
         return rows;
     }
 

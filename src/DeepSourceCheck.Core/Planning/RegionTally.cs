@@ -54,24 +54,36 @@ internal sealed class RegionTally
     /// <summary>Dipoles with a degenerate split.</summary>
     public int Degenerate { get; set; }
 
-    /// <summary>Adds another thread's counts.</summary>
-    public void Merge(RegionTally other)
+    /// <summary>Adds up the counts of all threads, on all threads.</summary>
+    /// <param name="tallies">At least one; the first becomes the sum.</param>
+    /// <param name="cancellation">Stops between cells.</param>
+    public static RegionTally Sum(IReadOnlyList<RegionTally> tallies, CancellationToken cancellation)
     {
-        for (int d = 0; d < Cells.Length; d++)
+        RegionTally total = tallies[0];
+        var options = new ParallelOptions { CancellationToken = cancellation };
+        Parallel.For(0, total.Cells.Length * (total._plan.Measures.Count + 1), options, job =>
         {
-            for (int m = 0; m < Cells[d].Length; m++)
+            int d = job / (total._plan.Measures.Count + 1), m = job % (total._plan.Measures.Count + 1);
+            if (m < total._plan.Measures.Count)
             {
-                Cells[d][m].Merge(other.Cells[d][m]);
+                total.Cells[d][m].Take(tallies.Skip(1).Select(t => t.Cells[d][m]));
+                return;
             }
 
-            Peaks[d][0].Merge(other.Peaks[d][0]);
-            Peaks[d][1].Merge(other.Peaks[d][1]);
+            for (int k = 0; k < 2; k++)
+            {
+                total.Peaks[d][k].Take(tallies.Skip(1).Select(t => t.Peaks[d][k]));
+            }
+        });
+        foreach (RegionTally other in tallies.Skip(1))
+        {
+            total.WeakestOverStrongest.Merge(other.WeakestOverStrongest);
+            total.AngleToRadial.Merge(other.AngleToRadial);
+            total.Undefined += other.Undefined;
+            total.Degenerate += other.Degenerate;
         }
 
-        WeakestOverStrongest.Merge(other.WeakestOverStrongest);
-        AngleToRadial.Merge(other.AngleToRadial);
-        Undefined += other.Undefined;
-        Degenerate += other.Degenerate;
+        return total;
     }
 
     private static int SetSize(DirectionName direction) => direction switch
@@ -145,13 +157,24 @@ internal sealed class MeasureTally
     /// <summary>Powers and artefact powers of one measure, value by value.</summary>
     internal sealed record Reading(double[] Powers, double[] Artefacts);
 
-    public void Merge(MeasureTally other)
+    /// <summary>Adds other threads' counts; no values will follow.</summary>
+    public void Take(IEnumerable<MeasureTally> others)
     {
-        Power.Merge(other.Power);
+        foreach (MeasureTally other in others)
+        {
+            Power.Merge(other.Power);
+            for (int r = 0; _artefact && r < Effective!.Length; r++)
+            {
+                Effective[r].Merge(other.Effective![r]);
+                Scales![r].Merge(other.Scales![r]);
+            }
+        }
+
+        Power.Complete();
         for (int r = 0; _artefact && r < Effective!.Length; r++)
         {
-            Effective[r].Merge(other.Effective![r]);
-            Scales![r].Merge(other.Scales![r]);
+            Effective[r].Complete();
+            Scales![r].Complete();
         }
     }
 }
@@ -180,12 +203,18 @@ internal sealed class PeakTally(long announced, int multiplicity, int channels)
         }
     }
 
-    public void Merge(PeakTally other)
+    /// <summary>Adds other threads' counts; no values will follow.</summary>
+    public void Take(IEnumerable<PeakTally> others)
     {
-        Power.Merge(other.Power);
-        for (int k = 0; k < _channels.Length; k++)
+        foreach (PeakTally other in others)
         {
-            _channels[k] += other._channels[k];
+            Power.Merge(other.Power);
+            for (int k = 0; k < _channels.Length; k++)
+            {
+                _channels[k] += other._channels[k];
+            }
         }
+
+        Power.Complete();
     }
 }

@@ -16,7 +16,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     /// <param name="cancellation">Stops the search for the dipole at the median.</param>
     public IReadOnlyList<VerdictResult> Write(ref IReadOnlyList<MeasureResult> rows, CancellationToken cancellation)
     {
-        var verdicts = new List<VerdictResult>();
+        var asked = new List<MedianSearch.Question>();
         DirectionName direction = plan.Directions.Contains(plan.Response.Direction.Name) ? plan.Response.Direction.Name : DirectionName.Isotropic;
         foreach ((Modality modality, string? name) in new[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) })
         {
@@ -26,14 +26,18 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             }
 
             IMeasure measure = plan.Measures.First(m => m.Modality == modality && m.Name == name);
-            for (int r = 0; r < plan.Rules.Count; r++)
-            {
-                MedianWitness? witness = MedianWitness.Find(plan, setup.Head, source, region, tally, measure, direction, r, cancellation);
-                IReadOnlyList<DerivedNumber> chain = witness is null ? [] : new DerivationChain(plan, setup.Noise!).Of(witness, witness.Read, plan.Rules[r]);
-                rows = Reconcile(rows, modality, direction, name, r, witness);
-                MeasureResult row = rows.First(x => x.Modality == modality && x.Direction == direction && x.Measure == name);
-                verdicts.Add(Verdict(row, r, witness, chain));
-            }
+            asked.AddRange(plan.Rules.Select((_, rule) => new MedianSearch.Question(measure, rule)));
+        }
+
+        MedianWitness?[] witnesses = new MedianSearch(plan, setup.Head, source, region, tally, direction).Find(asked, cancellation);
+        var verdicts = new List<VerdictResult>();
+        for (int k = 0; k < asked.Count; k++)
+        {
+            (IMeasure measure, int rule) = asked[k];
+            IReadOnlyList<DerivedNumber> chain = witnesses[k] is { } found ? new DerivationChain(plan, setup.Noise!).Of(found, found.Read, plan.Rules[rule]) : [];
+            rows = Reconcile(rows, measure.Modality, direction, measure.Name, rule, witnesses[k]);
+            MeasureResult row = rows.First(x => x.Modality == measure.Modality && x.Direction == direction && x.Measure == measure.Name);
+            verdicts.Add(Verdict(row, rule, witnesses[k], chain));
         }
 
         return verdicts;

@@ -4,16 +4,17 @@ using DeepSourceCheck.Core.Geometry;
 namespace DeepSourceCheck.Core.Results;
 
 /// <summary>Results of a run of consecutive dipoles of one region: the unit in which dipole results stream out.</summary>
+/// <remarks>Used again for the next chunk of its thread: arrays may be longer than the count asks for.</remarks>
 public sealed class DipoleChunk
 {
     /// <summary>Response.</summary>
     public required string Response { get; init; }
 
     /// <summary>Region.</summary>
-    public required string Region { get; init; }
+    public required string Region { get; set; }
 
     /// <summary>Number of dipoles.</summary>
-    public required int Count { get; init; }
+    public required int Count { get; set; }
 
     /// <summary>Name of each point: the study's, or its row in the region from 0.</summary>
     public required string[] Points { get; init; }

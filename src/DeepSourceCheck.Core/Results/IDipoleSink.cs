@@ -1,3 +1,5 @@
+using System.Buffers;
+
 namespace DeepSourceCheck.Core.Results;
 
 /// <summary>Takes dipole results as they are computed.</summary>
@@ -7,8 +9,10 @@ public interface IDipoleSink
     void Begin(IReadOnlyList<DipoleColumn> columns);
 
     /// <summary>Turns a chunk into bytes. Pure; may run on several threads at once.</summary>
-    byte[] Format(DipoleChunk chunk);
+    /// <param name="chunk">The chunk; its arrays are overwritten afterwards.</param>
+    /// <param name="text">Receives the bytes.</param>
+    void Format(DipoleChunk chunk, IBufferWriter<byte> text);
 
     /// <summary>Appends formatted chunks; called in the order of the dipoles, from one thread at a time.</summary>
-    void Append(byte[] formatted);
+    void Append(ReadOnlySpan<byte> formatted);
 }

@@ -1,11 +1,14 @@
+using System.Buffers;
+using System.Buffers.Binary;
+
 using DeepSourceCheck.Core.Results;
 
 namespace DeepSourceCheck.Tests.Support;
 
-/// <summary>Keeps every chunk.</summary>
+/// <summary>Keeps a copy of every chunk.</summary>
 internal sealed class KeepingSink : IDipoleSink
 {
-    private readonly Dictionary<byte[], DipoleChunk> _formatted = [];
+    private readonly List<DipoleChunk> _formatted = [];
 
     public IReadOnlyList<DipoleColumn> Columns { get; private set; } = [];
 
@@ -13,16 +16,33 @@ internal sealed class KeepingSink : IDipoleSink
 
     public void Begin(IReadOnlyList<DipoleColumn> columns) => Columns = columns;
 
-    public byte[] Format(DipoleChunk chunk)
+    public void Format(DipoleChunk chunk, IBufferWriter<byte> text)
     {
-        byte[] key = new byte[1];
+        var copy = new DipoleChunk
+        {
+            Response = chunk.Response,
+            Region = chunk.Region,
+            Count = chunk.Count,
+            Points = chunk.Points[..chunk.Count],
+            Positions = chunk.Positions[..chunk.Count],
+            Directions = chunk.Directions[..(3 * chunk.Count)],
+            SingularValues = chunk.SingularValues[..chunk.Count],
+            States = chunk.States[..chunk.Count],
+            SnrDb = [.. chunk.SnrDb.Select(column => column[..chunk.Count])],
+        };
         lock (_formatted)
         {
-            _formatted.Add(key, chunk);
+            BinaryPrimitives.WriteInt32LittleEndian(text.GetSpan(sizeof(int)), _formatted.Count);
+            text.Advance(sizeof(int));
+            _formatted.Add(copy);
         }
-
-        return key;
     }
 
-    public void Append(byte[] formatted) => Chunks.Add(_formatted[formatted]);
+    public void Append(ReadOnlySpan<byte> formatted)
+    {
+        lock (_formatted)
+        {
+            Chunks.Add(_formatted[BinaryPrimitives.ReadInt32LittleEndian(formatted)]);
+        }
+    }
 }

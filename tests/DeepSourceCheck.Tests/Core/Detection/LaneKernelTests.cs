@@ -38,10 +38,12 @@ public class LaneKernelTests
         var random = new Random(count);
         double[] rows = Rows(random, count);
         LaneDirection[] set = [.. Enumerable.Range(0, 11).Select(_ => Directions(random))];
+        var norms = new double[count * Lanes];
         var gram = new Vector512<double>[6];
         DeepSourceCheck.Core.Detection.Lanes.Gram(rows, count, gram);
         Vector512<double> power = DeepSourceCheck.Core.Detection.Lanes.ProjectedPower(rows, count, set[0]), quadratic = DeepSourceCheck.Core.Detection.Lanes.Quadratic(gram, set[0]);
-        Vector512<double> largest = DeepSourceCheck.Core.Detection.Lanes.Largest(rows, count, set[0], out Vector512<double> index), norm = DeepSourceCheck.Core.Detection.Lanes.LargestNorm(rows, count, out _);
+        Vector512<double> largest = DeepSourceCheck.Core.Detection.Lanes.Largest(rows, count, set[0], out Vector512<double> index), norm = DeepSourceCheck.Core.Detection.Lanes.LargestNorm(rows, count, norms, out Vector512<double> longest);
+        Vector512<double> both = DeepSourceCheck.Core.Detection.Lanes.PowerAndLargest(rows, count, set[0], out Vector512<double> largestOfBoth, out Vector512<double> indexOfBoth);
         Vector512<double> sum = DeepSourceCheck.Core.Detection.Lanes.SumOfLargest(rows, count, set);
         for (int lane = 0; lane < Lanes; lane++)
         {
@@ -60,6 +62,13 @@ public class LaneKernelTests
             Assert.InRange(largest[lane] - expected, -Rounding * scale, Rounding * scale);
             Assert.Equal(row, (int)index[lane]);
             RelativeAssert.Equal(PlainRows.LargestNorm(own), norm[lane], Rounding);
+            Assert.Equal(norm[lane], norms[(int)longest[lane] * Lanes + lane]);
+            for (int k = 0; k < count; k++)
+            {
+                RelativeAssert.Equal(Vec3.Dot(own[k], own[k]), norms[k * Lanes + lane], Rounding);
+            }
+
+            Assert.Equal((power[lane], largest[lane], index[lane]), (both[lane], largestOfBoth[lane], indexOfBoth[lane]));
             Assert.InRange(sum[lane] - set.Sum(d => PlainRows.Largest(own, Of(d, lane)).Power), -Rounding * scale * set.Length, Rounding * scale * set.Length);
         }
     }
