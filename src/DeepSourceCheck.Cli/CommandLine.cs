@@ -63,6 +63,7 @@ internal static class CommandLine
             AssessCommand.Create(surroundings),
             LeadfieldCommand.Create(surroundings),
             RegionsCommand.Create(surroundings),
+            CacheCommand.Create(surroundings),
             WhyCommand.Create(surroundings),
             CompletionsCommand.Create(surroundings),
         };

@@ -32,6 +32,7 @@ internal static class AssessCommand
         without.CompletionSources.Add([.. Parts]);
         Option<bool> json = SharedOptions.Json();
         Option<long?> memory = SharedOptions.Memory();
+        Option<string?> cache = SharedOptions.Cache();
         var command = new TaughtCommand("assess", "say whether the response can be detected, with what, in how many trials")
         {
             About =
@@ -51,12 +52,13 @@ internal static class AssessCommand
         command.Add(without);
         command.Add(json);
         command.Add(memory);
+        command.Add(cache);
         command.SetAction(parsed => Run(
-            parsed.GetValue(study), parsed.GetValue(outFolder) ?? DefaultFolder, parsed.GetValue(without) ?? new HashSet<string>(), parsed.GetValue(json), parsed.GetValue(memory), surroundings));
+            parsed.GetValue(study), parsed.GetValue(outFolder) ?? DefaultFolder, parsed.GetValue(without) ?? new HashSet<string>(), parsed.GetValue(json), parsed.GetValue(memory), parsed.GetValue(cache), surroundings));
         return command;
     }
 
-    private static int Run(string? study, string outFolder, IReadOnlySet<string> without, bool json, long? memory, Surroundings surroundings)
+    private static int Run(string? study, string outFolder, IReadOnlySet<string> without, bool json, long? memory, string? cache, Surroundings surroundings)
     {
         CancellationToken cancellation = surroundings.Interruption.Token;
         string? path = SharedOptions.Checked(study);
@@ -65,7 +67,7 @@ internal static class AssessCommand
         int files;
         using (ProgressLine? line = surroundings.ErrorIsTerminal ? new ProgressLine(surroundings.Error, surroundings.Columns) : null)
         {
-            var settings = new RunSettings(memory, without, line is null ? null : line.Report, cancellation);
+            var settings = new RunSettings(memory, without, line is null ? null : line.Report, cancellation) { CacheFolder = cache };
             PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Assess, settings);
             SharedOptions.RefuseOverBudget(prepared, memory);
             using ResultFolder folder = ResultFolder.Create(outFolder, ResultFolderKind.Assessment);

@@ -18,6 +18,7 @@ internal static class LeadfieldCommand
         Option<string> outFolder = SharedOptions.Out("Folder of the arrays. An earlier result is replaced whole, any other existing folder is refused.", required: true);
         Option<bool> json = SharedOptions.Json();
         Option<long?> memory = SharedOptions.Memory();
+        Option<string?> cache = SharedOptions.Cache();
         var command = new TaughtCommand("leadfield", "write what EEG and MEG see of each dipole, as arrays")
         {
             About =
@@ -31,11 +32,12 @@ internal static class LeadfieldCommand
         command.Add(outFolder);
         command.Add(json);
         command.Add(memory);
-        command.SetAction(parsed => Run(parsed.GetRequiredValue(study), parsed.GetRequiredValue(outFolder), parsed.GetValue(json), parsed.GetValue(memory), surroundings));
+        command.Add(cache);
+        command.SetAction(parsed => Run(parsed.GetRequiredValue(study), parsed.GetRequiredValue(outFolder), parsed.GetValue(json), parsed.GetValue(memory), parsed.GetValue(cache), surroundings));
         return command;
     }
 
-    private static int Run(string study, string outFolder, bool json, long? memory, Surroundings surroundings)
+    private static int Run(string study, string outFolder, bool json, long? memory, string? cache, Surroundings surroundings)
     {
         CancellationToken cancellation = surroundings.Interruption.Token;
         string? path = SharedOptions.Checked(study);
@@ -44,7 +46,7 @@ internal static class LeadfieldCommand
         string[] files;
         using (ProgressLine? line = surroundings.ErrorIsTerminal ? new ProgressLine(surroundings.Error, surroundings.Columns) : null)
         {
-            var settings = new RunSettings(memory, new HashSet<string>(), line is null ? null : line.Report, cancellation);
+            var settings = new RunSettings(memory, new HashSet<string>(), line is null ? null : line.Report, cancellation) { CacheFolder = cache };
             prepared = surroundings.Steps.Prepare(path, Purpose.Leadfield, settings);
             SharedOptions.RefuseOverBudget(prepared, memory);
             using ResultFolder folder = ResultFolder.Create(outFolder, ResultFolderKind.Leadfield);

@@ -31,6 +31,14 @@ internal static class SharedOptions
         CustomParser = Single<long?>("--memory", "a size such as 4GB, 800MB or 2GiB", text => MemorySize.TryParse(text, out long bytes) ? bytes : null),
     };
 
+    /// <summary>`--cache FOLDER`.</summary>
+    public static Option<string?> Cache() => new("--cache")
+    {
+        Description = "Folder that keeps what was solved for heads of voxels, so that the next run on the same head starts at once. Left out: deepsourcecheck in the user's cache folder.",
+        HelpName = "FOLDER",
+        CustomParser = Single<string?>("--cache", "the name of a folder", text => text.Trim().Length > 0 ? text : null),
+    };
+
     /// <summary>`--out FOLDER`.</summary>
     public static Option<string> Out(string description, bool required) => new("--out")
     {

@@ -23,6 +23,7 @@ internal static class WhyCommand
         };
         Option<bool> json = SharedOptions.Json();
         Option<long?> memory = SharedOptions.Memory();
+        Option<string?> cache = SharedOptions.Cache();
         var command = new TaughtCommand("why", "the whole chain for one region: each number with its formula and source")
         {
             About =
@@ -40,11 +41,12 @@ internal static class WhyCommand
         command.Add(region);
         command.Add(json);
         command.Add(memory);
-        command.SetAction(parsed => Run(parsed.GetValue(study), parsed.GetValue(region), parsed.GetValue(json), parsed.GetValue(memory), surroundings));
+        command.Add(cache);
+        command.SetAction(parsed => Run(parsed.GetValue(study), parsed.GetValue(region), parsed.GetValue(json), parsed.GetValue(memory), parsed.GetValue(cache), surroundings));
         return command;
     }
 
-    private static int Run(string? study, string? region, bool json, long? memory, Surroundings surroundings)
+    private static int Run(string? study, string? region, bool json, long? memory, string? cache, Surroundings surroundings)
     {
         if (study is not null && region is null && LooksLikeRegion(study))
         {
@@ -55,7 +57,7 @@ internal static class WhyCommand
         Assessment assessment;
         using (ProgressLine? line = surroundings.ErrorIsTerminal ? new ProgressLine(surroundings.Error, surroundings.Columns) : null)
         {
-            var settings = new RunSettings(memory, AssessCommand.Parts.ToHashSet(), line is null ? null : line.Report, surroundings.Interruption.Token);
+            var settings = new RunSettings(memory, AssessCommand.Parts.ToHashSet(), line is null ? null : line.Report, surroundings.Interruption.Token) { CacheFolder = cache };
             PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Assess, settings);
             SharedOptions.RefuseOverBudget(prepared, memory);
             assessment = surroundings.Steps.Assess(prepared, settings, null);

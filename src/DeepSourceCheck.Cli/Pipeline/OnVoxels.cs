@@ -19,21 +19,21 @@ internal sealed class OnVoxels : SensorAssembly
     private readonly VoxelHeadChoice _choice;
     private readonly BuiltVoxelHead _built;
     private readonly VoxelParts _parts;
+    private readonly List<string> _warnings;
     private readonly IVoxelSensors _sensors;
     private readonly Lazy<IReadOnlyList<Vec3>> _background;
     private ILeadfieldSource _source;
-    private RunSettings? _settings;
+    private TableSensors? _tables;
 
     /// <param name="reading">The study as read.</param>
     /// <param name="choice">Its head.</param>
     /// <param name="built">The head as its files give it.</param>
-    /// <param name="parts">Placement and solver; null while the program has none.</param>
+    /// <param name="parts">Placement and solver.</param>
     /// <param name="inputs">Receives the files that are read.</param>
     /// <param name="warnings">Receives what the user must know.</param>
-    public OnVoxels(StudyReading reading, VoxelHeadChoice choice, BuiltVoxelHead built, VoxelParts? parts, InputDigests inputs, List<string> warnings)
+    public OnVoxels(StudyReading reading, VoxelHeadChoice choice, BuiltVoxelHead built, VoxelParts parts, InputDigests inputs, List<string> warnings)
     {
-        (_reading, _choice, _built) = (reading, choice, built);
-        _parts = parts ?? throw new InputException(null, "head.voxels", "not supported yet: heads from a label volume are read and checked, but not computed with; use head.spheres or head.leadfields");
+        (_reading, _choice, _built, _parts, _warnings) = (reading, choice, built, parts, warnings);
         Study study = reading.Study;
         _sensors = _parts.Sensors(built, choice.Landmarks);
         Electrodes = study.Eeg is null ? [] : Place(study, inputs, warnings);
@@ -96,21 +96,21 @@ internal sealed class OnVoxels : SensorAssembly
             return;
         }
 
-        _settings = settings;
+        // One solver for both, dropped with its matrix when both are done.
+        IVoxelSolver solver = _parts.Solver(_built, _choice);
         IEnumerable<Vec3> places = regions.SelectMany(r => r.Positions);
-        _source = _parts.Solver.Solve(
-            new(_built.Head, _built.Tensors, _choice, Electrodes, Channels, [.. WantsBackground ? places.Concat(_background.Value) : places]), settings);
+        _source = solver.Solve(new("leadfields", Electrodes, Channels, [.. WantsBackground ? places.Concat(_background.Value) : places], Reusable: true), settings, _warnings);
+        if (WantsBackground)
+        {
+            IReadOnlyList<Vec3> sites = _sensors.Sites(TableSensors.Names);
+            Electrode[] electrodes = [.. TableSensors.Names.Select((n, k) => new Electrode(n, sites[k], true, 0))];
+            var problem = new VoxelProblem("leadfields of the noise tables' sensors", electrodes, _sensors.Array(TableSensors.Array), _background.Value, Reusable: false);
+            _tables = new(solver.Solve(problem, settings, _warnings), electrodes);
+        }
     }
 
     /// <inheritdoc/>
-    public override TableSensors Tables()
-    {
-        RunSettings settings = _settings ?? throw new InvalidOperationException("The tables' leadfields were asked for before the study's were computed.");
-        IReadOnlyList<Vec3> sites = _sensors.Sites(TableSensors.Names);
-        Electrode[] electrodes = [.. TableSensors.Names.Select((n, k) => new Electrode(n, sites[k], true, 0))];
-        var problem = new VoxelProblem(_built.Head, _built.Tensors, _choice, electrodes, _sensors.Array(TableSensors.Array), _background.Value);
-        return new(_parts.Solver.Solve(problem, settings), electrodes);
-    }
+    public override TableSensors Tables() => _tables ?? throw new InvalidOperationException("The tables' leadfields were asked for before the study's were computed.");
 
     /// <inheritdoc/>
     protected override Scene Scene() => new() { Electrodes = [.. Electrodes.Select(e => (e.Name, e.Position))] };

@@ -8,8 +8,9 @@ namespace DeepSourceCheck.Cli.Pipeline;
 
 /// <summary>A variant of a study, likewise.</summary>
 /// <param name="Name">Its name.</param>
-/// <param name="Study">The variant as a study of its own, without variants.</param>
-internal sealed record PreparedVariant(string Name, PreparedStudy Study);
+/// <param name="Study">The variant as a study of its own, without variants, checked only.</param>
+/// <param name="Prepare">Prepares it for its run.</param>
+internal sealed record PreparedVariant(string Name, PreparedStudy Study, Func<RunSettings, PreparedStudy> Prepare);
 
 /// <summary>A study that was read and found sound, with all of its parts built.</summary>
 internal sealed record PreparedStudy

@@ -10,6 +10,9 @@ internal sealed record RunSettings(long? MemoryBudget, IReadOnlySet<string> With
     /// <summary>True: nothing costly is computed; the study is read, checked and its cost predicted.</summary>
     public bool CheckOnly { get; init; }
 
-    /// <summary>What heads of voxels are computed with; null: they are refused.</summary>
-    public VoxelParts? VoxelParts { get; init; } = VoxelParts.Present;
+    /// <summary>Folder in which the rows of voxel heads are kept; null: the user's own cache.</summary>
+    public string? CacheFolder { get; init; }
+
+    /// <summary>What heads of voxels are computed with.</summary>
+    public VoxelParts VoxelParts { get; init; } = VoxelParts.Own;
 }

@@ -31,7 +31,9 @@ internal static class StudyPipeline
         {
             try
             {
-                variants.Add(new PreparedVariant(variant.Name, Prepare(variant.Reading, library, purpose, settings)));
+                // Checked now, solved for when its turn comes: the rows of several heads of voxels would not fit side by side.
+                PreparedStudy check = Prepare(variant.Reading, library, purpose, settings with { CheckOnly = true, Progress = null });
+                variants.Add(new PreparedVariant(variant.Name, check, settings => Prepare(variant.Reading, library, purpose, settings)));
             }
             catch (InputException error)
             {
@@ -81,7 +83,8 @@ internal static class StudyPipeline
         foreach (PreparedVariant variant in prepared.Variants)
         {
             Action<string, double>? progress = settings.Progress is { } told ? (stage, done) => told($"{variant.Name}: {stage}", done) : null;
-            variants.Add(new VariantResult(variant.Name, AssessOne(variant.Study, settings with { Progress = progress }, null)));
+            RunSettings own = settings with { Progress = progress };
+            variants.Add(new VariantResult(variant.Name, AssessOne(variant.Prepare(own), own, null)));
         }
 
         return study with { Variants = variants, Inputs = [.. study.Inputs.Concat(variants.SelectMany(v => v.Assessment.Inputs)).DistinctBy(f => f.Path)] };

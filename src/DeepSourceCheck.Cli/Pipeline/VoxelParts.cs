@@ -24,6 +24,9 @@ internal interface IVoxelSensors
     /// <summary>A generated array about the head, at the stated gap from the scalp.</summary>
     IReadOnlyList<MegChannel> Array(CoilArrayChoice choice);
 
+    /// <summary>One sentence on where a generated array lies.</summary>
+    string Describe(CoilArrayChoice choice);
+
     /// <summary>Refuses coils that do not lie in the air around the head.</summary>
     /// <param name="channels">Channels of a table.</param>
     /// <param name="file">The table, for messages.</param>
@@ -34,28 +37,30 @@ internal interface IVoxelSensors
     IReadOnlyList<string> Warnings { get; }
 }
 
-/// <summary>What the finite elements are solved for.</summary>
-/// <param name="Head">The head.</param>
-/// <param name="Tensors">Conductivity tensors, or null.</param>
-/// <param name="Choice">Grid and load of the dipole.</param>
+/// <summary>What the finite elements of one head are solved for.</summary>
+/// <param name="What">What it is, for progress.</param>
 /// <param name="Electrodes">Electrodes; may be empty.</param>
 /// <param name="Channels">MEG channels; may be empty.</param>
-/// <param name="Places">Where dipoles will stand [m]: rows are kept for the nodes that these use.</param>
+/// <param name="Places">Where dipoles will stand [m].</param>
+/// <param name="Reusable">True: rows of every node that a source could use are kept, as far as they fit, so that other regions find them too; else those that the places need.</param>
 internal sealed record VoxelProblem(
-    VoxelHead Head, ConductivityTensors? Tensors, VoxelHeadChoice Choice, IReadOnlyList<Electrode> Electrodes, IReadOnlyList<MegChannel> Channels, IReadOnlyList<Vec3> Places);
+    string What, IReadOnlyList<Electrode> Electrodes, IReadOnlyList<MegChannel> Channels, IReadOnlyList<Vec3> Places, bool Reusable);
 
-/// <summary>Solves a row for every sensor, or takes it from the cache.</summary>
+/// <summary>Solves a row for every sensor of one head, or takes it from the cache.</summary>
 internal interface IVoxelSolver
 {
     /// <summary>Leadfields at the problem's places, unreferenced.</summary>
-    ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings);
+    /// <param name="problem">Sensors and places.</param>
+    /// <param name="settings">Cache, progress, cancellation.</param>
+    /// <param name="warnings">Receives trouble with the cache.</param>
+    ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings, List<string> warnings);
 }
 
 /// <summary>What a head of voxels needs beside its volume.</summary>
 /// <param name="Sensors">Makes the sensors' placement for a head and the landmarks that the study gives [m].</param>
-/// <param name="Solver">Solver.</param>
-internal sealed record VoxelParts(Func<BuiltVoxelHead, IReadOnlyDictionary<string, Vec3>, IVoxelSensors> Sensors, IVoxelSolver Solver)
+/// <param name="Solver">Makes the solver of a head.</param>
+internal sealed record VoxelParts(Func<BuiltVoxelHead, IReadOnlyDictionary<string, Vec3>, IVoxelSensors> Sensors, Func<BuiltVoxelHead, VoxelHeadChoice, IVoxelSolver> Solver)
 {
-    /// <summary>The program's own; null while they are not part of it.</summary>
-    public static VoxelParts? Present => null;
+    /// <summary>The program's own.</summary>
+    public static VoxelParts Own { get; } = new((built, landmarks) => new ScalpSensors(built, landmarks), (built, choice) => new RowSolver(built, choice));
 }

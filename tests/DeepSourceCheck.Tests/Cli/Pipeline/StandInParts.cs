@@ -16,7 +16,7 @@ internal sealed class StandInParts(LayeredSphere sphere) : IVoxelSensors, IVoxel
 {
     public List<VoxelProblem> Solved { get; } = [];
 
-    public VoxelParts Parts => new((_, _) => this, this);
+    public VoxelParts Parts => new((_, _) => this, (_, _) => this);
 
     public IReadOnlyList<string> Warnings => ["the stand-in placed the sensors"];
 
@@ -26,9 +26,11 @@ internal sealed class StandInParts(LayeredSphere sphere) : IVoxelSensors, IVoxel
 
     public IReadOnlyList<MegChannel> Array(CoilArrayChoice choice) => CoilArray.Generate(choice, sphere.Centre, sphere.OuterRadius);
 
+    public string Describe(CoilArrayChoice choice) => "";
+
     public void CheckCoils(IReadOnlyList<MegChannel> channels, string file) => SphereLeadfield.CheckCoils(sphere, channels, file);
 
-    public ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings)
+    public ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings, List<string> warnings)
     {
         Solved.Add(problem);
         return new SphereLeadfield(sphere, problem.Electrodes, problem.Channels);

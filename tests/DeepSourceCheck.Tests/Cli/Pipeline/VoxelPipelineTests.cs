@@ -211,14 +211,6 @@ public sealed class VoxelPipelineTests : IDisposable
         Assert.Contains("the radius of a sphere of the head's volume, 0.1 mm is far from the usual 45 to 110 mm", Refusal(Voxels()), StringComparison.Ordinal);
     }
 
-    [Fact]
-    public void WithoutParts_TheHeadIsRefusedAsNotSupportedYet()
-    {
-        RunSettings settings = Settings() with { VoxelParts = null };
-        string message = Assert.Throws<InputException>(() => StudyPipeline.Prepare(_folder.Write("study.yaml", Voxels()), Purpose.Assess, settings)).Message;
-        Assert.Matches("study.yaml:3:3: head.voxels: not supported yet: .{10,}", message);
-    }
-
     [Theory]
     [InlineData(430_000, 355, 0.5e9, 1.0e9, 4, 12)]
     [InlineData(3_100_000, 355, 3.5e9, 6.5e9, 30, 80)]

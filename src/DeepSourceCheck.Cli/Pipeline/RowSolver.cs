@@ -1,0 +1,74 @@
+using System.Globalization;
+
+using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Heads.Voxels;
+using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Leadfields.Voxels;
+using DeepSourceCheck.Core.Numerics.Multigrid;
+using DeepSourceCheck.Core.Sensors;
+using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Files.Leadfields;
+
+namespace DeepSourceCheck.Cli.Pipeline;
+
+/// <summary>Transfer rows of one head: from the cache, or solved for and kept there. Mesh and matrix are built once, the matrix only where something must be solved.</summary>
+internal sealed class RowSolver : IVoxelSolver
+{
+    // Most memory of the rows of all nodes that a source could use; beyond it rows are kept for the study's own dipoles alone, and other dipoles need other rows.
+    private const long MostRowBytes = 1L << 30;
+
+    private readonly ConductivityTensors? _tensors;
+    private readonly HexMesh _mesh;
+    private readonly DipoleLoad _load;
+    private VoxelSolver? _solver;
+
+    /// <param name="built">The head.</param>
+    /// <param name="choice">Grid and load of the dipole.</param>
+    public RowSolver(BuiltVoxelHead built, VoxelHeadChoice choice)
+    {
+        _tensors = built.Tensors;
+        HexMesh plain = HexMesh.Plain(built.Head.Volume);
+        _mesh = choice.Adapted ? AdaptedNodes.Adapt(plain) : plain;
+        _load = DipoleLoad.Of(choice.DipoleLoad == DipoleLoadName.Monopoles ? DipoleLoadKind.Monopoles : DipoleLoadKind.ElementGradient, new SourceTissue(_mesh));
+    }
+
+    /// <inheritdoc/>
+    public ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings, List<string> warnings)
+    {
+        int sensors = problem.Electrodes.Count + problem.Channels.Count;
+        KeptNodes kept = problem.Reusable ? KeptNodes.Within(_load, sensors, MostRowBytes, problem.Places) : KeptNodes.NeededBy(_load, problem.Places);
+        var rows = new TransferRows(kept, problem.Electrodes.Count, problem.Channels.Count);
+        string key = RowKey.Of(_mesh, _tensors, problem.Electrodes, problem.Channels, kept, SolveSettings.Default.ToString());
+        var cache = new RowCache(settings.CacheFolder ?? RowCache.DefaultFolder());
+        settings.Progress?.Invoke($"{problem.What}: looking for rows", 0);
+        if (!cache.TryRead(key, rows, out _, out string? trouble))
+        {
+            Note(warnings, trouble);
+            SolveReport report = Solver(problem, settings).Solve(
+                new SensorLoads(new ElectrodeLoad(_mesh, problem.Electrodes), new CoilLoad(_mesh, problem.Channels, _tensors)),
+                rows.Take, Threads,
+                settings.Progress is { } told ? share => told(problem.What, share) : null, settings.Cancellation);
+            settings.Cancellation.ThrowIfCancellationRequested();
+            Note(warnings, cache.TryWrite(key, rows, new(report.MostIterations, report.WorstResidual)));
+        }
+
+        return new VoxelLeadfield(rows, _load, problem.Channels);
+    }
+
+    private static int Threads => Environment.ProcessorCount;
+
+    private VoxelSolver Solver(VoxelProblem problem, RunSettings settings)
+    {
+        settings.Progress?.Invoke($"{problem.What}: setting up", 0);
+        settings.Cancellation.ThrowIfCancellationRequested();
+        return _solver ??= new VoxelSolver(_mesh, _tensors, SolveSettings.Default, Threads);
+    }
+
+    private static void Note(List<string> warnings, string? trouble)
+    {
+        if (trouble is not null)
+        {
+            warnings.Add(string.Create(CultureInfo.InvariantCulture, $"row cache: {trouble}"));
+        }
+    }
+}
