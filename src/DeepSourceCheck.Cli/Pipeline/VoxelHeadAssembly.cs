@@ -46,6 +46,7 @@ internal static class VoxelHeadAssembly
 
         CroppedHead cropped = HeadCrop.Of(volume) ?? throw new InputException(display, LabelsKey, "the overlays turn every voxel of the head into air");
         settings.Cancellation.ThrowIfCancellationRequested();
+        RefuseOverBudget(cropped.Volume, display, settings.MemoryBudget);
         HeadPieces pieces = HeadPieces.Largest(cropped.Volume);
         HeadFindings findings = HeadChecks.Judge(cropped, pieces);
         if (findings.Problems.Count > 0)
@@ -69,6 +70,16 @@ internal static class VoxelHeadAssembly
         {
             throw new InputException(display, LabelsKey,
                 $"{header.Grid.Nx} x {header.Grid.Ny} x {header.Grid.Nz} voxels take about {MemorySize.Rough(bytes)} to read alone, more than the {MemorySize.Rough(limit)} that --memory allows; cut the volume to the head, use larger voxels, or allow more");
+        }
+    }
+
+    /// <summary>What the fewest sensors would take is known before the head is looked at: a hopeless run is refused at once.</summary>
+    private static void RefuseOverBudget(TissueVolume volume, string display, long? budget)
+    {
+        if (budget is { } limit && VoxelCost.Of(volume, rows: 1, dipoles: 1).Bytes is var bytes && bytes > limit)
+        {
+            throw new InputException(display, LabelsKey,
+                $"the finite elements on it need at least {MemorySize.Rough(bytes)} of memory, more than the {MemorySize.Rough(limit)} that --memory allows; use larger voxels, or allow more");
         }
     }
 
