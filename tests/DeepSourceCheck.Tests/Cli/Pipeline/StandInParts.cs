@@ -16,7 +16,16 @@ internal sealed class StandInParts(LayeredSphere sphere) : IVoxelSensors, IVoxel
 {
     public List<VoxelProblem> Solved { get; } = [];
 
-    public VoxelParts Parts => new((_, _) => this, (_, _) => this);
+    /// <summary>The head that was built last.</summary>
+    public BuiltVoxelHead? Built { get; private set; }
+
+    public VoxelParts Parts => new(
+        (built, _) =>
+        {
+            Built = built;
+            return this;
+        },
+        (_, _) => this);
 
     public IReadOnlyList<string> Warnings => ["the stand-in placed the sensors"];
 

@@ -118,7 +118,7 @@ public sealed class VoxelPipelineTests : IDisposable
         Assert.Equal(2, _parts.Solved.Count);
         Assert.Equal(prepared.Dipoles + 500, _parts.Solved[0].Places.Count);
         Assert.Equal(500, _parts.Solved[1].Places.Count);
-        Assert.All(_parts.Solved[1].Places, p => Assert.Equal("brain", _parts.Solved[1].Head.TissueAt(p)));
+        Assert.All(_parts.Solved[1].Places, p => Assert.Equal("brain", _parts.Built!.Head.TissueAt(p)));
         Assert.Equal(["Cz", "M1", "M2"], _parts.Solved[1].Electrodes.Select(e => e.Name));
     }
 
@@ -141,7 +141,7 @@ public sealed class VoxelPipelineTests : IDisposable
         WriteTensors(volume.Grid, 0.3);
         string study = Voxels("    tensors: {file: tensors.nii, tissues: [brain]}\n");
         Prepare(study);
-        Assert.Equal(volume.Cells.Count((byte)4), _parts.Solved[0].Tensors!.Count);
+        Assert.Equal(volume.Cells.Count((byte)4), _parts.Built!.Tensors!.Count);
         WriteTensors(volume.Grid, 0.0007);
         Assert.Contains("the mean over directions and voxels of brain, against the tissue's own conductivity, 0.0007 S/m is far from the usual 0.33 to 0.33 S/m", Refusal(study), StringComparison.Ordinal);
     }
