@@ -7,7 +7,7 @@ namespace DeepSourceCheck.Core.Leadfields.Voxels;
 //   With s_n = (x_n - x_0)/h, h the cube root of a voxel's volume, and the ten monomials m(s) = 1, s_a, s_a s_b (a <= b):
 //     least  sum w_n^2 q_n^2 + sum_r (sum_n m_r(s_n) q_n - M_r)^2/lambda_r,   M = 0, e, 0,   w_n^2 = w_0^2 + |s_n|^2
 //   that is q_n = m(s_n)' y / w_n^2,  (sum_n m m'/w_n^2 + diag lambda) y = M: ten unknowns however many nodes. Weights are q/h.
-//   lambda is minute for the sum and the moment, which hold to rounding, and small for the second moments, which give way where there are too few nodes.
+//   lambda is minute for the sum and the moment, which hold to rounding, small for the second moments of the full set of 27 nodes, and 1 where nodes are missing.
 // Source: [Buchner et al. 1997], [de Munck, Wolters & Clerc 2012] for the moments and the distance weights; the dual form and the hard first moments are ours.
 
 /// <summary>A dipole as monopoles on the nodes around it, correct to second moments.</summary>
@@ -22,7 +22,12 @@ public sealed class MonopoleLoad : DipoleLoad
     // w_0^2: keeps a node that the dipole stands on from taking everything.
     private const double NodeWeight = 0.1;
 
-    private const double HardRidge = 1e-12, SoftRidge = 1e-4;
+    private const double HardRidge = 1e-12;
+
+    // Second moments in voxels squared: nearly kept by the full set. Nodes on one side of the dipole could keep them only by large opposed currents: there they may go.
+    private const double SoftRidge = 1e-4, OneSidedRidge = 1;
+
+    private const int WholeSet = 27;
 
     // The moment that the nodes must reproduce: far below the error of discretisation.
     private const double MomentTolerance = 1e-4;
@@ -53,7 +58,7 @@ public sealed class MonopoleLoad : DipoleLoad
             int count = Collect(position, (at.X - 1, at.Y - 1, at.Z - 1), 3, within: true, nodes, offsets);
             if (Solve(offsets[..count], weights))
             {
-                support = count == 27 ? DipoleSupport.Whole : DipoleSupport.Partial;
+                support = count == WholeSet ? DipoleSupport.Whole : DipoleSupport.Partial;
                 return count;
             }
 
@@ -156,7 +161,7 @@ public sealed class MonopoleLoad : DipoleLoad
 
         for (int r = 0; r < Moments; r++)
         {
-            matrix[r * (Moments + 1)] += r < 4 ? HardRidge : SoftRidge;
+            matrix[r * (Moments + 1)] += r < 4 ? HardRidge : offsets.Length == WholeSet ? SoftRidge : OneSidedRidge;
         }
 
         Factor(matrix);

@@ -290,8 +290,9 @@ public class VoxelLeadfieldTests
     public void Leadfield_OfWrongShapeOrPlace_IsRefused()
     {
         HexMesh mesh = HexMesh.Plain(VoxelHeads.Shells(VoxelHeads.Cubic));
-        Vec3[] dipoles = VoxelHeads.Dipoles(mesh.Volume, 2);
         MonopoleLoad load = new(new(mesh));
+        Vec3[] dipoles = VoxelHeads.Dipoles(mesh.Volume, 40);
+        dipoles = [dipoles[0], dipoles[39]];                 // at opposite ends: they share no nodes
         TransferRows rows = new(KeptNodes.NeededBy(load, [dipoles[0]]), 2, 3);
         MegChannel[] channels = VoxelHeads.Channels(mesh.Volume, 3);
         Assert.Throws<ArgumentException>(() => new VoxelLeadfield(rows, load, channels[..2]));
