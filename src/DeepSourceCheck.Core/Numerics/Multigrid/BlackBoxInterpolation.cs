@@ -88,10 +88,18 @@ internal static class BlackBoxInterpolation
             }
         }
 
+        // A coarse node where the fine grid has none would hang on the couplings of a staircase alone, and hardly on them: it serves only where no other can.
+        bool firm = false;
+        for (int corner = 0; corner < 8; corner++)
+        {
+            firm |= sums[corner] > 0 && Stands(fine, at, corner);
+        }
+
         double largest = 0, total = 0;
         int count = 0;
         for (int corner = 0; corner < 8; corner++)
         {
+            sums[corner] = firm && !Stands(fine, at, corner) ? 0 : sums[corner];
             largest = Math.Max(largest, sums[corner]);
         }
 
@@ -110,6 +118,12 @@ internal static class BlackBoxInterpolation
                 weights[corners[corner] * Stencil.Stride + PlaceOf(at, corner)] = (float)weight;
             }
         }
+    }
+
+    private static bool Stands(StencilOperator fine, (int X, int Y, int Z) at, int corner)
+    {
+        int node = fine.Grid.IndexOf(2 * ((at.X >> 1) + (corner & 1)), 2 * ((at.Y >> 1) + (corner >> 1 & 1)), 2 * ((at.Z >> 1) + (corner >> 2)));
+        return node >= 0 && fine.IsLive(node);
     }
 
     /// <summary>Adds a coupling to a neighbour onto the coarse nodes from which the neighbour is interpolated.</summary>
