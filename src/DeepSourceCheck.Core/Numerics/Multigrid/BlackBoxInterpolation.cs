@@ -88,18 +88,23 @@ internal static class BlackBoxInterpolation
             }
         }
 
-        // A coarse node where the fine grid has none would hang on the couplings of a staircase alone, and hardly on them: it serves only where no other can.
+        // A coarse node where the fine grid has none would hang on the couplings of a staircase alone, and hardly on them: it serves only where no other can, and then by itself.
         bool firm = false;
+        int best = -1;
         for (int corner = 0; corner < 8; corner++)
         {
-            firm |= sums[corner] > 0 && Stands(fine, at, corner);
+            if (corners[corner] >= 0)
+            {
+                firm |= sums[corner] > 0 && Stands(fine, at, corner);
+                best = best < 0 || sums[corner] > sums[best] ? corner : best;
+            }
         }
 
         double largest = 0, total = 0;
-        int count = 0;
         for (int corner = 0; corner < 8; corner++)
         {
-            sums[corner] = firm && !Stands(fine, at, corner) ? 0 : sums[corner];
+            bool admitted = firm ? Stands(fine, at, corner) : corner == best;
+            sums[corner] = admitted ? sums[corner] : 0;
             largest = Math.Max(largest, sums[corner]);
         }
 
@@ -107,14 +112,13 @@ internal static class BlackBoxInterpolation
         {
             sums[corner] = sums[corner] < LeastWeight * largest ? 0 : sums[corner];
             total += sums[corner];
-            count += corners[corner] >= 0 ? 1 : 0;
         }
 
         for (int corner = 0; corner < 8; corner++)
         {
             if (corners[corner] >= 0)
             {
-                double weight = largest > 0 ? sums[corner] / total : 1.0 / count;
+                double weight = largest > 0 ? sums[corner] / total : corner == best ? 1.0 : 0.0;
                 weights[corners[corner] * Stencil.Stride + PlaceOf(at, corner)] = (float)weight;
             }
         }
