@@ -1,13 +1,21 @@
+using BenchmarkDotNet.Configs;
 using BenchmarkDotNet.Running;
 
 using DeepSourceCheck.Benchmarks;
 
+<<<<<<< HEAD
 // kernels: a table of the kernels in a minute; whole: the published program as a process; yardstick: numpy beside the kernels; voxels: the solver of voxel heads; voxels-petsc: the same beside PETSc;
+=======
+// kernels: a table of the kernels at every width of registers, in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
+>>>>>>> main
 // anything else goes to BenchmarkDotNet, for instance --filter '*'.
 switch (args.FirstOrDefault())
 {
     case "kernels":
         KernelTable.Print(Console.Out);
+        return 0;
+    case KernelTable.LinesArgument:
+        KernelTable.PrintLines(Console.Out);
         return 0;
     case "whole":
         return WholeProcess.Run(args[1..], Console.Out);
@@ -18,6 +26,8 @@ switch (args.FirstOrDefault())
     case "voxels-petsc":
         return VoxelPetsc.Run(args[1..], Console.Out);
     default:
-        BenchmarkSwitcher.FromAssembly(typeof(KernelBenchmarks).Assembly).Run(args);
+        // Its logs and tables go beside the program: the folder of the repository stays clean.
+        BenchmarkSwitcher.FromAssembly(typeof(KernelBenchmarks).Assembly)
+            .Run(args, DefaultConfig.Instance.WithArtifactsPath(Path.Combine(AppContext.BaseDirectory, "BenchmarkDotNet.Artifacts")));
         return 0;
 }
