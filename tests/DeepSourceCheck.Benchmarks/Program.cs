@@ -3,7 +3,8 @@ using BenchmarkDotNet.Running;
 
 using DeepSourceCheck.Benchmarks;
 
-// kernels: a table of the kernels at every width of registers, in a minute; whole: the published program as a process; yardstick: numpy beside the kernels; voxels: the solver of voxel heads;
+// kernels: a table of the kernels at every width of registers, in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
+// voxels: the solver of voxel heads; voxels-petsc: the same beside PETSc;
 // anything else goes to BenchmarkDotNet, for instance --filter '*'.
 switch (args.FirstOrDefault())
 {
@@ -19,6 +20,8 @@ switch (args.FirstOrDefault())
         return Yardstick.Run(Console.Out);
     case "voxels":
         return VoxelTable.Run(args[1..], Console.Out);
+    case "voxels-petsc":
+        return VoxelPetsc.Run(args[1..], Console.Out);
     default:
         // Its logs and tables go beside the program: the folder of the repository stays clean.
         BenchmarkSwitcher.FromAssembly(typeof(KernelBenchmarks).Assembly)
