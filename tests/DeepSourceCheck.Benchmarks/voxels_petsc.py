@@ -31,7 +31,7 @@ sigma = sigma_of[label[label > 0]]
 def golden(k, count, lowest=-1.0):
     """Point k of a golden-angle lattice on the unit sphere above a height."""
     height = 1 - (1 - lowest) * (k + 0.5) / count
-    angle = k * math.pi * (3 - math.sqrt(5))
+    angle = (k + 0.5) * math.pi * (3 - math.sqrt(5))
     ring = math.sqrt(max(0.0, 1 - height * height))
     return np.array([ring * math.cos(angle), ring * math.sin(angle), height])
 

@@ -9,8 +9,11 @@ namespace DeepSourceCheck.Core.Numerics.Multigrid;
 /// <summary>Operator-dependent interpolation for a 27-point operator.</summary>
 internal static class BlackBoxInterpolation
 {
-    /// <summary>Weights below this are rounding of couplings that cancel, or carry nothing; kept, their products would sink below the range of single precision on coarser levels.</summary>
-    private const double LeastWeight = 1e-4;
+    /// <summary>
+    /// Weights below this share of the largest of a node are dropped. A coarse node that only weakly reaches any fine one would have couplings that cancel in its diagonal; from level to
+    /// level the share that survives shrinks like a power of the weight, down to what single precision no longer holds.
+    /// </summary>
+    private const double LeastWeight = 0.05;
 
     /// <summary>The interpolation to the grid of an operator from its coarsened grid.</summary>
     /// <param name="fine">The operator.</param>

@@ -185,7 +185,10 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
         if (levels.Levels == 1)
         {
             levels.Coarsest.Apply(v.Residual.At, v.Work.At);
-            Dot(v.Work, v.Residual, rz);           // the inverse returns no mean
+            var direct = default(LaneSums);
+            Array.Clear(_shifts);
+            LaneUpdates.DotAndTotal(0, v.Work.Nodes, v.Work.At, v.Residual.At, pieces.Map, _shifts, ref direct);
+            direct.CopyTo(rz);
             return;
         }
 

@@ -7,8 +7,9 @@ using static DeepSourceCheck.Core.Numerics.Multigrid.LaneMath;
 namespace DeepSourceCheck.Core.Numerics.Multigrid;
 
 // DenseCoarseInverse.cs - the coarsest level, solved exactly.
-//   Constants on each unconnected piece are in the kernel of A. With s the mean diagonal and 1 the constant of a piece of m nodes, A + sum_pieces s 1 1'/m is regular; from
-//   its inverse sum_pieces 1 1'/(s m) is taken off again: what remains is the pseudo-inverse, which returns no constant and answers none.
+//   The constant 1 of each unconnected piece is in the kernel of A. With d the diagonal of A on the piece and D = sum d, A + sum_pieces d d'/D is regular; from its inverse
+//   sum_pieces 1 1'/D is taken off again: what remains inverts A on loads without sum, answers d with nothing and returns no constant, weighted by d. The weights matter: on coarse
+//   levels diagonals differ by a factor of a million, and a sum left by rounding, shared out evenly, would drive nodes that hardly couple to huge potentials.
 
 /// <summary>The pseudo-inverse of the coarsest operator as a dense matrix.</summary>
 internal sealed unsafe class DenseCoarseInverse
@@ -23,7 +24,6 @@ internal sealed unsafe class DenseCoarseInverse
     {
         int n = a.Grid.Count;
         var matrix = new double[n, n];
-        double trace = 0;
         for (int node = 0; node < n; node++)
         {
             (int x, int y, int z) = a.Grid.Node(node);
@@ -38,22 +38,34 @@ internal sealed unsafe class DenseCoarseInverse
                     matrix[other, node] -= 0.5 * row[k];
                     matrix[node, node] += 0.5 * row[k];
                     matrix[other, other] += 0.5 * row[k];
-                    trace += row[k];
                 }
             }
         }
 
-        double scale = trace > 0 ? trace / n : 1.0;
-        int[][] pieces = [.. Pieces.Of(a).Members()];
-        AddConstants(matrix, pieces, scale);
+        double[] diagonal = [.. Enumerable.Range(0, n).Select(i => matrix[i, i])];
+        Pieces pieces = Pieces.Of(a);
+        var sums = new double[pieces.Count];
+        for (int i = 0; i < n; i++)
+        {
+            if (pieces.Of(i) is >= 0 and int piece)
+            {
+                sums[piece] += diagonal[i];
+            }
+            else
+            {
+                matrix[i, i] = 1;                   // a node without couplings: any number serves, its column is cleared below
+            }
+        }
+
+        ForPairs(pieces, n, (i, j, piece) => matrix[i, j] += diagonal[i] * diagonal[j] / sums[piece]);
         Invert(matrix, n);
-        AddConstants(matrix, pieces, -1.0 / scale);
+        ForPairs(pieces, n, (i, j, piece) => matrix[i, j] -= 1 / sums[piece]);
         _inverse = GC.AllocateUninitializedArray<float>(n * n, pinned: true);
         for (int i = 0; i < n; i++)
         {
             for (int j = 0; j < n; j++)
             {
-                _inverse[i * n + j] = (float)(0.5 * (matrix[i, j] + matrix[j, i]));
+                _inverse[i * n + j] = pieces.Of(i) >= 0 ? (float)(0.5 * (matrix[i, j] + matrix[j, i])) : 0;
             }
         }
 
@@ -100,15 +112,16 @@ internal sealed unsafe class DenseCoarseInverse
         }
     }
 
-    private static void AddConstants(double[,] matrix, int[][] pieces, double scale)
+    /// <summary>Visits all pairs of nodes of the same piece.</summary>
+    private static void ForPairs(Pieces pieces, int nodes, Action<int, int, int> visit)
     {
-        foreach (int[] piece in pieces)
+        for (int i = 0; i < nodes; i++)
         {
-            foreach (int i in piece)
+            for (int j = 0; j < nodes; j++)
             {
-                foreach (int j in piece)
+                if (pieces.Of(i) >= 0 && pieces.Of(i) == pieces.Of(j))
                 {
-                    matrix[i, j] += scale / piece.Length;
+                    visit(i, j, pieces.Of(i));
                 }
             }
         }

@@ -30,13 +30,6 @@ internal sealed class Pieces
     /// <summary>Piece of a node; -1 for a node without couplings.</summary>
     public int Of(int node) => _pieces is null ? 0 : _pieces[node];
 
-    /// <summary>The nodes of each piece; nodes without couplings each by themselves at the end.</summary>
-    public IEnumerable<int[]> Members()
-    {
-        int nodes = _pieces?.Length ?? Sizes[0];
-        return Enumerable.Range(0, nodes).GroupBy(n => Of(n) >= 0 ? Of(n) : Count + n).OrderBy(g => g.Key).Select(g => g.ToArray());
-    }
-
     /// <summary>Finds the pieces by joining nodes along their couplings.</summary>
     public static Pieces Of(StencilOperator a)
     {
