@@ -9,6 +9,7 @@ AppDomain.CurrentDomain.UnhandledException += (_, e) =>
     Environment.Exit(ExitStatus.Failed);
 };
 using var interruption = Interruption.OfProcess();
+Warmup.Begin(args.Length > 0 ? args[0] : null);
 using var standardOutput = new StreamWriter(Console.OpenStandardOutput(), new UTF8Encoding(false), 1 << 14) { NewLine = "\n" };
 using var standardError = new StreamWriter(Console.OpenStandardError(), new UTF8Encoding(false), 1 << 10) { NewLine = "\n", AutoFlush = true };
 return CommandLine.Run(args, Terminal.Surroundings(standardOutput, standardError, interruption));

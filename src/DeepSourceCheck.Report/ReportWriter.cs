@@ -17,7 +17,18 @@ public static class ReportWriter
     /// <summary>Leaves out report.html.</summary>
     public const string Report = "report";
 
-    /// <summary>Writes assessment.json, regions.csv, figures/*.svg and .png, report.html.</summary>
+    /// <summary>Loads and runs what drawing needs whatever is drawn: font, plotting library, its native code. Only saves time; may run beside anything.</summary>
+    public static void Warm()
+    {
+        using FigureSheet sheet = new(64, 64, 8, 8, 8, 8);
+        sheet.Limits(0, 1, 0, 1);
+        sheet.BottomAxis([(0, "0"), (1, "1")]);
+        sheet.Over(pen => pen.Text("a", pen.Left, pen.Bottom));
+        InlineFigure.Svg(sheet, "w", "", "");
+        sheet.Png();
+    }
+
+    /// <summary>Writes assessment.json, regions.csv, variants.csv where the study has variants, figures/*.svg and .png, report.html.</summary>
     /// <param name="assessment">What to write.</param>
     /// <param name="folder">An existing folder, usually <see cref="ResultFolder.Folder"/>.</param>
     /// <param name="without">Any of <see cref="Figures"/> and <see cref="Report"/>; other words are ignored here.</param>
@@ -25,28 +36,35 @@ public static class ReportWriter
     /// <returns>The number of files written.</returns>
     public static int Write(Assessment assessment, string folder, IReadOnlySet<string> without, CancellationToken cancel = default)
     {
+        bool figures = !without.Contains(Figures), report = !without.Contains(Report);
+        FigureDrawings? drawings = figures || report ? FigureDrawings.Begin(assessment, figures, report, cancel) : null;
         int files = 2;
         File.WriteAllBytes(Path.Combine(folder, "assessment.json"), AssessmentJson.Bytes(assessment));
         File.WriteAllText(Path.Combine(folder, "regions.csv"), RegionsCsv.Text(assessment));
-        bool figures = !without.Contains(Figures);
+        if (assessment.Variants.Count > 0)
+        {
+            File.WriteAllText(Path.Combine(folder, "variants.csv"), RegionsCsv.Variants(assessment));
+            files++;
+        }
+
+        if (report)
+        {
+            // First: the page's own text is written while others draw.
+            File.WriteAllText(Path.Combine(folder, "report.html"), HtmlReport.Text(assessment, figures, drawings!));
+            files++;
+        }
+
         if (figures)
         {
             string place = Directory.CreateDirectory(Path.Combine(folder, "figures")).FullName;
-            foreach (Figure figure in FigureSet.All(assessment))
+            for (int k = 0; k < drawings!.Figures.Count; k++)
             {
                 cancel.ThrowIfCancellationRequested();
-                using FigureSheet sheet = figure.Draw(figure.FileWidth);
-                File.WriteAllText(Path.Combine(place, figure.Name + ".svg"), FigureFile.Svg(figure, sheet));
-                File.WriteAllBytes(Path.Combine(place, figure.Name + ".png"), sheet.Png());
+                string name = Path.Combine(place, drawings.Figures[k].Name);
+                File.WriteAllText(name + ".svg", drawings.Svg(k));
+                File.WriteAllBytes(name + ".png", drawings.Png(k));
                 files += 2;
             }
-        }
-
-        cancel.ThrowIfCancellationRequested();
-        if (!without.Contains(Report))
-        {
-            File.WriteAllText(Path.Combine(folder, "report.html"), HtmlReport.Text(assessment, figures));
-            files++;
         }
 
         return files;

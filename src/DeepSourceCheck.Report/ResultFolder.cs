@@ -21,7 +21,7 @@ public sealed class ResultFolder : IDisposable
     // Between making the folder and its lock, and between dropping the lock and renaming, lie microseconds.
     private static readonly TimeSpan UnlockedGrace = TimeSpan.FromMinutes(1);
 
-    private static readonly HashSet<string> AssessmentNames = ["assessment.json", "regions.csv", "dipoles.csv", "report.html", "figures", "maps"];
+    private static readonly HashSet<string> AssessmentNames = ["assessment.json", "regions.csv", "variants.csv", "dipoles.csv", "report.html", "figures", "maps"];
     private static readonly HashSet<string> LeadfieldNames = ["eeg.npy", "meg.npy", "points.tsv", "rows.tsv"];
 
     // Left by file browsers, without the user's doing.

@@ -42,6 +42,9 @@ internal sealed class AssessedStudy
         return error;
     });
 
+    /// <summary>One of its variants.</summary>
+    public AssessedStudy Variant(string name) => new(_root.GetProperty("variants").EnumerateArray().Single(v => v.GetProperty("name").GetString() == name));
+
     /// <summary>A region under a response.</summary>
     public JsonElement Region(string response, string region) => _root.GetProperty("responses").EnumerateArray().Single(r => r.GetProperty("name").GetString() == response)
         .GetProperty("regions").EnumerateArray().Single(r => r.GetProperty("region").GetString() == region);

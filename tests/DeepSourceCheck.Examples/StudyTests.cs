@@ -214,4 +214,26 @@ public class StudyTests
     }
 
     private static JsonElement Row(AssessedStudy study) => study.Result(WaveV, "inferior-colliculus-point", "EEG", "given", "Cz-mastoids");
+
+    [Fact]
+    public void Study07_LeavingOutCsfRaisesEegAndLeavesMegAlone()
+    {
+        // MEG in a sphere does not depend on the conductivity profile (Sarvas 1987); EEG is overestimated without CSF (common practice, no source).
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("07-variants.yaml"));
+        AssessedStudy variant = study.Variant("without csf");
+        Assert.True(AssessedStudy.Trials(variant.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids"))
+            < AssessedStudy.Trials(study.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids")));
+        Assert.Equal(
+            AssessedStudy.Trials(study.Result(WaveV, "inferior-colliculus-left", "MEG", "given", "best-channel")),
+            AssessedStudy.Trials(variant.Result(WaveV, "inferior-colliculus-left", "MEG", "given", "best-channel")));
+    }
+
+    [Fact]
+    public void Study07_AVariantEqualsTheChangedStudy()
+    {
+        string file = SourceTree.Study("07-variants.yaml");
+        AssessedStudy study = AssessedStudy.Run(file);
+        AssessedStudy changed = AssessedStudy.RunChanged(file, ("    moment_nAm: 3.5", "    moment_nAm: 7"));
+        Assert.True(JsonElement.DeepEquals(changed.Region(WaveV, "inferior-colliculus-left"), study.Variant("twice the moment").Region(WaveV, "inferior-colliculus-left")));
+    }
 }

@@ -37,7 +37,7 @@ internal static class AssessCommand
             About =
             [
                 "The main job. Fills each region with dipoles, computes what EEG and MEG see of them, splits the directions, sets the signal against the noise of one trial, and answers for EEG, MEG and both: trials and minutes to the target, whether the session suffices, and the smallest source that it would show.",
-                "Prints the answer and writes a folder: report.html (start there), assessment.json, regions.csv, dipoles.csv and figures. It is written under a temporary name and renamed at the end, so that it is whole or absent.",
+                "Prints the answer and writes a folder: report.html (start there), assessment.json, regions.csv, dipoles.csv, figures, and variants.csv where the study lists variants. It is written under a temporary name and renamed at the end, so that it is whole or absent.",
             ],
             Examples =
             [

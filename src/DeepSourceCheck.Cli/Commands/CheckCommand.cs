@@ -94,6 +94,11 @@ internal static class CheckCommand
         }
 
         Row("responses", study.Responses.Count > 0 ? string.Join(", ", study.Responses.Select(r => r.Name)) : "none: this study serves `leadfield` alone");
+        if (prepared.Variants.Count > 0)
+        {
+            Row("variants", string.Join(", ", prepared.Variants.Select(v => v.Name)));
+        }
+
         Row("takes about", $"{Durations.Rough(prepared.PredictedSeconds)}, {MemorySize.Rough(prepared.PredictedMemory)}");
         Assumption[] defaults = [.. prepared.Assumptions.Where(a => !a.FromStudy)];
         if (defaults.Length > 0)
@@ -130,6 +135,7 @@ internal static class CheckCommand
 
         json.WriteEndArray();
         json.WriteStrings("responses", prepared.Study.Responses.Select(r => r.Name));
+        json.WriteStrings("variants", prepared.Variants.Select(v => v.Name));
         json.WriteNumber("predicted_memory_bytes", prepared.PredictedMemory);
         json.WriteFigure("predicted_seconds", prepared.PredictedSeconds);
         json.WriteArray("assumptions", prepared.Assumptions, JsonText.WriteAssumption);

@@ -6,8 +6,13 @@ using DeepSourceCheck.Files.Studies;
 
 namespace DeepSourceCheck.Cli.Pipeline;
 
+/// <summary>A variant of a study, likewise.</summary>
+/// <param name="Name">Its name.</param>
+/// <param name="Study">The variant as a study of its own, without variants.</param>
+internal sealed record PreparedVariant(string Name, PreparedStudy Study);
+
 /// <summary>A study that was read and found sound, with all of its parts built.</summary>
-internal sealed class PreparedStudy
+internal sealed record PreparedStudy
 {
     /// <summary>The study as read, with the places of its keys.</summary>
     public required StudyReading Reading { get; init; }
@@ -45,4 +50,15 @@ internal sealed class PreparedStudy
 
     /// <summary>Predicted time [s].</summary>
     public required double PredictedSeconds { get; init; }
+
+    /// <summary>The study's variants, in its order.</summary>
+    public IReadOnlyList<PreparedVariant> Variants { get; private init; } = [];
+
+    /// <summary>The study with its variants: they run one after the other.</summary>
+    public PreparedStudy With(IReadOnlyList<PreparedVariant> variants) => variants.Count == 0 ? this : this with
+    {
+        Variants = variants,
+        PredictedMemory = Math.Max(PredictedMemory, variants.Max(v => v.Study.PredictedMemory)),
+        PredictedSeconds = PredictedSeconds + variants.Sum(v => v.Study.PredictedSeconds),
+    };
 }

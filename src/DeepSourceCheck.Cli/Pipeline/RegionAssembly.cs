@@ -133,15 +133,15 @@ internal sealed class RegionAssembly
 
     private FilledRegion Points(RegionChoice choice, string points)
     {
-        (string path, string display) = _inputs.Use(points);
-        PointsTable table = PointsTable.Read(path, display);
+        PointsTable table = _inputs.UseOnce(points, PointsTable.Read);
+        string display = points;
         _warnings.AddRange(table.Warnings);
         if (_sensors.Imported is { } imported)
         {
             return Imported(choice, table, imported, display);
         }
 
-        return RegionFill.Points(choice.Name, [.. table.Points.Select(p => p.Name)], [.. table.Points.Select(p => p.Position)], _sensors.Head, $"points {display}", display, choice.Key);
+        return RegionFill.Points(choice.Name, table.Names, table.Positions, _sensors.Head, $"points {display}", display, choice.Key);
     }
 
     private static FilledRegion Imported(RegionChoice choice, PointsTable table, ImportedLeadfield imported, string display)

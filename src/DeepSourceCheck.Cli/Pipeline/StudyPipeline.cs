@@ -24,8 +24,26 @@ internal static class StudyPipeline
     {
         settings.Progress?.Invoke("reading", 0);
         RegionLibrary library = RegionLibrary.Load();
-        string[] names = [.. library.Names];
-        StudyReading reading = studyPath is null ? DefaultStudy.Read(purpose, names) : StudyReader.Read(studyPath, purpose, names);
+        StudyReading reading = studyPath is null ? DefaultStudy.Read(purpose, library.Names) : StudyReader.Read(studyPath, purpose, library.Names);
+        PreparedStudy study = Prepare(reading, library, purpose, settings);
+        var variants = new List<PreparedVariant>();
+        foreach (VariantReading variant in purpose == Purpose.Assess ? reading.Variants : [])
+        {
+            try
+            {
+                variants.Add(new PreparedVariant(variant.Name, Prepare(variant.Reading, library, purpose, settings)));
+            }
+            catch (InputException error)
+            {
+                throw new InputException([.. error.Problems.Select(p => p with { Message = variant.Reading.Attributed(p.Message) })]);
+            }
+        }
+
+        return study.With(variants);
+    }
+
+    private static PreparedStudy Prepare(StudyReading reading, RegionLibrary library, Purpose purpose, RunSettings settings)
+    {
         var inputs = new InputDigests(reading);
         var warnings = new List<string>(reading.Warnings);
         settings.Cancellation.ThrowIfCancellationRequested();
@@ -55,6 +73,19 @@ internal static class StudyPipeline
     /// <summary>Computes the assessment; dipole results stream into the sink.</summary>
     /// <exception cref="InputException">A predicted amplitude is too large to be meant.</exception>
     public static Assessment Assess(PreparedStudy prepared, RunSettings settings, IDipoleSink? dipoles)
+    {
+        Assessment study = AssessOne(prepared, settings, dipoles);
+        List<VariantResult> variants = [];
+        foreach (PreparedVariant variant in prepared.Variants)
+        {
+            Action<string, double>? progress = settings.Progress is { } told ? (stage, done) => told($"{variant.Name}: {stage}", done) : null;
+            variants.Add(new VariantResult(variant.Name, AssessOne(variant.Study, settings with { Progress = progress }, null)));
+        }
+
+        return study with { Variants = variants, Inputs = [.. study.Inputs.Concat(variants.SelectMany(v => v.Assessment.Inputs)).DistinctBy(f => f.Path)] };
+    }
+
+    private static Assessment AssessOne(PreparedStudy prepared, RunSettings settings, IDipoleSink? dipoles)
     {
         IReadOnlyList<ResponseResult> responses = Assessor.Assess(prepared.Setup, dipoles, settings.Progress, settings.Cancellation);
         IReadOnlyList<string> amplitudes = AmplitudeCheck.Judge(prepared.Reading, responses);

@@ -1,3 +1,6 @@
+using System.Runtime.CompilerServices;
+using System.Runtime.InteropServices;
+
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
@@ -29,44 +32,97 @@ public static class DirectionSplit
     /// <param name="result">Overwritten in all eight lanes.</param>
     public static void Compute(ReadOnlySpan<double> whitened, int rows, LeadfieldBlock block, IHead head, SplitBlock result)
     {
-        TriangularFactor r = TriangularFactor.Of(whitened, rows);
-        SingularTriple.Of(r, result.SingularValues, result.Directions);
-        double silence = Math.Max(rows, 3) * Epsilon;
+        Span<double> outward = stackalloc double[3 * LeadfieldBlock.Lanes];
+        outward.Clear();
+        int undefined = 0;
         for (int lane = 0; lane < LeadfieldBlock.Lanes; lane++)
         {
-            double s1 = result.S(0, lane);
-            for (int k = 1; k < 3; k++)
-            {
-                ref double s = ref result.SingularValues[k * LeadfieldBlock.Lanes + lane];
-                s = s < silence * s1 ? 0.0 : s;
-            }
-
             Vec3 position = block.Positions[lane];
-            if (!(s1 > 0) || head.IsSymmetryCentre(position))
+            if (head.Outward(position) is { } normal)
             {
-                result.States[lane] = SplitState.Undefined;
-                Vec3 none = new(double.NaN, double.NaN, double.NaN);
-                result.Set(0, lane, none);
-                result.Set(1, lane, none);
-                result.Set(2, lane, none);
+                (outward[lane], outward[LeadfieldBlock.Lanes + lane], outward[2 * LeadfieldBlock.Lanes + lane]) = normal;
+            }
+            else if (head.IsSymmetryCentre(position))
+            {
+                undefined |= 1 << lane;
+            }
+        }
+
+        switch (LaneWidth.Lanes)
+        {
+            case 8:
+                Compute<EightLanes>(whitened, rows, outward, result);
+                break;
+            case 4:
+                Compute<FourLanes>(whitened, rows, outward, result);
+                break;
+            default:
+                Compute<TwoLanes>(whitened, rows, outward, result);
+                break;
+        }
+
+        for (int lane = 0; lane < LeadfieldBlock.Lanes; lane++)
+        {
+            double s1 = result.S(0, lane), s2 = result.S(1, lane), s3 = result.S(2, lane);
+            if (s1 > 0 && (undefined >> lane & 1) == 0)
+            {
+                result.States[lane] = Math.Min(s1 - s2, s2 - s3) < DegenerateGap * s1 ? SplitState.Degenerate : SplitState.Ok;
                 continue;
             }
 
-            double gap = Math.Min(s1 - result.S(1, lane), result.S(1, lane) - result.S(2, lane));
-            result.States[lane] = gap < DegenerateGap * s1 ? SplitState.Degenerate : SplitState.Ok;
-            Vec3 v1 = LargestComponentPositive(result.V(0, lane)), v3 = result.V(2, lane);
-            double outward = head.Outward(position) is { } normal ? Vec3.Dot(v3, normal) : 0.0;
-            v3 = outward == 0 ? LargestComponentPositive(v3) : outward < 0 ? -v3 : v3;
-            result.Set(0, lane, v1);
-            result.Set(1, lane, Vec3.Cross(v3, v1));
-            result.Set(2, lane, v3);
+            result.States[lane] = SplitState.Undefined;
+            Vec3 none = new(double.NaN, double.NaN, double.NaN);
+            result.Set(0, lane, none);
+            result.Set(1, lane, none);
+            result.Set(2, lane, none);
         }
     }
 
-    private static Vec3 LargestComponentPositive(Vec3 v)
+    /// <summary>Singular values, silent ones exactly 0, and directions with their signs, as if all lanes were defined.</summary>
+    /// <param name="whitened">As above.</param>
+    /// <param name="rows">As above.</param>
+    /// <param name="outward">Outward unit vectors, [axis][lane]; 0 where there is none.</param>
+    /// <param name="result">Overwritten but for its states.</param>
+    internal static void Compute<T>(ReadOnlySpan<double> whitened, int rows, ReadOnlySpan<double> outward, SplitBlock result)
+        where T : struct, ILaneVector<T>
     {
-        double x = Math.Abs(v.X), y = Math.Abs(v.Y), z = Math.Abs(v.Z);
-        double largest = x >= y && x >= z ? v.X : y >= z ? v.Y : v.Z;
-        return largest < 0 ? -v : v;
+        ref double singular = ref MemoryMarshal.GetArrayDataReference(result.SingularValues);
+        ref double v = ref MemoryMarshal.GetArrayDataReference(result.Directions);
+        ref double normal = ref MemoryMarshal.GetReference(outward);
+        for (int first = 0; first < LeadfieldBlock.Lanes; first += T.Count)
+        {
+            TriangularFactor<T> r = TriangularFactor<T>.Of(whitened, rows, first);
+            SingularTriple<T>.Of(r, result.SingularValues, result.Directions, first);
+            nuint at = (nuint)first;
+            T silence = T.All(Math.Max(rows, 3) * Epsilon) * T.Load(ref singular, at), s2 = T.Load(ref singular, at + 8), s3 = T.Load(ref singular, at + 16);
+            T.Select(T.Greater(silence, s2), default, s2).Store(ref singular, at + 8);
+            T.Select(T.Greater(silence, s3), default, s3).Store(ref singular, at + 16);
+
+            T x1 = T.Load(ref v, at), y1 = T.Load(ref v, at + 8), z1 = T.Load(ref v, at + 16), sign = LargestComponent(x1, y1, z1);
+            (x1, y1, z1) = (LaneVector.TurnedBy(x1, sign), LaneVector.TurnedBy(y1, sign), LaneVector.TurnedBy(z1, sign));
+            T x3 = T.Load(ref v, at + 48), y3 = T.Load(ref v, at + 56), z3 = T.Load(ref v, at + 64);
+            T away = x3 * T.Load(ref normal, at) + y3 * T.Load(ref normal, at + 8) + z3 * T.Load(ref normal, at + 16);
+            sign = T.Select(T.Same(away, default), LargestComponent(x3, y3, z3), away);
+            (x3, y3, z3) = (LaneVector.TurnedBy(x3, sign), LaneVector.TurnedBy(y3, sign), LaneVector.TurnedBy(z3, sign));
+            x1.Store(ref v, at);
+            y1.Store(ref v, at + 8);
+            z1.Store(ref v, at + 16);
+            (y3 * z1 - z3 * y1).Store(ref v, at + 24);          // v2 = v3 x v1
+            (z3 * x1 - x3 * z1).Store(ref v, at + 32);
+            (x3 * y1 - y3 * x1).Store(ref v, at + 40);
+            x3.Store(ref v, at + 48);
+            y3.Store(ref v, at + 56);
+            z3.Store(ref v, at + 64);
+        }
+    }
+
+    /// <summary>The component of largest size, the first among equals.</summary>
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static T LargestComponent<T>(T x, T y, T z)
+        where T : struct, ILaneVector<T>
+    {
+        T size = T.Abs(x), second = T.Abs(y), third = T.Abs(z), yLarger = T.Greater(second, size);
+        T largest = T.Select(yLarger, y, x);
+        return T.Select(T.Greater(third, T.Select(yLarger, second, size)), z, largest);
     }
 }

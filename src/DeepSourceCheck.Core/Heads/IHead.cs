@@ -11,7 +11,7 @@ public interface IHead
     /// <summary>Null when a dipole may stand at <paramref name="point"/> [m], else the reason with the distance.</summary>
     string? WhyRefused(Vec3 point);
 
-    /// <summary>Outward unit vector at <paramref name="point"/> [m]; null where the head does not define one.</summary>
+    /// <summary>Outward unit vector at <paramref name="point"/> [m]; null where the head does not define one, as at its symmetry centre.</summary>
     Vec3? Outward(Vec3 point);
 
     /// <summary>True where the directions of the split vanish by symmetry: within 1e-6 m of a sphere's centre.</summary>

@@ -1,4 +1,5 @@
 using System.Globalization;
+using System.Runtime.CompilerServices;
 
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Units;
@@ -75,7 +76,14 @@ public sealed class LayeredSphere : IHead
     }
 
     /// <inheritdoc/>
-    public Vec3? Outward(Vec3 point) => IsSymmetryCentre(point) ? null : (point - Centre).Unit();
+    /// <remarks>Asked once a dipole: optimised from the first call on.</remarks>
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
+    public Vec3? Outward(Vec3 point)
+    {
+        Vec3 offset = point - Centre;
+        double distance = offset.Norm;
+        return distance <= CentreTolerance ? null : offset / distance;
+    }
 
     /// <inheritdoc/>
     public bool IsSymmetryCentre(Vec3 point) => (point - Centre).Norm <= CentreTolerance;

@@ -1,5 +1,7 @@
+using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
-using System.Runtime.Intrinsics;
+
+using DeepSourceCheck.Core.Numerics;
 
 namespace DeepSourceCheck.Core.Leadfields;
 
@@ -10,6 +12,8 @@ namespace DeepSourceCheck.Core.Leadfields;
 /// <remarks>out_k = sum_j S_kj in_j - c sum_j w_j in_j with sparse rows S and the common weights w, c = 1 where a common term is given.</remarks>
 public sealed class ChannelOperator
 {
+    private const int Stride = 3 * LeadfieldBlock.Lanes;
+
     private readonly (int Row, double Weight)[][] _rows;
     private readonly double[]? _common;
 
@@ -71,40 +75,64 @@ public sealed class ChannelOperator
 
     /// <summary>Applies the operator to leadfields of eight dipoles.</summary>
     /// <param name="input">[row][axis][lane], as long as the inputs need.</param>
-    /// <param name="output">[channel][axis][lane]; overwritten.</param>
+    /// <param name="output">[channel][axis][lane]; overwritten. Must not overlap the input.</param>
+    /// <exception cref="ArgumentException">A span is too short.</exception>
     public void Apply(ReadOnlySpan<double> input, Span<double> output)
     {
-        ReadOnlySpan<Vector512<double>> x = MemoryMarshal.Cast<double, Vector512<double>>(input);
-        Span<Vector512<double>> y = MemoryMarshal.Cast<double, Vector512<double>>(output);
-        Vector512<double> c0 = default, c1 = default, c2 = default;
-        if (_common is not null)
+        if (input.Length < Inputs * Stride || output.Length < Outputs * Stride)
         {
-            for (int j = 0; j < Inputs; j++)
+            throw new ArgumentException($"{Inputs} inputs and {Outputs} outputs need {Stride} values each; {input.Length} and {output.Length} were given.", nameof(input));
+        }
+
+        switch (LaneWidth.Lanes)
+        {
+            case 8:
+                Apply<EightLanes>(ref MemoryMarshal.GetReference(input), ref MemoryMarshal.GetReference(output));
+                break;
+            case 4:
+                Apply<FourLanes>(ref MemoryMarshal.GetReference(input), ref MemoryMarshal.GetReference(output));
+                break;
+            default:
+                Apply<TwoLanes>(ref MemoryMarshal.GetReference(input), ref MemoryMarshal.GetReference(output));
+                break;
+        }
+    }
+
+    internal void Apply<T>(ref double input, ref double output)
+        where T : struct, ILaneVector<T>
+    {
+        for (int lane = 0; lane < LeadfieldBlock.Lanes; lane += T.Count)
+        {
+            T c0 = default, c1 = default, c2 = default;
+            for (int j = 0; _common is not null && j < Inputs; j++)
             {
                 if (_common[j] != 0)
                 {
-                    Vector512<double> w = Vector512.Create(_common[j]);
-                    c0 += w * x[3 * j];
-                    c1 += w * x[3 * j + 1];
-                    c2 += w * x[3 * j + 2];
+                    ref double from = ref Unsafe.Add(ref input, j * Stride + lane);
+                    T w = T.All(_common[j]);
+                    c0 += w * T.Load(ref from, 0);
+                    c1 += w * T.Load(ref from, 8);
+                    c2 += w * T.Load(ref from, 16);
                 }
             }
-        }
 
-        for (int k = 0; k < _rows.Length; k++)
-        {
-            Vector512<double> y0 = -c0, y1 = -c1, y2 = -c2;
-            foreach ((int j, double weight) in _rows[k])
+            for (int k = 0; k < _rows.Length; k++)
             {
-                Vector512<double> w = Vector512.Create(weight);
-                y0 += w * x[3 * j];
-                y1 += w * x[3 * j + 1];
-                y2 += w * x[3 * j + 2];
-            }
+                T y0 = -c0, y1 = -c1, y2 = -c2;
+                foreach ((int j, double weight) in _rows[k])
+                {
+                    ref double from = ref Unsafe.Add(ref input, j * Stride + lane);
+                    T w = T.All(weight);
+                    y0 += w * T.Load(ref from, 0);
+                    y1 += w * T.Load(ref from, 8);
+                    y2 += w * T.Load(ref from, 16);
+                }
 
-            y[3 * k] = y0;
-            y[3 * k + 1] = y1;
-            y[3 * k + 2] = y2;
+                ref double to = ref Unsafe.Add(ref output, k * Stride + lane);
+                y0.Store(ref to, 0);
+                y1.Store(ref to, 8);
+                y2.Store(ref to, 16);
+            }
         }
     }
 

@@ -6,7 +6,18 @@ namespace DeepSourceCheck.Core.Noise;
 /// </remarks>
 public static class BandIntegral
 {
-    private static readonly (double[] Nodes, double[] Weights) Rule = Legendre(20);
+    // Positive abscissas and their weights of the rule of 20 points on [-1, 1], falling; a test holds them against a numerical library.
+    private static readonly double[] Abscissas =
+    [
+        0.9931285991850949, 0.9639719272779138, 0.912234428251326, 0.8391169718222188, 0.7463319064601508,
+        0.636053680726515, 0.5108670019508271, 0.37370608871541955, 0.22778585114164507, 0.07652652113349734,
+    ];
+
+    private static readonly double[] Weights =
+    [
+        0.017614007139152118, 0.04060142980038694, 0.06267204833410907, 0.08327674157670475, 0.10193011981724044,
+        0.11819453196151841, 0.13168863844917664, 0.14209610931838204, 0.14917298647260374, 0.15275338713072584,
+    ];
 
     /// <summary>Integral of f over [low, high].</summary>
     /// <param name="density">Power density at a frequency [Hz].</param>
@@ -25,31 +36,71 @@ public static class BandIntegral
     }
 
     /// <summary>Quadrature nodes and weights [Hz] over a band.</summary>
-    public static IEnumerable<(double Frequency, double Weight)> Nodes(double low, double high, IEnumerable<double> breakpoints)
+    /// <param name="low">As for <see cref="Of"/>.</param>
+    /// <param name="high">As for <see cref="Of"/>.</param>
+    /// <param name="breakpoints">As for <see cref="Of"/>.</param>
+    public static IReadOnlyList<BandNode> Nodes(double low, double high, IEnumerable<double> breakpoints)
     {
-        double from = Math.Max(low, high * 1e-6);
-        var edges = new List<double> { from };
-        edges.AddRange(breakpoints.Where(b => b > from && b < high).Order());
-        edges.Add(high);
-        for (int k = 0; k + 1 < edges.Count; k++)
+        double[] edges = Edges(Math.Max(low, high * 1e-6), high, breakpoints);
+        var nodes = new BandNode[Count(edges)];
+        int at = 0;
+        for (int k = 0; k + 1 < edges.Length; k++)
         {
             double a = Math.Log(edges[k]), b = Math.Log(edges[k + 1]);
-            int pieces = Math.Max(1, (int)Math.Ceiling((b - a) / Math.Log(4)));
+            int pieces = Pieces(a, b);
             for (int p = 0; p < pieces; p++)
             {
                 double left = a + (b - a) * p / pieces, half = 0.5 * (b - a) / pieces;
-                for (int i = 0; i < Rule.Nodes.Length; i++)
+                for (int i = 0; i < 2 * Abscissas.Length; i++)
                 {
-                    double f = Math.Exp(left + half * (1 + Rule.Nodes[i]));
-                    yield return (f, half * Rule.Weights[i] * f);
+                    bool lower = i < Abscissas.Length;
+                    int pair = lower ? i : 2 * Abscissas.Length - 1 - i;
+                    double f = Math.Exp(left + half * (1 + (lower ? -Abscissas[pair] : Abscissas[pair])));
+                    nodes[at++] = new(f, half * Weights[pair] * f);
                 }
             }
         }
+
+        return nodes;
     }
 
-    private static (double[] Nodes, double[] Weights) Legendre(int order)
+    // The band's edges and the break points within, ascending.
+    private static double[] Edges(double from, double to, IEnumerable<double> breakpoints)
     {
-        var rule = new MathNet.Numerics.Integration.GaussLegendreRule(-1, 1, order);
-        return (rule.Abscissas, rule.Weights);
+        double[] edges = [from, to];
+        foreach (double breakpoint in breakpoints)
+        {
+            if (breakpoint > from && breakpoint < to)
+            {
+                Array.Resize(ref edges, edges.Length + 1);
+                int at = edges.Length - 1;
+                for (; edges[at - 1] > breakpoint; at--)
+                {
+                    edges[at] = edges[at - 1];
+                }
+
+                edges[at] = breakpoint;
+            }
+        }
+
+        return edges;
+    }
+
+    private static int Pieces(double logLow, double logHigh) => Math.Max(1, (int)Math.Ceiling((logHigh - logLow) / Math.Log(4)));
+
+    private static int Count(double[] edges)
+    {
+        int pieces = 0;
+        for (int k = 0; k + 1 < edges.Length; k++)
+        {
+            pieces += Pieces(Math.Log(edges[k]), Math.Log(edges[k + 1]));
+        }
+
+        return pieces * 2 * Abscissas.Length;
     }
 }
+
+/// <summary>A node of a quadrature over a band.</summary>
+/// <param name="Frequency">Frequency [Hz].</param>
+/// <param name="Weight">Weight [Hz].</param>
+public readonly record struct BandNode(double Frequency, double Weight);

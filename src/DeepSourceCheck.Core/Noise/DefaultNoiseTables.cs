@@ -24,9 +24,12 @@ public static class DefaultNoiseTables
         (1, 4), (10, 4), (20, 0.8), (40, 0.15), (100, 0.03), (200, 0.01));
 
     /// <summary>Brain in MEG, root-mean-square over magnetometers 20 mm from the scalp [T/sqrt(Hz)]; the last slope goes on.</summary>
-    public static LogLogTable MegBrain { get; } = new(
-        [.. new (double, double)[] { (1, 40), (10, 30), (20, 25), (40, 10), (100, 4), (200, 1.5) }.Select(p => (p.Item1, Si.FromFemtotesla(p.Item2)))]);
+    public static LogLogTable MegBrain { get; } = Table(Si.FromFemtotesla,
+        (1, 40), (10, 30), (20, 25), (40, 10), (100, 4), (200, 1.5));
 
     private static LogLogTable Microvolts(params (double Frequency, double Density)[] points) =>
-        new([.. points.Select(p => (p.Frequency, Si.FromMicrovolts(p.Density)))]);
+        Table(Si.FromMicrovolts, points);
+
+    private static LogLogTable Table(Func<double, double> toSi, params (double Frequency, double Density)[] points) =>
+        new(Array.ConvertAll(points, p => (p.Frequency, toSi(p.Density))));
 }

@@ -10,9 +10,15 @@ public sealed class LogLogTable
     /// <param name="points">(frequency [Hz], amplitude density [unit/sqrt(Hz)]), increasing, positive; at least two.</param>
     public LogLogTable(params (double Frequency, double Density)[] points)
     {
-        _frequencies = [.. points.Select(p => p.Frequency)];
-        _densities = [.. points.Select(p => p.Density)];
-        if (points.Length < 2 || points.Any(p => !(p.Frequency > 0 && p.Density > 0)) || !_frequencies.Zip(_frequencies.Skip(1)).All(p => p.First < p.Second))
+        (_frequencies, _densities) = (new double[points.Length], new double[points.Length]);
+        bool sound = points.Length >= 2;
+        for (int k = 0; k < points.Length; k++)
+        {
+            (_frequencies[k], _densities[k]) = points[k];
+            sound &= _frequencies[k] > (k == 0 ? 0 : _frequencies[k - 1]) && _densities[k] > 0;
+        }
+
+        if (!sound)
         {
             throw new ArgumentException("A table needs two or more points with increasing positive frequencies and positive densities.", nameof(points));
         }
@@ -25,19 +31,33 @@ public sealed class LogLogTable
     /// <param name="frequency">Positive [Hz].</param>
     public double DensityAt(double frequency)
     {
-        int k = Array.BinarySearch(_frequencies, frequency);
-        if (k >= 0)
+        int above = 0;
+        while (above < _frequencies.Length && _frequencies[above] < frequency)
         {
-            return _densities[k];
+            above++;
         }
 
-        k = Math.Clamp(~k - 1, 0, _frequencies.Length - 2);
+        if (above < _frequencies.Length && _frequencies[above] == frequency)
+        {
+            return _densities[above];
+        }
+
+        int k = Math.Clamp(above - 1, 0, _frequencies.Length - 2);
         double slope = Math.Log(_densities[k + 1] / _densities[k]) / Math.Log(_frequencies[k + 1] / _frequencies[k]);
         return _densities[k] * Math.Pow(frequency / _frequencies[k], slope);
     }
 
     /// <summary>The same table times a factor.</summary>
-    public LogLogTable Scaled(double factor) => new([.. _frequencies.Zip(_densities, (f, d) => (f, factor * d))]);
+    public LogLogTable Scaled(double factor)
+    {
+        var points = new (double, double)[_frequencies.Length];
+        for (int k = 0; k < points.Length; k++)
+        {
+            points[k] = (_frequencies[k], factor * _densities[k]);
+        }
+
+        return new(points);
+    }
 
     /// <summary>rms over a band: sqrt of the integral of the squared density [unit].</summary>
     public double Rms(double low, double high) =>

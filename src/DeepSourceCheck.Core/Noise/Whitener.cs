@@ -1,7 +1,7 @@
 using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
-using System.Runtime.Intrinsics;
 
+using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Numerics;
 
 namespace DeepSourceCheck.Core.Noise;
@@ -9,13 +9,14 @@ namespace DeepSourceCheck.Core.Noise;
 /// <summary>Turns signals into units of independent noise: W C W' = I on the range of C.</summary>
 /// <remarks>
 /// Diagonal covariances are scaled only. Dense ones go through the inverse Cholesky factor W, lower triangular, in panels of eight rows: 24 sums stay in registers (eight rows, three
-/// axes, eight dipoles a vector), and every loaded vector serves eight of them. W is packed in the order in which it is read. In place, the last panel first: row i needs only
+/// axes, eight dipoles a vector), and every loaded vector serves eight of them; half a panel and 12 sums where there are sixteen registers. W is packed in the order in which it is read. In place, the last panel first: row i needs only
 /// rows j up to i, which are still unwhitened then. A plain twin stands in the tests.
 /// </remarks>
 public sealed class Whitener
 {
-    private const int Panel = 8;
+    private const int Panel = 8, Stride = 3 * LeadfieldBlock.Lanes;
     private readonly int[] _channels;
+    private readonly int _inputs;
     private readonly double[] _scale;
     private double[]? _panels;
     private int[]? _panelStart;
@@ -23,6 +24,7 @@ public sealed class Whitener
     private Whitener(int[] channels, double[] scale, double[]? inverse)
     {
         _channels = channels;
+        _inputs = channels.Length == 0 ? 0 : channels.Max() + 1;
         _scale = scale;
         if (inverse is not null)
         {
@@ -63,80 +65,116 @@ public sealed class Whitener
     /// <summary>Whitens the leadfields of eight dipoles.</summary>
     /// <param name="input">[channel][axis][lane].</param>
     /// <param name="output">[whitened row][axis][lane], at least <see cref="Rank"/> rows; overwritten. Must not overlap the input.</param>
+    /// <exception cref="ArgumentException">A span is too short.</exception>
     public void Apply(ReadOnlySpan<double> input, Span<double> output)
     {
-        ReadOnlySpan<Vector512<double>> x = MemoryMarshal.Cast<double, Vector512<double>>(input);
-        Span<Vector512<double>> y = MemoryMarshal.Cast<double, Vector512<double>>(output);
-        int r = Rank;
-        for (int i = 0; i < r; i++)
+        if (input.Length < Stride * _inputs || output.Length < Stride * Rank)
         {
-            Vector512<double> s = Vector512.Create(_scale[i]);
-            int from = 3 * _channels[i];
-            y[3 * i] = s * x[from];
-            y[3 * i + 1] = s * x[from + 1];
-            y[3 * i + 2] = s * x[from + 2];
+            throw new ArgumentException($"{Rank} rows need {Stride} values each and the channels that they are made of; {input.Length} and {output.Length} were given.", nameof(input));
         }
 
-        for (int panel = (_panelStart?.Length ?? 0) - 2; panel >= 0; panel--)
+        switch (LaneWidth.Lanes)
         {
-            Rows(y, panel);
+            case 8:
+                Apply<EightLanes>(ref MemoryMarshal.GetReference(input), ref MemoryMarshal.GetReference(output));
+                break;
+            case 4:
+                Apply<FourLanes>(ref MemoryMarshal.GetReference(input), ref MemoryMarshal.GetReference(output));
+                break;
+            default:
+                Apply<TwoLanes>(ref MemoryMarshal.GetReference(input), ref MemoryMarshal.GetReference(output));
+                break;
         }
     }
 
-    // Eight rows from the first one of a panel: y_i = sum_j w_ij y_j. Rows beyond the rank have zero weights and are not stored.
-    private void Rows(Span<Vector512<double>> output, int panel)
+    internal void Apply<T>(ref double input, ref double output)
+        where T : struct, ILaneVector<T>
     {
-        int first = panel * Panel, end = Math.Min(first + Panel, Rank);     // entries above the diagonal are zero
-        ref Vector512<double> y = ref MemoryMarshal.GetReference(output);
-        ref double w = ref _panels![_panelStart![panel]];
-        Vector512<double> a00 = default, a01 = default, a02 = default;
-        Vector512<double> a10 = default, a11 = default, a12 = default;
-        Vector512<double> a20 = default, a21 = default, a22 = default;
-        Vector512<double> a30 = default, a31 = default, a32 = default;
-        Vector512<double> a40 = default, a41 = default, a42 = default;
-        Vector512<double> a50 = default, a51 = default, a52 = default;
-        Vector512<double> a60 = default, a61 = default, a62 = default;
-        Vector512<double> a70 = default, a71 = default, a72 = default;
+        for (int lane = 0; lane < LeadfieldBlock.Lanes; lane += T.Count)
+        {
+            ref double lanes = ref Unsafe.Add(ref output, lane);
+            for (int i = 0; i < _channels.Length; i++)
+            {
+                T s = T.All(_scale[i]);
+                ref double from = ref Unsafe.Add(ref input, Stride * _channels[i] + lane), to = ref Unsafe.Add(ref lanes, Stride * i);
+                (s * T.Load(ref from, 0)).Store(ref to, 0);
+                (s * T.Load(ref from, 8)).Store(ref to, 8);
+                (s * T.Load(ref from, 16)).Store(ref to, 16);
+            }
+
+            for (int panel = (_panelStart?.Length ?? 0) - 2; panel >= 0; panel--)
+            {
+                ref double weights = ref _panels![_panelStart![panel]];
+                int first = panel * Panel;
+                if (T.ManyRegisters)
+                {
+                    EightRows<T>(ref lanes, ref weights, first, Math.Min(first + Panel, Rank));
+                    continue;
+                }
+
+                // The lower half of the panel first: it needs the upper half unwhitened.
+                if (first + Panel / 2 < Rank)
+                {
+                    FourRows<T>(ref lanes, ref Unsafe.Add(ref weights, Panel / 2), first + Panel / 2, Math.Min(first + Panel, Rank));
+                }
+
+                FourRows<T>(ref lanes, ref weights, first, Math.Min(first + Panel / 2, Rank));
+            }
+        }
+    }
+
+    // Eight rows from the first one of a panel up to the end: y_i = sum_j w_ij y_j, entries above the diagonal are zero. Rows beyond the rank have zero weights and are not stored.
+    private static void EightRows<T>(ref double output, ref double w, int first, int end)
+        where T : struct, ILaneVector<T>
+    {
+        T a00 = default, a01 = default, a02 = default;
+        T a10 = default, a11 = default, a12 = default;
+        T a20 = default, a21 = default, a22 = default;
+        T a30 = default, a31 = default, a32 = default;
+        T a40 = default, a41 = default, a42 = default;
+        T a50 = default, a51 = default, a52 = default;
+        T a60 = default, a61 = default, a62 = default;
+        T a70 = default, a71 = default, a72 = default;
         for (int j = 0; j < end; j++)
         {
-            ref Vector512<double> row = ref Unsafe.Add(ref y, 3 * j);
-            Vector512<double> x0 = row, x1 = Unsafe.Add(ref row, 1), x2 = Unsafe.Add(ref row, 2);
             ref double weights = ref Unsafe.Add(ref w, Panel * j);
-            Vector512<double> weight = Vector512.Create(Unsafe.Add(ref weights, 0));
-            a00 = Vector512.FusedMultiplyAdd(weight, x0, a00);
-            a01 = Vector512.FusedMultiplyAdd(weight, x1, a01);
-            a02 = Vector512.FusedMultiplyAdd(weight, x2, a02);
-            weight = Vector512.Create(Unsafe.Add(ref weights, 1));
-            a10 = Vector512.FusedMultiplyAdd(weight, x0, a10);
-            a11 = Vector512.FusedMultiplyAdd(weight, x1, a11);
-            a12 = Vector512.FusedMultiplyAdd(weight, x2, a12);
-            weight = Vector512.Create(Unsafe.Add(ref weights, 2));
-            a20 = Vector512.FusedMultiplyAdd(weight, x0, a20);
-            a21 = Vector512.FusedMultiplyAdd(weight, x1, a21);
-            a22 = Vector512.FusedMultiplyAdd(weight, x2, a22);
-            weight = Vector512.Create(Unsafe.Add(ref weights, 3));
-            a30 = Vector512.FusedMultiplyAdd(weight, x0, a30);
-            a31 = Vector512.FusedMultiplyAdd(weight, x1, a31);
-            a32 = Vector512.FusedMultiplyAdd(weight, x2, a32);
-            weight = Vector512.Create(Unsafe.Add(ref weights, 4));
-            a40 = Vector512.FusedMultiplyAdd(weight, x0, a40);
-            a41 = Vector512.FusedMultiplyAdd(weight, x1, a41);
-            a42 = Vector512.FusedMultiplyAdd(weight, x2, a42);
-            weight = Vector512.Create(Unsafe.Add(ref weights, 5));
-            a50 = Vector512.FusedMultiplyAdd(weight, x0, a50);
-            a51 = Vector512.FusedMultiplyAdd(weight, x1, a51);
-            a52 = Vector512.FusedMultiplyAdd(weight, x2, a52);
-            weight = Vector512.Create(Unsafe.Add(ref weights, 6));
-            a60 = Vector512.FusedMultiplyAdd(weight, x0, a60);
-            a61 = Vector512.FusedMultiplyAdd(weight, x1, a61);
-            a62 = Vector512.FusedMultiplyAdd(weight, x2, a62);
-            weight = Vector512.Create(Unsafe.Add(ref weights, 7));
-            a70 = Vector512.FusedMultiplyAdd(weight, x0, a70);
-            a71 = Vector512.FusedMultiplyAdd(weight, x1, a71);
-            a72 = Vector512.FusedMultiplyAdd(weight, x2, a72);
+            ref double row = ref Unsafe.Add(ref output, Stride * j);
+            T x0 = T.Load(ref row, 0), x1 = T.Load(ref row, 8), x2 = T.Load(ref row, 16);
+            T weight = T.All(weights);
+            a00 = T.MultiplyAdd(weight, x0, a00);
+            a01 = T.MultiplyAdd(weight, x1, a01);
+            a02 = T.MultiplyAdd(weight, x2, a02);
+            weight = T.All(Unsafe.Add(ref weights, 1));
+            a10 = T.MultiplyAdd(weight, x0, a10);
+            a11 = T.MultiplyAdd(weight, x1, a11);
+            a12 = T.MultiplyAdd(weight, x2, a12);
+            weight = T.All(Unsafe.Add(ref weights, 2));
+            a20 = T.MultiplyAdd(weight, x0, a20);
+            a21 = T.MultiplyAdd(weight, x1, a21);
+            a22 = T.MultiplyAdd(weight, x2, a22);
+            weight = T.All(Unsafe.Add(ref weights, 3));
+            a30 = T.MultiplyAdd(weight, x0, a30);
+            a31 = T.MultiplyAdd(weight, x1, a31);
+            a32 = T.MultiplyAdd(weight, x2, a32);
+            weight = T.All(Unsafe.Add(ref weights, 4));
+            a40 = T.MultiplyAdd(weight, x0, a40);
+            a41 = T.MultiplyAdd(weight, x1, a41);
+            a42 = T.MultiplyAdd(weight, x2, a42);
+            weight = T.All(Unsafe.Add(ref weights, 5));
+            a50 = T.MultiplyAdd(weight, x0, a50);
+            a51 = T.MultiplyAdd(weight, x1, a51);
+            a52 = T.MultiplyAdd(weight, x2, a52);
+            weight = T.All(Unsafe.Add(ref weights, 6));
+            a60 = T.MultiplyAdd(weight, x0, a60);
+            a61 = T.MultiplyAdd(weight, x1, a61);
+            a62 = T.MultiplyAdd(weight, x2, a62);
+            weight = T.All(Unsafe.Add(ref weights, 7));
+            a70 = T.MultiplyAdd(weight, x0, a70);
+            a71 = T.MultiplyAdd(weight, x1, a71);
+            a72 = T.MultiplyAdd(weight, x2, a72);
         }
 
-        ref Vector512<double> to = ref Unsafe.Add(ref y, 3 * first);
+        ref double to = ref Unsafe.Add(ref output, Stride * first);
         Store(ref to, 0, end - first, a00, a01, a02);
         Store(ref to, 1, end - first, a10, a11, a12);
         Store(ref to, 2, end - first, a20, a21, a22);
@@ -147,12 +185,54 @@ public sealed class Whitener
         Store(ref to, 7, end - first, a70, a71, a72);
     }
 
-    private static void Store(ref Vector512<double> panel, int row, int rows, Vector512<double> x, Vector512<double> y, Vector512<double> z)
+    // The same for half a panel: twelve sums, three signals and a weight are sixteen registers.
+    private static void FourRows<T>(ref double output, ref double w, int first, int end)
+        where T : struct, ILaneVector<T>
+    {
+        T a00 = default, a01 = default, a02 = default;
+        T a10 = default, a11 = default, a12 = default;
+        T a20 = default, a21 = default, a22 = default;
+        T a30 = default, a31 = default, a32 = default;
+        for (int j = 0; j < end; j++)
+        {
+            ref double weights = ref Unsafe.Add(ref w, Panel * j);
+            ref double row = ref Unsafe.Add(ref output, Stride * j);
+            T x0 = T.Load(ref row, 0), x1 = T.Load(ref row, 8), x2 = T.Load(ref row, 16);
+            T weight = T.All(weights);
+            a00 = T.MultiplyAdd(weight, x0, a00);
+            a01 = T.MultiplyAdd(weight, x1, a01);
+            a02 = T.MultiplyAdd(weight, x2, a02);
+            weight = T.All(Unsafe.Add(ref weights, 1));
+            a10 = T.MultiplyAdd(weight, x0, a10);
+            a11 = T.MultiplyAdd(weight, x1, a11);
+            a12 = T.MultiplyAdd(weight, x2, a12);
+            weight = T.All(Unsafe.Add(ref weights, 2));
+            a20 = T.MultiplyAdd(weight, x0, a20);
+            a21 = T.MultiplyAdd(weight, x1, a21);
+            a22 = T.MultiplyAdd(weight, x2, a22);
+            weight = T.All(Unsafe.Add(ref weights, 3));
+            a30 = T.MultiplyAdd(weight, x0, a30);
+            a31 = T.MultiplyAdd(weight, x1, a31);
+            a32 = T.MultiplyAdd(weight, x2, a32);
+        }
+
+        ref double to = ref Unsafe.Add(ref output, Stride * first);
+        Store(ref to, 0, end - first, a00, a01, a02);
+        Store(ref to, 1, end - first, a10, a11, a12);
+        Store(ref to, 2, end - first, a20, a21, a22);
+        Store(ref to, 3, end - first, a30, a31, a32);
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static void Store<T>(ref double panel, int row, int rows, T x, T y, T z)
+        where T : struct, ILaneVector<T>
     {
         if (row < rows)
         {
-            ref Vector512<double> to = ref Unsafe.Add(ref panel, 3 * row);
-            (to, Unsafe.Add(ref to, 1), Unsafe.Add(ref to, 2)) = (x, y, z);
+            ref double to = ref Unsafe.Add(ref panel, Stride * row);
+            x.Store(ref to, 0);
+            y.Store(ref to, 8);
+            z.Store(ref to, 16);
         }
     }
 

@@ -1,4 +1,5 @@
 using System.Runtime.CompilerServices;
+using System.Runtime.InteropServices;
 using System.Runtime.Intrinsics;
 
 namespace DeepSourceCheck.Core.Numerics;
@@ -26,15 +27,43 @@ public static class SymmetricEigen3
     public static Vector512<double> Largest(
         Vector512<double> xx, Vector512<double> xy, Vector512<double> xz, Vector512<double> yy, Vector512<double> yz, Vector512<double> zz)
     {
-        Vector512<double> largest = Vector512.Max(Vector512.Abs(xx), Vector512.Max(Vector512.Abs(yy), Vector512.Abs(zz)));
-        largest = Vector512.Max(largest, Vector512.Max(Vector512.Abs(xy), Vector512.Max(Vector512.Abs(xz), Vector512.Abs(yz))));
-        Vector512<double> scale = TriangularFactor.PowerOfTwo(largest), inverse = Vector512<double>.One / scale;
+        if (LaneWidth.Lanes == 8)
+        {
+            return Largest(new EightLanes(xx), new(xy), new(xz), new(yy), new(yz), new(zz)).Value;
+        }
+
+        Span<double> entries = stackalloc double[6 * 8];
+        xx.CopyTo(entries);
+        xy.CopyTo(entries[8..]);
+        xz.CopyTo(entries[16..]);
+        yy.CopyTo(entries[24..]);
+        yz.CopyTo(entries[32..]);
+        zz.CopyTo(entries[40..]);
+        if (LaneWidth.Lanes == 4)
+        {
+            Replace<FourLanes>(entries);
+        }
+        else
+        {
+            Replace<TwoLanes>(entries);
+        }
+
+        return Vector512.Create<double>(entries);
+    }
+
+    /// <summary>Largest eigenvalues of as many matrices as there are lanes.</summary>
+    internal static T Largest<T>(T xx, T xy, T xz, T yy, T yz, T zz)
+        where T : struct, ILaneVector<T>
+    {
+        T largest = T.Max(T.Abs(xx), T.Max(T.Abs(yy), T.Abs(zz)));
+        largest = T.Max(largest, T.Max(T.Abs(xy), T.Max(T.Abs(xz), T.Abs(yz))));
+        T scale = LaneVector.PowerOfTwo(largest), inverse = T.All(1) / scale;
         (xx, xy, xz) = (xx * inverse, xy * inverse, xz * inverse);
         (yy, yz, zz) = (yy * inverse, yz * inverse, zz * inverse);
         for (int sweep = 0; sweep < MaxSweeps; sweep++)
         {
-            Vector512<double> off = Vector512.Max(Vector512.Abs(xy), Vector512.Max(Vector512.Abs(xz), Vector512.Abs(yz)));
-            if (!Vector512.GreaterThanAny(off, Vector512.Create(Negligible)))
+            T off = T.Max(T.Abs(xy), T.Max(T.Abs(xz), T.Abs(yz)));
+            if (!T.Any(T.Greater(off, T.All(Negligible))))
             {
                 break;
             }
@@ -44,21 +73,32 @@ public static class SymmetricEigen3
             Turn(ref yy, ref zz, ref yz, ref xy, ref xz);
         }
 
-        return Vector512.Max(xx, Vector512.Max(yy, zz)) * scale;
+        return T.Max(xx, T.Max(yy, zz)) * scale;
+    }
+
+    /// <summary>Writes the eigenvalues over the first entries, [entry][lane].</summary>
+    private static void Replace<T>(Span<double> entries)
+        where T : struct, ILaneVector<T>
+    {
+        ref double e = ref MemoryMarshal.GetReference(entries);
+        for (nuint k = 0; k < 8; k += (nuint)T.Count)
+        {
+            Largest(T.Load(ref e, k), T.Load(ref e, k + 8), T.Load(ref e, k + 16), T.Load(ref e, k + 24), T.Load(ref e, k + 32), T.Load(ref e, k + 40)).Store(ref e, k);
+        }
     }
 
     /// <summary>Annihilates the entry between p and q; <paramref name="pr"/> and <paramref name="qr"/> lie beside them.</summary>
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static void Turn(ref Vector512<double> pp, ref Vector512<double> qq, ref Vector512<double> pq, ref Vector512<double> pr, ref Vector512<double> qr)
+    private static void Turn<T>(ref T pp, ref T qq, ref T pq, ref T pr, ref T qr)
+        where T : struct, ILaneVector<T>
     {
-        Vector512<double> zero = Vector512<double>.Zero, d = qq - pp, g = pq + pq;
-        Vector512<double> signedG = (g.AsUInt64() ^ (d.AsUInt64() & Vector512.Create(0x8000_0000_0000_0000UL))).AsDouble();
-        Vector512<double> t = signedG / (Vector512.Abs(d) + Vector512.Sqrt(Vector512.MultiplyAddEstimate(d, d, g * g)));
-        t = Vector512.ConditionalSelect(Vector512.GreaterThan(Vector512.Abs(pq), Vector512.Create(Negligible)), t, zero);
-        Vector512<double> c = Vector512<double>.One / Vector512.Sqrt(Vector512.MultiplyAddEstimate(t, t, Vector512<double>.One)), s = c * t;
+        T d = qq - pp, g = pq + pq;
+        T t = LaneVector.TurnedBy(g, d) / (T.Abs(d) + T.Sqrt(T.MultiplyAdd(d, d, g * g)));
+        t = T.Greater(T.Abs(pq), T.All(Negligible)) & t;
+        T c = T.All(1) / T.Sqrt(T.MultiplyAdd(t, t, T.All(1))), s = c * t;
         pp -= t * pq;
         qq += t * pq;
-        pq = Vector512.ConditionalSelect(Vector512.Equals(t, zero), pq, zero);
+        pq = T.Same(t, default) & pq;
         (pr, qr) = (c * pr - s * qr, s * pr + c * qr);
     }
 }

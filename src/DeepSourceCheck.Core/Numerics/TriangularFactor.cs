@@ -1,64 +1,68 @@
 using System.Buffers;
 using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
-using System.Runtime.Intrinsics;
 
 namespace DeepSourceCheck.Core.Numerics;
 
-// TriangularFactor.cs - R of the QR factorisation of eight matrices of three columns at once.
+// TriangularFactor.cs - R of the QR factorisation of several matrices of three columns at once.
 //   Modified Gram-Schmidt in three read-only passes that recompute the reduced columns instead of storing them:
 //     pass 1: a.a, a.b, a.c       pass 2: b' = b - (r12/r11) a, c' = c - (r13/r11) a; b'.b', b'.c'       pass 3: c'' = c' - (r23/r22) b'; c''.c''
 //   Only R is kept. R of modified Gram-Schmidt is as backward stable as Householder's, so that re-orthogonalisation buys nothing
 //   [Bjorck 1967]. A column that is zero gives a zero row.
+//   Every sum is two, one over even and one over odd rows, so that none waits for the addition before it. The passes run up, down and up the rows:
+//   what one of them read last is still near the processor when the next begins.
 
-/// <summary>Upper triangular R, eight matrices in the lanes: entries times 2^exponent, see <see cref="Scale"/>.</summary>
-internal struct TriangularFactor
+/// <summary>Upper triangular R, a matrix a lane: entries times <see cref="Scale"/>.</summary>
+internal struct TriangularFactor<T>
+    where T : struct, ILaneVector<T>
 {
+    /// <summary>Doubles a row takes: three columns of eight lanes.</summary>
+    private const int Stride = 3 * 8;
+
     /// <summary>Squares are trusted between these; outside them the matrix is scaled by a power of two first.</summary>
     private const double SmallestSquare = 1e-200, LargestSquare = 1e200;
 
-    private const double SmallestNormal = 2.2250738585072014e-308;
-
     /// <summary>First row.</summary>
-    public Vector512<double> R11, R12, R13;
+    public T R11, R12, R13;
 
     /// <summary>Second row.</summary>
-    public Vector512<double> R22, R23;
+    public T R22, R23;
 
     /// <summary>Third row.</summary>
-    public Vector512<double> R33;
+    public T R33;
 
     /// <summary>Power of two by which R must be multiplied to belong to the matrix.</summary>
-    public Vector512<double> Scale;
+    public T Scale;
 
     /// <summary>Factorises.</summary>
     /// <param name="matrix">[row][column][lane], 24 doubles a row, any unit.</param>
     /// <param name="rows">Number of rows; may be 0.</param>
+    /// <param name="first">First of the lanes that are taken.</param>
     /// <exception cref="ArgumentException">The span is shorter than the rows ask for.</exception>
-    public static TriangularFactor Of(ReadOnlySpan<double> matrix, int rows)
+    public static TriangularFactor<T> Of(ReadOnlySpan<double> matrix, int rows, int first)
     {
-        const int stride = 3 * 8;
-        if (matrix.Length < rows * stride)
+        if (matrix.Length < rows * Stride)
         {
-            throw new ArgumentException($"{rows} rows need {rows * stride} values; {matrix.Length} were given.", nameof(matrix));
+            throw new ArgumentException($"{rows} rows need {rows * Stride} values; {matrix.Length} were given.", nameof(matrix));
         }
 
-        if (Factor(ref MemoryMarshal.GetReference(matrix), rows, out TriangularFactor result))
+        if (Factor(ref Unsafe.Add(ref MemoryMarshal.GetReference(matrix), first), rows, out TriangularFactor<T> result))
         {
             return result;
         }
 
-        Vector512<double> largest = Vector512<double>.Zero;
-        for (int at = 0; at < rows * stride; at += 8)
+        ref double lanes = ref Unsafe.Add(ref MemoryMarshal.GetReference(matrix), first);
+        T largest = default;
+        for (int at = 0; at < rows * Stride; at += 8)
         {
-            largest = Vector512.Max(largest, Vector512.Abs(Vector512.Create(matrix[at..])));
+            largest = T.Max(largest, T.Abs(T.Load(ref lanes, (nuint)at)));
         }
 
-        Vector512<double> scale = PowerOfTwo(largest), inverse = Vector512<double>.One / scale;
-        double[] copy = ArrayPool<double>.Shared.Rent(rows * stride);
-        for (int at = 0; at < rows * stride; at += 8)
+        T scale = LaneVector.PowerOfTwo(largest), inverse = T.All(1) / scale;
+        double[] copy = ArrayPool<double>.Shared.Rent(rows * Stride);
+        for (int at = 0; at < rows * Stride; at += 8)
         {
-            (Vector512.Create(matrix[at..]) * inverse).CopyTo(copy, at);
+            (T.Load(ref lanes, (nuint)at) * inverse).Store(ref MemoryMarshal.GetArrayDataReference(copy), (nuint)at);
         }
 
         Factor(ref MemoryMarshal.GetArrayDataReference(copy), rows, out result);
@@ -67,64 +71,98 @@ internal struct TriangularFactor
         return result;
     }
 
-    /// <summary>The power of two at or below each value; 1 for 0, 2^-1022 for subnormal numbers, the value itself where it is not finite.</summary>
-    internal static Vector512<double> PowerOfTwo(Vector512<double> value)
-    {
-        Vector512<double> power = (value.AsUInt64() & Vector512.Create(0x7FF0_0000_0000_0000UL)).AsDouble();
-        power = Vector512.Max(power, Vector512.Create(SmallestNormal));
-        return Vector512.ConditionalSelect(Vector512.Equals(value, Vector512<double>.Zero), Vector512<double>.One, power);
-    }
-
-    [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static Vector512<double> Fma(Vector512<double> a, Vector512<double> b, Vector512<double> c) => Vector512.MultiplyAddEstimate(a, b, c);
-
-    /// <summary>Quotient, 0 where the divisor is 0.</summary>
-    [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static Vector512<double> Quotient(Vector512<double> a, Vector512<double> b) =>
-        Vector512.ConditionalSelect(Vector512.Equals(b, Vector512<double>.Zero), Vector512<double>.Zero, a / b);
-
     /// <summary>False where a lane's squares may have left the range of doubles.</summary>
-    private static bool Factor(ref double matrix, int rows, out TriangularFactor result)
+    private static bool Factor(ref double matrix, int rows, out TriangularFactor<T> result)
     {
-        const nuint stride = 3 * 8;
-        nuint end = (nuint)rows * stride;
-        Vector512<double> zero = Vector512<double>.Zero, aa = zero, ab = zero, ac = zero, bb = zero, bc = zero, cc = zero, ofB = zero, ofC = zero;
-        for (nuint at = 0; at < end; at += stride)
+        int pairs = rows / 2;
+        T aa = default, ab = default, ac = default, bb = default, cc = default;
+        T aa1 = default, ab1 = default, ac1 = default, bb1 = default, cc1 = default;
+        ref double row = ref matrix;
+        for (int k = 0; k < pairs; k++)
         {
-            Vector512<double> a = Vector512.LoadUnsafe(ref matrix, at), b = Vector512.LoadUnsafe(ref matrix, at + 8), c = Vector512.LoadUnsafe(ref matrix, at + 16);
-            aa = Fma(a, a, aa);
-            ab = Fma(a, b, ab);
-            ac = Fma(a, c, ac);
-            ofB = Fma(b, b, ofB);                               // a sum each: one sum of both would wait twice a row
-            ofC = Fma(c, c, ofC);
+            T a = T.Load(ref row, 0), b = T.Load(ref row, 8), c = T.Load(ref row, 16);
+            aa = T.MultiplyAdd(a, a, aa);
+            ab = T.MultiplyAdd(a, b, ab);
+            ac = T.MultiplyAdd(a, c, ac);
+            bb = T.MultiplyAdd(b, b, bb);
+            cc = T.MultiplyAdd(c, c, cc);
+            a = T.Load(ref row, Stride);
+            b = T.Load(ref row, Stride + 8);
+            c = T.Load(ref row, Stride + 16);
+            aa1 = T.MultiplyAdd(a, a, aa1);
+            ab1 = T.MultiplyAdd(a, b, ab1);
+            ac1 = T.MultiplyAdd(a, c, ac1);
+            bb1 = T.MultiplyAdd(b, b, bb1);
+            cc1 = T.MultiplyAdd(c, c, cc1);
+            row = ref Unsafe.Add(ref row, 2 * Stride);
         }
 
-        Vector512<double> total = aa + ofB + ofC;
-        Vector512<double> f = Quotient(ab, aa), g = Quotient(ac, aa);
-        for (nuint at = 0; at < end; at += stride)
+        if (rows % 2 != 0)
         {
-            Vector512<double> a = Vector512.LoadUnsafe(ref matrix, at);
-            Vector512<double> b = Vector512.LoadUnsafe(ref matrix, at + 8) - f * a, c = Vector512.LoadUnsafe(ref matrix, at + 16) - g * a;
-            bb = Fma(b, b, bb);
-            bc = Fma(b, c, bc);
+            T a = T.Load(ref row, 0), b = T.Load(ref row, 8), c = T.Load(ref row, 16);
+            aa = T.MultiplyAdd(a, a, aa);
+            ab = T.MultiplyAdd(a, b, ab);
+            ac = T.MultiplyAdd(a, c, ac);
+            bb = T.MultiplyAdd(b, b, bb);
+            cc = T.MultiplyAdd(c, c, cc);
         }
 
-        Vector512<double> h = Quotient(bc, bb);
-        for (nuint at = 0; at < end; at += stride)
+        aa += aa1;
+        T total = aa + (bb + bb1) + (cc + cc1);
+        T f = LaneVector.Quotient(ab + ab1, aa), g = LaneVector.Quotient(ac + ac1, aa), minusF = -f, minusG = -g;
+        bb = bb1 = default;
+        T bc = default, bc1 = default;
+        if (rows % 2 != 0)
         {
-            Vector512<double> a = Vector512.LoadUnsafe(ref matrix, at);
-            Vector512<double> b = Vector512.LoadUnsafe(ref matrix, at + 8) - f * a, c = Vector512.LoadUnsafe(ref matrix, at + 16) - g * a - h * b;
-            cc = Fma(c, c, cc);
+            T a = T.Load(ref row, 0), b = T.MultiplyAdd(minusF, a, T.Load(ref row, 8)), c = T.MultiplyAdd(minusG, a, T.Load(ref row, 16));
+            bb = b * b;
+            bc = b * c;
         }
 
-        result.R11 = Vector512.Sqrt(aa);
+        for (int k = 0; k < pairs; k++)
+        {
+            row = ref Unsafe.Subtract(ref row, 2 * Stride);
+            T a = T.Load(ref row, Stride), b = T.MultiplyAdd(minusF, a, T.Load(ref row, Stride + 8)), c = T.MultiplyAdd(minusG, a, T.Load(ref row, Stride + 16));
+            bb1 = T.MultiplyAdd(b, b, bb1);
+            bc1 = T.MultiplyAdd(b, c, bc1);
+            a = T.Load(ref row, 0);
+            b = T.MultiplyAdd(minusF, a, T.Load(ref row, 8));
+            c = T.MultiplyAdd(minusG, a, T.Load(ref row, 16));
+            bb = T.MultiplyAdd(b, b, bb);
+            bc = T.MultiplyAdd(b, c, bc);
+        }
+
+        bb += bb1;
+        T h = LaneVector.Quotient(bc + bc1, bb), minusH = -h;
+        cc = cc1 = default;
+        for (int k = 0; k < pairs; k++)
+        {
+            T a = T.Load(ref row, 0), b = T.MultiplyAdd(minusF, a, T.Load(ref row, 8)), c = T.MultiplyAdd(minusG, a, T.Load(ref row, 16));
+            c = T.MultiplyAdd(minusH, b, c);
+            cc = T.MultiplyAdd(c, c, cc);
+            a = T.Load(ref row, Stride);
+            b = T.MultiplyAdd(minusF, a, T.Load(ref row, Stride + 8));
+            c = T.MultiplyAdd(minusG, a, T.Load(ref row, Stride + 16));
+            c = T.MultiplyAdd(minusH, b, c);
+            cc1 = T.MultiplyAdd(c, c, cc1);
+            row = ref Unsafe.Add(ref row, 2 * Stride);
+        }
+
+        if (rows % 2 != 0)
+        {
+            T a = T.Load(ref row, 0), b = T.MultiplyAdd(minusF, a, T.Load(ref row, 8)), c = T.MultiplyAdd(minusG, a, T.Load(ref row, 16));
+            c = T.MultiplyAdd(minusH, b, c);
+            cc = T.MultiplyAdd(c, c, cc);
+        }
+
+        result.R11 = T.Sqrt(aa);
         result.R12 = f * result.R11;
         result.R13 = g * result.R11;
-        result.R22 = Vector512.Sqrt(bb);
+        result.R22 = T.Sqrt(bb);
         result.R23 = h * result.R22;
-        result.R33 = Vector512.Sqrt(cc);
-        result.Scale = Vector512<double>.One;
-        return rows == 0
-            || Vector512.GreaterThanAll(total, Vector512.Create(SmallestSquare)) && Vector512.LessThanAll(total, Vector512.Create(LargestSquare));
+        result.R33 = T.Sqrt(cc + cc1);
+        result.Scale = T.All(1);
+        // A total that is not a number passes: no scale would mend it.
+        return rows == 0 || !(T.Any(T.Greater(T.All(SmallestSquare), total)) || T.Any(T.Greater(total, T.All(LargestSquare))));
     }
 }

@@ -22,7 +22,7 @@ public sealed class FilledRegion
     public required int[] Rows { get; init; }
 
     /// <summary>Names of the kept points where the study gave them, else empty.</summary>
-    public string[] PointNames { get; init; } = [];
+    public PointNames PointNames { get; init; } = [];
 
     /// <summary>Index among the imported points, or empty for computed heads.</summary>
     public int[] SourceIndices { get; init; } = [];

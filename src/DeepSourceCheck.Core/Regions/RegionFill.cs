@@ -64,23 +64,23 @@ public static class RegionFill
     /// <summary>Takes explicit points in their order.</summary>
     /// <param name="name">Name of the region.</param>
     /// <param name="pointNames">Names, as many as positions.</param>
-    /// <param name="positions">Positions [m]; at least one.</param>
+    /// <param name="positions">Positions [m]; at least one. Kept, not copied.</param>
     /// <param name="head">Head; refuses points with a reason.</param>
     /// <param name="origin">Where they come from, for results.</param>
     /// <param name="file">Study or table, for messages.</param>
     /// <param name="key">Key of the region in the study, for messages.</param>
     /// <exception cref="InputException">No point, or none that the head keeps.</exception>
     public static FilledRegion Points(
-        string name, IReadOnlyList<string> pointNames, IReadOnlyList<Vec3> positions, IHead head, string origin, string? file = null, string? key = null)
+        string name, PointNames pointNames, Vec3[] positions, IHead head, string origin, string? file = null, string? key = null)
     {
-        if (pointNames.Count != positions.Count)
+        if (pointNames.Length != positions.Length)
         {
-            throw new ArgumentException($"{pointNames.Count} names and {positions.Count} positions.", nameof(positions));
+            throw new ArgumentException($"{pointNames.Length} names and {positions.Length} positions.", nameof(positions));
         }
 
-        return positions.Count > 0
+        return positions.Length > 0
             ? Admit(
-                new() { Name = name, Positions = [.. positions], Rows = [], PointNames = [.. pointNames], Origin = origin },
+                new() { Name = name, Positions = positions, Rows = [], PointNames = pointNames, Origin = origin },
                 head, file, key, WarnDroppedShare)
             : throw new InputException(file, key, $"region '{name}' has no points; give at least one");
     }
@@ -139,7 +139,8 @@ public static class RegionFill
     internal static FilledRegion Admit(FilledRegion all, IHead head, string? file, string? key, double warnShare)
     {
         int count = all.Positions.Length;
-        List<int> rows = new(count);
+        var rows = new int[count];
+        int kept = 0;
         List<DroppedPoint> dropped = [];
         Vec3 sum = Vec3.Zero;
         for (int row = 0; row < count; row++)
@@ -152,17 +153,18 @@ public static class RegionFill
             }
             else
             {
-                rows.Add(row);
+                rows[kept++] = row;
             }
         }
 
         Vec3 centroid = sum / count;
-        if (rows.Count == 0)
+        if (kept == 0)
         {
             string where = head.WhyRefused(centroid) ?? "inside, but each point is refused: " + dropped[0].Reason;
             throw new InputException(file, key, $"region '{all.Name}' keeps no dipole in {head.Name}: its centroid lies {where}");
         }
 
+        Array.Resize(ref rows, kept);
         double share = dropped.Count / (double)count;
         string[] warnings = share <= warnShare ? [] :
         [
@@ -173,9 +175,9 @@ public static class RegionFill
         return new()
         {
             Name = all.Name,
-            Positions = dropped.Count == 0 ? all.Positions : [.. rows.Select(row => all.Positions[row])],
-            Rows = [.. rows],
-            PointNames = all.PointNames.Length == 0 ? [] : dropped.Count == 0 ? all.PointNames : [.. rows.Select(row => all.PointNames[row])],
+            Positions = dropped.Count == 0 ? all.Positions : Array.ConvertAll(rows, row => all.Positions[row]),
+            Rows = rows,
+            PointNames = all.PointNames.Length == 0 || dropped.Count == 0 ? all.PointNames : all.PointNames.At(rows),
             Dropped = dropped,
             Spacing = all.Spacing,
             SpacingRefined = all.SpacingRefined,

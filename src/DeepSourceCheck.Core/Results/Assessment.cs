@@ -2,7 +2,12 @@ using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Results;
 
-/// <summary>The result of `assess`: one variant of the study.</summary>
+/// <summary>A variant of the study and its results.</summary>
+/// <param name="Name">Its name.</param>
+/// <param name="Assessment">Its results, as of a study of its own.</param>
+public sealed record VariantResult(string Name, Assessment Assessment);
+
+/// <summary>The result of `assess`: the study, and its variants beside it.</summary>
 public sealed record Assessment
 {
     /// <summary>Study.</summary>
@@ -25,6 +30,9 @@ public sealed record Assessment
 
     /// <summary>Accepted trials that the session affords, or null.</summary>
     public long? SessionTrials { get; init; }
+
+    /// <summary>Variants of the study, in its order.</summary>
+    public IReadOnlyList<VariantResult> Variants { get; init; } = [];
 
     /// <summary>Geometry.</summary>
     public required Scene Scene { get; init; }

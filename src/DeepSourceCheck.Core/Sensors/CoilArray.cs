@@ -11,7 +11,7 @@ namespace DeepSourceCheck.Core.Sensors;
 // point k rises above the edge, once and for all, at n_k = (2k + 1)/(1 - sin e(az_k)). The number of points above the edge is therefore the number of
 // n_k below n: the wanted count is met exactly by any n between the count-th and the next of the sorted n_k. The middle of that interval is taken.
 
-/// <summary>Generates MEG arrays on a cap around a spherical scalp.</summary>
+/// <summary>Generates MEG arrays on a cap: around a spherical scalp here, around a real one by <see cref="HeadArray"/>.</summary>
 public static class CoilArray
 {
     /// <summary>Default elevation of the lower edge in front [rad].</summary>
@@ -41,7 +41,14 @@ public static class CoilArray
     /// three for triaxial sensors (`M001r` outward, `M001a`, `M001b`).
     /// </returns>
     /// <exception cref="InputException">Unknown coil, or a number out of range.</exception>
-    public static MegChannel[] Generate(CoilArrayChoice choice, Vec3 centre, double scalpRadius)
+    public static MegChannel[] Generate(CoilArrayChoice choice, Vec3 centre, double scalpRadius) =>
+        Generate(choice, direction => (centre + (scalpRadius + choice.Gap) * direction, direction));
+
+    /// <summary>Channels of an array on any surface.</summary>
+    /// <param name="choice">Coil, sites, baseline, gap and edge.</param>
+    /// <param name="surface">Where the site in a direction from the centre lies [m], and its outward unit vector.</param>
+    /// <exception cref="InputException">Unknown coil, or a number out of range.</exception>
+    internal static MegChannel[] Generate(CoilArrayChoice choice, Func<Vec3, (Vec3 Place, Vec3 Outward)> surface)
     {
         Check(choice);
         Vec3[] directions = SiteDirections(choice.Sites, new(choice.EdgeFront, choice.EdgeBack));
@@ -49,7 +56,8 @@ public static class CoilArray
         List<MegChannel> channels = [];
         for (int k = 0; k < directions.Length; k++)
         {
-            Site site = new("M" + (k + 1).ToString(digits, CultureInfo.InvariantCulture), directions[k], centre, scalpRadius + choice.Gap);
+            (Vec3 place, Vec3 outward) = surface(directions[k]);
+            Site site = new("M" + (k + 1).ToString(digits, CultureInfo.InvariantCulture), place, outward);
             channels.AddRange(choice.Coil switch
             {
                 "axial-gradiometer" => [site.Axial(choice.Baseline)],
@@ -93,7 +101,7 @@ public static class CoilArray
 
     private static (double Sin, double Cos) Azimuth(int k) => Math.SinCos(GoldenSpiral.Angle * (k + 0.5));
 
-    private static void Check(CoilArrayChoice choice)
+    internal static void Check(CoilArrayChoice choice)
     {
         List<InputProblem> problems = [];
         void Require(bool holds, string key, string message)
@@ -135,17 +143,16 @@ public static class CoilArray
         private readonly string _name;
         private readonly Vec3 _place;
 
-        public Site(string name, Vec3 outward, Vec3 centre, double radius)
+        public Site(string name, Vec3 place, Vec3 outward)
         {
-            _name = name;
-            _place = centre + radius * outward;
+            (_name, _place) = (name, place);
             Outward = outward;
             Vec3 across = Vec3.Cross(new(0, 0, 1), outward);
             Across = across.Norm > 1e-9 ? across.Unit() : new(1, 0, 0);
             Down = Vec3.Cross(Across, outward);
         }
 
-        /// <summary>Along the radius.</summary>
+        /// <summary>Away from the head.</summary>
         public Vec3 Outward { get; }
 
         /// <summary>Along the circle of equal elevation.</summary>

@@ -4,10 +4,10 @@ using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Sensors;
 
-/// <summary>Electrodes at the sites of the 10-20, 10-10 and 10-5 systems, placed on a spherical head by the systems' own rules.</summary>
+/// <summary>Electrodes at the sites of the 10-20, 10-10 and 10-5 systems, placed on a spherical or a real head by the systems' own rules.</summary>
 /// <remarks>
 /// Source: Jurcak, Tsuzuki &amp; Dan 2007, NeuroImage 34:1600; Oostenveld &amp; Praamstra 2001, Clin Neurophysiol 112:713.
-/// Landmarks Nz, Iz, LPA and RPA lie at elevations -23, -14, -32 and -32 degrees seen from the centre: a real head in MNI space, so that sites and regions agree.
+/// On a sphere the landmarks Nz, Iz, LPA and RPA lie at elevations -23, -14, -32 and -32 degrees seen from the centre: a real head in MNI space, so that sites and regions agree.
 /// </remarks>
 public static class ElectrodeLayout
 {
@@ -72,12 +72,23 @@ public static class ElectrodeLayout
     /// Mastoids never enter the average; any other site is an electrode in use like the rest.
     /// </param>
     /// <exception cref="InputException">A name is not known; names the nearest.</exception>
-    public static Electrode[] OnSphere(string layout, LayeredSphere head, IEnumerable<string> joined)
+    public static Electrode[] OnSphere(string layout, LayeredSphere head, IEnumerable<string> joined) =>
+        Place(layout, joined, name => head.Centre + head.OuterRadius * Direction(name));
+
+    /// <summary>The electrodes of a layout on the scalp of a real head, and those that join them.</summary>
+    /// <param name="layout">Name of the layout.</param>
+    /// <param name="sites">Sites on the scalp.</param>
+    /// <param name="joined">As for <see cref="OnSphere"/>.</param>
+    /// <exception cref="InputException">A name is not known; names the nearest.</exception>
+    public static Electrode[] OnScalp(string layout, ScalpSites sites, IEnumerable<string> joined) =>
+        Place(layout, joined, name => sites.TryPosition(name, out Vec3 position) ? position : throw new InputException(null, Key, Unknown(name, Known)));
+
+    private static Electrode[] Place(string layout, IEnumerable<string> joined, Func<string, Vec3> position)
     {
         List<string> names = [.. Names(layout)];
         HashSet<string> seen = new(names, StringComparer.Ordinal);
         names.AddRange(joined.Where(seen.Add));
-        return [.. names.Select(name => new Electrode(name, head.Centre + head.OuterRadius * Direction(name), name is not ("M1" or "M2"), 0.0))];
+        return [.. names.Select(name => new Electrode(name, position(name), name is not ("M1" or "M2"), 0.0))];
     }
 
     /// <summary>Message about a name that is not among <paramref name="known"/>.</summary>

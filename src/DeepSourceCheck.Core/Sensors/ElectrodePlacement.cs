@@ -2,15 +2,18 @@ using System.Globalization;
 
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 
+using static System.FormattableString;
+
 namespace DeepSourceCheck.Core.Sensors;
 
-/// <summary>Puts measured electrode positions on a spherical head.</summary>
+/// <summary>Puts measured electrode positions on a head.</summary>
 public static class ElectrodePlacement
 {
-    /// <summary>Farthest that an electrode may lie from the sphere [m]: beyond it, positions and head are in different frames or units.</summary>
+    /// <summary>Farthest that an electrode may lie from the scalp [m]: beyond it, positions and head are in different frames or units.</summary>
     public const double LargestMove = 0.020;
 
     /// <summary>Reduces each position to its direction from the centre and sets it on the outer surface.</summary>
@@ -50,6 +53,95 @@ public static class ElectrodePlacement
 
         return problems.Count == 0 ? electrodes : throw new InputException(problems);
     }
+
+    /// <summary>Sets each position on the nearest point of a real scalp; contacts inside the head stay where they are.</summary>
+    /// <remarks>
+    /// A position counts as an interior contact (depth electrode, grid) when it lies in fluid or brain, or more than 20 mm below the scalp in tissue; every other one within
+    /// 20 mm of the scalp is moved onto it. Farther outside it is refused.
+    /// </remarks>
+    /// <param name="names">Names, all different.</param>
+    /// <param name="positions">Positions [m], as many as names, in the frame of the volume.</param>
+    /// <param name="scalp">Scalp.</param>
+    /// <param name="volume">Head.</param>
+    /// <param name="warnings">Receives which electrodes count as interior contacts.</param>
+    /// <param name="file">Table that they come from, for messages.</param>
+    /// <returns>Electrodes in the same order with the distance that each was moved; all in use.</returns>
+    /// <exception cref="InputException">
+    /// Every electrode that is named twice, not finite, more than 20 mm outside, or inside in a cavity of air; or interior contacts that all lie at one place.
+    /// </exception>
+    public static Electrode[] OnScalp(
+        IReadOnlyList<string> names, IReadOnlyList<Vec3> positions, ScalpSurface scalp, TissueVolume volume, List<string> warnings, string? file = null)
+    {
+        if (names.Count != positions.Count)
+        {
+            throw new ArgumentException($"{names.Count} names and {positions.Count} positions.", nameof(positions));
+        }
+
+        List<InputProblem> problems = [];
+        HashSet<string> seen = new(StringComparer.Ordinal);
+        Electrode[] electrodes = new Electrode[names.Count];
+        for (int k = 0; k < names.Count; k++)
+        {
+            (string name, Vec3 position) = (names[k], positions[k]);
+            string? problem = !seen.Add(name) ? "is listed twice; names must be unique"
+                : !position.IsFinite ? "has a coordinate that is not a number; give its position or leave the electrode out"
+                : null;
+            if (problem is null)
+            {
+                (Vec3 foot, double distance) = scalp.Nearest(position);
+                TissueKind kind = volume.At(position).Kind;
+                bool interior = distance < 0 && (kind is TissueKind.Csf or TissueKind.Grey or TissueKind.White || distance < -LargestMove);
+                problem = distance > LargestMove ? Invariant(
+                        $"is {Si.ToMm(distance):0.0} mm outside the scalp; at most {Si.ToMm(LargestMove):0} mm is allowed: check the unit and the frame of the volume")
+                    : interior && kind == TissueKind.Air ? Invariant(
+                        $"lies in a cavity of air {Si.ToMm(-distance):0.0} mm below the scalp, where nothing conducts; check its coordinates")
+                    : null;
+                electrodes[k] = interior ? new(name, position, InAverage: true, 0, IsInterior: true) : new(name, foot, InAverage: true, Math.Abs(distance));
+            }
+
+            if (problem is not null)
+            {
+                problems.Add(new(file, 0, 0, "electrodes", $"electrode '{name}' {problem}"));
+            }
+        }
+
+        string[] cut = [.. electrodes.Where(e => e is { IsInterior: false } && scalp.IsOnCut(e.Position)).Select(e => e.Name)];
+        if (cut.Length > 0)
+        {
+            warnings.Add($"{(file is null ? "" : file + ": ")}{string.Join(", ", cut)}: the nearest scalp is where the volume cuts the neck; use a volume that reaches lower, or leave these electrodes out");
+        }
+
+        if (problems.Count == 0)
+        {
+            Describe([.. electrodes.Where(e => e.IsInterior)], scalp, warnings, problems, file);
+        }
+
+        return problems.Count == 0 ? electrodes : throw new InputException(problems);
+    }
+
+    private static void Describe(Electrode[] contacts, ScalpSurface scalp, List<string> warnings, List<InputProblem> problems, string? file)
+    {
+        if (contacts.Length == 0)
+        {
+            return;
+        }
+
+        if (contacts.Length > 2 && contacts.All(c => (c.Position - contacts[0].Position).Norm < ContactsApart))
+        {
+            problems.Add(new(file, 0, 0, "electrodes", Invariant(
+                $"{contacts.Length} electrodes lie inside the head within {Si.ToMm(ContactsApart):0} mm of each other: their coordinates are in another unit than stated (BIDS: coordsystem.json; without it, mm)")));
+            return;
+        }
+
+        const int Listed = 6;
+        string listed = string.Join(", ", contacts.Take(Listed).Select(c => Invariant($"{c.Name} ({Si.ToMm(-scalp.Nearest(c.Position).SignedDistance):0} mm below the scalp)")));
+        string more = contacts.Length > Listed ? Invariant($" and {contacts.Length - Listed} more") : "";
+        warnings.Add($"{(file is null ? "" : file + ": ")}electrodes inside the head count as interior contacts and stay where they are: {listed}{more}; "
+            + "if they belong on the scalp, their frame does not fit the volume");
+    }
+
+    // Contacts of depth electrodes and grids are millimetres apart (common practice, no source); metres read as millimetres put a whole cap within a third of one.
+    private const double ContactsApart = 0.001;
 
     private static string TooFar(double distance, LayeredSphere head) => string.Create(
         CultureInfo.InvariantCulture,

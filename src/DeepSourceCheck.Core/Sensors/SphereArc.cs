@@ -9,7 +9,7 @@ namespace DeepSourceCheck.Core.Sensors;
 // Arc length is proportional to phi, so a share of an arc is a share of the angle.
 
 /// <summary>The circular arc on the unit sphere that starts at a point, passes through a second and ends at a third.</summary>
-internal readonly struct SphereArc
+internal readonly struct SphereArc : ISiteCurve
 {
     private readonly Vec3 _centre, _e1, _e2;
     private readonly double _radius, _middle, _end;

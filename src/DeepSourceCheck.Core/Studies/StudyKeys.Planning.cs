@@ -5,7 +5,6 @@ public static partial class StudyKeys
     private const string VarianceRatioNotYet = "use amplitude_ratio or detection";
     private const string PeopleNotYet = "the plan is for one person; remove the key";
     private const string UnknownsNotYet = "the study is computed at its stated values; remove the key";
-    private const string VariantsNotYet = "write one study file for each variant";
 
     private static StudyKey[] Planning() =>
     [
@@ -138,9 +137,8 @@ public static partial class StudyKeys
         new("variants", "Studies that override keys of this one.", new ListShape("a variant {name, and the keys that it overrides}"))
         {
             Example = "[{name: three layers, head: {spheres: {preset: adult-3}}}]",
-            NotYet = VariantsNotYet,
         },
-        new("variants[].name", "Name of the variant.", new TextShape("a name")) { Example = "three layers", NotYet = VariantsNotYet },
+        new("variants[].name", "Name of the variant.", new TextShape("a name")) { Required = true, Example = "three layers" },
     ];
 
     private static StudyKey[] Spread(string name, string description, string low, string typical, string high)

@@ -4,8 +4,7 @@ using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
-
-using YamlDotNet.RepresentationModel;
+using DeepSourceCheck.Files.Studies;
 
 namespace DeepSourceCheck.Files.Regions;
 
@@ -21,9 +20,7 @@ public static class LibraryRegionReader
     /// <exception cref="InvalidDataException">Malformed; names file and key.</exception>
     public static IReadOnlyList<LibraryRegion> Read(string file, TextReader text)
     {
-        YamlStream yaml = [];
-        yaml.Load(text);
-        Node root = new(file, "", (YamlMappingNode)yaml.Documents[0].RootNode);
+        Node root = new(file, "", Tree(file, text.ReadToEnd()));
         root.AllowOnly(Keys);
         string structure = root.Text("structure");
         Node volume = root.Map("volume_mL"), place = root.Map("place");
@@ -57,6 +54,33 @@ public static class LibraryRegionReader
         return [Region("left", left), Region("right", root.Has("right") ? Shape(root.Map("right")) : left.MirrorX())];
     }
 
+    /// <summary>Names of the regions that <see cref="Read"/> gives, found by the file's top-level keys alone.</summary>
+    /// <param name="text">YAML text of a sound file.</param>
+    public static IReadOnlyList<string> Names(string text)
+    {
+        string structure = "";
+        bool one = false;
+        foreach (string line in text.Split('\n'))
+        {
+            structure = line.StartsWith("structure:", StringComparison.Ordinal) ? line["structure:".Length..].Trim() : structure;
+            one |= line.StartsWith("midline:", StringComparison.Ordinal) || line.StartsWith("computed:", StringComparison.Ordinal);
+        }
+
+        return one ? [structure] : [structure + "-left", structure + "-right"];
+    }
+
+    private static YamlMap Tree(string file, string text)
+    {
+        try
+        {
+            return YamlTree.Parse(text, file) as YamlMap ?? throw new InvalidDataException($"{file}: must be a mapping");
+        }
+        catch (InputException error)
+        {
+            throw new InvalidDataException(error.Message, error);
+        }
+    }
+
     private static Ellipsoid Shape(Node node)
     {
         node.AllowOnly(["centre_mm", "semi_axes_mm", "rotation_deg"]);
@@ -70,31 +94,30 @@ public static class LibraryRegionReader
     private static Vec3 Metres(Vec3 mm) => new(Si.FromMm(mm.X), Si.FromMm(mm.Y), Si.FromMm(mm.Z));
 
     /// <summary>A mapping with its place in the file.</summary>
-    private sealed class Node(string file, string path, YamlMappingNode map)
+    private sealed class Node(string file, string path, YamlMap map)
     {
-        public bool Has(string key) => map.Children.ContainsKey(new YamlScalarNode(key));
+        public bool Has(string key) => Find(key) is not null;
 
         public InvalidDataException Wrong(string key, string what) => new($"{file}: {path}{key} {what}");
 
         public void AllowOnly(string[] keys)
         {
-            foreach (YamlNode key in map.Children.Keys)
+            foreach (YamlEntry entry in map.Entries)
             {
-                string name = ((YamlScalarNode)key).Value ?? "";
-                if (!keys.Contains(name))
+                if (Array.IndexOf(keys, entry.Name) < 0)
                 {
-                    throw Wrong(name, $"is not a key of the library; keys are {string.Join(", ", keys)}");
+                    throw Wrong(entry.Name, $"is not a key of the library; keys are {string.Join(", ", keys)}");
                 }
             }
         }
 
-        public Node Map(string key) => Get(key) is YamlMappingNode child ? new(file, $"{path}{key}.", child) : throw Wrong(key, "must be a mapping");
+        public Node Map(string key) => Get(key) is YamlMap child ? new(file, $"{path}{key}.", child) : throw Wrong(key, "must be a mapping");
 
-        public string Text(string key) => Get(key) is YamlScalarNode { Value: { Length: > 0 } value } ? value : throw Wrong(key, "must be text");
+        public string Text(string key) => Get(key) is YamlScalar { Text: { Length: > 0 } value } ? value : throw Wrong(key, "must be text");
 
         public double Number(string key) => Parse(key, Get(key));
 
-        public Vec3 Vector(string key) => Get(key) is YamlSequenceNode { Children: { Count: 3 } c }
+        public Vec3 Vector(string key) => Get(key) is YamlList { Items: { Count: 3 } c }
             ? new(Parse(key, c[0]), Parse(key, c[1]), Parse(key, c[2]))
             : throw Wrong(key, "must be three numbers");
 
@@ -106,12 +129,24 @@ public static class LibraryRegionReader
             _ => throw Wrong(key, "must be seen, memory or derived"),
         };
 
-        private YamlNode Get(string key) =>
-            map.Children.TryGetValue(new YamlScalarNode(key), out YamlNode? node) ? node : throw Wrong(key, "is missing");
+        private YamlNode Get(string key) => Find(key) ?? throw Wrong(key, "is missing");
+
+        private YamlNode? Find(string key)
+        {
+            foreach (YamlEntry entry in map.Entries)
+            {
+                if (entry.Name == key)
+                {
+                    return entry.Value;
+                }
+            }
+
+            return null;
+        }
 
         private double Parse(string key, YamlNode node) =>
-            node is YamlScalarNode scalar
-            && double.TryParse(scalar.Value, NumberStyles.Float, CultureInfo.InvariantCulture, out double value) && double.IsFinite(value)
+            node is YamlScalar scalar
+            && double.TryParse(scalar.Text, NumberStyles.Float, CultureInfo.InvariantCulture, out double value) && double.IsFinite(value)
                 ? value
                 : throw Wrong(key, "must be a number");
     }

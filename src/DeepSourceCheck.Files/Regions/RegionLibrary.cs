@@ -9,38 +9,67 @@ public sealed class RegionLibrary
 {
     private const string Prefix = "regions/";
 
-    private readonly Dictionary<string, LibraryRegion> _byName;
+    // Structures by the names of their regions, and what was read of them: a study names a few of the files, and parsing all of them takes longer than checking it.
+    private readonly Dictionary<string, string> _resources;
+    private readonly Dictionary<string, IReadOnlyList<LibraryRegion>> _read = new(StringComparer.Ordinal);
+    private readonly string[] _names;
 
-    private RegionLibrary(IReadOnlyList<LibraryRegion> regions)
-    {
-        Regions = regions;
-        _byName = regions.ToDictionary(region => region.Name, StringComparer.Ordinal);
-    }
+    private RegionLibrary(Dictionary<string, string> resources, string[] names) => (_resources, _names) = (resources, names);
 
     /// <summary>All regions, sides next to each other, in the order of structures.</summary>
-    public IReadOnlyList<LibraryRegion> Regions { get; }
+    /// <exception cref="InvalidDataException">A resource is malformed: a fault of the build.</exception>
+    public IReadOnlyList<LibraryRegion> Regions => Array.ConvertAll(_names, name => Find(name)!);
 
     /// <summary>Names by which studies use them.</summary>
-    public IEnumerable<string> Names => Regions.Select(region => region.Name);
+    public IReadOnlyList<string> Names => _names;
 
-    /// <summary>Reads the library that travels inside the program.</summary>
-    /// <exception cref="InvalidDataException">A resource is malformed: a fault of the build.</exception>
+    /// <summary>Opens the library that travels inside the program; each structure is read when it is first asked for.</summary>
     public static RegionLibrary Load()
     {
-        System.Reflection.Assembly assembly = typeof(RegionLibrary).Assembly;
-        List<LibraryRegion> regions = [];
-        foreach (string resource in assembly.GetManifestResourceNames().Where(n => n.StartsWith(Prefix, StringComparison.Ordinal)).Order(StringComparer.Ordinal))
+        string[] resources = Array.FindAll(typeof(RegionLibrary).Assembly.GetManifestResourceNames(), n => n.StartsWith(Prefix, StringComparison.Ordinal));
+        Array.Sort(resources, StringComparer.Ordinal);
+        Dictionary<string, string> byName = new(StringComparer.Ordinal);
+        List<string> names = [];
+        foreach (string resource in resources)
         {
-            using Stream stream = assembly.GetManifestResourceStream(resource)!;
-            using StreamReader reader = new(stream);
-            regions.AddRange(LibraryRegionReader.Read(resource, reader));
+            foreach (string name in LibraryRegionReader.Names(Text(resource)))
+            {
+                byName.Add(name, resource);
+                names.Add(name);
+            }
         }
 
-        return new(regions);
+        return new(byName, [.. names]);
     }
 
     /// <summary>The region of a name, or null.</summary>
-    public LibraryRegion? Find(string name) => _byName.GetValueOrDefault(name);
+    /// <exception cref="InvalidDataException">Its resource is malformed: a fault of the build.</exception>
+    public LibraryRegion? Find(string name)
+    {
+        if (!_resources.TryGetValue(name, out string? resource))
+        {
+            return null;
+        }
+
+        lock (_read)
+        {
+            if (!_read.TryGetValue(resource, out IReadOnlyList<LibraryRegion>? regions))
+            {
+                using StringReader text = new(Text(resource));
+                _read[resource] = regions = LibraryRegionReader.Read(resource, text);
+            }
+
+            foreach (LibraryRegion region in regions)
+            {
+                if (region.Name == name)
+                {
+                    return region;
+                }
+            }
+
+            throw new InvalidDataException($"{resource}: {name} is not among its regions");
+        }
+    }
 
     /// <summary>The region of a name, scaled about the head's centre.</summary>
     /// <param name="name">For instance `thalamus-left`.</param>
@@ -57,5 +86,12 @@ public sealed class RegionLibrary
 
         string side = Find(name + "-left") is not null ? $"; it has two sides: write {name}-left or {name}-right" : NearestName.Hint(name, Names);
         throw new InputException(null, key, $"there is no region '{name}' in the library or the study{side}");
+    }
+
+    private static string Text(string resource)
+    {
+        using Stream stream = typeof(RegionLibrary).Assembly.GetManifestResourceStream(resource)!;
+        using StreamReader reader = new(stream);
+        return reader.ReadToEnd();
     }
 }

@@ -30,9 +30,19 @@ public sealed record StudyReading(
     string Text,
     IReadOnlyDictionary<string, TextPlace> Places)
 {
+    /// <summary>Name of the variant that this is; null for the study itself.</summary>
+    public string? Variant { get; init; }
+
+    /// <summary>The study's variants, in its order.</summary>
+    public IReadOnlyList<VariantReading> Variants { get; init; } = [];
+
+    /// <summary>A message with the variant that it is about, once.</summary>
+    public string Attributed(string message) => message.StartsWith(Reading.Of(Variant, ""), StringComparison.Ordinal) ? message : Reading.Of(Variant, message);
+
     /// <summary>A problem with a key that shows only later, placed where the file states the key or the nearest key above it.</summary>
     public InputProblem Problem(string key, string message)
     {
+        message = Attributed(message);
         for (string at = key; ;)
         {
             if (Places.TryGetValue(at, out TextPlace place))
@@ -63,6 +73,9 @@ internal sealed class Reading(string file, string folder, Purpose purpose, IRead
     /// <summary>False beyond 100 problems: a list of thousands of wrong names needs no thousands of nearest names.</summary>
     public bool Suggests => Problems.Count < MostSuggestions;
 
+    /// <summary>Name of the variant that is read; null for the study itself.</summary>
+    public string? Variant { get; init; }
+
     public string File { get; } = file;
 
     public string Folder { get; } = folder;
@@ -86,13 +99,16 @@ internal sealed class Reading(string file, string folder, Purpose purpose, IRead
     {
         if (Problems.Count < MostKept)
         {
-            Problems.Add(new(File, line, column, key.Length > 0 ? Shown.Text(key, 120) : null, message));
+            Problems.Add(new(File, line, column, key.Length > 0 ? Shown.Text(key, 120) : null, Of(Variant, message)));
         }
         else
         {
             _dropped++;
         }
     }
+
+    /// <summary>A message with the variant that it is about.</summary>
+    public static string Of(string? variant, string message) => variant is null ? message : $"variant {Shown.Quoted(variant)}: {message}";
 
     public void Warn(string key, string message) => Warnings.Add($"{key}: {message}");
 

@@ -36,6 +36,28 @@ public static class StudyReader
             throw new InvalidOperationException("A study without a top level was not refused.");
         }
 
+        (YamlMap own, IReadOnlyList<(string Name, YamlMap Merged)> variants) = VariantReader.Split(top, reading);
+        StudyReading study = ReadTree(own, reading, text);
+        var problems = new List<InputProblem>();
+        var read = new List<VariantReading>();
+        foreach ((string name, YamlMap merged) in variants)
+        {
+            var other = new Reading(fileName, folder, purpose, reading.LibraryRegions) { Variant = name };
+            try
+            {
+                read.Add(new(name, ReadTree(merged, other, text)));
+            }
+            catch (InputException error)
+            {
+                problems.AddRange(error.Problems);
+            }
+        }
+
+        return problems.Count == 0 ? study with { Variants = read } : throw new InputException(problems);
+    }
+
+    private static StudyReading ReadTree(YamlMap top, Reading reading, string text)
+    {
         PlacedMap placed = new StudyWalk(reading).Root(top);
         Study? study = Bind(new Section(reading, placed, ""), placed, reading);
         reading.ThrowIfAny();
@@ -43,7 +65,7 @@ public static class StudyReader
         reading.ThrowIfAny();
         return study is null
             ? throw new InvalidOperationException("A study that could not be bound was not refused.")
-            : new(study, reading.Assumptions, reading.Warnings, text, reading.Places);
+            : new(study, reading.Assumptions, reading.Warnings, text, reading.Places) { Variant = reading.Variant };
     }
 
     private static Study? Bind(Section root, PlacedMap placed, Reading reading)

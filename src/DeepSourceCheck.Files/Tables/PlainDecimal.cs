@@ -1,3 +1,6 @@
+using System.Buffers;
+using System.Text;
+
 namespace DeepSourceCheck.Files.Tables;
 
 /// <summary>
@@ -10,8 +13,19 @@ internal static class PlainDecimal
 
     private static readonly double[] PowersOfTen = [1, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15];
 
+    // Longer texts have more digits than are parsed here, or are no numbers.
+    private const int LongestText = MostDigits + 2;
+
     /// <summary>False for every other way of writing a number, which is then left to the full parser.</summary>
     public static bool TryParse(ReadOnlySpan<char> text, out double value)
+    {
+        value = 0;
+        Span<byte> ascii = stackalloc byte[LongestText];
+        return text.Length <= LongestText && Ascii.FromUtf16(text, ascii, out int written) == OperationStatus.Done && TryParse(ascii[..written], out value);
+    }
+
+    /// <summary>Likewise of UTF-8.</summary>
+    public static bool TryParse(ReadOnlySpan<byte> text, out double value)
     {
         value = 0;
         int at = text.Length > 0 && text[0] == '-' ? 1 : 0, digits = 0, decimals = 0;

@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Files.Tables;
@@ -11,17 +12,54 @@ namespace DeepSourceCheck.Files.Tables;
 public readonly record struct TablePoint(string Name, Vec3 Position, Vec3? Direction, int Line);
 
 /// <summary>points.tsv: `name x y z` in mm, optionally `direction_x direction_y direction_z`.</summary>
-/// <param name="Points">In the order of the file, at least one.</param>
-/// <param name="Warnings">What the user must know.</param>
-public sealed record PointsTable(IReadOnlyList<TablePoint> Points, IReadOnlyList<string> Warnings)
+public sealed class PointsTable
 {
     private static readonly string[] DirectionColumns = ["direction_x", "direction_y", "direction_z"];
 
-    /// <summary>Reads the table; other columns are left alone.</summary>
-    /// <exception cref="InputException">Every problem of the file at once, with lines and columns.</exception>
-    public static PointsTable Read(string path, string displayName)
+    private readonly Lazy<IReadOnlyList<TablePoint>> _points;
+
+    private PointsTable(IReadOnlyList<TablePoint> points, IReadOnlyList<string> warnings)
     {
-        TsvTable table = TsvTable.Read(path, displayName, "name", "x", "y", "z");
+        (Names, Positions, Warnings) = ([.. points.Select(p => p.Name)], [.. points.Select(p => p.Position)], warnings);
+        _points = new(points);
+    }
+
+    private PointsTable(PointNames names, Vec3[] positions)
+    {
+        (Names, Positions, Warnings) = (names, positions, []);
+        // A clean table has its header in line 1 and no blank line.
+        _points = new(() => [.. positions.Select((p, k) => new TablePoint(names[k], p, null, k + 2))]);
+    }
+
+    /// <summary>Names in the order of the file, at least one.</summary>
+    public PointNames Names { get; }
+
+    /// <summary>Positions [m], as many as names.</summary>
+    public Vec3[] Positions { get; }
+
+    /// <summary>The same as rows, with directions and lines; made when first asked for.</summary>
+    public IReadOnlyList<TablePoint> Points => _points.Value;
+
+    /// <summary>What the user must know.</summary>
+    public IReadOnlyList<string> Warnings { get; }
+
+    /// <summary>Reads the table; other columns are left alone.</summary>
+    /// <param name="path">File.</param>
+    /// <param name="displayName">As the user named it.</param>
+    /// <param name="read">Given the file's bytes before they are parsed, so that whoever digests them need not read them again.</param>
+    /// <exception cref="InputException">Every problem of the file at once, with lines and columns.</exception>
+    public static PointsTable Read(string path, string displayName, Action<byte[]>? read = null)
+    {
+        byte[] bytes = InputFileAccess.ReadAll(path, displayName, TsvTable.LargestFile);
+        read?.Invoke(bytes);
+        return CleanPoints.TryRead(bytes, out PointNames names, out Vec3[] positions) ? new(names, positions) : Careful(bytes, displayName);
+    }
+
+    /// <summary>Reads any table of points, row by row.</summary>
+    /// <exception cref="InputException">As for <see cref="Read"/>.</exception>
+    internal static PointsTable Careful(byte[] bytes, string displayName)
+    {
+        TsvTable table = TsvTable.Of(bytes, displayName, "name", "x", "y", "z");
         int directions = DirectionColumns.Count(table.Has);
         if (directions is 1 or 2)
         {

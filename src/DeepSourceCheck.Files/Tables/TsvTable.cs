@@ -7,7 +7,9 @@ namespace DeepSourceCheck.Files.Tables;
 /// <summary>A table of tab-separated values: UTF-8 with or without byte order mark, LF or CRLF, one header row, columns by name in any order, blank lines ignored.</summary>
 internal sealed class TsvTable
 {
-    private const long LargestFile = 1L << 28;
+    /// <summary>Largest file that is read [bytes].</summary>
+    public const long LargestFile = 1L << 28;
+
     private const int MostAsked = 16;
     private readonly Dictionary<string, int> _columns;
     private readonly List<(string Name, int At)> _asked = [];
@@ -31,9 +33,13 @@ internal sealed class TsvTable
     /// <param name="displayName">As the user named it.</param>
     /// <param name="required">Columns that must be there.</param>
     /// <exception cref="InputException">The file cannot be read, has no rows or lacks a column; row problems are collected in <see cref="Problems"/>.</exception>
-    public static TsvTable Read(string path, string displayName, params string[] required)
+    public static TsvTable Read(string path, string displayName, params string[] required) =>
+        Of(InputFileAccess.ReadAll(path, displayName, LargestFile), displayName, required);
+
+    /// <summary>The table of a file that was read; otherwise as <see cref="Read"/>.</summary>
+    public static TsvTable Of(byte[] bytes, string displayName, params string[] required)
     {
-        string text = Utf8Text.Decode(InputFileAccess.ReadAll(path, displayName, LargestFile), displayName);
+        string text = Utf8Text.Decode(bytes, displayName);
         ProblemList problems = new(displayName);
         Dictionary<string, int>? columns = null;
         List<TsvRow> rows = [];

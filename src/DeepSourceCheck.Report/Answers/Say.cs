@@ -44,6 +44,9 @@ public static class Say
     /// <summary>dB with one decimal.</summary>
     public static string Decibels(double db) => Signed((Math.Round(db, 1) + 0.0).ToString("0.0", CultureInfo.InvariantCulture));
 
+    /// <summary>A change in dB with its sign and one decimal: `+0.4`, `-12.3`; `0.0` where it rounds to nothing.</summary>
+    public static string SignedDecibels(double db) => Signed((Math.Round(db, 1) + 0.0).ToString("+0.0;-0.0;0.0", CultureInfo.InvariantCulture));
+
     /// <summary>A value as the study states it, up to 6 significant digits, no trailing zeros.</summary>
     public static string Stated(double value) => Signed(value.ToString("0.######", CultureInfo.InvariantCulture));
 

@@ -72,6 +72,34 @@ public static class ConsoleSummary
         text.Append('\n').Append(ConsoleChart.Of(assessment, answer, ink)).Append('\n');
         Facts(text, assessment, answer);
         Others(text, assessment, response, answer);
+        Variants(text, assessment, response, answer.Region);
+    }
+
+    // A row each; change is that of the SNR in dB, the study's own row has none.
+    private static void Variants(StringBuilder text, Assessment assessment, ResponseResult response, RegionResult region)
+    {
+        IReadOnlyList<VariantRow> rows = VariantRow.Of(assessment, response, region);
+        if (rows.Count == 1)
+        {
+            return;
+        }
+
+        const int NameLength = 27;
+        Modality[] modalities = [.. rows[0].Answer!.Answers.Select(a => a.Modality).Where(m => m != Modality.Both)];
+        text.Append($"\n{"variant",-NameLength}{string.Concat(modalities.Select(m => $"{Names.Of(m) + " trials",15}{"change",9}"))}\n");
+        foreach (VariantRow row in rows)
+        {
+            string name = row.Name.Length < NameLength ? row.Name : row.Name[..(NameLength - 4)] + "...";
+            text.Append($"{name,-NameLength}");
+            foreach (Modality modality in modalities)
+            {
+                ModalityAnswer? answer = row.Answer?.Of(modality);
+                string count = answer is null ? "-" : answer.Outcome == Outcome.Silent ? "silent" : Say.Trials(answer.Trials);
+                text.Append($"{count,15}{(row.Change(modality) is { } db ? Say.SignedDecibels(db) + " dB" : ""),9}");
+            }
+
+            text.Append('\n');
+        }
     }
 
     private static string Conditions(Assessment assessment, RegionAnswer answer)

@@ -6,9 +6,12 @@ namespace DeepSourceCheck.Report.Figures;
 public static class FigureFile
 {
     /// <summary>The file's text.</summary>
-    public static string Svg(Figure figure, FigureSheet sheet)
+    public static string Svg(Figure figure, FigureSheet sheet) => Svg(figure, sheet.SvgWithText());
+
+    /// <summary>The file's text, from <see cref="FigureSheet.SvgWithText"/>.</summary>
+    internal static string Svg(Figure figure, string xml)
     {
-        XElement root = XElement.Parse(sheet.Svg("g"));
+        XElement root = SvgOutlines.Element(xml, "g");
         XNamespace svg = root.Name.Namespace;
         root.SetAttributeValue("role", "img");
         root.SetAttributeValue("aria-labelledby", "title description");

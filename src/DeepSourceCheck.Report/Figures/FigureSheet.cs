@@ -54,7 +54,10 @@ public sealed class FigureSheet : IDisposable
 
     /// <summary>The drawing as SVG whose text is outlines of the shipped font.</summary>
     /// <param name="prefix">Begins every id, so that several drawings can stand in one page.</param>
-    public string Svg(string prefix)
+    public string Svg(string prefix) => SvgOutlines.Replace(SvgWithText(), prefix);
+
+    /// <summary>The drawing as SVG whose text is still text: what <see cref="SvgOutlines"/> starts from.</summary>
+    internal string SvgWithText()
     {
         using MemoryStream stream = new();
         using (SKCanvas canvas = SKSvgCanvas.Create(SKRect.Create(Width, Height), stream))
@@ -62,7 +65,7 @@ public sealed class FigureSheet : IDisposable
             _plot.Render(canvas, new PixelRect(0, Width, Height, 0));
         }
 
-        return SvgOutlines.Replace(Encoding.UTF8.GetString(stream.ToArray()), prefix);
+        return Encoding.UTF8.GetString(stream.ToArray());
     }
 
     /// <summary>The drawing as PNG at twice the size.</summary>

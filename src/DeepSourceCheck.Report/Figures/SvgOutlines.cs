@@ -1,3 +1,4 @@
+using System.Collections.Concurrent;
 using System.Globalization;
 using System.Text;
 using System.Xml.Linq;
@@ -16,9 +17,16 @@ internal static class SvgOutlines
     // Glyphs are defined at this size [px], with two decimals: 0.01 % of an em.
     private const float DefinedSize = 100;
 
+    // Outlines by weight and character: the figures of a page say much the same.
+    private static readonly ConcurrentDictionary<string, string> Known = new(StringComparer.Ordinal);
+
     private static readonly XNamespace Svg = "http://www.w3.org/2000/svg";
 
-    public static string Replace(string xml, string prefix)
+    /// <summary>The drawing's text; every id begins with the prefix.</summary>
+    public static string Replace(string xml, string prefix) => Element(xml, prefix).ToString(SaveOptions.DisableFormatting).Replace("\r", "", StringComparison.Ordinal);
+
+    /// <summary>The same as an element.</summary>
+    public static XElement Element(string xml, string prefix)
     {
         XDocument document = XDocument.Parse(xml);
         XElement root = document.Root!;
@@ -41,7 +49,7 @@ internal static class SvgOutlines
         root.AddFirst(new XElement(Svg + "defs", outlines.Select(o => new XElement(Svg + "path", new XAttribute("id", o.Key), new XAttribute("d", o.Value)))));
         root.SetAttributeValue("viewBox", $"0 0 {root.Attribute("width")!.Value} {root.Attribute("height")!.Value}");
         root.Attribute(XNamespace.Xmlns + "xlink")?.Remove();
-        return root.ToString(SaveOptions.DisableFormatting).Replace("\r", "", StringComparison.Ordinal);
+        return root;
     }
 
     private static XElement Outlined(XElement text, string prefix, SortedDictionary<string, string> outlines)
@@ -69,9 +77,15 @@ internal static class SvgOutlines
         {
             float x = xs[Math.Min(k, xs.Length - 1)];
             k++;
-            if (Outline(rune, semiBold) is { Length: > 0 } outline)
+            string glyph = (semiBold ? "b" : "r") + rune.Value.ToString("x", CultureInfo.InvariantCulture);
+            if (!Known.TryGetValue(glyph, out string? outline))
             {
-                string id = $"{prefix}-{(semiBold ? "b" : "r")}{rune.Value.ToString("x", CultureInfo.InvariantCulture)}";
+                Known[glyph] = outline = Outline(rune, semiBold);
+            }
+
+            if (outline.Length > 0)
+            {
+                string id = $"{prefix}-{glyph}";
                 outlines[id] = outline;
                 group.Add(new XElement(Svg + "use", new XAttribute("href", "#" + id), new XAttribute("x", Short((x - x0) / scale))));
             }

@@ -9,9 +9,9 @@ internal static class FigureSection
     // Taller drawings may break over printed pages.
     private const int TallestUnbroken = 900;
 
-    public static void Write(Markup html, Assessment assessment, bool files)
+    public static void Write(Markup html, Assessment assessment, bool files, FigureDrawings drawings)
     {
-        IReadOnlyList<Figure> figures = FigureSet.All(assessment);
+        IReadOnlyList<Figure> figures = drawings.Figures;
         if (figures.Count == 0)
         {
             return;
@@ -36,7 +36,7 @@ internal static class FigureSection
         {
             if (!figures[k].FullWidth)
             {
-                One(html, figures[k], k, files);
+                One(html, figures[k], drawings.Page(k), files);
             }
         }
 
@@ -45,18 +45,16 @@ internal static class FigureSection
         {
             if (figures[k].FullWidth)
             {
-                One(html, figures[k], k, files);
+                One(html, figures[k], drawings.Page(k), files);
             }
         }
 
         html.CloseLine();
     }
 
-    private static void One(Markup html, Figure figure, int index, bool files)
+    private static void One(Markup html, Figure figure, PageDrawing drawing, bool files)
     {
-        using FigureSheet normal = figure.Draw(figure.FileWidth);
-        using FigureSheet narrow = figure.Draw(Figure.PhoneWidth);
-        string cssClass = string.Join(" ", new[] { figure.FullWidth ? "wide" : "", normal.Height > TallestUnbroken ? "tall" : "" }.Where(c => c.Length > 0));
+        string cssClass = string.Join(" ", new[] { figure.FullWidth ? "wide" : "", drawing.Height > TallestUnbroken ? "tall" : "" }.Where(c => c.Length > 0));
         if (cssClass.Length > 0)
         {
             html.Open("figure", "class", cssClass, "id", $"figure-{figure.Name}");
@@ -67,8 +65,8 @@ internal static class FigureSection
         }
 
         html.Element("h3", figure.Title + ".").Raw("\n")
-            .Raw(InlineFigure.Svg(normal, $"f{index}w", figure.Alt, "normal"))
-            .Raw(InlineFigure.Svg(narrow, $"f{index}n", figure.Alt, "narrow"));
+            .Raw(drawing.Wide)
+            .Raw(drawing.Narrow);
         html.Open("figcaption").Element("b", figure.Quantity + "; ").Text(figure.Conditions).CloseLine();
         if (files)
         {

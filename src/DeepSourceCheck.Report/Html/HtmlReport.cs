@@ -1,5 +1,6 @@
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Report.Answers;
+using DeepSourceCheck.Report.Figures;
 
 namespace DeepSourceCheck.Report.Html;
 
@@ -18,7 +19,10 @@ public static class HtmlReport
     /// <summary>The whole page.</summary>
     /// <param name="assessment">What to report.</param>
     /// <param name="figureFiles">True where the figures also stand in a folder `figures` beside the page, so that it may link to them.</param>
-    public static string Text(Assessment assessment, bool figureFiles)
+    public static string Text(Assessment assessment, bool figureFiles) => Text(assessment, figureFiles, FigureDrawings.Begin(assessment, files: false, page: true));
+
+    /// <summary>The whole page, with drawings that were begun before.</summary>
+    internal static string Text(Assessment assessment, bool figureFiles, FigureDrawings drawings)
     {
         Markup html = new();
         html.Open("html", "lang", "en").Raw("\n");
@@ -31,6 +35,7 @@ public static class HtmlReport
             AnswerSection.Write(html, assessment, k);
         }
 
+        VariantSection.Write(html, assessment);
         if (assessment.Warnings.Count > 0)
         {
             Section(html, "warnings", "What to know about this run");
@@ -38,7 +43,7 @@ public static class HtmlReport
             html.CloseLine();
         }
 
-        FigureSection.Write(html, assessment, figureFiles);
+        FigureSection.Write(html, assessment, figureFiles, drawings);
         ResultSection.Write(html, assessment);
         AssumptionSection.Write(html, assessment);
         LimitSection.Write(html, assessment);

@@ -9,9 +9,12 @@ namespace DeepSourceCheck.Report.Html;
 internal static partial class InlineFigure
 {
     /// <summary>The drawing with a text alternative.</summary>
-    public static string Svg(FigureSheet sheet, string prefix, string alt, string cssClass)
+    public static string Svg(FigureSheet sheet, string prefix, string alt, string cssClass) => Svg(sheet.SvgWithText(), prefix, alt, cssClass);
+
+    /// <summary>The same from <see cref="FigureSheet.SvgWithText"/>.</summary>
+    public static string Svg(string xml, string prefix, string alt, string cssClass)
     {
-        string svg = InPageColours(sheet.Svg(prefix));
+        string svg = InPageColours(SvgOutlines.Replace(xml, prefix));
         int end = svg.IndexOf('>', StringComparison.Ordinal);
         return $"<svg class=\"{cssClass}\" role=\"img\" aria-label=\"{Markup.Escape(alt)}\"{svg[4..end]}{svg[end..]}";
     }

@@ -33,8 +33,7 @@ public static class AssessmentJson
             json.WriteStrings("warnings", assessment.Warnings);
             json.WriteCount("session_trials", assessment.SessionTrials);
             json.WriteArray("responses", assessment.Responses, WriteResponse);
-            json.WriteStartArray("variants");
-            json.WriteEndArray();
+            json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));
             json.WriteEndObject();
         }
 
@@ -46,6 +45,18 @@ public static class AssessmentJson
         json.WriteStartObject();
         json.WriteString("path", file.Path);
         json.WriteString("sha256", file.Sha256);
+        json.WriteEndObject();
+    }
+
+    // A variant's assumptions and warnings are those that the study does not have.
+    private static void WriteVariant(Utf8JsonWriter json, VariantResult variant, Assessment study)
+    {
+        json.WriteStartObject();
+        json.WriteString("name", variant.Name);
+        json.WriteArray("assumptions", [.. variant.Assessment.Assumptions.Except(study.Assumptions)], JsonText.WriteAssumption);
+        json.WriteStrings("warnings", variant.Assessment.Warnings.Except(study.Warnings));
+        json.WriteCount("session_trials", variant.Assessment.SessionTrials);
+        json.WriteArray("responses", variant.Assessment.Responses, WriteResponse);
         json.WriteEndObject();
     }
 

@@ -3,6 +3,7 @@ using System.Text;
 
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Units;
+using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Tables;
 
@@ -20,6 +21,25 @@ public static class RegionsCsv
     public static string Text(Assessment assessment)
     {
         StringBuilder text = new(Header + "\n");
+        Rows(text, assessment, "");
+        return text.ToString();
+    }
+
+    /// <summary>variants.csv: the same table with a first column `variant`; the study itself comes first.</summary>
+    public static string Variants(Assessment assessment)
+    {
+        StringBuilder text = new("variant," + Header + "\n");
+        Rows(text, assessment, CsvField.Quote(VariantRow.StudyName) + ",");
+        foreach (VariantResult variant in assessment.Variants)
+        {
+            Rows(text, variant.Assessment, CsvField.Quote(variant.Name) + ",");
+        }
+
+        return text.ToString();
+    }
+
+    private static void Rows(StringBuilder text, Assessment assessment, string before)
+    {
         foreach (ResponseResult response in assessment.Responses)
         {
             foreach (RegionResult region in response.Regions)
@@ -28,13 +48,11 @@ public static class RegionsCsv
                 {
                     foreach (TargetResult target in row.Targets)
                     {
-                        text.AppendJoin(',', Fields(response.Response.Name, region, row, target)).Append('\n');
+                        text.Append(before).AppendJoin(',', Fields(response.Response.Name, region, row, target)).Append('\n');
                     }
                 }
             }
         }
-
-        return text.ToString();
     }
 
     private static IEnumerable<string> Fields(string response, RegionResult region, MeasureResult row, TargetResult target)

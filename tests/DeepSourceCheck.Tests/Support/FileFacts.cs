@@ -50,3 +50,17 @@ internal sealed class RealHeadFactAttribute : FactAttribute
         return null;
     }
 }
+
+/// <summary>A test on the labelled volume of a real head; skipped with the reason where it does not stand beside the checkout.</summary>
+[AttributeUsage(AttributeTargets.Method)]
+internal sealed class RealVolumeFactAttribute : FactAttribute
+{
+    public RealVolumeFactAttribute()
+    {
+        string[] absent = [.. new[] { "head_2mm.nii.gz", "landmarks.json", "tenTwenty.json" }.Where(file => LabelledHeads.RealHead(file) is null)];
+        if (absent.Length > 0)
+        {
+            Skip = $"needs shared/reference/head/{absent[0]} beside the checkout (a labelled real head with landmarks and sites), which is not here";
+        }
+    }
+}

@@ -1,10 +1,10 @@
 using System.Buffers;
 using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
-using System.Runtime.Intrinsics;
 
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Numerics;
 using DeepSourceCheck.Core.Sensors;
 
 namespace DeepSourceCheck.Core.Leadfields.Spheres;
@@ -19,7 +19,7 @@ namespace DeepSourceCheck.Core.Leadfields.Spheres;
 // Where the innermost layer is anisotropic, |x|^(n-1) becomes |x|^(v-1) and the radial derivative v in place of n (see FillAnisotropicCore).
 // Sources: [de Munck & Peters 1993], [Zhang 1995], [Mosher, Leahy & Lewis 1999]; derivative form derived here.
 
-/// <summary>EEG leadfield of a layered sphere: eight dipoles per vector, four electrodes in flight.</summary>
+/// <summary>EEG leadfield of a layered sphere: eight dipoles per vector where registers are wide enough, four electrodes in flight where there are enough of them.</summary>
 /// <remarks>
 /// Any number of layers, isotropic or radially/tangentially anisotropic. Potential with mean zero over the outer surface, V/(A m). The number of degrees follows
 /// from the block's outermost dipole through <see cref="SeriesLength"/>. Electrodes are reduced to their direction from the centre.
@@ -28,7 +28,7 @@ public sealed class EegLayerSeries
 {
     private const int Lanes = LeadfieldBlock.Lanes;
 
-    /// <summary>Electrodes in flight: enough to hide the latency of the recurrence.</summary>
+    /// <summary>Most electrodes in flight: enough to hide the latency of the recurrence.</summary>
     private const int Flight = 4;
 
     private readonly Vec3 _centre;
@@ -50,7 +50,7 @@ public sealed class EegLayerSeries
         _length = new SeriesLength(transfer);
         Rows = electrodes.Count;
 
-        int padded = (Rows + Flight - 1) / Flight * Flight;
+        int padded = Rows == 0 ? 0 : Rows + Flight - 1;       // the last ones in flight may be repeated
         _ex = new double[padded];
         _ey = new double[padded];
         _ez = new double[padded];
@@ -123,159 +123,263 @@ public sealed class EegLayerSeries
             throw new ArgumentOutOfRangeException(nameof(block), "At the centre of an anisotropic innermost layer no potential is defined.");
         }
 
-        double[] table = ArrayPool<double>.Shared.Rent((degree + 1) * Lanes);
-        if (_isotropicCore)
+        switch (LaneWidth.Lanes)
         {
-            FillIsotropicCore(block.Eeg, lanes, degree, table);
+            case 8:
+                Fill<EightLanes>(block.Eeg, lanes, degree);
+                break;
+            case 4:
+                Fill<FourLanes>(block.Eeg, lanes, degree);
+                break;
+            default:
+                Fill<TwoLanes>(block.Eeg, lanes, degree);
+                break;
         }
-        else
+    }
+
+    /// <summary>Fills all eight lanes, as many at a time as a register holds.</summary>
+    /// <param name="eeg">[row][axis][lane], overwritten [V/(A m)].</param>
+    /// <param name="positions">x of the formulas, [axis][lane], without unit.</param>
+    /// <param name="degree">Number of degrees.</param>
+    internal void Fill<T>(double[] eeg, ReadOnlySpan<double> positions, int degree)
+        where T : struct, ILaneVector<T>
+    {
+        double[] table = ArrayPool<double>.Shared.Rent((degree + 1) * T.Count);
+        ref double position = ref MemoryMarshal.GetReference(positions);
+        for (int lane = 0; lane < Lanes; lane += T.Count)
         {
-            FillAnisotropicCore(block.Eeg, lanes, degree, table);
+            nuint at = (nuint)lane;
+            T x = T.Load(ref position, at), y = T.Load(ref position, at + Lanes), z = T.Load(ref position, at + 2 * Lanes);
+            if (_isotropicCore)
+            {
+                FillIsotropicCore(eeg, lane, x, y, z, degree, table);
+            }
+            else
+            {
+                FillAnisotropicCore(eeg, lane, x, y, z, degree, table);
+            }
         }
 
         ArrayPool<double>.Shared.Return(table);
     }
 
-    [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static Vector512<double> Fma(Vector512<double> a, Vector512<double> b, Vector512<double> c) => Vector512.MultiplyAddEstimate(a, b, c);
-
-    private void FillIsotropicCore(double[] eeg, ReadOnlySpan<double> lanes, int degree, double[] table)
+    private void FillIsotropicCore<T>(double[] eeg, int lane, T x, T y, T z, int degree, double[] table)
+        where T : struct, ILaneVector<T>
     {
-        Vector512<double> x = Vector512.Create(lanes), y = Vector512.Create(lanes[Lanes..]), z = Vector512.Create(lanes[(2 * Lanes)..]);
-        Vector512<double> w = Fma(x, x, Fma(y, y, z * z));
+        ref double weights = ref MemoryMarshal.GetArrayDataReference(table);
+        T w = T.MultiplyAdd(x, x, T.MultiplyAdd(y, y, z * z));
         for (int n = 1; n <= degree; n++)
         {
-            (w * -_beta[n]).CopyTo(table, n * Lanes);
+            (w * T.All(-_beta[n])).Store(ref weights, (nuint)(n * T.Count));
         }
 
-        ref double tables = ref MemoryMarshal.GetArrayDataReference(table);
+        if (T.ManyRegisters)
+        {
+            FourInFlight(eeg, lane, x, y, z, degree, ref weights);
+        }
+        else
+        {
+            ThreeInFlight(eeg, lane, x, y, z, degree, ref weights);
+        }
+    }
+
+    /// <summary>The series of four electrodes at a time: twenty sums and terms in registers.</summary>
+    private void FourInFlight<T>(double[] eeg, int lane, T x, T y, T z, int degree, ref double weights)
+        where T : struct, ILaneVector<T>
+    {
         ref double alpha = ref MemoryMarshal.GetArrayDataReference(_onElectrode);
         ref double gamma = ref MemoryMarshal.GetArrayDataReference(_onPosition);
-        for (int first = 0; first < _ex.Length; first += Flight)
+        for (int row = 0; row < Rows; row += Flight)
         {
-            Vector512<double> t0 = TwiceCosine(x, y, z, first), t1 = TwiceCosine(x, y, z, first + 1);
-            Vector512<double> t2 = TwiceCosine(x, y, z, first + 2), t3 = TwiceCosine(x, y, z, first + 3);
-            Vector512<double> g0 = Vector512<double>.One, g1 = g0, g2 = g0, g3 = g0; // G_n
-            Vector512<double> p0 = Vector512<double>.Zero, p1 = p0, p2 = p0, p3 = p0; // G_(n-1)
-            Vector512<double> s0 = p0, s1 = p0, s2 = p0, s3 = p0, u0 = p0, u1 = p0, u2 = p0, u3 = p0;
+            T t0 = TwiceCosine(x, y, z, row), t1 = TwiceCosine(x, y, z, row + 1), t2 = TwiceCosine(x, y, z, row + 2), t3 = TwiceCosine(x, y, z, row + 3);
+            T g0 = T.All(1), g1 = g0, g2 = g0, g3 = g0;         // G_n
+            T p0 = default, p1 = default, p2 = default, p3 = default; // G_(n-1)
+            T s0 = default, s1 = default, s2 = default, s3 = default, u0 = default, u1 = default, u2 = default, u3 = default;
             int n = 1;
             for (; n + 1 < degree; n += 2)
             {
-                Vector512<double> a = Vector512.Create(Unsafe.Add(ref alpha, n)), b = Vector512.Create(Unsafe.Add(ref gamma, n));
-                Vector512<double> q = Vector512.LoadUnsafe(ref tables, (nuint)(n * Lanes));
-                s0 = Fma(a, g0, s0);
-                s1 = Fma(a, g1, s1);
-                s2 = Fma(a, g2, s2);
-                s3 = Fma(a, g3, s3);
-                u0 = Fma(b, g0, u0);
-                u1 = Fma(b, g1, u1);
-                u2 = Fma(b, g2, u2);
-                u3 = Fma(b, g3, u3);
-                p0 = Fma(t0, g0, q * p0);
-                p1 = Fma(t1, g1, q * p1);
-                p2 = Fma(t2, g2, q * p2);
-                p3 = Fma(t3, g3, q * p3);
+                T a = T.All(Unsafe.Add(ref alpha, n)), b = T.All(Unsafe.Add(ref gamma, n)), q = T.Load(ref weights, (nuint)(n * T.Count));
+                s0 = T.MultiplyAdd(a, g0, s0);
+                s1 = T.MultiplyAdd(a, g1, s1);
+                s2 = T.MultiplyAdd(a, g2, s2);
+                s3 = T.MultiplyAdd(a, g3, s3);
+                u0 = T.MultiplyAdd(b, g0, u0);
+                u1 = T.MultiplyAdd(b, g1, u1);
+                u2 = T.MultiplyAdd(b, g2, u2);
+                u3 = T.MultiplyAdd(b, g3, u3);
+                p0 = T.MultiplyAdd(t0, g0, q * p0);
+                p1 = T.MultiplyAdd(t1, g1, q * p1);
+                p2 = T.MultiplyAdd(t2, g2, q * p2);
+                p3 = T.MultiplyAdd(t3, g3, q * p3);
 
-                a = Vector512.Create(Unsafe.Add(ref alpha, n + 1));
-                b = Vector512.Create(Unsafe.Add(ref gamma, n + 1));
-                q = Vector512.LoadUnsafe(ref tables, (nuint)((n + 1) * Lanes));
-                s0 = Fma(a, p0, s0);
-                s1 = Fma(a, p1, s1);
-                s2 = Fma(a, p2, s2);
-                s3 = Fma(a, p3, s3);
-                u0 = Fma(b, p0, u0);
-                u1 = Fma(b, p1, u1);
-                u2 = Fma(b, p2, u2);
-                u3 = Fma(b, p3, u3);
-                g0 = Fma(t0, p0, q * g0);
-                g1 = Fma(t1, p1, q * g1);
-                g2 = Fma(t2, p2, q * g2);
-                g3 = Fma(t3, p3, q * g3);
+                a = T.All(Unsafe.Add(ref alpha, n + 1));
+                b = T.All(Unsafe.Add(ref gamma, n + 1));
+                q = T.Load(ref weights, (nuint)((n + 1) * T.Count));
+                s0 = T.MultiplyAdd(a, p0, s0);
+                s1 = T.MultiplyAdd(a, p1, s1);
+                s2 = T.MultiplyAdd(a, p2, s2);
+                s3 = T.MultiplyAdd(a, p3, s3);
+                u0 = T.MultiplyAdd(b, p0, u0);
+                u1 = T.MultiplyAdd(b, p1, u1);
+                u2 = T.MultiplyAdd(b, p2, u2);
+                u3 = T.MultiplyAdd(b, p3, u3);
+                g0 = T.MultiplyAdd(t0, p0, q * g0);
+                g1 = T.MultiplyAdd(t1, p1, q * g1);
+                g2 = T.MultiplyAdd(t2, p2, q * g2);
+                g3 = T.MultiplyAdd(t3, p3, q * g3);
             }
 
             if (n < degree)
             {
-                Vector512<double> a = Vector512.Create(Unsafe.Add(ref alpha, n)), b = Vector512.Create(Unsafe.Add(ref gamma, n));
-                Vector512<double> q = Vector512.LoadUnsafe(ref tables, (nuint)(n * Lanes));
-                s0 = Fma(a, g0, s0);
-                s1 = Fma(a, g1, s1);
-                s2 = Fma(a, g2, s2);
-                s3 = Fma(a, g3, s3);
-                u0 = Fma(b, g0, u0);
-                u1 = Fma(b, g1, u1);
-                u2 = Fma(b, g2, u2);
-                u3 = Fma(b, g3, u3);
-                g0 = Fma(t0, g0, q * p0);
-                g1 = Fma(t1, g1, q * p1);
-                g2 = Fma(t2, g2, q * p2);
-                g3 = Fma(t3, g3, q * p3);
+                T a = T.All(Unsafe.Add(ref alpha, n)), b = T.All(Unsafe.Add(ref gamma, n)), q = T.Load(ref weights, (nuint)(n * T.Count));
+                s0 = T.MultiplyAdd(a, g0, s0);
+                s1 = T.MultiplyAdd(a, g1, s1);
+                s2 = T.MultiplyAdd(a, g2, s2);
+                s3 = T.MultiplyAdd(a, g3, s3);
+                u0 = T.MultiplyAdd(b, g0, u0);
+                u1 = T.MultiplyAdd(b, g1, u1);
+                u2 = T.MultiplyAdd(b, g2, u2);
+                u3 = T.MultiplyAdd(b, g3, u3);
+                g0 = T.MultiplyAdd(t0, g0, q * p0);
+                g1 = T.MultiplyAdd(t1, g1, q * p1);
+                g2 = T.MultiplyAdd(t2, g2, q * p2);
+                g3 = T.MultiplyAdd(t3, g3, q * p3);
             }
 
             // The last degree adds to e alone: its partner along x belongs to the next one.
-            Vector512<double> last = Vector512.Create(_onElectrode[degree]);
-            Store(eeg, first, x, y, z, Fma(last, g0, s0), u0);
-            Store(eeg, first + 1, x, y, z, Fma(last, g1, s1), u1);
-            Store(eeg, first + 2, x, y, z, Fma(last, g2, s2), u2);
-            Store(eeg, first + 3, x, y, z, Fma(last, g3, s3), u3);
+            T last = T.All(Unsafe.Add(ref alpha, degree));
+            Store(eeg, row, lane, x, y, z, T.MultiplyAdd(last, g0, s0), u0);
+            Store(eeg, row + 1, lane, x, y, z, T.MultiplyAdd(last, g1, s1), u1);
+            Store(eeg, row + 2, lane, x, y, z, T.MultiplyAdd(last, g2, s2), u2);
+            Store(eeg, row + 3, lane, x, y, z, T.MultiplyAdd(last, g3, s3), u3);
+        }
+    }
+
+    /// <summary>The same, three electrodes at a time, for sixteen registers.</summary>
+    private void ThreeInFlight<T>(double[] eeg, int lane, T x, T y, T z, int degree, ref double weights)
+        where T : struct, ILaneVector<T>
+    {
+        ref double alpha = ref MemoryMarshal.GetArrayDataReference(_onElectrode);
+        ref double gamma = ref MemoryMarshal.GetArrayDataReference(_onPosition);
+        for (int row = 0; row < Rows; row += 3)
+        {
+            T t0 = TwiceCosine(x, y, z, row), t1 = TwiceCosine(x, y, z, row + 1), t2 = TwiceCosine(x, y, z, row + 2), g0 = T.All(1), g1 = g0, g2 = g0;
+            T p0 = default, p1 = default, p2 = default, s0 = default, s1 = default, s2 = default, u0 = default, u1 = default, u2 = default;
+            int n = 1;
+            for (; n + 1 < degree; n += 2)
+            {
+                T c = T.All(Unsafe.Add(ref alpha, n));
+                s0 = T.MultiplyAdd(c, g0, s0);
+                s1 = T.MultiplyAdd(c, g1, s1);
+                s2 = T.MultiplyAdd(c, g2, s2);
+                c = T.All(Unsafe.Add(ref gamma, n));
+                u0 = T.MultiplyAdd(c, g0, u0);
+                u1 = T.MultiplyAdd(c, g1, u1);
+                u2 = T.MultiplyAdd(c, g2, u2);
+                c = T.Load(ref weights, (nuint)(n * T.Count));
+                p0 = T.MultiplyAdd(t0, g0, c * p0);
+                p1 = T.MultiplyAdd(t1, g1, c * p1);
+                p2 = T.MultiplyAdd(t2, g2, c * p2);
+
+                c = T.All(Unsafe.Add(ref alpha, n + 1));
+                s0 = T.MultiplyAdd(c, p0, s0);
+                s1 = T.MultiplyAdd(c, p1, s1);
+                s2 = T.MultiplyAdd(c, p2, s2);
+                c = T.All(Unsafe.Add(ref gamma, n + 1));
+                u0 = T.MultiplyAdd(c, p0, u0);
+                u1 = T.MultiplyAdd(c, p1, u1);
+                u2 = T.MultiplyAdd(c, p2, u2);
+                c = T.Load(ref weights, (nuint)((n + 1) * T.Count));
+                g0 = T.MultiplyAdd(t0, p0, c * g0);
+                g1 = T.MultiplyAdd(t1, p1, c * g1);
+                g2 = T.MultiplyAdd(t2, p2, c * g2);
+            }
+
+            if (n < degree)
+            {
+                T c = T.All(Unsafe.Add(ref alpha, n));
+                s0 = T.MultiplyAdd(c, g0, s0);
+                s1 = T.MultiplyAdd(c, g1, s1);
+                s2 = T.MultiplyAdd(c, g2, s2);
+                c = T.All(Unsafe.Add(ref gamma, n));
+                u0 = T.MultiplyAdd(c, g0, u0);
+                u1 = T.MultiplyAdd(c, g1, u1);
+                u2 = T.MultiplyAdd(c, g2, u2);
+                c = T.Load(ref weights, (nuint)(n * T.Count));
+                g0 = T.MultiplyAdd(t0, g0, c * p0);
+                g1 = T.MultiplyAdd(t1, g1, c * p1);
+                g2 = T.MultiplyAdd(t2, g2, c * p2);
+            }
+
+            T last = T.All(Unsafe.Add(ref alpha, degree));
+            Store(eeg, row, lane, x, y, z, T.MultiplyAdd(last, g0, s0), u0);
+            Store(eeg, row + 1, lane, x, y, z, T.MultiplyAdd(last, g1, s1), u1);
+            Store(eeg, row + 2, lane, x, y, z, T.MultiplyAdd(last, g2, s2), u2);
         }
     }
 
     // With the unit vector u = x/|x|, c = u.e and d_n = v/n - 1:
     //   L = (1/r_1) sum T_n |x|^(v-1) [ e P_n' - u (v/n) P_(n-1)' + u c d_n P_n' ]
     // Powers of |x| < 1 only, so that nothing overflows; one exponential a degree and lane makes this path the slower one.
-    private void FillAnisotropicCore(double[] eeg, ReadOnlySpan<double> lanes, int degree, double[] table)
+    private void FillAnisotropicCore<T>(double[] eeg, int lane, T x, T y, T z, int degree, double[] table)
+        where T : struct, ILaneVector<T>
     {
-        Vector512<double> x = Vector512.Create(lanes), y = Vector512.Create(lanes[Lanes..]), z = Vector512.Create(lanes[(2 * Lanes)..]);
-        Vector512<double> norm = Vector512.Sqrt(Fma(x, x, Fma(y, y, z * z)));
+        ref double weights = ref MemoryMarshal.GetArrayDataReference(table);
+        T norm = T.Sqrt(T.MultiplyAdd(x, x, T.MultiplyAdd(y, y, z * z)));
         (x, y, z) = (x / norm, y / norm, z / norm);
-        Vector512<double> logNorm = Vector512.Create(
-            Math.Log(norm[0]), Math.Log(norm[1]), Math.Log(norm[2]), Math.Log(norm[3]), Math.Log(norm[4]), Math.Log(norm[5]), Math.Log(norm[6]), Math.Log(norm[7]));
+        Span<double> logNorm = stackalloc double[Lanes];
+        norm.Store(ref MemoryMarshal.GetReference(logNorm), 0);
+        for (int k = 0; k < T.Count; k++)
+        {
+            logNorm[k] = Math.Log(logNorm[k]);
+        }
+
         for (int n = 1; n <= degree; n++)
         {
-            for (int lane = 0; lane < Lanes; lane++)
+            for (int k = 0; k < T.Count; k++)
             {
-                table[n * Lanes + lane] = Math.Exp((_exponents[n] - 1.0) * logNorm[lane]);
+                table[n * T.Count + k] = Math.Exp((_exponents[n] - 1.0) * logNorm[k]);
             }
         }
 
         for (int row = 0; row < Rows; row++)
         {
-            Vector512<double> t = TwiceCosine(x, y, z, row);
-            Vector512<double> g = Vector512<double>.One, p = Vector512<double>.Zero, s = p, u = p, v = p;
+            T t = TwiceCosine(x, y, z, row), g = T.All(1), p = default, s = default, u = default, v = default;
             for (int n = 1; n <= degree; n++)
             {
-                Vector512<double> weight = Vector512.Create(table, n * Lanes);
-                Vector512<double> weighted = weight * g;
-                s = Fma(Vector512.Create(_onElectrode[n]), weighted, s);
-                v = Fma(Vector512.Create(_onRadius[n]), weighted, v);
+                T weight = T.Load(ref weights, (nuint)(n * T.Count)), weighted = weight * g;
+                s = T.MultiplyAdd(T.All(_onElectrode[n]), weighted, s);
+                v = T.MultiplyAdd(T.All(_onRadius[n]), weighted, v);
                 if (n > 1)
                 {
-                    u = Fma(Vector512.Create(_onPosition[n - 1]), weight * p, u);
+                    u = T.MultiplyAdd(T.All(_onPosition[n - 1]), weight * p, u);
                 }
 
-                (g, p) = (Fma(t, g, p * -_beta[n]), g);
+                (g, p) = (T.MultiplyAdd(t, g, p * T.All(-_beta[n])), g);
             }
 
-            Store(eeg, row, x, y, z, s, Fma(t * -0.5, v, u));
+            Store(eeg, row, lane, x, y, z, s, T.MultiplyAdd(t * T.All(-0.5), v, u));
         }
     }
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private Vector512<double> TwiceCosine(Vector512<double> x, Vector512<double> y, Vector512<double> z, int row) =>
-        2.0 * Fma(x, Vector512.Create(_ex[row]), Fma(y, Vector512.Create(_ey[row]), z * _ez[row]));
+    private T TwiceCosine<T>(T x, T y, T z, int row)
+        where T : struct, ILaneVector<T> =>
+        T.All(2) * T.MultiplyAdd(x, T.All(_ex[row]), T.MultiplyAdd(y, T.All(_ey[row]), z * T.All(_ez[row])));
 
     /// <summary>L = s e - u x; rows beyond the last electrode are padding.</summary>
-    private void Store(
-        double[] eeg, int row, Vector512<double> x, Vector512<double> y, Vector512<double> z, Vector512<double> s, Vector512<double> u)
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private void Store<T>(double[] eeg, int row, int lane, T x, T y, T z, T s, T u)
+        where T : struct, ILaneVector<T>
     {
         if (row >= Rows)
         {
             return;
         }
 
-        int at = LeadfieldBlock.At(row, 0);
-        (s * _ex[row] - u * x).CopyTo(eeg, at);
-        (s * _ey[row] - u * y).CopyTo(eeg, at + Lanes);
-        (s * _ez[row] - u * z).CopyTo(eeg, at + 2 * Lanes);
+        ref double to = ref eeg[LeadfieldBlock.At(row, 0) + lane];
+        (s * T.All(_ex[row]) - u * x).Store(ref to, 0);
+        (s * T.All(_ey[row]) - u * y).Store(ref to, Lanes);
+        (s * T.All(_ez[row]) - u * z).Store(ref to, 2 * Lanes);
     }
 }

@@ -1,8 +1,8 @@
 using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
-using System.Runtime.Intrinsics;
 
 using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Numerics;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Units;
 
@@ -74,59 +74,81 @@ public sealed class MegSphere
             (lanes[lane], lanes[Lanes + lane], lanes[2 * Lanes + lane]) = block.Positions[lane] - _centre;
         }
 
-        Vector512<double> x = Vector512.Create<double>((ReadOnlySpan<double>)lanes), y = Vector512.Create<double>(lanes[Lanes..]), z = Vector512.Create<double>(lanes[(2 * Lanes)..]);
-        ref double table = ref MemoryMarshal.GetArrayDataReference(_points);
-        for (int row = 0; row < Rows; row++)
+        switch (LaneWidth.Lanes)
         {
-            Vector512<double> hx = Vector512<double>.Zero, hy = hx, hz = hx;
-            for (int k = _firstPoint[row]; k < _firstPoint[row + 1]; k++)
-            {
-                AddPoint(ref Unsafe.Add(ref table, k * Stride), x, y, z, ref hx, ref hy, ref hz);
-            }
-
-            int at = LeadfieldBlock.At(row, 0);
-            DifferenceOfProducts(y, hz, z, hy).CopyTo(block.Meg, at);
-            DifferenceOfProducts(z, hx, x, hz).CopyTo(block.Meg, at + Lanes);
-            DifferenceOfProducts(x, hy, y, hx).CopyTo(block.Meg, at + 2 * Lanes);
+            case 8:
+                Fill<EightLanes>(block.Meg, lanes);
+                break;
+            case 4:
+                Fill<FourLanes>(block.Meg, lanes);
+                break;
+            default:
+                Fill<TwoLanes>(block.Meg, lanes);
+                break;
         }
     }
 
-    [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static Vector512<double> Fma(Vector512<double> a, Vector512<double> b, Vector512<double> c) => Vector512.MultiplyAddEstimate(a, b, c);
+    /// <summary>Fills all eight lanes, as many at a time as a register holds.</summary>
+    /// <param name="meg">[row][axis][lane], overwritten [T/(A m) or T/m/(A m)].</param>
+    /// <param name="positions">Dipoles from the centre, [axis][lane] [m].</param>
+    internal void Fill<T>(double[] meg, ReadOnlySpan<double> positions)
+        where T : struct, ILaneVector<T>
+    {
+        ref double position = ref MemoryMarshal.GetReference(positions);
+        ref double table = ref MemoryMarshal.GetArrayDataReference(_points);
+        for (int lane = 0; lane < Lanes; lane += T.Count)
+        {
+            nuint at = (nuint)lane;
+            T x = T.Load(ref position, at), y = T.Load(ref position, at + Lanes), z = T.Load(ref position, at + 2 * Lanes);
+            for (int row = 0; row < Rows; row++)
+            {
+                T hx = default, hy = default, hz = default;
+                for (int k = _firstPoint[row]; k < _firstPoint[row + 1]; k++)
+                {
+                    AddPoint(ref Unsafe.Add(ref table, k * Stride), x, y, z, ref hx, ref hy, ref hz);
+                }
+
+                ref double to = ref meg[LeadfieldBlock.At(row, 0) + lane];
+                DifferenceOfProducts(y, hz, z, hy).Store(ref to, 0);
+                DifferenceOfProducts(z, hx, x, hz).Store(ref to, Lanes);
+                DifferenceOfProducts(x, hy, y, hx).Store(ref to, 2 * Lanes);
+            }
+        }
+    }
 
     /// <summary>H += k/F - r (k.grad F)/F^2 for one coil point.</summary>
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static void AddPoint(
-        ref double point, Vector512<double> x, Vector512<double> y, Vector512<double> z,
-        ref Vector512<double> hx, ref Vector512<double> hy, ref Vector512<double> hz)
+    private static void AddPoint<T>(ref double point, T x, T y, T z, ref T hx, ref T hy, ref T hz)
+        where T : struct, ILaneVector<T>
     {
-        Vector512<double> rx = Vector512.Create(point), ry = Vector512.Create(Unsafe.Add(ref point, 1)), rz = Vector512.Create(Unsafe.Add(ref point, 2));
-        Vector512<double> r = Vector512.Create(Unsafe.Add(ref point, 3)), oneOverR = Vector512.Create(Unsafe.Add(ref point, 4));
-        Vector512<double> kx = Vector512.Create(Unsafe.Add(ref point, 5)), ky = Vector512.Create(Unsafe.Add(ref point, 6)), kz = Vector512.Create(Unsafe.Add(ref point, 7));
-        Vector512<double> kr = Vector512.Create(Unsafe.Add(ref point, 8));
+        T rx = T.All(point), ry = T.All(Unsafe.Add(ref point, 1)), rz = T.All(Unsafe.Add(ref point, 2));
+        T r = T.All(Unsafe.Add(ref point, 3)), oneOverR = T.All(Unsafe.Add(ref point, 4));
+        T kx = T.All(Unsafe.Add(ref point, 5)), ky = T.All(Unsafe.Add(ref point, 6)), kz = T.All(Unsafe.Add(ref point, 7));
+        T kr = T.All(Unsafe.Add(ref point, 8));
 
-        Vector512<double> ax = rx - x, ay = ry - y, az = rz - z;
-        Vector512<double> a2 = Fma(ax, ax, Fma(ay, ay, az * az));
-        Vector512<double> ar = Fma(ax, rx, Fma(ay, ry, az * rz));
-        Vector512<double> k0 = Fma(kx, x, Fma(ky, y, kz * z));
-        Vector512<double> a = Vector512.Sqrt(a2);
-        Vector512<double> m = Fma(r, a, ar);
-        Vector512<double> inverseF = Vector512<double>.One / (a * m);
-        Vector512<double> b = Fma(ar, m * inverseF, Fma(Vector512.Create(2.0), r, a)); // a.r/|a| = a.r m/F
-        Vector512<double> alpha = Fma(a2, oneOverR, b + a);
-        Vector512<double> gradient = alpha * kr - b * k0;
-        Vector512<double> onR = gradient * inverseF * inverseF;
-        hx += Fma(inverseF, kx, -(onR * rx));
-        hy += Fma(inverseF, ky, -(onR * ry));
-        hz += Fma(inverseF, kz, -(onR * rz));
+        T ax = rx - x, ay = ry - y, az = rz - z;
+        T a2 = T.MultiplyAdd(ax, ax, T.MultiplyAdd(ay, ay, az * az));
+        T ar = T.MultiplyAdd(ax, rx, T.MultiplyAdd(ay, ry, az * rz));
+        T k0 = T.MultiplyAdd(kx, x, T.MultiplyAdd(ky, y, kz * z));
+        T a = T.Sqrt(a2);
+        T m = T.MultiplyAdd(r, a, ar);
+        T inverseF = T.All(1) / (a * m);
+        T b = T.MultiplyAdd(ar, m * inverseF, T.MultiplyAdd(T.All(2), r, a)); // a.r/|a| = a.r m/F
+        T alpha = T.MultiplyAdd(a2, oneOverR, b + a);
+        T gradient = T.MultiplyAdd(alpha, kr, -(b * k0));
+        T onR = -(gradient * inverseF) * inverseF;
+        hx = T.MultiplyAdd(onR, rx, T.MultiplyAdd(inverseF, kx, hx));
+        hy = T.MultiplyAdd(onR, ry, T.MultiplyAdd(inverseF, ky, hy));
+        hz = T.MultiplyAdd(onR, rz, T.MultiplyAdd(inverseF, kz, hz));
     }
 
     /// <summary>a b - c d to about one unit in the last place of the result (Kahan's scheme): keeps every row orthogonal to r0.</summary>
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static Vector512<double> DifferenceOfProducts(Vector512<double> a, Vector512<double> b, Vector512<double> c, Vector512<double> d)
+    private static T DifferenceOfProducts<T>(T a, T b, T c, T d)
+        where T : struct, ILaneVector<T>
     {
-        Vector512<double> cd = c * d;
-        Vector512<double> error = Vector512.FusedMultiplyAdd(-c, d, cd);
-        return Vector512.FusedMultiplyAdd(a, b, -cd) + error;
+        T cd = c * d;
+        T error = T.FusedMultiplyAdd(-c, d, cd);
+        return T.FusedMultiplyAdd(a, b, -cd) + error;
     }
 }

@@ -101,6 +101,11 @@ internal static class TrilinearHexahedron
             Vec3 a = Vec3.Cross(xv, xw);
             Vec3 full = new Vec3(Vec3.Dot(miss, a), Vec3.Dot(miss, Vec3.Cross(xw, xu)), Vec3.Dot(miss, Vec3.Cross(xu, xv))) / Vec3.Dot(xu, a);
             Vec3 move = (IsInside(at + full) ? at + full : Confined(xu, xv, xw, miss, at)) - at;
+            if (move.Norm < Converged)
+            {
+                break;
+            }
+
             Vec3 next = point - Place(places, at + move);
             for (int halving = 0; next.Norm > miss.Norm && halving < MostHalvings; halving++)
             {
@@ -114,10 +119,6 @@ internal static class TrilinearHexahedron
             }
 
             (at, miss) = (at + move, next);
-            if (move.Norm < Converged)
-            {
-                break;
-            }
         }
 
         at = new(Math.Clamp(at.X, 0, 1), Math.Clamp(at.Y, 0, 1), Math.Clamp(at.Z, 0, 1));
