@@ -3,8 +3,16 @@ using BenchmarkDotNet.Running;
 
 using DeepSourceCheck.Benchmarks;
 
+<<<<<<< HEAD
 // kernels: a table of the kernels at every width of registers, in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
 // voxels: the solver of voxel heads;
+=======
+<<<<<<< HEAD
+// kernels: a table of the kernels in a minute; whole: the published program as a process; yardstick: numpy beside the kernels; voxels: the solver of voxel heads; voxels-petsc: the same beside PETSc;
+=======
+// kernels: a table of the kernels at every width of registers, in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
+>>>>>>> main
+>>>>>>> solver
 // anything else goes to BenchmarkDotNet, for instance --filter '*'.
 switch (args.FirstOrDefault())
 {
@@ -20,6 +28,8 @@ switch (args.FirstOrDefault())
         return Yardstick.Run(Console.Out);
     case "voxels":
         return VoxelTable.Run(args[1..], Console.Out);
+    case "voxels-petsc":
+        return VoxelPetsc.Run(args[1..], Console.Out);
     default:
         // Its logs and tables go beside the program: the folder of the repository stays clean.
         BenchmarkSwitcher.FromAssembly(typeof(KernelBenchmarks).Assembly)

@@ -1,11 +1,15 @@
 """The voxel solver's sphere in a general library: PETSc, conjugate gradients with smoothed aggregation (GAMG).
 
 Same labelled volume, same trilinear cubes (plain grid), same right-hand sides, same relative residual 1e-6.
-Run by `voxels-petsc MILLIMETRES LOADS`; with mpirun on two ranks where it works. Prints: ranks, seconds of set-up, mean seconds a load, mean iterations.
+Run by the benchmark mode `voxels-petsc`, with MILLIMETRES and LOADS as arguments; with mpirun on two ranks where it works. Prints: ranks, seconds of set-up, mean seconds a load, mean iterations.
 """
+import glob
 import math
 import sys
 import time
+
+# Debian keeps the bindings beside the library.
+sys.path += glob.glob("/usr/lib/petscdir/petsc3*/*-real/lib/python3/dist-packages")
 
 import numpy as np
 from petsc4py import PETSc

@@ -11,7 +11,7 @@ namespace DeepSourceCheck.Core.Numerics.Multigrid;
 //   sum_pieces 1 1'/D is taken off again: what remains inverts A on loads without sum, answers d with nothing and returns no constant, weighted by d. The weights matter: on coarse
 //   levels diagonals differ by a factor of a million, and a sum left by rounding, shared out evenly, would drive nodes that hardly couple to huge potentials.
 
-/// <summary>The pseudo-inverse of the coarsest operator as a dense matrix.</summary>
+/// <summary>The coarsest operator inverted, but for constants, as a dense matrix.</summary>
 internal sealed unsafe class DenseCoarseInverse
 {
     /// <summary>Nodes below which a level is solved this way: 400 x 400 floats stay in the second-level cache.</summary>
@@ -75,7 +75,10 @@ internal sealed unsafe class DenseCoarseInverse
     /// <summary>Nodes.</summary>
     public int Nodes { get; }
 
-    /// <summary>z = pseudo-inverse times b.</summary>
+    /// <summary>z = inverse times b.</summary>
+    public void Solve(LaneVector b, LaneVector z) => Apply(b.At, z.At);
+
+    /// <summary>z = inverse times b.</summary>
     public void Apply(float* b, float* z)
     {
         float* m = (float*)Unsafe.AsPointer(ref MemoryMarshal.GetArrayDataReference(_inverse));

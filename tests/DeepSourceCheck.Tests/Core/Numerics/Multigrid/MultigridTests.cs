@@ -118,7 +118,8 @@ public class MultigridTests
         foreach (int lane in new[] { 0, 7, 15 })
         {
             double[] slow = PlainMultigrid.Cycle(levels, 0, Lane(v.Residual, lane));
-            RelativeAssert.Close(slow, Lane(v.Work, lane), CycleRounding, $"lane {lane}");
+            // A potential is defined but for a constant, and the two coarse inverses choose it differently.
+            RelativeAssert.Close(MeanFree(slow, pieces), MeanFree(Lane(v.Work, lane), pieces), CycleRounding, $"lane {lane}");
         }
     }
 
@@ -128,6 +129,36 @@ public class MultigridTests
         MultigridHierarchy levels = Levels("cubes", true, false);
         Assert.True(levels.Coarsest.Nodes <= 400);
         Assert.True(levels.Operators[0].Grid.Count > 400);
+    }
+
+    private static double[] MeanFree(double[] values, Pieces pieces)
+    {
+        Assert.Equal(1, pieces.Count);
+        double mean = values.Where((_, n) => pieces.Of(n) >= 0).Average();
+        return [.. values.Select((v, n) => pieces.Of(n) >= 0 ? v - mean : v)];
+    }
+
+    [Fact]
+    public void CoarseInverse_WithNodesThatHardlyCouple_StaysBoundedForASumLeftByRounding()
+    {
+        // What the 2 mm sphere once did: an even share of a rounding error drove a weak coarse node to 1e12, and the iteration stood still.
+        MultigridHierarchy levels = Levels("flat", true, false);
+        StencilOperator a = levels.Operators[^1];
+        using var b = new LaneVector(a.Grid);
+        using var z = new LaneVector(a.Grid);
+        double energy = 0;
+        for (int n = 0; n < a.Grid.Count; n++)
+        {
+            b.Span[n * ILoadBlocks.Lanes] = (float)StencilOperator.Diagonal(a.Row(n));
+        }
+
+        levels.Coarsest.Solve(b, z);
+        for (int n = 0; n < a.Grid.Count; n++)
+        {
+            energy += Math.Abs(z.Span[n * ILoadBlocks.Lanes]) * StencilOperator.Diagonal(a.Row(n));
+        }
+
+        Assert.True(energy < 1e-3 * b.Span.ToArray().Sum(v => (double)v), $"{energy}");
     }
 
     private static double[] Lane(LaneVector vector, int lane) => [.. Enumerable.Range(0, vector.Nodes).Select(n => (double)vector.Span[n * ILoadBlocks.Lanes + lane])];
