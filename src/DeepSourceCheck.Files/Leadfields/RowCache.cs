@@ -27,6 +27,9 @@ public sealed class RowCache
 
     private static readonly byte[] Magic = "rows-v1\n"u8.ToArray();
 
+    // Between dropping the lock of a file and renaming it lie microseconds.
+    private static readonly TimeSpan UnlockedGrace = TimeSpan.FromMinutes(1);
+
     private static int _counter;
 
     private readonly long _limit;
@@ -88,6 +91,10 @@ public sealed class RowCache
 
             trouble = $"{path}: {trouble}; it was removed and the rows are solved for again";
             File.Delete(path);
+        }
+        catch (Exception e) when (e is FileNotFoundException or DirectoryNotFoundException)
+        {
+            trouble = null;                                  // another process removed it meanwhile: as if it had never been
         }
         catch (Exception e) when (IsTrouble(e))
         {
@@ -287,13 +294,18 @@ public sealed class RowCache
         }
     }
 
-    // A run that lives holds its file locked; the system frees the lock of one that was killed.
+    // A run that lives holds its file locked while it writes, and renames it right after; the system frees the lock of one that was killed.
     private void RemoveStalePartials()
     {
         foreach (string partial in Directory.Exists(Folder) ? Directory.GetFiles(Folder, "*" + Suffix + ".*" + PartialSuffix) : [])
         {
             try
             {
+                if (_clock.GetUtcNow().UtcDateTime - File.GetLastWriteTimeUtc(partial) < UnlockedGrace)
+                {
+                    continue;
+                }
+
                 using FileStream own = new(partial, FileMode.Open, FileAccess.ReadWrite, FileShare.None);
             }
             catch (Exception e) when (IsTrouble(e))

@@ -5,7 +5,7 @@ namespace DeepSourceCheck.Core.Leadfields.Voxels;
 // TrilinearHexahedron.cs - geometry of one element.
 //   psi_c(u, v, w) = (u or 1-u) (v or 1-v) (w or 1-w), each the first where bit 0, 1, 2 of c is set;  x(u, v, w) = sum psi_c x_c,  0 <= u, v, w <= 1
 //   J = (x_u, x_v, x_w);  grad psi = (psi_u x_v x x_w + psi_v x_w x x_u + psi_w x_u x x_v) / det J   (x between vectors: vector product)
-//   The natural coordinates of a point are found by Newton's method; of a point outside by Gauss-Newton steps within the unit cube.
+//   The natural coordinates of a point are found by Newton's method; of a point outside by damped Gauss-Newton steps within the unit cube.
 
 /// <summary>Shape functions of a hexahedron with eight corners, numbered as in <see cref="HexMesh"/>. Natural coordinates run from 0 to 1, without unit.</summary>
 internal static class TrilinearHexahedron
@@ -20,7 +20,7 @@ internal static class TrilinearHexahedron
     private const double Rounding = 1e-9;
 
     private const double Converged = 1e-12;
-    private const int MostSteps = 50, MostSweeps = 200;
+    private const int MostSteps = 50, MostSweeps = 200, MostHalvings = 40;
 
     /// <summary>Numbers and places [m] of the corners of the element of voxel (i, j, k), which must not be air.</summary>
     public static void Load(HexMesh mesh, int i, int j, int k, Span<int> nodes, Span<Vec3> places)
@@ -74,29 +74,56 @@ internal static class TrilinearHexahedron
     }
 
     /// <summary>The natural coordinates of the point of the element that lies nearest to a place [m]; of the place itself where it lies inside.</summary>
+    /// <remarks>
+    /// From outside, an element with moved corners may show several places that are nearest among their neighbours: the search then starts from the middle and from beside each corner.
+    /// </remarks>
     /// <returns>The coordinates and the distance [m], 0 inside.</returns>
     public static (Vec3 Natural, double Distance) Nearest(ReadOnlySpan<Vec3> places, Vec3 point)
     {
-        Vec3 at = new(0.5, 0.5, 0.5);
-        Vec3 edge = places[7] - places[0];
+        (Vec3 Natural, double Distance) best = NearestFrom(places, point, new(0.5, 0.5, 0.5));
+        for (int corner = 0; corner < Corners && best.Distance > 0; corner++)
+        {
+            Vec3 start = new((corner & 1) == 0 ? 0.1 : 0.9, (corner & 2) == 0 ? 0.1 : 0.9, (corner & 4) == 0 ? 0.1 : 0.9);
+            (Vec3 Natural, double Distance) other = NearestFrom(places, point, start);
+            best = other.Distance < best.Distance ? other : best;
+        }
+
+        return best;
+    }
+
+    // Steps that do not come nearer are halved.
+    private static (Vec3 Natural, double Distance) NearestFrom(ReadOnlySpan<Vec3> places, Vec3 point, Vec3 start)
+    {
+        Vec3 at = start, miss = point - Place(places, at);
         for (int step = 0; step < MostSteps; step++)
         {
             (Vec3 xu, Vec3 xv, Vec3 xw) = Jacobian(places, at);
-            Vec3 miss = point - Place(places, at);
             Vec3 a = Vec3.Cross(xv, xw);
             Vec3 full = new Vec3(Vec3.Dot(miss, a), Vec3.Dot(miss, Vec3.Cross(xw, xu)), Vec3.Dot(miss, Vec3.Cross(xu, xv))) / Vec3.Dot(xu, a);
-            Vec3 next = IsInside(at + full) ? at + full : Confined(xu, xv, xw, miss, at);
-            double moved = (next - at).Norm;
-            at = next;
-            if (moved < Converged)
+            Vec3 move = (IsInside(at + full) ? at + full : Confined(xu, xv, xw, miss, at)) - at;
+            if (move.Norm < Converged)
             {
                 break;
             }
+
+            Vec3 next = point - Place(places, at + move);
+            for (int halving = 0; next.Norm > miss.Norm && halving < MostHalvings; halving++)
+            {
+                move = 0.5 * move;
+                next = point - Place(places, at + move);
+            }
+
+            if (!(next.Norm < miss.Norm))
+            {
+                break;
+            }
+
+            (at, miss) = (at + move, next);
         }
 
         at = new(Math.Clamp(at.X, 0, 1), Math.Clamp(at.Y, 0, 1), Math.Clamp(at.Z, 0, 1));
         double distance = (point - Place(places, at)).Norm;
-        return (at, distance > Rounding * edge.Norm ? distance : 0);
+        return (at, distance > Rounding * (places[7] - places[0]).Norm ? distance : 0);
     }
 
     private static bool IsInside(Vec3 natural) =>

@@ -159,10 +159,11 @@ public class RowCacheTests
         Assert.Equal((0, 0), cache.Clear());
         cache.TryWrite(Key(1), Rows(), Figures);
         cache.TryWrite(Key(2), Rows(), Figures);
-        scratch.Write(Key(3) + ".rows.99999-1.partial", "left");
+        File.SetLastWriteTimeUtc(scratch.Write(Key(3) + ".rows.99999-1.partial", "left"), new DateTime(2020, 1, 1, 0, 0, 0, DateTimeKind.Utc));
         scratch.Write("notes.rows", "of the user");
         scratch.Write("notes.txt", "of the user");
         using FileStream running = new(scratch.At(Key(4) + ".rows.99999-2.partial"), FileMode.CreateNew, FileAccess.ReadWrite, FileShare.None);
+        File.SetLastWriteTimeUtc(running.Name, new DateTime(2020, 1, 1, 0, 0, 0, DateTimeKind.Utc));
         Assert.Equal((2, 2 * EntryLength), cache.Clear());
         Assert.Equal([Key(4) + ".rows.99999-2.partial", "notes.rows", "notes.txt"], Directory.GetFiles(scratch.Path).Select(Path.GetFileName).Order());
     }
