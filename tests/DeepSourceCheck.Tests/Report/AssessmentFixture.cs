@@ -283,9 +283,12 @@ internal static class AssessmentFixture
             Layers = o.ImportedHead ? [] : [("brain", 0.078), ("csf", 0.080), ("skull", 0.086), ("scalp", 0.092)],
             Electrodes = o.Eeg ? [.. Enumerable.Range(0, 64).Select(k => ($"E{k}", centre + 0.092 * GoldenSpiral.Point(k, 64, -0.3)))] : [],
             CoilSites = o.Meg ? [.. Enumerable.Range(0, 200).Select(k => centre + 0.122 * GoldenSpiral.Point(k, 200, -0.3))] : [],
-            Regions = [.. o.Regions.Select((name, k) => (name, Points(o, k)))],
+            Regions = [.. o.Regions.Select((name, k) => Region(name, Points(o, k), o.ImportedHead ? null : centre))],
         };
     }
+
+    private static SceneRegion Region(string name, IReadOnlyList<Vec3> points, Vec3? centre) =>
+        new(name, points, centre is { } c ? 0.092 - (points.Aggregate(Vec3.Zero, (a, b) => a + b) / points.Count - c).Norm : null);
 
     private static IReadOnlyList<Vec3> Points(Options o, int index)
     {
