@@ -9,7 +9,7 @@ namespace DeepSourceCheck.Core.Heads.Voxels;
 public static class HeadSections
 {
     /// <summary>Standard deviation to which the brain is smoothed [m].</summary>
-    public const double BrainSmoothing = 0.002;
+    public const double BrainSmoothing = 0.004;
 
     // Nodes lie half a voxel apart, at least this [m]: finer than a line is drawn.
     private const double LeastSpacing = 0.001;
@@ -20,7 +20,7 @@ public static class HeadSections
     // Largest distance by which a line is simplified [m].
     private const double Tolerance = 0.0003;
 
-    private const int SmoothingPasses = 2;
+    private const int SmoothingPasses = 6;
 
     /// <summary>The outlines; of a surface that a plane does not meet there is none.</summary>
     /// <param name="volume">Head.</param>
