@@ -38,7 +38,7 @@ public sealed class PhantomFolder : IDisposable
     }
 
     /// <summary>What a command prints of one of the numbered studies.</summary>
-    internal string Printed(string command, string name, params string[] more) => Execute([command, Beside(name), .. more, "--cache", Cache]);
+    internal string Printed(string command, string name, params string[] more) => Execute([command, Beside(name), .. more]);
 
     /// <summary>Writes a mask on the head's grid.</summary>
     /// <param name="name">Its file.</param>
