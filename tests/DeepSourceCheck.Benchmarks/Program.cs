@@ -3,16 +3,8 @@ using BenchmarkDotNet.Running;
 
 using DeepSourceCheck.Benchmarks;
 
-<<<<<<< HEAD
 // kernels: a table of the kernels at every width of registers, in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
-// voxels: the solver of voxel heads;
-=======
-<<<<<<< HEAD
-// kernels: a table of the kernels in a minute; whole: the published program as a process; yardstick: numpy beside the kernels; voxels: the solver of voxel heads; voxels-petsc: the same beside PETSc;
-=======
-// kernels: a table of the kernels at every width of registers, in a minute; whole: the published program as a process; yardstick: numpy beside the kernels;
->>>>>>> main
->>>>>>> solver
+// voxels: the solver of voxel heads; voxels-petsc: the same beside PETSc;
 // anything else goes to BenchmarkDotNet, for instance --filter '*'.
 switch (args.FirstOrDefault())
 {
