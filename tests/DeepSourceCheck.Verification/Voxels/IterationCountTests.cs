@@ -35,10 +35,10 @@ public class IterationCountTests
         double corner = -(half - 0.5) * edge;
         var grid = new VoxelGrid(2 * half, 2 * half, 2 * half, new(new(edge, 0, 0), new(0, edge, 0), new(0, 0, edge), new(corner, corner, corner)));
         byte[] cells = [.. Enumerable.Range(0, grid.Count).Select(v => grid.Voxel(v)).Select(v => (byte)radii.Count(r => grid.Centre(v.I, v.J, v.K).Norm < r))];
-        Tissue[] tissues = [.. LabelledHeads.Tissues.Select(t => t.Kind == TissueKind.Skull ? t with { Conductivity = skull } : t)];
+        Tissue[] tissues = [.. MeshHeads.Tissues.Select(t => t.Kind == TissueKind.Skull ? t with { Conductivity = skull } : t)];
         var volume = new TissueVolume(grid, cells, tissues);
         HexMesh mesh = HexMesh.Plain(volume);
-        var solver = new VoxelSolver(adapted ? AdaptedNodes.Adapt(mesh) : mesh, anisotropic ? LabelledHeads.Tensors(volume) : null, threads: 2);
+        var solver = new VoxelSolver(adapted ? AdaptedNodes.Adapt(mesh) : mesh, anisotropic ? MeshHeads.Tensors(volume) : null, threads: 2);
         var loads = new double[16][];
         int reference = Surface(mesh, new(0, 0, 1));
         for (int k = 0; k < loads.Length; k++)
@@ -48,7 +48,7 @@ public class IterationCountTests
             loads[k][reference] -= 1;
         }
 
-        (_, SolveReport report) = LabelledHeads.Solve(solver, loads);
+        (_, SolveReport report) = MeshHeads.Solve(solver, loads);
         return report.MostIterations;
     }
 

@@ -40,7 +40,7 @@ public class ManufacturedSolutionTests
             : [new(edge.X, 0, 0), new(0, edge.Y, 0), new(0, 0, edge.Z)];
         Vec3 origin = new(0.01, 0.02, -0.03);
         Affine box = Map(columns, origin), map = Map([columns[0] / nx, columns[1] / ny, columns[2] / nz], box.Apply(new(0.5 / nx, 0.5 / ny, 0.5 / nz)));
-        var volume = new TissueVolume(new VoxelGrid(nx, ny, nz, map), [.. Enumerable.Repeat((byte)1, nx * ny * nz)], [LabelledHeads.Tissues[0], LabelledHeads.Tissues[4] with { Conductivity = 0.33 }]);
+        var volume = new TissueVolume(new VoxelGrid(nx, ny, nz, map), [.. Enumerable.Repeat((byte)1, nx * ny * nz)], [MeshHeads.Tissues[0], MeshHeads.Tissues[4] with { Conductivity = 0.33 }]);
         HexMesh mesh = HexMesh.Plain(volume);
         Affine back = box.Inverse();
         if (kind == "moved")
@@ -61,7 +61,7 @@ public class ManufacturedSolutionTests
             }
         });
         double mean = load.Average();
-        (double[][] potentials, _) = LabelledHeads.Solve(solver, [[.. load.Select(v => v - mean)]]);
+        (double[][] potentials, _) = MeshHeads.Solve(solver, [[.. load.Select(v => v - mean)]]);
 
         // Both are defined but for a constant: the means over the volume are taken off.
         (double l2, double h1, double offset, double all, double size, double slope) = (0, 0, 0, 0, 0, 0);

@@ -1,5 +1,4 @@
 using DeepSourceCheck.Core.Geometry;
-using DeepSourceCheck.Core.Heads.Voxels;
 
 namespace DeepSourceCheck.Core.Leadfields.Voxels;
 

@@ -2,7 +2,6 @@ using System.Runtime.InteropServices;
 
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads.Voxels;
-using DeepSourceCheck.Core.Numerics.Multigrid;
 
 namespace DeepSourceCheck.Core.Leadfields.Voxels;
 

@@ -63,8 +63,8 @@ public class AdaptedNodesTests
     {
         // Labels at random: every pattern of eight voxels comes up.
         var random = new Random(7);
-        var grid = new VoxelGrid(15, 14, 13, map == "cubes" ? LabelledHeads.Cubes : map == "flat" ? LabelledHeads.Flat : LabelledHeads.Oblique);
-        var volume = new TissueVolume(grid, [.. Enumerable.Range(0, grid.Count).Select(_ => (byte)random.Next(5))], LabelledHeads.Tissues);
+        var grid = new VoxelGrid(15, 14, 13, map == "cubes" ? MeshHeads.Cubes : map == "flat" ? MeshHeads.Flat : MeshHeads.Oblique);
+        var volume = new TissueVolume(grid, [.. Enumerable.Range(0, grid.Count).Select(_ => (byte)random.Next(5))], MeshHeads.Tissues);
         HexMesh mesh = AdaptedNodes.Adapt(HexMesh.Plain(volume));
         int moved = 0;
         for (int v = 0; v < grid.Count; v++)
@@ -101,7 +101,7 @@ public class AdaptedNodesTests
         const double Edge = 0.002;
         var grid = new VoxelGrid(48, 48, 48, new(new(Edge, 0, 0), new(0, Edge, 0), new(0, 0, Edge), new(-23.5 * Edge, -23.5 * Edge, -23.5 * Edge)));
         byte[] cells = [.. Enumerable.Range(0, grid.Count).Select(v => grid.Voxel(v)).Select(v => (byte)of.Count(r => grid.Centre(v.I, v.J, v.K).Norm < r))];
-        return new TissueVolume(grid, cells, LabelledHeads.Tissues);
+        return new TissueVolume(grid, cells, MeshHeads.Tissues);
     }
 
     private static double Squared(double radius, double[] radii) => radii.Min(r => (radius - r) * (radius - r));

@@ -22,9 +22,9 @@ public class HexStiffnessTests
 
     internal static (HexMesh Mesh, ConductivityTensors? Tensors) Head(string map, bool adapted, bool anisotropic)
     {
-        TissueVolume volume = LabelledHeads.Layered(9, 11, 10, map switch { "cubes" => LabelledHeads.Cubes, "flat" => LabelledHeads.Flat, _ => LabelledHeads.Oblique });
+        TissueVolume volume = MeshHeads.Layered(9, 11, 10, map switch { "cubes" => MeshHeads.Cubes, "flat" => MeshHeads.Flat, _ => MeshHeads.Oblique });
         HexMesh mesh = HexMesh.Plain(volume);
-        return (adapted ? AdaptedNodes.Adapt(mesh) : mesh, anisotropic ? LabelledHeads.Tensors(volume) : null);
+        return (adapted ? AdaptedNodes.Adapt(mesh) : mesh, anisotropic ? MeshHeads.Tensors(volume) : null);
     }
 
     [Theory]
@@ -86,7 +86,7 @@ public class HexStiffnessTests
     {
         // The layers keep their places but conduct alike: a linear potential is a solution, and trilinear elements hold it exactly, moved nodes or not.
         (HexMesh layered, _) = Head(map, adapted, false);
-        Tissue[] alike = [.. LabelledHeads.Tissues.Select(t => t with { Conductivity = t.Conductivity > 0 ? 0.33 : 0 })];
+        Tissue[] alike = [.. MeshHeads.Tissues.Select(t => t with { Conductivity = t.Conductivity > 0 ? 0.33 : 0 })];
         HexMesh mesh = HexMesh.Plain(new TissueVolume(layered.Volume.Grid, layered.Volume.Cells.ToArray(), alike));
         mesh = adapted ? mesh.Adapted([.. Enumerable.Range(0, mesh.Nodes.Count).Select(layered.Shift)]) : mesh;
         StencilOperator a = HexStiffness.Assemble(mesh, null, 1);
@@ -134,7 +134,7 @@ public class HexStiffnessTests
     [Fact]
     public void Assemble_OnPlainGrid_SharesRows()
     {
-        HexMesh mesh = HexMesh.Plain(LabelledHeads.Box(12, 9, 10, LabelledHeads.Cubes));
+        HexMesh mesh = HexMesh.Plain(MeshHeads.Box(12, 9, 10, MeshHeads.Cubes));
         StencilOperator a = HexStiffness.Assemble(mesh, null, 1);
         Assert.Equal(27, a.Distinct);           // inside, 6 faces, 12 edges, 8 corners
         float[] inside = a.Row(mesh.Nodes.IndexOf(5, 5, 5)).ToArray();

@@ -107,7 +107,7 @@ public class MultigridTests
     public void Cycle_IsTheScalarTwin(string map, bool adapted)
     {
         // Large enough for three levels: the second one is visited twice, from zero and from what it holds.
-        HexMesh mesh = HexMesh.Plain(LabelledHeads.Layered(21, 18, 23, map == "cubes" ? LabelledHeads.Cubes : map == "flat" ? LabelledHeads.Flat : LabelledHeads.Oblique));
+        HexMesh mesh = HexMesh.Plain(MeshHeads.Layered(21, 18, 23, map == "cubes" ? MeshHeads.Cubes : map == "flat" ? MeshHeads.Flat : MeshHeads.Oblique));
         var levels = new MultigridHierarchy(HexStiffness.Assemble(adapted ? AdaptedNodes.Adapt(mesh) : mesh, null, 1), 2);
         Assert.Equal(3, levels.Levels);
         using var v = new CycleVectors(levels);

@@ -6,7 +6,7 @@ using DeepSourceCheck.Core.Numerics.Multigrid;
 namespace DeepSourceCheck.Tests.Core.Leadfields.Voxels;
 
 /// <summary>Small labelled volumes: unequal extents, so that a swapped axis cannot hide.</summary>
-internal static class LabelledHeads
+internal static class MeshHeads
 {
     /// <summary>2 mm cubes.</summary>
     public static readonly Affine Cubes = new(new(0.002, 0, 0), new(0, 0.002, 0), new(0, 0, 0.002), new(-0.01, 0.02, 0.005));
