@@ -4,8 +4,6 @@ using DeepSourceCheck.Tests.Core.Leadfields.Voxels;
 using DeepSourceCheck.Tests.References;
 using DeepSourceCheck.Tests.Support;
 
-using LabelledHeads = DeepSourceCheck.Tests.Core.Leadfields.Voxels.LabelledHeads;
-
 namespace DeepSourceCheck.Tests.Core.Numerics.Multigrid;
 
 /// <summary>The parts of the cycle: each against its plain scalar twin or the property it must have.</summary>
