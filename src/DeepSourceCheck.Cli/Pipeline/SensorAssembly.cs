@@ -149,7 +149,7 @@ internal abstract class SensorAssembly
         Scene = Scene(regions) with
         {
             CoilSites = MegReported ? [.. Channels.Select(c => c.Site).Distinct()] : [],
-            Regions = [.. regions.Select(r => new SceneRegion(r.Name, Picked(r.Positions), Head.Depth(r.Centroid)))],
+            Regions = [.. regions.Select(r => Place(r.Name, Picked(r.Positions)))],
         },
     };
 
@@ -191,6 +191,13 @@ internal abstract class SensorAssembly
             .. Core.Sensors.ReferenceWeights.Joined(study.Eeg!.Reference, names),
         ];
         return joined.Distinct();
+    }
+
+    // The middle one of the dipoles' depths: the centre of a region that is spread out, such as cortex, is none of its places.
+    private SceneRegion Place(string name, Vec3[] points)
+    {
+        double[] depths = [.. points.Select(Head.Depth).OfType<double>().Order()];
+        return new(name, points, depths.Length > 0 ? depths[depths.Length / 2] : null);
     }
 
     private static Vec3[] Picked(Vec3[] positions)

@@ -1,6 +1,5 @@
 using System.Globalization;
 
-using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;

@@ -6,7 +6,7 @@ namespace DeepSourceCheck.Core.Results;
 /// <summary>A region in the scene.</summary>
 /// <param name="Name">Its name.</param>
 /// <param name="Points">At most 2,000 of its dipoles, evenly picked [m].</param>
-/// <param name="Depth">Depth of their centre below the scalp [m]; null where the head has no surface.</param>
+/// <param name="Depth">Their median depth below the scalp [m]; null where the head has no surface.</param>
 public sealed record SceneRegion(string Name, IReadOnlyList<Vec3> Points, double? Depth);
 
 /// <summary>Points of the scene, for the geometry figure.</summary>

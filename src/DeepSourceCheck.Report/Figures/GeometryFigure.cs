@@ -67,7 +67,9 @@ public static class GeometryFigure
         (string name, IReadOnlyList<Vec3> points, double? depth) = region;
         Vec3 sum = points.Aggregate(Vec3.Zero, (a, b) => a + b);
         Vec3 centroid = sum / points.Count;
-        double? coil = scene.CoilSites.Count > 0 ? scene.CoilSites.Min(s => (s - centroid).Norm) : null;
+        int step = Math.Max(1, points.Count / MostDots);
+        double[] coils = scene.CoilSites.Count == 0 ? [] : [.. points.Where((_, k) => k % step == 0).Select(p => scene.CoilSites.Min(s => (s - p).Norm)).Order()];
+        double? coil = coils.Length > 0 ? coils[coils.Length / 2] : null;
         return new(name, points, centroid, depth, coil);
     }
 
@@ -95,7 +97,7 @@ public static class GeometryFigure
     private static string Mm(Vec3 v) => Say.Vector(Math.Round(Si.ToMm(v.X), 1), Math.Round(Si.ToMm(v.Y), 1), Math.Round(Si.ToMm(v.Z), 1));
 
     private static FigureTable Table(Placed[] regions) => new(
-        ["region", "centre of its dipoles, mm", "below the scalp, mm", "nearest coil, mm"],
+        ["region", "centre of its dipoles, mm", "below the scalp, mm (median)", "nearest coil, mm (median)"],
         [.. regions.Select(r => (IReadOnlyList<string>)
         [
             r.Name, Mm(r.Centroid), r.Depth is { } d ? Say.Stated(Math.Round(Si.ToMm(d), 1)) : "not known", r.Coil is { } c ? Say.Stated(Math.Round(Si.ToMm(c), 1)) : "",
