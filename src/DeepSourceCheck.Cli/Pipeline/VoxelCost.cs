@@ -6,13 +6,14 @@ namespace DeepSourceCheck.Cli.Pipeline;
 /// <summary>What the rows of a head of voxels take: from counts alone, before anything is allocated.</summary>
 /// <remarks>
 /// Memory: volume and distances, stencils and levels of the grid, sixteen right-hand sides a thread, and the rows that are kept. Time: set-up a node, solve a node and right-hand side, loads of
-/// dipoles a dipole and row. The factors are those of a prototype on two processors with 26 GB/s: 0.74 GB and 6 s for 430,000 nodes and 355 right-hand sides, 4.8 GB and 43 s for 3.1 million.
+/// dipoles a dipole and row. Measured on two processors, peak of the whole
+/// process: 0.41 GB for 430,000 nodes, 2.6 GB for 3.3 million and 4.2 GB for 4.8 million; 10, 94 and 108 s of processor time for 355, 355 and 266 right-hand sides.
 /// </remarks>
 internal static class VoxelCost
 {
     // Bytes: a voxel of the box (labels, two distances, work of the checks); a node (stencils, levels, numbering); a node and thread (six vectors of sixteen single-precision lanes, levels added);
     // a kept value. A dipole's load touches some 27 nodes, and neighbours share most of them.
-    private const double BytesAVoxel = 16, BytesANode = 500, BytesANodeAndThread = 450, BytesAKeptValue = 4, NodesADipole = 8;
+    private const double BytesAVoxel = 16, BytesANode = 300, BytesANodeAndThread = 300, BytesAKeptValue = 4, NodesADipole = 8;
 
     // Seconds on one processor.
     private const double SecondsANode = 2e-6, SecondsANodeAndRow = 8e-8, SecondsADipoleAndRow = 4e-9;
