@@ -16,7 +16,6 @@ internal sealed class ScalpSensors : IVoxelSensors
     private readonly BuiltVoxelHead _built;
     private readonly ScalpSurface _scalp;
     private readonly Lazy<ScalpSites> _sites;
-    private readonly Lazy<HeadSphere> _sphere;
     private readonly List<string> _warnings = [];
 
     /// <param name="built">The head.</param>
@@ -26,7 +25,6 @@ internal sealed class ScalpSensors : IVoxelSensors
     {
         _built = built;
         _scalp = ScalpSurface.Of(built.AsInFile);
-        _sphere = new(() => HeadSphere.Of(built.AsInFile, _scalp));
         _sites = new(() =>
         {
             HeadLandmarks placed = LandmarkPlacement.On(_scalp, landmarks);
@@ -68,5 +66,5 @@ internal sealed class ScalpSensors : IVoxelSensors
     /// <inheritdoc/>
     public void CheckCoils(IReadOnlyList<MegChannel> channels, string file) => CoilPlacement.CheckOutside(_scalp, channels, file);
 
-    private HeadArray Placed(CoilArrayChoice choice) => HeadArray.Generate(choice, _scalp, _sphere.Value);
+    private HeadArray Placed(CoilArrayChoice choice) => HeadArray.Generate(choice, _scalp, _built.Head.Sphere);
 }
