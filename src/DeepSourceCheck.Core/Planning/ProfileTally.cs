@@ -20,6 +20,9 @@ internal sealed class ProfileTally
     /// <summary>Bins of the angle between 0 and 90 degrees.</summary>
     public const int AngleBins = 6;
 
+    /// <summary>From this angle on the cortex is called upright [rad]: 60 degrees.</summary>
+    public const double Upright = Math.PI / 3;
+
     private const double AngleStep = Math.PI / 2 / AngleBins;
 
     // Depths come from distances in single precision: a value this close below an edge stands on it.
@@ -30,6 +33,7 @@ internal sealed class ProfileTally
     private readonly double _gain;
     private readonly List<QuantileStore[]?> _byDepth = [];
     private readonly List<QuantileStore[]?> _byAngle = [];
+    private readonly List<QuantileStore[]?> _uprightByDepth = [];
     private int _without;
 
     /// <param name="plan">What is read.</param>
@@ -61,8 +65,13 @@ internal sealed class ProfileTally
             {
                 if (places[lane] is { } place)
                 {
-                    Bin(_byDepth, (int)(place.Depth / DepthStep + EdgeTolerance))[m].Add(power[lane]);
+                    int depth = (int)(place.Depth / DepthStep + EdgeTolerance);
+                    Bin(_byDepth, depth)[m].Add(power[lane]);
                     Bin(_byAngle, Math.Min((int)(place.SourceAngle / AngleStep + EdgeTolerance), AngleBins - 1))[m].Add(power[lane]);
+                    if (place.SourceAngle >= Upright)
+                    {
+                        Bin(_uprightByDepth, depth)[m].Add(power[lane]);
+                    }
                 }
             }
         }
@@ -78,11 +87,12 @@ internal sealed class ProfileTally
     {
         Merge(_byDepth, other._byDepth);
         Merge(_byAngle, other._byAngle);
+        Merge(_uprightByDepth, other._uprightByDepth);
         _without += other._without;
     }
 
     /// <summary>The comparison.</summary>
-    public CorticalProfile Profile() => new(Bins(_byDepth, DepthStep), Bins(_byAngle, AngleStep), _without);
+    public CorticalProfile Profile() => new(Bins(_byDepth, DepthStep), Bins(_byAngle, AngleStep), Bins(_uprightByDepth, DepthStep), _without);
 
     private void Merge(List<QuantileStore[]?> into, List<QuantileStore[]?> from)
     {

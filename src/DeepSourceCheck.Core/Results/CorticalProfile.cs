@@ -3,8 +3,9 @@ namespace DeepSourceCheck.Core.Results;
 /// <summary>SNR of one trial over the cortex, for sources along the cortex's own normal, by depth and by angle.</summary>
 /// <param name="ByDepth">By depth below the inner skull [m], shallow first; bins without a point are left out.</param>
 /// <param name="ByAngle">By angle between the cortex's normal and that of the inner skull [rad], radial first; bins without a point are left out.</param>
+/// <param name="UprightByDepth">By depth, points of 60 degrees and more alone: depth and angle go together in a folded cortex, and here the angle plays no part.</param>
 /// <param name="WithoutNormal">Points that are in no bin: which way the cortex faces there is not known.</param>
-public sealed record CorticalProfile(IReadOnlyList<ProfileBin> ByDepth, IReadOnlyList<ProfileBin> ByAngle, int WithoutNormal);
+public sealed record CorticalProfile(IReadOnlyList<ProfileBin> ByDepth, IReadOnlyList<ProfileBin> ByAngle, IReadOnlyList<ProfileBin> UprightByDepth, int WithoutNormal);
 
 /// <summary>The points whose depth or angle lies between two values.</summary>
 /// <param name="From">Lower edge, which belongs to the bin: depth [m] or angle [rad].</param>

@@ -95,6 +95,7 @@ public static class AssessmentJson
         {
             json.WriteArray("by_depth", profile.ByDepth, (j, bin) => WriteBin(j, bin, "mm", Si.ToMm));
             json.WriteArray("by_angle", profile.ByAngle, (j, bin) => WriteBin(j, bin, "deg", Si.ToDegrees));
+            json.WriteArray("by_depth_upright", profile.UprightByDepth, (j, bin) => WriteBin(j, bin, "mm", Si.ToMm));
             json.WriteNumber("points_without_normal", profile.WithoutNormal);
         }
 
