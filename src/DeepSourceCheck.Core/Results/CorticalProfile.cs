@@ -9,7 +9,7 @@ public sealed record CorticalProfile(IReadOnlyList<ProfileBin> ByDepth, IReadOnl
 
 /// <summary>The points whose depth or angle lies between two values.</summary>
 /// <param name="From">Lower edge, which belongs to the bin: depth [m] or angle [rad].</param>
-/// <param name="To">Upper edge, which belongs to the next.</param>
+/// <param name="To">Upper edge, which belongs to the next: depth [m] or angle [rad].</param>
 /// <param name="Points">Their number.</param>
 /// <param name="Figures">One a modality and measure.</param>
 public sealed record ProfileBin(double From, double To, int Points, IReadOnlyList<ProfileFigure> Figures);

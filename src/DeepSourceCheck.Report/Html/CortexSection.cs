@@ -22,7 +22,7 @@ internal static class CortexSection
         HtmlReport.Section(html, "cortex", "Over the cortex");
         html.Element("p",
             "SNR of one trial in dB, median and in brackets the quartiles over the points of a bin. Each point is a source along the cortex's own normal with the response's moment. Depth: to the nearest bone; "
-            + "angle: between the normals of cortex and nearest inner skull, 0 where the cortex lies flat under the skull. Shallow cortex is mostly flat, deep cortex upright: depth alone shows on upright cortex. Normals come from a label volume, smoothed to 2 mm: single points are rough, medians are not. "
+            + "angle: between the normals of cortex and nearest inner skull, 0 where the cortex lies flat under the skull. Shallow cortex is mostly flat, deep cortex upright: depth alone shows on upright cortex. Normals come from a label volume, smoothed to 1.5 mm or a voxel: single points are rough, medians are not. "
             + "A source of some square centimetres cancels part of itself, which single dipoles do not show.", "class", "small");
         foreach ((ResponseResult response, RegionResult region) in shown)
         {

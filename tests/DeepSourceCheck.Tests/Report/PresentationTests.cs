@@ -22,6 +22,7 @@ public class PresentationTests
         ["imported"] = AssessmentFixture.Imported,
         ["detection"] = AssessmentFixture.WithDetection,
         ["two responses"] = AssessmentFixture.TwoResponses,
+        ["cortex"] = AssessmentFixture.OverCortex,
     };
 
     [Theory]
