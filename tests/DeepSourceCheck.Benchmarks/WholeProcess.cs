@@ -89,7 +89,7 @@ internal static class WholeProcess
                 peak = at < 0 ? peak : 1024 * long.Parse(status.AsSpan(at + 6, status.IndexOf("kB", at, StringComparison.Ordinal) - at - 6).Trim(), CultureInfo.InvariantCulture);
                 processor = Math.Max(processor, process.TotalProcessorTime.TotalSeconds);
             }
-            catch (Exception error) when (error is IOException or InvalidOperationException or UnauthorizedAccessException)
+            catch (Exception error) when (error is IOException or InvalidOperationException or UnauthorizedAccessException or System.ComponentModel.Win32Exception)
             {
                 // it has just ended
             }

@@ -70,13 +70,13 @@ internal sealed class OnVoxels : SensorAssembly
     {
         // The tables' sensors are solved after the study's own: their time adds, of the memory only the larger counts.
         long dipoles = regions.Sum(r => (long)r.Positions.Length);
-        LeadfieldCost own = VoxelCost.Of(_built.Head.Volume, Electrodes.Count + Channels.Count, dipoles + (WantsBackground ? NoiseAssembly.BackgroundPlaces : 0));
+        LeadfieldCost own = VoxelCost.Of(_built.Head.Volume, Electrodes.Count + Channels.Count, dipoles + (WantsBackground ? NoiseAssembly.BackgroundPlaces : 0), reusable: true);
         if (!WantsBackground)
         {
             return own;
         }
 
-        LeadfieldCost tables = VoxelCost.Of(_built.Head.Volume, TableSensors.Names.Count + TableSensors.Array.Sites, NoiseAssembly.BackgroundPlaces);
+        LeadfieldCost tables = VoxelCost.Of(_built.Head.Volume, TableSensors.Names.Count + TableSensors.Array.Sites, NoiseAssembly.BackgroundPlaces, reusable: false);
         return new(Math.Max(own.Bytes, tables.Bytes), own.Seconds + tables.Seconds);
     }
 

@@ -15,7 +15,7 @@ namespace DeepSourceCheck.Cli.Pipeline;
 internal sealed class RowSolver : IVoxelSolver
 {
     // Most memory of the rows of all nodes that a source could use; beyond it rows are kept for the study's own dipoles alone, and other dipoles need other rows.
-    private const long MostRowBytes = 1L << 30;
+    public const long MostRowBytes = 1L << 30;
 
     private readonly ConductivityTensors? _tensors;
     private readonly HexMesh _mesh;

@@ -9,7 +9,7 @@ public class HelpTests
 {
     private const int Columns = 79;
 
-    private static readonly string[] Names = ["new", "check", "assess", "leadfield", "regions", "why", "completions"];
+    private static readonly string[] Names = ["new", "check", "assess", "leadfield", "regions", "cache", "why", "completions"];
 
     public static TheoryData<string> Commands => new(Names);
 
@@ -23,7 +23,7 @@ public class HelpTests
     [Fact]
     public void Root_HasTheContractsCommandsAndNoOthers()
     {
-        // Source: the contract's table of commands; completions beside it.
+        // Source: the contract's table of commands; completions, and the cache of voxel heads with its way to be cleared, beside it.
         RootCommand root = CommandLine.Build(new Surroundings { Out = TextWriter.Null, Error = TextWriter.Null });
         Assert.Equal(Names, root.Subcommands.Select(c => c.Name));
     }
@@ -31,10 +31,11 @@ public class HelpTests
     [Theory]
     [InlineData("new", "FOLDER --head --voxel-mm --json")]
     [InlineData("check", "STUDY --json --memory")]
-    [InlineData("assess", "STUDY --out --without --json --memory")]
-    [InlineData("leadfield", "STUDY --out --json --memory")]
+    [InlineData("assess", "STUDY --out --without --json --memory --cache")]
+    [InlineData("leadfield", "STUDY --out --json --memory --cache")]
     [InlineData("regions", "--mask --json")]
-    [InlineData("why", "STUDY REGION --json --memory")]
+    [InlineData("why", "STUDY REGION --json --memory --cache")]
+    [InlineData("cache", "--cache --clear --json")]
     [InlineData("completions", "SHELL --json")]
     public void CommandHelp_NamesEveryArgumentAndOption(string command, string names)
     {

@@ -6,7 +6,7 @@ namespace DeepSourceCheck.Tests.Cli;
 public class UsageErrorTests
 {
     [Theory]
-    [InlineData("name a command: new, check, assess, leadfield, regions, why, completions")]
+    [InlineData("name a command: new, check, assess, leadfield, regions, cache, why, completions")]
     [InlineData("unknown command 'asses'; the nearest is 'assess'", "asses")]
     [InlineData("unknown command 'frobnicate'", "frobnicate", "--x")]
     [InlineData("unknown option '--outt'; the nearest is '--out'", "assess", "--outt", "x")]

@@ -16,7 +16,7 @@ namespace DeepSourceCheck.Core.Leadfields.Voxels;
 public static class RowKey
 {
     /// <summary>Raised whenever the same inputs would give other rows: by another discretisation, load or solver.</summary>
-    public const int FormatVersion = 1;
+    public const int FormatVersion = 2;
 
     private const int Stretch = 4096;
 

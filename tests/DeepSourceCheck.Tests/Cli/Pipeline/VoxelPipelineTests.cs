@@ -217,12 +217,13 @@ public sealed class VoxelPipelineTests : IDisposable
     }
 
     [Theory]
-    [InlineData(430_000, 355, 0.5e9, 1.0e9, 4, 12)]
-    [InlineData(3_100_000, 355, 3.5e9, 6.5e9, 30, 80)]
-    public void Prediction_ComesWithinTwoTimesOfTheMeasuredPrototype(long nodes, long rows, double leastBytes, double mostBytes, double leastSeconds, double mostSeconds)
+    [InlineData(430_000, 355, 0.3e9, 0.7e9, 4, 12)]
+    [InlineData(3_300_000, 355, 2.2e9, 4.4e9, 35, 95)]
+    [InlineData(4_800_000, 266, 3.6e9, 7e9, 40, 110)]
+    public void Prediction_ComesWithinTwoTimesOfWhatWasMeasured(long nodes, long rows, double leastBytes, double mostBytes, double leastSeconds, double mostSeconds)
     {
-        // The prototype's figures on two processors: 0.74 GB and 5.7 to 6.8 s, 4.5 to 5.2 GB and 33 to 41 s of solving.
-        LeadfieldCost cost = VoxelCost.Of(2 * nodes, nodes, rows, 2000, processors: 2);
+        // Peak of the process and half of its processor time on two processors: 0.41 GB and 5 s, 2.6 GB and 47 s, 4.2 GB and 54 s.
+        LeadfieldCost cost = VoxelCost.Of(2 * nodes, nodes, rows, 2000, kept: 16_000, processors: 2);
         Assert.InRange(cost.Bytes, leastBytes, mostBytes);
         Assert.InRange(cost.Seconds, leastSeconds, mostSeconds);
     }

@@ -8,22 +8,22 @@ namespace DeepSourceCheck.Tests.Core.Leadfields.Voxels;
 public class AdaptedNodesTests
 {
     [Fact]
-    public void Move_AtAFlatInterface_IsNone() => Assert.Equal(Vec3.Zero, AdaptedNodes.Move([1, 1, 1, 1, 2, 2, 2, 2]));
+    public void Move_AtAFlatInterface_IsNone() => Assert.Equal(Vec3.Zero, Move(1, 1, 1, 1, 2, 2, 2, 2));
 
     [Fact]
-    public void Move_InsideATissue_IsNone() => Assert.Equal(Vec3.Zero, AdaptedNodes.Move([3, 3, 3, 3, 3, 3, 3, 3]));
+    public void Move_InsideATissue_IsNone() => Assert.Equal(Vec3.Zero, Move(3, 3, 3, 3, 3, 3, 3, 3));
 
     [Fact]
     public void Move_AtACorner_GoesIntoTheOneVoxelThatDiffers()
     {
-        Vec3 move = AdaptedNodes.Move([2, 1, 1, 1, 1, 1, 1, 1]);
+        Vec3 move = Move(2, 1, 1, 1, 1, 1, 1, 1);
         Assert.True(move.X < 0 && move.X == move.Y && move.Y == move.Z, $"{move}");
     }
 
     [Fact]
     public void Move_AtAnEdge_StaysAcrossTheEdge()
     {
-        Vec3 move = AdaptedNodes.Move([1, 2, 1, 1, 1, 2, 1, 1]);
+        Vec3 move = Move(1, 2, 1, 1, 1, 2, 1, 1);
         Assert.True(move.X > 0 && move.Y == -move.X && move.Z == 0, $"{move}");
     }
 
@@ -31,7 +31,18 @@ public class AdaptedNodesTests
     public void Move_TowardsAirOrTissue_IsMirroredWhenTheyChangePlaces()
     {
         // One voxel of air in tissue and one voxel of tissue in air draw the surface the same way.
-        Assert.Equal(AdaptedNodes.Move([0, 4, 4, 4, 4, 4, 4, 4]), AdaptedNodes.Move([4, 0, 0, 0, 0, 0, 0, 0]));
+        Assert.Equal(Move(0, 4, 4, 4, 4, 4, 4, 4), Move(4, 0, 0, 0, 0, 0, 0, 0));
+    }
+
+    [Fact]
+    public void Move_AmongEquals_GoesByTheKindOfTissueAlone()
+    {
+        // Two voxels of bone and two of fluid in brain: towards the bone, whatever the order of labels.
+        Tissue air = MeshHeads.Tissues[0], skull = new(1, "skull", TissueKind.Skull, 0.01), csf = new(2, "csf", TissueKind.Csf, 1.79), grey = new(3, "grey", TissueKind.Grey, 0.33);
+        Vec3 one = AdaptedNodes.Move([1, 1, 2, 2, 3, 3, 3, 3], AdaptedNodes.Ranks([air, skull, csf, grey]));
+        Vec3 other = AdaptedNodes.Move([3, 3, 1, 1, 2, 2, 2, 2], AdaptedNodes.Ranks([air, csf, grey, skull]));
+        Assert.Equal(one, other);
+        Assert.True(one.Y < 0 && one.Z < 0 && one.X == 0, $"{one}");
     }
 
     [Fact]
@@ -105,4 +116,6 @@ public class AdaptedNodesTests
     }
 
     private static double Squared(double radius, double[] radii) => radii.Min(r => (radius - r) * (radius - r));
+
+    private static Vec3 Move(params byte[] around) => AdaptedNodes.Move(around, AdaptedNodes.Ranks(MeshHeads.Tissues));
 }
