@@ -16,7 +16,6 @@ internal sealed class ScalpSensors : IVoxelSensors
     private readonly BuiltVoxelHead _built;
     private readonly ScalpSurface _scalp;
     private readonly Lazy<ScalpSites> _sites;
-    private readonly Lazy<HeadSphere> _sphere;
     private readonly List<string> _warnings = [];
     private readonly Dictionary<CoilArrayChoice, HeadArray> _arrays = [];
 
@@ -27,7 +26,6 @@ internal sealed class ScalpSensors : IVoxelSensors
     {
         _built = built;
         _scalp = ScalpSurface.Of(built.AsInFile);
-        _sphere = new(() => HeadSphere.Of(built.AsInFile, _scalp));
         _sites = new(() =>
         {
             HeadLandmarks placed = LandmarkPlacement.On(_scalp, landmarks);
@@ -44,7 +42,7 @@ internal sealed class ScalpSensors : IVoxelSensors
     public IReadOnlyList<string> Warnings => [.. _warnings.Distinct()];
 
     /// <inheritdoc/>
-    public Vec3 Centre => _sphere.Value.Sphere.Centre;
+    public Vec3 Centre => _built.Head.Sphere.Sphere.Centre;
 
     /// <inheritdoc/>
     public IReadOnlyList<Vec3> Sites(IReadOnlyList<string> names) =>
@@ -76,7 +74,7 @@ internal sealed class ScalpSensors : IVoxelSensors
     {
         if (!_arrays.TryGetValue(choice, out HeadArray? array))
         {
-            _arrays.Add(choice, array = HeadArray.Generate(choice, _scalp, _sphere.Value));
+            _arrays.Add(choice, array = HeadArray.Generate(choice, _scalp, _built.Head.Sphere));
         }
 
         return array;

@@ -113,6 +113,7 @@ public static class Assessor
             Volume = parts.All(p => p.Volume is not null) ? parts.Sum(p => p.Volume) : null,
             Split = split,
             FieldCaptured = captured.Min(),
+            Profile = tally.Profile?.Profile(),
             Results = rows,
             Verdicts = verdicts,
             Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts)],

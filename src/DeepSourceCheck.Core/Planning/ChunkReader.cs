@@ -59,6 +59,7 @@ internal sealed class ChunkReader
             int n = Math.Min(LeadfieldBlock.Lanes, count - done);
             Load(region, start + done, n);
             _reader.Read(_signals, n, (start + done) / LeadfieldBlock.Lanes, _tally, Results?.SnrDb, done);
+            _tally.Profile?.Read(_signals, region.CorticalPlaces.AsSpan(start + done, n));
             Summarise(n);
             Keep(done, n);
         }

@@ -38,7 +38,7 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
         var reporting = new Lock();
         Parallel.For(0, threads, new ParallelOptions { MaxDegreeOfParallelism = threads, CancellationToken = cancellation }, thread =>
         {
-            tallies[thread] = new RegionTally(plan, dipoles);
+            tallies[thread] = new RegionTally(plan, dipoles) { Profile = region.CorticalPlaces.Length > 0 ? new ProfileTally(plan, dipoles) : null };
             var worker = new ChunkReader(plan, head, source, tallies[thread], line is not null);
             try
             {

@@ -48,6 +48,9 @@ internal sealed class RegionTally
     /// <summary>Angle between v3 and the outward direction [rad].</summary>
     public QuantileStore AngleToRadial { get; }
 
+    /// <summary>The cortical comparison; null where the region is no folded cortex.</summary>
+    public ProfileTally? Profile { get; init; }
+
     /// <summary>Dipoles without a split.</summary>
     public int Undefined { get; set; }
 
@@ -79,6 +82,7 @@ internal sealed class RegionTally
         {
             total.WeakestOverStrongest.Merge(other.WeakestOverStrongest);
             total.AngleToRadial.Merge(other.AngleToRadial);
+            total.Profile?.Merge(other.Profile!);
             total.Undefined += other.Undefined;
             total.Degenerate += other.Degenerate;
         }

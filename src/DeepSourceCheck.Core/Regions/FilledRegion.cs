@@ -27,6 +27,9 @@ public sealed class FilledRegion
     /// <summary>Index among the imported points, or empty for computed heads.</summary>
     public int[] SourceIndices { get; init; } = [];
 
+    /// <summary>Place in the cortex of each kept position, null where it is not known; empty where the region is no folded cortex.</summary>
+    public CorticalPlace?[] CorticalPlaces { get; init; } = [];
+
     /// <summary>Points that the head refused.</summary>
     public IReadOnlyList<DroppedPoint> Dropped { get; init; } = [];
 
@@ -62,6 +65,7 @@ public sealed class FilledRegion
         Rows = Rows,
         PointNames = PointNames,
         SourceIndices = SourceIndices,
+        CorticalPlaces = CorticalPlaces,
         Dropped = Dropped,
         Spacing = Spacing,
         SpacingRefined = SpacingRefined,

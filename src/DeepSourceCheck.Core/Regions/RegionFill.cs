@@ -181,6 +181,7 @@ public static class RegionFill
             Positions = dropped.Count == 0 ? all.Positions : Array.ConvertAll(rows, row => all.Positions[row]),
             Rows = rows,
             PointNames = all.PointNames.Length == 0 || dropped.Count == 0 ? all.PointNames : all.PointNames.At(rows),
+            CorticalPlaces = all.CorticalPlaces.Length == 0 || dropped.Count == 0 ? all.CorticalPlaces : Array.ConvertAll(rows, row => all.CorticalPlaces[row]),
             Dropped = dropped,
             Spacing = all.Spacing,
             SpacingRefined = all.SpacingRefined,

@@ -26,6 +26,9 @@ public sealed record RegionResult
     /// <summary>Share of the largest field around the head that the array's cap captures (1 inside it); null without generated MEG.</summary>
     public double? FieldCaptured { get; init; }
 
+    /// <summary>SNR by depth and by angle over the cortex; null where the region is no folded cortex.</summary>
+    public CorticalProfile? Profile { get; init; }
+
     /// <summary>All figures.</summary>
     public required IReadOnlyList<MeasureResult> Results { get; init; }
 

@@ -44,6 +44,7 @@ public static class HtmlReport
         }
 
         FigureSection.Write(html, assessment, figureFiles, drawings);
+        CortexSection.Write(html, assessment);
         ResultSection.Write(html, assessment);
         AssumptionSection.Write(html, assessment);
         LimitSection.Write(html, assessment);

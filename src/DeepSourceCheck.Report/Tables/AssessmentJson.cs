@@ -101,9 +101,35 @@ public static class AssessmentJson
             json.WriteNull("split");
         }
 
+        if (region.Profile is { } profile)
+        {
+            json.WriteArray("by_depth", profile.ByDepth, (j, bin) => WriteBin(j, bin, "mm", Si.ToMm));
+            json.WriteArray("by_angle", profile.ByAngle, (j, bin) => WriteBin(j, bin, "deg", Si.ToDegrees));
+            json.WriteArray("by_depth_upright", profile.UprightByDepth, (j, bin) => WriteBin(j, bin, "mm", Si.ToMm));
+            json.WriteNumber("points_without_normal", profile.WithoutNormal);
+        }
+
         json.WriteArray("results", region.Results, WriteMeasure);
         json.WriteArray("verdicts", region.Verdicts, WriteVerdict);
         json.WriteStrings("warnings", region.Warnings);
+        json.WriteEndObject();
+    }
+
+    private static void WriteBin(Utf8JsonWriter json, ProfileBin bin, string unit, Func<double, double> convert)
+    {
+        // Edges are round numbers of their unit.
+        json.WriteStartObject();
+        json.WriteNumber($"from_{unit}", Math.Round(convert(bin.From), 6));
+        json.WriteNumber($"to_{unit}", Math.Round(convert(bin.To), 6));
+        json.WriteNumber("points", bin.Points);
+        json.WriteArray("results", bin.Figures, (j, figure) =>
+        {
+            j.WriteStartObject();
+            j.WriteString("modality", Names.Of(figure.Modality));
+            j.WriteString("measure", figure.Measure);
+            WritePercentiles(j, "snr_db", figure.SnrDb);
+            j.WriteEndObject();
+        });
         json.WriteEndObject();
     }
 

@@ -52,6 +52,22 @@ internal static class AssessmentFixture
 
     public static Assessment WithDetection() => Build(new Options { Detection = true });
 
+    /// <summary>The first region is folded cortex; its last bin of depth holds too few points for a figure.</summary>
+    public static Assessment OverCortex()
+    {
+        Assessment a = Default();
+        ProfileBin Bin(double from, double to, int points, double eeg, double meg) => new(from, to, points,
+        [
+            .. from m in new[] { (Modality.Eeg, Db: eeg), (Modality.Meg, Db: meg) }
+               from measure in new[] { (Name: Names.ChannelMean, Plus: 0.0), (Name: Names.BestChannel, Plus: 9.0) }
+               select new ProfileFigure(m.Item1, measure.Name, new(m.Db + measure.Plus - 6, m.Db + measure.Plus - 3, m.Db + measure.Plus, m.Db + measure.Plus + 2, m.Db + measure.Plus + 4)),
+        ]);
+        ProfileBin[] depth = [.. Enumerable.Range(0, 6).Select(k => Bin(0.005 * k, 0.005 * (k + 1), k == 5 ? 4 : 400 - 60 * k, -10 - k, -20 - 3 * k))];
+        ProfileBin[] angle = [.. Enumerable.Range(0, 6).Select(k => Bin(Math.PI / 12 * k, Math.PI / 12 * (k + 1), 250, -11, -33 + 2 * k))];
+        RegionResult cortex = a.Responses[0].Regions[0] with { Profile = new(depth, angle, [.. depth.Skip(1).Take(4).Select(b => b with { Points = b.Points / 3 })], 37) };
+        return a with { Responses = [a.Responses[0] with { Regions = [cortex, .. a.Responses[0].Regions.Skip(1)] }] };
+    }
+
     public static Assessment TwoResponses()
     {
         Assessment a = Default();

@@ -23,6 +23,7 @@ public class PresentationTests
         ["voxels"] = AssessmentFixture.Voxels,
         ["detection"] = AssessmentFixture.WithDetection,
         ["two responses"] = AssessmentFixture.TwoResponses,
+        ["cortex"] = AssessmentFixture.OverCortex,
     };
 
     [Theory]

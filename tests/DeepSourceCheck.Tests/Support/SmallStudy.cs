@@ -65,6 +65,9 @@ internal sealed record SmallStudy
 
     public Vec3[]? Positions { get; init; }
 
+    /// <summary>Place in the cortex of each point; null: no region is cortex.</summary>
+    public CorticalPlace?[]? CorticalPlaces { get; init; }
+
     public int Points => Math.Max(Eeg.Length, Meg.Length);
 
     public IReadOnlyList<string> ElectrodeNames => [.. Enumerable.Range(0, Eeg.Length == 0 ? 0 : Eeg[0].Length).Select(k => $"E{k}")];
@@ -122,6 +125,7 @@ internal sealed record SmallStudy
                 Positions = [.. Enumerable.Range(k * each, each).Select(p => Positions?[p] ?? new Vec3(0.01 * p, 0.02, 0.03))],
                 Rows = [.. Enumerable.Range(0, each)],
                 SourceIndices = [.. Enumerable.Range(k * each, each)],
+                CorticalPlaces = CorticalPlaces?[(k * each)..((k + 1) * each)] ?? [],
             })],
         };
     }

@@ -12,11 +12,11 @@ public sealed record HeadSphere(FittedSphere Sphere, bool IsInnerSkull)
     /// <summary>Least squares to the upper part of the inner skull: what lies less than 0.6 of its front-back length below its top. Without a skull, of the scalp.</summary>
     /// <param name="volume">Head.</param>
     /// <param name="scalp">Its scalp.</param>
-    public static HeadSphere Of(TissueVolume volume, ScalpSurface scalp)
-    {
-        List<Vec3> skull = InnerSkull(volume);
-        return skull.Count >= LeastFaces ? new(FittedSphere.Of(Upper(skull)), true) : new(FittedSphere.Of(Upper(scalp.Samples.ToArray())), false);
-    }
+    public static HeadSphere Of(TissueVolume volume, ScalpSurface scalp) => OfSkull(volume) ?? new(FittedSphere.Of(Upper(scalp.Samples.ToArray())), false);
+
+    /// <summary>The same from the inner skull alone; null where the volume has none to speak of, fewer than 100 faces between bone and what lies within.</summary>
+    /// <param name="volume">Head.</param>
+    public static HeadSphere? OfSkull(TissueVolume volume) => InnerSkull(volume) is { Count: >= LeastFaces } skull ? new(FittedSphere.Of(Upper(skull)), true) : null;
 
     /// <summary>Centres [m] of the faces between the inside of the skull (fluid, grey, white) and bone.</summary>
     private static List<Vec3> InnerSkull(TissueVolume volume)

@@ -9,8 +9,13 @@ namespace DeepSourceCheck.Core.Heads.Voxels;
 //   Depth below the scalp: D(p) - h/2, D the exact Euclidean distance to the nearest voxel of the outside air, h the cube root of a voxel's volume: the surface lies half a
 //   voxel before the first air centre; where the file cuts the neck there is none. Depth below the inner skull: likewise from the nearest voxel of bone. Both are trilinear between voxel centres and right to about half
 //   a voxel.
-//   Outward: minus the gradient of the distance to bone, smoothed to a standard deviation of 4 mm, so that it does not show the steps of the voxels: the normal of the inner
-//   skull as the point sees it. Deep sources take that of the bone nearest to them, the base of the skull included.
+//   Outward: away from the centre of the sphere fitted to the inner skull (HeadSphere), as in a spherical head, so that a deep source has the same radius in both. The normal of the nearest
+//   bone would not do: from the thalamus it points at the base of the skull. Without a skull the sphere is fitted to the scalp.
+//   Normal of the inner skull: minus the gradient of the distance to bone, smoothed to a standard deviation of 4 mm, so that it does not show the steps of the voxels: that of the bone nearest
+//   to the point. The cortex is compared against it.
+//   Normal of the cortex: minus the gradient of an indicator, +1 in white matter, 0 in grey, -1 in all that lies beyond, smoothed to 1.5 mm (0.7 of a voxel where that is more): from white matter
+//   through the cortex to its surface. The two banks of a closed sulcus are told apart by the white matter behind each, with or without fluid between them. On a sheet folded by a formula (period 24 mm, 5 mm high) normals err by 2 degrees in the median
+//   with voxels of 1 mm and by 4 with 2 mm; wider smoothing flattens the folds, less shows the voxels.
 
 /// <summary>A head from a label volume.</summary>
 /// <remarks>Immutable; the distances are computed when they are first asked for. Safe for any number of threads.</remarks>
@@ -19,12 +24,20 @@ public sealed class VoxelHead : IHead
     /// <summary>Standard deviation to which the distance to bone is smoothed for normals [m].</summary>
     public const double NormalSmoothing = 0.004;
 
+    /// <summary>Standard deviation to which the indicator of the cortex is smoothed [m]; 0.7 of a voxel's edge where that is more.</summary>
+    public const double CortexSmoothing = 0.0015;
+
     // Below this slope (1 where there is one nearest bone) the distance has a ridge or a plateau and no direction.
     private const double LeastSlope = 0.02;
 
+    // An indicator that changes by less than a twentieth of its range over two standard deviations: grey matter far from both borders, or between like ones.
+    private const double LeastChange = 0.1;
+
     private readonly string?[] _refusals;
     private readonly double _halfVoxel;
-    private readonly Lazy<ScalarField> _toAir, _toBone, _smoothed, _toHead;
+    private readonly Lazy<ScalarField> _toAir, _toBone, _smoothed, _toHead, _cortex;
+    private readonly Lazy<HeadSphere> _sphere;
+    private readonly double _cortexSmoothing;
 
     /// <param name="name">How the head is named in results.</param>
     /// <param name="volume">Its tissues; the outermost layer of voxels must be air.</param>
@@ -59,7 +72,26 @@ public sealed class VoxelHead : IHead
             return new(grid, distance);
         });
         _toHead = new(() => new(grid, DistanceTransform.ToSet(grid, at => volume.Cells[at] != 0)));
+        _cortexSmoothing = Math.Max(CortexSmoothing, Enumerable.Range(0, 3).Max(axis => grid.ToWorld.Column(axis).Norm) / Math.Sqrt(2));
+        _cortex = new(() =>
+        {
+            float[] side = [.. volume.Tissues.Select(t => t.Kind switch { TissueKind.White => 1f, TissueKind.Grey => 0f, _ => -1f })];
+            float[] indicator = Array.ConvertAll(volume.Cells.ToArray(), cell => side[cell]);
+            BinomialBlur.Smooth(grid, indicator, CortexSmoothing);
+            return new(grid, indicator);
+        });
+        _sphere = new(() =>
+        {
+            if (HeadSphere.OfSkull(volume) is { } skull)
+            {
+                return skull;
+            }
+
+            TissueVolume asInFile = HeadCrop.AsInFile(volume, Touched);
+            return HeadSphere.Of(asInFile, ScalpSurface.Of(asInFile));
+        });
         HasSkull = Any(TissueKind.Skull);
+        KnowsCortex = Any(TissueKind.Grey) && Any(TissueKind.White);
     }
 
     /// <inheritdoc/>
@@ -71,8 +103,14 @@ public sealed class VoxelHead : IHead
     /// <summary>Faces of the file's volume that cut the head.</summary>
     public IReadOnlyList<TouchedFace> Touched { get; }
 
-    /// <summary>True where a voxel is bone: without bone there is no depth below the skull and no direction.</summary>
+    /// <summary>True where a voxel is bone: without bone there is no depth below the skull and no normal of it.</summary>
     public bool HasSkull { get; }
+
+    /// <summary>True where grey and white matter have labels of their own: only then is it known which way the cortex faces.</summary>
+    public bool KnowsCortex { get; }
+
+    /// <summary>The sphere whose centre outward directions are seen from: fitted to the inner skull, or to the scalp where there is no skull.</summary>
+    public HeadSphere Sphere => _sphere.Value;
 
     /// <summary>Whether a source may stand in a tissue: grey and white matter.</summary>
     /// <remarks>Deep nuclei are often labelled white in a segmentation, so white is no ground for refusal; CSF, bone, scalp and air are.</remarks>
@@ -99,7 +137,16 @@ public sealed class VoxelHead : IHead
     public string? TissueAt(Vec3 point) => Volume.At(point).Name;
 
     /// <inheritdoc/>
+    /// <remarks>Away from the centre of <see cref="Sphere"/>.</remarks>
     public Vec3? Outward(Vec3 point)
+    {
+        Vec3 offset = point - Sphere.Sphere.Centre;
+        double distance = offset.Norm;
+        return distance <= LayeredSphere.CentreTolerance ? null : offset / distance;
+    }
+
+    /// <summary>Outward unit normal of the inner skull nearest to a point [m]; null without bone, and halfway between two walls.</summary>
+    public Vec3? InnerSkullNormal(Vec3 point)
     {
         if (!HasSkull)
         {
@@ -108,6 +155,18 @@ public sealed class VoxelHead : IHead
 
         Vec3 gradient = _smoothed.Value.Gradient(point, 2 * _halfVoxel);
         return gradient.Norm >= LeastSlope ? -gradient.Unit() : null;
+    }
+
+    /// <summary>Unit normal of the cortex at a point [m], from white matter to the surface; null where grey has no label of its own, and in grey matter that has no white on one side alone.</summary>
+    public Vec3? CorticalNormal(Vec3 point)
+    {
+        if (!KnowsCortex)
+        {
+            return null;
+        }
+
+        Vec3 gradient = _cortex.Value.Gradient(point, 2 * _halfVoxel);
+        return gradient.Norm * 2 * _cortexSmoothing >= LeastChange ? -gradient.Unit() : null;
     }
 
     /// <inheritdoc/>

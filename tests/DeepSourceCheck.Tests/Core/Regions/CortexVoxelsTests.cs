@@ -13,7 +13,7 @@ public class CortexVoxelsTests
     private static readonly VoxelHead Head = new("voxels: head.nii.gz", SphereVolumes.Of(0.004, [0.092, 0.083, 0.071, 0.069]));
 
     [Fact]
-    public void Cortex_IsTheGreyMatterNearTheSkull()
+    public void Cortex_OfABrainWithoutWhiteMatter_IsItsOutermostSixMillimetres()
     {
         FilledRegion cortex = CortexVoxels.Fill(Head);
         Assert.All(cortex.Positions, p =>
@@ -26,6 +26,7 @@ public class CortexVoxelsTests
         RelativeAssert.Equal(4.0 / 3.0 * Math.PI * (Math.Pow(0.069, 3) - Math.Pow(0.065, 3)), cortex.Volume!.Value, 0.25);
         RelativeAssert.Equal(cortex.ShapeVolume!.Value, cortex.Volume.Value, 0.01);
         Assert.Empty(cortex.Warnings);
+        Assert.Empty(cortex.CorticalPlaces);
         Assert.Equal(CortexVoxels.Count(Head, 0.006), cortex.Positions.Length);
     }
 
