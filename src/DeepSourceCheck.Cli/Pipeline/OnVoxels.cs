@@ -16,6 +16,10 @@ namespace DeepSourceCheck.Cli.Pipeline;
 /// <summary>Sensors about a head of voxels. Until <see cref="Compute"/> its leadfields are a plan: `check` never solves.</summary>
 internal sealed class OnVoxels : SensorAssembly
 {
+    // The library's frame: sphere fitted to the inner skull of a real head in MNI space. A head that departs by more is warned of, and refused where the library cannot be meant.
+    private static readonly Vec3 LibraryHead = new(0.0005, -0.0178, 0.0059);
+    private const double LibraryRadius = 0.081, WarnOffset = 0.006, MostOffset = 0.020, WarnRadius = 0.07, MostRadius = 0.20;
+
     private readonly StudyReading _reading;
     private readonly VoxelHeadChoice _choice;
     private readonly BuiltVoxelHead _built;
@@ -25,31 +29,39 @@ internal sealed class OnVoxels : SensorAssembly
     private readonly Lazy<IReadOnlyList<Vec3>> _background;
     private ILeadfieldSource _source;
     private TableSensors? _tables;
+    private readonly bool _assess;
 
     /// <param name="reading">The study as read.</param>
     /// <param name="choice">Its head.</param>
     /// <param name="built">The head as its files give it.</param>
     /// <param name="parts">Placement and solver.</param>
     /// <param name="inputs">Receives the files that are read.</param>
+    /// <param name="purpose">What the sensors are for.</param>
     /// <param name="warnings">Receives what the user must know.</param>
-    public OnVoxels(StudyReading reading, VoxelHeadChoice choice, BuiltVoxelHead built, VoxelParts parts, InputDigests inputs, List<string> warnings)
+    public OnVoxels(StudyReading reading, VoxelHeadChoice choice, BuiltVoxelHead built, VoxelParts parts, InputDigests inputs, Purpose purpose, List<string> warnings)
     {
         (_reading, _choice, _built, _parts, _warnings) = (reading, choice, built, parts, warnings);
         Study study = reading.Study;
         _sensors = _parts.Sensors(built, choice.Landmarks);
         Electrodes = study.Eeg is null ? [] : Place(study, inputs, warnings);
-        Channels = study.Meg is null ? _sensors.Array(SplitArray) : MegChannels(study.Meg, inputs, warnings);
-        if (study.Meg is null)
+        _assess = purpose == Purpose.Assess;
+        Channels = study.Meg is { } meg ? MegChannels(meg, inputs, warnings) : _assess ? _sensors.Array(SplitArray) : [];
+        if (study.Meg is null && _assess)
         {
             WarnOfSplitArray(warnings);
         }
 
-        warnings.AddRange(_sensors.Warnings);
         _source = new PlannedLeadfield(Electrodes.Count, Channels.Count);
         _background = new(() => built.Head.BackgroundPlaces(NoiseAssembly.BackgroundPlaces));
         MegNames = [.. Channels.Select(c => c.Name)];
         MegKinds = [.. Channels.Select(c => c.Kind)];
         MegReported = study.Meg is not null;
+        if (WantsBackground)
+        {
+            _ = _sensors.Sites(TableSensors.Names);          // whatever is wrong with the landmarks shows now, not after the rows were solved for
+        }
+
+        warnings.AddRange(_sensors.Warnings);
         ReferenceWeights = study.Eeg is null ? [] : Core.Sensors.ReferenceWeights.Of(study.Eeg.Reference, Electrodes);
         Derivations = Weights(study, Electrodes, study.Eeg?.Layout is not null);
         Generated = study.Meg?.Generated;
@@ -64,7 +76,22 @@ internal sealed class OnVoxels : SensorAssembly
     /// <inheritdoc/>
     public override bool IsComputed => _source is not PlannedLeadfield;
 
-    private bool WantsBackground => NoiseAssembly.WantsBackground(_reading.Study, this);
+    private bool WantsBackground => _assess && NoiseAssembly.WantsBackground(_reading.Study, this);
+
+    // The tables' magnetometers lie 20 mm from the scalp everywhere: on a real head site by site, not on a rigid helmet whose smallest gap that is.
+    private static CoilArrayChoice TableArray => TableSensors.Array with { Coil = "on-scalp" };
+
+    /// <inheritdoc/>
+    public override string? LibraryMisfit(string region)
+    {
+        FittedSphere sphere = _built.Head.Sphere.Sphere;
+        double offset = (sphere.Centre - LibraryHead).Norm, radius = sphere.Radius / LibraryRadius - 1;
+        string facts = string.Create(CultureInfo.InvariantCulture,
+            $"library regions are drawn for an adult head in MNI space (mm), inner skull of radius {LibraryRadius * 1000:0} mm about ({LibraryHead.X * 1000:0}, {LibraryHead.Y * 1000:0}, {LibraryHead.Z * 1000:0}); in {_choice.Labels} it has {sphere.Radius * 1000:0} mm about ({sphere.Centre.X * 1000:0}, {sphere.Centre.Y * 1000:0}, {sphere.Centre.Z * 1000:0})");
+        return offset > MostOffset || Math.Abs(radius) > MostRadius
+            ? throw new InputException(null, null, $"region '{region}': {facts}: give a mask that fits this head, or bring the volume into that space")
+            : offset > WarnOffset || Math.Abs(radius) > WarnRadius ? $"{facts}: {region} and its like may lie elsewhere in this head; compare with a mask" : null;
+    }
 
     /// <inheritdoc/>
     public override LeadfieldCost Cost(IReadOnlyList<FilledRegion> regions)
@@ -105,7 +132,7 @@ internal sealed class OnVoxels : SensorAssembly
         {
             IReadOnlyList<Vec3> sites = _sensors.Sites(TableSensors.Names);
             Electrode[] electrodes = [.. TableSensors.Names.Select((n, k) => new Electrode(n, sites[k], true, 0))];
-            var problem = new VoxelProblem("leadfields of the noise tables' sensors", electrodes, _sensors.Array(TableSensors.Array), _background.Value, Reusable: false);
+            var problem = new VoxelProblem("leadfields of the noise tables' sensors", electrodes, _sensors.Array(TableArray), _background.Value, Reusable: false);
             _tables = new(solver.Solve(problem, settings, _warnings), electrodes);
         }
     }

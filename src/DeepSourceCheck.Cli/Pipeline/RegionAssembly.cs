@@ -58,6 +58,11 @@ internal sealed class RegionAssembly
                     throw Problem(key, $"region '{name}' is one of the library; with imported leadfields a region selects imported points by name (regions: - {{name: ..., points: ...}})");
                 }
 
+                if (name != "cortex" && Misfit(name, key) is { } misfit)
+                {
+                    _warnings.Add(misfit);
+                }
+
                 Add(RegionFill.Fill(library.Get(name, sensors.LibraryScale, sensors.LibraryCentre, key), null, sensors.Head));
             }
         }
@@ -196,6 +201,18 @@ internal sealed class RegionAssembly
         {
             throw Problem(choice.Key + ".spacing_mm", string.Create(CultureInfo.InvariantCulture,
                 $"region '{choice.Name}' of {Si.ToMillilitres(shape.Volume):0.###} mL would hold about {count:N0} dipoles, more than the memory budget of {budget / 1e6:N0} MB admits; state a larger spacing_mm or a larger --memory"));
+        }
+    }
+
+    private string? Misfit(string name, string key)
+    {
+        try
+        {
+            return _sensors.LibraryMisfit(name);
+        }
+        catch (InputException error)
+        {
+            throw Problem(key, error.Problems[0].Message);
         }
     }
 

@@ -89,20 +89,26 @@ internal abstract class SensorAssembly
     protected static CoilArrayChoice SplitArray { get; } =
         new("magnetometer", SplitSites, 0, SplitGap, CoilArray.DefaultEdgeFront, CoilArray.DefaultEdgeBack);
 
+    /// <summary>What the user must know where a region of the library may not lie where it should in this head; null where nothing speaks against it.</summary>
+    /// <param name="region">Name of the region.</param>
+    /// <exception cref="InputException">The library cannot be meant for this head.</exception>
+    public virtual string? LibraryMisfit(string region) => null;
+
     /// <summary>Builds the sensors of a study.</summary>
     /// <param name="reading">The study as read.</param>
     /// <param name="inputs">Receives the files that are read.</param>
+    /// <param name="purpose">What the sensors are for: leadfields alone need no array for the split and no noise.</param>
     /// <param name="settings">Memory budget, cancellation.</param>
     /// <param name="warnings">Receives what the user must know.</param>
     /// <exception cref="InputException">A file is wrong, or sensors and head do not fit.</exception>
-    public static SensorAssembly Build(StudyReading reading, InputDigests inputs, RunSettings settings, List<string> warnings)
+    public static SensorAssembly Build(StudyReading reading, InputDigests inputs, Purpose purpose, RunSettings settings, List<string> warnings)
     {
         try
         {
             return reading.Study.Head switch
             {
                 SphereHeadChoice choice => new OnSphere(reading.Study, choice, inputs, warnings),
-                VoxelHeadChoice choice => new OnVoxels(reading, choice, VoxelHeadAssembly.Build(reading, choice, inputs, settings, warnings), settings.VoxelParts, inputs, warnings),
+                VoxelHeadChoice choice => new OnVoxels(reading, choice, VoxelHeadAssembly.Build(reading, choice, inputs, settings, warnings), settings.VoxelParts, inputs, purpose, warnings),
                 ImportedHeadChoice choice => new FromImport(reading.Study, choice, inputs, warnings),
                 _ => throw new InvalidOperationException($"no sensors for {reading.Study.Head.GetType().Name}"),
             };

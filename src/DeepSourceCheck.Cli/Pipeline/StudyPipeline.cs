@@ -29,19 +29,25 @@ internal static class StudyPipeline
         var variants = new List<PreparedVariant>();
         foreach (VariantReading variant in purpose == Purpose.Assess ? reading.Variants : [])
         {
-            try
-            {
-                // Checked now, solved for when its turn comes: the rows of several heads of voxels would not fit side by side.
-                PreparedStudy check = Prepare(variant.Reading, library, purpose, settings with { CheckOnly = true, Progress = null });
-                variants.Add(new PreparedVariant(variant.Name, check, settings => Prepare(variant.Reading, library, purpose, settings)));
-            }
-            catch (InputException error)
-            {
-                throw new InputException([.. error.Problems.Select(p => p with { Message = variant.Reading.Attributed(p.Message) })]);
-            }
+            // Checked now, solved for when its turn comes: the rows of several heads of voxels would not fit side by side.
+            PreparedStudy Own(RunSettings own) => Named(variant, () => Prepare(variant.Reading, library, purpose, own));
+            variants.Add(new PreparedVariant(variant.Name, Own(settings with { CheckOnly = true, Progress = null }), Own));
         }
 
         return study.With(variants);
+    }
+
+    // What is wrong with a variant says whose it is, whenever it shows.
+    private static PreparedStudy Named(VariantReading variant, Func<PreparedStudy> prepare)
+    {
+        try
+        {
+            return prepare();
+        }
+        catch (InputException error)
+        {
+            throw new InputException([.. error.Problems.Select(p => p with { Message = variant.Reading.Attributed(p.Message) })]);
+        }
     }
 
     private static PreparedStudy Prepare(StudyReading reading, RegionLibrary library, Purpose purpose, RunSettings settings)
@@ -50,7 +56,7 @@ internal static class StudyPipeline
         var warnings = new List<string>(reading.Warnings);
         settings.Cancellation.ThrowIfCancellationRequested();
 
-        SensorAssembly sensors = SensorAssembly.Build(reading, inputs, settings, warnings);
+        SensorAssembly sensors = SensorAssembly.Build(reading, inputs, purpose, settings, warnings);
         settings.Cancellation.ThrowIfCancellationRequested();
         var regions = new RegionAssembly(reading, library, sensors, inputs, purpose, settings);
         warnings.AddRange(regions.Warnings);

@@ -111,6 +111,12 @@ public static class ElectrodePlacement
             warnings.Add($"{(file is null ? "" : file + ": ")}{string.Join(", ", cut)}: the nearest scalp is where the volume cuts the neck; use a volume that reaches lower, or leave these electrodes out");
         }
 
+        // Contacts in the brain are no part of the average that a cap is referenced to.
+        if (electrodes.Any(e => e is { IsInterior: false }))
+        {
+            electrodes = [.. electrodes.Select(e => e is { IsInterior: true } ? e with { InAverage = false } : e)];
+        }
+
         if (problems.Count == 0)
         {
             Describe([.. electrodes.Where(e => e.IsInterior)], scalp, warnings, problems, file);

@@ -13,6 +13,9 @@ public static class LandmarkPlacement
     /// <summary>Key of the study that gives landmarks.</summary>
     internal const string Key = "head.voxels.landmarks_mm";
 
+    /// <summary>A given landmark that is moved farther is told of [m].</summary>
+    public const double TellMove = 0.005;
+
     /// <summary>Sets given landmarks on the scalp and finds the others.</summary>
     /// <param name="scalp">Scalp.</param>
     /// <param name="given">Places [m] by name: none, some or all of Nz, Iz, LPA and RPA.</param>
@@ -52,9 +55,12 @@ public static class LandmarkPlacement
             throw new InputException(problems);
         }
 
+        // Each as far from the scalp as no reading of a point on skin should be.
+        string[] moved = [.. placed.Values.Where(l => l.MovedBy > TellMove).Select(l => string.Create(CultureInfo.InvariantCulture,
+            $"{Key}.{l.Name} lies {Si.ToMm(l.MovedBy):0.0} mm from the scalp and was moved onto it: check the frame of the landmarks"))];
         if (placed.Count == HeadLandmarks.Names.Count)
         {
-            return new(placed["Nz"], placed["Iz"], placed["LPA"], placed["RPA"], []);
+            return new(placed["Nz"], placed["Iz"], placed["LPA"], placed["RPA"], moved);
         }
 
         HeadLandmarks found = LandmarkFinder.Find(scalp, placed.GetValueOrDefault("Nz")?.Position, placed.GetValueOrDefault("Iz")?.Position);
@@ -62,6 +68,6 @@ public static class LandmarkPlacement
         Landmark[] all = [.. found.All.Select(Of)];
         string stated = string.Join(", ", all.Where(l => !l.Given).Select(l => string.Create(CultureInfo.InvariantCulture,
             $"{l.Name} ({Si.ToMm(l.Position.X):0}, {Si.ToMm(l.Position.Y):0}, {Si.ToMm(l.Position.Z):0}) mm, to about {Si.ToMm(l.Uncertainty):0} mm")));
-        return new(all[0], all[1], all[2], all[3], [.. found.Warnings, $"landmarks found by the head's shape, with x to the right, y to the front and z up: {stated}; give {Key} where they are known"]);
+        return new(all[0], all[1], all[2], all[3], [.. moved, .. found.Warnings, $"landmarks found by the head's shape, with x to the right, y to the front and z up: {stated}; give {Key} where they are known"]);
     }
 }
