@@ -1,11 +1,9 @@
 using System.Globalization;
 
-using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Leadfields.Voxels;
 using DeepSourceCheck.Core.Numerics.Multigrid;
-using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Files.Leadfields;
 

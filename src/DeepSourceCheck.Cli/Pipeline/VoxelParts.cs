@@ -1,5 +1,4 @@
 using DeepSourceCheck.Core.Geometry;
-using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
