@@ -13,13 +13,18 @@ internal sealed class AssessedStudy
 
     /// <summary>Runs a study that must succeed.</summary>
     /// <param name="study">File, or null for the embedded default study.</param>
-    public static AssessedStudy Run(string? study)
+    public static AssessedStudy Run(string? study) => Run(study, []);
+
+    /// <summary>Runs a study that must succeed.</summary>
+    /// <param name="study">File, or null for the embedded default study.</param>
+    /// <param name="more">Further arguments.</param>
+    public static AssessedStudy Run(string? study, params string[] more)
     {
         string folder = Directory.CreateTempSubdirectory("dsc-example-").FullName;
         try
         {
             string result = Path.Combine(folder, "out");
-            string[] arguments = ["assess", .. study is null ? Array.Empty<string>() : [study], "--out", result, "--without", "dipoles,figures,report"];
+            string[] arguments = ["assess", .. study is null ? Array.Empty<string>() : [study], "--out", result, "--without", "dipoles,figures,report", .. more];
             (int status, _, string error) = Execute(arguments);
             Assert.True(status == ExitStatus.Done, $"status {status}: {error}");
             using JsonDocument document = JsonDocument.Parse(File.ReadAllText(Path.Combine(result, "assessment.json")));
@@ -41,6 +46,9 @@ internal sealed class AssessedStudy
         Assert.True(status == ExitStatus.InputWrong, $"status {status}: {standardOutput}{error}");
         return error;
     });
+
+    /// <summary>The whole file.</summary>
+    public JsonElement Root => _root;
 
     /// <summary>One of its variants.</summary>
     public AssessedStudy Variant(string name) => new(_root.GetProperty("variants").EnumerateArray().Single(v => v.GetProperty("name").GetString() == name));

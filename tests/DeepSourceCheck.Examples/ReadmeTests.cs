@@ -48,12 +48,20 @@ public sealed partial class ReadmeTests : IDisposable
     [Fact]
     public void NewCommand_WritesTheStudyThatReadmeNames()
     {
-        string command = Commands().Single(c => c.Contains("-- new ", StringComparison.Ordinal));
-        (int status, _, string error) = Program(RunCommand().Match(command).Groups[2].Value);
-        Assert.True(status == ExitStatus.Done, error);
+        string[] commands = [.. Commands().Where(c => c.Contains("-- new ", StringComparison.Ordinal))];
         string named = Regex.Match(Readme, @"writes `([^`]+\.yaml)`").Groups[1].Value;
-        Assert.True(File.Exists(Path.Combine(_folder, named)), named);
-        Assert.Equal(ExitStatus.Done, Program("check " + named).Status);
+        Assert.StartsWith(RunCommand().Match(commands[0]).Groups[2].Value["new ".Length..], named, StringComparison.Ordinal);
+
+        // The studies that the commands after them check or assess: the first example and that on the invented head.
+        string[] used = [.. Commands().SelectMany(c => Regex.Matches(c, @"\S+\.yaml").Select(m => m.Value)).Distinct()];
+        Assert.Equal(commands.Length, used.Length);
+        foreach ((string command, string study) in commands.Zip(used))
+        {
+            (int status, _, string error) = Program(RunCommand().Match(command).Groups[2].Value);
+            Assert.True(status == ExitStatus.Done, error);
+            Assert.True(File.Exists(Path.Combine(_folder, study)), study);
+            Assert.Equal(ExitStatus.Done, Program("check " + study).Status);
+        }
     }
 
     [Fact]

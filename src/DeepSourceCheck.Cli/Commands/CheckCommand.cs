@@ -87,6 +87,11 @@ internal static class CheckCommand
         Row("study", study.File);
         Row("head", HeadName(prepared));
         Row("channels", string.Create(CultureInfo.InvariantCulture, $"{prepared.Electrodes:#,0} electrodes, {prepared.MegChannels:#,0} MEG channels"));
+        if (prepared.Setup.ArrayPlace is { } place)
+        {
+            Row("MEG array", place);
+        }
+
         Row("dipoles", string.Create(CultureInfo.InvariantCulture, $"{prepared.Dipoles:#,0} in {prepared.Regions.Count} region{(prepared.Regions.Count == 1 ? "" : "s")}"));
         int width = prepared.Regions.Select(r => r.Region.Length).DefaultIfEmpty().Max();
         foreach ((string region, long dipoles, double? spacing) in prepared.Regions)
@@ -124,6 +129,7 @@ internal static class CheckCommand
         json.WriteString("head", HeadName(prepared));
         json.WriteNumber("electrodes", prepared.Electrodes);
         json.WriteNumber("meg_channels", prepared.MegChannels);
+        json.WriteString("meg_array", prepared.Setup.ArrayPlace);
         json.WriteNumber("dipoles", prepared.Dipoles);
         json.WriteStartArray("regions");
         foreach ((string region, long dipoles, double? spacing) in prepared.Regions)

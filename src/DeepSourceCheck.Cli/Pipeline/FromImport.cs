@@ -2,6 +2,7 @@ using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Leadfields.Imported;
+using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
@@ -46,5 +47,8 @@ internal sealed class FromImport : SensorAssembly
     public override TableSensors? Tables() => null;
 
     /// <inheritdoc/>
-    protected override Scene Scene() => new();
+    protected override IReadOnlyList<string> Limits { get; } = ["The leadfields were imported: nothing is known here of the head, its tissues or their errors."];
+
+    /// <inheritdoc/>
+    protected override Scene Scene(IReadOnlyList<FilledRegion> regions) => new();
 }

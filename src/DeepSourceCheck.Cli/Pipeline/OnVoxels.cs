@@ -2,6 +2,7 @@ using System.Globalization;
 
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
@@ -113,7 +114,24 @@ internal sealed class OnVoxels : SensorAssembly
     public override TableSensors Tables() => _tables ?? throw new InvalidOperationException("The tables' leadfields were asked for before the study's were computed.");
 
     /// <inheritdoc/>
-    protected override Scene Scene() => new() { Electrodes = [.. Electrodes.Select(e => (e.Name, e.Position))] };
+    protected override IReadOnlyList<string> Limits => [.. VoxelLimits.Of(_built.Head.Volume, _choice), .. ArrayPlace is { } place ? [place + "."] : Array.Empty<string>()];
+
+    /// <inheritdoc/>
+    protected override string? ArrayPlace => Generated is { } array ? _sensors.Describe(array) : null;
+
+    /// <inheritdoc/>
+    protected override Scene Scene(IReadOnlyList<FilledRegion> regions)
+    {
+        // Cut where most of what is asked about lies: each region's centre counts once.
+        Vec3 cut = regions.Count == 0 ? _sensors.Centre : regions.Aggregate(Vec3.Zero, (sum, r) => sum + r.Centroid) / regions.Count;
+        return new()
+        {
+            Centre = _sensors.Centre,
+            Outlines = IsComputed ? HeadSections.Of(_built.AsInFile, cut) : [],
+            Cut = cut,
+            Electrodes = [.. Electrodes.Select(e => (e.Name, e.Position))],
+        };
+    }
 
     private IReadOnlyList<Electrode> Place(Study study, InputDigests inputs, List<string> warnings)
     {
@@ -152,6 +170,8 @@ internal sealed class OnVoxels : SensorAssembly
         public int EegRows => electrodes;
 
         public int MegRows => channels;
+
+        public LeadfieldMethod Method => throw new InvalidOperationException("A leadfield was asked for before it was computed.");
 
         public void Fill(LeadfieldBlock block) => throw new InvalidOperationException("A leadfield was asked for before it was computed.");
     }

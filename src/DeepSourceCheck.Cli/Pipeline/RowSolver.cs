@@ -39,7 +39,7 @@ internal sealed class RowSolver : IVoxelSolver
         string key = RowKey.Of(_mesh, _tensors, problem.Electrodes, problem.Channels, kept, SolveSettings.Default.ToString());
         var cache = new RowCache(settings.CacheFolder ?? RowCache.DefaultFolder());
         settings.Progress?.Invoke($"{problem.What}: looking for rows", 0);
-        if (!cache.TryRead(key, rows, out _, out string? trouble))
+        if (!cache.TryRead(key, rows, out RowFigures figures, out string? trouble))
         {
             Note(warnings, trouble);
             SolveReport report = Solver(problem, settings).Solve(
@@ -47,10 +47,11 @@ internal sealed class RowSolver : IVoxelSolver
                 rows.Take, Threads,
                 settings.Progress is { } told ? share => told(problem.What, share) : null, settings.Cancellation);
             settings.Cancellation.ThrowIfCancellationRequested();
-            Note(warnings, cache.TryWrite(key, rows, new(report.MostIterations, report.WorstResidual)));
+            figures = new(report.MostIterations, report.WorstResidual);
+            Note(warnings, cache.TryWrite(key, rows, figures));
         }
 
-        return new VoxelLeadfield(rows, _load, problem.Channels);
+        return new VoxelLeadfield(rows, _load, problem.Channels, figures);
     }
 
     private static int Threads => Environment.ProcessorCount;

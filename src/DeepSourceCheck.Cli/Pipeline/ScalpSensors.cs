@@ -17,6 +17,7 @@ internal sealed class ScalpSensors : IVoxelSensors
     private readonly ScalpSurface _scalp;
     private readonly Lazy<ScalpSites> _sites;
     private readonly List<string> _warnings = [];
+    private readonly Dictionary<CoilArrayChoice, HeadArray> _arrays = [];
 
     /// <param name="built">The head.</param>
     /// <param name="landmarks">Landmarks that the study gives [m], by name.</param>
@@ -39,6 +40,9 @@ internal sealed class ScalpSensors : IVoxelSensors
 
     /// <inheritdoc/>
     public IReadOnlyList<string> Warnings => [.. _warnings.Distinct()];
+
+    /// <inheritdoc/>
+    public Vec3 Centre => _built.Head.Sphere.Sphere.Centre;
 
     /// <inheritdoc/>
     public IReadOnlyList<Vec3> Sites(IReadOnlyList<string> names) =>
@@ -66,5 +70,13 @@ internal sealed class ScalpSensors : IVoxelSensors
     /// <inheritdoc/>
     public void CheckCoils(IReadOnlyList<MegChannel> channels, string file) => CoilPlacement.CheckOutside(_scalp, channels, file);
 
-    private HeadArray Placed(CoilArrayChoice choice) => HeadArray.Generate(choice, _scalp, _built.Head.Sphere);
+    private HeadArray Placed(CoilArrayChoice choice)
+    {
+        if (!_arrays.TryGetValue(choice, out HeadArray? array))
+        {
+            _arrays.Add(choice, array = HeadArray.Generate(choice, _scalp, _built.Head.Sphere));
+        }
+
+        return array;
+    }
 }

@@ -144,15 +144,24 @@ internal abstract class SensorAssembly
         Regions = regions,
         FieldCaptured = FieldCaptured,
         CentreSensitivity = CentreSensitivity,
-        Scene = Scene() with
+        Limits = Limits,
+        ArrayPlace = ArrayPlace,
+        Scene = Scene(regions) with
         {
             CoilSites = MegReported ? [.. Channels.Select(c => c.Site).Distinct()] : [],
-            Regions = [.. regions.Select(r => (r.Name, Picked(r.Positions)))],
+            Regions = [.. regions.Select(r => Place(r.Name, Picked(r.Positions)))],
         },
     };
 
+    /// <summary>What the head's model leaves out, sentence by sentence.</summary>
+    protected abstract IReadOnlyList<string> Limits { get; }
+
+    /// <summary>One sentence on where a generated array lies; null where the study states all there is to know.</summary>
+    protected virtual string? ArrayPlace => null;
+
     /// <summary>Head and electrodes for figures.</summary>
-    protected abstract Scene Scene();
+    /// <param name="regions">The filled regions.</param>
+    protected abstract Scene Scene(IReadOnlyList<FilledRegion> regions);
 
     /// <summary>Share of the largest field around the head that a generated array captures of a region; null where not known.</summary>
     protected virtual double? FieldCaptured(FilledRegion region) => null;
@@ -182,6 +191,13 @@ internal abstract class SensorAssembly
             .. Core.Sensors.ReferenceWeights.Joined(study.Eeg!.Reference, names),
         ];
         return joined.Distinct();
+    }
+
+    // The middle one of the dipoles' depths: the centre of a region that is spread out, such as cortex, is none of its places.
+    private SceneRegion Place(string name, Vec3[] points)
+    {
+        double[] depths = [.. points.Select(Head.Depth).OfType<double>().Order()];
+        return new(name, points, depths.Length > 0 ? depths[depths.Length / 2] : null);
     }
 
     private static Vec3[] Picked(Vec3[] positions)

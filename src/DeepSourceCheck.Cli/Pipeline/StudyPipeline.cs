@@ -103,6 +103,8 @@ internal static class StudyPipeline
             Warnings = [.. amplitudes.Concat(prepared.Warnings).Concat(responses.SelectMany(r => r.Regions).SelectMany(r => r.Warnings)).Distinct()],
             Responses = responses,
             SessionTrials = SessionPlan.Trials(prepared.Study.Protocol),
+            Leadfields = prepared.Setup.Source.Method,
+            Limits = prepared.Setup.Limits,
             Scene = prepared.Setup.Scene,
         };
     }

@@ -23,6 +23,9 @@ internal interface IVoxelSensors
     /// <summary>A generated array about the head, at the stated gap from the scalp.</summary>
     IReadOnlyList<MegChannel> Array(CoilArrayChoice choice);
 
+    /// <summary>The point that directions and elevations are seen from [m].</summary>
+    Vec3 Centre { get; }
+
     /// <summary>One sentence on where a generated array lies.</summary>
     string Describe(CoilArrayChoice choice);
 

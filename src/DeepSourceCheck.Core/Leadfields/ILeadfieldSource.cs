@@ -10,6 +10,9 @@ public interface ILeadfieldSource
     /// <summary>Number of MEG channels; 0 without MEG.</summary>
     int MegRows { get; }
 
+    /// <summary>How its values come about.</summary>
+    LeadfieldMethod Method { get; }
+
     /// <summary>Overwrites the block's EEG and MEG values at its loaded positions.</summary>
     void Fill(LeadfieldBlock block);
 }

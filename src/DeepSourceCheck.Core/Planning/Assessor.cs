@@ -147,7 +147,7 @@ public static class Assessor
         if (split?.AngleToRadialDeg.P50 is { } angle && angle > LeastVisibleDeg)
         {
             yield return string.Create(CultureInfo.InvariantCulture,
-                $"{name}: the direction that the array sees least stands {angle:0} degrees from the radius; read quasi-radial as least visible (partial coverage or a source near the centre)");
+                $"{name}: the direction that the array sees least stands {angle:0} degrees from the outward direction; read quasi-radial as least visible (partial coverage, a source near the centre, or one that lies nearer to the base of a real skull than to its vault)");
         }
     }
 

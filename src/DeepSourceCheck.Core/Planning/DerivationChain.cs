@@ -2,6 +2,7 @@ using System.Globalization;
 
 using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Sensors;
@@ -11,7 +12,7 @@ using DeepSourceCheck.Core.Units;
 namespace DeepSourceCheck.Core.Planning;
 
 /// <summary>The lines from moment to minutes for one verdict, from the values that the run used. Recomputing them gives N exactly.</summary>
-internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise)
+internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, LeadfieldMethod method)
 {
     private readonly List<DerivedNumber> _lines = [];
 
@@ -95,7 +96,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise)
         bool planar = !eeg && plan.Space.MegKinds[witness.MegChannel] == CoilKind.PlanarGradiometer;
         (string unit, double perSi) = eeg ? ("uV", 1e6) : planar ? ("fT/cm", 1e13) : ("fT", 1e15);
         Vec3 row = (eeg ? witness.EegRow : witness.MegRow) * (sd * perSi * 1e-9);
-        string field = eeg ? "EEG leadfield, layered sphere or imported" : "MEG leadfield, Sarvas 1987 or imported";
+        string field = eeg ? method.Eeg : method.Meg;
         string perMoment = unit + "/nAm";
         Add("gx" + suffix, $"leadfield at {channel} for a dipole along x", row.X, perMoment, "", field, Grade.Derived);
         Add("gy" + suffix, "along y", row.Y, perMoment, "", field, Grade.Derived);

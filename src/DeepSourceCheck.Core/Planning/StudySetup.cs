@@ -53,6 +53,12 @@ public sealed record StudySetup
     /// <summary>What becomes of a region's MEG when the sphere's centre moves, for the noise standard deviation of each channel; null where that is not asked.</summary>
     public Func<FilledRegion, IReadOnlyList<double>, CentreSensitivity?> CentreSensitivity { get; init; } = (_, _) => null;
 
+    /// <summary>What the head's model leaves out, sentence by sentence, with the figures of this head and its sensors.</summary>
+    public IReadOnlyList<string> Limits { get; init; } = [];
+
+    /// <summary>One sentence on where a generated array lies about a real head; null for others.</summary>
+    public string? ArrayPlace { get; init; }
+
     /// <summary>Geometry for figures.</summary>
     public Scene Scene { get; init; } = new();
 

@@ -18,6 +18,7 @@ public sealed class SummedSource : ILeadfieldSource
     {
         EegRows = source.EegRows;
         MegRows = source.MegRows;
+        Method = source.Method;
         _eeg = new double[EegRows * 3];
         _meg = new double[MegRows * 3];
         var block = new LeadfieldBlock(EegRows, MegRows);
@@ -49,6 +50,9 @@ public sealed class SummedSource : ILeadfieldSource
 
     /// <inheritdoc/>
     public int MegRows { get; }
+
+    /// <inheritdoc/>
+    public LeadfieldMethod Method { get; }
 
     /// <summary>The one source, at the mean of the regions' centroids.</summary>
     public FilledRegion Region { get; }

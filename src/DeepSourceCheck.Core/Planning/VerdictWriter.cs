@@ -34,7 +34,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         for (int k = 0; k < asked.Count; k++)
         {
             (IMeasure measure, int rule) = asked[k];
-            IReadOnlyList<DerivedNumber> chain = witnesses[k] is { } found ? new DerivationChain(plan, setup.Noise!).Of(found, found.Read, plan.Rules[rule]) : [];
+            IReadOnlyList<DerivedNumber> chain = witnesses[k] is { } found ? new DerivationChain(plan, setup.Noise!, source.Method).Of(found, found.Read, plan.Rules[rule]) : [];
             rows = Reconcile(rows, measure.Modality, direction, measure.Name, rule, witnesses[k]);
             MeasureResult row = rows.First(x => x.Modality == measure.Modality && x.Direction == direction && x.Measure == measure.Name);
             verdicts.Add(Verdict(row, rule, witnesses[k], chain));

@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Results;
@@ -33,6 +34,12 @@ public sealed record Assessment
 
     /// <summary>Variants of the study, in its order.</summary>
     public IReadOnlyList<VariantResult> Variants { get; init; } = [];
+
+    /// <summary>How the leadfields came about.</summary>
+    public LeadfieldMethod? Leadfields { get; init; }
+
+    /// <summary>What the head's model leaves out, sentence by sentence, with the figures of this head and its sensors.</summary>
+    public IReadOnlyList<string> Limits { get; init; } = [];
 
     /// <summary>Geometry.</summary>
     public required Scene Scene { get; init; }

@@ -24,6 +24,11 @@ public static class WhyText
         text.Append(Wrap($"{Say.Plural(region.Dipoles, "dipole")}. Below stands every number from the moment to the minutes as the run used it, for the dipole whose count is the median "
             + "(so that EEG and MEG may show different dipoles): symbol = value unit, what it is; then, after a further =, its formula in the symbols of earlier lines "
             + "(a space multiplies; ceil rounds up); in square brackets where it comes from. Recomputing the lines gives N exactly.", 0));
+        if (assessment.Leadfields?.Details is { } details)
+        {
+            text.Append(Wrap($"Leadfields: {details}.", 0));
+        }
+
         foreach (VerdictResult verdict in region.Verdicts)
         {
             ModalityAnswer answer = new(region, verdict);

@@ -154,6 +154,29 @@ public sealed class FigurePen
         _canvas.DrawPath(path, paint);
     }
 
+    /// <summary>Closed lines as one shape, holes left open.</summary>
+    /// <param name="lines">Corners of each line [px].</param>
+    /// <param name="fill">What lies within, or null.</param>
+    /// <param name="stroke">The lines.</param>
+    /// <param name="width">Their width [px].</param>
+    public void Outline(IEnumerable<IEnumerable<SKPoint>> lines, SKColor? fill, SKColor stroke, float width)
+    {
+        using SKPath path = new() { FillType = SKPathFillType.EvenOdd };
+        foreach (IEnumerable<SKPoint> line in lines)
+        {
+            path.AddPoly([.. line.Select(p => new SKPoint(MathF.Round(p.X, 1), MathF.Round(p.Y, 1)))], close: true);
+        }
+
+        if (fill is { } inside)
+        {
+            using SKPaint paint = Fill(inside);
+            _canvas.DrawPath(path, paint);
+        }
+
+        using SKPaint edge = Stroke(stroke, width);
+        _canvas.DrawPath(path, edge);
+    }
+
     /// <summary>A curve in its modality's line: EEG full, MEG dashed 9 4, both dash-dot 2 3 9 3.</summary>
     public void Curve(IReadOnlyList<SKPoint> points, Modality modality)
     {

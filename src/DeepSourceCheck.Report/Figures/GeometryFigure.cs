@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Geometry;
+using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Report.Answers;
@@ -7,7 +8,7 @@ using SkiaSharp;
 
 namespace DeepSourceCheck.Report.Figures;
 
-/// <summary>Where regions, sensors and head lie: outlines of the layers from the front, the side and above.</summary>
+/// <summary>Where regions, sensors and head lie: outlines of the head from the front, the side and above.</summary>
 public static class GeometryFigure
 {
     private const int MostLabels = 12;
@@ -18,9 +19,9 @@ public static class GeometryFigure
     private static readonly View[] Views =
     [
         // Each as its viewer sees it; words at the left, right, upper and lower edge.
-        new("from the front", v => -v.X, v => v.Z, v => v.Y, "right", "left"),
-        new("from the left", v => -v.Y, v => v.Z, v => -v.X, "front", "back"),
-        new("from above", v => v.X, v => v.Y, v => v.Z, "left", "right"),
+        new("from the front", 1, v => -v.X, v => v.Z, v => v.Y, "right", "left"),
+        new("from the left", 0, v => -v.Y, v => v.Z, v => -v.X, "front", "back"),
+        new("from above", 2, v => v.X, v => v.Y, v => v.Z, "left", "right"),
     ];
 
     /// <summary>The figure of the study's scene; null where nothing is placed.</summary>
@@ -32,31 +33,43 @@ public static class GeometryFigure
             return null;
         }
 
-        Placed[] regions = [.. scene.Regions.Where(r => r.Points.Count > 0).Select(r => Place(r.Name, r.Points, scene))];
+        Placed[] regions = [.. scene.Regions.Where(r => r.Points.Count > 0).Select(r => Place(r, scene))];
         string title = Title(regions);
         string sensors = string.Join(" and ", new[]
         {
             scene.Electrodes.Count > 0 ? Say.Plural(scene.Electrodes.Count, "electrode") + " (rings)" : "",
             scene.CoilSites.Count > 0 ? Say.Plural(scene.CoilSites.Count, "coil site") + " (diamonds)" : "",
         }.Where(s => s.Length > 0));
-        string layers = scene.Layers.Count > 0
-            ? $"Circles: {string.Join(", ", scene.Layers.Select(l => $"{l.Tissue} {Say.Stated(Math.Round(Si.ToMm(l.Radius), 1))} mm"))} (outer radii); a real head departs from them by the misfit stated under Limits."
-            : "The head's surfaces are not known: its leadfields were imported.";
         return new Figure(
             name, title,
             "Place of regions, sensors and head, in mm",
-            $"Projections on three planes, one scale; dots: the regions' dipoles{(sensors.Length > 0 ? $"; {sensors}" : "")}; sensors on the far half are paler. {layers}",
+            $"Projections on three planes, one scale; dots: the regions' dipoles{(sensors.Length > 0 ? $"; {sensors}" : "")}; sensors on the far half are paler. {Surfaces(scene)}",
             $"{title}. {string.Join(" ", regions.Take(3).Select(r => $"{r.Name}: {(r.Depth is { } d ? $"{Say.Two(Si.ToMm(d))} mm below the scalp" : "centre at " + Mm(r.Centroid))}."))}",
             Table(regions), FullWidth: true,
             width => Draw(width, scene, regions));
     }
 
-    private static Placed Place(string name, IReadOnlyList<Vec3> points, Scene scene)
+    private static string Surfaces(Scene scene)
     {
+        if (scene.Outlines.Count > 0)
+        {
+            string[] names = [.. scene.Outlines.Select(o => o.Surface).Distinct().Select(n => n == "bone" ? "bone (shaded)" : n)];
+            return $"Outlines: {string.Join(", ", names)} where planes through {Mm(scene.Cut)} mm cut the label volume; the brain's is smoothed, its folds left out. Sensors and regions off the plane are seen through it.";
+        }
+
+        return scene.Layers.Count > 0
+            ? $"Circles: {string.Join(", ", scene.Layers.Select(l => $"{l.Tissue} {Say.Stated(Math.Round(Si.ToMm(l.Radius), 1))} mm"))} (outer radii); a real head departs from them by the misfit stated under Limits."
+            : "The head's surfaces are not known: its leadfields were imported.";
+    }
+
+    private static Placed Place(SceneRegion region, Scene scene)
+    {
+        (string name, IReadOnlyList<Vec3> points, double? depth) = region;
         Vec3 sum = points.Aggregate(Vec3.Zero, (a, b) => a + b);
         Vec3 centroid = sum / points.Count;
-        double? depth = scene.Centre is { } c && scene.Layers.Count > 0 ? scene.Layers[^1].Radius - (centroid - c).Norm : null;
-        double? coil = scene.CoilSites.Count > 0 ? scene.CoilSites.Min(s => (s - centroid).Norm) : null;
+        int step = Math.Max(1, points.Count / MostDots);
+        double[] coils = scene.CoilSites.Count == 0 ? [] : [.. points.Where((_, k) => k % step == 0).Select(p => scene.CoilSites.Min(s => (s - p).Norm)).Order()];
+        double? coil = coils.Length > 0 ? coils[coils.Length / 2] : null;
         return new(name, points, centroid, depth, coil);
     }
 
@@ -84,7 +97,7 @@ public static class GeometryFigure
     private static string Mm(Vec3 v) => Say.Vector(Math.Round(Si.ToMm(v.X), 1), Math.Round(Si.ToMm(v.Y), 1), Math.Round(Si.ToMm(v.Z), 1));
 
     private static FigureTable Table(Placed[] regions) => new(
-        ["region", "centre of its dipoles, mm", "below the scalp, mm", "nearest coil, mm"],
+        ["region", "centre of its dipoles, mm", "below the scalp, mm (median)", "nearest coil, mm (median)"],
         [.. regions.Select(r => (IReadOnlyList<string>)
         [
             r.Name, Mm(r.Centroid), r.Depth is { } d ? Say.Stated(Math.Round(Si.ToMm(d), 1)) : "not known", r.Coil is { } c ? Say.Stated(Math.Round(Si.ToMm(c), 1)) : "",
@@ -130,6 +143,12 @@ public static class GeometryFigure
         float X(Vec3 p) => cx + (float)(view.Right(p - centre) * scale);
         float Y(Vec3 p) => cy - (float)(view.Up(p - centre) * scale);
         pen.Text(view.Name, nameX, nameY, FigurePen.Label, semiBold: true);
+        foreach (HeadOutline outline in scene.Outlines.Where(o => o.Axis == view.Axis))
+        {
+            bool scalp = outline.Surface == "scalp";
+            pen.Outline(outline.Lines.Select(line => line.Select(p => new SKPoint(X(p), Y(p)))), outline.Surface == "bone" ? Palette.Beyond : null, scalp ? Palette.Ink2 : Palette.Edge, scalp ? 1.6f : 0.8f);
+        }
+
         foreach ((string tissue, double radius) in scene.Layers)
         {
             pen.Ring(cx, cy, (float)(radius * scale), tissue == scene.Layers[^1].Tissue ? Palette.Ink2 : Palette.Edge, tissue == scene.Layers[^1].Tissue ? 1.6f : 0.8f);
@@ -191,7 +210,7 @@ public static class GeometryFigure
     }
 
     private static double Lowest(Scene scene, View view, Vec3 centre) =>
-        All(scene).Select(p => -view.Up(p - centre)).Concat(scene.Layers.Select(l => l.Radius)).Max();
+        All(scene).Concat(Corners(scene)).Select(p => -view.Up(p - centre)).Concat(scene.Layers.Select(l => l.Radius)).Max();
 
     private static int KeyColumns(int width) => width < 800 ? 1 : 3;
 
@@ -231,19 +250,21 @@ public static class GeometryFigure
 
     private static Vec3 Middle(Scene scene)
     {
-        Vec3[] all = [.. All(scene)];
+        Vec3[] all = [.. All(scene).Concat(Corners(scene))];
         return new(
             (all.Min(p => p.X) + all.Max(p => p.X)) / 2, (all.Min(p => p.Y) + all.Max(p => p.Y)) / 2, (all.Min(p => p.Z) + all.Max(p => p.Z)) / 2);
     }
 
-    private static double Reach(Scene scene, Vec3 centre) => All(scene).Select(p => p - centre)
+    private static double Reach(Scene scene, Vec3 centre) => All(scene).Concat(Corners(scene)).Select(p => p - centre)
         .Select(p => Math.Max(Math.Max(Math.Abs(p.X), Math.Abs(p.Y)), Math.Abs(p.Z)))
         .Concat(scene.Layers.Select(l => l.Radius)).Append(0.03).Max() * 1.04;
 
     private static IEnumerable<Vec3> All(Scene scene) =>
         scene.Electrodes.Select(e => e.Position).Concat(scene.CoilSites).Concat(scene.Regions.SelectMany(r => r.Points));
 
-    private sealed record View(string Name, Func<Vec3, double> Right, Func<Vec3, double> Up, Func<Vec3, double> Toward, string LeftWord, string RightWord);
+    private static IEnumerable<Vec3> Corners(Scene scene) => scene.Outlines.SelectMany(o => o.Lines).SelectMany(line => line);
+
+    private sealed record View(string Name, int Axis, Func<Vec3, double> Right, Func<Vec3, double> Up, Func<Vec3, double> Toward, string LeftWord, string RightWord);
 
     private sealed record Placed(string Name, IReadOnlyList<Vec3> Points, Vec3 Centroid, double? Depth, double? Coil);
 }

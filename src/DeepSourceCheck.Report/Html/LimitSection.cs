@@ -1,7 +1,6 @@
 using System.Globalization;
 
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Report.Answers;
 
@@ -13,21 +12,16 @@ internal static class LimitSection
     public static void Write(Markup html, Assessment assessment)
     {
         HtmlReport.Section(html, "limits", "Limits");
-        List<string> texts = [];
-        if (assessment.Study.Head is SphereHeadChoice)
+        List<string> texts = [.. assessment.Limits];
+        if (assessment.Leadfields?.Details is { } details)
         {
-            texts.Add("The head is a set of concentric spheres. A real head departs from it by some 5.5 mm (standard deviation of the inner skull above the base, sphere fitted to one head in MNI space); it is worst at the low brainstem, the cerebellum and the medial temporal lobe.");
-            texts.Add("In spheres a radial source gives no magnetic field outside at all. Real heads leak: figures at 0.06 of the strongest direction stand beside silent directions.");
-        }
-        else
-        {
-            texts.Add("The leadfields were imported: nothing is known here of the head, its tissues or their errors.");
+            texts.Insert(0, $"Leadfields: {details}.");
         }
 
         texts.Add("Ranges cover place in the region and direction only. What is not known (moment, conductivity, noise, position of head and sensors) and differences between people are not in them.");
         HtmlReport.List(html, texts);
         HtmlReport.Table(html, "Limits by region",
-            ["region", "dipoles", "refused by the head", "spacing, mm", "volume, mL", "field captured by the array", "weakest over strongest direction", "weakest direction to radius, degrees", "undefined or degenerate", "what to know"],
+            ["region", "dipoles", "refused by the head", "spacing, mm", "volume, mL", "field captured by the array", "weakest over strongest direction", "weakest direction to outward direction, degrees", "undefined or degenerate", "what to know"],
             assessment.Responses.SelectMany(r => r.Regions).DistinctBy(r => r.Region).Select(Cells),
             ["", "n", "n", "n", "n", "n", "n", "n", "n", "long"]);
         html.CloseLine();

@@ -75,7 +75,7 @@ internal static class ResultSection
         }
 
         long? count = leak.Targets.FirstOrDefault(t => t.Rule == target.Rule)?.Trials.P50;
-        return $"silent in the sphere; at the published leak of {Say.Stated(leak.Leak)}: {(leak.SnrDb.P50 is { } db ? Say.Decibels(db) + " dB" : "no SNR")}, {(count <= Say.MostTrials ? Say.Plural(count!.Value, "trial") : Say.OutOfReach)}";
+        return $"silent; at the published leak of {Say.Stated(leak.Leak)}: {(leak.SnrDb.P50 is { } db ? Say.Decibels(db) + " dB" : "no SNR")}, {(count <= Say.MostTrials ? Say.Plural(count!.Value, "trial") : Say.OutOfReach)}";
     }
 
     private static string Spread(Percentiles p, Func<double, string> write) =>

@@ -31,6 +31,16 @@ public static class AssessmentJson
             json.WriteArray("inputs", assessment.Inputs, Input);
             json.WriteArray("assumptions", assessment.Assumptions, JsonText.WriteAssumption);
             json.WriteStrings("warnings", assessment.Warnings);
+            json.WriteStrings("limits", assessment.Limits);
+            if (assessment.Leadfields is { } method)
+            {
+                json.WriteStartObject("leadfields");
+                json.WriteString("eeg", method.Eeg);
+                json.WriteString("meg", method.Meg);
+                json.WriteString("details", method.Details);
+                json.WriteEndObject();
+            }
+
             json.WriteCount("session_trials", assessment.SessionTrials);
             json.WriteArray("responses", assessment.Responses, WriteResponse);
             json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));

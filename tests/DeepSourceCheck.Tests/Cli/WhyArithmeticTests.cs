@@ -44,6 +44,50 @@ public sealed partial class WhyArithmeticTests : IDisposable
         Assert.All(chains, Recomputes);
     }
 
+    [Fact]
+    public void Why_OnAHeadOfVoxels_RecomputesEveryCount_AndNamesTheFiniteElements()
+    {
+        // A layered sphere in voxels of 8 mm: the arithmetic and the words are those of any head.
+        File.WriteAllBytes(Path.Combine(_folder, "head.nii"), SphereVolumes.Of(0.008).File());
+        string file = Path.Combine(_folder, "study.yaml");
+        File.WriteAllText(file,
+            """
+            title: voxels
+            head:
+              voxels:
+                labels: head.nii
+                tissues:
+                  - {label: 1, tissue: scalp, conductivity_S_per_m: 0.43}
+                  - {label: 2, tissue: skull, conductivity_S_per_m: 0.0132}
+                  - {label: 3, tissue: csf, conductivity_S_per_m: 1.79}
+                  - {label: 4, tissue: brain, conductivity_S_per_m: 0.33}
+                landmarks_mm: {Nz: [0, 84.7, -35.9], Iz: [0, -89.3, -22.3], LPA: [-78, 0, -48.8], RPA: [78, 0, -48.8]}
+            sensors:
+              eeg: {layout: ten-twenty-21, reference: average}
+              eeg_derivations: [Cz-mastoids]
+              meg: {coil: magnetometer, sites: 40, gap_mm: 20}
+            noise: {eeg_sensor_uV_rms: 2, meg_sensor_fT_rms: 200}
+            regions: [{name: core, spacing_mm: 6, ellipsoid: {centre_mm: [12, -20, 10], semi_axes_mm: [9, 9, 9]}}]
+            responses: [{name: r, regions: [core], moment_nAm: 10, band_Hz: [1, 40], direction: tangential}]
+            target: {amplitude_ratio: 3}
+            protocol: {rate_per_s: 4, rejected_fraction: 0.1, session_min: 40}
+            """);
+        string text = Print("why", file, "--cache", Path.Combine(_folder, "cache"));
+        IReadOnlyList<PrintedChain> chains = Chains(text);
+        Assert.Equal(3, chains.Count);
+        Assert.All(chains, Recomputes);
+        string line = text.Replace("\n          ", " ", StringComparison.Ordinal).Replace('\n', ' ');
+        Assert.Matches(@"Leadfields: finite elements on [\d,]+ voxels of 8 mm, nodes at borders of tissues moved by a third of a voxel \(Wolters et al\. 2007\); a dipole is a set of monopoles .* relative residual of at most \d\.\de-\d+ in at most \d+ iterations\.", line);
+        Assert.Contains("EEG leadfield: transfer rows of trilinear finite elements, Weinstein et al. 2000, Gencer and Acar 2004", line, StringComparison.Ordinal);
+        Assert.Contains("MEG leadfield: field of the dipole itself (Biot-Savart) and transfer rows", line, StringComparison.Ordinal);
+        Assert.DoesNotContain("Sarvas", text, StringComparison.Ordinal);
+        Assert.Equal(text, Print("why", file, "--cache", Path.Combine(_folder, "cache")));
+
+        File.WriteAllText(file, File.ReadAllText(file).Replace("    labels: head.nii\n", "    labels: head.nii\n    grid: plain\n    dipole_load: element-gradient\n", StringComparison.Ordinal));
+        line = Print("why", file, "--cache", Path.Combine(_folder, "cache")).Replace('\n', ' ');
+        Assert.Contains("nodes at the corners of the voxels; a dipole is the gradient of the shape functions of its element (partial integration: Yan et al. 1991)", line, StringComparison.Ordinal);
+    }
+
     private static void Recomputes(PrintedChain chain)
     {
         Dictionary<string, double> values = ChainArithmetic.Recompute(chain.Lines);

@@ -1,6 +1,7 @@
 using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -46,6 +47,9 @@ internal static class AssessmentFixture
 
     public static Assessment Imported() => Build(new Options { ImportedHead = true });
 
+    /// <summary>A head of voxels: outlines, limits and method as a run states them.</summary>
+    public static Assessment Voxels() => Build(new Options { VoxelHead = true });
+
     public static Assessment WithDetection() => Build(new Options { Detection = true });
 
     /// <summary>The first region is folded cortex; its last bin of depth holds too few points for a figure.</summary>
@@ -87,6 +91,8 @@ internal static class AssessmentFixture
 
         public bool ImportedHead { get; init; }
 
+        public bool VoxelHead { get; init; }
+
         public DirectionName Direction { get; init; } = DirectionName.Given;
 
         public double EegTrials { get; init; } = 303;
@@ -125,7 +131,7 @@ internal static class AssessmentFixture
             File = "default study",
             Folder = ".",
             Title = o.Title,
-            Head = o.ImportedHead ? new ImportedHeadChoice("eeg.npy", "meg.npy", "points.tsv", "rows.tsv") : new SphereHeadChoice(sphere, "adult-4", 1),
+            Head = o.VoxelHead ? new VoxelHeadChoice { Labels = "head.nii.gz", Tissues = [new(1, "scalp", TissueKind.Scalp, 0.43), new(2, "skull", TissueKind.Skull, 0.01), new(3, "brain", TissueKind.Grey, 0.33)] } : o.ImportedHead ? new ImportedHeadChoice("eeg.npy", "meg.npy", "points.tsv", "rows.tsv") : new SphereHeadChoice(sphere, "adult-4", 1),
             Eeg = o.Eeg ? new EegChoice("ten-ten-64", null, null, new(ReferenceKind.Average, [])) : null,
             Derivations = o.Eeg ? ["Cz-mastoids"] : [],
             Meg = o.Meg ? new MegChoice(null, new("axial-gradiometer", 200, 0.06, 0.03, 0.17, -0.6)) : null,
@@ -150,6 +156,8 @@ internal static class AssessmentFixture
             Warnings = ["The sphere is worst at the low brainstem: results for inferior-colliculus-left carry its misfit of 5.5 mm."],
             Responses = [new(response, [.. o.Regions.Select((name, k) => Region(o, name, k, session, protocol))])],
             SessionTrials = session,
+            Leadfields = o.VoxelHead ? new("EEG leadfield: rows", "MEG leadfield: rows", "finite elements on 400,000 voxels of 2 mm") : new("EEG leadfield: series", "MEG leadfield: closed form"),
+            Limits = o.VoxelHead ? ["The head is made of voxels, here of 2 mm.", "MEG helmet: its sites lie 30.0 to 40.0 mm from the scalp (median 35.0 mm)."] : ["The head is a set of concentric spheres."],
             Scene = Scene(o),
         };
     }
@@ -296,12 +304,26 @@ internal static class AssessmentFixture
         return new Scene
         {
             Centre = o.ImportedHead ? null : centre,
-            Layers = o.ImportedHead ? [] : [("brain", 0.078), ("csf", 0.080), ("skull", 0.086), ("scalp", 0.092)],
+            Outlines = o.VoxelHead ? [.. Enumerable.Range(0, 3).SelectMany(axis => new[] { Outline("scalp", axis, 0.092), Outline("bone", axis, 0.086, 0.080), Outline("brain", axis, 0.078) })] : [],
+            Cut = centre,
+            Layers = o.ImportedHead || o.VoxelHead ? [] : [("brain", 0.078), ("csf", 0.080), ("skull", 0.086), ("scalp", 0.092)],
             Electrodes = o.Eeg ? [.. Enumerable.Range(0, 64).Select(k => ($"E{k}", centre + 0.092 * GoldenSpiral.Point(k, 64, -0.3)))] : [],
             CoilSites = o.Meg ? [.. Enumerable.Range(0, 200).Select(k => centre + 0.122 * GoldenSpiral.Point(k, 200, -0.3))] : [],
-            Regions = [.. o.Regions.Select((name, k) => (name, Points(o, k)))],
+            Regions = [.. o.Regions.Select((name, k) => Region(name, Points(o, k), o.ImportedHead ? null : centre))],
         };
     }
+
+    private static HeadOutline Outline(string surface, int axis, params double[] radii) => new(surface, axis,
+    [
+        .. radii.Select(r => (IReadOnlyList<Vec3>)[.. Enumerable.Range(0, 60).Select(k =>
+        {
+            (double u, double v) = (r * Math.Cos(k * Math.PI / 30), r * Math.Sin(k * Math.PI / 30));
+            return new Vec3(0, -0.018, 0.005) + (axis switch { 0 => new Vec3(0, u, v), 1 => new Vec3(u, 0, v), _ => new Vec3(u, v, 0) });
+        })]),
+    ]);
+
+    private static SceneRegion Region(string name, IReadOnlyList<Vec3> points, Vec3? centre) =>
+        new(name, points, centre is { } c ? 0.092 - (points.Aggregate(Vec3.Zero, (a, b) => a + b) / points.Count - c).Norm : null);
 
     private static IReadOnlyList<Vec3> Points(Options o, int index)
     {

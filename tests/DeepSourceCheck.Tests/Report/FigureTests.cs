@@ -89,6 +89,23 @@ public class FigureTests
     }
 
     [Fact]
+    public void Geometry_OfAVoxelHead_DrawsItsOutlines_AndSpeaksOfNoCircles()
+    {
+        Figure geometry = FigureSet.All(AssessmentFixture.Voxels()).Single(f => f.Name == "geometry"), sphere = FigureSet.All(AssessmentFixture.Default()).Single(f => f.Name == "geometry");
+        Assert.Contains("Outlines: scalp, bone (shaded), brain where planes through", geometry.Conditions, StringComparison.Ordinal);
+        Assert.DoesNotContain("Circles", geometry.Conditions, StringComparison.Ordinal);
+        Assert.DoesNotContain("imported", geometry.Conditions, StringComparison.Ordinal);
+        Assert.Equal(sphere.Title, geometry.Title);
+        using FigureSheet sheet = geometry.Draw(geometry.FileWidth);
+        XNamespace svg = "http://www.w3.org/2000/svg";
+
+        // One shape a surface and view, and the shaded bone once more as an area.
+        XElement[] shapes = [.. XElement.Parse(FigureFile.Svg(geometry, sheet)).Descendants(svg + "path").Where(p => ((string?)p.Attribute("d"))?.Count(c => c is 'L' or 'l') >= 50).DistinctBy(p => ((string?)p.Attribute("fill"), (string?)p.Attribute("d")))];
+        Assert.True(shapes.Length >= 3 * 4, $"{shapes.Length}");
+        Assert.Equal(3, shapes.Count(p => ((string?)p.Attribute("fill"))?.Equals(Palette.Hex(Palette.Beyond), StringComparison.OrdinalIgnoreCase) == true));
+    }
+
+    [Fact]
     public void PowerFigure_NeverDrawsPowerForAnAmplitudeRatio()
     {
         Figure power = FigureSet.All(AssessmentFixture.Default()).Single(f => f.Name == "power");

@@ -57,6 +57,18 @@ public class HtmlReportTests
     }
 
     [Fact]
+    public void Limits_AreThoseOfTheRunsHead_WithItsMethod()
+    {
+        string voxels = HtmlReport.Text(AssessmentFixture.Voxels(), false), sphere = HtmlReport.Text(AssessmentFixture.Default(), false);
+        Assert.Contains("Leadfields: finite elements on 400,000 voxels of 2 mm.", voxels, StringComparison.Ordinal);
+        Assert.All(AssessmentFixture.Voxels().Limits, limit => Assert.Contains(limit, voxels, StringComparison.Ordinal));
+        Assert.DoesNotContain("concentric", voxels, StringComparison.Ordinal);
+        Assert.DoesNotContain("imported", voxels, StringComparison.Ordinal);
+        Assert.Contains("concentric", sphere, StringComparison.Ordinal);
+        Assert.DoesNotContain("Leadfields:", sphere, StringComparison.Ordinal);
+    }
+
+    [Fact]
     public void Page_WithoutFigureFiles_LinksToNone() =>
         Assert.DoesNotContain(Page(AssessmentFixture.Default(), files: false).Descendants(), e => ((string?)e.Attribute("href"))?.StartsWith("figures/", StringComparison.Ordinal) == true);
 

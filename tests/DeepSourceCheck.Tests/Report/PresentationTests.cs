@@ -20,6 +20,7 @@ public class PresentationTests
         ["out of reach"] = AssessmentFixture.OutOfReach,
         ["both fit"] = AssessmentFixture.BothFit,
         ["imported"] = AssessmentFixture.Imported,
+        ["voxels"] = AssessmentFixture.Voxels,
         ["detection"] = AssessmentFixture.WithDetection,
         ["two responses"] = AssessmentFixture.TwoResponses,
         ["cortex"] = AssessmentFixture.OverCortex,

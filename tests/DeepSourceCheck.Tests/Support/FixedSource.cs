@@ -9,6 +9,8 @@ internal sealed class FixedSource(double[][][] eeg, double[][][] meg) : ILeadfie
 
     public int MegRows => meg.Length == 0 ? 0 : meg[0].Length;
 
+    public LeadfieldMethod Method { get; } = new("EEG leadfield: from arrays", "MEG leadfield: from arrays");
+
     public void Fill(LeadfieldBlock block)
     {
         Copy(eeg, block.Eeg, block.SourceIndices);

@@ -60,6 +60,9 @@ public sealed class ImportedLeadfield : ILeadfieldSource
     /// <inheritdoc/>
     public int MegRows => MegChannels.Count;
 
+    /// <inheritdoc/>
+    public LeadfieldMethod Method { get; } = new("EEG leadfield: imported with the study", "MEG leadfield: imported with the study");
+
     /// <summary>Index of a point by its name, or -1.</summary>
     public int IndexOf(string pointName) => _indexByName.GetValueOrDefault(pointName, -1);
 

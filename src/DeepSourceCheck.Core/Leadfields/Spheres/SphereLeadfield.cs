@@ -38,6 +38,10 @@ public sealed class SphereLeadfield : ILeadfieldSource
     /// <inheritdoc/>
     public int MegRows => _meg?.Rows ?? 0;
 
+    /// <inheritdoc/>
+    public LeadfieldMethod Method { get; } = new(
+        "EEG leadfield: series of the layered sphere, de Munck and Peters 1993, Zhang 1995", "MEG leadfield: closed form of the sphere, Sarvas 1987");
+
     /// <summary>Refuses coil points that are not outside the outer sphere.</summary>
     /// <param name="head">Head.</param>
     /// <param name="channels">Channels.</param>

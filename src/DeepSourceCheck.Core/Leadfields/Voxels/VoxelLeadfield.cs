@@ -26,8 +26,9 @@ public sealed class VoxelLeadfield : ILeadfieldSource
     /// <param name="rows">Transfer rows of the head's nodes, complete.</param>
     /// <param name="load">Load of the dipoles, in the same mesh.</param>
     /// <param name="channels">The MEG channels of the rows.</param>
+    /// <param name="figures">How the rows were solved for; null where that is not known.</param>
     /// <exception cref="ArgumentException">The channels are not those of the rows, in number.</exception>
-    public VoxelLeadfield(TransferRows rows, DipoleLoad load, IReadOnlyList<MegChannel> channels)
+    public VoxelLeadfield(TransferRows rows, DipoleLoad load, IReadOnlyList<MegChannel> channels, RowFigures? figures = null)
     {
         if (channels.Count != rows.Channels)
         {
@@ -35,6 +36,7 @@ public sealed class VoxelLeadfield : ILeadfieldSource
         }
 
         (_rows, _load, _primary) = (rows, load, new(channels));
+        Method = VoxelMethod.Of(load, figures);
     }
 
     /// <inheritdoc/>
@@ -42,6 +44,9 @@ public sealed class VoxelLeadfield : ILeadfieldSource
 
     /// <inheritdoc/>
     public int MegRows => _rows.Channels;
+
+    /// <inheritdoc/>
+    public LeadfieldMethod Method { get; }
 
     /// <summary>What carries a dipole at a place [m]: for counting those near the border of source tissue.</summary>
     /// <exception cref="ArgumentOutOfRangeException">The place is not in source tissue.</exception>

@@ -35,7 +35,9 @@ internal sealed class StandInParts(LayeredSphere sphere) : IVoxelSensors, IVoxel
 
     public IReadOnlyList<MegChannel> Array(CoilArrayChoice choice) => CoilArray.Generate(choice, sphere.Centre, sphere.OuterRadius);
 
-    public string Describe(CoilArrayChoice choice) => "";
+    public Vec3 Centre => sphere.Centre;
+
+    public string Describe(CoilArrayChoice choice) => "the stand-in's array lies on a sphere";
 
     public void CheckCoils(IReadOnlyList<MegChannel> channels, string file) => SphereLeadfield.CheckCoils(sphere, channels, file);
 

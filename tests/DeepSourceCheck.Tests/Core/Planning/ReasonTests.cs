@@ -139,7 +139,7 @@ public class ReasonTests
         LayeredSphere head = new("one layer", Vec3.Zero, [new("all", 0.09, 0.33, 0.33)]);
         RegionResult region = new SmallStudy { Meg = [[[3e-7, 0, 0], [0, 1e-6, 0], [0, 0, 2e-6]]], Given = X, Head = head, Positions = [new Vec3(0, 0, 0.04)] }.Assess();
         Assert.True(Math.Abs(region.Split!.AngleToRadialDeg.P50!.Value - 90) < 1e-9);
-        Assert.Contains(region.Warnings, w => w.Contains("sees least stands 90 degrees from the radius; read quasi-radial as least visible", StringComparison.Ordinal));
+        Assert.Contains(region.Warnings, w => w.Contains("sees least stands 90 degrees from the outward direction; read quasi-radial as least visible", StringComparison.Ordinal));
         RegionResult aligned = new SmallStudy { Meg = [[[3e-6, 0, 0], [0, 1e-6, 0], [0, 0, 2e-7]]], Given = X, Head = head, Positions = [new Vec3(0, 0, 0.04)] }.Assess();
         Assert.DoesNotContain(aligned.Warnings, w => w.Contains("least visible", StringComparison.Ordinal));
     }
