@@ -155,6 +155,30 @@ public sealed class VoxelPipelineTests : IDisposable
     }
 
     [Fact]
+    public void LibraryRegions_AreWarnedOfWhereTheHeadIsOff_AndRefusedWhereItIsAnother()
+    {
+        // The sphere's centre lies 19 mm from that of the library's head; moved by 30 mm it cannot be meant.
+        string study = Voxels().Replace("regions: [core]", "regions: [core, pons]", StringComparison.Ordinal);
+        Assert.Contains(Prepare(study, checkOnly: true).Warnings, w => w.StartsWith("library regions are drawn for an adult head", StringComparison.Ordinal));
+        Assert.DoesNotContain(Prepare(Voxels(), checkOnly: true).Warnings, w => w.StartsWith("library regions", StringComparison.Ordinal));
+        TissueVolume good = Good();
+        VoxelGrid grid = good.Grid;
+        var moved = new VoxelGrid(grid.Nx, grid.Ny, grid.Nz, grid.ToWorld with { Offset = grid.ToWorld.Offset + new Vec3(0.03, 0, 0) });
+        Head(new TissueVolume(moved, good.Cells.ToArray(), good.Tissues));
+        string message = Refusal(study, checkOnly: true);
+        Assert.Matches(@"study\.yaml:\d+:\d+: .*region 'pons': library regions are drawn for an adult head .* give a mask that fits this head", message);
+    }
+
+    [Fact]
+    public void Leadfield_OfElectrodesAlone_SolvesNoOtherRow()
+    {
+        string eeg = Voxels().Replace("  meg: {coil: magnetometer, sites: 40, gap_mm: 20}\n", "", StringComparison.Ordinal).Replace("  meg_sensor_fT_per_rtHz: 5\n", "", StringComparison.Ordinal);
+        PreparedStudy prepared = Prepare(eeg, purpose: Purpose.Leadfield);
+        VoxelProblem solved = Assert.Single(_parts.Solved);
+        Assert.Equal((prepared.Electrodes, 0), (solved.Electrodes.Count, solved.Channels.Count));
+    }
+
+    [Fact]
     public void UnknownLabel_IsRefused()
     {
         byte[] bytes = Good().File();

@@ -52,6 +52,7 @@ public class ScalpPlacementTests
         List<string> warnings = [];
         Electrode[] placed = Place(warnings, ("Cz", At(Radius)), ("D1", At(0.020)), ("D2", At(0.0235)), ("grid", At(0.079)));
         Assert.Equal([false, true, true, true], placed.Select(e => e.IsInterior));
+        Assert.Equal([true, false, false, false], placed.Select(e => e.InAverage));
         Assert.Equal(At(0.020), placed[1].Position);
         Assert.Equal(0, placed[1].MovedBy);
         string warning = Assert.Single(warnings);
