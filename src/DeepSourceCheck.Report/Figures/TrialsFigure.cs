@@ -59,16 +59,9 @@ public static class TrialsFigure
         const float Top = 44, Bottom = 40, Right = 34;
         int rowHeight = named ? 62 : StripRow;
         FigureSheet sheet = new(width, (int)(Top + Bottom) + rowHeight * region.Answers.Count, named ? 52 : 24, Right, Top, Bottom);
-        sheet.Limits(axis.Low, axis.High, 0, 1);
-        sheet.BottomAxis(axis.Ticks);
-        double? session = assessment.SessionTrials is { } s and > 0 ? Math.Log10(s) : null;
+        double? session = OnTrials(sheet, axis, assessment);
         sheet.Under(pen =>
         {
-            if (session is { } x)
-            {
-                pen.Rectangle(pen.X(x), pen.Top, pen.Right, pen.Bottom, Palette.Beyond);
-            }
-
             for (int k = 1; k < region.Answers.Count; k++)
             {
                 pen.Line(pen.Left, pen.Top + k * rowHeight, pen.Right, pen.Top + k * rowHeight, Palette.Hair, 1);
@@ -96,6 +89,21 @@ public static class TrialsFigure
             }
         });
         return sheet;
+    }
+
+    /// <summary>Gives a sheet its axis of accepted trials and shades what lies beyond the session.</summary>
+    /// <returns>Place of the session on the axis, or null where the study states none.</returns>
+    internal static double? OnTrials(FigureSheet sheet, LogAxis axis, Assessment assessment)
+    {
+        sheet.Limits(axis.Low, axis.High, 0, 1);
+        sheet.BottomAxis(axis.Ticks);
+        double? session = assessment.SessionTrials is { } s and > 0 ? Math.Log10(s) : null;
+        if (session is { } x)
+        {
+            sheet.Under(pen => pen.Rectangle(pen.X(x), pen.Top, pen.Right, pen.Bottom, Palette.Beyond));
+        }
+
+        return session;
     }
 
     private static LogAxis AxisOf(Assessment assessment, IReadOnlyList<ModalityAnswer> answers)
@@ -144,16 +152,7 @@ public static class TrialsFigure
         float subRow = roomy ? RoomyRow : CompactRow;
         float rows = regions.Sum(r => Heading + r.Answers.Count * subRow) + (regions.Length - 1) * RegionGap + 10;
         FigureSheet sheet = new(width, (int)(Top + rows + Bottom), Gutter, Right, Top, Bottom);
-        sheet.Limits(axis.Low, axis.High, 0, 1);
-        sheet.BottomAxis(axis.Ticks);
-        double? session = assessment.SessionTrials is { } s and > 0 ? Math.Log10(s) : null;
-        sheet.Under(pen =>
-        {
-            if (session is { } x)
-            {
-                pen.Rectangle(pen.X(x), pen.Top, pen.Right, pen.Bottom, Palette.Beyond);
-            }
-        });
+        double? session = OnTrials(sheet, axis, assessment);
         sheet.Over(pen =>
         {
             pen.Text("accepted trials", 16, pen.Bottom + 36, FigurePen.Small, colour: Palette.Ink2);

@@ -80,16 +80,7 @@ public static class VariantFigure
         float gutter = Math.Min(0.34f * width, 16 + regions.SelectMany(r => r.Rows).Max(r => FigurePen.Width(r.Name, FigurePen.Small)) + 16);
         float rows = regions.Sum(r => Heading + r.Rows.Count * Row) + (regions.Length - 1) * RegionGap + 10;
         FigureSheet sheet = new(width, (int)(Top + rows + Bottom), gutter, Right, Top, Bottom);
-        sheet.Limits(axis.Low, axis.High, 0, 1);
-        sheet.BottomAxis(axis.Ticks);
-        double? session = assessment.SessionTrials is { } s and > 0 ? Math.Log10(s) : null;
-        sheet.Under(pen =>
-        {
-            if (session is { } x)
-            {
-                pen.Rectangle(pen.X(x), pen.Top, pen.Right, pen.Bottom, Palette.Beyond);
-            }
-        });
+        double? session = TrialsFigure.OnTrials(sheet, axis, assessment);
         sheet.Over(pen =>
         {
             pen.Text("accepted trials", 16, pen.Bottom + 36, FigurePen.Small, colour: Palette.Ink2);
