@@ -36,7 +36,7 @@ public static class Assessor
             progress?.Invoke($"noise of {response.Name}", (double)done / total);
             NoiseCovariance noise = setup.Noise!.InBand(response.Band.Low, response.Band.High);
             var space = new SignalSpace(noise, setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
-            var plan = new EvaluationPlan(response, space, setup.Rules, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
+            var plan = new EvaluationPlan(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
             if (!begun)
             {
                 sink?.Begin(AllColumns(setup, space));
@@ -80,7 +80,7 @@ public static class Assessor
     // Responses may differ in whether a direction is given and what the joint reading is named: dipoles.csv has one header, so it lists the union.
     private static IReadOnlyList<DipoleColumn> AllColumns(StudySetup setup, SignalSpace space) =>
         [.. setup.Study.Responses
-            .SelectMany(r => new EvaluationPlan(r, space, setup.Rules, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0).Columns)
+            .SelectMany(r => new EvaluationPlan(r, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0).Columns)
             .Distinct().OrderBy(c => c.Modality)];
 
     private static IDipoleSink? Adapt(IDipoleSink? sink, EvaluationPlan plan, StudySetup setup, SignalSpace space)
