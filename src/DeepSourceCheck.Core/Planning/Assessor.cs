@@ -37,12 +37,11 @@ public static class Assessor
         foreach (Response response in setup.Study.Responses)
         {
             progress?.Invoke($"noise of {response.Name}", (double)done / total);
-            NoiseCovariance noise = setup.Noise!.InBand(response.Band.Low, response.Band.High);
-            var space = new SignalSpace(noise, setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
-            EvaluationPlan plan = Plan(setup, response, space);
+            var plans = new PlanSet(setup, response);
+            EvaluationPlan plan = plans.Peak(response);
             if (!begun)
             {
-                sink?.Begin(AllColumns(setup, space));
+                sink?.Begin(AllColumns(setup, plans.Space));
                 begun = true;
             }
 
@@ -52,14 +51,14 @@ public static class Assessor
                 long before = done;
                 StudySetup own = source is SummedSource ? setup with { Head = new SummedHead(setup.Head) } : setup;
                 EvaluationPlan asked = response.Amplitude is null ? plan
-                    : Plan(setup, response with { Moment = MomentFromAmplitude.Find(plan, own.Head, source, region, cancellation) }, space);
-                RegionTally tally = new RegionRun(asked, own.Head, source)
-                    .Run(region, Adapt(sink, asked, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
+                    : plans.Peak(response with { Moment = MomentFromAmplitude.Find(plan, own.Head, source, region, cancellation) });
+                (EvaluationPlan Plan, RegionTally Tally)[] read = [.. plans.All(asked).Select((p, k) => (p, new RegionRun(p, own.Head, source)
+                    .Run(region, k == 0 ? Adapt(sink, p, setup, plans.Space) : null, n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + (k == 0 ? n : region.Positions.Length)) / total), cancellation)))];
                 done += region.Positions.Length;
-                regions.Add(Result(own, asked, region, source, parts, tally, cancellation));
+                regions.Add(Result(own, read, region, source, parts, cancellation));
             }
 
-            results.Add(new ResponseResult(response, regions));
+            results.Add(new ResponseResult(response, regions) { Waveform = plans.Waveform });
         }
 
         return results;
@@ -103,16 +102,24 @@ public static class Assessor
     }
 
     private static RegionResult Result(
-        StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts, RegionTally tally,
+        StudySetup setup, IReadOnlyList<(EvaluationPlan Plan, RegionTally Tally)> read, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts,
         CancellationToken cancellation)
     {
-        var signals = new BlockSignals(plan.Space, setup.Head, plan.MegReported);
-        var report = new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
-        IReadOnlyList<MeasureResult> rows = report.Rows();
+        (EvaluationPlan plan, RegionTally tally) = read[0];
+        RegionReport[] reports = [.. read.Select(r => Report(setup, r.Plan, r.Tally))];
+        IReadOnlyList<MeasureResult> rows = RowMerge.Of([.. read.Select((r, k) => (r.Plan, reports[k].Rows()))]);
+        RegionReport report = reports[0];
         SplitSummary? split = report.Split();
         IReadOnlyList<CancellationResult> lost = source is SummedSource summed ? FieldCancellation.Of(plan, setup, summed, parts, cancellation) : [];
         double?[] captured = [.. parts.Select(setup.FieldCaptured)];
-        var verdicts = new VerdictWriter(setup, plan, region, source, tally).Write(ref rows, cancellation);
+        var written = new List<VerdictResult>();
+        foreach ((EvaluationPlan own, RegionTally found) in read)
+        {
+            written.AddRange(new VerdictWriter(setup, own, region, source, found).Write(ref rows, cancellation));
+        }
+
+        List<string> rules = [.. plan.Targets.Select(t => Names.Of(t))];
+        VerdictResult[] verdicts = [.. written.OrderBy(v => v.Modality).ThenBy(v => rules.IndexOf(v.Rule))];
         return new RegionResult
         {
             Region = region.Name,
@@ -129,6 +136,12 @@ public static class Assessor
             Verdicts = verdicts,
             Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost)],
         };
+    }
+
+    private static RegionReport Report(StudySetup setup, EvaluationPlan plan, RegionTally tally)
+    {
+        var signals = new BlockSignals(plan.Space, setup.Head, plan.MegReported);
+        return new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
     }
 
     private static IEnumerable<string> Warnings(EvaluationPlan plan, IReadOnlyList<FilledRegion> parts, double?[] captured, SplitSummary? split)

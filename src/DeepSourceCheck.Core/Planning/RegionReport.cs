@@ -120,7 +120,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
 
         if (measure is DerivationMeasure derivation)
         {
-            double sd = plan.Space.DerivationSd[derivation.Index] * Math.Sqrt(plan.NoiseFactor);
+            double sd = plan.Space.DerivationSd[derivation.Index] * Math.Sqrt(plan.NoiseFactor) * (plan.IsSpectral ? plan.View.Kept : 1);
             return cell.Power.Interpolated(0.5, p => Si.ToMicrovolts(Math.Sqrt(p) * sd)) is { } amplitude ? new PeakAmplitude(amplitude, "uV", derivation.Name) : null;
         }
 
@@ -132,7 +132,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
         }
 
         (string unit, Func<double, double> convert) = eeg ? ("uV", Si.ToMicrovolts) : megPeakIsPlanar ? ("fT/cm", Si.ToFemtoteslaPerCm) : ("fT", (Func<double, double>)Si.ToFemtotesla);
-        double? value = peak.Power.Interpolated(0.5, p => convert(Math.Sqrt(p) * plan.Response.Moment));
+        double? value = peak.Power.Interpolated(0.5, p => convert(Math.Sqrt(p) * plan.Response.Moment * plan.View.Kept));
         return value is { } v ? new PeakAmplitude(v, unit, channelName(measure.Modality, peak.MostOften)) : null;
     }
 

@@ -21,13 +21,10 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         DirectionName direction = plan.VerdictDirection;
         foreach ((Modality modality, string? name) in new[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) })
         {
-            if (name is null)
+            if (plan.Measures.FirstOrDefault(m => m.Modality == modality && m.Name == name) is { } measure)
             {
-                continue;
+                asked.AddRange(Enumerable.Range(0, plan.Targets.Count).Where(plan.Counts).Select(rule => new MedianSearch.Question(measure, rule)));
             }
-
-            IMeasure measure = plan.Measures.First(m => m.Modality == modality && m.Name == name);
-            asked.AddRange(plan.Targets.Select((_, rule) => new MedianSearch.Question(measure, rule)));
         }
 
         MedianWitness?[] witnesses = new MedianSearch(plan, setup.Head, source, region, tally, direction).Find(asked, cancellation);
@@ -123,7 +120,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             return $"{reading}: out of reach by averaging ({(reason.StartsWith(Said, StringComparison.Ordinal) ? reason[Said.Length..] : reason)}).";
         }
 
-        string why = witness is null ? "" : string.Create(CultureInfo.InvariantCulture, $" In one trial {Compare(witness.Power)}.");
+        string why = witness is null ? "" : string.Create(CultureInfo.InvariantCulture, $" In one trial{(plan.IsSpectral ? ", for a filter that knows the waveform," : "")} {Compare(witness.Power)}.");
         if (count > TrialCount.MostPlanned)
         {
             return string.Create(CultureInfo.InvariantCulture, $"{reading}: out of reach, more than {TrialCount.MostPlanned:N0} trials.{why}");
@@ -157,7 +154,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             $"{Math.Round(Si.ToNanoAmpereMetres(moment), 9):0.######} nAm {(count is { } n && n <= TrialCount.MostPlanned ? $"{n:N0} trials" : "out of reach")}");
     }
 
-    private static string Reading(MeasureResult row) => row.Modality == Modality.Both && row.Measure != Names.MatchedFilter
+    private static string Reading(MeasureResult row) => row.Modality == Modality.Both && row.Measure is not (Names.MatchedFilter or Names.RealisticFilter)
         ? $"{row.Measure} and best MEG channel" : row.Measure;
 
     private static string Compare(double power)

@@ -15,6 +15,9 @@ public static class Names
     /// <summary>The bound that no linear combination of channels exceeds.</summary>
     public const string MatchedFilter = "matched-filter";
 
+    /// <summary>A filter that was built for a displaced place, another head and an estimated covariance.</summary>
+    public const string RealisticFilter = "realistic-filter";
+
     /// <summary>Amplitude against residual rms.</summary>
     public const string AmplitudeRatio = "amplitude_ratio";
 
