@@ -150,6 +150,8 @@ internal abstract class SensorAssembly
         Regions = regions,
         FieldCaptured = FieldCaptured,
         CentreSensitivity = CentreSensitivity,
+        OtherHeads = study.Responses.Any(r => r.EegMeasure == Names.RealisticFilter || r.MegMeasure == Names.RealisticFilter) ? OtherHeads() : [],
+        NearestPoint = Imported is { } imported ? imported.Nearest : null,
         Limits = Limits,
         ArrayPlace = ArrayPlace,
         Scene = Scene(regions) with
@@ -158,6 +160,9 @@ internal abstract class SensorAssembly
             Regions = [.. regions.Select(r => Place(r.Name, Picked(r.Positions)))],
         },
     };
+
+    /// <summary>Leadfields of other heads for which a spatial filter may have been built; empty where this head has no others.</summary>
+    protected virtual IReadOnlyList<ILeadfieldSource> OtherHeads() => [];
 
     /// <summary>What the head's model leaves out, sentence by sentence.</summary>
     protected abstract IReadOnlyList<string> Limits { get; }

@@ -83,10 +83,9 @@ public static partial class StudyKeys
         {
             Example = "{rate_per_s: 11.1, rejected_fraction: 0.1, session_min: 40}",
         },
-        new("protocol.rate_per_s", "Stimuli per second.", Above0(1e5))
+        new("protocol.rate_per_s", "Stimuli per second; where every response is steady-state, trials follow each other without it.", Above0(1e5))
         {
             Unit = "1/s",
-            Required = true,
             Example = "11.1",
             Typical = new(0.05, 200),
         },

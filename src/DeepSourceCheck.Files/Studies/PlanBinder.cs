@@ -48,14 +48,14 @@ internal static class PlanBinder
         return rules;
     }
 
-    public static Protocol? Protocol(Section root)
+    public static Protocol? Protocol(Section root, IReadOnlyList<Response> responses)
     {
         if (root.Map("protocol") is not { } protocol)
         {
             return null;
         }
 
-        double? rate = protocol.Number("rate_per_s"), rejected = protocol.Number("rejected_fraction");
+        double? rate = Rate(root, protocol, responses), rejected = protocol.Number("rejected_fraction");
         double? session = protocol.Number("session_min"), preparation = protocol.Number("preparation_min"), breaks = protocol.Number("breaks_min");
         double? conditions = protocol.Number("conditions"), replications = protocol.Number("replications");
         return rate is null || rejected is null || conditions is null || replications is null ? null : new()
@@ -68,6 +68,24 @@ internal static class PlanBinder
             Conditions = (int)conditions.Value,
             Replications = (int)replications.Value,
         };
+    }
+
+    private static double? Rate(Section root, Section protocol, IReadOnlyList<Response> responses)
+    {
+        if (protocol.States("rate_per_s"))
+        {
+            return protocol.Number("rate_per_s");
+        }
+
+        if (responses.Count == 0 || responses.Any(r => r.Steady is null) || responses.Count < root.Entries("responses").Count)
+        {
+            protocol.Problem("rate_per_s", "is missing; state stimuli per second, usually 0.05 to 200 (where every response is steady-state, trials follow each other without it)");
+            return null;
+        }
+
+        double rate = 1 / responses.Min(r => r.Steady!.Seconds);
+        protocol.Assume("rate_per_s", rate, "steady-state trials follow each other without a gap: 1/seconds", Grade.Derived);
+        return rate;
     }
 
     /// <summary>Warnings about the analysis window: against the interval between stimuli, and against one look.</summary>

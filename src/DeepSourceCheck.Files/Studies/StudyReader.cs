@@ -78,7 +78,7 @@ public static class StudyReader
         IReadOnlyList<RegionChoice> regions = RegionBinder.Bind(root, sensors, reading);
         IReadOnlyList<Response> responses = ResponseBinder.Bind(root, sensors, reading);
         IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root);
-        Protocol? protocol = PlanBinder.Protocol(root);
+        Protocol? protocol = PlanBinder.Protocol(root, responses);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
@@ -95,6 +95,7 @@ public static class StudyReader
             SamplingRate = sensors.Sampling,
             Noise = noise,
             Regions = regions,
+            TriggerSynchronised = !sensors.FreeTrigger,
             Responses = responses,
             Targets = targets,
             Protocol = protocol,
