@@ -11,6 +11,7 @@ public static class RuleBinding
     public static ITargetRule Of(TargetChoice target, RuleReading reading) => target switch
     {
         AmplitudeRatioChoice a => new AmplitudeRatioRule(a.Ratio),
+        DetectionChoice d when reading.SteadyState => new SpectralFRule(d.Alpha, d.Power, d.Looks),
         DetectionChoice d => new DetectionRule(d.Alpha, d.Power, d.Looks),
         _ => throw new InvalidOperationException($"no rule for {target.GetType().Name} on {reading.Measure}"),
     };

@@ -71,7 +71,7 @@ public sealed class EvaluationPlan
         }
 
         Measures = measures;
-        _rules = measures.ToDictionary(m => m, m => (IReadOnlyList<ITargetRule>)[.. targets.Select(t => RuleBinding.Of(t, RuleReading.Of(m, space, NoiseFactor)))]);
+        _rules = measures.ToDictionary(m => m, m => (IReadOnlyList<ITargetRule>)[.. targets.Select(t => RuleBinding.Of(t, RuleReading.Of(m, space, NoiseFactor) with { SteadyState = response.Steady is not null }))]);
         Directions =
         [
             .. splitPossible ? new[] { DirectionName.QuasiRadial, DirectionName.Tangential, DirectionName.StrongestTangential } : [],

@@ -87,12 +87,16 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Rule = target.Rule,
             Measure = row.Measure,
             Direction = row.Direction,
-            Text = Text(row, target, fits, witness) + RangeText(AtMoments(bound, witness)),
+            Text = Text(row, target, fits, witness) + Coherence(bound, witness) + RangeText(AtMoments(bound, witness)),
             FitsSession = fits,
             AtMoments = AtMoments(bound, witness),
             Chain = chain,
         };
     }
+
+    private static string Coherence(ITargetRule rule, MedianWitness? witness) => rule is not SpectralFRule spectral || witness is null
+        || spectral.CoherenceTrials(rule.EffectivePower(witness.Power, witness.Artefact)) is not { } trials || trials > TrialCount.MostPlanned ? ""
+        : string.Create(CultureInfo.InvariantCulture, $" By coherence over trials {trials:N0}.");
 
     private CountRange? AtMoments(ITargetRule rule, MedianWitness? witness)
     {
