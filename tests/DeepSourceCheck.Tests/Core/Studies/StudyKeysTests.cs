@@ -63,6 +63,7 @@ public class StudyKeysTests
         ["_uV_rms"] = "uV",
         ["_fT_rms"] = "fT",
         ["_nV"] = "nV",
+        ["_s"] = "s",
     };
 
     [Fact]
@@ -77,6 +78,10 @@ public class StudyKeysTests
     [
         "responses[].shares",
         "responses[].lags_ms",
+        "responses[].waveform.gaussian_fwhm_ms",
+        "responses[].place_error_mm",
+        "responses[].baseline_s",
+        "sensors.trigger",
     ];
 
     [Fact]
