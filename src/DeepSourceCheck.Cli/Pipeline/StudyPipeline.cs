@@ -65,7 +65,7 @@ internal static class StudyPipeline
         if (purpose == Purpose.Assess)
         {
             warnings.AddRange(MomentCheck.Judge(reading, setup));
-            setup = setup with { Noise = NoiseAssembly.Build(reading, sensors, inputs, warnings) };
+            setup = NoiseAssembly.Build(reading, sensors, setup, inputs, warnings);
         }
 
         LeadfieldCost cost = sensors.Cost(regions.Filled);

@@ -51,10 +51,12 @@ public static class Assessor
                 RegionTally tally = new RegionRun(plan, own.Head, source)
                     .Run(region, Adapt(sink, plan, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
                 done += region.Positions.Length;
-                regions.Add(Result(own, plan, region, source, parts, tally, cancellation));
+                RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
+                    : new RemovalReport(own, plan).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, cancellation) : setup.Removal.Source, cancellation);
+                regions.Add(Result(own, plan, region, source, parts, tally, loss, cancellation));
             }
 
-            results.Add(new ResponseResult(response, regions));
+            results.Add(new ResponseResult(response, regions) { Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
         }
 
         return results;
@@ -96,7 +98,7 @@ public static class Assessor
 
     private static RegionResult Result(
         StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts, RegionTally tally,
-        CancellationToken cancellation)
+        RemovalLoss? loss, CancellationToken cancellation)
     {
         var signals = new BlockSignals(plan.Space, setup.Head, plan.MegReported);
         var report = new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
@@ -114,9 +116,11 @@ public static class Assessor
             Split = split,
             FieldCaptured = captured.Min(),
             Profile = tally.Profile?.Profile(),
+            Removal = loss,
             Results = rows,
             Verdicts = verdicts,
-            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts)],
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts),
+                .. loss is null ? Array.Empty<string>() : [RemovalReport.Words(region.Name, loss)]],
         };
     }
 
