@@ -34,7 +34,7 @@ public static class SpectraFigure
             + "Shaded: the response's band. Filled: the response, "
             + (spectra.Any(s => s.SignalDensities is not null) ? "the amplitude density of its waveform" : $"its predicted peak ({Say.Moment(response.Response.Moment)}, {Say.Direction(response.Response.Direction)}, median dipole) over {(trough ? "sqrt(2) and " : "")}the root of the bandwidth, so that its height over a flat noise is the amplitude SNR of one trial")
             + $".{(spectra.Any(s => s.Bandwidth is not null) ? " Upright lines: the band that the sensors pass." : "")}",
-            $"{title}. {string.Join(" ", spectra.Select(s => $"{Names.Of(s.Modality)} {s.Channel}: response {(s.SignalLevel is { } level ? Say.Two(level) : "silent")}, noise {Middle(s)} {Say.Unit(s.Unit)} in the middle of the band."))}",
+            $"{title}. {string.Join(" ", spectra.Select(s => $"{Names.Of(s.Modality)} {s.Channel}: response {(s.SignalLevel is { } level ? Say.Two(level) : "silent")}, noise {Middle(s)} {Unit(s)} in the middle of the band."))}",
             Table(spectra), FullWidth: false,
             width => Draw(width, spectra));
     }
@@ -47,6 +47,8 @@ public static class SpectraFigure
         return most.Cause == NoiseModel.StatedPerTrial ? $"{modality} stated per trial"
             : most.Share > 0.995 ? $"{modality} {most.Cause}" : $"{modality} {(most.Share >= 0.5 ? "mostly" : "first of all")} {most.Cause} ({Say.Percent(Math.Round(most.Share, 2))})";
     }
+
+    private static string Unit(ReadingSpectrum spectrum) => Say.Unit(spectrum.Unit).Replace("sqrt(Hz)", "√Hz", StringComparison.Ordinal);
 
     private static string Hertz(Band band) => $"{Say.Stated(band.Low)} to {(band.High >= 1000 && band.High % 1 == 0 ? Say.Count((long)band.High) : Say.Stated(band.High))} Hz";
 
@@ -66,7 +68,7 @@ public static class SpectraFigure
                 from k in Enumerable.Range(0, s.Frequencies.Count)
                 select (IReadOnlyList<string>)
                 [
-                    $"{Names.Of(s.Modality)} {s.Channel}", Say.Unit(s.Unit), Say.Significant(s.Frequencies[k], 3), Cell(s.Total[k]), .. causes.Select(c => Cell(s.Noise.FirstOrDefault(n => n.Cause == c)?.Densities[k])),
+                    $"{Names.Of(s.Modality)} {s.Channel}", Unit(s), Say.Significant(s.Frequencies[k], 3), Cell(s.Total[k]), .. causes.Select(c => Cell(s.Noise.FirstOrDefault(n => n.Cause == c)?.Densities[k])),
                 ]]);
 
         static string Cell(double? density) => density is { } d ? Say.Significant(d, 3) : "";
@@ -138,7 +140,7 @@ public static class SpectraFigure
 
         private void Axes()
         {
-            pen.Text($"{Names.Of(spectrum.Modality)} {FigurePen.Fit(spectrum.Channel, 160, FigurePen.Label, true)}, {Say.Unit(spectrum.Unit)}", area.Left - 42, area.Top - 12, semiBold: true);
+            pen.Text($"{Names.Of(spectrum.Modality)} {FigurePen.Fit(spectrum.Channel, 160, FigurePen.Label, true)}, {Unit(spectrum)}", area.Left - 42, area.Top - 12, semiBold: true);
             foreach (int decade in _densities.Decades)
             {
                 float y = Y(Math.Pow(10, decade));
