@@ -125,10 +125,10 @@ public partial class SpectraFigureTests
         Assert.False(response.GetProperty("regions")[1].TryGetProperty("environment_removal", out _));
     }
 
-    // Open paths of a stroke width, as lists of pixels in the order in which they were drawn.
+    // Open paths of a stroke width, as lists of pixels in the order in which they were drawn; each once, the plot being rendered twice.
     private static IEnumerable<(double X, double Y)[]> Lines(FigureSheet sheet, string width)
     {
-        foreach (XElement path in XElement.Parse(sheet.Svg("t")).Descendants(Svg + "path"))
+        foreach (XElement path in XElement.Parse(sheet.Svg("t")).Descendants(Svg + "path").DistinctBy(p => ((string?)p.Attribute("d"), (string?)p.Attribute("stroke"))))
         {
             string d = (string?)path.Attribute("d") ?? "";
             string stroke = (string?)path.Attribute("stroke-width") ?? ((string?)path.Attribute("stroke") is { } s && s != "none" ? "1" : "");

@@ -53,18 +53,18 @@ public class BrainTablesTests
     public void OwnTables_SetThePowerAtTheTablesSensors()
     {
         // Flat tables: variance = density^2 times the bandwidth, by hand.
-        var tables = new BrainTables(new LogLogTable((1, 2e-6), (40, 2e-6)), new LogLogTable((1, 20e-15), (40, 20e-15)), "e.csv", "m.csv");
+        var tables = new BrainTables(new LogLogTable((1, 1e-6), (40, 1e-6)), new LogLogTable((1, 20e-15), (40, 20e-15)), "e.csv", "m.csv");
         NoiseModel model = Builder(Total, tables).Build(null, null, [Slow]);
-        RelativeAssert.Equal(4e-12 * 19, Brain(model, eeg: true, 1, 20), Rounding, "EEG");
+        RelativeAssert.Equal(1e-12 * 19, Brain(model, eeg: true, 1, 20), Rounding, "EEG");
         RelativeAssert.Equal(4e-28 * 19, Brain(model, eeg: false, 1, 20), Rounding, "MEG");
     }
 
     [Fact]
     public void OneOwnTable_LeavesTheDefaultOneInTheOtherModality()
     {
-        BrainTables tables = BrainTables.Default with { Eeg = new LogLogTable((1, 2e-6), (40, 2e-6)), EegName = "e.csv" };
+        BrainTables tables = BrainTables.Default with { Eeg = new LogLogTable((1, 1e-6), (40, 1e-6)), EegName = "e.csv" };
         NoiseModel own = Builder(Total, tables).Build(null, null, [Slow]), scaled = Builder(Total with { BrainScale = 0.5 }).Build(null, null, [Slow]);
-        RelativeAssert.Equal(4e-12 * 39, Brain(own, eeg: true, 1, 40), Rounding);
+        RelativeAssert.Equal(1e-12 * 39, Brain(own, eeg: true, 1, 40), Rounding);
         RelativeAssert.Equal(4 * Brain(scaled, eeg: false, 1, 40), Brain(own, eeg: false, 1, 40), Rounding, "half the amplitude is a quarter of the variance");
     }
 

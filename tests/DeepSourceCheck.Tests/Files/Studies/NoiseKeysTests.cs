@@ -50,7 +50,7 @@ public class NoiseKeysTests
     [InlineData("  brain: {scale: 0}", "noise.brain.scale", "out of range|above 0")]
     [InlineData("  brain: {scale: 50}", "noise.brain.scale", "more than 10 times outside")]
     [InlineData("  brain: {eeg_table: none.csv}", "noise.brain.eeg_table", "does not exist")]
-    [InlineData("  brain: {table: points.tsv}", "noise.brain.table", "unknown key|eeg_table")]
+    [InlineData("  brain: {scale: 0.7, table: points.tsv}", "noise.brain.table", "unknown key|eeg_table")]
     [InlineData("  brain: yes", "noise.brain", "default or none; or keys with values")]
     [InlineData("  eeg_corner_Hz: -1", "noise.eeg_corner_Hz", "out of range|from 0")]
     [InlineData("  environment: {removed: true}", "noise.environment.meg_fT_per_rtHz", "is missing|meg_fT_per_rtHz: 3")]

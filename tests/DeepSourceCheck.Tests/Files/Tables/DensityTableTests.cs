@@ -34,7 +34,8 @@ public class DensityTableTests
     [InlineData("frequency_Hz,density_nV_per_rtHz\n1,4\n10,2\n", "t.csv:1: density_uV_per_rtHz: the column is missing; the header has: frequency_Hz, density_nV_per_rtHz")]
     [InlineData("1,4\n10,2\n", "t.csv:1: frequency_Hz: the column is missing")]
     [InlineData("frequency_Hz\tdensity_uV_per_rtHz\n1\t4\n", "(columns are separated by commas)")]
-    [InlineData("", "the file holds no text")]
+    [InlineData("\n\n", "the file holds no text")]
+    [InlineData("", "the file is empty")]
     public void BadRow_IsRefused_WithFileLineAndField(string text, string said) => Assert.Contains(said, Assert.Throws<InputException>(() => Read(text)).Message, StringComparison.Ordinal);
 
     [Fact]
