@@ -5,7 +5,7 @@ namespace DeepSourceCheck.Core.Results;
 /// <summary>One cause of noise over frequency.</summary>
 /// <param name="Cause">`instrument`, `brain`, `environment`, `muscle and electrode`, or `stated per trial`.</param>
 /// <param name="Share">Its share of the variance over the response's band.</param>
-/// <param name="Densities">Amplitude density at each frequency, in the spectrum's unit; null where it is not known (outside a table) or where what a total leaves is negative.</param>
+/// <param name="Densities">Amplitude density at each frequency, in the unit of the spectrum; null where it is not known (outside a table) or where what a total leaves is negative.</param>
 public sealed record NoiseCurve(string Cause, double Share, IReadOnlyList<double?> Densities);
 
 /// <summary>Noise of one reading over frequency, by cause, with the response beside it.</summary>
@@ -26,7 +26,7 @@ public sealed record ReadingSpectrum
     /// <summary>Causes, in the order of the derivation chain.</summary>
     public required IReadOnlyList<NoiseCurve> Noise { get; init; }
 
-    /// <summary>All causes together, likewise.</summary>
+    /// <summary>All causes together, in the unit of the spectrum; null likewise.</summary>
     public required IReadOnlyList<double?> Total { get; init; }
 
     /// <summary>Response's band [Hz].</summary>
@@ -41,6 +41,6 @@ public sealed record ReadingSpectrum
     /// </summary>
     public double? SignalLevel { get; init; }
 
-    /// <summary>Amplitude spectral density of a response whose waveform is known, at <see cref="Frequencies"/>; null where it is not.</summary>
+    /// <summary>Amplitude spectral density of a response whose waveform is known, at <see cref="Frequencies"/>, in the unit of the spectrum; null where it is not.</summary>
     public IReadOnlyList<double>? SignalDensities { get; init; }
 }
