@@ -18,11 +18,11 @@ public static class RealisticHead
     public const string Spheres = "adult-4";
 
     /// <summary>How far the right side of the invented head departs from the left one, whose figures it gets [dB]: measured over all sided regions, rounded up.</summary>
-    public const double SidesDiffer = 1.2;
+    public const double SidesDiffer = 1.3;
 
-    /// <summary>How the figures came about.</summary>
-    public const string Conditions =
-        "Measured against the spheres of " + Spheres + " with sources in all directions (isotropic), medians: on the invented adult head of the program (voxels of 2 mm), and on one labelled real head.";
+    /// <summary>What the figures are.</summary>
+    public const string Meaning =
+        "Change of the SNR of one trial from the spheres of " + Spheres + ", median over places and all directions (isotropic), and the number of trials that follows";
 
     /// <summary>The changes in the order in which they are shown.</summary>
     public static IReadOnlyList<RealisticHeadChange> Changes(RealisticHeadEffect effect) =>
@@ -41,24 +41,31 @@ public static class RealisticHead
 
     /// <summary>What MEG sees of its least visible direction.</summary>
     public static string Directions(RealisticHeadEffect effect) =>
-        $"MEG sees its least visible direction at {Say.Two(effect.WeakestOverStrongest)} of its strongest (in spheres not at all), and that direction stands {Say.Stated(effect.WeakestToOutwardDeg)} degrees from the outward one (in spheres 0); both on the invented head.";
+        $"The direction that MEG sees least, silent and straight outward in spheres, has {Say.Two(effect.WeakestOverStrongest)} of the strongest on the invented head and stands {Say.Stated(effect.WeakestToOutwardDeg)} degrees from the outward one.";
 
-    /// <summary>What the figures are not.</summary>
-    public static string Caution(IEnumerable<RealisticHeadEffect> effects) =>
-        "They are no figures of this study's head, sensors or noise: where the two heads disagree, no more is known without the person's own."
-        + (effects.Any(e => e.MeasuredSide is not null) ? $" Right sides carry the figures of the left, from which they differ by {Say.Stated(SidesDiffer)} dB at most on the invented head." : "");
+    /// <summary>Where the figures were measured, and what they are not.</summary>
+    public static string Caution(Assessment assessment, IEnumerable<RealisticHeadEffect> effects) =>
+        "Measured on the program's invented adult head (voxels of 2\u00A0mm) and on one labelled real head, not with this study's head, sensors or noise; a single direction can change by more. Where the two heads disagree, only the person's own tells."
+        + (effects.Any(e => e.MeasuredSide is not null) ? $" A right side is given the figures of the left: on the invented head the two differ by {Say.Stated(SidesDiffer)}\u00A0dB at most." : "")
+        + (assessment.Study.Head is SphereHeadChoice { LibraryScale: not 1 } ? " This study's head is smaller: there are no figures of its size." : "");
 
-    /// <summary>How to get figures of one's own; null where the study and its variants compare both kinds of head already.</summary>
-    public static string? Own(Assessment assessment)
+    /// <summary>How to get figures of one's own: a sentence, then what to write, a line each. Empty where the study and its variants compare both kinds of head already.</summary>
+    public static IReadOnlyList<string> Own(Assessment assessment)
     {
         HeadChoice[] heads = [assessment.Study.Head, .. assessment.Variants.Select(v => v.Assessment.Study.Head)];
-        bool spheres = heads.Any(h => h is SphereHeadChoice), voxels = heads.Any(h => h is VoxelHeadChoice);
-        const string Variant = "`variants: [{name: spheres, head: {spheres: {preset: adult-4}}}]`";
+        SphereHeadChoice? spheres = heads.OfType<SphereHeadChoice>().FirstOrDefault();
+        bool voxels = heads.Any(h => h is VoxelHeadChoice);
+        string preset = spheres?.Preset ?? Spheres;
+        string variant = $"variants: [{{name: spheres, head: {{spheres: {{preset: {preset}}}}}}}]";
         return (spheres, voxels) switch
         {
-            (true, false) => $"For figures of your own: `deepsourcecheck new FOLDER --head phantom` writes that invented head with a study to change, `head.voxels` takes a labelled volume of a person's head, and {Variant} in such a study shows both side by side.",
-            (false, true) => $"For figures of your own: {Variant} in this study shows both side by side.",
-            _ => null,
+            ({ }, false) =>
+            [
+                "For figures of your own: the command below writes an invented head with a study to change (head.voxels takes a person's labelled volume likewise), and the line below, in that study, puts the spheres beside it.",
+                $"deepsourcecheck new FOLDER --head {(preset == "neonate" ? "neonate-phantom" : "phantom")}", variant,
+            ],
+            (null, true) => ["For figures of your own: this line in the study puts the spheres beside its head.", variant],
+            _ => [],
         };
     }
 

@@ -21,7 +21,8 @@ public static class RealisticHeadText
         foreach (RealisticHeadEffect effect in region.RealisticHeads)
         {
             text.Append('\n').Append(WhyText.Wrap($"What a realistic head changes: {effect.Region}", 0));
-            text.Append("  ").Append("".PadRight(MeasureWidth)).Append("invented head".PadRight(ChangeWidth)).Append("a real head\n");
+            text.Append(WhyText.Wrap(RealisticHead.Meaning + ":", 0));
+            text.Append("  ").Append("".PadRight(MeasureWidth)).Append("invented head".PadRight(ChangeWidth)).Append("one real head\n");
             foreach (RealisticHeadChange change in RealisticHead.Changes(effect))
             {
                 text.Append("  ").Append(RealisticHead.Words(change).PadRight(MeasureWidth))
@@ -33,16 +34,18 @@ public static class RealisticHeadText
 
         if (region.RealisticHeads.Count > 0)
         {
-            text.Append(WhyText.Wrap($"{RealisticHead.Conditions} {RealisticHead.Caution(region.RealisticHeads)}", 0));
+            text.Append(WhyText.Wrap(RealisticHead.Caution(assessment, region.RealisticHeads), 0));
         }
         else if (RealisticHead.None(assessment, region) is { } none)
         {
             text.Append('\n').Append(WhyText.Wrap("What a realistic head changes", 0)).Append(WhyText.Wrap(none, 0));
         }
 
-        if (text.Length > 0 && RealisticHead.Own(assessment) is { } own)
+        IReadOnlyList<string> own = text.Length > 0 ? RealisticHead.Own(assessment) : [];
+        for (int k = 0; k < own.Count; k++)
         {
-            text.Append(WhyText.Wrap(own, 0));
+            // What is to be written stands whole, to be copied.
+            text.Append(k == 0 ? WhyText.Wrap(own[k], 0) : $"  {own[k]}\n");
         }
 
         return WhyText.Plain(text.ToString(), unicode);

@@ -38,10 +38,15 @@ internal static class LimitSection
         }
 
         html.Element("h3", "What a realistic head changes").Raw("\n");
-        html.Element("p", $"{RealisticHead.Conditions} Each figure: change of SNR, then what it makes of the number of trials. {RealisticHead.Caution(effects)}{(RealisticHead.Own(assessment) is { } own ? " " + own.Replace("`", "", StringComparison.Ordinal) : "")}");
+        html.Element("p", $"{RealisticHead.Meaning}. {RealisticHead.Caution(assessment, effects)} {string.Concat(RealisticHead.Own(assessment).Take(1))}".TrimEnd()).Raw("\n");
+        if (RealisticHead.Own(assessment).Count > 1)
+        {
+            HtmlReport.List(html, [.. RealisticHead.Own(assessment).Skip(1)]);
+        }
+
         IReadOnlyList<string> measures = [.. RealisticHead.Changes(effects[0]).Select(RealisticHead.Words)];
         HtmlReport.Table(html, "What a realistic head changes, by region",
-            ["region", .. measures.Select(m => $"{m}, invented head"), .. measures.Select(m => $"{m}, a real head"), "MEG: weakest over strongest direction", "weakest direction to outward direction, degrees"],
+            ["region", .. measures.Select(m => $"{m}, invented head"), .. measures.Select(m => $"{m}, one real head"), "MEG: weakest over strongest direction", "weakest direction to outward direction, degrees"],
             effects.Select(e => (IReadOnlyList<string>)
             [
                 e.Region, .. RealisticHead.Changes(e).Select(c => RealisticHead.Change(c.Phantom)), .. RealisticHead.Changes(e).Select(c => RealisticHead.Change(c.RealHead)),
