@@ -32,7 +32,7 @@ public static class SpectraFigure
             "Amplitude density against frequency (Hz)",
             $"{response.Response.Name}, {response.Regions[0].Region}, at {string.Join(" and ", spectra.Select(s => $"{Names.Of(s.Modality)} {s.Channel}"))}; one trial. Lines: noise by cause, at {spectra[0].Frequencies.Count} frequencies; none where a table ends or a cause has nothing left. "
             + "Shaded: the response's band. Filled: the response, "
-            + (spectra.Any(s => s.SignalDensities is not null) ? "the amplitude density of its waveform" : $"its predicted peak ({Say.Moment(response.Response.Moment)}, {Say.Direction(response.Response.Direction)}, median dipole) over {(trough ? "sqrt(2) and " : "")}the root of the bandwidth, so that its height over a flat noise is the amplitude SNR of one trial")
+            + (spectra.Any(s => s.SignalDensities is not null) ? "the amplitude density of its waveform" : $"its predicted peak ({Say.Strength(response)}, {Say.Direction(response.Response.Direction)}, median dipole) over {(trough ? "sqrt(2) and " : "")}the root of the bandwidth, so that its height over a flat noise is the amplitude SNR of one trial")
             + $".{(spectra.Any(s => s.Bandwidth is not null) ? " Upright lines: the band that the sensors pass." : "")}",
             $"{title}. {string.Join(" ", spectra.Select(s => $"{Names.Of(s.Modality)} {s.Channel}: response {(s.SignalLevel is { } level ? Say.Two(level) : "silent")}, noise {Middle(s)} {Unit(s)} in the middle of the band."))}",
             Table(spectra), FullWidth: false,
