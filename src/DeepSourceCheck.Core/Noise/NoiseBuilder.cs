@@ -74,7 +74,7 @@ public sealed class NoiseBuilder
             {
                 EnvironmentNoise? left = _choice.Environment is { Removed: false } ? Environment : null;
                 terms.Add(new BrainNoise(spectralEeg ? field.Eeg : null, spectralMeg ? field.Meg : null, field.Columns,
-                    _tables.Eeg, _tables.Meg, f => Dominates(f, total, left)));
+                    _tables.Eeg, _tables.Meg, Dominance(field, total, left)));
             }
 
             if (spectralMeg && Environment is { } room && !_choice.Environment!.Removed)
@@ -176,37 +176,41 @@ public sealed class NoiseBuilder
     }
 
     // The brain dominates a modality where it has more power than everything else together: EEG in the tables' derivation, MEG on average over the array's channels.
-    private bool Dominates(double f, LogLogTable? total, EnvironmentNoise? room)
+    private Func<double, bool> Dominance(BackgroundField field, LogLogTable? total, EnvironmentNoise? room)
     {
-        double eegBrain = Square(_tables.Eeg.DensityAt(f)), megBrain = Square(_tables.Meg.DensityAt(f));
-        double eegRest = total is not null
-            ? Square(total.DensityAt(f)) - eegBrain : 1.5 * Square(_choice.EegDensity ?? 0) * InstrumentNoise.Power(_choice.EegCorner, f);
-        if (eegBrain <= eegRest || _background?.Meg is not { } field)
-        {
-            return false;
-        }
+        double[] brain = Variances(field.Meg, field.Columns), outside = Variances(room?.Meg?.Factor, EnvironmentNoise.Terms), own = [.. MegDensities().Select(Square)];
+        return f => DominatesEeg(f, total) && DominatesMeg(f);
 
-        double instrument = InstrumentNoise.Power(_choice.MegCorner, f), outside = room?.At(f).Meg ?? 0, ratio = 0;
-        for (int k = 0; k < _coils.Count; k++)
+        bool DominatesMeg(double f)
         {
-            double rest = instrument * Square(MegDensity(_coils[k]) ?? 0) + outside * SumOfSquares(room?.Meg?.Factor, k, EnvironmentNoise.Terms);
-            ratio += megBrain * SumOfSquares(field, k, _background.Columns) / rest;
-        }
+            double power = Square(_tables.Meg.DensityAt(f)), instrument = InstrumentNoise.Power(_choice.MegCorner, f), around = room?.At(f).Meg ?? 0, ratio = 0;
+            for (int k = 0; k < _coils.Count; k++)
+            {
+                ratio += power * brain[k] / (instrument * own[k] + around * outside[k]);
+            }
 
-        return ratio > _coils.Count;
+            return ratio > _coils.Count;
+        }
+    }
+
+    private bool DominatesEeg(double f, LogLogTable? total)
+    {
+        double brain = Square(_tables.Eeg.DensityAt(f));
+        return brain > (total is not null ? Square(total.DensityAt(f)) - brain : 1.5 * Square(_choice.EegDensity ?? 0) * InstrumentNoise.Power(_choice.EegCorner, f));
     }
 
     private double? MegDensity(CoilKind kind) => kind == CoilKind.PlanarGradiometer ? _choice.MegPlanarDensity : _choice.MegDensity;
 
-    private static double SumOfSquares(double[]? factor, int row, int columns)
+    // Variance of each channel at unit power.
+    private double[] Variances(double[]? factor, int columns)
     {
-        double sum = 0;
-        for (int c = 0; factor is not null && c < columns; c++)
+        var variances = new double[_coils.Count];
+        for (int at = 0; factor is not null && at < factor.Length; at++)
         {
-            sum += factor[row * columns + c] * factor[row * columns + c];
+            variances[at / columns] += factor[at] * factor[at];
         }
 
-        return sum;
+        return variances;
     }
 
     private void WarnOutside(Response response, LogLogTable? total, bool eeg, bool meg)
