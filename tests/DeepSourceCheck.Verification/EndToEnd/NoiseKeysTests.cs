@@ -150,6 +150,21 @@ public class NoiseKeysTests
         Assert.True(Study.Value.Region(0, 1).Removal!.MatchedFilterDb > -2);
     }
 
+    [Theory]
+    [InlineData("removed: true")]
+    [InlineData("removed: false")]
+    public void Chain_RecomputesToTheCount_WithTheRoomInIt(string removed)
+    {
+        WholeChain study = Run(("removed: true", removed));
+        foreach (VerdictResult verdict in study.Region().Verdicts)
+        {
+            long reported = study.Trials(verdict.Modality, verdict.Direction, verdict.Measure);
+            Assert.Equal(reported, (long)ChainArithmetic.Recompute(verdict.Chain)["N"]);
+            Assert.Equal(verdict.Modality != Modality.Eeg && removed == "removed: false", verdict.Chain.Any(l => l.Name.EndsWith("environment", StringComparison.Ordinal)));
+            Assert.Equal(verdict.Modality != Modality.Eeg && removed == "removed: true", verdict.Chain.Any(l => l.Source.Contains("after removal of the room's", StringComparison.Ordinal)));
+        }
+    }
+
     [Fact]
     public void DirectionsAfterRemoval_AreThoseOfTheProjectedLeadfield()
     {
