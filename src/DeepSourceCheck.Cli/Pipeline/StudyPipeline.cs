@@ -4,6 +4,7 @@ using System.Runtime.CompilerServices;
 using DeepSourceCheck.Core.Planning;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Files.Regions;
 using DeepSourceCheck.Files.Studies;
 
@@ -90,13 +91,13 @@ internal static class StudyPipeline
     private static Assessment AssessOne(PreparedStudy prepared, RunSettings settings, IDipoleSink? dipoles)
     {
         IReadOnlyList<ResponseResult> responses = Assessor.Assess(prepared.Setup, dipoles, settings.Progress, settings.Cancellation);
-        IReadOnlyList<string> amplitudes = AmplitudeCheck.Judge(prepared.Reading, responses);
+        IReadOnlyList<string> amplitudes = [.. MomentCheck.JudgeFound(prepared.Reading, prepared.Setup, responses), .. AmplitudeCheck.Judge(prepared.Reading, responses)];
         return new Assessment
         {
             Study = prepared.Study,
             Version = Version,
             Inputs = prepared.Inputs,
-            Assumptions = prepared.Assumptions,
+            Assumptions = [.. prepared.Assumptions, .. FoundMoments(responses)],
             Warnings = [.. amplitudes.Concat(prepared.Warnings).Concat(responses.SelectMany(r => r.Regions).SelectMany(r => r.Warnings)).Distinct()],
             Responses = responses,
             SessionTrials = SessionPlan.Trials(prepared.Study.Protocol),
@@ -105,6 +106,13 @@ internal static class StudyPipeline
             Scene = prepared.Setup.Scene,
         };
     }
+
+    private static IEnumerable<Assumption> FoundMoments(IReadOnlyList<ResponseResult> responses) =>
+        from response in responses
+        where response.Response.Amplitude is not null
+        from region in response.Regions
+        select new Assumption($"{response.Response.Key}.moment_nAm ({region.Region})", Si.ToNanoAmpereMetres(region.Moment), "nAm", FromStudy: false,
+            $"found from the stated amplitude at {response.Response.Amplitude!.Derivation} through the leadfield: the median over dipoles and directions reads it", Grade.Derived);
 
     /// <summary>Writes the leadfields of every region into a folder that exists.</summary>
     public static void WriteLeadfield(PreparedStudy prepared, string folder, RunSettings settings) => LeadfieldWriter.Write(prepared, folder, settings);
