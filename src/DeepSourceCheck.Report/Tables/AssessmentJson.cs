@@ -123,6 +123,7 @@ public static class AssessmentJson
 
         json.WriteArray("results", region.Results, WriteMeasure);
         json.WriteArray("verdicts", region.Verdicts, WriteVerdict);
+        json.WriteRealisticHeads(region.RealisticHeads);
         json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();
     }
