@@ -59,7 +59,6 @@ internal static class WhyCommand
         {
             var settings = new RunSettings(memory, AssessCommand.Parts.ToHashSet(), line is null ? null : line.Report, surroundings.Interruption.Token) { CacheFolder = cache };
             PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Assess, settings);
-            SharedOptions.RefuseOverBudget(prepared, memory);
             assessment = surroundings.Steps.Assess(prepared, settings, null);
         }
 

@@ -1,8 +1,6 @@
 using System.Globalization;
 
-using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
-using DeepSourceCheck.Core.Planning;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -29,14 +27,11 @@ internal static class NoiseAssembly
     /// <summary>Builds the noise model and judges what the study states.</summary>
     /// <param name="reading">The study as read.</param>
     /// <param name="sensors">Sensors and head.</param>
-    /// <param name="setup">The study's parts, without noise.</param>
     /// <param name="inputs">Receives the files that are read.</param>
     /// <param name="warnings">Receives what the user must know.</param>
-    /// <returns>
-    /// The parts with their noise, null where it needs leadfields that a check does not compute; where the room's terms are removed, with leadfields after their removal.
-    /// </returns>
+    /// <returns>The noise; null where it needs leadfields that a check does not compute.</returns>
     /// <exception cref="InputException">Noise that contradicts itself or cannot be meant.</exception>
-    public static StudySetup Build(StudyReading reading, SensorAssembly sensors, StudySetup setup, InputDigests inputs, List<string> warnings)
+    public static BuiltNoise? Build(StudyReading reading, SensorAssembly sensors, InputDigests inputs, List<string> warnings)
     {
         Study study = reading.Study;
         NoiseChoice choice = study.Noise ?? new NoiseChoice();
@@ -60,7 +55,7 @@ internal static class NoiseAssembly
         BrainTables? brain = background ? Tables(choice, inputs) : null;
         if (background && !sensors.IsComputed)
         {
-            return setup;
+            return null;
         }
 
         BackgroundField? field = background && sensors.Tables() is { } tables ? Background(tables, sensors) : null;
@@ -78,12 +73,7 @@ internal static class NoiseAssembly
             NoiseModel model = builder.Build(eegCovariance, megCovariance, study.Responses);
             warnings.AddRange(builder.Warnings);
             CheckSamples(reading, model);
-            return model.MegOperator is not { } removal ? setup with { Noise = model } : setup with
-            {
-                Noise = model,
-                Source = new ProjectedSource(setup.Source, removal),
-                Removal = new(setup.Source, model.Unprojected(null), model.Unprojected(builder.Environment)),
-            };
+            return new BuiltNoise(model, model.MegOperator is null ? null : builder.Environment);
         }
         catch (InputException error) when (error.Problems.All(p => p.File is null))
         {

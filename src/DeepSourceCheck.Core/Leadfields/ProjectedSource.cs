@@ -5,7 +5,6 @@ namespace DeepSourceCheck.Core.Leadfields;
 /// <summary>Leadfields after an operator on their MEG rows: what an array reads once the room's spatial terms are taken out of it.</summary>
 public sealed class ProjectedSource : ILeadfieldSource
 {
-    private readonly ILeadfieldSource _inner;
     private readonly ChannelOperator _meg;
 
     /// <param name="inner">Leadfields of the channels as they are.</param>
@@ -17,16 +16,19 @@ public sealed class ProjectedSource : ILeadfieldSource
             throw new ArgumentException($"An operator from {meg.Inputs} to {meg.Outputs} channels does not act on {inner.MegRows} MEG rows.", nameof(meg));
         }
 
-        _inner = inner;
+        Inner = inner;
         _meg = meg;
         Method = inner.Method with { Meg = inner.Method.Meg + "; after removal of the room's homogeneous fields and gradients" };
     }
 
-    /// <inheritdoc/>
-    public int EegRows => _inner.EegRows;
+    /// <summary>Leadfields of the channels as they are.</summary>
+    public ILeadfieldSource Inner { get; }
 
     /// <inheritdoc/>
-    public int MegRows => _inner.MegRows;
+    public int EegRows => Inner.EegRows;
+
+    /// <inheritdoc/>
+    public int MegRows => Inner.MegRows;
 
     /// <inheritdoc/>
     public LeadfieldMethod Method { get; }
@@ -34,7 +36,7 @@ public sealed class ProjectedSource : ILeadfieldSource
     /// <inheritdoc/>
     public void Fill(LeadfieldBlock block)
     {
-        _inner.Fill(block);
+        Inner.Fill(block);
         double[] projected = ArrayPool<double>.Shared.Rent(block.Meg.Length);
         _meg.Apply(block.Meg, projected);
         projected.AsSpan(0, block.Meg.Length).CopyTo(block.Meg);
