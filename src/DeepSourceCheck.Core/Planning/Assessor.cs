@@ -55,10 +55,12 @@ public static class Assessor
                 (EvaluationPlan Plan, RegionTally Tally)[] read = [.. plans.All(asked).Select((p, k) => (p, new RegionRun(p, own.Head, source)
                     .Run(region, k == 0 ? Adapt(sink, p, setup, plans.Space) : null, n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + (k == 0 ? n : region.Positions.Length)) / total), cancellation)))];
                 done += region.Positions.Length;
-                regions.Add(Result(own, read, region, source, parts, cancellation));
+                RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
+                    : new RemovalReport(own, asked).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, Activation.Weights(response), cancellation) : setup.Removal.Source, cancellation);
+                regions.Add(Result(own, read, region, source, parts, loss, cancellation));
             }
 
-            results.Add(new ResponseResult(response, regions) { Waveform = plans.Waveform });
+            results.Add(new ResponseResult(response, regions) { Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
         }
 
         return results;
@@ -103,7 +105,7 @@ public static class Assessor
 
     private static RegionResult Result(
         StudySetup setup, IReadOnlyList<(EvaluationPlan Plan, RegionTally Tally)> read, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts,
-        CancellationToken cancellation)
+        RemovalLoss? loss, CancellationToken cancellation)
     {
         (EvaluationPlan plan, RegionTally tally) = read[0];
         RegionReport[] reports = [.. read.Select(r => Report(setup, r.Plan, r.Tally))];
@@ -132,9 +134,12 @@ public static class Assessor
             Split = split,
             FieldCaptured = captured.Min(),
             Profile = tally.Profile?.Profile(),
+            Removal = loss,
             Results = rows,
             Verdicts = verdicts,
-            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost)],
+            RealisticHeads = [.. parts.Select(p => p.RealisticHead).OfType<RealisticHeadEffect>()],
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
+                .. loss is null ? Array.Empty<string>() : [RemovalReport.Words(region.Name, loss)]],
         };
     }
 

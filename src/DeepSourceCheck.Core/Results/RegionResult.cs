@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Results;
@@ -35,11 +36,17 @@ public sealed record RegionResult
     /// <summary>SNR by depth and by angle over the cortex; null where the region is no folded cortex.</summary>
     public CorticalProfile? Profile { get; init; }
 
+    /// <summary>What the removal of the room's terms does to this region's MEG; null where nothing is removed or MEG sees nothing.</summary>
+    public RemovalLoss? Removal { get; init; }
+
     /// <summary>All figures.</summary>
     public required IReadOnlyList<MeasureResult> Results { get; init; }
 
     /// <summary>Answers.</summary>
     public required IReadOnlyList<VerdictResult> Verdicts { get; init; }
+
+    /// <summary>What a realistic head changes against spheres, as measured once for the library; one entry a library region, several where regions act together.</summary>
+    public IReadOnlyList<RealisticHeadEffect> RealisticHeads { get; init; } = [];
 
     /// <summary>What the user must know about this region.</summary>
     public IReadOnlyList<string> Warnings { get; init; } = [];

@@ -9,4 +9,7 @@ public sealed record ResponseResult(Response Response, IReadOnlyList<RegionResul
 {
     /// <summary>What filter and jitter leave of it; null where nothing is known of its course in time.</summary>
     public WaveformResult? Waveform { get; init; }
+
+    /// <summary>Noise over frequency at the readings of the first region's verdicts, EEG then MEG.</summary>
+    public IReadOnlyList<ReadingSpectrum> Spectra { get; init; } = [];
 }
