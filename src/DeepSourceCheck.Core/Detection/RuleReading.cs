@@ -16,6 +16,9 @@ public sealed record RuleReading(
     /// <summary>Rms of the response over its window per peak amplitude, without unit, of the response and region; NaN where not known (yet).</summary>
     public double WindowPerPeak { get; init; } = double.NaN;
 
+    /// <summary>True: the response is a sinusoid, read as power of one bin.</summary>
+    public bool SteadyState { get; init; }
+
     /// <summary>A single reading with noise of standard deviation 1.</summary>
     public static RuleReading Single(Modality modality = Modality.Eeg) => new(modality, "", 1);
 

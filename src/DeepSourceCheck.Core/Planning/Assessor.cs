@@ -50,8 +50,16 @@ public static class Assessor
                 StudySetup own = source is SummedSource ? setup with { Head = new SummedHead(setup.Head) } : setup;
                 RegionTally tally = new RegionRun(plan, own.Head, source)
                     .Run(region, Adapt(sink, plan, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
+                EvaluationPlan known = plan;
+                if (plan.StandsOnWindow)
+                {
+                    known = plan.WithWindow(WindowRatio.Of(plan, tally));
+                    // Under an artefact percentiles run over figures that already hold the ratio.
+                    tally = plan.HasArtefact(Modality.Both) ? new RegionRun(known, own.Head, source).Run(region, null, null, cancellation) : tally;
+                }
+
                 done += region.Positions.Length;
-                regions.Add(Result(own, plan, region, source, parts, tally, cancellation));
+                regions.Add(Result(own, known, region, source, parts, tally, cancellation));
             }
 
             results.Add(new ResponseResult(response, regions));

@@ -62,9 +62,9 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
 
         Add("SNR", "the same in decibels", RegionReport.Decibels(witness.Power), "dB", "10 log10(P)", "Goldenholz et al. 2009", Grade.Memory);
         _lines.AddRange(rule.Chain(witness.Power, witness.Artefact, witness.InverseVariance));
-        if (plan.Protocol is { } protocol && double.IsFinite(_lines[^1].Value))
+        double trials = _lines.Last(l => l.Symbol == "N").Value;
+        if (plan.Protocol is { } protocol && double.IsFinite(trials))
         {
-            double trials = _lines[^1].Value;
             Input("r", "stimuli per second", protocol.Rate, "1/s", "protocol.rate_per_s");
             Input("f", "share of trials that are rejected", protocol.RejectedFraction, "", "protocol.rejected_fraction");
             Add("M", "presented trials", trials / (1 - protocol.RejectedFraction), "", "N / (1 - f)", "definition", Grade.Derived);

@@ -8,7 +8,7 @@ namespace DeepSourceCheck.Core.Planning;
 /// <summary>What is read from every dipole of one response: measures, directions, rules.</summary>
 public sealed class EvaluationPlan
 {
-    private readonly Dictionary<IMeasure, IReadOnlyList<ITargetRule>> _rules;
+    private Dictionary<IMeasure, IReadOnlyList<ITargetRule>> _rules;
 
     /// <param name="response">The response.</param>
     /// <param name="space">Its channels.</param>
@@ -60,7 +60,7 @@ public sealed class EvaluationPlan
         }
 
         Measures = measures;
-        _rules = measures.ToDictionary(m => m, m => (IReadOnlyList<ITargetRule>)[.. targets.Select(t => RuleBinding.Of(t, RuleReading.Of(m, space, NoiseFactor)))]);
+        _rules = Bound(double.NaN);
         Directions =
         [
             .. splitPossible ? new[] { DirectionName.QuasiRadial, DirectionName.Tangential, DirectionName.StrongestTangential } : [],
@@ -111,6 +111,27 @@ public sealed class EvaluationPlan
 
     /// <summary>The targets' rules on a measure, in the study's order.</summary>
     public IReadOnlyList<ITargetRule> RulesOf(IMeasure measure) => _rules[measure];
+
+    /// <summary>Whether a rule stands on the ratio of window rms to peak, which is known only when a region was read.</summary>
+    public bool StandsOnWindow => Targets.Any(t => t is VarianceRatioChoice);
+
+    /// <summary>The direction that carries the verdict.</summary>
+    public DirectionName VerdictDirection => Directions.Contains(Response.Direction.Name) ? Response.Direction.Name : DirectionName.Isotropic;
+
+    /// <summary>The same plan, measures and all, with rules that know the ratio.</summary>
+    /// <param name="windowPerPeak">Rms over the window per peak amplitude; 0 where it is not to be had.</param>
+    public EvaluationPlan WithWindow(double windowPerPeak)
+    {
+        var plan = (EvaluationPlan)MemberwiseClone();
+        plan._rules = Bound(windowPerPeak);
+        return plan;
+    }
+
+    private Dictionary<IMeasure, IReadOnlyList<ITargetRule>> Bound(double windowPerPeak) => Measures.ToDictionary(m => m, m =>
+    {
+        RuleReading reading = RuleReading.Of(m, Space, NoiseFactor) with { WindowPerPeak = windowPerPeak };
+        return (IReadOnlyList<ITargetRule>)[.. Targets.Select(t => RuleBinding.Of(t, reading))];
+    });
 
     /// <summary>Whether percentiles of a rule on a measure run over powers that the rule makes of each reading, not over the powers themselves.</summary>
     public bool CountsEffective(IMeasure measure, ITargetRule rule) => rule.Absent is null && (HasArtefact(measure.Modality) || rule.StandsOnNoise);

@@ -17,7 +17,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     public IReadOnlyList<VerdictResult> Write(ref IReadOnlyList<MeasureResult> rows, CancellationToken cancellation)
     {
         var asked = new List<MedianSearch.Question>();
-        DirectionName direction = plan.Directions.Contains(plan.Response.Direction.Name) ? plan.Response.Direction.Name : DirectionName.Isotropic;
+        DirectionName direction = plan.VerdictDirection;
         foreach ((Modality modality, string? name) in new[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) })
         {
             if (name is null)

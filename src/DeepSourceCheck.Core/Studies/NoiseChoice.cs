@@ -18,6 +18,9 @@ public sealed record NoiseChoice
     /// <summary>True: default brain tables; false: none; null: not stated (on when <see cref="EegTotal"/> is given, else off).</summary>
     public bool? Brain { get; init; }
 
+    /// <summary>Standard deviation, without unit, of ln s from trial to trial, s the rms of one trial; null: not stated.</summary>
+    public double? SpreadBetweenTrials { get; init; }
+
     /// <summary>Flat figure per trial, every electrode alike [V].</summary>
     public double? EegRms { get; init; }
 

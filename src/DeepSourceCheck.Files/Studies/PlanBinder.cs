@@ -1,4 +1,6 @@
+using DeepSourceCheck.Core.Numerics;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Files.Studies;
 
@@ -8,7 +10,9 @@ internal static class PlanBinder
     private const double SecondsPerMinute = 60;
 
     /// <summary>The rules in the order of the file; the amplitude ratio where the study states none.</summary>
-    public static IReadOnlyList<TargetChoice> Targets(Section root)
+    /// <param name="root">The study.</param>
+    /// <param name="hasEeg">Whether the study has EEG.</param>
+    public static IReadOnlyList<TargetChoice> Targets(Section root, bool hasEeg)
     {
         Section? target = root.Map("target");
         if (target is null)
@@ -23,10 +27,20 @@ internal static class PlanBinder
             {
                 rules.Add(new AmplitudeRatioChoice(ratio));
             }
+            else if (name == "residual_nV" && target.Number(name) is { } residual)
+            {
+                rules.Add(new ResidualNoiseChoice(Si.FromNanovolts(residual)));
+            }
+            else if (name == "variance_ratio" && target.Map(name) is { } ratioRule)
+            {
+                if (VarianceRatio(ratioRule, hasEeg) is { } choice)
+                {
+                    rules.Add(choice);
+                }
+            }
             else if (name == "detection" && target.Map(name) is { } detection)
             {
-                detection.Text("topography");
-                detection.Text("covariance");
+                string? topography = detection.Text("topography"), covariance = detection.Text("covariance");
                 double? alpha = detection.Number("alpha"), power = detection.Number("power"), looks = detection.Number("looks");
                 if (alpha is { } a && power is { } p && looks is { } k)
                 {
@@ -35,17 +49,58 @@ internal static class PlanBinder
                         detection.Problem("power", FormattableString.Invariant($"the probability of detection {p:0.######} is not above the false-alarm rate alpha {a:0.######}, which chance alone reaches; 0.8 or 0.9 are usual"));
                     }
 
-                    rules.Add(new DetectionChoice(a, p, k));
+                    rules.Add(new DetectionChoice(a, p, k,
+                        topography switch { "plane" => Topography.Plane, "unknown" => Topography.Unknown, _ => Topography.Known }, covariance == "estimated"));
                 }
             }
         }
 
         if (rules.Count == 0 && !StudyKeys.Below("target").Any(key => target.States(key.Name)))
         {
-            root.Problem("target", "states no rule; write amplitude_ratio, detection or both");
+            root.Problem("target", "states no rule; write amplitude_ratio, detection, variance_ratio or residual_nV, or several of them");
         }
 
         return rules;
+    }
+
+    private static VarianceRatioChoice? VarianceRatio(Section rule, bool hasEeg)
+    {
+        if (!hasEeg)
+        {
+            rule.Problem("window_rms_uV", "is a voltage, and the study has no EEG for which it could be stated; use amplitude_ratio or detection");
+        }
+
+        if (rule.States("critical") && rule.States("alpha"))
+        {
+            rule.Problem("alpha", "stands beside critical; state one of them: the value itself, or the false-alarm rate whose exact value is taken");
+            rule.Skip("critical");
+            rule.Skip("alpha");
+        }
+
+        double? alpha = rule.Number("alpha"), critical = rule.States("alpha") ? null : rule.Number("critical");
+        double? power = rule.Number("power"), window = rule.Number("window_rms_uV");
+        if (rule.Band("degrees") is not { } degrees || window is null || (alpha is null && critical is null))
+        {
+            return null;
+        }
+
+        double stated = critical ?? NoncentralF.Critical(alpha!.Value, degrees.Low, degrees.High);
+        double chance = NoncentralF.Survival(stated, degrees.Low, degrees.High, 0);
+        string key = rule.States("alpha") ? "alpha" : "critical";
+        if (power <= chance)
+        {
+            rule.Problem("power", FormattableString.Invariant($"the probability {power:0.######} is not above {chance:0.######}, with which noise alone passes {stated:0.###}; 0.8 or 0.9 are usual"));
+        }
+        else if (power is null && degrees.High <= 2)
+        {
+            rule.Problem("degrees", FormattableString.Invariant($"with {degrees.High:0} degrees of freedom of the noise the expected ratio does not exist; state more than 2, or state power"));
+        }
+        else if (power is null && stated <= degrees.High / (degrees.High - 2))
+        {
+            rule.Problem(key, FormattableString.Invariant($"the critical value {stated:0.######} is not above {degrees.High / (degrees.High - 2):0.######}, which the ratio of noise alone has on average; 3.1 is usual"));
+        }
+
+        return new(critical, alpha, power, Si.FromMicrovolts(window.Value), degrees.Low, degrees.High);
     }
 
     public static Protocol? Protocol(Section root)
@@ -57,6 +112,12 @@ internal static class PlanBinder
 
         double? rate = protocol.Number("rate_per_s"), rejected = protocol.Number("rejected_fraction");
         double? session = protocol.Number("session_min"), preparation = protocol.Number("preparation_min"), breaks = protocol.Number("breaks_min");
+        double? jitter = protocol.Number("interval_jitter_ms");
+        if (rate is { } r && jitter / 1000 * r > 1)
+        {
+            protocol.Problem("interval_jitter_ms", FormattableString.Invariant($"{jitter:0.######} ms is longer than the {1000 / r:0.######} ms between stimuli at rate_per_s; state at most that"));
+        }
+
         double? conditions = protocol.Number("conditions"), replications = protocol.Number("replications");
         return rate is null || rejected is null || conditions is null || replications is null ? null : new()
         {
@@ -65,6 +126,7 @@ internal static class PlanBinder
             Session = session * SecondsPerMinute,
             Preparation = preparation * SecondsPerMinute,
             Breaks = breaks * SecondsPerMinute,
+            IntervalJitter = jitter / 1000,
             Conditions = (int)conditions.Value,
             Replications = (int)replications.Value,
         };
