@@ -36,7 +36,10 @@ public static class Assessor
             progress?.Invoke($"noise of {response.Name}", (double)done / total);
             NoiseCovariance noise = setup.Noise!.InBand(response.Band.Low, response.Band.High);
             var space = new SignalSpace(noise, setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
-            var plan = new EvaluationPlan(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
+            var plan = new EvaluationPlan(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0)
+            {
+                WeightingGain = setup.Study.Noise?.SpreadBetweenTrials is { } spread ? Math.Exp(4 * spread * spread) : null,
+            };
             if (!begun)
             {
                 sink?.Begin(AllColumns(setup, space));

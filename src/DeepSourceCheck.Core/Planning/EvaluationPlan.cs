@@ -118,6 +118,10 @@ public sealed class EvaluationPlan
     /// <summary>The direction that carries the verdict.</summary>
     public DirectionName VerdictDirection => Directions.Contains(Response.Direction.Name) ? Response.Direction.Name : DirectionName.Isotropic;
 
+    /// <summary>Factor, without unit, by which weighting each trial by its own noise lowers the noise power; null where the study states no spread between trials.</summary>
+    /// <remarks>Plain averaging leaves mean(s^2)/N, weighted 1/sum(1/s^2): for a lognormal s the ratio is exp(var ln s^2) = exp(4 var ln s).</remarks>
+    public double? WeightingGain { get; init; }
+
     /// <summary>The same plan, measures and all, with rules that know the ratio.</summary>
     /// <param name="windowPerPeak">Rms over the window per peak amplitude; 0 where it is not to be had.</param>
     public EvaluationPlan WithWindow(double windowPerPeak)

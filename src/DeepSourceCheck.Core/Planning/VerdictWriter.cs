@@ -64,7 +64,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
 
             TargetResult target = row.Targets[rule];
             double? minutes = count is { } n && plan.Protocol is { } protocol ? SessionPlan.Minutes(protocol, n) : null;
-            target = target with { Trials = target.Trials with { P50 = count }, Minutes = target.Minutes is null ? null : target.Minutes with { P50 = minutes } };
+            target = RegionReport.WithPlan(
+                target with { Trials = target.Trials with { P50 = count }, Minutes = target.Minutes is null ? null : target.Minutes with { P50 = minutes } }, plan.Protocol);
             return row with { Targets = [.. row.Targets.Select((t, k) => k == rule ? target : t)] };
         })];
     }
@@ -91,6 +92,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Direction = row.Direction,
             Text = Text(row, target, fits, witness),
             FitsSession = fits,
+            Averaging = Averaging.Of(plan, setup.Noise!, witness, count),
             Chain = chain,
         };
     }

@@ -132,6 +132,40 @@ internal static class PlanBinder
         };
     }
 
+    /// <summary>Warnings about the rate: harmonics that meet the mains, and those within the alpha band of a response.</summary>
+    public static void CheckRate(IReadOnlyList<Response> responses, Protocol? protocol, Reading reading)
+    {
+        if (protocol is null)
+        {
+            return;
+        }
+
+        const string Key = "protocol.rate_per_s";
+        const double MainsWanders = 0.05, AlphaLow = 8, AlphaHigh = 12;     // Hz; common practice, no source
+        string remedy = protocol.IntervalJitter > 0 ? "; the stated protocol.interval_jitter_ms counters it" : "; choose another rate, or state protocol.interval_jitter_ms";
+        foreach (double mains in new[] { 50.0, 60.0 })
+        {
+            double harmonic = Math.Round(mains / protocol.Rate);
+            if (harmonic >= 1 && Math.Abs(harmonic * protocol.Rate - mains) <= MainsWanders)
+            {
+                reading.Warn(Key, FormattableString.Invariant(
+                    $"{protocol.Rate:0.######} a second is a submultiple of the mains frequency of {mains:0} Hz, which then does not average away where it is the local one{remedy}"));
+            }
+        }
+
+        // Below half the band's width several harmonics fall into it and the alpha rhythm averages as between them.
+        foreach (Response response in responses.Where(_ => protocol.Rate >= (AlphaHigh - AlphaLow) / 2))
+        {
+            double low = Math.Max(AlphaLow, response.Band.Low), high = Math.Min(AlphaHigh, response.Band.High);
+            double harmonic = Math.Max(1, Math.Ceiling(low / protocol.Rate));
+            if (high > low && harmonic * protocol.Rate <= high)
+            {
+                reading.Warn(Key, FormattableString.Invariant(
+                    $"{harmonic:0} x {protocol.Rate:0.######} = {harmonic * protocol.Rate:0.###} Hz lies in the alpha rhythm (8 to 12 Hz) within the band of {response.Name}: alpha then averages worse than 1/N; effective numbers of trials know the noise tables alone{remedy}"));
+            }
+        }
+    }
+
     /// <summary>Warnings about the analysis window: against the interval between stimuli, and against one look.</summary>
     public static void CheckWindows(IReadOnlyList<Response> responses, IReadOnlyList<TargetChoice> targets, Protocol? protocol, Reading reading)
     {

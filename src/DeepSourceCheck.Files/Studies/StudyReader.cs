@@ -80,6 +80,7 @@ public static class StudyReader
         IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root, sensors.HasEeg);
         Protocol? protocol = PlanBinder.Protocol(root);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
+        PlanBinder.CheckRate(responses, protocol, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
         {
