@@ -16,7 +16,7 @@ public sealed record RuleReading(
     /// <summary>Rms of the response over its window per peak amplitude, without unit, of the response and region; NaN where not known (yet).</summary>
     public double WindowPerPeak { get; init; } = double.NaN;
 
-    /// <summary>True where a steady-state response is read in one bin of the spectrum.</summary>
+    /// <summary>True: the response is a sinusoid, read as power of one bin.</summary>
     public bool SteadyState { get; init; }
 
     /// <summary>A single reading with noise of standard deviation 1.</summary>

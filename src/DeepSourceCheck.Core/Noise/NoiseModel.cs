@@ -197,6 +197,37 @@ public sealed class NoiseModel
         return result;
     }
 
+    /// <summary>Power density [V^2/Hz, T^2/Hz or (T/m)^2/Hz] of one reading; null where it is stated per trial, without a spectrum.</summary>
+    /// <param name="eeg">Weights over the electrodes, or null for a MEG channel.</param>
+    /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
+    public Func<double, double>? Density(double[]? eeg, int megChannel)
+    {
+        if ((eeg is null ? MegPerTrial : EegPerTrial) is not null)
+        {
+            return null;
+        }
+
+        double[] weights = eeg ?? new double[MegRows];
+        if (eeg is null)
+        {
+            weights[megChannel] = 1;
+        }
+
+        (INoiseTerm Term, double Variance)[] parts =
+            [.. Terms.Where(t => (eeg is null ? t.Meg : t.Eeg) is not null).Select(t => (t, UnitVariance((eeg is null ? t.Meg : t.Eeg)!, weights)))];
+        return f =>
+        {
+            double sum = 0;
+            foreach ((INoiseTerm term, double variance) in parts)
+            {
+                NoisePower power = term.At(f);
+                sum += variance * (eeg is null ? power.Meg : power.Eeg);
+            }
+
+            return sum;
+        };
+    }
+
     /// <summary>w' (D + F F') w, in the unit of the pattern.</summary>
     /// <param name="pattern">Pattern at unit power.</param>
     /// <param name="weights">w, one a row.</param>

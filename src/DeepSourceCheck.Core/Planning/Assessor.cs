@@ -2,6 +2,7 @@ using System.Buffers;
 using System.Globalization;
 
 using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
 using DeepSourceCheck.Core.Regions;
@@ -52,8 +53,8 @@ public static class Assessor
                 StudySetup own = source is SummedSource ? setup with { Head = new SummedHead(setup.Head) } : setup;
                 EvaluationPlan asked = response.Amplitude is null ? plan
                     : plans.Peak(response with { Moment = MomentFromAmplitude.Find(plan, own.Head, source, region, cancellation) });
-                (EvaluationPlan Plan, RegionTally Tally)[] read = [.. plans.All(asked).Select((p, k) => (p, new RegionRun(p, own.Head, source)
-                    .Run(region, k == 0 ? Adapt(sink, p, setup, plans.Space) : null, n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + (k == 0 ? n : region.Positions.Length)) / total), cancellation)))];
+                IReadOnlyList<(EvaluationPlan Plan, RegionTally Tally)> read = Read(plans, asked, own.Head, source, region, Adapt(sink, asked, setup, plans.Space),
+                    n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
                 done += region.Positions.Length;
                 RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
                     : new RemovalReport(own, asked).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, Activation.Weights(response), cancellation) : setup.Removal.Source, cancellation);
@@ -141,6 +142,29 @@ public static class Assessor
             Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
                 .. loss is null ? Array.Empty<string>() : [RemovalReport.Words(region.Name, loss)]],
         };
+    }
+
+    private static IReadOnlyList<(EvaluationPlan Plan, RegionTally Tally)> Read(
+        PlanSet plans, EvaluationPlan peak, IHead head, ILeadfieldSource source, FilledRegion region, IDipoleSink? sink, Action<long>? progress, CancellationToken cancellation)
+    {
+        RegionTally tally = new RegionRun(peak, head, source).Run(region, sink, progress, cancellation);
+        double window = double.NaN;
+        if (peak.StandsOnWindow)
+        {
+            window = WindowRatio.Of(peak, tally);
+            peak = peak.WithWindow(window);
+            // Under an artefact percentiles run over figures that already hold the ratio.
+            tally = peak.HasArtefact(Modality.Both) ? new RegionRun(peak, head, source).Run(region, null, null, cancellation) : tally;
+        }
+
+        var read = new List<(EvaluationPlan, RegionTally)> { (peak, tally) };
+        foreach (EvaluationPlan other in plans.Others(peak))
+        {
+            EvaluationPlan own = peak.StandsOnWindow ? other.WithWindow(window) : other;
+            read.Add((own, new RegionRun(own, head, source).Run(region, null, null, cancellation)));
+        }
+
+        return read;
     }
 
     private static RegionReport Report(StudySetup setup, EvaluationPlan plan, RegionTally tally)

@@ -98,13 +98,21 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
 
         Add("SNR", "the same in decibels", RegionReport.Decibels(witness.Power), "dB", "10 log10(P)", "Goldenholz et al. 2009", Grade.Memory);
         _lines.AddRange(rule.Chain(witness.Power, witness.Artefact, witness.InverseVariance));
-        if (plan.Protocol is { } protocol && double.IsFinite(_lines[^1].Value))
+        double trials = _lines.Last(l => l.Symbol == "N").Value;
+        if (plan.Protocol is { } protocol && double.IsFinite(trials))
         {
-            double trials = _lines[^1].Value;
             Input("r", "stimuli per second", protocol.Rate, "1/s", "protocol.rate_per_s");
             Input("f", "share of trials that are rejected", protocol.RejectedFraction, "", "protocol.rejected_fraction");
             Add("M", "presented trials", trials / (1 - protocol.RejectedFraction), "", "N / (1 - f)", "definition", Grade.Derived);
             Add("T", "recording time", SessionPlan.Minutes(protocol, trials), "min", "N / (60 r (1 - f))", "definition", Grade.Derived);
+            if (protocol.Conditions * protocol.Replications > 1 || protocol.Breaks is not null || protocol.Preparation is not null)
+            {
+                Input("nc", "conditions", protocol.Conditions, "", "protocol.conditions");
+                Input("nr", "replications of each", protocol.Replications, "", "protocol.replications");
+                Input("tb", "breaks", (protocol.Breaks ?? 0) / 60, "min", "protocol.breaks_min");
+                Input("tp", "preparation", (protocol.Preparation ?? 0) / 60, "min", "protocol.preparation_min");
+                Add("H", "time in the chair", SessionPlan.ChairMinutes(protocol, trials), "min", "T nc nr + tb + tp", "definition", Grade.Derived);
+            }
         }
 
         return [.. _lines];

@@ -8,7 +8,7 @@ namespace DeepSourceCheck.Core.Planning;
 /// <summary>What is read from every dipole of one response: measures, directions, rules.</summary>
 public sealed class EvaluationPlan
 {
-    private readonly Dictionary<IMeasure, IReadOnlyList<ITargetRule>> _rules;
+    private Dictionary<IMeasure, IReadOnlyList<ITargetRule>> _rules;
 
     /// <param name="response">The response.</param>
     /// <param name="space">Its channels.</param>
@@ -71,7 +71,7 @@ public sealed class EvaluationPlan
         }
 
         Measures = measures;
-        _rules = measures.ToDictionary(m => m, m => (IReadOnlyList<ITargetRule>)[.. targets.Select(t => RuleBinding.Of(t, RuleReading.Of(m, space, NoiseFactor) with { SteadyState = response.Steady is not null }))]);
+        _rules = Bound(double.NaN);
         Directions =
         [
             .. splitPossible ? new[] { DirectionName.QuasiRadial, DirectionName.Tangential, DirectionName.StrongestTangential } : [],
@@ -160,6 +160,28 @@ public sealed class EvaluationPlan
 
     /// <summary>The targets' rules on a measure, in the study's order.</summary>
     public IReadOnlyList<ITargetRule> RulesOf(IMeasure measure) => _rules[measure];
+
+    /// <summary>Whether a rule stands on the ratio of window rms to peak, which is known only when a region was read.</summary>
+    public bool StandsOnWindow => Targets.Any(t => t is VarianceRatioChoice);
+
+    /// <summary>Factor, without unit, by which weighting each trial by its own noise lowers the noise power; null where the study states no spread between trials.</summary>
+    /// <remarks>Plain averaging leaves mean(s^2)/N, weighted 1/sum(1/s^2): for a lognormal s the ratio is exp(var ln s^2) = exp(4 var ln s).</remarks>
+    public double? WeightingGain { get; init; }
+
+    /// <summary>The same plan, measures and all, with rules that know the ratio.</summary>
+    /// <param name="windowPerPeak">Rms over the window per peak amplitude; 0 where it is not to be had.</param>
+    public EvaluationPlan WithWindow(double windowPerPeak)
+    {
+        var plan = (EvaluationPlan)MemberwiseClone();
+        plan._rules = Bound(windowPerPeak);
+        return plan;
+    }
+
+    private Dictionary<IMeasure, IReadOnlyList<ITargetRule>> Bound(double windowPerPeak) => Measures.ToDictionary(m => m, m =>
+    {
+        RuleReading reading = RuleReading.Of(m, Space, NoiseFactor) with { WindowPerPeak = windowPerPeak, SteadyState = Response.Steady is not null };
+        return (IReadOnlyList<ITargetRule>)[.. Targets.Select(t => RuleBinding.Of(t, reading))];
+    });
 
     /// <summary>Whether percentiles of a rule on a measure run over powers that the rule makes of each reading, not over the powers themselves.</summary>
     public bool CountsEffective(IMeasure measure, ITargetRule rule) => rule.Absent is null && (HasArtefact(measure.Modality) || rule.StandsOnNoise);

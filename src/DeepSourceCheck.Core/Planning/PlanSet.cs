@@ -69,11 +69,11 @@ internal sealed class PlanSet
     /// <param name="response">The response, its moment found.</param>
     public EvaluationPlan Peak(Response response) => Plan(response, Space, _view);
 
-    /// <summary>All plans, the peak's first.</summary>
+    /// <summary>All other plans.</summary>
     /// <param name="peak">The peak's plan.</param>
-    public IReadOnlyList<EvaluationPlan> All(EvaluationPlan peak)
+    public IReadOnlyList<EvaluationPlan> Others(EvaluationPlan peak)
     {
-        var plans = new List<EvaluationPlan> { peak };
+        var plans = new List<EvaluationPlan>();
         foreach (FilterErrors? errors in new[] { null, _errors }.Take(_errors is null ? 1 : 2))
         {
             PlanView view = _view with { Errors = errors };
@@ -92,7 +92,10 @@ internal sealed class PlanSet
     }
 
     private EvaluationPlan Plan(Response response, SignalSpace space, PlanView view) =>
-        new(response, space, _setup.Study.Targets, _setup.Study.ProtocolFor(response), _setup.MegReported, _setup.MegNames.Count > 0, view);
+        new(response, space, _setup.Study.Targets, _setup.Study.ProtocolFor(response), _setup.MegReported, _setup.MegNames.Count > 0, view)
+        {
+            WeightingGain = _setup.Study.Noise?.SpreadBetweenTrials is { } spread ? Math.Exp(4 * spread * spread) : null,
+        };
 
     private Waveform? Course(Response response) => response.Waveform switch
     {

@@ -62,7 +62,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
 
             TargetResult target = row.Targets[rule];
             double? minutes = count is { } n && plan.Protocol is { } protocol ? SessionPlan.Minutes(protocol, n) : null;
-            target = target with { Trials = target.Trials with { P50 = count }, Minutes = target.Minutes is null ? null : target.Minutes with { P50 = minutes } };
+            target = RegionReport.WithPlan(
+                target with { Trials = target.Trials with { P50 = count }, Minutes = target.Minutes is null ? null : target.Minutes with { P50 = minutes } }, plan.Protocol);
             return row with { Targets = [.. row.Targets.Select((t, k) => k == rule ? target : t)] };
         })];
     }
@@ -90,11 +91,12 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Text = Text(row, target, fits, witness) + Coherence(bound, witness) + RangeText(AtMoments(bound, witness)),
             FitsSession = fits,
             AtMoments = AtMoments(bound, witness),
+            Averaging = Averaging.Of(plan, setup.Noise!, witness, count),
             Chain = chain,
         };
     }
 
-    private static string Coherence(ITargetRule rule, MedianWitness? witness) => rule is not SpectralFRule spectral || witness is null
+    private static string Coherence(ITargetRule rule, MedianWitness? witness) => rule is not SteadyStateRule spectral || witness is null
         || spectral.CoherenceTrials(rule.EffectivePower(witness.Power, witness.Artefact)) is not { } trials || trials > TrialCount.MostPlanned ? ""
         : string.Create(CultureInfo.InvariantCulture, $" By coherence over trials {trials:N0}.");
 

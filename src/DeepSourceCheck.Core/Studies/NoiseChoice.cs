@@ -36,6 +36,9 @@ public sealed record NoiseChoice
     /// <summary>Magnetic noise of the room; null for none.</summary>
     public EnvironmentChoice? Environment { get; init; }
 
+    /// <summary>Standard deviation, without unit, of ln s from trial to trial, s the rms of one trial; null: not stated.</summary>
+    public double? SpreadBetweenTrials { get; init; }
+
     /// <summary>Flat figure per trial, every electrode alike [V].</summary>
     public double? EegRms { get; init; }
 

@@ -77,9 +77,10 @@ public static class StudyReader
         NoiseChoice? noise = NoiseBinder.Bind(root, sensors, reading);
         IReadOnlyList<RegionChoice> regions = RegionBinder.Bind(root, sensors, reading);
         IReadOnlyList<Response> responses = ResponseBinder.Bind(root, sensors, reading);
-        IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root);
+        IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root, sensors.HasEeg, responses);
         Protocol? protocol = PlanBinder.Protocol(root, responses);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
+        PlanBinder.CheckRate(responses, protocol, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
         {

@@ -106,9 +106,18 @@ public static class Say
     {
         AmplitudeRatioChoice a when measured == Measured.PeakToTrough => $"peak-to-trough = {Stated(a.Ratio)} × sqrt(2) × residual rms",
         AmplitudeRatioChoice a => $"peak = {Stated(a.Ratio)} × residual rms",
-        DetectionChoice d => $"detected with power {Percent(d.Power)} at false-alarm rate {Stated(d.Alpha)}{(d.Looks > 1 ? $" over {Stated(d.Looks)} looks" : "")}",
+        DetectionChoice d => $"detected with power {Percent(d.Power)} at false-alarm rate {Stated(d.Alpha)}{(d.Looks > 1 ? $" over {Stated(d.Looks)} looks" : "")}{Unknowns(d)}",
+        VarianceRatioChoice v when v.Power is { } p => $"variance ratio above {Critical(v)} with power {Percent(p)}",
+        VarianceRatioChoice v => $"variance ratio expected at {Critical(v)}",
+        ResidualNoiseChoice r => $"residual noise of {Stated(Math.Round(Si.ToMicrovolts(r.Residual) * 1000, 6))} nV",
         _ => "the study's target",
     };
+
+    private static string Critical(VarianceRatioChoice v) => v.Critical is { } c ? Stated(c) : $"the critical value of F({Stated(v.Above)}, {Stated(v.Below)}) at {Stated(v.Alpha!.Value)}";
+
+    // Known topography and covariance are the plain case and go unsaid.
+    private static string Unknowns(DetectionChoice d) =>
+        (d.Topography == Topography.Known ? "" : $", topography {Names.Of(d.Topography)}") + (d.CovarianceEstimated ? ", noise estimated from the same trials" : "");
 
     /// <summary>How amplitudes are read: `peak to trough`, `baseline to peak`.</summary>
     public static string Convention(Measured measured) => measured == Measured.PeakToTrough ? "peak to trough" : "baseline to peak";

@@ -70,9 +70,39 @@ public static class ConsoleSummary
         text.Append('\n').Append(WhyText.Wrap(string.Join(" ", answer.Answers.Where(a => a.Modality != Modality.Both || answer.Answers.Count == 1).Select(a => Sentence(assessment, a))), 0)).Append('\n');
         Table(text, answer);
         text.Append('\n').Append(ConsoleChart.Of(assessment, answer, ink)).Append('\n');
+        Rules(text, assessment, response, answer.Region);
         Facts(text, assessment, answer);
         Others(text, assessment, response, answer);
         Variants(text, assessment, response, answer.Region);
+    }
+
+    // Rules side by side, a row each; a single rule stands in the table above.
+    private static void Rules(StringBuilder text, Assessment assessment, ResponseResult response, RegionResult region)
+    {
+        IReadOnlyList<RuleRow> rows = RuleRow.Of(assessment, response.Response, region);
+        if (rows.Count < 2)
+        {
+            return;
+        }
+
+        const int NameLength = 31;
+        Modality[] modalities = [.. rows[0].Answer.Answers.Select(a => a.Modality).Where(m => m != Modality.Both)];
+        text.Append($"{"by rule",-NameLength}{string.Concat(modalities.Select(m => $"{Names.Of(m) + " trials",14}{"minutes",9}"))}\n");
+        foreach (RuleRow row in rows)
+        {
+            text.Append($"{row.Label,-NameLength}");
+            foreach (Modality modality in modalities)
+            {
+                ModalityAnswer? answer = row.Answer.Of(modality);
+                bool counted = answer is { HasCount: true };
+                string count = counted ? Say.Trials(answer!.Trials) : answer is { Outcome: Outcome.Silent } ? "silent" : answer is { Trials: not null } || answer?.Verdict.Chain.Count > 0 ? Say.OutOfReach : "-";
+                text.Append($"{count,14}{(counted && answer!.Minutes is { } m ? m < 0.1 ? "< 0.1" : Say.Minutes(m) : "-"),9}");
+            }
+
+            text.Append('\n');
+        }
+
+        text.Append('\n');
     }
 
     // A row each; change is that of the SNR in dB, the study's own row has none.
@@ -207,10 +237,26 @@ public static class ConsoleSummary
             text.Append(Fact($"{Names.Of(a.Modality)} at the published leak", $"{Say.Stated(leak.Leak)} of the strongest direction: {count}"));
         }
 
+        Chair(text, assessment, answer);
         double?[] sure = [.. answer.Answers.Select(a => a.Verdict.Assurance)];
         text.Append(Fact("how sure", sure.Any(s => s is not null)
             ? string.Join("   ", answer.Answers.Where(a => a.Verdict.Assurance is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Assurance(a.Verdict.Assurance!.Value)}"))
             : "not asked: the study states no unknowns"));
+    }
+
+    // What the session's recording takes in the chair: a plan needs it beside the minutes of one average.
+    private static void Chair(StringBuilder text, Assessment assessment, RegionAnswer answer)
+    {
+        if (assessment.Study.Protocol is not { } p || (p.Conditions * p.Replications == 1 && p.Breaks is null && p.Preparation is null))
+        {
+            return;
+        }
+
+        string[] chairs = [.. answer.Answers.Where(a => a.HasCount && a.Target?.ChairMinutes?.P50 is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Minutes(a.Target!.ChairMinutes!.P50!.Value)} min")];
+        if (chairs.Length > 0)
+        {
+            text.Append(Fact("in the chair, all told", string.Join("   ", chairs)));
+        }
     }
 
     private static string Fact(string name, string words) =>

@@ -28,7 +28,7 @@ public static class PowerFigure
             return null;
         }
 
-        DetectionChoice? stated = assessment.Study.Targets.OfType<DetectionChoice>().FirstOrDefault();
+        DetectionChoice? stated = assessment.Study.Targets.OfType<DetectionChoice>().FirstOrDefault(d => d is { Topography: Topography.Known, CovarianceEstimated: false });
         PowerCurve curve = new(stated?.Alpha ?? DefaultAlpha, stated?.Looks ?? 1);
         double power = stated?.Power ?? DefaultPower;
         Line[] all = [.. region.Answers.Where(a => a.Row?.SnrDb.P50 is not null).Select(a => new Line(a.Modality, a.Row!.SnrDb, curve.Trials(power, a.Row.SnrDb.P50!.Value)))];

@@ -7,11 +7,6 @@ public class NotSupportedYetTests
 {
     [Theory]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    competitors: [{region: cortex, moment_nAm: 10}]", "responses.wave V.competitors")]
-    [InlineData("amplitude_ratio: 3", "amplitude_ratio: 3, variance_ratio: {critical: 3.1, power: 0.9}", "target.variance_ratio")]
-    [InlineData("amplitude_ratio: 3", "residual_nV: 40", "target.residual_nV")]
-    [InlineData("amplitude_ratio: 3", "detection: {topography: plane}", "target.detection.topography")]
-    [InlineData("amplitude_ratio: 3", "detection: {topography: unknown}", "target.detection.topography")]
-    [InlineData("amplitude_ratio: 3", "detection: {covariance: estimated}", "target.detection.covariance")]
     [InlineData("rate_per_s: 11.1", "rate_per_s: 11.1, participants: 20", "protocol.participants")]
     [InlineData("rate_per_s: 11.1", "rate_per_s: 11.1, spread_between_people: 0.3", "protocol.spread_between_people")]
     [InlineData("title: small", "unknowns: {head_shift_mm: 5}", "unknowns")]
