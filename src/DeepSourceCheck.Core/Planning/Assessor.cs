@@ -61,7 +61,7 @@ public static class Assessor
                 regions.Add(Result(own, read, region, source, parts, loss, cancellation));
             }
 
-            results.Add(new ResponseResult(response, regions) { Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
+            results.Add(new ResponseResult(response, regions) { SessionTrials = plan.SessionTrials, Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
         }
 
         return results;

@@ -160,7 +160,8 @@ internal static class PlanBinder
     /// <summary>Warnings about the rate: harmonics that meet the mains, and those within the alpha band of a response.</summary>
     public static void CheckRate(IReadOnlyList<Response> responses, Protocol? protocol, Reading reading)
     {
-        if (protocol is null)
+        // Trials of a steady-state response are one recording: its frequency, not a rate, meets the mains or the alpha rhythm.
+        if (protocol is null || (responses.Count > 0 && responses.All(r => r.Steady is not null)))
         {
             return;
         }
@@ -179,7 +180,7 @@ internal static class PlanBinder
         }
 
         // Below half the band's width several harmonics fall into it and the alpha rhythm averages as between them.
-        foreach (Response response in responses.Where(_ => protocol.Rate >= (AlphaHigh - AlphaLow) / 2))
+        foreach (Response response in responses.Where(r => r.Steady is null && protocol.Rate >= (AlphaHigh - AlphaLow) / 2))
         {
             double low = Math.Max(AlphaLow, response.Band.Low), high = Math.Min(AlphaHigh, response.Band.High);
             double harmonic = Math.Max(1, Math.Ceiling(low / protocol.Rate));

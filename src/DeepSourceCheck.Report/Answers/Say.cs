@@ -142,4 +142,21 @@ public static class Say
     public static string Unit(string unit) => unit.StartsWith('u') ? "µ" + unit[1..] : unit;
 
     private static string Signed(string text) => text.Replace('-', Minus);
+
+    /// <summary>Band of a transient response, frequency and trial of a steady-state one.</summary>
+    public static string Recorded(Response response) => response.Steady is { } steady
+        ? $"steady-state at {Stated(steady.Frequency)} Hz in trials of {Stated(steady.Seconds)} s" : $"{Stated(response.Band.Low)} to {Stated(response.Band.High)} Hz";
+
+    /// <summary>What is known of a response's course in time and what filter and jitter do to its peak; empty where nothing is.</summary>
+    public static string Course(ResponseResult response)
+    {
+        if (response.Waveform is not { } waveform)
+        {
+            return "";
+        }
+
+        string jitter = waveform.Jitter > 0 ? FormattableString.Invariant($", latency jitter {waveform.Jitter * 1000:0.###} ms") : "";
+        string change = Math.Abs(waveform.LossDb) < 0.05 ? "the peak stays" : FormattableString.Invariant($"filter and jitter {(waveform.LossDb > 0 ? "take" : "add")} {Math.Abs(waveform.LossDb):0.0} dB {(waveform.LossDb > 0 ? "off" : "to")} the peak");
+        return $"waveform: {waveform.Description}{jitter}; {change}";
+    }
 }

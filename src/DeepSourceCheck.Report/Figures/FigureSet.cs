@@ -9,6 +9,7 @@ public static class FigureSet
     public static IReadOnlyList<Figure> Of(Assessment assessment, int response)
     {
         ResponseResult result = assessment.Responses[response];
+        assessment = assessment.For(result);
         string suffix = assessment.Responses.Count > 1 ? $"-{response + 1}" : "";
         string[] rules = [.. assessment.Study.Targets.Select(Names.Of).Concat(result.Regions.SelectMany(r => r.Verdicts).Select(v => v.Rule)).Distinct()];
         List<Figure?> figures = [];

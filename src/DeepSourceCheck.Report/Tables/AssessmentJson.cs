@@ -76,6 +76,22 @@ public static class AssessmentJson
     {
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
+        if (response.Response.Steady is not null)
+        {
+            json.WriteCount("session_trials", response.SessionTrials);
+        }
+
+        if (response.Waveform is { } waveform)
+        {
+            json.WriteStartObject("waveform");
+            json.WriteString("description", waveform.Description);
+            json.WriteFigure("jitter_ms", waveform.Jitter * 1000);
+            json.WriteFigure("peak_kept", waveform.Kept);
+            json.WriteFigure("peak_loss_db", waveform.LossDb);
+            json.WriteFigure("energy_ms", waveform.Energy * 1000);
+            json.WriteEndObject();
+        }
+
         json.WriteArray("regions", response.Regions, WriteRegion);
         json.WriteArray("noise_spectra", response.Spectra, WriteSpectrum);
         json.WriteEndObject();

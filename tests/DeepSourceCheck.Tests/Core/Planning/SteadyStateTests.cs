@@ -10,6 +10,8 @@ namespace DeepSourceCheck.Tests.Core.Planning;
 /// <summary>Steady-state responses: the bin of a trial, the F test against its neighbours, coherence.</summary>
 public class SteadyStateTests
 {
+    private const int Neighbours = 120;
+
     // 40 nV at a derivation of two electrodes of 0.10/sqrt(2) uV/sqrt(Hz): the derivation holds 0.10 uV/sqrt(Hz).
     private static SmallStudy Study(double power, double seconds = 1, double jitter = 0) => new()
     {
@@ -64,31 +66,19 @@ public class SteadyStateTests
     [InlineData(0.05, 100, 0.0298)]
     [InlineData(0.05, 500, 0.00599)]
     [InlineData(0.01, 100, 0.0455)]
-    public void CriticalCoherence_IsTheTabledOne(double alpha, long trials, double critical)
-    {
-        var rule = new SpectralFRule(alpha, 0.8, 1);
-        // The power at which coherence needs exactly so many trials.
-        double low = 1e-6, high = 10;
-        for (int k = 0; k < 60; k++)
-        {
-            double middle = Math.Sqrt(low * high);
-            (low, high) = rule.CoherenceTrials(middle) > trials ? (middle, high) : (low, middle);
-        }
-
-        DerivedNumber line = rule.Chain(high, 0).First(l => l.Symbol == "m");
-        Assert.Equal(critical, line.Value, 0.5 * Math.Pow(10, Math.Floor(Math.Log10(critical)) - 2));
-    }
+    public void CriticalCoherence_IsTheTabledOne(double alpha, long trials, double critical) =>
+        Assert.Equal(critical, Coherence.Critical(alpha, trials), 0.5 * Math.Pow(10, Math.Floor(Math.Log10(critical)) - 2));
 
     [Theory]
     [InlineData(0.05, 3.033)]
     [InlineData(0.01, 4.695)]
     public void CriticalF_IsTheTabledOne(double alpha, double critical) =>
-        Assert.InRange(new SpectralFRule(alpha, 0.8, 1).Chain(1, 0).First(l => l.Symbol == "F").Value, critical - 5e-4, critical + 5e-4);
+        Assert.InRange(new SteadyStateRule(alpha, 0.8, 1).Critical, critical - 5e-4, critical + 5e-4);
 
     [Fact]
     public void Probability_AtTheCount_IsThePowerAskedFor()
     {
-        var rule = new SpectralFRule(0.05, 0.8, 3);
+        var rule = new SteadyStateRule(0.05, 0.8, 3);
         const double power = 0.02;
         RelativeAssert.Equal(0.8, rule.Probability(power, 0, rule.Trials(power))!.Value, 1e-9);
         RelativeAssert.Equal(0.8, rule.Probability(power * Math.Pow(rule.SmallestScale(power, 0, 50), 2), 0, 50)!.Value, 1e-9);
@@ -99,19 +89,19 @@ public class SteadyStateTests
     {
         // F of a bin that holds sqrt(2 N P) more than its 120 neighbours; 20,000 trials of the test, seed 1: three standard errors are 0.0085.
         var random = new Random(1);
-        var rule = new SpectralFRule(0.05, 0.8, 1);
-        double noncentrality = rule.Trials(1), critical = rule.Chain(1, 0).First(l => l.Symbol == "F").Value, passed = 0;
+        var rule = new SteadyStateRule(0.05, 0.8, 1);
+        double noncentrality = rule.Trials(1), critical = rule.Critical, passed = 0;
         const int runs = 20_000;
         for (int run = 0; run < runs; run++)
         {
             double x = Normal() + Math.Sqrt(noncentrality), y = Normal(), rest = 0;
-            for (int k = 0; k < 2 * SpectralFRule.Neighbours; k++)
+            for (int k = 0; k < 2 * Neighbours; k++)
             {
                 double n = Normal();
                 rest += n * n;
             }
 
-            passed += (x * x + y * y) / 2 > critical * rest / (2 * SpectralFRule.Neighbours) ? 1 : 0;
+            passed += (x * x + y * y) / 2 > critical * rest / (2 * Neighbours) ? 1 : 0;
         }
 
         Assert.InRange(passed / runs, 0.8 - 0.0085, 0.8 + 0.0085);
