@@ -274,6 +274,42 @@ public class StudyTests
         Assert.True(JsonElement.DeepEquals(changed.Region(WaveV, "inferior-colliculus-left"), study.Variant("twice the moment").Region(WaveV, "inferior-colliculus-left")));
     }
 
+    [Fact]
+    public void Study13_SteadyStateTakesTheTimeOfItsAmplitudeAndDensity()
+    {
+        // T = (lambda/2) density/(A^2/2), lambda/2 = 4.88 for F(2, 240) at .05/.80 (Dobie and Wilson 1996): 40 nV in the density that the chain gives. Published medians: 68 to 157 s at
+        // 55 dB SPL for 80 to 100 Hz (Hearing Research 2016); band x/: 2.5 about those.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("13-steady-state.yaml"));
+        JsonElement row = study.Result("following response", "inferior-colliculus-left", "EEG", "given", "Cz-mastoids");
+        double snr = Math.Pow(10, row.GetProperty("snr_db").GetProperty("p50").GetDouble() / 10);
+        long trials = AssessedStudy.Trials(row);
+        Assert.InRange(trials, 9.75 / snr, 9.77 / snr + 1);
+        Assert.InRange(trials, 25, 250);
+    }
+
+    [Fact]
+    public void Study14_RealisticFiltersLoseSomeOfTheIdealPowerAndBeatTheBestChannel()
+    {
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("14-realistic-filter.yaml"));
+        foreach (string modality in (string[])["EEG", "MEG"])
+        {
+            long Of(string measure) => AssessedStudy.Trials(study.Result("wave V", "inferior-colliculus-left", modality, "given", measure));
+            Assert.True(Of("matched-filter") <= Of("realistic-filter"));
+            Assert.True(Of("realistic-filter") < Of("best-channel"));
+        }
+    }
+
+    [Fact]
+    public void Study15_KnownWaveformPutsDetectionBelowReading_AndTheRatioRuleWhereItsClinicStands()
+    {
+        // The F-ratio rule at .01/.90 asks some 1,262 sweeps of 0.45 uV peak to trough with 0.12 uV rms over 10 ms (worked example); the whole-chain band is 500 to 3200.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("15-waveform/study.yaml"));
+        JsonElement[] targets = [.. study.Result("wave V", "inferior-colliculus-left", "EEG", "given", "Cz-mastoids").GetProperty("targets").EnumerateArray()];
+        long Of(string rule) => targets.First(t => t.GetProperty("rule").GetString() == rule).GetProperty("trials").GetProperty("p50").GetInt64();
+        Assert.InRange(Of("variance_ratio"), 500, 3200);
+        Assert.True(Of("detection") < Of("amplitude_ratio") * 13.02 / 9);
+    }
+
     private const string SlowStudy = "11-slow-response/study.yaml";
 
     [Fact]

@@ -56,10 +56,10 @@ public sealed class FilterErrors
     /// <summary>Displacement of each draw [m].</summary>
     public IReadOnlyList<Vec3> Displacements { get; }
 
-    /// <summary>Independent samples of the EEG covariance; null for exact.</summary>
+    /// <summary>Number of independent samples, without unit, of the EEG covariance; null for exact.</summary>
     public double? EegSamples { get; }
 
-    /// <summary>Independent samples of the MEG covariance; null for exact.</summary>
+    /// <summary>Number of independent samples, without unit, of the MEG covariance; null for exact.</summary>
     public double? MegSamples { get; }
 
     /// <summary>Head of a draw.</summary>

@@ -158,7 +158,7 @@ public sealed class SignalSpace
         _ => Math.Max(_eegKept, _megKept),
     };
 
-    /// <summary>Standard deviations by which MEG rows are scaled before directions are split; those of <see cref="MegSd"/> but in a space that stands on a spectrum: what is read must not turn the directions.</summary>
+    /// <summary>Standard deviations [T or T/m] by which MEG rows are scaled before directions are split; those of <see cref="MegSd"/> but in a space that stands on a spectrum: what is read must not turn the directions.</summary>
     public double[] SplitSd => _splitSd ?? MegSd;
 
     /// <summary>True where signals are measured against the noise as a filter in time sees it that is matched to a known waveform.</summary>

@@ -110,7 +110,7 @@ public abstract record WaveformChoice;
 
 /// <summary>Cycles of a dominant frequency under a raised cosine.</summary>
 /// <param name="Frequency">Frequency [Hz].</param>
-/// <param name="Cycles">Cycles from the first to the last value other than zero.</param>
+/// <param name="Cycles">Number of cycles, without unit, from the first to the last value other than zero.</param>
 public sealed record OscillationChoice(double Frequency, double Cycles) : WaveformChoice;
 
 /// <summary>A Gaussian.</summary>

@@ -79,7 +79,7 @@ public sealed class RecordedWaveform
     /// <summary>Standard deviation of the latency [s].</summary>
     public double Jitter { get; }
 
-    /// <summary>Peak after filter and jitter over the peak before, in the convention of the response.</summary>
+    /// <summary>Peak after filter and jitter over the peak before, without unit, in the convention of the response.</summary>
     public double Kept { get; }
 
     /// <summary>Energy of the waveform of peak 1 after filter and jitter [s].</summary>
