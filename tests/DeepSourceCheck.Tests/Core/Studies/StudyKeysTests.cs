@@ -76,7 +76,9 @@ public class StudyKeysTests
     public void Registry_HoldsNothingBesideThePageButWhatIsNamedHere()
     {
         // The page shows bandwidth_Hz for MEG and averaged_trials for EEG; both stand for either modality.
-        string[] page = [.. Page.Split((char[])[' ', '\n'], StringSplitOptions.RemoveEmptyEntries), "sensors.bandwidth_Hz.eeg", "noise.meg_covariance.averaged_trials"];
+        string[] page = [.. Page.Split((char[])[' ', '\n'], StringSplitOptions.RemoveEmptyEntries), "sensors.bandwidth_Hz.eeg", "noise.meg_covariance.averaged_trials",
+            // Ours: the exact critical value instead of a rounded one, and averaging as it really is.
+            "target.variance_ratio.alpha", "protocol.interval_jitter_ms", "noise.spread_between_trials"];
         Assert.Empty(StudyKeys.All.Select(k => k.Path).Except(page));
     }
 
@@ -119,6 +121,7 @@ public class StudyKeysTests
         bool admitted = pair.Default.Value switch
         {
             double number => pair.Key.Shapes.OfType<NumberShape>().Any(s => s.Admits(number)),
+            double[] { Length: 2 } band => pair.Key.Shapes.OfType<BandShape>().Any(s => band.All(s.Each.Admits) && band[0] < band[1]),
             double[] numbers => pair.Key.Shapes.OfType<VectorShape>().Any(s => s.Count == numbers.Length && numbers.All(s.Each.Admits)),
             string word => pair.Key.Shapes.OfType<ChoiceShape>().Any(s => s.Words.Contains(word)) || pair.Default.For == "derivation",
             _ => false,
