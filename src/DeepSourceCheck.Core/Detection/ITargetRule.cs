@@ -32,7 +32,7 @@ public interface ITargetRule
     /// <summary>Number of trials for an effective power, not rounded where the rule has a closed form; infinite at 0.</summary>
     double Trials(double effectivePower);
 
-    /// <summary>The same where noise varies from trial to trial and the trials are weighted for it, so that the noise power falls by <paramref name="gain"/> (at least 1).</summary>
+    /// <summary>The same where noise varies from trial to trial and the trials are weighted for it, so that the noise power falls by a gain of at least 1, without unit.</summary>
     double WeightedTrials(double effectivePower, double gain) => Trials(gain * effectivePower);
 
     /// <summary>Probability that so many trials reach the target at a power SNR of one trial; null for rules that know none.</summary>

@@ -72,7 +72,7 @@ public static class RepeatedAverage
     private static Cell[] Cells(double m)
     {
         var edges = new List<double> { 0 };
-        for (double edge = 4 / m; edge < 0.2; edge *= 2)
+        for (double edge = 0.5 / m; edge < 0.25; edge *= 2)
         {
             edges.Add(edge);
         }

@@ -16,7 +16,7 @@ public static class NoncentralT
         ArgumentOutOfRangeException.ThrowIfNegative(t);
         ArgumentOutOfRangeException.ThrowIfNegative(delta);
         double square = t * t, sum = square + nu, x = square / sum, y = nu / sum, b = nu / 2, m = delta * delta / 2;
-        return 0.5 * (Half(0) + Half(0.5));
+        return Math.Min(0.5 * (Half(0) + Half(0.5)), 1);
 
         double Half(double s) => PoissonMixture.Upper(
             m, s,

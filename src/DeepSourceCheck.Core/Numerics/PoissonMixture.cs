@@ -37,6 +37,6 @@ internal static class PoissonMixture
             }
         }
 
-        return sum;
+        return Math.Min(sum, 1);                                // rounding, where the tails are all 1
     }
 }

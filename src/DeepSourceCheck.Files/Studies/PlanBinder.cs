@@ -11,7 +11,7 @@ internal static class PlanBinder
 
     /// <summary>The rules in the order of the file; the amplitude ratio where the study states none.</summary>
     /// <param name="root">The study.</param>
-    /// <param name="hasEeg">Whether the study has EEG.</param>
+    /// <param name="hasEeg">Whether the study has EEG, or no sensors at all, which is reported already.</param>
     /// <param name="responses">Responses, whose waveforms may give the rms over the window.</param>
     public static IReadOnlyList<TargetChoice> Targets(Section root, bool hasEeg, IReadOnlyList<Response> responses)
     {

@@ -77,7 +77,7 @@ public static class StudyReader
         NoiseChoice? noise = NoiseBinder.Bind(root, sensors, reading);
         IReadOnlyList<RegionChoice> regions = RegionBinder.Bind(root, sensors, reading);
         IReadOnlyList<Response> responses = ResponseBinder.Bind(root, sensors, reading);
-        IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root, sensors.HasEeg, responses);
+        IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root, sensors.HasEeg || !sensors.HasMeg, responses);
         Protocol? protocol = PlanBinder.Protocol(root, responses);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
         PlanBinder.CheckRate(responses, protocol, reading);
