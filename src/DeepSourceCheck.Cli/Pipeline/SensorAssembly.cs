@@ -150,6 +150,7 @@ internal abstract class SensorAssembly
         Regions = regions,
         FieldCaptured = FieldCaptured,
         CentreSensitivity = CentreSensitivity,
+        Perturbable = Perturbable,
         Limits = Limits,
         ArrayPlace = ArrayPlace,
         Scene = Scene(regions) with
@@ -158,6 +159,9 @@ internal abstract class SensorAssembly
             Regions = [.. regions.Select(r => Place(r.Name, Picked(r.Positions)))],
         },
     };
+
+    /// <summary>The head with what is not known of it; null where it cannot be varied.</summary>
+    protected virtual IPerturbableHead? Perturbable => null;
 
     /// <summary>What the head's model leaves out, sentence by sentence.</summary>
     protected abstract IReadOnlyList<string> Limits { get; }

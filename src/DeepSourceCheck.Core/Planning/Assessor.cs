@@ -4,6 +4,7 @@ using System.Globalization;
 using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
+using DeepSourceCheck.Core.Planning.Unknowns;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
@@ -56,7 +57,8 @@ public static class Assessor
                 RegionTally tally = new RegionRun(asked, own.Head, source)
                     .Run(region, Adapt(sink, asked, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
                 done += region.Positions.Length;
-                regions.Add(Result(own, asked, region, source, parts, tally, cancellation));
+                RegionResult result = Result(own, asked, region, source, parts, tally, cancellation);
+                regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, asked, own.Head, source, region, parts).Run(cancellation)));
             }
 
             results.Add(new ResponseResult(response, regions));
@@ -64,6 +66,12 @@ public static class Assessor
 
         return results;
     }
+
+    private static RegionResult Unsure(RegionResult result, UnknownsResult unknowns) => result with
+    {
+        Unknowns = unknowns,
+        Verdicts = [.. result.Verdicts.Zip(unknowns.Verdicts, (verdict, spread) => verdict with { Assurance = spread.Assurance is { } a ? Math.Round(20 * a) / 20 : null })],
+    };
 
     private static EvaluationPlan Plan(StudySetup setup, Response response, SignalSpace space) =>
         new(response, space, setup.Rules, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);

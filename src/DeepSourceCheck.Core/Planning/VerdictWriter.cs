@@ -12,6 +12,13 @@ namespace DeepSourceCheck.Core.Planning;
 /// <summary>The answers for one region: modality by modality, rule by rule, in plain words with their reason and their chain.</summary>
 internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, RegionTally tally)
 {
+    /// <summary>Measures of the verdicts: EEG, MEG, both, as far as the study has them.</summary>
+    /// <param name="plan">What is read.</param>
+    public static IEnumerable<IMeasure> Measures(EvaluationPlan plan) =>
+        from reading in new (Modality Modality, string? Name)[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) }
+        where reading.Name is not null
+        select plan.Measures.First(m => m.Modality == reading.Modality && m.Name == reading.Name);
+
     /// <summary>Writes all verdicts.</summary>
     /// <param name="rows">The region's results; the median count of a verdict's row is that of the dipole whose chain is given.</param>
     /// <param name="cancellation">Stops the search for the dipole at the median.</param>
@@ -19,14 +26,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     {
         var asked = new List<MedianSearch.Question>();
         DirectionName direction = plan.VerdictDirection;
-        foreach ((Modality modality, string? name) in new[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) })
+        foreach (IMeasure measure in Measures(plan))
         {
-            if (name is null)
-            {
-                continue;
-            }
-
-            IMeasure measure = plan.Measures.First(m => m.Modality == modality && m.Name == name);
             asked.AddRange(plan.Rules.Select((_, rule) => new MedianSearch.Question(measure, rule)));
         }
 

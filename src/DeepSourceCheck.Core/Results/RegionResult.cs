@@ -38,6 +38,9 @@ public sealed record RegionResult
     /// <summary>All figures.</summary>
     public required IReadOnlyList<MeasureResult> Results { get; init; }
 
+    /// <summary>Spread over what is not known; null where the study states no unknowns.</summary>
+    public UnknownsResult? Unknowns { get; init; }
+
     /// <summary>Answers.</summary>
     public required IReadOnlyList<VerdictResult> Verdicts { get; init; }
 

@@ -79,6 +79,7 @@ public static class StudyReader
         IReadOnlyList<Response> responses = ResponseBinder.Bind(root, sensors, reading);
         IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root);
         Protocol? protocol = PlanBinder.Protocol(root);
+        (UnknownsChoice? unknowns, head) = UnknownsBinder.Bind(root, head, responses, sensors, protocol);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
@@ -98,6 +99,7 @@ public static class StudyReader
             Responses = responses,
             Targets = targets,
             Protocol = protocol,
+            Unknowns = unknowns,
             AcceptImplausible = reading.Accepted,
         };
     }

@@ -173,7 +173,22 @@ internal static class AnswerSection
             html.Element("p", line);
         }
 
-        if (lines.Count > 0)
+        if (answer.Region.Unknowns is { } unknowns)
+        {
+            foreach (VerdictSpread spread in unknowns.Verdicts.Where(v => v.Rule == answer.Rule && v.Modality != Modality.Both))
+            {
+                if (spread.Ranking is [{ LogVariance: > 0 } effect, ..])
+                {
+                    html.Element("p", $"{Names.Of(spread.Modality)}: {UnknownWords.Name(effect.Unknown)}, {UnknownWords.Range(effect.Unknown, assessment.Study, answer.Response)}, gives {UnknownWords.Trials(effect.Fewest, effect.Most)} trials.");
+                }
+            }
+
+            if (unknowns.First.FirstOrDefault(f => f.Rule == answer.Rule) is { Flip.Length: > 0 } first)
+            {
+                html.Element("p", first.Flip + ".", "class", "small");
+            }
+        }
+        else if (lines.Count > 0)
         {
             html.Element("p", "Everything else as assumed. Other inputs change the answer too: run the study again with them.", "class", "small");
         }

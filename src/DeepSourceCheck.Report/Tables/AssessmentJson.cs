@@ -123,6 +123,11 @@ public static class AssessmentJson
 
         json.WriteArray("results", region.Results, WriteMeasure);
         json.WriteArray("verdicts", region.Verdicts, WriteVerdict);
+        if (region.Unknowns is { } unknowns)
+        {
+            UnknownsJson.Write(json, unknowns);
+        }
+
         json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();
     }
