@@ -19,17 +19,21 @@ public sealed class AmplitudeRatioRule(double ratio) : ITargetRule
     public string Description => string.Create(CultureInfo.InvariantCulture, $"peak = {ratio:0.###} x residual rms");
 
     /// <inheritdoc/>
-    public double EffectivePower(double power, double artefact) => Math.Max(0, power - ratio * ratio * artefact);
+    public double EffectivePower(double power, double artefact, double inverseVariance = double.NaN) => Math.Max(0, power - ratio * ratio * artefact);
 
     /// <inheritdoc/>
     public double Trials(double effectivePower) => ratio * ratio / effectivePower;
+
+    /// <inheritdoc/>
+    /// <remarks>Null: an amplitude that is large enough on average says nothing of how often.</remarks>
+    public double? Probability(double power, double artefact, double trials) => null;
 
     /// <inheritdoc/>
     public double SmallestScale(double power, double artefact, long sessionTrials) =>
         Math.Sqrt((ratio * ratio / sessionTrials + ratio * ratio * artefact) / power);
 
     /// <inheritdoc/>
-    public IReadOnlyList<DerivedNumber> Chain(double power, double artefact)
+    public IReadOnlyList<DerivedNumber> Chain(double power, double artefact, double inverseVariance = double.NaN)
     {
         var lines = new List<DerivedNumber>
         {

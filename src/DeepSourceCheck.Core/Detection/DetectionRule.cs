@@ -43,7 +43,7 @@ public sealed class DetectionRule : ITargetRule
     public double PowerOf(double power, double trials) => Normal.CDF(0, 1, Math.Sqrt(trials * power) - ThresholdZ);
 
     /// <inheritdoc/>
-    public double EffectivePower(double power, double artefact)
+    public double EffectivePower(double power, double artefact, double inverseVariance = double.NaN)
     {
         if (artefact == 0)
         {
@@ -58,11 +58,14 @@ public sealed class DetectionRule : ITargetRule
     public double Trials(double effectivePower) => _sum * _sum / effectivePower;
 
     /// <inheritdoc/>
+    public double? Probability(double power, double artefact, double trials) => PowerOf(EffectivePower(power, artefact), trials);
+
+    /// <inheritdoc/>
     public double SmallestScale(double power, double artefact, long sessionTrials) =>
         (_sum / Math.Sqrt(sessionTrials) + Math.Sqrt(artefact)) / Math.Sqrt(power);
 
     /// <inheritdoc/>
-    public IReadOnlyList<DerivedNumber> Chain(double power, double artefact)
+    public IReadOnlyList<DerivedNumber> Chain(double power, double artefact, double inverseVariance = double.NaN)
     {
         var lines = new List<DerivedNumber>
         {

@@ -1,5 +1,6 @@
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
+using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Sensors;
 
 namespace DeepSourceCheck.Core.Detection;
@@ -11,6 +12,8 @@ public sealed class SignalSpace
 {
     /// <summary>A channel whose variance after referencing is below this share of the largest is the reference itself: it carries nothing.</summary>
     private const double ZeroVariance = 1e-24;
+
+    private readonly double _eegKept = 1, _megKept = 1;
 
     /// <param name="noise">Noise of one trial in the response's band.</param>
     /// <param name="reference">Referencing of the electrodes; null without EEG.</param>
@@ -43,6 +46,7 @@ public sealed class SignalSpace
             EegNames = [.. EegChannels.Select(k => reference.Names[k])];
             EegWhitener = Whitener.Of(covariance, n);
             EegCorrection = Correction(noise.EegSamples, EegWhitener.Rank);
+            _eegKept = Kept(noise.EegSamples, EegWhitener.Rank);
             if (derivations is not null)
             {
                 double[] d = derivations.ApplyToCovariance(noise.Eeg);
@@ -56,6 +60,7 @@ public sealed class SignalSpace
             MegSd = [.. Enumerable.Range(0, m).Select(k => Math.Sqrt(noise.Meg[k * m + k]))];
             MegWhitener = Whitener.Of(noise.Meg, m);
             MegCorrection = Correction(noise.MegSamples, MegWhitener.Rank);
+            _megKept = Kept(noise.MegSamples, MegWhitener.Rank);
         }
 
         if (noise.Cross is { } cross && reference is not null && m > 0)
@@ -136,6 +141,22 @@ public sealed class SignalSpace
     /// <summary>Correlation of noise between derivations and MEG channels, row by row; null where independent.</summary>
     public double[]? DerivationCorrelation { get; }
 
+    /// <summary>Number of independent rows of a modality: the rank of its covariance.</summary>
+    public int Rank(Modality modality) => modality switch
+    {
+        Modality.Eeg => EegWhitener?.Rank ?? 0,
+        Modality.Meg => MegWhitener?.Rank ?? 0,
+        _ => JointWhitener?.Rank ?? (EegWhitener?.Rank ?? 0) + (MegWhitener?.Rank ?? 0),
+    };
+
+    /// <summary>Share of the ideal power that a filter keeps which was built from finitely many samples: the second factor of the corrections; of both, the larger.</summary>
+    public double KeptByFilter(Modality modality) => modality switch
+    {
+        Modality.Eeg => _eegKept,
+        Modality.Meg => _megKept,
+        _ => Math.Max(_eegKept, _megKept),
+    };
+
     /// <summary>
     /// What remains of the filter's power when the covariance came from nu independent samples of p channels: the inverse is too large by nu/(nu-p-1), and a filter made from it keeps
     /// (nu-p+2)/(nu+1) of the ideal power. Source: Reed, Mallett and Brennan 1974, IEEE Trans Aerosp Electron Syst 10:853 (from memory).
@@ -143,7 +164,9 @@ public sealed class SignalSpace
     /// <param name="samples">nu, or null for an exact covariance.</param>
     /// <param name="rank">p.</param>
     private static double Correction(double? samples, int rank) =>
-        samples is { } nu ? (nu - rank - 1) / nu * ((nu - rank + 2) / (nu + 1)) : 1;
+        samples is { } nu ? (nu - rank - 1) / nu * Kept(nu, rank) : 1;
+
+    private static double Kept(double? samples, int rank) => samples is { } nu ? (nu - rank + 2) / (nu + 1) : 1;
 
     private static double[] Correlation(IReadOnlyList<double[]> rows, double[] rowSd, double[] columnSd) =>
         [.. rows.SelectMany((row, i) => row.Select((c, k) => c / (rowSd[i] * columnSd[k])))];

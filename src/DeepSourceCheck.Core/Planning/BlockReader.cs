@@ -23,20 +23,21 @@ internal sealed class BlockReader
 
     private readonly EvaluationPlan _plan;
     private readonly int[] _column;
-    private readonly bool _artefact;
+    private readonly bool _noise;
     private readonly MeasureTally.Reading[][] _readings;
     private readonly LaneDirection[] _one = new LaneDirection[1], _tangential = new LaneDirection[DirectionSets.HalfCircle.Count];
-    private readonly double[][] _powers, _artefacts, _peaks, _peakChannels;
+    private readonly double[][] _powers, _artefacts, _inverses, _peaks, _peakChannels;
 
     public BlockReader(EvaluationPlan plan)
     {
         const int most = DirectionSets.IsotropicPoints * Lanes;
         _plan = plan;
-        _artefact = plan.HasArtefact(Modality.Both);
+        _noise = plan.ReadsNoise;
         _powers = [.. plan.Measures.Select(_ => new double[most])];
-        _artefacts = [.. plan.Measures.Select(_ => new double[_artefact ? most : 0])];
+        _artefacts = [.. plan.Measures.Select(_ => new double[_noise ? most : 0])];
+        _inverses = [.. plan.Measures.Select(_ => new double[_noise ? most : 0])];
         _readings = [.. plan.Measures.Select((m, k) => plan.Fallbacks(m).Select(f => plan.Measures.ToList().IndexOf(f)).Prepend(k)
-            .Select(r => new MeasureTally.Reading(_powers[r], _artefacts[r])).ToArray())];
+            .Select(r => new MeasureTally.Reading(_powers[r], _artefacts[r], _inverses[r])).ToArray())];
         _peaks = [new double[plan.EegMeasure is null ? 0 : most], new double[plan.MegReported ? most : 0]];
         _peakChannels = [new double[_peaks[0].Length], new double[_peaks[1].Length]];
         IReadOnlyList<DipoleColumn> columns = plan.Columns;
@@ -155,9 +156,11 @@ internal sealed class BlockReader
         {
             IMeasure measure = _plan.Measures[m];
             Vector512.ConditionalSelect(counted, measure.Power(signals) * gain, skipped).CopyTo(_powers[m], at);
-            if (_artefact)
+            if (_noise)
             {
-                ArtefactPower(measure.InverseVariance(signals)).CopyTo(_artefacts[m], at);
+                ArtefactScale scale = measure.InverseVariance(signals);
+                ArtefactPower(scale).CopyTo(_artefacts[m], at);
+                scale.Eeg.CopyTo(_inverses[m], at);
             }
         }
 

@@ -61,7 +61,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         }
 
         Add("SNR", "the same in decibels", RegionReport.Decibels(witness.Power), "dB", "10 log10(P)", "Goldenholz et al. 2009", Grade.Memory);
-        _lines.AddRange(rule.Chain(witness.Power, witness.Artefact));
+        _lines.AddRange(rule.Chain(witness.Power, witness.Artefact, witness.InverseVariance));
         if (plan.Protocol is { } protocol && double.IsFinite(_lines[^1].Value))
         {
             double trials = _lines[^1].Value;

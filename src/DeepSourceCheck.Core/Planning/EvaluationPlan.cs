@@ -8,18 +8,20 @@ namespace DeepSourceCheck.Core.Planning;
 /// <summary>What is read from every dipole of one response: measures, directions, rules.</summary>
 public sealed class EvaluationPlan
 {
+    private readonly Dictionary<IMeasure, IReadOnlyList<ITargetRule>> _rules;
+
     /// <param name="response">The response.</param>
     /// <param name="space">Its channels.</param>
-    /// <param name="rules">Target rules, in the study's order.</param>
+    /// <param name="targets">Targets, in the study's order.</param>
     /// <param name="protocol">Protocol, or null.</param>
     /// <param name="megReported">False where MEG rows serve the split alone.</param>
     /// <param name="splitPossible">False where there is no MEG leadfield.</param>
     public EvaluationPlan(
-        Response response, SignalSpace space, IReadOnlyList<ITargetRule> rules, Protocol? protocol, bool megReported, bool splitPossible)
+        Response response, SignalSpace space, IReadOnlyList<TargetChoice> targets, Protocol? protocol, bool megReported, bool splitPossible)
     {
         Response = response;
         Space = space;
-        Rules = rules;
+        Targets = targets;
         Protocol = protocol;
         SessionTrials = SessionPlan.Trials(protocol);
         MegReported = megReported;
@@ -58,6 +60,7 @@ public sealed class EvaluationPlan
         }
 
         Measures = measures;
+        _rules = measures.ToDictionary(m => m, m => (IReadOnlyList<ITargetRule>)[.. targets.Select(t => RuleBinding.Of(t, RuleReading.Of(m, space, NoiseFactor)))]);
         Directions =
         [
             .. splitPossible ? new[] { DirectionName.QuasiRadial, DirectionName.Tangential, DirectionName.StrongestTangential } : [],
@@ -72,10 +75,11 @@ public sealed class EvaluationPlan
     {
         Response = plan.Response;
         Space = plan.Space;
-        Rules = [];
+        Targets = [];
         MegReported = plan.MegReported;
         Measures = [measure];
         Directions = [direction];
+        _rules = new() { [measure] = [] };
         Gain = plan.Gain;
     }
 
@@ -93,8 +97,8 @@ public sealed class EvaluationPlan
     /// <summary>Its channels.</summary>
     public SignalSpace Space { get; }
 
-    /// <summary>Target rules.</summary>
-    public IReadOnlyList<ITargetRule> Rules { get; }
+    /// <summary>Targets, in the study's order.</summary>
+    public IReadOnlyList<TargetChoice> Targets { get; }
 
     /// <summary>Protocol, or null.</summary>
     public Protocol? Protocol { get; }
@@ -125,6 +129,15 @@ public sealed class EvaluationPlan
 
     /// <summary>Squared moment over <see cref="NoiseFactor"/> [(A m)^2].</summary>
     public double Gain { get; }
+
+    /// <summary>The targets' rules on a measure, in the study's order.</summary>
+    public IReadOnlyList<ITargetRule> RulesOf(IMeasure measure) => _rules[measure];
+
+    /// <summary>Whether percentiles of a rule on a measure run over powers that the rule makes of each reading, not over the powers themselves.</summary>
+    public bool CountsEffective(IMeasure measure, ITargetRule rule) => rule.Absent is null && (HasArtefact(measure.Modality) || rule.StandsOnNoise);
+
+    /// <summary>Whether the noise of what was read, dipole by dipole, enters any count.</summary>
+    public bool ReadsNoise => HasArtefact(Modality.Both) || Measures.Any(m => RulesOf(m).Any(r => CountsEffective(m, r)));
 
     /// <summary>Whether a locked artefact bears on a modality.</summary>
     public bool HasArtefact(Modality modality) =>

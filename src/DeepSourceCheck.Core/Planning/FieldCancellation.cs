@@ -5,7 +5,6 @@ using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Planning;
 

@@ -106,12 +106,13 @@ internal sealed class MedianSearch(
         foreach (IMeasure read in hunt.Readings)
         {
             Vector512<double> power = read.Power(signals) * Vector512.Create(plan.Gain);
-            Vector512<double> artefact = reader.ArtefactPower(read.InverseVariance(signals));
+            ArtefactScale noise = read.InverseVariance(signals);
+            Vector512<double> artefact = reader.ArtefactPower(noise);
             for (int lane = 0; lane < count; lane++)
             {
-                if (hunt.IsMedian(power[lane], artefact[lane]))
+                if (hunt.IsMedian(power[lane], artefact[lane], noise.Eeg[lane]))
                 {
-                    return MedianWitness.Of(plan, signals, read, mode, u, lane, RegionRun.PointName(region, from + lane), region.Positions[from + lane], power[lane], artefact[lane]);
+                    return MedianWitness.Of(plan, signals, read, mode, u, lane, RegionRun.PointName(region, from + lane), region.Positions[from + lane], power[lane], artefact[lane], noise.Eeg[lane]);
                 }
             }
         }
@@ -128,10 +129,10 @@ internal sealed class MedianSearch(
 
         public Hunt(EvaluationPlan plan, MeasureTally cell, Question question)
         {
-            _store = cell.Effective?[question.Rule] ?? cell.Power;
+            _store = cell.Counted(question.Rule);
             _median = _store.NearestRankFromTop(0.5) ?? 0;
-            _rule = cell.Effective is null ? null : plan.Rules[question.Rule];
-            Readings = cell.Effective is null ? [question.Measure] : [question.Measure, .. plan.Fallbacks(question.Measure)];
+            _rule = cell.Effective[question.Rule] is null ? null : plan.RulesOf(question.Measure)[question.Rule];
+            Readings = _rule is null ? [question.Measure] : [question.Measure, .. plan.Fallbacks(question.Measure)];
         }
 
         /// <summary>False where the median is silent or undefined.</summary>
@@ -146,7 +147,8 @@ internal sealed class MedianSearch(
         /// <summary>That match.</summary>
         public MedianWitness? Found { get; private set; }
 
-        public bool IsMedian(double power, double artefact) => _store.Matches(_median, _rule?.EffectivePower(power, artefact) ?? power);
+        public bool IsMedian(double power, double artefact, double inverseVariance) =>
+            _store.Matches(_median, _rule?.EffectivePower(power, artefact, inverseVariance) ?? power);
 
         public void Take(MedianWitness witness, int chunk)
         {

@@ -12,13 +12,14 @@ namespace DeepSourceCheck.Core.Planning;
 /// <param name="Direction">Unit vector; the zero vector where the measure has no single best direction.</param>
 /// <param name="Power">Power SNR of one trial.</param>
 /// <param name="Artefact">Artefact power over noise power of the convention.</param>
+/// <param name="InverseVariance">1/s^2 of the EEG channel that was read [1/V^2].</param>
 /// <param name="EegChannel">EEG channel that was read, counted among the used ones; -1 for none or a derivation.</param>
 /// <param name="EegRow">Its leadfield over its noise [1/(A m)], one value an axis.</param>
 /// <param name="MegChannel">MEG channel that was read; -1 for none.</param>
 /// <param name="MegRow">Its leadfield over its noise [1/(A m)]; zero where the direction is silent.</param>
 /// <param name="Read">The measure that was read: the verdict's, or the single reading that a pair falls back to where a locked artefact buries the other.</param>
 internal sealed record MedianWitness(
-    IMeasure Read, string Point, Vec3 Position, Vec3 Direction, double Power, double Artefact, int EegChannel, Vec3 EegRow, int MegChannel, Vec3 MegRow)
+    IMeasure Read, string Point, Vec3 Position, Vec3 Direction, double Power, double Artefact, double InverseVariance, int EegChannel, Vec3 EegRow, int MegChannel, Vec3 MegRow)
 {
     /// <summary>Describes what was read.</summary>
     /// <param name="plan">What is read.</param>
@@ -31,8 +32,10 @@ internal sealed record MedianWitness(
     /// <param name="position">Its place [m].</param>
     /// <param name="power">What was read: power SNR of one trial.</param>
     /// <param name="artefact">Artefact power over noise power of the convention.</param>
+    /// <param name="inverseVariance">1/s^2 of the EEG channel that was read [1/V^2].</param>
     public static MedianWitness Of(
-        EvaluationPlan plan, BlockSignals signals, IMeasure measure, DirectionMode mode, LaneDirection u, int lane, string point, Vec3 position, double power, double artefact)
+        EvaluationPlan plan, BlockSignals signals, IMeasure measure, DirectionMode mode, LaneDirection u, int lane, string point, Vec3 position, double power, double artefact,
+        double inverseVariance)
     {
         int derivation = measure switch { DerivationMeasure d => d.Index, PairMeasure p => p.DerivationIndex, _ => -1 };
         bool readsEeg = measure.Modality != Modality.Meg && measure is DerivationMeasure or BestChannelMeasure or PairMeasure;
@@ -59,6 +62,6 @@ internal sealed record MedianWitness(
 
         Vec3 direction = mode != DirectionMode.Best ? new(u.X[lane], u.Y[lane], u.Z[lane])
             : measure is DerivationMeasure or BestChannelMeasure ? (measure.Modality == Modality.Eeg ? eegRow : megRow).Unit() : default;
-        return new MedianWitness(measure, point, position, direction, power, artefact, eeg, eegRow, meg, megRow);
+        return new MedianWitness(measure, point, position, direction, power, artefact, inverseVariance, eeg, eegRow, meg, megRow);
     }
 }

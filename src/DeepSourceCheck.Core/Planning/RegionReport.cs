@@ -54,7 +54,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
         bool silent = cell.Power.Count > 0 && cell.Power.AtRank(cell.Power.Count - 1) == 0;
         PeakAmplitude? peak = Peak(d, measure, cell);
         double? peakPerMoment = peak?.Value / plan.Response.Moment;
-        List<TargetResult> targets = [.. plan.Rules.Select((rule, r) => Target(rule, r, cell, measure, peakPerMoment))];
+        List<TargetResult> targets = [.. plan.RulesOf(measure).Select((rule, r) => Target(rule, r, cell, measure, peakPerMoment))];
         string? reason = cell.Power.Count == 0 ? UndefinedReason
             : silent ? Silent(measure)
             : snr.P05 is null ? "some dipoles or directions are silent: percentiles that fall on them are null"
@@ -70,22 +70,27 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
 
     private TargetResult Target(ITargetRule rule, int r, MeasureTally cell, IMeasure measure, double? peakPerMoment, double powerFactor = 1)
     {
-        QuantileStore effective = cell.Effective?[r] ?? cell.Power;
+        if (rule.Absent is { } absent)
+        {
+            return new TargetResult(rule.Name, new(null, null, null, null, null), null, null, null, cell.Power.Count == 0 ? UndefinedReason : absent);
+        }
+
+        QuantileStore effective = cell.Counted(r);
         long? Count(double share) => effective.NearestRankFromTop(share) is { } power && power > 0 ? TrialCount.Ceiling(rule.Trials(power * powerFactor)) : null;
         var trials = new CountPercentiles(Count(0.05), Count(0.25), Count(0.50), Count(0.75), Count(0.95));
         double? Minutes(long? count) => count is { } n && plan.Protocol is { } protocol ? SessionPlan.Minutes(protocol, n) : null;
         Percentiles? minutes = plan.Protocol is null ? null : new(Minutes(trials.P05), Minutes(trials.P25), Minutes(trials.P50), Minutes(trials.P75), Minutes(trials.P95));
 
         double? smallest = null;
-        if (plan.SessionTrials is > 0 and { } session)
+        if (rule.NoSmallest is null && plan.SessionTrials is > 0 and { } session)
         {
-            double? scale = cell.Scales is { } scales
-                ? scales[r].NearestRankFromTop(0.5) is { } inverse && inverse > 0 ? 1 / Math.Sqrt(inverse * powerFactor) : null
+            double? scale = cell.Scales[r] is { } scales
+                ? scales.NearestRankFromTop(0.5) is { } inverse && inverse > 0 ? 1 / Math.Sqrt(inverse * powerFactor) : null
                 : cell.Power.NearestRankFromTop(0.5) is { } power && power > 0 ? rule.SmallestScale(power * powerFactor, 0, session) : null;
             smallest = scale * plan.Response.Moment;
         }
 
-        string? reason = null;
+        string? reason = rule.NoSmallest;
         if (trials.P50 is null || trials.P95 is null)
         {
             reason = cell.Power.Count == 0 ? UndefinedReason
@@ -103,7 +108,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
     {
         const double factor = PublishedLeak * PublishedLeak;
         return new LeakResult(PublishedLeak, strongest.Power.Percentiles(p => Decibels(p * factor)),
-            [.. plan.Rules.Select((rule, r) => Target(rule, r, strongest, measure, null, factor))]);
+            [.. plan.RulesOf(measure).Select((rule, r) => Target(rule, r, strongest, measure, null, factor))]);
     }
 
     private PeakAmplitude? Peak(int d, IMeasure measure, MeasureTally cell)

@@ -106,28 +106,28 @@ internal sealed class RegionTally
 internal sealed class MeasureTally
 {
     private readonly EvaluationPlan _plan;
-    private readonly bool _artefact;
+    private readonly IReadOnlyList<ITargetRule> _rules;
 
     public MeasureTally(EvaluationPlan plan, IMeasure measure, long announced, int multiplicity)
     {
         _plan = plan;
-        _artefact = plan.HasArtefact(measure.Modality);
+        _rules = plan.RulesOf(measure);
         Power = new QuantileStore(announced, multiplicity);
-        if (_artefact)
-        {
-            Effective = [.. plan.Rules.Select(_ => new QuantileStore(announced, multiplicity))];
-            Scales = [.. plan.Rules.Select(_ => new QuantileStore(announced, multiplicity))];
-        }
+        Effective = [.. _rules.Select(r => plan.CountsEffective(measure, r) ? new QuantileStore(announced, multiplicity) : null)];
+        Scales = [.. Effective.Select(e => e is null ? null : new QuantileStore(announced, multiplicity))];
     }
 
     /// <summary>Power SNR.</summary>
     public QuantileStore Power { get; }
 
-    /// <summary>Effective power of each rule where an artefact bears on it; null otherwise.</summary>
-    public QuantileStore[]? Effective { get; }
+    /// <summary>Effective power of each rule; null for a rule whose effective power is <see cref="Power"/>.</summary>
+    public QuantileStore?[] Effective { get; }
 
-    /// <summary>1 / squared factor on the moment that the session reaches; null without artefact.</summary>
-    public QuantileStore[]? Scales { get; }
+    /// <summary>1 / squared factor on the moment that the session reaches; null likewise.</summary>
+    public QuantileStore?[] Scales { get; }
+
+    /// <summary>The powers that a rule counts on.</summary>
+    public QuantileStore Counted(int rule) => Effective[rule] ?? Power;
 
     /// <summary>Adds powers and, where an artefact bears on the measure, its powers; NaN powers are left out.</summary>
     /// <param name="readings">The measure itself, then the single readings that it may fall back to: two modalities together are never worse than one of them alone.</param>
@@ -135,9 +135,14 @@ internal sealed class MeasureTally
     public void Add(Reading[] readings, int length)
     {
         Power.Add(readings[0].Powers.AsSpan(0, length));
-        for (int r = 0; _artefact && r < Effective!.Length; r++)
+        for (int r = 0; r < _rules.Count; r++)
         {
-            ITargetRule rule = _plan.Rules[r];
+            ITargetRule rule = _rules[r];
+            if (Effective[r] is not { } counted)
+            {
+                continue;
+            }
+
             for (int k = 0; k < length; k++)
             {
                 double effective = double.NaN, scale = double.NaN;
@@ -146,20 +151,21 @@ internal sealed class MeasureTally
                     double power = reading.Powers[k], artefact = reading.Artefacts[k];
                     if (!double.IsNaN(power) && !double.IsNaN(artefact))
                     {
-                        effective = double.IsNaN(effective) ? rule.EffectivePower(power, artefact) : Math.Max(effective, rule.EffectivePower(power, artefact));
+                        double own = rule.EffectivePower(power, artefact, reading.InverseVariances[k]);
+                        effective = double.IsNaN(effective) ? own : Math.Max(effective, own);
                         double smallest = _plan.SessionTrials is > 0 and { } session ? rule.SmallestScale(power, artefact, session) : double.NaN;
                         scale = double.IsNaN(scale) ? smallest : Math.Min(scale, smallest);
                     }
                 }
 
-                Effective[r].Add(effective);
-                Scales![r].Add(1 / (scale * scale));
+                counted.Add(effective);
+                Scales[r]!.Add(1 / (scale * scale));
             }
         }
     }
 
-    /// <summary>Powers and artefact powers of one measure, value by value.</summary>
-    internal sealed record Reading(double[] Powers, double[] Artefacts);
+    /// <summary>Powers, artefact powers and 1/s^2 of the EEG channel [1/V^2] of one measure, value by value.</summary>
+    internal sealed record Reading(double[] Powers, double[] Artefacts, double[] InverseVariances);
 
     /// <summary>Adds other threads' counts; no values will follow.</summary>
     public void Take(IEnumerable<MeasureTally> others)
@@ -167,18 +173,18 @@ internal sealed class MeasureTally
         foreach (MeasureTally other in others)
         {
             Power.Merge(other.Power);
-            for (int r = 0; _artefact && r < Effective!.Length; r++)
+            for (int r = 0; r < Effective.Length; r++)
             {
-                Effective[r].Merge(other.Effective![r]);
-                Scales![r].Merge(other.Scales![r]);
+                Effective[r]?.Merge(other.Effective[r]!);
+                Scales[r]?.Merge(other.Scales[r]!);
             }
         }
 
         Power.Complete();
-        for (int r = 0; _artefact && r < Effective!.Length; r++)
+        for (int r = 0; r < Effective.Length; r++)
         {
-            Effective[r].Complete();
-            Scales![r].Complete();
+            Effective[r]?.Complete();
+            Scales[r]?.Complete();
         }
     }
 }

@@ -1,4 +1,3 @@
-using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
@@ -64,14 +63,6 @@ public sealed record StudySetup
 
     /// <summary>Geometry for figures.</summary>
     public Scene Scene { get; init; } = new();
-
-    /// <summary>Target rules in the study's order.</summary>
-    public IReadOnlyList<ITargetRule> Rules => [.. Study.Targets.Select(t => (ITargetRule)(t switch
-    {
-        AmplitudeRatioChoice a => new AmplitudeRatioRule(a.Ratio),
-        DetectionChoice d => new DetectionRule(d.Alpha, d.Power, d.Looks),
-        _ => throw new InvalidOperationException($"no rule for {t.GetType().Name}"),
-    }))];
 
     /// <summary>A region by name.</summary>
     public FilledRegion Region(string name) => Regions.First(r => r.Name == name);

@@ -28,7 +28,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         DirectionName direction = plan.VerdictDirection;
         foreach (IMeasure measure in Measures(plan))
         {
-            asked.AddRange(plan.Rules.Select((_, rule) => new MedianSearch.Question(measure, rule)));
+            asked.AddRange(plan.Targets.Select((_, rule) => new MedianSearch.Question(measure, rule)));
         }
 
         MedianWitness?[] witnesses = new MedianSearch(plan, setup.Head, source, region, tally, direction).Find(asked, cancellation);
@@ -36,10 +36,11 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         for (int k = 0; k < asked.Count; k++)
         {
             (IMeasure measure, int rule) = asked[k];
-            IReadOnlyList<DerivedNumber> chain = witnesses[k] is { } found ? new DerivationChain(plan, setup.Noise!, source.Method).Of(found, found.Read, plan.Rules[rule]) : [];
-            rows = Reconcile(rows, measure.Modality, direction, measure.Name, rule, witnesses[k]);
+            bool counts = plan.RulesOf(measure)[rule].Absent is null;
+            IReadOnlyList<DerivedNumber> chain = counts && witnesses[k] is { } found ? new DerivationChain(plan, setup.Noise!, source.Method).Of(found, found.Read, plan.RulesOf(measure)[rule]) : [];
+            rows = counts ? Reconcile(rows, measure, direction, rule, witnesses[k]) : rows;
             MeasureResult row = rows.First(x => x.Modality == measure.Modality && x.Direction == direction && x.Measure == measure.Name);
-            verdicts.Add(Verdict(row, rule, witnesses[k], chain));
+            verdicts.Add(counts ? Verdict(row, rule, witnesses[k], chain) : NoCount(row, rule));
         }
 
         return verdicts;
@@ -47,17 +48,18 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
 
     // In a region so large that percentiles are read from classes, the median is that of the dipole whose chain is printed.
     private IReadOnlyList<MeasureResult> Reconcile(
-        IReadOnlyList<MeasureResult> rows, Modality modality, DirectionName direction, string measure, int rule, MedianWitness? witness)
+        IReadOnlyList<MeasureResult> rows, IMeasure measure, DirectionName direction, int rule, MedianWitness? witness)
     {
         if (witness is null)
         {
             return rows;
         }
 
-        long? count = TrialCount.Ceiling(plan.Rules[rule].Trials(plan.Rules[rule].EffectivePower(witness.Power, witness.Artefact)));
+        ITargetRule bound = plan.RulesOf(measure)[rule];
+        long? count = TrialCount.Ceiling(bound.Trials(bound.EffectivePower(witness.Power, witness.Artefact, witness.InverseVariance)));
         return [.. rows.Select(row =>
         {
-            if (row.Modality != modality || row.Direction != direction || row.Measure != measure || row.Targets[rule].Trials.P50 == count)
+            if (row.Modality != measure.Modality || row.Direction != direction || row.Measure != measure.Name || row.Targets[rule].Trials.P50 == count)
             {
                 return row;
             }
@@ -69,10 +71,20 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         })];
     }
 
+    private static VerdictResult NoCount(MeasureResult row, int rule) => new()
+    {
+        Modality = row.Modality,
+        Rule = row.Targets[rule].Rule,
+        Measure = row.Measure,
+        Direction = row.Direction,
+        Text = $"{Names.Of(row.Modality)}, {Reading(row)}: no count ({row.Targets[rule].Reason}).",
+    };
+
     private VerdictResult Verdict(MeasureResult row, int rule, MedianWitness? witness, IReadOnlyList<DerivedNumber> chain)
     {
         TargetResult target = row.Targets[rule];
         long? count = target.Trials.P50;
+        ITargetRule bound = plan.RulesOf(plan.Measures.First(m => m.Modality == row.Modality && m.Name == row.Measure))[rule];
         bool? fits = plan.SessionTrials is { } session ? count is { } n && n <= session : null;
         return new VerdictResult
         {
@@ -80,14 +92,14 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Rule = target.Rule,
             Measure = row.Measure,
             Direction = row.Direction,
-            Text = Text(row, target, fits, witness) + RangeText(AtMoments(rule, witness)),
+            Text = Text(row, target, fits, witness) + RangeText(AtMoments(bound, witness)),
             FitsSession = fits,
-            AtMoments = AtMoments(rule, witness),
+            AtMoments = AtMoments(bound, witness),
             Chain = chain,
         };
     }
 
-    private CountRange? AtMoments(int rule, MedianWitness? witness)
+    private CountRange? AtMoments(ITargetRule rule, MedianWitness? witness)
     {
         if (plan.Response.MomentRange is not { } range || witness is null)
         {
@@ -98,8 +110,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
 
         long? At(double moment)
         {
-            double ratio = moment / plan.Response.Moment, effective = plan.Rules[rule].EffectivePower(witness.Power * ratio * ratio, witness.Artefact);
-            return effective > 0 ? TrialCount.Ceiling(plan.Rules[rule].Trials(effective)) : null;
+            double ratio = moment / plan.Response.Moment, effective = rule.EffectivePower(witness.Power * ratio * ratio, witness.Artefact, witness.InverseVariance);
+            return effective > 0 ? TrialCount.Ceiling(rule.Trials(effective)) : null;
         }
     }
 

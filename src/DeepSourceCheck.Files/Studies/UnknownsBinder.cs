@@ -10,6 +10,8 @@ internal static class UnknownsBinder
     // Conductivities that are equal but for the rounding of a quotient are equal.
     private const double SameRatio = 1e-12;
 
+    private static readonly string[] OfTheHead = ["skull_conductivity_ratio", "head_shift_mm", "centre_shift_mm"];
+
     /// <summary>The unknowns, and the head with the typical skull in it.</summary>
     public static (UnknownsChoice? Unknowns, HeadChoice? Head) Bind(
         Section root, HeadChoice? head, IReadOnlyList<Response> responses, BoundSensors sensors, Protocol? protocol)
@@ -26,7 +28,7 @@ internal static class UnknownsBinder
         if (head is not null and not SphereHeadChoice)
         {
             string kind = head is VoxelHeadChoice ? "head.voxels" : "head.leadfields";
-            foreach (string name in new[] { "skull_conductivity_ratio", "head_shift_mm", "centre_shift_mm" }.Where(unknowns.States))
+            foreach (string name in OfTheHead.Where(unknowns.States))
             {
                 unknowns.Problem(name, head is VoxelHeadChoice && name != "centre_shift_mm"
                     ? $"not supported yet with {kind}, which would be solved anew for each draw: remove it here, and state variants with other conductivities or gaps instead"
@@ -61,7 +63,7 @@ internal static class UnknownsBinder
     }
 
     private static bool AnyFaulty(Section unknowns) =>
-        new[] { "skull_conductivity_ratio", "noise_factor", "head_shift_mm", "centre_shift_mm" }.Any(n => unknowns.States(n) && unknowns.Raw(n) is null);
+        OfTheHead.Append("noise_factor").Any(n => unknowns.States(n) && unknowns.Raw(n) is null);
 
     private static Spread? Spread(Section unknowns, string name)
     {

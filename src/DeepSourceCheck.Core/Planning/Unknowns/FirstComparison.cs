@@ -21,7 +21,7 @@ internal sealed class FirstComparison(StudySetup setup, EvaluationPlan plan, Unk
     /// <param name="all">[draw][verdict] effective powers.</param>
     public FirstModality Of(double[][] all)
     {
-        string name = plan.Rules[rule].Name;
+        string name = Names.Of(plan.Targets[rule]);
         int eeg = Verdict(Modality.Eeg), meg = Verdict(Modality.Meg);
         if (eeg < 0 || meg < 0)
         {

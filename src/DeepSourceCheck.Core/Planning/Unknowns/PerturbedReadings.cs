@@ -54,7 +54,7 @@ internal sealed class PerturbedReadings
         var block = new LeadfieldBlock(source.EegRows, source.MegRows);
         var signals = new BlockSignals(_plan.Space, _head, _plan.MegReported);
         var reader = new BlockReader(_plan);
-        bool artefact = _plan.HasArtefact(Core.Results.Modality.Both);
+        bool noise = _plan.ReadsNoise;
         MeasureReadings[] readings = [.. Measures.Select(_ => new MeasureReadings())];
         for (int b = 0; b < _axes.Length; b++)
         {
@@ -68,12 +68,13 @@ internal sealed class PerturbedReadings
                 for (int m = 0; m < Measures.Count; m++)
                 {
                     Vector512<double> power = Measures[m].Power(signals) / Vector512.Create(_plan.NoiseFactor);
-                    Vector512<double> buried = artefact ? reader.ArtefactPower(Measures[m].InverseVariance(signals)) : default;
+                    ArtefactScale scale = noise ? Measures[m].InverseVariance(signals) : default;
+                    Vector512<double> buried = noise ? reader.ArtefactPower(scale) : default;
                     for (int lane = 0; lane < n; lane++)
                     {
                         if (axes.Defined[lane])
                         {
-                            readings[m].Add(power[lane], buried[lane]);
+                            readings[m].Add(power[lane], buried[lane], scale.Eeg[lane]);
                         }
                     }
                 }
@@ -124,19 +125,21 @@ internal sealed class PerturbedReadings
 /// <summary>Readings of one measure.</summary>
 internal sealed class MeasureReadings
 {
-    private readonly List<double> _powers = [], _artefacts = [];
+    private readonly List<double> _powers = [], _artefacts = [], _inverseVariances = [];
     private bool _buried;
     private double[]? _sorted;
 
     /// <summary>Adds a value; NaN is left out.</summary>
     /// <param name="power">Power per squared moment over the noise power of the convention [1/(A m)^2].</param>
     /// <param name="artefact">Artefact power over the same.</param>
-    public void Add(double power, double artefact)
+    /// <param name="inverseVariance">1/s^2 of the EEG channel that was read [1/V^2]; 0 where no rule asks.</param>
+    public void Add(double power, double artefact, double inverseVariance)
     {
         if (!double.IsNaN(power) && !double.IsNaN(artefact))
         {
             _powers.Add(power);
             _artefacts.Add(artefact);
+            _inverseVariances.Add(inverseVariance);
             _buried |= artefact > 0;
         }
     }
@@ -152,12 +155,12 @@ internal sealed class MeasureReadings
             return 0;
         }
 
-        if (!_buried)
+        if (!_buried && !rule.StandsOnNoise)
         {
             return Median(_sorted ??= [.. _powers.Order()]) * squaredMoment / noisePower;
         }
 
-        double[] effective = [.. _powers.Select((p, k) => rule.EffectivePower(p * squaredMoment / noisePower, _artefacts[k] / noisePower)).Order()];
+        double[] effective = [.. _powers.Select((p, k) => rule.EffectivePower(p * squaredMoment / noisePower, _artefacts[k] / noisePower, _inverseVariances[k] / noisePower)).Order()];
         return Median(effective);
     }
 

@@ -49,7 +49,7 @@ internal sealed class UnknownsRun
         }
 
         List<IMeasure> measures = [.. VerdictWriter.Measures(plan)];
-        _verdicts = [.. measures.SelectMany(m => plan.Rules.Select((_, r) => (m, r)))];
+        _verdicts = [.. measures.SelectMany(m => plan.Targets.Select((_, r) => (m, r)))];
         IMeasure? known = plan.Response.Amplitude is { } amplitude ? plan.Measures.First(m => m is DerivationMeasure && m.Name == amplitude.Derivation) : null;
         _knownReading = known is null ? -1 : measures.IndexOf(known);
         if (known is not null && _knownReading < 0)
@@ -70,7 +70,7 @@ internal sealed class UnknownsRun
         Dictionary<string, double[][]> alone = _draws.Names.ToDictionary(name => name, name => Effective(UnknownDraws.Alone, k => _draws.Single(k, name), cancellation));
         var ends = _draws.Names.ToDictionary(name => name, name => (Low: End(name, false), High: End(name, true)));
         VerdictSpread[] spreads = [.. _verdicts.Select((_, v) => Spread(v, all, alone, ends))];
-        return new UnknownsResult(_samples, spreads, [.. _plan.Rules.Select((_, r) => new FirstComparison(_setup, _plan, this, r).Of(all))]);
+        return new UnknownsResult(_samples, spreads, [.. _plan.Targets.Select((_, r) => new FirstComparison(_setup, _plan, this, r).Of(all))]);
     }
 
     /// <summary>Verdicts: measure and rule, in the order of the results.</summary>
@@ -78,7 +78,7 @@ internal sealed class UnknownsRun
 
     /// <summary>The rule of a verdict.</summary>
     /// <param name="v">Its number.</param>
-    public ITargetRule Rule(int v) => _plan.Rules[_verdicts[v].Rule];
+    public ITargetRule Rule(int v) => _plan.RulesOf(_verdicts[v].Measure)[_verdicts[v].Rule];
 
     /// <summary>Effective power of every verdict for one draw.</summary>
     /// <param name="draw">The draw.</param>
@@ -99,7 +99,7 @@ internal sealed class UnknownsRun
     /// <summary>Trials as a real number; infinite where out of reach.</summary>
     /// <param name="v">Verdict.</param>
     /// <param name="effective">Its effective power.</param>
-    public double Trials(int v, double effective) => effective > 0 ? Rule(v).Trials(effective) : double.PositiveInfinity;
+    public double Trials(int v, double effective) => effective > 0 && Rule(v).Absent is null ? Rule(v).Trials(effective) : double.PositiveInfinity;
 
     private int MeasureIndex(IMeasure measure)
     {
@@ -138,8 +138,8 @@ internal sealed class UnknownsRun
         double? assurance = null, missing = null;
         if (_plan.SessionTrials is { } session)
         {
-            assurance = all.Average(e => Suffices(v, e[v], session));
-            missing = Rule(v) is DetectionRule detection ? 1 - detection.PowerOf(_reader.Measures.Count > 0 ? Effective(new Draw(1, 1, null))[v] : 0, session) : null;
+            assurance = Rule(v).Absent is null ? all.Average(e => Suffices(v, e[v], session)) : null;
+            missing = Rule(v).Absent is null ? 1 - Rule(v).Probability(Effective(new Draw(1, 1, null))[v], 0, session) : null;
         }
 
         return new VerdictSpread(measure.Modality, Rule(v).Name, measure.Name, counts,
@@ -147,9 +147,8 @@ internal sealed class UnknownsRun
             interaction is < NoInteraction ? 0 : interaction);
     }
 
-    private double Suffices(int v, double effective, long session) => Rule(v) is DetectionRule detection
-        ? detection.PowerOf(effective, session)
-        : TrialCount.Ceiling(Trials(v, effective)) is { } n && n <= session ? 1 : 0;
+    private double Suffices(int v, double effective, long session) =>
+        Rule(v).Probability(effective, 0, session) ?? (TrialCount.Ceiling(Trials(v, effective)) is { } n && n <= session ? 1 : 0);
 
     private UnknownEffect Effect(int v, string name, double[][] alone, ((double[] Effective, double Value)? Low, (double[] Effective, double Value)? High) ends)
     {

@@ -79,7 +79,7 @@ public class BlockSignalsTests
         }.Setup();
         NoiseCovariance noise = setup.Noise!.InBand(1, 100);
         var space = new SignalSpace(noise, setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
-        var plan = new EvaluationPlan(setup.Study.Responses[0], space, setup.Rules, setup.Study.Protocol, true, true);
+        var plan = new EvaluationPlan(setup.Study.Responses[0], space, setup.Study.Targets, setup.Study.Protocol, true, true);
         var signals = new BlockSignals(space, setup.Head, true);
         var block = new LeadfieldBlock(electrodes, channels);
         block.Load(setup.Regions[0].Positions, setup.Regions[0].SourceIndices);

@@ -71,7 +71,7 @@ public class ProfileTallyTests
         StudySetup setup = Study.Setup();
         FilledRegion region = setup.Regions[0];
         var space = new SignalSpace(setup.Noise!.InBand(1, 100), setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
-        var plan = new EvaluationPlan(setup.Study.Responses[0], space, setup.Rules, null, true, true);
+        var plan = new EvaluationPlan(setup.Study.Responses[0], space, setup.Study.Targets, null, true, true);
         double?[] whole = Flat(Read(plan, setup, region, _ => 0, 1)), three = Flat(Read(plan, setup, region, block => block % 3, 3)), backwards = Flat(Read(plan, setup, region, block => 2 - block % 3, 3));
         Assert.Equal(whole, three);
         Assert.Equal(whole, backwards);
