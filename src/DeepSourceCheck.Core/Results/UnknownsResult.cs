@@ -28,8 +28,8 @@ public sealed record Percentiles3<T>(T P05, T P50, T P95);
 /// <param name="Fewest">Trials at the 5 % point of the counts.</param>
 /// <param name="Most">Trials at the 95 % point of the counts; null where out of reach.</param>
 /// <param name="AtFewest">Value of the unknown, in the unit of its key, that gives the fewest; null for shifts, whose direction counts.</param>
-/// <param name="AtMost">Value that gives the most, likewise.</param>
-/// <param name="LogVariance">Variance of ln trials.</param>
+/// <param name="AtMost">Value that gives the most, in the same unit; null likewise.</param>
+/// <param name="LogVariance">Variance of ln trials, without unit.</param>
 public sealed record UnknownEffect(string Unknown, long? Fewest, long? Most, double? AtFewest, double? AtMost, double LogVariance);
 
 /// <summary>Which modality needs fewer trials, and what would change that.</summary>

@@ -23,12 +23,12 @@ public sealed record UnknownsChoice
 //   ln x = ln typical + sigma z, z standard normal, with sigma = ln(typical/low)/z95 below and ln(high/typical)/z95 above: the median is `typical`, the 5 and 95 % points are `low` and `high`.
 
 /// <summary>A positive quantity that is not known: a split lognormal distribution.</summary>
-/// <param name="Low">5 % point, positive.</param>
-/// <param name="Typical">Median, at least <paramref name="Low"/>.</param>
-/// <param name="High">95 % point, at least <paramref name="Typical"/>.</param>
+/// <param name="Low">5 % point, positive, in the unit of the quantity.</param>
+/// <param name="Typical">Median, in the unit of <see cref="Low"/>, at least <paramref name="Low"/>.</param>
+/// <param name="High">95 % point, in the unit of <see cref="Low"/>, at least <paramref name="Typical"/>.</param>
 public sealed record Spread(double Low, double Typical, double High)
 {
-    /// <summary>95 % point of the standard normal distribution.</summary>
+    /// <summary>95 % point of the standard normal distribution, without unit.</summary>
     public const double Z95 = 1.6448536269514722;
 
     /// <summary>The value at a normal score, in the unit of the points.</summary>

@@ -79,7 +79,7 @@ public static class StudyReader
         IReadOnlyList<Response> responses = ResponseBinder.Bind(root, sensors, reading);
         IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root);
         Protocol? protocol = PlanBinder.Protocol(root);
-        (UnknownsChoice? unknowns, head) = UnknownsBinder.Bind(root, head, responses, sensors, protocol);
+        (UnknownsChoice? unknowns, head) = UnknownsBinder.Bind(root, head, responses, sensors, protocol, reading);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()

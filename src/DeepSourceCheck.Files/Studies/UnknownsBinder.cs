@@ -14,7 +14,7 @@ internal static class UnknownsBinder
 
     /// <summary>The unknowns, and the head with the typical skull in it.</summary>
     public static (UnknownsChoice? Unknowns, HeadChoice? Head) Bind(
-        Section root, HeadChoice? head, IReadOnlyList<Response> responses, BoundSensors sensors, Protocol? protocol)
+        Section root, HeadChoice? head, IReadOnlyList<Response> responses, BoundSensors sensors, Protocol? protocol, Reading reading)
     {
         if (root.Map("unknowns") is not { } unknowns)
         {
@@ -42,7 +42,7 @@ internal static class UnknownsBinder
             headShift = 0;
         }
 
-        if (skull is null && noise is null && headShift == 0 && centreShift == 0 && !responses.Any(r => r.MomentRange is not null) && !AnyFaulty(unknowns))
+        if (skull is null && noise is null && headShift == 0 && centreShift == 0 && !responses.Any(r => r.MomentRange is not null) && reading.Problems.Count == 0)
         {
             unknowns.Problem("leaves nothing to vary; state skull_conductivity_ratio, noise_factor, head_shift_mm or centre_shift_mm, or a response's moment_nAm as {low, typical, high}");
         }
@@ -61,9 +61,6 @@ internal static class UnknownsBinder
             Samples = (int)n,
         }, varied);
     }
-
-    private static bool AnyFaulty(Section unknowns) =>
-        OfTheHead.Append("noise_factor").Any(n => unknowns.States(n) && unknowns.Raw(n) is null);
 
     private static Spread? Spread(Section unknowns, string name)
     {
