@@ -135,6 +135,7 @@ public static class Assessor
             Profile = tally.Profile?.Profile(),
             Results = rows,
             Verdicts = verdicts,
+            RealisticHeads = [.. parts.Select(p => p.RealisticHead).OfType<RealisticHeadEffect>()],
             Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost)],
         };
     }

@@ -1,5 +1,3 @@
-using System.Runtime.Intrinsics;
-
 using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;

@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Results;
@@ -43,6 +44,9 @@ public sealed record RegionResult
 
     /// <summary>Answers.</summary>
     public required IReadOnlyList<VerdictResult> Verdicts { get; init; }
+
+    /// <summary>What a realistic head changes against spheres, as measured once for the library; one entry a library region, several where regions act together.</summary>
+    public IReadOnlyList<RealisticHeadEffect> RealisticHeads { get; init; } = [];
 
     /// <summary>What the user must know about this region.</summary>
     public IReadOnlyList<string> Warnings { get; init; } = [];

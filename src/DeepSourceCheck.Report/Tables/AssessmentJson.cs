@@ -128,6 +128,7 @@ public static class AssessmentJson
             UnknownsJson.Write(json, unknowns);
         }
 
+        json.WriteRealisticHeads(region.RealisticHeads);
         json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();
     }
