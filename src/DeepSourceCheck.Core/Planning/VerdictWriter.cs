@@ -95,6 +95,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Text = Text(row, target, fits, witness) + RangeText(AtMoments(bound, witness)),
             FitsSession = fits,
             AtMoments = AtMoments(bound, witness),
+            Missing = plan.SessionTrials is { } trials && witness is not null ? 1 - bound.Probability(witness.Power, witness.Artefact, trials) : null,
             Chain = chain,
         };
     }

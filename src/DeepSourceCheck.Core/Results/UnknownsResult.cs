@@ -13,11 +13,10 @@ public sealed record UnknownsResult(int Samples, IReadOnlyList<VerdictSpread> Ve
 /// <param name="Trials">5, 50 and 95 % of trials; null where a percentile is out of reach.</param>
 /// <param name="Minutes">The same in minutes of recording; null without a protocol.</param>
 /// <param name="Assurance">Mean over the draws of the probability that the session suffices; null without a session.</param>
-/// <param name="Missing">Probability that the session misses a source of the stated strength, unknowns as nominal; null for rules without power or without a session.</param>
 /// <param name="Ranking">One an unknown, the one that moves trials most first.</param>
 /// <param name="Interaction">Share of the variance of log trials that single unknowns do not explain, 0 to 1; null where it is not defined.</param>
 public sealed record VerdictSpread(
-    Modality Modality, string Rule, string Measure, Percentiles3<long?> Trials, Percentiles3<double?>? Minutes, double? Assurance, double? Missing,
+    Modality Modality, string Rule, string Measure, Percentiles3<long?> Trials, Percentiles3<double?>? Minutes, double? Assurance,
     IReadOnlyList<UnknownEffect> Ranking, double? Interaction);
 
 /// <summary>5, 50 and 95 %.</summary>

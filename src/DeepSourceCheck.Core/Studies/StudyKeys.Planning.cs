@@ -133,7 +133,7 @@ public static partial class StudyKeys
         new("unknowns.samples", "Draws over the unknowns.", Count(16, 65_536))
         {
             Example = "256",
-            Defaults = Default(256.0, "the spread of the percentiles of a low-discrepancy sample is then some 2 % of trials", Grade.Derived),
+            Defaults = Default(256.0, "measured against 16,384 draws: median of trials within 3 %, 5 and 95 % points within 15 %, assurance within 1 %", Grade.Derived),
         },
         new("variants", "Studies that override keys of this one.", new ListShape("a variant {name, and the keys that it overrides}"))
         {

@@ -207,6 +207,12 @@ public static class ConsoleSummary
             text.Append(Fact($"{Names.Of(a.Modality)} at the published leak", $"{Say.Stated(leak.Leak)} of the strongest direction: {count}"));
         }
 
+        ModalityAnswer[] missed = [.. answer.Answers.Where(a => a.Verdict.Missing is not null)];
+        if (missed.Length > 0)
+        {
+            text.Append(Fact("chance to miss it", string.Join(", ", missed.Select(a => $"{Names.Of(a.Modality)} {Say.Chance(a.Verdict.Missing!.Value)}"))));
+        }
+
         double?[] sure = [.. answer.Answers.Select(a => a.Verdict.Assurance)];
         text.Append(Fact("how sure", sure.Any(s => s is not null)
             ? string.Join(", ", answer.Answers.Where(a => a.Verdict.Assurance is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Assurance(a.Verdict.Assurance!.Value)}"))

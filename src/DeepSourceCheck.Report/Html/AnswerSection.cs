@@ -103,7 +103,8 @@ internal static class AnswerSection
         string leak = a.Row?.AtLeak is { } l && l.Targets.FirstOrDefault(t => t.Rule == a.Verdict.Rule) is { } t
             ? $"at the published leak of {Say.Stated(l.Leak)}: {(t.Trials.P50 is { } n && n <= Say.MostTrials ? Say.Plural(n, "trial") : Say.OutOfReach)}" : "";
         string first = range.Length > 0 ? range : leak.Length > 0 ? leak : a.Reason ?? "";
-        return string.Join("; ", new[] { first, sure }.Where(p => p.Length > 0));
+        string miss = a.Verdict.Missing is { } chance ? $"{Say.Chance(chance)} chance to miss it in the session" : "";
+        return string.Join("; ", new[] { first, sure, miss }.Where(p => p.Length > 0));
     }
 
     private static void Peaks(Markup html, RegionAnswer answer)
@@ -225,9 +226,9 @@ internal static class AnswerSection
         foreach (string rule in rules)
         {
             html.Element("h3", $"By another target: {TrialsFigure.RuleWords(assessment, response.Response, rule)}", "class", "ruled", "style", "margin-top:28px");
-            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range"],
+            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range", "chance to miss"],
                 response.Regions.SelectMany(r => new RegionAnswer(assessment, response.Response, r, rule).Answers.Select(a => (IReadOnlyList<string>)
-                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range()])));
+                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range(), a.Verdict.Missing is { } miss ? Say.Chance(miss) : ""])));
         }
     }
 }

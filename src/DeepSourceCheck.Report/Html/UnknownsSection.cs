@@ -38,13 +38,13 @@ internal static class UnknownsSection
         }
 
         HtmlReport.Table(html, $"Spread over the unknowns, {region.Region}",
-            ["modality", "target", "measure", "trials, 5 %", "median", "95 %", "assured", "chance to miss"],
+            ["modality", "target", "measure", "trials, 5 %", "median", "95 %", "assured"],
             unknowns.Verdicts.Select(v => (IReadOnlyList<string>)
             [
                 RegionAnswer.Words(v.Modality), Say.RuleKey(v.Rule), v.Measure, Say.Trials(v.Trials.P05), Say.Trials(v.Trials.P50), Say.Trials(v.Trials.P95),
-                v.Assurance is { } a ? Say.Assurance(a) : "", v.Missing is { } m ? Say.Percent(Math.Round(m, 2)) : "",
+                v.Assurance is { } a ? Say.Assurance(a) : "",
             ]),
-            ["", "", "", "n", "n", "n", "n", "n"]);
+            ["", "", "", "n", "n", "n", "n"]);
         HtmlReport.Table(html, $"Each unknown alone, {region.Region}",
             ["modality", "target", "unknown", "range", "trials"],
             unknowns.Verdicts.Where(v => v.Modality != Modality.Both).SelectMany(v => v.Ranking.Select(e => (IReadOnlyList<string>)

@@ -2,6 +2,7 @@ using System.Text.Json;
 
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Units;
+using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Tables;
 
@@ -42,7 +43,7 @@ public static class AssessmentJson
             }
 
             json.WriteCount("session_trials", assessment.SessionTrials);
-            json.WriteArray("responses", assessment.Responses, WriteResponse);
+            json.WriteArray("responses", assessment.Responses, (j, r) => WriteResponse(j, r, assessment));
             json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));
             json.WriteEndObject();
         }
@@ -66,19 +67,19 @@ public static class AssessmentJson
         json.WriteArray("assumptions", [.. variant.Assessment.Assumptions.Except(study.Assumptions)], JsonText.WriteAssumption);
         json.WriteStrings("warnings", variant.Assessment.Warnings.Except(study.Warnings));
         json.WriteCount("session_trials", variant.Assessment.SessionTrials);
-        json.WriteArray("responses", variant.Assessment.Responses, WriteResponse);
+        json.WriteArray("responses", variant.Assessment.Responses, (j, r) => WriteResponse(j, r, variant.Assessment));
         json.WriteEndObject();
     }
 
-    private static void WriteResponse(Utf8JsonWriter json, ResponseResult response)
+    private static void WriteResponse(Utf8JsonWriter json, ResponseResult response, Assessment assessment)
     {
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
-        json.WriteArray("regions", response.Regions, WriteRegion);
+        json.WriteArray("regions", response.Regions, (j, r) => WriteRegion(j, r, response, assessment));
         json.WriteEndObject();
     }
 
-    private static void WriteRegion(Utf8JsonWriter json, RegionResult region)
+    private static void WriteRegion(Utf8JsonWriter json, RegionResult region, ResponseResult response, Assessment assessment)
     {
         json.WriteStartObject();
         json.WriteString("region", region.Region);
@@ -123,6 +124,7 @@ public static class AssessmentJson
 
         json.WriteArray("results", region.Results, WriteMeasure);
         json.WriteArray("verdicts", region.Verdicts, WriteVerdict);
+        json.WriteArray("advice", [.. region.Verdicts.Select(v => v.Rule).Distinct()], (j, rule) => WriteAdvice(j, new RegionAnswer(assessment, response.Response, region, rule)));
         if (region.Unknowns is { } unknowns)
         {
             UnknownsJson.Write(json, unknowns);
@@ -227,6 +229,16 @@ public static class AssessmentJson
         json.WriteEndObject();
     }
 
+    private static void WriteAdvice(Utf8JsonWriter json, RegionAnswer answer)
+    {
+        json.WriteStartObject();
+        json.WriteString("rule", answer.Rule);
+        json.WriteString("modality", answer.Winner is { } winner ? Names.Of(winner.Modality) : null);
+        json.WriteString("text", $"{answer.Headline()}. {answer.Recommendation()} {answer.Joint()} {answer.Reason()}".Replace("  ", " ", StringComparison.Ordinal).TrimEnd());
+        json.WriteCount("trials_saved_by_both", answer.SavedByBoth);
+        json.WriteEndObject();
+    }
+
     private static void WriteVerdict(Utf8JsonWriter json, VerdictResult verdict)
     {
         json.WriteStartObject();
@@ -241,6 +253,7 @@ public static class AssessmentJson
         }
 
         json.WriteFigure("assurance", verdict.Assurance);
+        json.WriteFigure("missing_probability", verdict.Missing);
         if (verdict.AtMoments is { } range)
         {
             json.WriteStartObject("trials_at_moment");

@@ -37,7 +37,6 @@ internal static class UnknownsJson
         }
 
         json.WriteFigure("assurance", spread.Assurance);
-        json.WriteFigure("missing_probability", spread.Missing);
         json.WriteFigure("interaction_share", spread.Interaction);
         json.WriteArray("ranking", spread.Ranking, (j, effect) =>
         {

@@ -135,15 +135,10 @@ internal sealed class UnknownsRun
         UnknownEffect[] ranking = [.. _draws.Names.Select(name => Effect(v, name, alone[name], ends[name])).OrderByDescending(e => e.LogVariance)];
         double explained = ranking.Sum(e => e.LogVariance);
         double? interaction = total > 0 && double.IsFinite(explained) && double.IsFinite(total) ? Math.Clamp(1 - explained / total, 0, 1) : null;
-        double? assurance = null, missing = null;
-        if (_plan.SessionTrials is { } session)
-        {
-            assurance = Rule(v).Absent is null ? all.Average(e => Suffices(v, e[v], session)) : null;
-            missing = Rule(v).Absent is null ? 1 - Rule(v).Probability(Effective(new Draw(1, 1, null))[v], 0, session) : null;
-        }
+        double? assurance = _plan.SessionTrials is { } session && Rule(v).Absent is null ? all.Average(e => Suffices(v, e[v], session)) : null;
 
         return new VerdictSpread(measure.Modality, Rule(v).Name, measure.Name, counts,
-            _plan.Protocol is null ? null : new(Minutes(counts.P05), Minutes(counts.P50), Minutes(counts.P95)), assurance, missing, ranking,
+            _plan.Protocol is null ? null : new(Minutes(counts.P05), Minutes(counts.P50), Minutes(counts.P95)), assurance, ranking,
             interaction is < NoInteraction ? 0 : interaction);
     }
 
