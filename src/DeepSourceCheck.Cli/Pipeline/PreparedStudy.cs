@@ -74,9 +74,9 @@ internal sealed record PreparedStudy
             return;
         }
 
-        bool large = Setup.Source is VoxelLeadfield;
+        bool large = Setup.Source is VoxelLeadfield or ProjectedSource { Inner: VoxelLeadfield };
         // The functions are those of the sensors, which hold the leadfields too.
-        Setup = Setup with { Source = new ReleasedLeadfield(Setup.Source), FieldCaptured = _ => null, CentreSensitivity = (_, _) => null };
+        Setup = Setup with { Source = new ReleasedLeadfield(Setup.Source), Removal = null, FieldCaptured = _ => null, CentreSensitivity = (_, _) => null };
         if (large)
         {
             // Left alone, the collector may not look before the next head has taken as much again.

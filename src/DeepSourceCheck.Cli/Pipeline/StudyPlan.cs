@@ -1,4 +1,3 @@
-using DeepSourceCheck.Core.Noise;
 using DeepSourceCheck.Core.Planning;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Files.Regions;
@@ -16,6 +15,7 @@ internal sealed class StudyPlan
     private readonly SensorAssembly _sensors;
     private readonly RegionAssembly _regions;
     private readonly StudySetup _setup;
+    private readonly BuiltNoise? _noise;
 
     /// <param name="reading">The study as read.</param>
     /// <param name="library">Region library.</param>
@@ -39,7 +39,7 @@ internal sealed class StudyPlan
         if (purpose == Purpose.Assess)
         {
             _warnings.AddRange(MomentCheck.Judge(reading, _setup));
-            _setup = _setup with { Noise = NoiseAssembly.Build(reading, _sensors, _inputs, _warnings) };
+            _noise = NoiseAssembly.Build(reading, _sensors, _inputs, _warnings);
         }
     }
 
@@ -56,17 +56,18 @@ internal sealed class StudyPlan
     public PreparedStudy Prepare(RunSettings settings)
     {
         StudySetup setup = _setup;
+        BuiltNoise? noise = _noise;
         if (!_sensors.IsComputed && !settings.CheckOnly)
         {
             _sensors.Compute(_regions.Filled, settings);
-            NoiseModel? noise = _purpose == Purpose.Assess ? setup.Noise ?? NoiseAssembly.Build(_reading, _sensors, _inputs, _warnings) : null;
-            setup = _sensors.Setup(_reading.Study, _regions.Filled) with { Noise = noise };
+            noise ??= _purpose == Purpose.Assess ? NoiseAssembly.Build(_reading, _sensors, _inputs, _warnings) : null;
+            setup = _sensors.Setup(_reading.Study, _regions.Filled);
         }
 
         return new PreparedStudy
         {
             Reading = _reading,
-            Setup = setup,
+            Setup = noise?.Into(setup) ?? setup,
             Inputs = _inputs.Files,
             Warnings = [.. _warnings.Distinct()],
             PredictedMemory = Memory,

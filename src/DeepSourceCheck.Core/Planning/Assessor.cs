@@ -57,11 +57,13 @@ public static class Assessor
                 RegionTally tally = new RegionRun(asked, own.Head, source)
                     .Run(region, Adapt(sink, asked, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
                 done += region.Positions.Length;
-                RegionResult result = Result(own, asked, region, source, parts, tally, cancellation);
+                RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
+                    : new RemovalReport(own, asked).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, Activation.Weights(response), cancellation) : setup.Removal.Source, cancellation);
+                RegionResult result = Result(own, asked, region, source, parts, tally, loss, cancellation);
                 regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, asked, own.Head, source, region, parts).Run(cancellation)));
             }
 
-            results.Add(new ResponseResult(response, regions));
+            results.Add(new ResponseResult(response, regions) { Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
         }
 
         return results;
@@ -112,7 +114,7 @@ public static class Assessor
 
     private static RegionResult Result(
         StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts, RegionTally tally,
-        CancellationToken cancellation)
+        RemovalLoss? loss, CancellationToken cancellation)
     {
         var signals = new BlockSignals(plan.Space, setup.Head, plan.MegReported);
         var report = new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
@@ -133,10 +135,12 @@ public static class Assessor
             Split = split,
             FieldCaptured = captured.Min(),
             Profile = tally.Profile?.Profile(),
+            Removal = loss,
             Results = rows,
             Verdicts = verdicts,
             RealisticHeads = [.. parts.Select(p => p.RealisticHead).OfType<RealisticHeadEffect>()],
-            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost)],
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
+                .. loss is null ? Array.Empty<string>() : [RemovalReport.Words(region.Name, loss)]],
         };
     }
 

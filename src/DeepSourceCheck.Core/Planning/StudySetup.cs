@@ -40,6 +40,9 @@ public sealed record StudySetup
     /// <summary>False where the MEG rows are a built-in array that serves the split alone.</summary>
     public bool MegReported { get; init; }
 
+    /// <summary>What removal of the room's terms is compared with; null where nothing is removed.</summary>
+    public RemovalBaseline? Removal { get; init; }
+
     /// <summary>Noise; null where only leadfields are asked for.</summary>
     public NoiseModel? Noise { get; init; }
 

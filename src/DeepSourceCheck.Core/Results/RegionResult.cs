@@ -36,6 +36,9 @@ public sealed record RegionResult
     /// <summary>SNR by depth and by angle over the cortex; null where the region is no folded cortex.</summary>
     public CorticalProfile? Profile { get; init; }
 
+    /// <summary>What the removal of the room's terms does to this region's MEG; null where nothing is removed or MEG sees nothing.</summary>
+    public RemovalLoss? Removal { get; init; }
+
     /// <summary>All figures.</summary>
     public required IReadOnlyList<MeasureResult> Results { get; init; }
 

@@ -87,6 +87,8 @@ internal sealed class StudyWalk(Reading reading)
                     YamlNumber.Parse(scalar, out reason);
                     reason = ": " + reason;
                     break;
+                case FlagShape when scalar.Text is "true" or "false":
+                    return new PlacedText(spec, key, scalar.Line, scalar.Column, scalar.Text, isWord: true);
                 case TextShape text when TextFault(scalar.Text, text.LongestLength) is { } fault:
                     return Fault(scalar, key, $"{Shown.Quoted(scalar.Text)} {fault}; it must be {spec.Allowed}");
                 case TextShape:

@@ -1,6 +1,8 @@
+using System.Globalization;
 using System.Text.Json;
 
 using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Report.Answers;
 
@@ -76,7 +78,65 @@ public static class AssessmentJson
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
         json.WriteArray("regions", response.Regions, (j, r) => WriteRegion(j, r, response, assessment));
+        json.WriteArray("noise_spectra", response.Spectra, WriteSpectrum);
         json.WriteEndObject();
+    }
+
+    // Densities to six digits: a picture of the noise, beside figures in full.
+    private static void WriteSpectrum(Utf8JsonWriter json, ReadingSpectrum spectrum)
+    {
+        json.WriteStartObject();
+        json.WriteString("modality", Names.Of(spectrum.Modality));
+        json.WriteString("channel", spectrum.Channel);
+        json.WriteString("unit", spectrum.Unit);
+        WriteBand(json, "band_Hz", spectrum.Band);
+        WriteBand(json, "bandwidth_Hz", spectrum.Bandwidth);
+        json.WriteFigure("response_level", spectrum.SignalLevel);
+        WriteDensities(json, "frequency_Hz", [.. spectrum.Frequencies]);
+        WriteDensities(json, "total", spectrum.Total);
+        json.WriteArray("causes", spectrum.Noise, (j, curve) =>
+        {
+            j.WriteStartObject();
+            j.WriteString("cause", curve.Cause);
+            j.WriteFigure("share_of_band", curve.Share);
+            WriteDensities(j, "density", curve.Densities);
+            j.WriteEndObject();
+        });
+        if (spectrum.SignalDensities is { } signal)
+        {
+            WriteDensities(json, "response_density", [.. signal]);
+        }
+
+        json.WriteEndObject();
+    }
+
+    private static void WriteBand(Utf8JsonWriter json, string name, Band? band)
+    {
+        if (band is not { } b)
+        {
+            json.WriteNull(name);
+            return;
+        }
+
+        WriteDensities(json, name, [b.Low, b.High]);
+    }
+
+    private static void WriteDensities(Utf8JsonWriter json, string name, IReadOnlyList<double?> values)
+    {
+        json.WriteStartArray(name);
+        foreach (double? value in values)
+        {
+            if (value is { } v)
+            {
+                json.WriteNumberValue(double.Parse(v.ToString("G6", CultureInfo.InvariantCulture), CultureInfo.InvariantCulture));
+            }
+            else
+            {
+                json.WriteNullValue();
+            }
+        }
+
+        json.WriteEndArray();
     }
 
     private static void WriteRegion(Utf8JsonWriter json, RegionResult region, ResponseResult response, Assessment assessment)
@@ -109,6 +169,17 @@ public static class AssessmentJson
             json.WriteArray("by_angle", profile.ByAngle, (j, bin) => WriteBin(j, bin, "deg", Si.ToDegrees));
             json.WriteArray("by_depth_upright", profile.UprightByDepth, (j, bin) => WriteBin(j, bin, "mm", Si.ToMm));
             json.WriteNumber("points_without_normal", profile.WithoutNormal);
+        }
+
+        if (region.Removal is { } loss)
+        {
+            json.WriteStartObject("environment_removal");
+            json.WriteString("direction", Names.Of(loss.Direction));
+            json.WriteFigure("matched_filter_db", loss.MatchedFilterDb);
+            json.WriteFigure("best_channel_db", loss.BestChannelDb);
+            json.WriteFigure("matched_filter_against_left_in_db", loss.MatchedFilterAgainstLeftInDb);
+            json.WriteFigure("best_channel_against_left_in_db", loss.BestChannelAgainstLeftInDb);
+            json.WriteEndObject();
         }
 
         if (region.Cancellation.Count > 0)

@@ -112,6 +112,18 @@ public sealed class VoxelPipelineTests : IDisposable
     }
 
     [Fact]
+    public void RemovalOfTheRoom_IsThatOfTheSphere_WhereTheLeadfieldIs()
+    {
+        static string Room(string study) => study.Replace("eeg_total: {rms_uV: 20, derivation: Cz-mastoids, band_Hz: [1, 100]}", "brain: none\n  environment: {meg_fT_per_rtHz: 3, removed: true}", StringComparison.Ordinal);
+        RegionResult a = Assess(Room(Voxels())).Responses[0].Regions[0], b = Assess(Room($"title: t\nhead: {{spheres: {Layers}}}\n{Rest}")).Responses[0].Regions[0];
+        Assert.Equal(b.Removal, a.Removal);
+        Assert.True(a.Removal!.MatchedFilterDb < -1, "outward magnetometers above a deep source");
+        PreparedStudy prepared = Prepare(Room(Voxels()));
+        prepared.ReleaseLeadfields();
+        Assert.Null(prepared.Setup.Removal);
+    }
+
+    [Fact]
     public void BrainNoise_StandsInTheGreyMatter_AndItsTablesAreSolvedToo()
     {
         PreparedStudy prepared = Prepare(Voxels());

@@ -22,10 +22,6 @@ public class NotSupportedYetTests
     [InlineData("amplitude_ratio: 3", "detection: {covariance: estimated}", "target.detection.covariance")]
     [InlineData("rate_per_s: 11.1", "rate_per_s: 11.1, participants: 20", "protocol.participants")]
     [InlineData("rate_per_s: 11.1", "rate_per_s: 11.1, spread_between_people: 0.3", "protocol.spread_between_people")]
-    [InlineData("  brain: default", "  eeg_corner_Hz: 1", "noise.eeg_corner_Hz")]
-    [InlineData("  brain: default", "  meg_corner_Hz: 1", "noise.meg_corner_Hz")]
-    [InlineData("  brain: default", "  brain: {eeg_table: f.csv, meg_table: f.csv}", "noise.brain")]
-    [InlineData("  brain: default", "  environment: {meg_fT_per_rtHz: 3, removed: false}", "noise.environment")]
     public void Key_ThatIsNotActedOn_IsRefusedWithWhatToDoInstead(string place, string replacement, string key)
     {
         InputProblem problem = StudyText.Problem(StudyText.Small.With(place, replacement));
