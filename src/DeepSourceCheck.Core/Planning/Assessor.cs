@@ -102,6 +102,7 @@ public static class Assessor
         var report = new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
         IReadOnlyList<MeasureResult> rows = report.Rows();
         SplitSummary? split = report.Split();
+        SupportCounts?[] supports = [.. parts.Select(p => setup.Source.Supports(p.Positions, cancellation))];
         double?[] captured = [.. parts.Select(setup.FieldCaptured)];
         var verdicts = new VerdictWriter(setup, plan, region, source, tally).Write(ref rows, cancellation);
         return new RegionResult
@@ -114,9 +115,11 @@ public static class Assessor
             Split = split,
             FieldCaptured = captured.Min(),
             Profile = tally.Profile?.Profile(),
+            Supports = supports.Aggregate((a, b) => a is null || b is null ? null : a + b),
             Results = rows,
             Verdicts = verdicts,
-            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts)],
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split),
+                .. parts.Zip(supports).Where(p => p.Second?.Warning is not null).Select(p => $"{p.First.Name}: {p.Second!.Warning}"), .. CentreWarnings(setup, plan, parts)],
         };
     }
 

@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Results;
@@ -28,6 +29,9 @@ public sealed record RegionResult
 
     /// <summary>SNR by depth and by angle over the cortex; null where the region is no folded cortex.</summary>
     public CorticalProfile? Profile { get; init; }
+
+    /// <summary>What carries its dipoles; null where all are carried alike.</summary>
+    public SupportCounts? Supports { get; init; }
 
     /// <summary>All figures.</summary>
     public required IReadOnlyList<MeasureResult> Results { get; init; }

@@ -12,7 +12,7 @@ public static class TissueWords
     [
         (TissueKind.Air, ["air", "background", "outside"], []),
         (TissueKind.Csf, ["csf", "fluid", "liquor", "ventric", "cerebrospinal"], []),
-        (TissueKind.Skull, ["skull", "bone", "compact", "spong", "diplo", "cancellous", "marrow", "cranium", "vertebra", "tooth", "teeth"], []),
+        (TissueKind.Skull, ["skull", "bone", "compact", "spong", "diplo", "cancellous", "marrow", "cranium", "vertebra", "tooth", "teeth", "fontanel"], []),
         (TissueKind.Scalp, ["scalp", "skin", "soft", "muscle", "fat", "eye", "cartilage", "mucosa"], []),
         (TissueKind.White, ["white"], ["wm"]),
         (TissueKind.Grey, ["grey", "gray", "brain", "cortex", "cortical", "nucle", "cerebell", "thalam", "hippocamp"], ["gm"]),
@@ -20,7 +20,7 @@ public static class TissueWords
 
     /// <summary>The words that are understood, for messages.</summary>
     public const string Understood =
-        "scalp, skin, soft, muscle, fat, eye; skull, bone, compact, spongy, marrow; csf, fluid, ventricle; grey, gray, brain, cortex, nucleus, cerebellum; white; air";
+        "scalp, skin, soft, muscle, fat, eye; skull, bone, compact, spongy, marrow, fontanelle; csf, fluid, ventricle; grey, gray, brain, cortex, nucleus, cerebellum; white; air";
 
     /// <summary>The kind of tissue that a name tells, or null where none of its words is known.</summary>
     public static TissueKind? KindOf(string name)

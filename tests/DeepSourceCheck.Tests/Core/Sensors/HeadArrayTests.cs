@@ -89,6 +89,30 @@ public class HeadArrayTests
         CoilPlacement.CheckOutside(Face.Value.Scalp, array.Channels);
     }
 
+    // What a generated array would be if its placement failed: sites 9 mm below the scalp.
+    [Fact]
+    public void GeneratedArray_InsideTheHead_IsRefusedWithChannelsAndDepth()
+    {
+        MegChannel[] sunk = CoilArray.Generate(Choice("on-scalp") with { Gap = 0.001 }, Centre, Radius - 0.010);
+        InputException error = Assert.Throws<InputException>(() => CoilPlacement.CheckGenerated(Ball.Value.Scalp, sunk, Voxel, []));
+        Assert.Equal("sensors.meg.gap_mm", error.Problems[0].Key);
+        Assert.Matches(@"^60 of 60 channels .* inside the head: M\d\d (8|9)\.\d mm, .* and 54 more below the scalp", error.Problems[0].Message);
+    }
+
+    [Theory]
+    [InlineData("on-scalp", 0.0015, true)]
+    [InlineData("on-scalp-triaxial", 0.0015, true)]
+    [InlineData("on-scalp", 0.007, false)]
+    [InlineData("magnetometer", 0.0005, true)]
+    [InlineData("planar-gradiometer", 0.020, false)]
+    public void GeneratedArray_NearerThanAVoxel_IsWarnedOf(string coil, double gap, bool near)
+    {
+        List<string> warnings = [];
+        CoilPlacement.CheckGenerated(Face.Value.Scalp, About(Face.Value, Choice(coil, 300) with { Gap = gap }).Channels, Voxel, warnings);
+        Assert.Equal(near, warnings.Count == 1);
+        Assert.All(warnings, w => Assert.Matches(@"^the generated MEG array: \d+ of \d+ channels have a coil point nearer to the scalp than one voxel \(2 mm\): M\d+[rab]? [01]\.\d mm", w));
+    }
+
     [Fact]
     public void WrongChoice_IsRefusedAsOnASphere() =>
         Assert.Equal("sensors.meg.gap_mm", Assert.Throws<InputException>(() => About(Ball.Value, Choice("magnetometer") with { Gap = -0.001 })).Problems[0].Key);
