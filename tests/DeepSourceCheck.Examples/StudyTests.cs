@@ -70,6 +70,43 @@ public class StudyTests
     }
 
     [Fact]
+    public void Study11_KnownAmplitudeGivesTheWorkedCountAndTheMomentOfTheSphere()
+    {
+        // 0.45 uV peak to trough on 2.0 uV rms needs 356 sweeps (worked example); 0.066 uV/nAm at the colliculus for a skull of 0.008 S/m, here 0.0132 S/m and so up to 1.2 times that:
+        // 5.7 to 6.8 nAm (sphere values derived with the published series).
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("11-known-amplitude.yaml"));
+        Assert.Equal(356, AssessedStudy.Trials(study.Result("known amplitude", "inferior-colliculus-left", "EEG", "given", "Cz-mastoids")));
+        double moment = study.Region("known amplitude", "inferior-colliculus-left").GetProperty("moment_nAm").GetDouble();
+        Assert.InRange(moment, 5.7, 6.8);
+
+        // N goes with 1/a^2: both responses have one geometry.
+        long fixedMoment = AssessedStudy.Trials(study.Result("range of moments", "inferior-colliculus-left", "MEG", "given", "best-channel"));
+        long found = AssessedStudy.Trials(study.Result("known amplitude", "inferior-colliculus-left", "MEG", "given", "best-channel"));
+        Assert.InRange(found * moment * moment / 49, fixedMoment - 2, fixedMoment + 2);
+        JsonElement range = study.Region("range of moments", "inferior-colliculus-left").GetProperty("verdicts")[0].GetProperty("trials_at_moment");
+        Assert.True(range.GetProperty("low").GetInt64() > range.GetProperty("high").GetInt64());
+        Assert.Equal(30, study.Region("sheet", "hippocampus-left").GetProperty("moment_nAm").GetDouble(), 1e-9);
+    }
+
+    [Fact]
+    public void Study12_OppositeSidesCancelInTheVertexAndAddInMeg()
+    {
+        // By symmetry about the midline: vertical dipoles of opposite sign read nothing at Cz against both mastoids; their magnetic fields add.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("12-together.yaml"));
+        const string Both = "medial-geniculate-left + medial-geniculate-right";
+        JsonElement Lost(string response) => study.Region(response, Both).GetProperty("cancellation_db");
+        Assert.Equal(JsonValueKind.Null, Lost("opposed").GetProperty("EEG").ValueKind);
+        Assert.InRange(Lost("opposed").GetProperty("MEG").GetDouble(), -1, 0);
+        Assert.InRange(Lost("in step").GetProperty("EEG").GetDouble(), -0.1, 0);
+        Assert.True(Lost("in step").GetProperty("MEG").GetDouble() < -3);
+
+        // A quarter cycle leaves cos(pi/4) of an equal pair: half the power.
+        long apart = AssessedStudy.Trials(study.Result("a quarter cycle apart", Both, "EEG", "given", "Cz-mastoids"));
+        long inStep = AssessedStudy.Trials(study.Result("in step", Both, "EEG", "given", "Cz-mastoids"));
+        Assert.InRange(apart, 2 * (inStep - 1), 2 * inStep);
+    }
+
+    [Fact]
     public void Study02_IsCompleteWithMegAloneAndWithoutAProtocol()
     {
         AssessedStudy study = AssessedStudy.Run(SourceTree.Study("02-on-scalp-thalamus.yaml"));

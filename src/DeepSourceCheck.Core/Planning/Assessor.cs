@@ -17,6 +17,9 @@ public static class Assessor
     /// <summary>A region whose captured share is below this says so.</summary>
     private const double CapturedEnough = 0.98;
 
+    /// <summary>A cancellation below this is not worth a warning [dB].</summary>
+    private const double LittleCancelled = 1;
+
     /// <summary>Above this angle v3 is not called quasi-radial but least visible.</summary>
     private const double LeastVisibleDeg = 25;
 
@@ -36,7 +39,7 @@ public static class Assessor
             progress?.Invoke($"noise of {response.Name}", (double)done / total);
             NoiseCovariance noise = setup.Noise!.InBand(response.Band.Low, response.Band.High);
             var space = new SignalSpace(noise, setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
-            var plan = new EvaluationPlan(response, space, setup.Rules, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
+            EvaluationPlan plan = Plan(setup, response, space);
             if (!begun)
             {
                 sink?.Begin(AllColumns(setup, space));
@@ -48,10 +51,12 @@ public static class Assessor
             {
                 long before = done;
                 StudySetup own = source is SummedSource ? setup with { Head = new SummedHead(setup.Head) } : setup;
-                RegionTally tally = new RegionRun(plan, own.Head, source)
-                    .Run(region, Adapt(sink, plan, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
+                EvaluationPlan asked = response.Amplitude is null ? plan
+                    : Plan(setup, response with { Moment = MomentFromAmplitude.Find(plan, own.Head, source, region, cancellation) }, space);
+                RegionTally tally = new RegionRun(asked, own.Head, source)
+                    .Run(region, Adapt(sink, asked, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
                 done += region.Positions.Length;
-                regions.Add(Result(own, plan, region, source, parts, tally, cancellation));
+                regions.Add(Result(own, asked, region, source, parts, tally, cancellation));
             }
 
             results.Add(new ResponseResult(response, regions));
@@ -60,13 +65,16 @@ public static class Assessor
         return results;
     }
 
+    private static EvaluationPlan Plan(StudySetup setup, Response response, SignalSpace space) =>
+        new(response, space, setup.Rules, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
+
     private static IEnumerable<(FilledRegion Region, ILeadfieldSource Source, IReadOnlyList<FilledRegion> Parts)> Sources(
         StudySetup setup, Response response, CancellationToken cancellation)
     {
         FilledRegion[] regions = [.. response.Regions.Select(setup.Region)];
         if (response.Together)
         {
-            var summed = new SummedSource(setup.Source, regions, cancellation);
+            var summed = new SummedSource(setup.Source, regions, Activation.Weights(response), cancellation);
             yield return (summed.Region, summed, regions);
             yield break;
         }
@@ -80,7 +88,7 @@ public static class Assessor
     // Responses may differ in whether a direction is given and what the joint reading is named: dipoles.csv has one header, so it lists the union.
     private static IReadOnlyList<DipoleColumn> AllColumns(StudySetup setup, SignalSpace space) =>
         [.. setup.Study.Responses
-            .SelectMany(r => new EvaluationPlan(r, space, setup.Rules, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0).Columns)
+            .SelectMany(r => Plan(setup, r, space).Columns)
             .Distinct().OrderBy(c => c.Modality)];
 
     private static IDipoleSink? Adapt(IDipoleSink? sink, EvaluationPlan plan, StudySetup setup, SignalSpace space)
@@ -103,11 +111,14 @@ public static class Assessor
         IReadOnlyList<MeasureResult> rows = report.Rows();
         SplitSummary? split = report.Split();
         SupportCounts?[] supports = [.. parts.Select(p => setup.Source.Supports(p.Positions, cancellation))];
+        IReadOnlyList<CancellationResult> lost = source is SummedSource summed ? FieldCancellation.Of(plan, setup, summed, parts, cancellation) : [];
         double?[] captured = [.. parts.Select(setup.FieldCaptured)];
         var verdicts = new VerdictWriter(setup, plan, region, source, tally).Write(ref rows, cancellation);
         return new RegionResult
         {
             Region = region.Name,
+            Moment = plan.Response.Moment,
+            Cancellation = lost,
             Dipoles = parts.Sum(p => p.Positions.Length),
             Dropped = parts.Sum(p => p.Dropped.Count),
             Spacing = parts.Select(p => p.Spacing).Distinct().Count() == 1 ? parts[0].Spacing : null,
@@ -118,8 +129,9 @@ public static class Assessor
             Supports = supports.Aggregate((a, b) => a is null || b is null ? null : a + b),
             Results = rows,
             Verdicts = verdicts,
+            RealisticHeads = [.. parts.Select(p => p.RealisticHead).OfType<RealisticHeadEffect>()],
             Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split),
-                .. parts.Zip(supports).Where(p => p.Second?.Warning is not null).Select(p => $"{p.First.Name}: {p.Second!.Warning}"), .. CentreWarnings(setup, plan, parts)],
+                .. Fallbacks(parts, supports), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost)],
         };
     }
 
@@ -153,6 +165,19 @@ public static class Assessor
                 $"{name}: the direction that the array sees least stands {angle:0} degrees from the outward direction; read quasi-radial as least visible (partial coverage, a source near the centre, or one that lies nearer to the base of a real skull than to its vault)");
         }
     }
+
+    private static IEnumerable<string> Cancelled(Response response, IReadOnlyList<FilledRegion> parts, IReadOnlyList<CancellationResult> lost)
+    {
+        if (lost.Any(l => l.Db < -LittleCancelled))
+        {
+            string figures = string.Join(", ", lost.Select(l => string.Create(CultureInfo.InvariantCulture,
+                $"{Names.Of(l.Modality)} {(double.IsFinite(l.Db) ? $"{Math.Round(-l.Db, 1) + 0.0:0.0} dB" : "everything")} ({l.Measure})")));
+            yield return $"{response.Name}, {string.Join(" + ", parts.Select(p => p.Name))}: the regions act together and their fields oppose each other; that costs {figures} against the same moments with fields alike and in step";
+        }
+    }
+
+    private static IEnumerable<string> Fallbacks(IReadOnlyList<FilledRegion> parts, IReadOnlyList<SupportCounts?> supports) =>
+        parts.Zip(supports).Where(p => p.Second?.Warning is not null).Select(p => $"{p.First.Name}: {p.Second!.Warning}");
 
     private static IEnumerable<string> CentreWarnings(StudySetup setup, EvaluationPlan plan, IReadOnlyList<FilledRegion> parts)
     {

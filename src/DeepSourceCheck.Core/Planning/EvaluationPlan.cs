@@ -67,6 +67,26 @@ public sealed class EvaluationPlan
         Gain = response.Moment * response.Moment / NoiseFactor;
     }
 
+    // One reading of another plan.
+    private EvaluationPlan(EvaluationPlan plan, IMeasure measure, DirectionName direction)
+    {
+        Response = plan.Response;
+        Space = plan.Space;
+        Rules = [];
+        MegReported = plan.MegReported;
+        Measures = [measure];
+        Directions = [direction];
+        Gain = plan.Gain;
+    }
+
+    /// <summary>A plan that reads one measure in one direction and nothing else.</summary>
+    /// <param name="measure">One of <see cref="Measures"/>.</param>
+    /// <param name="direction">One of <see cref="Directions"/>.</param>
+    public EvaluationPlan Only(IMeasure measure, DirectionName direction) => new(this, measure, direction);
+
+    /// <summary>The direction that the verdict stands on; where there is no split, every direction.</summary>
+    public DirectionName VerdictDirection => Directions.Contains(Response.Direction.Name) ? Response.Direction.Name : DirectionName.Isotropic;
+
     /// <summary>The response.</summary>
     public Response Response { get; }
 

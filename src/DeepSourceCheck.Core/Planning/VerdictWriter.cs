@@ -5,6 +5,7 @@ using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Core.Planning;
 
@@ -17,7 +18,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     public IReadOnlyList<VerdictResult> Write(ref IReadOnlyList<MeasureResult> rows, CancellationToken cancellation)
     {
         var asked = new List<MedianSearch.Question>();
-        DirectionName direction = plan.Directions.Contains(plan.Response.Direction.Name) ? plan.Response.Direction.Name : DirectionName.Isotropic;
+        DirectionName direction = plan.VerdictDirection;
         foreach ((Modality modality, string? name) in new[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) })
         {
             if (name is null)
@@ -78,10 +79,27 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Rule = target.Rule,
             Measure = row.Measure,
             Direction = row.Direction,
-            Text = Text(row, target, fits, witness),
+            Text = Text(row, target, fits, witness) + RangeText(AtMoments(rule, witness)),
             FitsSession = fits,
+            AtMoments = AtMoments(rule, witness),
             Chain = chain,
         };
+    }
+
+    private CountRange? AtMoments(int rule, MedianWitness? witness)
+    {
+        if (plan.Response.MomentRange is not { } range || witness is null)
+        {
+            return null;
+        }
+
+        return new(At(range.Low), At(range.High));
+
+        long? At(double moment)
+        {
+            double ratio = moment / plan.Response.Moment, effective = plan.Rules[rule].EffectivePower(witness.Power * ratio * ratio, witness.Artefact);
+            return effective > 0 ? TrialCount.Ceiling(plan.Rules[rule].Trials(effective)) : null;
+        }
     }
 
     private string Text(MeasureResult row, TargetResult target, bool? fits, MedianWitness? witness)
@@ -112,6 +130,20 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             ? string.Create(CultureInfo.InvariantCulture, $": {(fits == true ? "fits" : "does not fit")} the session of {seconds / 60:0.######} min ({afforded:N0} trials{(each.Length > 0 ? " each" : "")})")
             : "";
         return $"{reading}: {trials}, {Rounded.Minutes(minutes)} min{each}{session}.{why}";
+    }
+
+    private string RangeText(CountRange? range)
+    {
+        if (range is null)
+        {
+            return "";
+        }
+
+        MomentRange moments = plan.Response.MomentRange!;
+        return $" At {Trials(range.Low, moments.Low)}, at {Trials(range.High, moments.High)}.";
+
+        static string Trials(long? count, double moment) => string.Create(CultureInfo.InvariantCulture,
+            $"{Math.Round(Si.ToNanoAmpereMetres(moment), 9):0.######} nAm {(count is { } n && n <= TrialCount.MostPlanned ? $"{n:N0} trials" : "out of reach")}");
     }
 
     private static string Reading(MeasureResult row) => row.Modality == Modality.Both && row.Measure != Names.MatchedFilter

@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Results;
@@ -8,6 +9,12 @@ public sealed record RegionResult
 {
     /// <summary>Name; `A + B` where regions act together.</summary>
     public required string Region { get; init; }
+
+    /// <summary>Moment that each dipole carries in turn, or the regions together [A m]: as stated, or as found from an amplitude.</summary>
+    public required double Moment { get; init; }
+
+    /// <summary>What opposing fields lose where regions act together; empty for a region on its own.</summary>
+    public IReadOnlyList<CancellationResult> Cancellation { get; init; } = [];
 
     /// <summary>Kept dipoles.</summary>
     public required int Dipoles { get; init; }
@@ -39,6 +46,9 @@ public sealed record RegionResult
     /// <summary>Answers.</summary>
     public required IReadOnlyList<VerdictResult> Verdicts { get; init; }
 
+    /// <summary>What a realistic head changes against spheres, as measured once for the library; one entry a library region, several where regions act together.</summary>
+    public IReadOnlyList<RealisticHeadEffect> RealisticHeads { get; init; } = [];
+
     /// <summary>What the user must know about this region.</summary>
     public IReadOnlyList<string> Warnings { get; init; } = [];
 
@@ -46,6 +56,12 @@ public sealed record RegionResult
     public MeasureResult? Find(Modality modality, DirectionName direction, string measure) =>
         Results.FirstOrDefault(r => r.Modality == modality && r.Direction == direction && r.Measure == measure);
 }
+
+/// <summary>Loss through cancellation between regions that act together.</summary>
+/// <param name="Modality">EEG or MEG.</param>
+/// <param name="Measure">Measure of the verdict.</param>
+/// <param name="Db">Power against the same moments without cancelling [dB], at most 0; minus infinity where nothing is left.</param>
+public sealed record CancellationResult(Modality Modality, string Measure, double Db);
 
 /// <summary>How well the directions split in one region.</summary>
 public sealed record SplitSummary(Percentiles WeakestOverStrongest, Percentiles AngleToRadialDeg, int UndefinedDipoles, int DegenerateDipoles);

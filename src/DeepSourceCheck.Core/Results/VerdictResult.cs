@@ -23,9 +23,17 @@ public sealed record VerdictResult
     /// <summary>Whether the median count fits the session; null without a session.</summary>
     public bool? FitsSession { get; init; }
 
+    /// <summary>Counts at the ends of a stated range of the moment; null where one number is stated.</summary>
+    public CountRange? AtMoments { get; init; }
+
     /// <summary>Mean power over what is not known, as a fraction; null without unknowns.</summary>
     public double? Assurance { get; init; }
 
     /// <summary>The chain for the dipole at the median: what `why` prints.</summary>
     public IReadOnlyList<DerivedNumber> Chain { get; init; } = [];
 }
+
+/// <summary>Trials of the median dipole at both ends of a range of the moment.</summary>
+/// <param name="Low">At the low moment; null where out of reach.</param>
+/// <param name="High">At the high moment; null where out of reach.</param>
+public sealed record CountRange(long? Low, long? High);

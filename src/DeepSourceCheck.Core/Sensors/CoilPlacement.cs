@@ -24,7 +24,7 @@ public static class CoilPlacement
         if (inside.Length > 0)
         {
             throw new InputException(null, CoilArray.Key + ".gap_mm", string.Create(CultureInfo.InvariantCulture,
-                $"{inside.Length} of {channels.Count} channels of the generated array have a coil point inside the head: {Names(inside, -1)} below the scalp; coils must lie outside: give a larger gap, or, for gradiometers, a smaller baseline"));
+                $"{inside.Length} of {channels.Count} channels of the generated array have a coil point inside the head, below the scalp by: {Names(inside, -1)}; coils must lie outside: give a larger gap, or, for gradiometers, a smaller baseline"));
         }
 
         if (TooNear("the generated MEG array", gaps, voxel) is { } warning)

@@ -95,7 +95,7 @@ internal sealed class StudyWalk(Reading reading)
                     return Fault(scalar, key, $"{Shown.Quoted(scalar.Text)} {fault}; it must be {spec.Allowed}");
                 case FileShape:
                     return File(spec, key, scalar);
-                case TextListShape or VectorShape or BandShape:
+                case TextListShape or VectorShape or BandShape or NumberListShape:
                     reason = spec.Shapes.Length == 1 ? $"; a list stands in brackets: [{Shown.Text(scalar.Text)}]" : reason;
                     break;
             }
@@ -127,6 +127,8 @@ internal sealed class StudyWalk(Reading reading)
             {
                 case VectorShape vector:
                     return Numbers(spec, key, list, vector.Count, vector.Each);
+                case NumberListShape numbers:
+                    return Numbers(spec, key, list, Math.Max(list.Items.Count, 1), numbers.Each);
                 case BandShape band:
                     if (Numbers(spec, key, list, 2, band.Each) is not { Values: [var low, var high] } edges)
                     {

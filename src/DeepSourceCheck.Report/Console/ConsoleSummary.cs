@@ -65,7 +65,7 @@ public static class ConsoleSummary
 
         RegionAnswer answer = new(assessment, response.Response, response.Regions[0]);
         Response stated = response.Response;
-        text.Append(WhyText.Wrap($"{stated.Name}, {answer.Region.Region}: {Say.Plural(answer.Region.Dipoles, "dipole")}, {Say.Moment(stated.Moment)} {Say.Direction(stated.Direction)}", 0));
+        text.Append(WhyText.Wrap($"{stated.Name}, {answer.Region.Region}: {Say.Plural(answer.Region.Dipoles, "dipole")}, {Say.Strength(stated, answer.Region)} {Say.Direction(stated.Direction)}", 0));
         text.Append(WhyText.Wrap(Conditions(assessment, answer), 0));
         text.Append('\n').Append(WhyText.Wrap(string.Join(" ", answer.Answers.Where(a => a.Modality != Modality.Both || answer.Answers.Count == 1).Select(a => Sentence(assessment, a))), 0)).Append('\n');
         Table(text, answer);

@@ -47,7 +47,7 @@ internal static class AnswerSection
         RegionResult first = response.Regions[0];
         string others = response.Regions.Count switch { 1 => "", 2 => "; one more region below", _ => $"; {response.Regions.Count - 1} more regions below" };
         html.Open("p", "class", "place").Element("b", assessment.Study.Title)
-            .Text($"{stated.Name}, {first.Region}: {Say.Plural(first.Dipoles, "dipole")}, {Say.Moment(stated.Moment)} {Say.Direction(stated.Direction)}, "
+            .Text($"{stated.Name}, {first.Region}: {Say.Plural(first.Dipoles, "dipole")}, {Say.Strength(stated, first)} {Say.Direction(stated.Direction)}, "
                 + $"{Say.Convention(stated.Measured)}, {Say.Stated(stated.Band.Low)} to {Say.Stated(stated.Band.High)} Hz{others}").CloseLine();
     }
 
@@ -136,7 +136,7 @@ internal static class AnswerSection
             return;
         }
 
-        html.Element("p", $"moment that {Say.Plural(session, "trial")} reach; assumed: {Say.Moment(answer.Response.Moment)}", "class", "small").Open("div", "class", "pairs");
+        html.Element("p", $"moment that {Say.Plural(session, "trial")} reach; assumed: {Say.Strength(answer.Response, answer.Region)}", "class", "small").Open("div", "class", "pairs");
         foreach (ModalityAnswer a in answer.Answers)
         {
             html.Raw(InlineFigure.Mark(a.Modality)).Open("div");
@@ -167,7 +167,7 @@ internal static class AnswerSection
             lines.Add(a.Outcome == Outcome.Fits ? $"{Names.Of(a.Modality)} no longer fits below {moment}." : $"{Names.Of(a.Modality)} fits from {moment}.");
         }
 
-        html.Element("p", lines.Count > 0 ? $"Moment, {Say.Moment(answer.Response.Moment)} assumed:" : assessment.SessionTrials is null ? "Not asked: the study states no session." : "No moment changes a direction that is silent.", "class", "small");
+        html.Element("p", lines.Count > 0 ? $"Moment, {Say.Strength(answer.Response, answer.Region)} assumed:" : assessment.SessionTrials is null ? "Not asked: the study states no session." : "No moment changes a direction that is silent.", "class", "small");
         foreach (string line in lines)
         {
             html.Element("p", line);

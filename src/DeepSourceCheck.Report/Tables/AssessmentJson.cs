@@ -84,6 +84,7 @@ public static class AssessmentJson
         json.WriteString("region", region.Region);
         json.WriteNumber("dipoles", region.Dipoles);
         json.WriteNumber("dropped", region.Dropped);
+        json.WriteFigure("moment_nAm", Si.ToNanoAmpereMetres(region.Moment));
         json.WriteFigure("spacing_mm", region.Spacing is { } h ? Si.ToMm(h) : null);
         json.WriteFigure("volume_mL", region.Volume is { } v ? Si.ToMillilitres(v) : null);
         json.WriteFigure("captured_field_share", region.FieldCaptured);
@@ -119,8 +120,20 @@ public static class AssessmentJson
             json.WriteNumber("points_without_normal", profile.WithoutNormal);
         }
 
+        if (region.Cancellation.Count > 0)
+        {
+            json.WriteStartObject("cancellation_db");
+            foreach (CancellationResult lost in region.Cancellation)
+            {
+                json.WriteFigure(Names.Of(lost.Modality), lost.Db);
+            }
+
+            json.WriteEndObject();
+        }
+
         json.WriteArray("results", region.Results, WriteMeasure);
         json.WriteArray("verdicts", region.Verdicts, WriteVerdict);
+        json.WriteRealisticHeads(region.RealisticHeads);
         json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();
     }
@@ -233,6 +246,14 @@ public static class AssessmentJson
         }
 
         json.WriteFigure("assurance", verdict.Assurance);
+        if (verdict.AtMoments is { } range)
+        {
+            json.WriteStartObject("trials_at_moment");
+            json.WriteCount("low", range.Low);
+            json.WriteCount("high", range.High);
+            json.WriteEndObject();
+        }
+
         json.WriteArray("why", verdict.Chain, JsonText.WriteDerivedNumber);
         json.WriteEndObject();
     }

@@ -205,6 +205,7 @@ internal static class AssessmentFixture
         return new RegionResult
         {
             Region = name,
+            Moment = 3.5e-9,
             Dipoles = 123 + index,
             Dropped = index,
             Spacing = 0.001,

@@ -15,7 +15,7 @@ public static class LandmarkChecks
     /// <summary>Angle [rad] of a line between two landmarks against the head's own axes from which it is told.</summary>
     public static readonly double MostAngle = Si.FromDegrees(10);
 
-    /// <summary>Distance from where the shape has a landmark from which it is told, in head lengths: 30 mm in an adult.</summary>
+    /// <summary>Distance from where the shape has a landmark from which it is told [head lengths], 30 mm in an adult.</summary>
     public const double MostOff = 0.15;
 
     // Nz to Iz in head lengths, LPA to RPA in head breadths.

@@ -96,7 +96,7 @@ public class HeadArrayTests
         MegChannel[] sunk = CoilArray.Generate(Choice("on-scalp") with { Gap = 0.001 }, Centre, Radius - 0.010);
         InputException error = Assert.Throws<InputException>(() => CoilPlacement.CheckGenerated(Ball.Value.Scalp, sunk, Voxel, []));
         Assert.Equal("sensors.meg.gap_mm", error.Problems[0].Key);
-        Assert.Matches(@"^60 of 60 channels .* inside the head: M\d\d (8|9)\.\d mm, .* and 54 more below the scalp", error.Problems[0].Message);
+        Assert.Matches(@"^60 of 60 channels .* inside the head, below the scalp by: M\d\d (9|10)\.\d mm, .* and 54 more; ", error.Problems[0].Message);
     }
 
     [Theory]

@@ -69,7 +69,7 @@ public class ScalpPlacementTests
         Assert.Equal(At(radius), placed[1].Position);
         Assert.False(placed[1].InAverage);
         Assert.Equal(2, warnings.Count);
-        Assert.All(warnings, w => Assert.Matches($@"^electrodes\.tsv: .*G3 \(skull, {depth} mm below the scalp\)", w));
+        Assert.All(warnings, w => Assert.Matches($@"^electrodes\.tsv: .*G3 \(compact skull, {depth} mm below the scalp\)", w));
         Assert.Contains("outside fluid and brain", warnings[1], StringComparison.Ordinal);
     }
 
