@@ -155,7 +155,7 @@ public static class ElectrodePlacement
         return problems.Count == 0 ? electrodes : throw new InputException(problems);
     }
 
-    private static string Listed(IReadOnlyList<string> places)
+    private static string Listed(List<string> places)
     {
         const int most = 6;
         return string.Join(", ", places.Take(most)) + (places.Count > most ? Invariant($" and {places.Count - most} more") : "");
