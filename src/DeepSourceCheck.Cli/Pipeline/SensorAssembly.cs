@@ -160,6 +160,7 @@ internal abstract class SensorAssembly
         CentreSensitivity = CentreSensitivity,
         OtherHeads = study.Responses.Any(r => r.EegMeasure == Names.RealisticFilter || r.MegMeasure == Names.RealisticFilter) ? OtherHeads() : [],
         NearestPoint = Imported is { } imported ? imported.Nearest : null,
+        Perturbable = Perturbable,
         Limits = Limits,
         ArrayPlace = ArrayPlace,
         Scene = Scene(regions) with
@@ -171,6 +172,9 @@ internal abstract class SensorAssembly
 
     /// <summary>Leadfields of other heads for which a spatial filter may have been built; empty where this head has no others.</summary>
     protected virtual IReadOnlyList<ILeadfieldSource> OtherHeads() => [];
+
+    /// <summary>The head with what is not known of it; null where it cannot be varied.</summary>
+    protected virtual IPerturbableHead? Perturbable => null;
 
     /// <summary>What the head's model leaves out, sentence by sentence.</summary>
     protected abstract IReadOnlyList<string> Limits { get; }

@@ -5,6 +5,7 @@ using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
+using DeepSourceCheck.Core.Planning.Unknowns;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
@@ -58,7 +59,9 @@ public static class Assessor
                 done += region.Positions.Length;
                 RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
                     : new RemovalReport(own, asked).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, Activation.Weights(response), cancellation) : setup.Removal.Source, cancellation);
-                regions.Add(Result(own, read, region, source, parts, loss, cancellation));
+                RegionResult result = Result(own, read, region, source, parts, loss, cancellation);
+                EvaluationPlan? matched = read.Select(r => r.Plan).FirstOrDefault(p => p.IsSpectral && p.View.Errors is null);
+                regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, read[0].Plan, own.Head, source, region, parts, matched).Run(cancellation)));
             }
 
             results.Add(new ResponseResult(response, regions) { SessionTrials = plan.SessionTrials, Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
@@ -66,6 +69,12 @@ public static class Assessor
 
         return results;
     }
+
+    private static RegionResult Unsure(RegionResult result, UnknownsResult unknowns) => result with
+    {
+        Unknowns = unknowns,
+        Verdicts = [.. result.Verdicts.Zip(unknowns.Verdicts, (verdict, spread) => verdict with { Assurance = spread.Assurance is { } a ? Math.Round(20 * a) / 20 : null })],
+    };
 
     private static EvaluationPlan Plan(StudySetup setup, Response response, SignalSpace space) =>
         new(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
@@ -113,6 +122,7 @@ public static class Assessor
         IReadOnlyList<MeasureResult> rows = RowMerge.Of([.. read.Select((r, k) => (r.Plan, reports[k].Rows()))]);
         RegionReport report = reports[0];
         SplitSummary? split = report.Split();
+        SupportCounts?[] supports = [.. parts.Select(p => setup.Source.Supports(p.Positions, cancellation))];
         IReadOnlyList<CancellationResult> lost = source is SummedSource summed ? FieldCancellation.Of(plan, setup, summed, parts, cancellation) : [];
         double?[] captured = [.. parts.Select(setup.FieldCaptured)];
         var written = new List<VerdictResult>();
@@ -136,10 +146,12 @@ public static class Assessor
             FieldCaptured = captured.Min(),
             Profile = tally.Profile?.Profile(),
             Removal = loss,
+            Supports = supports.Aggregate((a, b) => a is null || b is null ? null : a + b),
             Results = rows,
             Verdicts = verdicts,
             RealisticHeads = [.. parts.Select(p => p.RealisticHead).OfType<RealisticHeadEffect>()],
-            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split),
+                .. Fallbacks(parts, supports), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
                 .. loss is null ? Array.Empty<string>() : [RemovalReport.Words(region.Name, loss)]],
         };
     }
@@ -213,6 +225,9 @@ public static class Assessor
             yield return $"{response.Name}, {string.Join(" + ", parts.Select(p => p.Name))}: the regions act together and their fields oppose each other; that costs {figures} against the same moments with fields alike and in step";
         }
     }
+
+    private static IEnumerable<string> Fallbacks(IReadOnlyList<FilledRegion> parts, IReadOnlyList<SupportCounts?> supports) =>
+        parts.Zip(supports).Where(p => p.Second?.Warning is not null).Select(p => $"{p.First.Name}: {p.Second!.Warning}");
 
     private static IEnumerable<string> CentreWarnings(StudySetup setup, EvaluationPlan plan, IReadOnlyList<FilledRegion> parts)
     {

@@ -92,6 +92,7 @@ public sealed class EvaluationPlan
         MegReported = plan.MegReported;
         Measures = [measure];
         Directions = [direction];
+        _rules = new() { [measure] = [] };
         Gain = plan.Gain;
     }
 

@@ -1,11 +1,8 @@
-using System.Runtime.Intrinsics;
-
 using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Planning;
 

@@ -12,6 +12,15 @@ namespace DeepSourceCheck.Core.Planning;
 /// <summary>The answers for one region: modality by modality, rule by rule, in plain words with their reason and their chain.</summary>
 internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, RegionTally tally)
 {
+    /// <summary>Measures of the verdicts: EEG, MEG, both, as far as the study has them.</summary>
+    /// <param name="plan">What is read.</param>
+    public static IEnumerable<IMeasure> Measures(EvaluationPlan plan) =>
+        from reading in new (Modality Modality, string? Name)[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) }
+        where reading.Name is not null
+        let measure = plan.Measures.FirstOrDefault(m => m.Modality == reading.Modality && m.Name == reading.Name)
+        where measure is not null
+        select measure;
+
     /// <summary>Writes all verdicts.</summary>
     /// <param name="rows">The region's results; the median count of a verdict's row is that of the dipole whose chain is given.</param>
     /// <param name="cancellation">Stops the search for the dipole at the median.</param>
@@ -19,12 +28,9 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     {
         var asked = new List<MedianSearch.Question>();
         DirectionName direction = plan.VerdictDirection;
-        foreach ((Modality modality, string? name) in new[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) })
+        foreach (IMeasure measure in Measures(plan))
         {
-            if (plan.Measures.FirstOrDefault(m => m.Modality == modality && m.Name == name) is { } measure)
-            {
-                asked.AddRange(Enumerable.Range(0, plan.Targets.Count).Where(plan.Counts).Select(rule => new MedianSearch.Question(measure, rule)));
-            }
+            asked.AddRange(Enumerable.Range(0, plan.Targets.Count).Where(plan.Counts).Select(rule => new MedianSearch.Question(measure, rule)));
         }
 
         MedianWitness?[] witnesses = new MedianSearch(plan, setup.Head, source, region, tally, direction).Find(asked, cancellation);
@@ -91,6 +97,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Text = Text(row, target, fits, witness) + Coherence(bound, witness) + RangeText(AtMoments(bound, witness)),
             FitsSession = fits,
             AtMoments = AtMoments(bound, witness),
+            Missing = plan.SessionTrials is { } trials && witness is not null ? 1 - bound.Probability(witness.Power, witness.Artefact, trials) : null,
             Averaging = Averaging.Of(plan, setup.Noise!, witness, count),
             Chain = chain,
         };

@@ -26,6 +26,9 @@ public sealed record VerdictResult
     /// <summary>Counts at the ends of a stated range of the moment; null where one number is stated.</summary>
     public CountRange? AtMoments { get; init; }
 
+    /// <summary>Probability that the session misses a source of the stated strength, everything else as stated, for the median dipole and direction; null for rules without power or without a session.</summary>
+    public double? Missing { get; init; }
+
     /// <summary>Mean power over what is not known, as a fraction; null without unknowns.</summary>
     public double? Assurance { get; init; }
 

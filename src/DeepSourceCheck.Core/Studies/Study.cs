@@ -61,6 +61,9 @@ public sealed record Study
     public Protocol? ProtocolFor(Response response) =>
         response.Steady is { } steady && Protocol is { } stated ? stated with { Rate = Math.Min(stated.Rate, 1 / steady.Seconds) } : Protocol;
 
+    /// <summary>What is not known, or null.</summary>
+    public UnknownsChoice? Unknowns { get; init; }
+
     /// <summary>Keys whose implausible values the study accepts.</summary>
     public IReadOnlyList<string> AcceptImplausible { get; init; } = [];
 }

@@ -20,9 +20,11 @@ internal static class StrengthBinder
     private const string Instruction =
         "state the strength once: moment_nAm (a number, usually 0.05 to 300, or {low, typical, high}), amplitude {peak_uV, derivation}, or density {nAm_per_mm2, area_mm2, open_field}";
 
+    private static readonly string[] Ways = ["moment_nAm", "amplitude", "density"];
+
     public static BoundStrength? Bind(Section entry, BoundSensors sensors)
     {
-        string[] stated = [.. new[] { "moment_nAm", "amplitude", "density" }.Where(entry.States)];
+        string[] stated = [.. Ways.Where(entry.States)];
         if (stated.Length == 0)
         {
             entry.Problem("moment_nAm", $"is missing; {Instruction}");

@@ -53,6 +53,9 @@ public static class Say
     /// <summary>A share as percent: `10 %`.</summary>
     public static string Percent(double share) => $"{Stated(Math.Round(100 * share, 1))} %";
 
+    /// <summary>A probability in whole percent: `under 1 %`, `12 %`, `over 99 %`.</summary>
+    public static string Chance(double probability) => probability < 0.005 ? "under 1 %" : probability > 0.995 ? "over 99 %" : $"{Stated(Math.Round(100 * probability))} %";
+
     /// <summary>Assurance to 5 %: `at least 95 %`, `70 %`, `at most 5 %`.</summary>
     public static string Assurance(double share)
     {

@@ -104,7 +104,8 @@ internal static class AnswerSection
         string leak = a.Row?.AtLeak is { } l && l.Targets.FirstOrDefault(t => t.Rule == a.Verdict.Rule) is { } t
             ? $"at the published leak of {Say.Stated(l.Leak)}: {(t.Trials.P50 is { } n && n <= Say.MostTrials ? Say.Plural(n, "trial") : Say.OutOfReach)}" : "";
         string first = range.Length > 0 ? range : leak.Length > 0 ? leak : a.Reason ?? "";
-        return string.Join("; ", new[] { first, sure }.Where(p => p.Length > 0));
+        string miss = a.Verdict.Missing is { } chance ? $"{Say.Chance(chance)} chance to miss it in the session" : "";
+        return string.Join("; ", new[] { first, sure, miss }.Where(p => p.Length > 0));
     }
 
     private static void Peaks(Markup html, RegionAnswer answer)
@@ -174,7 +175,22 @@ internal static class AnswerSection
             html.Element("p", line);
         }
 
-        if (lines.Count > 0)
+        if (answer.Region.Unknowns is { } unknowns)
+        {
+            foreach (VerdictSpread spread in unknowns.Verdicts.Where(v => v.Rule == answer.Rule && v.Modality != Modality.Both))
+            {
+                if (spread.Ranking is [{ LogVariance: > 0 } effect, ..])
+                {
+                    html.Element("p", $"{Names.Of(spread.Modality)}: {UnknownWords.Name(effect.Unknown)}, {UnknownWords.Range(effect.Unknown, assessment.Study, answer.Response)}, gives {UnknownWords.Trials(effect.Fewest, effect.Most)} trials.");
+                }
+            }
+
+            if (unknowns.First.FirstOrDefault(f => f.Rule == answer.Rule) is { Flip.Length: > 0 } first)
+            {
+                html.Element("p", first.Flip + ".", "class", "small");
+            }
+        }
+        else if (lines.Count > 0)
         {
             html.Element("p", "Everything else as assumed. Other inputs change the answer too: run the study again with them.", "class", "small");
         }
@@ -211,9 +227,9 @@ internal static class AnswerSection
         foreach (string rule in rules)
         {
             html.Element("h3", $"By another target: {TrialsFigure.RuleWords(assessment, response.Response, rule)}", "class", "ruled", "style", "margin-top:28px");
-            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range"],
+            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range", "chance to miss"],
                 response.Regions.SelectMany(r => new RegionAnswer(assessment, response.Response, r, rule).Answers.Select(a => (IReadOnlyList<string>)
-                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range()])));
+                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range(), a.Verdict.Missing is { } miss ? Say.Chance(miss) : ""])));
         }
     }
 }

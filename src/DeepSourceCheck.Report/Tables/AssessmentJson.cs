@@ -4,6 +4,7 @@ using System.Text.Json;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
+using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Tables;
 
@@ -44,7 +45,7 @@ public static class AssessmentJson
             }
 
             json.WriteCount("session_trials", assessment.SessionTrials);
-            json.WriteArray("responses", assessment.Responses, WriteResponse);
+            json.WriteArray("responses", assessment.Responses, (j, r) => WriteResponse(j, r, assessment));
             json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));
             json.WriteEndObject();
         }
@@ -68,11 +69,11 @@ public static class AssessmentJson
         json.WriteArray("assumptions", [.. variant.Assessment.Assumptions.Except(study.Assumptions)], JsonText.WriteAssumption);
         json.WriteStrings("warnings", variant.Assessment.Warnings.Except(study.Warnings));
         json.WriteCount("session_trials", variant.Assessment.SessionTrials);
-        json.WriteArray("responses", variant.Assessment.Responses, WriteResponse);
+        json.WriteArray("responses", variant.Assessment.Responses, (j, r) => WriteResponse(j, r, variant.Assessment));
         json.WriteEndObject();
     }
 
-    private static void WriteResponse(Utf8JsonWriter json, ResponseResult response)
+    private static void WriteResponse(Utf8JsonWriter json, ResponseResult response, Assessment assessment)
     {
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
@@ -92,7 +93,7 @@ public static class AssessmentJson
             json.WriteEndObject();
         }
 
-        json.WriteArray("regions", response.Regions, WriteRegion);
+        json.WriteArray("regions", response.Regions, (j, r) => WriteRegion(j, r, response, assessment));
         json.WriteArray("noise_spectra", response.Spectra, WriteSpectrum);
         json.WriteEndObject();
     }
@@ -154,7 +155,7 @@ public static class AssessmentJson
         json.WriteEndArray();
     }
 
-    private static void WriteRegion(Utf8JsonWriter json, RegionResult region)
+    private static void WriteRegion(Utf8JsonWriter json, RegionResult region, ResponseResult response, Assessment assessment)
     {
         json.WriteStartObject();
         json.WriteString("region", region.Region);
@@ -176,6 +177,16 @@ public static class AssessmentJson
         else
         {
             json.WriteNull("split");
+        }
+
+        if (region.Supports is { } supports)
+        {
+            json.WriteStartObject("dipoles_carried_by");
+            json.WriteNumber("all_nodes", supports.Whole);
+            json.WriteNumber("fewer_nodes", supports.Partial);
+            json.WriteNumber("border_nodes", supports.Border);
+            json.WriteNumber("element_gradient", supports.Element);
+            json.WriteEndObject();
         }
 
         if (region.Profile is { } profile)
@@ -210,6 +221,12 @@ public static class AssessmentJson
 
         json.WriteArray("results", region.Results, WriteMeasure);
         json.WriteArray("verdicts", region.Verdicts, WriteVerdict);
+        json.WriteArray("advice", [.. region.Verdicts.Select(v => v.Rule).Distinct()], (j, rule) => WriteAdvice(j, new RegionAnswer(assessment, response.Response, region, rule)));
+        if (region.Unknowns is { } unknowns)
+        {
+            UnknownsJson.Write(json, unknowns);
+        }
+
         json.WriteRealisticHeads(region.RealisticHeads);
         json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();
@@ -329,6 +346,16 @@ public static class AssessmentJson
         json.WriteEndObject();
     }
 
+    private static void WriteAdvice(Utf8JsonWriter json, RegionAnswer answer)
+    {
+        json.WriteStartObject();
+        json.WriteString("rule", answer.Rule);
+        json.WriteString("modality", answer.Winner is { } winner ? Names.Of(winner.Modality) : null);
+        json.WriteString("text", $"{answer.Headline()}. {answer.Recommendation()} {answer.Joint()} {answer.Reason()}".Replace("  ", " ", StringComparison.Ordinal).TrimEnd());
+        json.WriteCount("trials_saved_by_both", answer.SavedByBoth);
+        json.WriteEndObject();
+    }
+
     private static void WriteVerdict(Utf8JsonWriter json, VerdictResult verdict)
     {
         json.WriteStartObject();
@@ -343,6 +370,7 @@ public static class AssessmentJson
         }
 
         json.WriteFigure("assurance", verdict.Assurance);
+        json.WriteFigure("missing_probability", verdict.Missing);
         if (verdict.AtMoments is { } range)
         {
             json.WriteStartObject("trials_at_moment");

@@ -1,4 +1,3 @@
-using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Planning;
 using DeepSourceCheck.Core.Results;
