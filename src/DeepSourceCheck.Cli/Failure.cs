@@ -1,3 +1,4 @@
+using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Cli;
@@ -32,6 +33,7 @@ internal sealed record Failure(int Status, IReadOnlyList<string> Lines)
             UnauthorizedAccessException or FileNotFoundException or DirectoryNotFoundException or PathTooLongException =>
                 new(ExitStatus.InputWrong, ["error: " + OneLine(cause.Message)]),
             IOException io => new(ExitStatus.Failed, ["error: " + OneLine(Resource(io))]),
+            NotSolvedException => new(ExitStatus.Failed, ["error: " + OneLine(cause.Message)]),
             _ => new(ExitStatus.Failed, ["error: the computation failed: " + OneLine(cause.Message) + " (DEEPSOURCECHECK_TRACE=1 shows where)"]),
         };
     }

@@ -69,7 +69,6 @@ internal static class AssessCommand
         {
             var settings = new RunSettings(memory, without, line is null ? null : line.Report, cancellation) { CacheFolder = cache };
             PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Assess, settings);
-            SharedOptions.RefuseOverBudget(prepared, memory);
             using ResultFolder folder = ResultFolder.Create(outFolder, ResultFolderKind.Assessment);
             using IDisposable guard = surroundings.Interruption.Guard(() => Discard.Whole(folder));
             assessment = Assess(prepared, settings, folder.Folder, surroundings);

@@ -46,7 +46,6 @@ internal static class CheckCommand
         var settings = new RunSettings(memory, new HashSet<string>(), null, surroundings.Interruption.Token) { CheckOnly = true };
         string? path = SharedOptions.Checked(study);
         PreparedStudy prepared = Prepare(path, settings, surroundings);
-        SharedOptions.RefuseOverBudget(prepared, memory);
         if (json)
         {
             WriteJson(prepared, surroundings);

@@ -48,7 +48,6 @@ internal static class LeadfieldCommand
         {
             var settings = new RunSettings(memory, new HashSet<string>(), line is null ? null : line.Report, cancellation) { CacheFolder = cache };
             prepared = surroundings.Steps.Prepare(path, Purpose.Leadfield, settings);
-            SharedOptions.RefuseOverBudget(prepared, memory);
             using ResultFolder folder = ResultFolder.Create(outFolder, ResultFolderKind.Leadfield);
             using IDisposable guard = surroundings.Interruption.Guard(() => Discard.Whole(folder));
             surroundings.Steps.WriteLeadfield(prepared, folder.Folder, settings);

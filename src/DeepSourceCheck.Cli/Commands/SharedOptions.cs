@@ -1,7 +1,6 @@
 using System.CommandLine;
 using System.CommandLine.Parsing;
 
-using DeepSourceCheck.Cli.Pipeline;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Cli.Commands;
@@ -81,16 +80,5 @@ internal static class SharedOptions
         return File.Exists(study)
             ? study
             : throw new InputException(study, null, $"there is no such file; `{CommandLine.ProgramName} new FOLDER` writes an example study");
-    }
-
-    /// <summary>Refuses a run that needs more memory than it may have.</summary>
-    /// <exception cref="InputException">It does.</exception>
-    public static void RefuseOverBudget(PreparedStudy prepared, long? budget)
-    {
-        if (budget is { } limit && prepared.PredictedMemory > limit)
-        {
-            throw new InputException(prepared.Study.File, null,
-                $"the run would need about {MemorySize.Rough(prepared.PredictedMemory)}, more than the {MemorySize.Rough(limit)} that --memory allows; a wider spacing_mm or fewer regions need less");
-        }
     }
 }

@@ -29,7 +29,7 @@ internal static class WhyCommand
             About =
             [
                 "Runs the study and prints, for one region, each number from the moment to the minutes: value, unit, formula and where it comes from. The values are those that the run used: whoever recomputes the printed lines gets the number of trials exactly.",
-                "The lines stand for the dipole at the median of the region. Nothing is written.",
+                "The lines stand for the dipole at the median of the region. For a region of the library, what a realistic head was measured to change against spheres follows. Nothing is written.",
             ],
             Examples =
             [
@@ -59,7 +59,6 @@ internal static class WhyCommand
         {
             var settings = new RunSettings(memory, AssessCommand.Parts.ToHashSet(), line is null ? null : line.Report, surroundings.Interruption.Token) { CacheFolder = cache };
             PreparedStudy prepared = surroundings.Steps.Prepare(path, Purpose.Assess, settings);
-            SharedOptions.RefuseOverBudget(prepared, memory);
             assessment = surroundings.Steps.Assess(prepared, settings, null);
         }
 
@@ -70,6 +69,7 @@ internal static class WhyCommand
             return ExitStatus.Done;
         }
 
+        bool unicode = surroundings.OutIsTerminal && surroundings.Unicode;
         surroundings.Warn(assessment.Warnings);
         for (int i = 0; i < chosen.Length; i++)
         {
@@ -78,8 +78,11 @@ internal static class WhyCommand
                 surroundings.Out.WriteLine();
             }
 
-            surroundings.Out.Write(WhyText.Of(assessment, chosen[i].Response, chosen[i].Region, surroundings.OutIsTerminal && surroundings.Unicode));
+            surroundings.Out.Write(WhyText.Of(assessment, chosen[i].Response, chosen[i].Region, unicode));
         }
+
+        // Once, however many responses the region has: it does not depend on them.
+        surroundings.Out.Write(RealisticHeadText.Of(assessment, chosen[0].Region, unicode));
 
         return ExitStatus.Done;
     }
@@ -123,6 +126,7 @@ internal static class WhyCommand
         }
 
         json.WriteEndArray();
+        json.WriteRealisticHeads(chosen.SelectMany(pair => pair.Region.RealisticHeads).Distinct());
         json.WriteStrings("warnings", assessment.Warnings);
     });
 }

@@ -2,6 +2,7 @@ using System.Globalization;
 
 using DeepSourceCheck.Core.Planning;
 using DeepSourceCheck.Core.Regions;
+using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Files.Studies;
@@ -28,35 +29,71 @@ internal static class MomentCheck
     public static IReadOnlyList<string> Judge(StudyReading reading, StudySetup setup)
     {
         var warnings = new List<string>();
-        foreach (Response response in reading.Study.Responses)
+        foreach (Response response in reading.Study.Responses.Where(r => r.Amplitude is null))
         {
-            string key = response.Key + ".moment_nAm";
-            double moment = Si.ToNanoAmpereMetres(response.Together ? response.Moment / response.Regions.Count : response.Moment);
-            foreach (FilledRegion region in response.Regions.Select(setup.Region).Where(r => !r.IsSurface))
+            warnings.AddRange(Judge(reading, setup, response, Key(response), _ => response.Moment));
+        }
+
+        return warnings;
+    }
+
+    /// <summary>Judges the moments that were found from an amplitude: against moments that were ever published, then as stated ones.</summary>
+    /// <returns>Warnings.</returns>
+    /// <exception cref="InputException">A moment that cannot be, not accepted by the study.</exception>
+    public static IReadOnlyList<string> JudgeFound(StudyReading reading, StudySetup setup, IReadOnlyList<ResponseResult> responses)
+    {
+        var warnings = new List<string>();
+        TypicalRange usual = StudyKeys.Find("responses[].moment_nAm")!.Typical!;
+        foreach (ResponseResult result in responses.Where(r => r.Response.Amplitude is not null))
+        {
+            string key = Key(result.Response);
+            foreach (RegionResult region in result.Regions)
             {
-                if ((region.ShapeVolume ?? region.Volume) is not { } volume)
-                {
-                    continue;
-                }
+                PlausibilityJudgement judgement = Plausibility.Judge(key, Round(Si.ToNanoAmpereMetres(region.Moment)), usual.Low, usual.High, "nAm", reading.Study.AcceptImplausible,
+                    $"the moment of {region.Region} that the amplitude at {result.Response.Amplitude!.Derivation} asks for,");
+                Take(reading, key, judgement, warnings);
+            }
+
+            warnings.AddRange(Judge(reading, setup, result.Response, key, name => (result.Regions.FirstOrDefault(r => r.Region == name) ?? result.Regions[0]).Moment));
+        }
+
+        return [.. warnings.Distinct()];
+    }
+
+    private static string Key(Response response) => response.Key + ".moment_nAm";
+
+    private static List<string> Judge(StudyReading reading, StudySetup setup, Response response, string key, Func<string, double> momentOf)
+    {
+        var warnings = new List<string>();
+        double[] shares = Activation.Shares(response);
+        for (int k = 0; k < response.Regions.Count; k++)
+        {
+            FilledRegion region = setup.Region(response.Regions[k]);
+            if (!region.IsSurface && (region.ShapeVolume ?? region.Volume) is { } volume)
+            {
+                double moment = Si.ToNanoAmpereMetres(momentOf(region.Name) * (response.Together ? Math.Abs(shares[k]) : 1));
 
                 double area = CrossSection(volume);
                 string what = string.Create(CultureInfo.InvariantCulture,
                     $"against 2 nAm/mm2 over the {area * 1e6:0.#} mm2 of {region.Name} (cross-section of a sphere of its volume), the moment of");
-                PlausibilityJudgement judgement =
-                    Plausibility.Judge(key, moment, 0, Round(Si.ToNanoAmpereMetres(LargestDensity * area)), "nAm", reading.Study.AcceptImplausible, what);
-                if (judgement.Is == Plausible.Problem)
-                {
-                    throw new InputException([reading.Problem(key, judgement.Text)]);
-                }
-
-                if (judgement.Is == Plausible.Warning)
-                {
-                    warnings.Add($"{key}: {judgement.Text}");
-                }
+                Take(reading, key,
+                    Plausibility.Judge(key, response.Amplitude is null ? moment : Round(moment), 0, Round(Si.ToNanoAmpereMetres(LargestDensity * area)), "nAm", reading.Study.AcceptImplausible, what), warnings);
             }
         }
 
         return warnings;
+    }
+
+    private static void Take(StudyReading reading, string key, PlausibilityJudgement judgement, List<string> warnings)
+    {
+        switch (judgement.Is)
+        {
+            case Plausible.Problem:
+                throw new InputException([reading.Problem(key, judgement.Text)]);
+            case Plausible.Warning:
+                warnings.Add($"{key}: {judgement.Text}");
+                break;
+        }
     }
 
     // Three digits: the limit is no better known.

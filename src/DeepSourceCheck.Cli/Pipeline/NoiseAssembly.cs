@@ -6,6 +6,7 @@ using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Files.Npy;
 using DeepSourceCheck.Files.Studies;
+using DeepSourceCheck.Files.Tables;
 
 namespace DeepSourceCheck.Cli.Pipeline;
 
@@ -28,9 +29,9 @@ internal static class NoiseAssembly
     /// <param name="sensors">Sensors and head.</param>
     /// <param name="inputs">Receives the files that are read.</param>
     /// <param name="warnings">Receives what the user must know.</param>
-    /// <returns>The model; null where it needs leadfields that a check does not compute.</returns>
+    /// <returns>The noise; null where it needs leadfields that a check does not compute.</returns>
     /// <exception cref="InputException">Noise that contradicts itself or cannot be meant.</exception>
-    public static NoiseModel? Build(StudyReading reading, SensorAssembly sensors, InputDigests inputs, List<string> warnings)
+    public static BuiltNoise? Build(StudyReading reading, SensorAssembly sensors, InputDigests inputs, List<string> warnings)
     {
         Study study = reading.Study;
         NoiseChoice choice = study.Noise ?? new NoiseChoice();
@@ -51,6 +52,7 @@ internal static class NoiseAssembly
             ? Derivation.Parse(stated.Derivation, [.. sensors.Electrodes.Select(e => e.Name)], study.Eeg?.Layout is not null, "noise.eeg_total.derivation").Weights(sensors.Electrodes)
             : null;
         bool background = WantsBackground(study, sensors);
+        BrainTables? brain = background ? Tables(choice, inputs) : null;
         if (background && !sensors.IsComputed)
         {
             return null;
@@ -63,14 +65,15 @@ internal static class NoiseAssembly
         }
 
         // The array that only splits directions carries equal noise in every channel: its level does not matter.
-        NoiseChoice effective = sensors.MegReported ? choice : choice with { MegRms = 1e-15, MegDensity = null };
-        var builder = new NoiseBuilder(effective, sensors.Electrodes.Count, sensors.MegKinds, field, total);
+        NoiseChoice effective = sensors.MegReported ? choice : choice with { MegRms = 1e-15, MegDensity = null, Environment = null };
+        var builder = new NoiseBuilder(effective, sensors.Electrodes.Count, sensors.MegKinds, field, total,
+            brain, effective.Environment is null ? null : sensors.Channels);
         try
         {
             NoiseModel model = builder.Build(eegCovariance, megCovariance, study.Responses);
             warnings.AddRange(builder.Warnings);
             CheckSamples(reading, model);
-            return model;
+            return new BuiltNoise(model, model.MegOperator is null ? null : builder.Environment);
         }
         catch (InputException error) when (error.Problems.All(p => p.File is null))
         {
@@ -92,6 +95,29 @@ internal static class NoiseAssembly
     private static BackgroundField Background(TableSensors tables, SensorAssembly sensors) => BackgroundField.Compute(
         sensors.Head.BackgroundPlaces(BackgroundPlaces), sensors.Source, tables.Source,
         Derivation.Parse(DefaultNoiseTables.Derivation, TableSensors.Names).Weights(tables.Electrodes));
+
+    // The study's own tables in place of the default ones; null where it has none.
+    private static BrainTables? Tables(NoiseChoice choice, InputDigests inputs)
+    {
+        if (choice.BrainEegTable is null && choice.BrainMegTable is null)
+        {
+            return null;
+        }
+
+        BrainTables tables = BrainTables.Default;
+        if (choice.BrainEegTable is { } eeg)
+        {
+            tables = tables with { Eeg = Read(eeg, DensityTable.Microvolts, Si.FromMicrovolts), EegName = eeg };
+        }
+
+        return choice.BrainMegTable is { } meg ? tables with { Meg = Read(meg, DensityTable.Femtotesla, Si.FromFemtotesla), MegName = meg } : tables;
+
+        LogLogTable Read(string name, string column, Func<double, double> toSi)
+        {
+            (string path, string display) = inputs.Use(name);
+            return DensityTable.Read(path, display, column, toSi);
+        }
+    }
 
     private static double[]? Covariance(CovarianceChoice? choice, string key, int rows, InputDigests inputs)
     {

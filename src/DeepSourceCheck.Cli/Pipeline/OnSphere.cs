@@ -61,6 +61,9 @@ internal sealed class OnSphere : SensorAssembly
     }
 
     /// <inheritdoc/>
+    protected override IPerturbableHead Perturbable => new PerturbableSphere(_sphere, Electrodes, Channels, Generated);
+
+    /// <inheritdoc/>
     protected override IReadOnlyList<string> Limits { get; } =
     [
         "The head is a set of concentric spheres. A real head departs from it by some 5.5 mm (standard deviation of the inner skull above the base, sphere fitted to one head in MNI space); it is worst at the low brainstem, the cerebellum and the medial temporal lobe.",

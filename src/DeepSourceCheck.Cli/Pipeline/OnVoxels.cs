@@ -4,6 +4,7 @@ using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Leadfields.Voxels;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Sensors;
@@ -27,6 +28,7 @@ internal sealed class OnVoxels : SensorAssembly
     private readonly List<string> _warnings;
     private readonly IVoxelSensors _sensors;
     private readonly Lazy<IReadOnlyList<Vec3>> _background;
+    private readonly Lazy<VoxelCost> _cost;
     private ILeadfieldSource _source;
     private TableSensors? _tables;
     private readonly bool _assess;
@@ -52,6 +54,7 @@ internal sealed class OnVoxels : SensorAssembly
         }
 
         _source = new PlannedLeadfield(Electrodes.Count, Channels.Count);
+        _cost = new(() => new VoxelCost(built.Head.Volume));
         _background = new(() => built.Head.BackgroundPlaces(NoiseAssembly.BackgroundPlaces));
         MegNames = [.. Channels.Select(c => c.Name)];
         MegKinds = [.. Channels.Select(c => c.Kind)];
@@ -96,38 +99,41 @@ internal sealed class OnVoxels : SensorAssembly
     /// <inheritdoc/>
     public override LeadfieldCost Cost(IReadOnlyList<FilledRegion> regions)
     {
-        // The tables' sensors are solved after the study's own: their time adds, of the memory only the larger counts.
+        // The tables' sensors are solved after the study's own, whose rows stay meanwhile.
         long dipoles = regions.Sum(r => (long)r.Positions.Length);
-        LeadfieldCost own = VoxelCost.Of(_built.Head.Volume, Electrodes.Count + Channels.Count, dipoles + (WantsBackground ? NoiseAssembly.BackgroundPlaces : 0), reusable: true);
-        if (!WantsBackground)
+        int rows = Electrodes.Count + Channels.Count;
+        return WantsBackground
+            ? _cost.Value.Of((rows, dipoles + NoiseAssembly.BackgroundPlaces, true), (TableSensors.Names.Count + TableSensors.Array.Sites, NoiseAssembly.BackgroundPlaces, false))
+            : _cost.Value.Of(rows, dipoles, reusable: true);
+    }
+
+    /// <inheritdoc/>
+    public override void RefuseTooLarge(IReadOnlyList<FilledRegion> regions, RunSettings settings)
+    {
+        long bytes = Cost(regions).Bytes;
+        if (settings.MemoryBudget is { } limit && bytes > limit)
         {
-            return own;
+            throw TooLarge(string.Create(CultureInfo.InvariantCulture,
+                $"the finite elements on {_choice.Labels} would need about {MemorySize.Rough(bytes)} of memory, more than the {MemorySize.Rough(limit)} that --memory allows; voxels larger than the {Edges()} mm here, or fewer sensors and dipoles, need less"));
         }
 
-        LeadfieldCost tables = VoxelCost.Of(_built.Head.Volume, TableSensors.Names.Count + TableSensors.Array.Sites, NoiseAssembly.BackgroundPlaces, reusable: false);
-        return new(Math.Max(own.Bytes, tables.Bytes), own.Seconds + tables.Seconds);
+        // The nodes are counted one by one only where the most that dipoles can use would not fit.
+        int sensors = Electrodes.Count + Channels.Count;
+        long dipoles = regions.Sum(r => (long)r.Positions.Length) + (WantsBackground ? NoiseAssembly.BackgroundPlaces : 0);
+        if (TransferRows.ValuesFor(Math.Min(_cost.Value.SourceNodes, dipoles * DipoleLoad.MostNodes), sensors) > _parts.MostRowValues
+            && _parts.Solver(_built, _choice).KeptNodes(Own(regions)) is var nodes && TransferRows.ValuesFor(nodes, sensors) > _parts.MostRowValues)
+        {
+            throw TooLarge(string.Create(CultureInfo.InvariantCulture,
+                $"the {dipoles:#,0} dipoles use {nodes:#,0} nodes of the finite elements on {_choice.Labels}, and {nodes:#,0} nodes x {sensors:#,0} sensors are more values than can be kept ({_parts.MostRowValues:#,0}); a wider spacing_mm, fewer regions or sensors, or voxels larger than the {Edges()} mm here need fewer"));
+        }
     }
 
     /// <inheritdoc/>
     public override void Compute(IReadOnlyList<FilledRegion> regions, RunSettings settings)
     {
-        long bytes = Cost(regions).Bytes;
-        if (settings.MemoryBudget is { } limit && bytes > limit)
-        {
-            Vec3 edge = new(_built.Head.Volume.Grid.ToWorld.Column(0).Norm, _built.Head.Volume.Grid.ToWorld.Column(1).Norm, _built.Head.Volume.Grid.ToWorld.Column(2).Norm);
-            throw new InputException([_reading.Problem("head.voxels.labels", string.Create(CultureInfo.InvariantCulture,
-                $"the finite elements on {_choice.Labels} would need about {MemorySize.Rough(bytes)} of memory, more than the {MemorySize.Rough(limit)} that --memory allows; voxels larger than the {edge.X * 1000:0.##} x {edge.Y * 1000:0.##} x {edge.Z * 1000:0.##} mm here, or fewer sensors and dipoles, need less"))]);
-        }
-
-        if (settings.CheckOnly)
-        {
-            return;
-        }
-
         // One solver for both, dropped with its matrix when both are done.
         IVoxelSolver solver = _parts.Solver(_built, _choice);
-        IEnumerable<Vec3> places = regions.SelectMany(r => r.Positions);
-        _source = solver.Solve(new("leadfields", Electrodes, Channels, [.. WantsBackground ? places.Concat(_background.Value) : places], Reusable: true), settings, _warnings);
+        _source = solver.Solve(Own(regions), settings, _warnings);
         if (WantsBackground)
         {
             IReadOnlyList<Vec3> sites = _sensors.Sites(TableSensors.Names);
@@ -158,6 +164,20 @@ internal sealed class OnVoxels : SensorAssembly
             Cut = cut,
             Electrodes = [.. Electrodes.Select(e => (e.Name, e.Position))],
         };
+    }
+
+    private VoxelProblem Own(IReadOnlyList<FilledRegion> regions)
+    {
+        IEnumerable<Vec3> places = regions.SelectMany(r => r.Positions);
+        return new("leadfields", Electrodes, Channels, [.. WantsBackground ? places.Concat(_background.Value) : places], Reusable: true);
+    }
+
+    private InputException TooLarge(string message) => new([_reading.Problem("head.voxels.labels", message)]);
+
+    private string Edges()
+    {
+        Affine map = _built.Head.Volume.Grid.ToWorld;
+        return string.Create(CultureInfo.InvariantCulture, $"{map.Column(0).Norm * 1000:0.##} x {map.Column(1).Norm * 1000:0.##} x {map.Column(2).Norm * 1000:0.##}");
     }
 
     private IReadOnlyList<Electrode> Place(Study study, InputDigests inputs, List<string> warnings)

@@ -1,4 +1,5 @@
-using DeepSourceCheck.Core.Planning;
+using DeepSourceCheck.Core.Regions;
+using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Files.Studies;
 
 namespace DeepSourceCheck.Cli.Pipeline;
@@ -14,28 +15,33 @@ internal static class Prediction
     // Seconds: start and report; then a dipole and row of leadfield, and a dipole, row and direction of readings, on one processor.
     private const double BaseSeconds = 1.5, SecondsADipoleAndRow = 2e-8, SecondsAReading = 4e-10, SecondsADirection = 4e-8;
 
-    /// <summary>Predicted peak memory [bytes].</summary>
-    public static long Memory(StudySetup setup, Purpose purpose)
+    /// <summary>Predicted peak memory [bytes], leadfields of heads of voxels apart.</summary>
+    /// <param name="regions">The filled regions.</param>
+    /// <param name="rows">Electrodes and MEG channels.</param>
+    /// <param name="purpose">What is computed.</param>
+    public static long Memory(IReadOnlyList<FilledRegion> regions, long rows, Purpose purpose)
     {
-        long dipoles = setup.Regions.Sum(r => (long)r.Positions.Length);
-        long rows = setup.Source.EegRows + setup.Source.MegRows;
+        long dipoles = regions.Sum(r => (long)r.Positions.Length);
         long bytes = Base + dipoles * BytesADipole + rows * rows * 8 * 4;
         if (purpose == Purpose.Leadfield)
         {
             return bytes + dipoles * rows * 24;
         }
 
-        long largest = setup.Regions.Count == 0 ? 0 : setup.Regions.Max(r => (long)r.Positions.Length);
+        long largest = regions.Count == 0 ? 0 : regions.Max(r => (long)r.Positions.Length);
         return bytes + Math.Min(largest * 256, Core.Detection.QuantileStore.ExactLimit) * BytesAPercentileStore * 30;
     }
 
-    /// <summary>Predicted time [s] on this machine's processors.</summary>
-    public static double Seconds(StudySetup setup, Purpose purpose)
+    /// <summary>Predicted time [s] on this machine's processors, likewise.</summary>
+    /// <param name="study">The study.</param>
+    /// <param name="regions">The filled regions.</param>
+    /// <param name="rows">Electrodes and MEG channels.</param>
+    /// <param name="purpose">What is computed.</param>
+    public static double Seconds(Study study, IReadOnlyList<FilledRegion> regions, long rows, Purpose purpose)
     {
         double dipoles = purpose == Purpose.Leadfield
-            ? setup.Regions.Sum(r => (long)r.Positions.Length)
-            : setup.Study.Responses.Sum(r => r.Regions.Sum(name => (long)setup.Region(name).Positions.Length));
-        double rows = setup.Source.EegRows + setup.Source.MegRows;
+            ? regions.Sum(r => (long)r.Positions.Length)
+            : study.Responses.Sum(r => r.Regions.Sum(name => (long)regions.First(region => region.Name == name).Positions.Length));
         double work = dipoles * rows * SecondsADipoleAndRow;
         if (purpose == Purpose.Assess)
         {

@@ -1,3 +1,5 @@
+using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Leadfields.Voxels;
 using DeepSourceCheck.Core.Planning;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
@@ -8,9 +10,10 @@ namespace DeepSourceCheck.Cli.Pipeline;
 
 /// <summary>A variant of a study, likewise.</summary>
 /// <param name="Name">Its name.</param>
-/// <param name="Study">The variant as a study of its own, without variants, checked only.</param>
-/// <param name="Prepare">Prepares it for its run.</param>
-internal sealed record PreparedVariant(string Name, PreparedStudy Study, Func<RunSettings, PreparedStudy> Prepare);
+/// <param name="Memory">Predicted peak memory [bytes].</param>
+/// <param name="Seconds">Predicted time [s].</param>
+/// <param name="Prepare">Prepares it for its run as a study of its own, without variants; it was checked.</param>
+internal sealed record PreparedVariant(string Name, long Memory, double Seconds, Func<RunSettings, PreparedStudy> Prepare);
 
 /// <summary>A study that was read and found sound, with all of its parts built.</summary>
 internal sealed record PreparedStudy
@@ -19,7 +22,7 @@ internal sealed record PreparedStudy
     public required StudyReading Reading { get; init; }
 
     /// <summary>The study's parts.</summary>
-    public required StudySetup Setup { get; init; }
+    public required StudySetup Setup { get; set; }
 
     /// <summary>Files that were read.</summary>
     public required IReadOnlyList<InputFile> Inputs { get; init; }
@@ -55,11 +58,40 @@ internal sealed record PreparedStudy
     /// <summary>The study's variants, in its order.</summary>
     public IReadOnlyList<PreparedVariant> Variants { get; private init; } = [];
 
-    /// <summary>The study with its variants: they run one after the other.</summary>
+    /// <summary>The study with its variants: they run one after the other, each when the leadfields of the one before are gone.</summary>
     public PreparedStudy With(IReadOnlyList<PreparedVariant> variants) => variants.Count == 0 ? this : this with
     {
         Variants = variants,
-        PredictedMemory = Math.Max(PredictedMemory, variants.Max(v => v.Study.PredictedMemory)),
-        PredictedSeconds = PredictedSeconds + variants.Sum(v => v.Study.PredictedSeconds),
+        PredictedMemory = Math.Max(PredictedMemory, variants.Max(v => v.Memory)),
+        PredictedSeconds = PredictedSeconds + variants.Sum(v => v.Seconds),
     };
+
+    /// <summary>Gives up the leadfields: the rows of a head of voxels take up to a gibibyte, which the next head needs. Counts stay.</summary>
+    public void ReleaseLeadfields()
+    {
+        if (Setup.Source is ReleasedLeadfield)
+        {
+            return;
+        }
+
+        bool large = Setup.Source is VoxelLeadfield or ProjectedSource { Inner: VoxelLeadfield };
+        // The functions are those of the sensors, which hold the leadfields too.
+        Setup = Setup with { Source = new ReleasedLeadfield(Setup.Source), Removal = null, FieldCaptured = _ => null, CentreSensitivity = (_, _) => null };
+        if (large)
+        {
+            // Left alone, the collector may not look before the next head has taken as much again.
+            GC.Collect();
+        }
+    }
+
+    private sealed class ReleasedLeadfield(ILeadfieldSource of) : ILeadfieldSource
+    {
+        public int EegRows { get; } = of.EegRows;
+
+        public int MegRows { get; } = of.MegRows;
+
+        public LeadfieldMethod Method { get; } = of.Method;
+
+        public void Fill(LeadfieldBlock block) => throw new InvalidOperationException("A leadfield was asked for after it was given up.");
+    }
 }

@@ -124,10 +124,18 @@ internal abstract class SensorAssembly
     /// <param name="regions">The filled regions.</param>
     public virtual LeadfieldCost Cost(IReadOnlyList<FilledRegion> regions) => default;
 
+    /// <summary>Refuses leadfields that would not fit, before any is computed.</summary>
+    /// <param name="regions">The filled regions.</param>
+    /// <param name="settings">Memory budget.</param>
+    /// <exception cref="InputException">They would not fit into the budget, or not at all.</exception>
+    public virtual void RefuseTooLarge(IReadOnlyList<FilledRegion> regions, RunSettings settings)
+    {
+    }
+
     /// <summary>Computes what must be computed before any leadfield can be asked for; nothing on spheres and imported leadfields.</summary>
     /// <param name="regions">The filled regions.</param>
-    /// <param name="settings">Memory budget, progress, cancellation.</param>
-    /// <exception cref="InputException">It would not fit into the budget.</exception>
+    /// <param name="settings">Progress, cancellation.</param>
+    /// <exception cref="NotSolvedException">The equations of a head were not solved.</exception>
     public virtual void Compute(IReadOnlyList<FilledRegion> regions, RunSettings settings)
     {
     }
@@ -150,6 +158,7 @@ internal abstract class SensorAssembly
         Regions = regions,
         FieldCaptured = FieldCaptured,
         CentreSensitivity = CentreSensitivity,
+        Perturbable = Perturbable,
         Limits = Limits,
         ArrayPlace = ArrayPlace,
         Scene = Scene(regions) with
@@ -158,6 +167,9 @@ internal abstract class SensorAssembly
             Regions = [.. regions.Select(r => Place(r.Name, Picked(r.Positions)))],
         },
     };
+
+    /// <summary>The head with what is not known of it; null where it cannot be varied.</summary>
+    protected virtual IPerturbableHead? Perturbable => null;
 
     /// <summary>What the head's model leaves out, sentence by sentence.</summary>
     protected abstract IReadOnlyList<string> Limits { get; }

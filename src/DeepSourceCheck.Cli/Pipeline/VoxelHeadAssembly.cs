@@ -76,7 +76,7 @@ internal static class VoxelHeadAssembly
     /// <summary>What the fewest sensors would take is known before the head is looked at: a hopeless run is refused at once.</summary>
     private static void RefuseOverBudget(TissueVolume volume, string display, long? budget)
     {
-        if (budget is { } limit && VoxelCost.Of(volume, rows: 1, dipoles: 1, reusable: false).Bytes is var bytes && bytes > limit)
+        if (budget is { } limit && new VoxelCost(volume).Of(rows: 1, dipoles: 1, reusable: false).Bytes is var bytes && bytes > limit)
         {
             throw new InputException(display, LabelsKey,
                 $"the finite elements on it need at least {MemorySize.Rough(bytes)} of memory, more than the {MemorySize.Rough(limit)} that --memory allows; use larger voxels, or allow more");

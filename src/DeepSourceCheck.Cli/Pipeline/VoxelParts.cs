@@ -1,5 +1,6 @@
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Leadfields.Voxels;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
 
@@ -46,7 +47,11 @@ internal interface IVoxelSensors
 /// <param name="Places">Where dipoles will stand [m].</param>
 /// <param name="Reusable">True: rows of every node that a source could use are kept, as far as they fit, so that other regions find them too; else those that the places need.</param>
 internal sealed record VoxelProblem(
-    string What, IReadOnlyList<Electrode> Electrodes, IReadOnlyList<MegChannel> Channels, IReadOnlyList<Vec3> Places, bool Reusable);
+    string What, IReadOnlyList<Electrode> Electrodes, IReadOnlyList<MegChannel> Channels, IReadOnlyList<Vec3> Places, bool Reusable)
+{
+    /// <summary>Name of the sensor of a right-hand side: electrodes, then channels.</summary>
+    public string Sensor(int rightHandSide) => rightHandSide < Electrodes.Count ? Electrodes[rightHandSide].Name : Channels[rightHandSide - Electrodes.Count].Name;
+}
 
 /// <summary>Solves a row for every sensor of one head, or takes it from the cache.</summary>
 internal interface IVoxelSolver
@@ -55,7 +60,12 @@ internal interface IVoxelSolver
     /// <param name="problem">Sensors and places.</param>
     /// <param name="settings">Cache, progress, cancellation.</param>
     /// <param name="warnings">Receives trouble with the cache.</param>
+    /// <exception cref="NotSolvedException">The equations of some sensors were not solved.</exception>
     ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings, List<string> warnings);
+
+    /// <summary>Nodes whose rows the problem keeps, number of; nothing is solved.</summary>
+    /// <param name="problem">Sensors and places.</param>
+    int KeptNodes(VoxelProblem problem);
 }
 
 /// <summary>What a head of voxels needs beside its volume.</summary>
@@ -63,6 +73,9 @@ internal interface IVoxelSolver
 /// <param name="Solver">Makes the solver of a head.</param>
 internal sealed record VoxelParts(Func<BuiltVoxelHead, IReadOnlyDictionary<string, Vec3>, IVoxelSensors> Sensors, Func<BuiltVoxelHead, VoxelHeadChoice, IVoxelSolver> Solver)
 {
+    /// <summary>Values of rows that are kept at most: nodes times sensors, sensors in sixteens.</summary>
+    public long MostRowValues { get; init; } = TransferRows.MostValues;
+
     /// <summary>The program's own.</summary>
     public static VoxelParts Own { get; } = new((built, landmarks) => new ScalpSensors(built, landmarks), (built, choice) => new RowSolver(built, choice));
 }

@@ -29,6 +29,10 @@ public enum DirectionMode
 /// <remarks>Here: channels and the direction asked. Powers, pairs and means over sets have files of their own. Methods that every dipole passes are compiled optimised at once: most runs are over before tiers would change.</remarks>
 public sealed partial class BlockSignals
 {
+    // Relative to the size of the terms; leadfields of the sphere are exact to some 1e-14.
+    private const double CancellationRounding = 1e-12;
+
+    private readonly (int Row, double Weight)[][] _derivationTerms;
     private readonly SignalSpace _space;
     private readonly IHead _head;
     private readonly bool _megReported;
@@ -64,6 +68,8 @@ public sealed partial class BlockSignals
         _eegNorms = new double[eeg * LeadfieldBlock.Lanes];
         _megNorms = new double[meg * LeadfieldBlock.Lanes];
         _derivations = new double[(space.Derivations?.Outputs ?? 0) * width];
+        _derivationTerms = [.. Enumerable.Range(0, space.Derivations?.Outputs ?? 0).Select(k => space.Derivations!.Weights(k)
+            .Select((w, row) => (row, Math.Abs(w))).Where(t => t.Item2 > 0).ToArray())];
         if (space.EegWhitener is { } eegWhitener && eegWhitener.OnlyScales(electrodes) && eeg == electrodes)
         {
             (_eegWhite, _eegWhiteSlot) = (_eegScaled, 0);       // independent channels: whitened is scaled
@@ -121,6 +127,7 @@ public sealed partial class BlockSignals
             if (_space.Derivations is { } derivations)
             {
                 derivations.Apply(block.Eeg, _derivations);
+                SilenceCancelled(block.Eeg);
                 Scale(_derivations, null, _space.DerivationSd, _derivations);
             }
         }
@@ -196,6 +203,28 @@ public sealed partial class BlockSignals
         _figures[slot] = power;
         _largest[slot] = (largest, index);
         _figureReady[slot] = _largestReady[slot] = true;
+    }
+
+    // What a derivation leaves of potentials that cancel, below their rounding, is no reading: a midline source across Cz against both mastoids reads exactly nothing.
+    private void SilenceCancelled(double[] eeg)
+    {
+        const int axes = 3;
+        ReadOnlySpan<Vector512<double>> rows = Lanes.View(eeg);
+        Span<Vector512<double>> readings = MemoryMarshal.Cast<double, Vector512<double>>(_derivations.AsSpan());
+        for (int k = 0; k < _derivationTerms.Length; k++)
+        {
+            for (int axis = 0; axis < axes; axis++)
+            {
+                Vector512<double> size = default;
+                foreach ((int row, double weight) in _derivationTerms[k])
+                {
+                    size += Vector512.Abs(rows[axes * row + axis]) * Vector512.Create(weight);
+                }
+
+                ref Vector512<double> reading = ref readings[axes * k + axis];
+                reading &= Vector512.GreaterThan(Vector512.Abs(reading), size * Vector512.Create(CancellationRounding));
+            }
+        }
     }
 
     private static void Scale(double[] from, int[]? rows, double[]? sd, double[] to)

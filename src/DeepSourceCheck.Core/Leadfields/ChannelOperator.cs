@@ -6,26 +6,34 @@ using DeepSourceCheck.Core.Numerics;
 namespace DeepSourceCheck.Core.Leadfields;
 
 /// <summary>
-/// A linear map from recorded rows to the channels that are used: referencing, derivations (later: removal of environment terms). It acts on leadfields and on
+/// A linear map from recorded rows to the channels that are used: referencing, derivations, removal of the room's terms. It acts on leadfields and on
 /// covariances alike, so that signal and noise can never stand on different references.
 /// </summary>
-/// <remarks>out_k = sum_j S_kj in_j - c sum_j w_j in_j with sparse rows S and the common weights w, c = 1 where a common term is given.</remarks>
+/// <remarks>
+/// out_k = sum_j S_kj in_j - c sum_j w_j in_j - sum_t b_tk sum_j w_tj in_j with sparse rows S, the common weights w (c = 1 where a common term is given) and removed terms t, each with
+/// weights over the inputs and loads over the outputs.
+/// </remarks>
 public sealed class ChannelOperator
 {
     private const int Stride = 3 * LeadfieldBlock.Lanes;
 
     private readonly (int Row, double Weight)[][] _rows;
     private readonly double[]? _common;
+    private readonly (double[] Weights, double[] Loads)[] _removed;
 
     /// <param name="names">Name of each output channel.</param>
     /// <param name="inputs">Number of input rows.</param>
     /// <param name="rows">Sparse weights of each output.</param>
     /// <param name="common">Weights over the inputs of the term that is subtracted from every output; null for none.</param>
-    public ChannelOperator(IReadOnlyList<string> names, int inputs, (int Row, double Weight)[][] rows, double[]? common)
+    /// <param name="removed">Terms that are subtracted: weights over the inputs, loads over the outputs; null for none.</param>
+    public ChannelOperator(
+        IReadOnlyList<string> names, int inputs, (int Row, double Weight)[][] rows, double[]? common, IReadOnlyList<(double[] Weights, double[] Loads)>? removed = null)
     {
-        if (names.Count != rows.Length || (common is not null && common.Length != inputs))
+        _removed = removed is null ? [] : [.. removed];
+        if (names.Count != rows.Length || (common is not null && common.Length != inputs)
+            || Array.Exists(_removed, t => t.Weights.Length != inputs || t.Loads.Length != rows.Length))
         {
-            throw new ArgumentException("Names, rows and common weights must agree in length.");
+            throw new ArgumentException("Names, rows, common weights and removed terms must agree in length.");
         }
 
         Names = names;
@@ -56,6 +64,12 @@ public sealed class ChannelOperator
     public static ChannelOperator Derivations(IReadOnlyList<string> names, IReadOnlyList<double[]> weights, int inputs) =>
         new(names, inputs, [.. weights.Select(w => w.Select((x, j) => (j, x)).Where(p => p.x != 0).ToArray())], null);
 
+    /// <summary>Every row without what it holds of some terms.</summary>
+    /// <param name="names">Names of the rows.</param>
+    /// <param name="terms">For each term how it is read from the rows, and what every row holds of it.</param>
+    public static ChannelOperator Removal(IReadOnlyList<string> names, IReadOnlyList<(double[] Weights, double[] Loads)> terms) =>
+        new(names, names.Count, [.. Enumerable.Range(0, names.Count).Select(k => new[] { (k, 1.0) })], null, terms);
+
     /// <summary>Dense weights of output <paramref name="k"/> over the inputs.</summary>
     public double[] Weights(int k)
     {
@@ -68,6 +82,14 @@ public sealed class ChannelOperator
         for (int j = 0; _common is not null && j < Inputs; j++)
         {
             dense[j] -= _common[j];
+        }
+
+        foreach ((double[] weights, double[] loads) in _removed)
+        {
+            for (int j = 0; j < Inputs; j++)
+            {
+                dense[j] -= loads[k] * weights[j];
+            }
         }
 
         return dense;
@@ -133,6 +155,34 @@ public sealed class ChannelOperator
                 y1.Store(ref to, 8);
                 y2.Store(ref to, 16);
             }
+
+            foreach ((double[] weights, double[] loads) in _removed)
+            {
+                Remove<T>(ref Unsafe.Add(ref input, lane), ref Unsafe.Add(ref output, lane), weights, loads);
+            }
+        }
+    }
+
+    private static void Remove<T>(ref double input, ref double output, double[] weights, double[] loads)
+        where T : struct, ILaneVector<T>
+    {
+        T t0 = default, t1 = default, t2 = default;
+        for (int j = 0; j < weights.Length; j++)
+        {
+            ref double from = ref Unsafe.Add(ref input, j * Stride);
+            T w = T.All(weights[j]);
+            t0 += w * T.Load(ref from, 0);
+            t1 += w * T.Load(ref from, 8);
+            t2 += w * T.Load(ref from, 16);
+        }
+
+        for (int k = 0; k < loads.Length; k++)
+        {
+            ref double to = ref Unsafe.Add(ref output, k * Stride);
+            T load = T.All(loads[k]);
+            (T.Load(ref to, 0) - load * t0).Store(ref to, 0);
+            (T.Load(ref to, 8) - load * t1).Store(ref to, 8);
+            (T.Load(ref to, 16) - load * t2).Store(ref to, 16);
         }
     }
 
@@ -194,6 +244,26 @@ public sealed class ChannelOperator
             for (int c = 0; c < columns; c++)
             {
                 row[c] -= common[c];
+            }
+        }
+
+        foreach ((double[] weights, double[] loads) in _removed)
+        {
+            Array.Clear(common);
+            for (int j = 0; j < Inputs; j++)
+            {
+                for (int c = 0; c < columns; c++)
+                {
+                    common[c] += weights[j] * matrix[j * columns + c];
+                }
+            }
+
+            for (int k = 0; k < Outputs; k++)
+            {
+                for (int c = 0; c < columns; c++)
+                {
+                    result[k * columns + c] -= loads[k] * common[c];
+                }
             }
         }
 

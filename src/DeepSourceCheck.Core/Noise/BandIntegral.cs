@@ -6,6 +6,9 @@ namespace DeepSourceCheck.Core.Noise;
 /// </remarks>
 public static class BandIntegral
 {
+    /// <summary>Of a band from 0 Hz what lies below this share of its upper edge is left out.</summary>
+    public const double LowestShare = 1e-6;
+
     // Positive abscissas and their weights of the rule of 20 points on [-1, 1], falling; a test holds them against a numerical library.
     private static readonly double[] Abscissas =
     [
@@ -41,7 +44,7 @@ public static class BandIntegral
     /// <param name="breakpoints">As for <see cref="Of"/>.</param>
     public static IReadOnlyList<BandNode> Nodes(double low, double high, IEnumerable<double> breakpoints)
     {
-        double[] edges = Edges(Math.Max(low, high * 1e-6), high, breakpoints);
+        double[] edges = Edges(Math.Max(low, high * LowestShare), high, breakpoints);
         var nodes = new BandNode[Count(edges)];
         int at = 0;
         for (int k = 0; k + 1 < edges.Length; k++)

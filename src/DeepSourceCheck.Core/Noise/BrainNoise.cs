@@ -43,6 +43,9 @@ public sealed class BrainNoise : INoiseTerm
     public IReadOnlyList<double> Breakpoints { get; }
 
     /// <inheritdoc/>
+    public (double From, double To)? Known(bool eeg) => eeg ? (_eegTable.KnownFrom, _eegTable.KnownTo) : (_megTable.KnownFrom, _megTable.KnownTo);
+
+    /// <inheritdoc/>
     public NoisePower At(double frequency)
     {
         double e = _eegTable.DensityAt(frequency), m = _megTable.DensityAt(frequency);

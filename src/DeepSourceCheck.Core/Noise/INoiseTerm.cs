@@ -19,6 +19,10 @@ public interface INoiseTerm
     /// <param name="frequency">Frequency [Hz].</param>
     NoisePower At(double frequency);
 
+    /// <summary>Frequencies [Hz] between which the table behind the term stands; null where it needs none.</summary>
+    /// <param name="eeg">True for EEG, false for MEG.</param>
+    (double From, double To)? Known(bool eeg) => null;
+
     /// <summary>Frequencies [Hz] at which the power has kinks.</summary>
     IReadOnlyList<double> Breakpoints { get; }
 }

@@ -1,7 +1,7 @@
 namespace DeepSourceCheck.Core.Noise;
 
 /// <summary>An amplitude density over frequency, a power law between the points of a table.</summary>
-/// <remarks>Outside the table the end segments go on: the caller warns where a band leaves the table.</remarks>
+/// <remarks>Outside the table the end segments go on: the caller warns where a band leaves <see cref="KnownFrom"/> to <see cref="KnownTo"/>.</remarks>
 public sealed class LogLogTable
 {
     private readonly double[] _frequencies;
@@ -22,10 +22,18 @@ public sealed class LogLogTable
         {
             throw new ArgumentException("A table needs two or more points with increasing positive frequencies and positive densities.", nameof(points));
         }
+
+        KnownTo = _frequencies[^1];
     }
 
     /// <summary>Frequencies of the points [Hz].</summary>
     public IReadOnlyList<double> Frequencies => _frequencies;
+
+    /// <summary>Lowest frequency for which the table stands [Hz]: its first point.</summary>
+    public double KnownFrom => _frequencies[0];
+
+    /// <summary>Highest frequency for which the table stands [Hz]: its last point, or beyond it where its last slope is part of what is known.</summary>
+    public double KnownTo { get; init; }
 
     /// <summary>Amplitude density at a frequency [unit/sqrt(Hz)].</summary>
     /// <param name="frequency">Positive [Hz].</param>
@@ -56,7 +64,7 @@ public sealed class LogLogTable
             points[k] = (_frequencies[k], factor * _densities[k]);
         }
 
-        return new(points);
+        return new(points) { KnownTo = KnownTo };
     }
 
     /// <summary>rms over a band: sqrt of the integral of the squared density [unit].</summary>

@@ -7,12 +7,15 @@ namespace DeepSourceCheck.Core.Noise;
 public sealed class MuscleElectrodeNoise : INoiseTerm
 {
     private readonly Func<double, double> _remainder;
+    private readonly (double From, double To) _known;
 
     /// <param name="electrodes">Number of electrodes.</param>
     /// <param name="remainder">Power density of one electrode at a frequency [V^2/Hz].</param>
     /// <param name="breakpoints">Kinks [Hz].</param>
-    public MuscleElectrodeNoise(int electrodes, Func<double, double> remainder, IReadOnlyList<double> breakpoints)
+    /// <param name="known">Frequencies [Hz] between which the table of the total stands.</param>
+    public MuscleElectrodeNoise(int electrodes, Func<double, double> remainder, IReadOnlyList<double> breakpoints, (double From, double To) known)
     {
+        _known = known;
         Eeg = new NoisePattern([.. Enumerable.Repeat(1.0, electrodes)], null, 0);
         _remainder = remainder;
         Breakpoints = breakpoints;
@@ -29,6 +32,9 @@ public sealed class MuscleElectrodeNoise : INoiseTerm
 
     /// <inheritdoc/>
     public IReadOnlyList<double> Breakpoints { get; }
+
+    /// <inheritdoc/>
+    public (double From, double To)? Known(bool eeg) => _known;
 
     /// <inheritdoc/>
     public NoisePower At(double frequency) => new(_remainder(frequency), 0, 0);

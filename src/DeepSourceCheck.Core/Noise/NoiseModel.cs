@@ -1,8 +1,13 @@
+using DeepSourceCheck.Core.Leadfields;
+
 namespace DeepSourceCheck.Core.Noise;
 
 /// <summary>All noise of a study: spectral terms, or measured or flat covariances that replace them, modality by modality.</summary>
 public sealed class NoiseModel
 {
+    /// <summary>The cause of a reading whose noise is a flat figure or a measured covariance.</summary>
+    public const string StatedPerTrial = "stated per trial";
+
     /// <summary>Number of electrodes; 0 without EEG.</summary>
     public required int EegRows { get; init; }
 
@@ -11,6 +16,14 @@ public sealed class NoiseModel
 
     /// <summary>Spectral terms; empty where both modalities are given per trial.</summary>
     public IReadOnlyList<INoiseTerm> Terms { get; init; } = [];
+
+    /// <summary>Operator over the MEG channels that takes the room's spatial terms out, of leadfields (<see cref="ProjectedSource"/>) and noise alike; null for none.</summary>
+    public ChannelOperator? MegOperator { get; init; }
+
+    /// <summary>Ranges of frequency [Hz] over which the tables behind a modality's terms stand.</summary>
+    /// <param name="eeg">True for EEG, false for MEG.</param>
+    public IReadOnlyList<(double From, double To)> Known(bool eeg) =>
+        [.. Terms.Where(t => (eeg ? t.Eeg : t.Meg) is not null).Select(t => t.Known(eeg)).OfType<(double, double)>()];
 
     /// <summary>EEG covariance of one trial [V^2] that replaces the terms, or null.</summary>
     public double[]? EegPerTrial { get; init; }
@@ -33,12 +46,25 @@ public sealed class NoiseModel
             EegRows = EegRows,
             MegRows = MegRows,
             Eeg = EegPerTrial ?? spectral.Eeg,
-            Meg = MegPerTrial ?? spectral.Meg,
-            Cross = EegPerTrial is null && MegPerTrial is null ? spectral.Cross : null,
+            Meg = MegPerTrial ?? (MegOperator is { } p ? p.ApplyToCovariance(spectral.Meg) : spectral.Meg),
+            Cross = EegPerTrial is null && MegPerTrial is null ? Projected(spectral.Cross) : null,
             EegSamples = EegSamples,
             MegSamples = MegSamples,
         };
     }
+
+    /// <summary>The same noise at the channels as they are, with one more cause.</summary>
+    /// <param name="more">The cause, or null for none.</param>
+    public NoiseModel Unprojected(INoiseTerm? more) => new()
+    {
+        EegRows = EegRows,
+        MegRows = MegRows,
+        Terms = more is null ? Terms : [.. Terms, more],
+        EegPerTrial = EegPerTrial,
+        MegPerTrial = MegPerTrial,
+        EegSamples = EegSamples,
+        MegSamples = MegSamples,
+    };
 
     /// <summary>Variance that each cause adds to one reading in a band.</summary>
     /// <param name="eeg">Weights over the electrodes, or null for a MEG channel.</param>
@@ -48,31 +74,78 @@ public sealed class NoiseModel
     /// <returns>(cause, variance [V^2, T^2 or (T/m)^2]); a single `stated` one where a per-trial covariance replaces the terms.</returns>
     public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, double low, double high)
     {
-        double[] weights = eeg ?? new double[MegRows];
-        if (eeg is null)
-        {
-            weights[megChannel] = 1;
-        }
-
+        double[] weights = eeg ?? MegWeights(megChannel);
         if ((eeg is null ? MegPerTrial : EegPerTrial) is { } stated)
         {
-            return [("stated per trial", Quadratic(stated, weights))];
+            return [(StatedPerTrial, Quadratic(stated, weights))];
         }
 
-        var causes = new List<(string, double)>();
-        foreach (INoiseTerm term in Terms)
+        return [.. Present(eeg is null, weights).Select(t =>
+            (t.Term.Name, t.Variance * BandIntegral.Of(f => eeg is null ? t.Term.At(f).Meg : t.Term.At(f).Eeg, low, high, t.Term.Breakpoints)))];
+    }
+
+    /// <summary>Power density that each cause adds to one reading at single frequencies.</summary>
+    /// <param name="eeg">As for <see cref="Contributions"/>.</param>
+    /// <param name="megChannel">As for <see cref="Contributions"/>.</param>
+    /// <param name="frequencies">Frequencies [Hz].</param>
+    /// <returns>
+    /// (cause, power densities [V^2/Hz, T^2/Hz or (T/m)^2/Hz]), in the order of <see cref="Contributions"/>; a remainder may be negative where tables cross.
+    /// Empty where a per-trial covariance replaces the terms: its spectrum is not known.
+    /// </returns>
+    public IReadOnlyList<(string Cause, double[] Power)> Spectra(double[]? eeg, int megChannel, IReadOnlyList<double> frequencies)
+    {
+        if ((eeg is null ? MegPerTrial : EegPerTrial) is not null)
         {
-            NoisePattern? pattern = eeg is null ? term.Meg : term.Eeg;
-            if (pattern is null)
-            {
-                continue;
-            }
-
-            double power = BandIntegral.Of(f => eeg is null ? term.At(f).Meg : term.At(f).Eeg, low, high, term.Breakpoints);
-            causes.Add((term.Name, power * UnitVariance(pattern, weights)));
+            return [];
         }
 
-        return causes;
+        return [.. Present(eeg is null, eeg ?? MegWeights(megChannel)).Select(t =>
+            (t.Term.Name, (double[])[.. frequencies.Select(f => t.Variance * (eeg is null ? t.Term.At(f).Meg : t.Term.At(f).Eeg))]))];
+    }
+
+    // The terms that a modality has, each with the variance of the reading at unit power.
+    private IEnumerable<(INoiseTerm Term, double Variance)> Present(bool meg, double[] weights) =>
+        from term in Terms
+        let pattern = meg ? term.Meg : term.Eeg
+        where pattern is not null
+        select (term, UnitVariance(pattern, weights));
+
+    private double[] MegWeights(int channel)
+    {
+        if (MegOperator is { } p)
+        {
+            return p.Weights(channel);
+        }
+
+        var weights = new double[MegRows];
+        weights[channel] = 1;
+        return weights;
+    }
+
+    // C P', electrodes x channels.
+    private double[]? Projected(double[]? cross)
+    {
+        if (cross is null || MegOperator is not { } p)
+        {
+            return cross;
+        }
+
+        double[] turned = p.ApplyToRows(Turned(cross, EegRows, MegRows), EegRows);
+        return Turned(turned, MegRows, EegRows);
+    }
+
+    private static double[] Turned(double[] matrix, int rows, int columns)
+    {
+        var result = new double[matrix.Length];
+        for (int i = 0; i < rows; i++)
+        {
+            for (int k = 0; k < columns; k++)
+            {
+                result[k * rows + i] = matrix[i * columns + k];
+            }
+        }
+
+        return result;
     }
 
     /// <summary>Power density [V^2/Hz, T^2/Hz or (T/m)^2/Hz] of one reading; null where it is stated per trial, without a spectrum.</summary>

@@ -4,6 +4,7 @@ using System.Globalization;
 using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
+using DeepSourceCheck.Core.Planning.Unknowns;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
@@ -16,6 +17,9 @@ public static class Assessor
 {
     /// <summary>A region whose captured share is below this says so.</summary>
     private const double CapturedEnough = 0.98;
+
+    /// <summary>A cancellation below this is not worth a warning [dB].</summary>
+    private const double LittleCancelled = 1;
 
     /// <summary>Above this angle v3 is not called quasi-radial but least visible.</summary>
     private const double LeastVisibleDeg = 25;
@@ -36,10 +40,7 @@ public static class Assessor
             progress?.Invoke($"noise of {response.Name}", (double)done / total);
             NoiseCovariance noise = setup.Noise!.InBand(response.Band.Low, response.Band.High);
             var space = new SignalSpace(noise, setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
-            var plan = new EvaluationPlan(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0)
-            {
-                WeightingGain = setup.Study.Noise?.SpreadBetweenTrials is { } spread ? Math.Exp(4 * spread * spread) : null,
-            };
+            EvaluationPlan plan = Plan(setup, response, space);
             if (!begun)
             {
                 sink?.Begin(AllColumns(setup, space));
@@ -51,25 +52,42 @@ public static class Assessor
             {
                 long before = done;
                 StudySetup own = source is SummedSource ? setup with { Head = new SummedHead(setup.Head) } : setup;
-                RegionTally tally = new RegionRun(plan, own.Head, source)
-                    .Run(region, Adapt(sink, plan, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
-                EvaluationPlan known = plan;
-                if (plan.StandsOnWindow)
+                EvaluationPlan asked = response.Amplitude is null ? plan
+                    : Plan(setup, response with { Moment = MomentFromAmplitude.Find(plan, own.Head, source, region, cancellation) }, space);
+                RegionTally tally = new RegionRun(asked, own.Head, source)
+                    .Run(region, Adapt(sink, asked, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
+                EvaluationPlan known = asked;
+                if (asked.StandsOnWindow)
                 {
-                    known = plan.WithWindow(WindowRatio.Of(plan, tally));
+                    known = asked.WithWindow(WindowRatio.Of(asked, tally));
                     // Under an artefact percentiles run over figures that already hold the ratio.
-                    tally = plan.HasArtefact(Modality.Both) ? new RegionRun(known, own.Head, source).Run(region, null, null, cancellation) : tally;
+                    tally = asked.HasArtefact(Modality.Both) ? new RegionRun(known, own.Head, source).Run(region, null, null, cancellation) : tally;
                 }
 
                 done += region.Positions.Length;
-                regions.Add(Result(own, known, region, source, parts, tally, cancellation));
+                RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
+                    : new RemovalReport(own, known).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, Activation.Weights(response), cancellation) : setup.Removal.Source, cancellation);
+                RegionResult result = Result(own, known, region, source, parts, tally, loss, cancellation);
+                regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, known, own.Head, source, region, parts).Run(cancellation)));
             }
 
-            results.Add(new ResponseResult(response, regions));
+            results.Add(new ResponseResult(response, regions) { Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
         }
 
         return results;
     }
+
+    private static RegionResult Unsure(RegionResult result, UnknownsResult unknowns) => result with
+    {
+        Unknowns = unknowns,
+        Verdicts = [.. result.Verdicts.Zip(unknowns.Verdicts, (verdict, spread) => verdict with { Assurance = spread.Assurance is { } a ? Math.Round(20 * a) / 20 : null })],
+    };
+
+    private static EvaluationPlan Plan(StudySetup setup, Response response, SignalSpace space) =>
+        new(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0)
+        {
+            WeightingGain = setup.Study.Noise?.SpreadBetweenTrials is { } spread ? Math.Exp(4 * spread * spread) : null,
+        };
 
     private static IEnumerable<(FilledRegion Region, ILeadfieldSource Source, IReadOnlyList<FilledRegion> Parts)> Sources(
         StudySetup setup, Response response, CancellationToken cancellation)
@@ -77,7 +95,7 @@ public static class Assessor
         FilledRegion[] regions = [.. response.Regions.Select(setup.Region)];
         if (response.Together)
         {
-            var summed = new SummedSource(setup.Source, regions, cancellation);
+            var summed = new SummedSource(setup.Source, regions, Activation.Weights(response), cancellation);
             yield return (summed.Region, summed, regions);
             yield break;
         }
@@ -91,7 +109,7 @@ public static class Assessor
     // Responses may differ in whether a direction is given and what the joint reading is named: dipoles.csv has one header, so it lists the union.
     private static IReadOnlyList<DipoleColumn> AllColumns(StudySetup setup, SignalSpace space) =>
         [.. setup.Study.Responses
-            .SelectMany(r => new EvaluationPlan(r, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0).Columns)
+            .SelectMany(r => Plan(setup, r, space).Columns)
             .Distinct().OrderBy(c => c.Modality)];
 
     private static IDipoleSink? Adapt(IDipoleSink? sink, EvaluationPlan plan, StudySetup setup, SignalSpace space)
@@ -107,17 +125,20 @@ public static class Assessor
 
     private static RegionResult Result(
         StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts, RegionTally tally,
-        CancellationToken cancellation)
+        RemovalLoss? loss, CancellationToken cancellation)
     {
         var signals = new BlockSignals(plan.Space, setup.Head, plan.MegReported);
         var report = new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
         IReadOnlyList<MeasureResult> rows = report.Rows();
         SplitSummary? split = report.Split();
+        IReadOnlyList<CancellationResult> lost = source is SummedSource summed ? FieldCancellation.Of(plan, setup, summed, parts, cancellation) : [];
         double?[] captured = [.. parts.Select(setup.FieldCaptured)];
         var verdicts = new VerdictWriter(setup, plan, region, source, tally).Write(ref rows, cancellation);
         return new RegionResult
         {
             Region = region.Name,
+            Moment = plan.Response.Moment,
+            Cancellation = lost,
             Dipoles = parts.Sum(p => p.Positions.Length),
             Dropped = parts.Sum(p => p.Dropped.Count),
             Spacing = parts.Select(p => p.Spacing).Distinct().Count() == 1 ? parts[0].Spacing : null,
@@ -125,9 +146,12 @@ public static class Assessor
             Split = split,
             FieldCaptured = captured.Min(),
             Profile = tally.Profile?.Profile(),
+            Removal = loss,
             Results = rows,
             Verdicts = verdicts,
-            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts)],
+            RealisticHeads = [.. parts.Select(p => p.RealisticHead).OfType<RealisticHeadEffect>()],
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
+                .. loss is null ? Array.Empty<string>() : [RemovalReport.Words(region.Name, loss)]],
         };
     }
 
@@ -159,6 +183,16 @@ public static class Assessor
         {
             yield return string.Create(CultureInfo.InvariantCulture,
                 $"{name}: the direction that the array sees least stands {angle:0} degrees from the outward direction; read quasi-radial as least visible (partial coverage, a source near the centre, or one that lies nearer to the base of a real skull than to its vault)");
+        }
+    }
+
+    private static IEnumerable<string> Cancelled(Response response, IReadOnlyList<FilledRegion> parts, IReadOnlyList<CancellationResult> lost)
+    {
+        if (lost.Any(l => l.Db < -LittleCancelled))
+        {
+            string figures = string.Join(", ", lost.Select(l => string.Create(CultureInfo.InvariantCulture,
+                $"{Names.Of(l.Modality)} {(double.IsFinite(l.Db) ? $"{Math.Round(-l.Db, 1) + 0.0:0.0} dB" : "everything")} ({l.Measure})")));
+            yield return $"{response.Name}, {string.Join(" + ", parts.Select(p => p.Name))}: the regions act together and their fields oppose each other; that costs {figures} against the same moments with fields alike and in step";
         }
     }
 

@@ -24,7 +24,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
     {
         _lines.Clear();
         Response response = plan.Response;
-        Input("a", "dipole moment", Si.ToNanoAmpereMetres(response.Moment), "nAm", "responses.moment_nAm");
+        Strength(response);
         Input("x", response.Together ? "centroid of the regions, which act together" : $"place of the dipole at the median count (point {witness.Point})", Si.ToMm(witness.Position.X), "mm", "region");
         Input("y", "", Si.ToMm(witness.Position.Y), "mm", "region");
         Input("z", "", Si.ToMm(witness.Position.Z), "mm", "region");
@@ -80,6 +80,29 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         }
 
         return [.. _lines];
+    }
+
+    private void Strength(Response response)
+    {
+        double moment = Si.ToNanoAmpereMetres(response.Moment);
+        if (response.Amplitude is { } known)
+        {
+            double peak = Si.ToMicrovolts(known.Peak);
+            Input("A0", $"amplitude known at {known.Derivation}", peak, "uV", "responses.amplitude.peak_uV");
+            Add("g0", $"leadfield at {known.Derivation}: median of its size over dipoles and directions", peak / moment, "uV/nAm", "", method.Eeg, Grade.Derived);
+            Add("a", "dipole moment that reads it", moment, "nAm", "A0 / g0", "linearity", Grade.Derived);
+        }
+        else if (response.Density is { } density)
+        {
+            Input("D", "moment density", density.MomentDensity * 1000, "nAm/mm2", "responses.density.nAm_per_mm2");
+            Input("S", "active area", density.Area * 1e6, "mm2", "responses.density.area_mm2");
+            Input("o", "open-field fraction", density.OpenField, "", "responses.density.open_field");
+            Add("a", "dipole moment", moment, "nAm", "D S o", "net moment of a sheet", Grade.Derived);
+        }
+        else
+        {
+            Input("a", response.MomentRange is null ? "dipole moment" : "dipole moment, typical", moment, "nAm", "responses.moment_nAm");
+        }
     }
 
     private double Correlation(MedianWitness witness, PairMeasure pair)

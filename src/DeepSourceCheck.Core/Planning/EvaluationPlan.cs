@@ -70,6 +70,27 @@ public sealed class EvaluationPlan
         Gain = response.Moment * response.Moment / NoiseFactor;
     }
 
+    // One reading of another plan.
+    private EvaluationPlan(EvaluationPlan plan, IMeasure measure, DirectionName direction)
+    {
+        Response = plan.Response;
+        Space = plan.Space;
+        Targets = [];
+        MegReported = plan.MegReported;
+        Measures = [measure];
+        Directions = [direction];
+        _rules = new() { [measure] = [] };
+        Gain = plan.Gain;
+    }
+
+    /// <summary>A plan that reads one measure in one direction and nothing else.</summary>
+    /// <param name="measure">One of <see cref="Measures"/>.</param>
+    /// <param name="direction">One of <see cref="Directions"/>.</param>
+    public EvaluationPlan Only(IMeasure measure, DirectionName direction) => new(this, measure, direction);
+
+    /// <summary>The direction that the verdict stands on; where there is no split, every direction.</summary>
+    public DirectionName VerdictDirection => Directions.Contains(Response.Direction.Name) ? Response.Direction.Name : DirectionName.Isotropic;
+
     /// <summary>The response.</summary>
     public Response Response { get; }
 
@@ -114,9 +135,6 @@ public sealed class EvaluationPlan
 
     /// <summary>Whether a rule stands on the ratio of window rms to peak, which is known only when a region was read.</summary>
     public bool StandsOnWindow => Targets.Any(t => t is VarianceRatioChoice);
-
-    /// <summary>The direction that carries the verdict.</summary>
-    public DirectionName VerdictDirection => Directions.Contains(Response.Direction.Name) ? Response.Direction.Name : DirectionName.Isotropic;
 
     /// <summary>Factor, without unit, by which weighting each trial by its own noise lowers the noise power; null where the study states no spread between trials.</summary>
     /// <remarks>Plain averaging leaves mean(s^2)/N, weighted 1/sum(1/s^2): for a lognormal s the ratio is exp(var ln s^2) = exp(4 var ln s).</remarks>

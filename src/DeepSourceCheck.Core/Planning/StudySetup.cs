@@ -40,6 +40,9 @@ public sealed record StudySetup
     /// <summary>False where the MEG rows are a built-in array that serves the split alone.</summary>
     public bool MegReported { get; init; }
 
+    /// <summary>What removal of the room's terms is compared with; null where nothing is removed.</summary>
+    public RemovalBaseline? Removal { get; init; }
+
     /// <summary>Noise; null where only leadfields are asked for.</summary>
     public NoiseModel? Noise { get; init; }
 
@@ -51,6 +54,9 @@ public sealed record StudySetup
 
     /// <summary>What becomes of a region's MEG when the sphere's centre moves, for the noise standard deviation of each channel; null where that is not asked.</summary>
     public Func<FilledRegion, IReadOnlyList<double>, CentreSensitivity?> CentreSensitivity { get; init; } = (_, _) => null;
+
+    /// <summary>The head with what is not known of it; null where it cannot be varied.</summary>
+    public IPerturbableHead? Perturbable { get; init; }
 
     /// <summary>What the head's model leaves out, sentence by sentence, with the figures of this head and its sensors.</summary>
     public IReadOnlyList<string> Limits { get; init; } = [];

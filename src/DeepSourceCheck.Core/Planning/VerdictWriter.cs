@@ -5,12 +5,20 @@ using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Core.Planning;
 
 /// <summary>The answers for one region: modality by modality, rule by rule, in plain words with their reason and their chain.</summary>
 internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, RegionTally tally)
 {
+    /// <summary>Measures of the verdicts: EEG, MEG, both, as far as the study has them.</summary>
+    /// <param name="plan">What is read.</param>
+    public static IEnumerable<IMeasure> Measures(EvaluationPlan plan) =>
+        from reading in new (Modality Modality, string? Name)[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) }
+        where reading.Name is not null
+        select plan.Measures.First(m => m.Modality == reading.Modality && m.Name == reading.Name);
+
     /// <summary>Writes all verdicts.</summary>
     /// <param name="rows">The region's results; the median count of a verdict's row is that of the dipole whose chain is given.</param>
     /// <param name="cancellation">Stops the search for the dipole at the median.</param>
@@ -18,14 +26,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     {
         var asked = new List<MedianSearch.Question>();
         DirectionName direction = plan.VerdictDirection;
-        foreach ((Modality modality, string? name) in new[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) })
+        foreach (IMeasure measure in Measures(plan))
         {
-            if (name is null)
-            {
-                continue;
-            }
-
-            IMeasure measure = plan.Measures.First(m => m.Modality == modality && m.Name == name);
             asked.AddRange(plan.Targets.Select((_, rule) => new MedianSearch.Question(measure, rule)));
         }
 
@@ -83,6 +85,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     {
         TargetResult target = row.Targets[rule];
         long? count = target.Trials.P50;
+        ITargetRule bound = plan.RulesOf(plan.Measures.First(m => m.Modality == row.Modality && m.Name == row.Measure))[rule];
         bool? fits = plan.SessionTrials is { } session ? count is { } n && n <= session : null;
         return new VerdictResult
         {
@@ -90,11 +93,29 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Rule = target.Rule,
             Measure = row.Measure,
             Direction = row.Direction,
-            Text = Text(row, target, fits, witness),
+            Text = Text(row, target, fits, bound.StandsOnNoise ? null : witness) + RangeText(AtMoments(bound, witness)),
             FitsSession = fits,
             Averaging = Averaging.Of(plan, setup.Noise!, witness, count),
+            AtMoments = AtMoments(bound, witness),
+            Missing = plan.SessionTrials is { } trials && witness is not null ? 1 - bound.Probability(witness.Power, witness.Artefact, trials) : null,
             Chain = chain,
         };
+    }
+
+    private CountRange? AtMoments(ITargetRule rule, MedianWitness? witness)
+    {
+        if (plan.Response.MomentRange is not { } range || witness is null)
+        {
+            return null;
+        }
+
+        return new(At(range.Low), At(range.High));
+
+        long? At(double moment)
+        {
+            double ratio = moment / plan.Response.Moment, effective = rule.EffectivePower(witness.Power * ratio * ratio, witness.Artefact, witness.InverseVariance);
+            return effective > 0 ? TrialCount.Ceiling(rule.Trials(effective)) : null;
+        }
     }
 
     private string Text(MeasureResult row, TargetResult target, bool? fits, MedianWitness? witness)
@@ -125,6 +146,20 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             ? string.Create(CultureInfo.InvariantCulture, $": {(fits == true ? "fits" : "does not fit")} the session of {seconds / 60:0.######} min ({afforded:N0} trials{(each.Length > 0 ? " each" : "")})")
             : "";
         return $"{reading}: {trials}, {Rounded.Minutes(minutes)} min{each}{session}.{why}";
+    }
+
+    private string RangeText(CountRange? range)
+    {
+        if (range is null)
+        {
+            return "";
+        }
+
+        MomentRange moments = plan.Response.MomentRange!;
+        return $" At {Trials(range.Low, moments.Low)}, at {Trials(range.High, moments.High)}.";
+
+        static string Trials(long? count, double moment) => string.Create(CultureInfo.InvariantCulture,
+            $"{Math.Round(Si.ToNanoAmpereMetres(moment), 9):0.######} nAm {(count is { } n && n <= TrialCount.MostPlanned ? $"{n:N0} trials" : "out of reach")}");
     }
 
     private static string Reading(MeasureResult row) => row.Modality == Modality.Both && row.Measure != Names.MatchedFilter

@@ -54,11 +54,19 @@ public sealed class FilledRegion
     /// <summary>Where the shape comes from, for instance `library`, `mask atlas.nii.gz label 3`.</summary>
     public string Origin { get; init; } = "";
 
+    /// <summary>What a realistic head changes here; null for regions of the study's own and where nothing was measured.</summary>
+    public RealisticHeadEffect? RealisticHead { get; init; }
+
     /// <summary>What the user must know about this region: losses, side, sphere misfit.</summary>
     public IReadOnlyList<string> Warnings { get; init; } = [];
 
     /// <summary>The same region with one more warning at the end.</summary>
-    public FilledRegion WithWarning(string warning) => new()
+    public FilledRegion WithWarning(string warning) => With(RealisticHead, [.. Warnings, warning]);
+
+    /// <summary>The same region, with what a realistic head changes there.</summary>
+    public FilledRegion WithRealisticHead(RealisticHeadEffect? effect) => With(effect, Warnings);
+
+    private FilledRegion With(RealisticHeadEffect? effect, IReadOnlyList<string> warnings) => new()
     {
         Name = Name,
         Positions = Positions,
@@ -73,6 +81,7 @@ public sealed class FilledRegion
         ShapeVolume = ShapeVolume,
         Centroid = Centroid,
         Origin = Origin,
-        Warnings = [.. Warnings, warning],
+        RealisticHead = effect,
+        Warnings = warnings,
     };
 }

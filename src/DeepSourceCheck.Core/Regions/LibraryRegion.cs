@@ -39,6 +39,9 @@ public sealed record LibraryRegion
     /// <summary>What a spherical head gets wrong at this place; null where it does well.</summary>
     public string? SphereLimits { get; init; }
 
+    /// <summary>What a realistic head changes here, as measured once; null where nothing was measured.</summary>
+    public RealisticHeadEffect? RealisticHead { get; init; }
+
     /// <summary>What the user should know.</summary>
     public required string Note { get; init; }
 

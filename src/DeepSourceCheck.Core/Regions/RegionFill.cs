@@ -53,7 +53,7 @@ public static class RegionFill
             };
         }
 
-        FilledRegion filled = Fill(region.Name, ellipsoid.Shape, spacing, head, "library", null, null, WarnDroppedShareOfLibrary);
+        FilledRegion filled = Fill(region.Name, ellipsoid.Shape, spacing, head, "library", null, null, WarnDroppedShareOfLibrary).WithRealisticHead(region.RealisticHead);
         return region.SphereLimits is { } limits && head is LayeredSphere ? filled.WithWarning($"{region.Name}: {limits}") : filled;
     }
 

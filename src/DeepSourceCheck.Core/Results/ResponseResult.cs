@@ -5,4 +5,8 @@ namespace DeepSourceCheck.Core.Results;
 /// <summary>All regions of one response.</summary>
 /// <param name="Response">As stated.</param>
 /// <param name="Regions">One result a region; a single one where regions act together.</param>
-public sealed record ResponseResult(Response Response, IReadOnlyList<RegionResult> Regions);
+public sealed record ResponseResult(Response Response, IReadOnlyList<RegionResult> Regions)
+{
+    /// <summary>Noise over frequency at the readings of the first region's verdicts, EEG then MEG.</summary>
+    public IReadOnlyList<ReadingSpectrum> Spectra { get; init; } = [];
+}

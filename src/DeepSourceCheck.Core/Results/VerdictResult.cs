@@ -23,6 +23,12 @@ public sealed record VerdictResult
     /// <summary>Whether the median count fits the session; null without a session.</summary>
     public bool? FitsSession { get; init; }
 
+    /// <summary>Counts at the ends of a stated range of the moment; null where one number is stated.</summary>
+    public CountRange? AtMoments { get; init; }
+
+    /// <summary>Probability that the session misses a source of the stated strength, everything else as stated, for the median dipole and direction; null for rules without power or without a session.</summary>
+    public double? Missing { get; init; }
+
     /// <summary>Mean power over what is not known, as a fraction; null without unknowns.</summary>
     public double? Assurance { get; init; }
 
@@ -32,3 +38,8 @@ public sealed record VerdictResult
     /// <summary>The chain for the dipole at the median: what `why` prints.</summary>
     public IReadOnlyList<DerivedNumber> Chain { get; init; } = [];
 }
+
+/// <summary>Trials of the median dipole at both ends of a range of the moment.</summary>
+/// <param name="Low">At the low moment; null where out of reach.</param>
+/// <param name="High">At the high moment; null where out of reach.</param>
+public sealed record CountRange(long? Low, long? High);

@@ -83,6 +83,15 @@ public sealed record VectorShape(int Count, NumberShape Each) : KeyShape
     public override string Allowed(string unit) => $"{Count} numbers [x, y, z], each from {Text(Each.Low)} to {Text(Each.High)}{With(unit)}";
 }
 
+/// <summary>A list of numbers whose length another key sets.</summary>
+/// <param name="What">What each of them is: `the share of a region`.</param>
+/// <param name="Each">Range of each.</param>
+public sealed record NumberListShape(string What, NumberShape Each) : KeyShape
+{
+    /// <inheritdoc/>
+    public override string Allowed(string unit) => $"a list of numbers, each {What}, from {Text(Each.Low)} to {Text(Each.High)}{With(unit)}";
+}
+
 /// <summary>A band [low, high] with low below high.</summary>
 /// <param name="Each">Range of each edge.</param>
 public sealed record BandShape(NumberShape Each) : KeyShape

@@ -12,14 +12,32 @@ public sealed record NoiseChoice
     /// <summary>Planar gradiometers [T/m/sqrt(Hz)].</summary>
     public double? MegPlanarDensity { get; init; }
 
+    /// <summary>Frequency below which the amplifiers' noise rises [Hz]; 0 for white.</summary>
+    public double EegCorner { get; init; }
+
+    /// <summary>Frequency below which the MEG sensors' noise rises [Hz]; 0 for white.</summary>
+    public double MegCorner { get; init; }
+
     /// <summary>Everything that is in one EEG trial.</summary>
     public EegTotalChoice? EegTotal { get; init; }
 
-    /// <summary>True: default brain tables; false: none; null: not stated (on when <see cref="EegTotal"/> is given, else off).</summary>
+    /// <summary>True: brain noise; false: none; null: not stated (on when <see cref="EegTotal"/> is given, else off).</summary>
     public bool? Brain { get; init; }
 
     /// <summary>Standard deviation, without unit, of ln s from trial to trial, s the rms of one trial; null: not stated.</summary>
     public double? SpreadBetweenTrials { get; init; }
+
+    /// <summary>File of the study's own table of the brain in EEG, relative to the study; null for the default table.</summary>
+    public string? BrainEegTable { get; init; }
+
+    /// <summary>File of the study's own table of the brain in MEG, likewise.</summary>
+    public string? BrainMegTable { get; init; }
+
+    /// <summary>Factor of the brain's amplitude densities, EEG and MEG alike.</summary>
+    public double BrainScale { get; init; } = 1;
+
+    /// <summary>Magnetic noise of the room; null for none.</summary>
+    public EnvironmentChoice? Environment { get; init; }
 
     /// <summary>Flat figure per trial, every electrode alike [V].</summary>
     public double? EegRms { get; init; }
@@ -39,6 +57,12 @@ public sealed record NoiseChoice
 /// <param name="Derivation">Name of the derivation.</param>
 /// <param name="Band">Band [Hz].</param>
 public sealed record EegTotalChoice(double Rms, string Derivation, Band Band);
+
+/// <summary>Magnetic noise of the room.</summary>
+/// <param name="Density">Density of each homogeneous field well above the corner [T/sqrt(Hz)].</param>
+/// <param name="Corner">Frequency below which it rises [Hz]; 0 for white.</param>
+/// <param name="Removed">Whether the room's spatial terms are projected out of signal and noise.</param>
+public sealed record EnvironmentChoice(double Density, double Corner, bool Removed);
 
 /// <summary>A covariance file.</summary>
 /// <param name="File">Path relative to the study.</param>

@@ -15,8 +15,23 @@ public sealed record Response
     /// <summary>True: the regions act at once and share the moment.</summary>
     public bool Together { get; init; }
 
-    /// <summary>Moment [A m], in the convention of <see cref="Measured"/>.</summary>
+    /// <summary>Moment [A m], in the convention of <see cref="Measured"/>; 1 nAm until it is found where <see cref="Amplitude"/> is stated.</summary>
     public required double Moment { get; init; }
+
+    /// <summary>5 and 95 % points of the moment [A m] about <see cref="Moment"/>, its median; null where one number is stated.</summary>
+    public MomentRange? MomentRange { get; init; }
+
+    /// <summary>What is known at the scalp instead of a moment, or null.</summary>
+    public AmplitudeChoice? Amplitude { get; init; }
+
+    /// <summary>What the moment was computed from, or null.</summary>
+    public DensityChoice? Density { get; init; }
+
+    /// <summary>Signed weight of each region in the moment where regions act together; their absolute values sum to 1. Empty: equal.</summary>
+    public IReadOnlyList<double> Shares { get; init; } = [];
+
+    /// <summary>Lag of each region [s] where regions act together; empty: none.</summary>
+    public IReadOnlyList<double> Lags { get; init; } = [];
 
     /// <summary>Amplitude convention.</summary>
     public Measured Measured { get; init; }
@@ -44,6 +59,26 @@ public sealed record Response
 
     /// <summary>MEG measure of the verdict as stated, or null.</summary>
     public string? MegMeasure { get; init; }
+}
+
+/// <summary>Range of a moment.</summary>
+/// <param name="Low">5 % point [A m].</param>
+/// <param name="High">95 % point [A m].</param>
+public sealed record MomentRange(double Low, double High);
+
+/// <summary>An amplitude at the scalp.</summary>
+/// <param name="Peak">Peak [V], in the convention of the response.</param>
+/// <param name="Derivation">Where it was read.</param>
+public sealed record AmplitudeChoice(double Peak, string Derivation);
+
+/// <summary>A sheet of dipoles.</summary>
+/// <param name="MomentDensity">Moment per area [A m/m^2].</param>
+/// <param name="Area">Active area [m^2].</param>
+/// <param name="OpenField">Share that does not cancel, 0 to 1.</param>
+public sealed record DensityChoice(double MomentDensity, double Area, double OpenField)
+{
+    /// <summary>Net moment [A m].</summary>
+    public double Moment => MomentDensity * Area * OpenField;
 }
 
 /// <summary>Convention in which amplitudes are stated and read.</summary>

@@ -48,6 +48,9 @@ public sealed record Study
     /// <summary>Protocol, or null.</summary>
     public Protocol? Protocol { get; init; }
 
+    /// <summary>What is not known, or null.</summary>
+    public UnknownsChoice? Unknowns { get; init; }
+
     /// <summary>Keys whose implausible values the study accepts.</summary>
     public IReadOnlyList<string> AcceptImplausible { get; init; } = [];
 }

@@ -2,8 +2,7 @@ namespace DeepSourceCheck.Core.Studies;
 
 public static partial class StudyKeys
 {
-    private const string CornersNotYet = "state the density in the response's band without a corner";
-    private const string EnvironmentNotYet = "only `none` is acted on; put the room's share into the sensor's density or into a measured covariance";
+    private const string WhiteUnlessStated = "white unless a corner is stated";
 
     private static StudyKey[] Noise() =>
     [
@@ -23,17 +22,15 @@ public static partial class StudyKeys
             Typical = new(2, 100),
             Defaults = Default(20.0, "data sheets of ordinary 24-bit amplifiers, 20-60 nV/sqrt(Hz)", Grade.Memory),
         },
-        new("noise.eeg_corner_Hz", "Frequency below which the amplifier's noise rises.", From0(1e6))
+        new("noise.eeg_corner_Hz", "Frequency below which the amplifier's noise rises: its power density is that of the white part times 1 + corner/f.", From0(1e6))
         {
             Unit = "Hz",
             Example = "1",
-            NotYet = CornersNotYet,
         },
-        new("noise.meg_corner_Hz", "Frequency below which the MEG sensors' noise rises.", From0(1e6))
+        new("noise.meg_corner_Hz", "Frequency below which the MEG sensors' noise rises: their power density is that of the white part times 1 + corner/f.", From0(1e6))
         {
             Unit = "Hz",
             Example = "1",
-            NotYet = CornersNotYet,
         },
         new("noise.meg_sensor_fT_per_rtHz", "Noise of each magnetometer or axial gradiometer, as an amplitude density.", Above0(1e6))
         {
@@ -69,12 +66,10 @@ public static partial class StudyKeys
             Required = true,
             Example = "[100, 3000]",
         },
-        new("noise.brain", "Background activity of the brain from the default tables; on when stated or when eeg_total is given, else off.",
-            Choice("default", "none"))
+        new("noise.brain", "Background activity of the brain, from the default tables or your own; on when stated or when eeg_total is given, else off.",
+            Choice("default", "none"), new MapShape())
         {
             Example = "default",
-            ShapesNotYet = [new MapShape()],
-            InsteadOfShape = "tables of the user's own are not acted on; write brain: default or brain: none, or give measured covariances",
             Defaults =
             [
                 new("default",
@@ -83,33 +78,46 @@ public static partial class StudyKeys
                 new("none", "off where neither it nor eeg_total is stated", Grade.Derived),
             ],
         },
-        new("noise.brain.eeg_table", "Table of the brain's share in the EEG.", new FileShape("a CSV table"))
+        new("noise.brain.eeg_table", "Your own table of the brain's share at Cz against linked mastoids: columns frequency_Hz and density_uV_per_rtHz; without it the default table.",
+            new FileShape("a CSV table"))
         {
-            Example = "f.csv",
-            NotYet = "write brain: default or brain: none",
+            Example = "brain-eeg.csv",
         },
-        new("noise.brain.meg_table", "Table of the brain's share in the MEG.", new FileShape("a CSV table"))
+        new("noise.brain.meg_table", "Your own table of the brain's share, rms over magnetometers 20 mm from the scalp: columns frequency_Hz and density_fT_per_rtHz; without it the default table.",
+            new FileShape("a CSV table"))
         {
-            Example = "f.csv",
-            NotYet = "write brain: default or brain: none",
+            Example = "brain-meg.csv",
         },
-        new("noise.environment", "Magnetic noise of the room.", Choice("none"))
+        new("noise.brain.scale", "Factor of the brain's amplitude densities in EEG and MEG alike: below 1 for brains that are quieter than the tables.",
+            new NumberShape(0, 100, AboveLow: true))
+        {
+            Example = "0.7",
+            Typical = new(0.3, 3),
+            Defaults = Default(1.0, "the tables as they stand unless stated", Grade.Derived),
+        },
+        new("noise.environment", "Magnetic noise of the room: three homogeneous fields and five gradients.", Choice("none"), new MapShape())
         {
             Example = "none",
-            ShapesNotYet = [new MapShape()],
-            InsteadOfShape = EnvironmentNotYet,
             Defaults = Default("none", "no room noise beside the sensors' unless stated", Grade.Derived),
         },
-        new("noise.environment.meg_fT_per_rtHz", "Density of the room's noise.", Above0(1e6))
+        new("noise.environment.meg_fT_per_rtHz",
+            "Amplitude density that a magnetometer in the middle of the array reads, along every axis; the gradients carry a quarter of it over the array's radius.", Above0(1e6))
         {
             Unit = "fT/sqrt(Hz)",
+            Required = true,
             Example = "3",
-            NotYet = EnvironmentNotYet,
+            Typical = new(0.3, 30),
         },
-        new("noise.environment.removed", "Whether the room's spatial terms are projected out.", new FlagShape())
+        new("noise.environment.corner_Hz", "Frequency below which the room's noise rises: its power density is that of the white part times 1 + corner/f.", From0(1e6))
+        {
+            Unit = "Hz",
+            Example = "5",
+            Defaults = Default(0.0, WhiteUnlessStated + "; " + CommonPractice, Grade.Memory),
+        },
+        new("noise.environment.removed", "Whether the room's spatial terms are projected out of signal and noise.", new FlagShape())
         {
             Example = "false",
-            NotYet = EnvironmentNotYet,
+            Defaults = Default("false", "left in unless stated", Grade.Derived),
         },
         new("noise.eeg_sensor_uV_rms", "Flat figure for one trial in the response's band, every electrode alike, nothing else added.",
             Above0(1e6))

@@ -3,7 +3,6 @@ namespace DeepSourceCheck.Core.Studies;
 public static partial class StudyKeys
 {
     private const string PeopleNotYet = "the plan is for one person; remove the key";
-    private const string UnknownsNotYet = "the study is computed at its stated values; remove the key";
 
     private static StudyKey[] Planning() =>
     [
@@ -124,22 +123,24 @@ public static partial class StudyKeys
 
     private static StudyKey[] Unknowns() =>
     [
-        new("unknowns", "How far each input may be off.", new MapShape()) { Example = "{head_shift_mm: 5}", NotYet = UnknownsNotYet },
-        .. Spread("skull_conductivity_ratio", "Innermost conductivity over the skull's.", "15", "25", "80"),
-        .. Spread("noise_factor", "Factor on every noise amplitude.", "0.7", "1", "1.5"),
+        new("unknowns", "How far each input may be off.", new MapShape()) { Example = "{head_shift_mm: 5}" },
+        .. Spread("skull_conductivity_ratio", "Innermost conductivity over the skull's, of spheres.", "The median, which replaces the head's own ratio.", "15", "25", "80"),
+        .. Spread("noise_factor", "Factor on every noise amplitude, EEG and MEG alike.", "The median of the factor in the draws; figures without unknowns stand at the stated noise.", "0.7", "1", "1.5"),
         new("unknowns.head_shift_mm", "Standard deviation of the head's place in the array, each axis.", From0(1000))
         {
             Unit = "mm",
             Example = "5",
-            NotYet = UnknownsNotYet,
         },
         new("unknowns.centre_shift_mm", "Standard deviation of the sphere's centre, each axis.", From0(1000))
         {
             Unit = "mm",
             Example = "5",
-            NotYet = UnknownsNotYet,
         },
-        new("unknowns.samples", "Draws over the unknowns.", Count(1, 1e6)) { Example = "256", NotYet = UnknownsNotYet },
+        new("unknowns.samples", "Draws over the unknowns.", Count(16, 65_536))
+        {
+            Example = "256",
+            Defaults = Default(256.0, "measured against 16,384 draws: median of trials within 3 %, 5 and 95 % points within 15 %, assurance within 1 %", Grade.Derived),
+        },
         new("variants", "Studies that override keys of this one.", new ListShape("a variant {name, and the keys that it overrides}"))
         {
             Example = "[{name: three layers, head: {spheres: {preset: adult-3}}}]",
@@ -147,7 +148,7 @@ public static partial class StudyKeys
         new("variants[].name", "Name of the variant.", new TextShape("a name")) { Required = true, Example = "three layers" },
     ];
 
-    private static StudyKey[] Spread(string name, string description, string low, string typical, string high)
+    private static StudyKey[] Spread(string name, string description, string median, string low, string typical, string high)
     {
         string key = "unknowns." + name;
         return
@@ -155,11 +156,10 @@ public static partial class StudyKeys
             new(key, description, new MapShape())
             {
                 Example = $"{{low: {low}, typical: {typical}, high: {high}}}",
-                NotYet = UnknownsNotYet,
-            },
-            new(key + ".low", "The 5 % point.", Above0(1e6)) { Example = low, NotYet = UnknownsNotYet },
-            new(key + ".typical", "The median.", Above0(1e6)) { Example = typical, NotYet = UnknownsNotYet },
-            new(key + ".high", "The 95 % point.", Above0(1e6)) { Example = high, NotYet = UnknownsNotYet },
+                },
+            new(key + ".low", "The 5 % point.", Above0(1e6)) { Example = low, Required = true },
+            new(key + ".typical", median, Above0(1e6)) { Example = typical, Required = true },
+            new(key + ".high", "The 95 % point.", Above0(1e6)) { Example = high, Required = true },
         ];
     }
 }

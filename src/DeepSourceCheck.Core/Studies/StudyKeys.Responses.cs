@@ -3,8 +3,6 @@ namespace DeepSourceCheck.Core.Studies;
 public static partial class StudyKeys
 {
     private const string SteadyNotYet = "only kind: transient is acted on; plan a steady-state response as a transient one with its band";
-    private const string RangeNotYet = "ranges are not acted on; write one number, the typical moment";
-    private const string AmplitudeNotYet = "state moment_nAm instead";
     private const string CompetitorsNotYet = "other sources are not acted on; remove the key";
 
     private static StudyKey[] Regions() =>
@@ -82,64 +80,79 @@ public static partial class StudyKeys
             Example = "each",
             Defaults = Default("each", "each region on its own unless stated", Grade.Derived),
         },
-        new("responses[].moment_nAm", "Dipole moment in the convention of `measured`.", Above0(1e6))
+        new("responses[].shares", "Signed share of each region in the moment, in the order of `regions`, for regions that act together; only their ratios count.",
+            new NumberListShape("the share of a region, negative for opposite sign", new NumberShape(-1e6, 1e6)))
+        {
+            Example = "[1, -0.5]",
+        },
+        new("responses[].lags_ms", "Latency of each region against the first, in the order of `regions`, for regions that act together; needs component_Hz.",
+            new NumberListShape("the lag of a region", new NumberShape(-1e4, 1e4)))
+        {
+            Unit = "ms",
+            Example = "[0, 0.6]",
+        },
+        new("responses[].moment_nAm", "Dipole moment in the convention of `measured`; as {low, typical, high} the figures stand on the typical one.",
+            Above0(1e6), new MapShape())
         {
             Unit = "nAm",
             Example = "3.5",
             Typical = new(0.05, 300),
-            ShapesNotYet = [new MapShape()],
-            InsteadOfShape = RangeNotYet,
         },
         new("responses[].moment_nAm.low", "The 5 % point of the moment.", Above0(1e6))
         {
             Unit = "nAm",
+            Required = true,
+            Typical = new(0.05, 300),
             Example = "3",
-            NotYet = RangeNotYet,
         },
         new("responses[].moment_nAm.typical", "The median of the moment.", Above0(1e6))
         {
             Unit = "nAm",
+            Required = true,
+            Typical = new(0.05, 300),
             Example = "5",
-            NotYet = RangeNotYet,
         },
         new("responses[].moment_nAm.high", "The 95 % point of the moment.", Above0(1e6))
         {
             Unit = "nAm",
+            Required = true,
+            Typical = new(0.05, 300),
             Example = "9",
-            NotYet = RangeNotYet,
         },
-        new("responses[].amplitude", "A known scalp amplitude instead of a moment.", new MapShape())
+        new("responses[].amplitude",
+            "What is known at the scalp instead of a moment: the moment of each region is found through the leadfield, so that the median over its dipoles and the verdict's directions reads this peak.",
+            new MapShape())
         {
             Example = "{peak_uV: 0.45, derivation: Cz-mastoids}",
-            NotYet = AmplitudeNotYet,
         },
         new("responses[].amplitude.peak_uV", "Peak of the response in the derivation.", Above0(1e6))
         {
             Unit = "uV",
+            Required = true,
             Example = "0.45",
-            NotYet = AmplitudeNotYet,
+            Typical = new(0.01, 150),
         },
         new("responses[].amplitude.derivation", "Derivation of the peak.", new TextShape("a difference such as Cz-mastoids", 120))
         {
+            Required = true,
             Example = "Cz-mastoids",
-            NotYet = AmplitudeNotYet,
         },
-        new("responses[].density", "A moment density over an area instead of a moment.", new MapShape())
+        new("responses[].density", "A moment density over an active area instead of a moment: moment = density x area x open field.", new MapShape())
         {
             Example = "{nAm_per_mm2: 0.5, area_mm2: 300, open_field: 0.4}",
-            NotYet = AmplitudeNotYet,
         },
         new("responses[].density.nAm_per_mm2", "Moment density.", Above0(1e3))
         {
             Unit = "nAm/mm2",
+            Required = true,
             Example = "0.5",
-            NotYet = AmplitudeNotYet,
+            Typical = new(0.1, 2),
         },
-        new("responses[].density.area_mm2", "Active area.", Above0(1e6)) { Unit = "mm2", Example = "300", NotYet = AmplitudeNotYet },
-        new("responses[].density.open_field", "Share that does not cancel.", new NumberShape(0, 1, AboveLow: true))
+        new("responses[].density.area_mm2", "Active area.", Above0(1e6)) { Unit = "mm2", Required = true, Example = "300" },
+        new("responses[].density.open_field", "Share of the moments that does not cancel: |sum of vectors| over sum of lengths.", new NumberShape(0, 1, AboveLow: true))
         {
             Example = "0.4",
-            NotYet = AmplitudeNotYet,
+            Defaults = Default(1.0, "a flat, fully open sheet unless stated: an upper bound, folds cancel", Grade.Derived),
         },
         new("responses[].measured", "Convention of the moment and of every amplitude.", Choice("baseline-to-peak", "peak-to-trough"))
         {

@@ -13,6 +13,7 @@ public sealed class RegionLibrary
     private readonly Dictionary<string, string> _resources;
     private readonly Dictionary<string, IReadOnlyList<LibraryRegion>> _read = new(StringComparer.Ordinal);
     private readonly string[] _names;
+    private readonly Lazy<RealisticHeadTable> _realistic = new(RealisticHeadTable.Load);
 
     private RegionLibrary(Dictionary<string, string> resources, string[] names) => (_resources, _names) = (resources, names);
 
@@ -56,7 +57,8 @@ public sealed class RegionLibrary
             if (!_read.TryGetValue(resource, out IReadOnlyList<LibraryRegion>? regions))
             {
                 using StringReader text = new(Text(resource));
-                _read[resource] = regions = LibraryRegionReader.Read(resource, text);
+                _read[resource] = regions =
+                    [.. LibraryRegionReader.Read(resource, text).Select(r => r with { RealisticHead = _realistic.Value.Find(r.Name, r.Structure, r.Side) })];
             }
 
             foreach (LibraryRegion region in regions)

@@ -54,6 +54,12 @@ internal static class AcceptBinder
         IReadOnlyList<Section> entries = root.Entries(list);
         for (int k = 0; k < entries.Count; k++)
         {
+            // A moment that is found from an amplitude or a density is judged under the key that it stands in for.
+            if (entries[k].States("amplitude") || entries[k].States("density"))
+            {
+                keys.TryAdd(entries[k].KeyOf("moment_nAm"), entries[k].KeyOf("moment_nAm"));
+            }
+
             AddBelow(entries[k].Key, $"{list}[{k}]", keys);
         }
     }

@@ -27,13 +27,19 @@ internal static class NoiseBinder
             "state meg_sensor_fT_per_rtHz (usually 0.2 to 50), meg_sensor_fT_rms or meg_covariance", reading);
         CheckPlanar(noise, sensors, meg, reading);
         bool? brain = Brain(noise, sensors, eeg, meg);
-        noise.Text("environment");
+        (string? eegTable, string? megTable, double scale) = BrainTables(noise, eeg, meg);
         var choice = new NoiseChoice
         {
             EegTotal = eeg == "spectral" ? EegTotal(noise) : null,
             EegDensity = eeg == "spectral" ? Scaled(noise.Number("eeg_sensor_nV_per_rtHz"), Si.FromNanovolts) : null,
             MegDensity = meg == "spectral" ? Scaled(noise.Number("meg_sensor_fT_per_rtHz"), Si.FromFemtotesla) : null,
             MegPlanarDensity = meg == "spectral" ? Scaled(noise.Number("meg_planar_fT_per_cm_rtHz"), Si.FromFemtoteslaPerCm) : null,
+            EegCorner = Corner(noise, "eeg", eeg),
+            MegCorner = Corner(noise, "meg", meg),
+            BrainEegTable = eegTable,
+            BrainMegTable = megTable,
+            BrainScale = scale,
+            Environment = Environment(noise, sensors, meg),
             EegRms = eeg == "flat" ? Scaled(noise.Number("eeg_sensor_uV_rms"), Si.FromMicrovolts) : null,
             MegRms = meg == "flat" ? Scaled(noise.Number("meg_sensor_fT_rms"), Si.FromFemtotesla) : null,
             EegCovariance = eeg == "measured" ? Covariance(noise, "eeg_covariance") : null,
@@ -143,11 +149,11 @@ internal static class NoiseBinder
             return null;
         }
 
-        bool on = noise.Text("brain") == "default";
+        bool on = noise.Raw("brain") is PlacedMap || noise.Text("brain") == "default";
         if (on && sensors.Imported)
         {
             noise.Problem("brain",
-                "the default tables need a head whose cortex is known; with head.leadfields write brain: none, or give measured covariances");
+                "the brain's tables need a head whose cortex is known; with head.leadfields write brain: none, or give measured covariances");
         }
         else if (on && !spectral && (eeg ?? meg) is not null)
         {
@@ -156,6 +162,80 @@ internal static class NoiseBinder
         }
 
         return noise.Raw("brain") is null ? null : on;
+    }
+
+    // Tables and factor of `brain: {...}`; a table without its modality's spectrum has no effect.
+    private static (string? Eeg, string? Meg, double Scale) BrainTables(Section noise, string? eeg, string? meg)
+    {
+        if (noise.Map("brain") is not { } brain)
+        {
+            return (null, null, 1);
+        }
+
+        string? Table(string modality, string? kind)
+        {
+            string name = $"{modality}_table";
+            if (kind == "spectral")
+            {
+                return brain.Text(name);
+            }
+
+            brain.WithoutEffect(name, kind is null ? $"the study states no {modality.ToUpperInvariant()} densities" : $"the {modality.ToUpperInvariant()} noise is stated per trial");
+            return null;
+        }
+
+        if (!brain.States("eeg_table") && !brain.States("meg_table") && !brain.States("scale"))
+        {
+            brain.Problem("holds no key; state eeg_table, meg_table or scale, or write brain: default");
+        }
+
+        return (Table("eeg", eeg), Table("meg", meg), brain.Number("scale") ?? 1);
+    }
+
+    private static double Corner(Section noise, string modality, string? kind)
+    {
+        string name = $"{modality}_corner_Hz";
+        if (!noise.States(name))
+        {
+            return 0;
+        }
+
+        if (kind != "spectral")
+        {
+            noise.WithoutEffect(name, kind is null ? $"the study states no {modality.ToUpperInvariant()} densities" : $"the {modality.ToUpperInvariant()} noise is stated per trial, whatever its spectrum");
+            return 0;
+        }
+
+        return noise.Number(name) ?? 0;
+    }
+
+    private static EnvironmentChoice? Environment(Section noise, BoundSensors sensors, string? meg)
+    {
+        if (noise.Map("environment") is not { } room)
+        {
+            noise.Text("environment");
+            return null;
+        }
+
+        if (!sensors.HasMeg)
+        {
+            noise.WithoutEffect("environment", "the study has no MEG sensors");
+            return null;
+        }
+
+        double? density = room.Number("meg_fT_per_rtHz");
+        double corner = room.Number("corner_Hz") ?? 0;
+        bool removed = room.Text("removed") == "true";
+        if (sensors.Imported)
+        {
+            noise.Problem("environment", "needs to know where every coil lies and points, which imported leadfields do not tell; write environment: none and put the room's share into meg_covariance");
+        }
+        else if (meg is "flat" or "measured")
+        {
+            noise.Problem("environment", $"stands beside {(meg == "flat" ? "meg_sensor_fT_rms" : "meg_covariance")}, which is all of the MEG noise, the room's included; write environment: none or state densities");
+        }
+
+        return density is { } d ? new(Si.FromFemtotesla(d), corner, removed) : null;
     }
 
     private static EegTotalChoice? EegTotal(Section noise)

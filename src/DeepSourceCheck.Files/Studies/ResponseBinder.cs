@@ -52,14 +52,9 @@ internal static class ResponseBinder
     private static Response? Bind(Section entry, HashSet<string> own, BoundSensors sensors, Reading reading)
     {
         entry.Text("kind");
-        if (!entry.States("moment_nAm") && !entry.States("amplitude") && !entry.States("density"))
-        {
-            entry.Problem("moment_nAm", "is missing; state the dipole moment, a number in nAm, usually 0.05 to 300");
-        }
-
         string? name = entry.Text("name"), counts = entry.Text("counts"), measured = entry.Text("measured");
         List<string> regions = Regions(entry, own, sensors, reading);
-        double? moment = entry.Number("moment_nAm");
+        BoundStrength? strength = StrengthBinder.Bind(entry, sensors);
         Band? band = entry.Band("band_Hz");
         DirectionChoice? direction = Direction(entry);
         double? component = entry.Number("component_Hz");
@@ -68,6 +63,7 @@ internal static class ResponseBinder
             entry.Problem("component_Hz", $"{KeyShape.Text(f)} Hz lies outside the response's band of {Text(b)}; move it inside, or widen band_Hz");
         }
 
+        (IReadOnlyList<double> shares, IReadOnlyList<double> lags) = StrengthBinder.Together(entry, counts == "together", component);
         CheckPassed(entry, band, sensors);
         double? window = entry.Number("window_ms");
         Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
@@ -75,13 +71,18 @@ internal static class ResponseBinder
         double artefactEeg = Artefact(artefact, "eeg_uV", sensors.HasEeg, "the study has no electrodes");
         double artefactMeg = Artefact(artefact, "meg_fT", sensors.HasMeg, "the study has no MEG sensors");
         string? eegMeasure = EegMeasure(measure, sensors), megMeasure = MegMeasure(measure, sensors);
-        return name is null || moment is null || band is null || direction is null || regions.Count == 0 ? null : new()
+        return name is null || strength is null || band is null || direction is null || regions.Count == 0 ? null : new()
         {
             Name = name,
             Key = entry.Key,
             Regions = regions,
             Together = counts == "together",
-            Moment = Si.FromNanoAmpereMetres(moment.Value),
+            Moment = strength.Moment,
+            MomentRange = strength.Range,
+            Amplitude = strength.Amplitude,
+            Density = strength.Density,
+            Shares = shares,
+            Lags = lags,
             Measured = measured == "peak-to-trough" ? Measured.PeakToTrough : Measured.BaselineToPeak,
             Band = band.Value,
             Direction = direction,

@@ -28,6 +28,9 @@ internal sealed class Section(Reading reading, PlacedMap map, string path)
 
     public Vec3? Vector(string name) => Take(name, "") is double[] v ? new Vec3(v[0], v[1], v[2]) : null;
 
+    /// <summary>A list of numbers, in the key's unit; null where it is not stated.</summary>
+    public IReadOnlyList<double>? Numbers(string name) => Take(name, "") as double[];
+
     /// <summary>A place or length in mm, as metres.</summary>
     public Vec3? Millimetres(string name) => Vector(name) is { } v ? new Vec3(Si.FromMm(v.X), Si.FromMm(v.Y), Si.FromMm(v.Z)) : null;
 

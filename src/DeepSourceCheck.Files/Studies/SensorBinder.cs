@@ -52,7 +52,7 @@ internal static class SensorBinder
         return bound with
         {
             Eeg = imported ? ImportedEeg(sensors, hasEeg, hasMeg) : hasEeg ? Eeg(sensors) : null,
-            Derivations = Derivations(sensors, hasEeg),
+            Derivations = [.. Derivations(sensors, hasEeg).Concat(Named(root, hasEeg)).Distinct()],
             Meg = imported ? ImportedMeg(sensors, hasMeg) : Meg(sensors, hasMeg),
             EegBandwidth = Bandwidth(sensors, "eeg", hasEeg, NoEeg),
             MegBandwidth = Bandwidth(sensors, "meg", hasMeg, NoMeg),
@@ -147,6 +147,10 @@ internal static class SensorBinder
 
         return names;
     }
+
+    // An amplitude is read in its derivation whether or not that is listed.
+    private static IEnumerable<string> Named(Section root, bool hasEeg) => !hasEeg ? [] : root.Entries("responses")
+        .Select(r => (r.Map("amplitude")?.Raw("derivation") as PlacedText)?.Text).OfType<string>().Where(d => WhyNoDerivation(d) is null);
 
     /// <summary>Null for a difference of two electrodes, else what is wrong.</summary>
     public static string? WhyNoDerivation(string name)

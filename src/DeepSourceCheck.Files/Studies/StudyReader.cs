@@ -79,6 +79,7 @@ public static class StudyReader
         IReadOnlyList<Response> responses = ResponseBinder.Bind(root, sensors, reading);
         IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root, sensors.HasEeg || !sensors.HasMeg);
         Protocol? protocol = PlanBinder.Protocol(root);
+        (UnknownsChoice? unknowns, head) = UnknownsBinder.Bind(root, head, responses, sensors, protocol, reading);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
         PlanBinder.CheckRate(responses, protocol, reading);
         JudgeNumbers(placed, reading);
@@ -99,6 +100,7 @@ public static class StudyReader
             Responses = responses,
             Targets = targets,
             Protocol = protocol,
+            Unknowns = unknowns,
             AcceptImplausible = reading.Accepted,
         };
     }

@@ -87,6 +87,8 @@ internal sealed class StudyWalk(Reading reading)
                     YamlNumber.Parse(scalar, out reason);
                     reason = ": " + reason;
                     break;
+                case FlagShape when scalar.Text is "true" or "false":
+                    return new PlacedText(spec, key, scalar.Line, scalar.Column, scalar.Text, isWord: true);
                 case TextShape text when TextFault(scalar.Text, text.LongestLength) is { } fault:
                     return Fault(scalar, key, $"{Shown.Quoted(scalar.Text)} {fault}; it must be {spec.Allowed}");
                 case TextShape:
@@ -95,7 +97,7 @@ internal sealed class StudyWalk(Reading reading)
                     return Fault(scalar, key, $"{Shown.Quoted(scalar.Text)} {fault}; it must be {spec.Allowed}");
                 case FileShape:
                     return File(spec, key, scalar);
-                case TextListShape or VectorShape or BandShape:
+                case TextListShape or VectorShape or BandShape or NumberListShape:
                     reason = spec.Shapes.Length == 1 ? $"; a list stands in brackets: [{Shown.Text(scalar.Text)}]" : reason;
                     break;
             }
@@ -127,6 +129,8 @@ internal sealed class StudyWalk(Reading reading)
             {
                 case VectorShape vector:
                     return Numbers(spec, key, list, vector.Count, vector.Each);
+                case NumberListShape numbers:
+                    return Numbers(spec, key, list, Math.Max(list.Items.Count, 1), numbers.Each);
                 case BandShape band:
                     if (Numbers(spec, key, list, 2, band.Each) is not { Values: [var low, var high] } edges)
                     {

@@ -4,7 +4,7 @@ using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Files.Tables;
 
-/// <summary>A table of tab-separated values: UTF-8 with or without byte order mark, LF or CRLF, one header row, columns by name in any order, blank lines ignored.</summary>
+/// <summary>A table of values separated by tabs, or by commas where asked: UTF-8 with or without byte order mark, LF or CRLF, one header row, columns by name in any order, blank lines ignored.</summary>
 internal sealed class TsvTable
 {
     /// <summary>Largest file that is read [bytes].</summary>
@@ -15,9 +15,10 @@ internal sealed class TsvTable
     private readonly List<(string Name, int At)> _asked = [];
 
     private readonly string _text;
+    private readonly char _separator;
 
-    private TsvTable(string text, Dictionary<string, int> columns, List<TsvRow> rows, ProblemList problems) =>
-        (_text, _columns, Rows, Problems) = (text, columns, rows, problems);
+    private TsvTable(string text, char separator, Dictionary<string, int> columns, List<TsvRow> rows, ProblemList problems) =>
+        (_text, _separator, _columns, Rows, Problems) = (text, separator, columns, rows, problems);
 
     /// <summary>Data rows, in order.</summary>
     public IReadOnlyList<TsvRow> Rows { get; }
@@ -37,7 +38,10 @@ internal sealed class TsvTable
         Of(InputFileAccess.ReadAll(path, displayName, LargestFile), displayName, required);
 
     /// <summary>The table of a file that was read; otherwise as <see cref="Read"/>.</summary>
-    public static TsvTable Of(byte[] bytes, string displayName, params string[] required)
+    public static TsvTable Of(byte[] bytes, string displayName, params string[] required) => Of(bytes, displayName, '\t', required);
+
+    /// <summary>The table of a file whose cells stand between tabs or commas, without quotes; otherwise as <see cref="Read"/>.</summary>
+    public static TsvTable Of(byte[] bytes, string displayName, char separator, string[] required)
     {
         string text = Utf8Text.Decode(bytes, displayName);
         ProblemList problems = new(displayName);
@@ -54,15 +58,15 @@ internal sealed class TsvTable
 
             if (columns is null)
             {
-                columns = Header(line.ToString().Split('\t', StringSplitOptions.TrimEntries), number, required, problems);
+                columns = Header(line.ToString().Split(separator, StringSplitOptions.TrimEntries), number, separator, required, problems);
                 problems.ThrowIfAny();
                 continue;
             }
 
-            int cells = line.Count('\t') + 1;
+            int cells = line.Count(separator) + 1;
             if (cells != columns.Count)
             {
-                problems.Add(number, null, $"the row has {cells} cells and the header {columns.Count}; separate cells by single tabs");
+                problems.Add(number, null, $"the row has {cells} cells and the header {columns.Count}; separate cells by single {Called(separator)}{(separator == ',' ? " and write decimal points" : "")}");
             }
             else
             {
@@ -80,7 +84,7 @@ internal sealed class TsvTable
             problems.ThrowIfAny();
         }
 
-        return new(text, columns!, rows, problems);
+        return new(text, separator, columns!, rows, problems);
     }
 
     /// <summary>A cell's text; empty where the table lacks the column.</summary>
@@ -150,10 +154,10 @@ internal sealed class TsvTable
         ReadOnlySpan<char> rest = _text.AsSpan(row.Start, row.Length);
         for (; at > 0; at--)
         {
-            rest = rest[(rest.IndexOf('\t') + 1)..];
+            rest = rest[(rest.IndexOf(_separator) + 1)..];
         }
 
-        int end = rest.IndexOf('\t');
+        int end = rest.IndexOf(_separator);
         return (end < 0 ? rest : rest[..end]).Trim();
     }
 
@@ -177,13 +181,15 @@ internal sealed class TsvTable
         return found;
     }
 
+    private static string Called(char separator) => separator == ',' ? "commas" : "tabs";
+
     private static int StartOf(string text, ReadOnlySpan<char> line)
     {
         text.AsSpan().Overlaps(line, out int start);
         return start;
     }
 
-    private static Dictionary<string, int> Header(string[] cells, int line, string[] required, ProblemList problems)
+    private static Dictionary<string, int> Header(string[] cells, int line, char separator, string[] required, ProblemList problems)
     {
         Dictionary<string, int> columns = new(StringComparer.Ordinal);
         for (int k = 0; k < cells.Length; k++)
@@ -197,7 +203,7 @@ internal sealed class TsvTable
         foreach (string column in required.Where(c => !columns.ContainsKey(c)))
         {
             string found = Shown.Text(string.Join(", ", cells));
-            problems.Add(line, column, $"the column is missing; the header has: {found}{(cells.Length == 1 ? " (columns are separated by tabs)" : "")}");
+            problems.Add(line, column, $"the column is missing; the header has: {found}{(cells.Length == 1 ? $" (columns are separated by {Called(separator)})" : "")}");
         }
 
         return columns;

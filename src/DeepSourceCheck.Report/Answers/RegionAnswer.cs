@@ -125,8 +125,14 @@ public sealed class RegionAnswer
 
         string other = best.Modality == Modality.Eeg ? "MEG" : "EEG";
         long saved = alone - both;
-        return saved > 0 ? $"Adding {other} saves {Say.Count(saved)} of {Say.Plural(alone, "trial")}." : $"Adding {other} saves no trial.";
+        string sure = Of(Modality.Both)?.Verdict.Assurance is { } together && best.Verdict.Assurance is { } single && together > single
+            ? $" It raises the assurance from {Say.Assurance(single)} to {Say.Assurance(together)}." : "";
+        return (saved > 0 ? $"Adding {other} saves {Say.Count(saved)} of {Say.Plural(alone, "trial")}." : $"Adding {other} saves no trial.") + sure;
     }
+
+    /// <summary>Trials that both modalities together save against the better one alone; null where either count is missing.</summary>
+    public long? SavedByBoth => Of(Modality.Both) is { HasCount: true, Trials: { } both }
+        && Answers.Where(a => a.Modality != Modality.Both && a.HasCount).Select(a => a.Trials).Min() is { } alone ? Math.Max(0, alone - both) : null;
 
     /// <summary>EEG, MEG, EEG and MEG together.</summary>
     public static string Words(Modality modality) => modality == Modality.Both ? "EEG and MEG together" : Names.Of(modality);

@@ -53,6 +53,9 @@ public static class Say
     /// <summary>A share as percent: `10 %`.</summary>
     public static string Percent(double share) => $"{Stated(Math.Round(100 * share, 1))} %";
 
+    /// <summary>A probability in whole percent: `under 1 %`, `12 %`, `over 99 %`.</summary>
+    public static string Chance(double probability) => probability < 0.005 ? "under 1 %" : probability > 0.995 ? "over 99 %" : $"{Stated(Math.Round(100 * probability))} %";
+
     /// <summary>Assurance to 5 %: `at least 95 %`, `70 %`, `at most 5 %`.</summary>
     public static string Assurance(double share)
     {
@@ -65,6 +68,31 @@ public static class Say
 
     /// <summary>A moment [A m] in nAm as stated.</summary>
     public static string Moment(double moment) => $"{Stated(Math.Round(Si.ToNanoAmpereMetres(moment), 9))} nAm";
+
+    /// <summary>How strong a response is in one region: `3.5 nAm`, `3.5 nAm (2 to 7)`, `6.8 nAm (0.45 uV at Cz-mastoids)`.</summary>
+    /// <param name="response">The response as stated.</param>
+    /// <param name="region">One of its results.</param>
+    public static string Strength(Response response, RegionResult region) => response switch
+    {
+        { Amplitude: not null } => $"{Two(Si.ToNanoAmpereMetres(region.Moment))} nAm ({Known(response.Amplitude)})",
+        { MomentRange: { } r } => $"{Moment(response.Moment)} ({Moment(r.Low)[..^4]} to {Moment(r.High)[..^4]})",
+        _ => Moment(response.Moment),
+    };
+
+    /// <summary>The same over all regions: `0.45 uV at Cz-mastoids, so 6.8 to 7.1 nAm`.</summary>
+    /// <param name="result">The response's results.</param>
+    public static string Strength(ResponseResult result)
+    {
+        if (result.Response.Amplitude is not { } amplitude)
+        {
+            return Strength(result.Response, result.Regions[0]);
+        }
+
+        string least = Two(Si.ToNanoAmpereMetres(result.Regions.Min(r => r.Moment))), most = Two(Si.ToNanoAmpereMetres(result.Regions.Max(r => r.Moment)));
+        return $"{Known(amplitude)}, so {(least == most ? least : $"{least} to {most}")} nAm";
+    }
+
+    private static string Known(AmplitudeChoice amplitude) => $"{Stated(Math.Round(Si.ToMicrovolts(amplitude.Peak), 9))} uV at {amplitude.Derivation}";
 
     /// <summary>`along [0, 0, 1]`, `tangential`.</summary>
     public static string Direction(DirectionChoice direction) => direction.Vector is { } v

@@ -65,7 +65,7 @@ public static class ConsoleSummary
 
         RegionAnswer answer = new(assessment, response.Response, response.Regions[0]);
         Response stated = response.Response;
-        text.Append(WhyText.Wrap($"{stated.Name}, {answer.Region.Region}: {Say.Plural(answer.Region.Dipoles, "dipole")}, {Say.Moment(stated.Moment)} {Say.Direction(stated.Direction)}", 0));
+        text.Append(WhyText.Wrap($"{stated.Name}, {answer.Region.Region}: {Say.Plural(answer.Region.Dipoles, "dipole")}, {Say.Strength(stated, answer.Region)} {Say.Direction(stated.Direction)}", 0));
         text.Append(WhyText.Wrap(Conditions(assessment, answer), 0));
         text.Append('\n').Append(WhyText.Wrap(string.Join(" ", answer.Answers.Where(a => a.Modality != Modality.Both || answer.Answers.Count == 1).Select(a => Sentence(assessment, a))), 0)).Append('\n');
         Table(text, answer);
@@ -238,10 +238,29 @@ public static class ConsoleSummary
         }
 
         Chair(text, assessment, answer);
+        ModalityAnswer[] missed = [.. answer.Answers.Where(a => a.Verdict.Missing is not null)];
+        if (missed.Length > 0)
+        {
+            text.Append(Fact("chance to miss it", string.Join(", ", missed.Select(a => $"{Names.Of(a.Modality)} {Say.Chance(a.Verdict.Missing!.Value)}"))));
+        }
+
         double?[] sure = [.. answer.Answers.Select(a => a.Verdict.Assurance)];
         text.Append(Fact("how sure", sure.Any(s => s is not null)
-            ? string.Join("   ", answer.Answers.Where(a => a.Verdict.Assurance is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Assurance(a.Verdict.Assurance!.Value)}"))
+            ? string.Join(", ", answer.Answers.Where(a => a.Verdict.Assurance is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Assurance(a.Verdict.Assurance!.Value)}"))
             : "not asked: the study states no unknowns"));
+        if (answer.Region.Unknowns is { } unknowns)
+        {
+            foreach (VerdictSpread spread in unknowns.Verdicts.Where(v => v.Rule == answer.Rule && v.Modality != Modality.Both))
+            {
+                string most = spread.Ranking is [var effect, ..] && effect.LogVariance > 0 ? $"; most by {UnknownWords.Name(effect.Unknown)}" : "";
+                text.Append(Fact($"{Names.Of(spread.Modality)} over the unknowns", $"{UnknownWords.Trials(spread.Trials.P05, spread.Trials.P95)} trials{most}"));
+            }
+
+            if (unknowns.First.FirstOrDefault(f => f.Rule == answer.Rule) is { Flip.Length: > 0 } first)
+            {
+                text.Append(WhyText.Wrap(first.Flip + ".", 0));
+            }
+        }
     }
 
     // What the session's recording takes in the chair: a plan needs it beside the minutes of one average.

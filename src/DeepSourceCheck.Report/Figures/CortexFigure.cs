@@ -36,7 +36,7 @@ public static class CortexFigure
         return new Figure(
             name, title,
             "SNR of one trial (dB) against depth and source angle",
-            $"{response.Response.Name}, {region.Region}; measure: {Measure}; {Say.Moment(response.Response.Moment)} along the cortex's own normal at each point. Line: median over the points of a bin, mark at its middle; band: quartiles. "
+            $"{response.Response.Name}, {region.Region}; measure: {Measure}; {Say.Strength(response)} along the cortex's own normal at each point. Line: median over the points of a bin, mark at its middle; band: quartiles. "
             + $"0 degrees: the cortex lies flat under the skull (radial); 90: it stands upright (tangential). Shallow cortex is mostly flat, deep cortex upright: the depth panel shows both effects, the table depth on upright cortex (60 degrees and more) alone. {Say.Count(profile.ByDepth.Sum(b => (long)b.Points))} points"
             + $"{(profile.WithoutNormal > 0 ? $"; {Say.Plural(profile.WithoutNormal, "more point")} where the cortex has no clear normal are left out" : "")}"
             + $"{(left > 0 ? $"; bins of fewer than {LeastPoints} points stand in the table alone" : "")}.",

@@ -189,6 +189,21 @@ public sealed class FigurePen
         }
     }
 
+    /// <summary>A curve that belongs to no modality.</summary>
+    /// <param name="points">Its points [px].</param>
+    /// <param name="pattern">Lengths of dashes and gaps in turn [px]; empty for a full line.</param>
+    /// <param name="colour">Colour.</param>
+    /// <param name="width">Width [px].</param>
+    public void Trace(IReadOnlyList<SKPoint> points, float[] pattern, SKColor colour, float width)
+    {
+        using SKPaint paint = Stroke(colour, width);
+        foreach (IReadOnlyList<SKPoint> piece in pattern.Length == 0 || points.Count < 2 ? [points] : Dashes(points, pattern))
+        {
+            using SKPath path = Path(piece, close: false);
+            _canvas.DrawPath(path, paint);
+        }
+    }
+
     /// <summary>The mark of a modality, with a 2 px outline of the ground: disc r 7, diamond of half-diagonal 9, square 14 with a round hole.</summary>
     /// <param name="modality">Which.</param>
     /// <param name="x">Centre [px].</param>

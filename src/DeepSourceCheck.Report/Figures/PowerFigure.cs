@@ -49,7 +49,7 @@ public static class PowerFigure
             $"Power of detection (%) against {(perMinute is null ? "accepted trials" : "minutes of recording")}",
             $"{response.Response.Name}, {region.Region.Region}; one-sided test at false-alarm rate {Say.Stated(curve.Alpha)}{(curve.Looks > 1 ? $" over {Say.Stated(curve.Looks)} looks" : ", channel, latency and polarity fixed beforehand")}"
             + $" ({from}); power = Φ(√N d − z), d² the SNR of one trial of {string.Join(", ", region.Answers.Where(a => lines.Any(l => l.Modality == a.Modality)).Select(a => $"{RegionAnswer.Words(a.Modality)} {a.Verdict.Measure}"))}; "
-            + $"{Say.Direction(response.Response.Direction)}; {Say.Moment(response.Response.Moment)}{TrialsFigure.Protocol(assessment)}. Line: median dipole; band: 5 to 95 % of {Say.Spread(response.Response.Direction.Name)}.{joint} "
+            + $"{Say.Direction(response.Response.Direction)}; {Say.Strength(response)}{TrialsFigure.Protocol(assessment)}. Line: median dipole; band: 5 to 95 % of {Say.Spread(response.Response.Direction.Name)}.{joint} "
             + "An amplitude ratio has no power: its counts stand in the figure of trials.",
             $"{title}. {string.Join(" ", lines.Take(3).Select(l => $"{RegionAnswer.Words(l.Modality)}: {Say.Percent(power)} after {Span(l.Target, perMinute)}."))}",
             Table(lines, curve, perMinute), FullWidth: false,

@@ -38,7 +38,7 @@ public static class SnrFigure
         return new Figure(
             name, title,
             "SNR of one trial (dB) against direction",
-            $"{response.Response.Name}; measure: {measures}; {Say.Moment(response.Response.Moment)}. Mark: median over the region's dipoles; solid bar: 5 to 95 % of places and directions, gaps at the quartiles. "
+            $"{response.Response.Name}; measure: {measures}; {Say.Strength(response)}. Mark: median over the region's dipoles; solid bar: 5 to 95 % of places and directions, gaps at the quartiles. "
             + $"Open mark: silent in the model, drawn at the published leak of realistic heads.{trials}{session}{some}",
             $"{title}. {string.Join(" ", regions[0].Answers.Where(a => a.Row?.SnrDb.P50 is not null).Take(3).Select(a => $"{RegionAnswer.Words(a.Modality)}: median {Say.Decibels(a.Row!.SnrDb.P50!.Value)} dB."))}",
             Table(regions), FullWidth: false,

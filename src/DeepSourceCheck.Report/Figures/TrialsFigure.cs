@@ -29,7 +29,7 @@ public static class TrialsFigure
         return new Figure(
             name, title,
             "Accepted trials against region",
-            $"{response.Response.Name}; rule: {RuleWords(assessment, response.Response, rule)}; {Say.Direction(response.Response.Direction)}; {Say.Moment(response.Response.Moment)} in each dipole in turn"
+            $"{response.Response.Name}; rule: {RuleWords(assessment, response.Response, rule)}; {Say.Direction(response.Response.Direction)}; {Say.Strength(response)} in each dipole in turn"
             + $"{Protocol(assessment)}. Mark: median over the region's dipoles; solid bar: 5 to 95 % of {Say.Spread(response.Response.Direction.Name)}, gaps at the quartiles.{session}",
             $"{title}. {string.Join(" ", all.Take(3).Select(a => $"{RegionAnswer.Words(a.Modality)}: {a.Line()}."))}",
             Table(regions), FullWidth: false,

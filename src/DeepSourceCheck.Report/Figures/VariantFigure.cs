@@ -32,7 +32,7 @@ public static class VariantFigure
         return new Figure(
             name, title,
             "Accepted trials against variant",
-            $"{response.Response.Name}; rule: {TrialsFigure.RuleWords(assessment, response.Response, regions[0].Rows[0].Answer!.Rule)}; {Say.Direction(response.Response.Direction)}; {Say.Moment(response.Response.Moment)}"
+            $"{response.Response.Name}; rule: {TrialsFigure.RuleWords(assessment, response.Response, regions[0].Rows[0].Answer!.Rule)}; {Say.Direction(response.Response.Direction)}; {Say.Strength(response)}"
             + $"{TrialsFigure.Protocol(assessment)}, where the variant does not say otherwise. Mark: median over the region's dipoles; line: from the study's count; number behind: change of the SNR in dB.{left}",
             $"{title}. {string.Join(" ", regions[0].Rows.Take(3).Select(r => $"{r.Name}: {string.Join(", ", Singles(r).Select(a => $"{Names.Of(a.Modality)} {Say.Trials(a.Trials)}"))}."))}",
             Table(regions), FullWidth: false,

@@ -47,7 +47,7 @@ internal static class AnswerSection
         RegionResult first = response.Regions[0];
         string others = response.Regions.Count switch { 1 => "", 2 => "; one more region below", _ => $"; {response.Regions.Count - 1} more regions below" };
         html.Open("p", "class", "place").Element("b", assessment.Study.Title)
-            .Text($"{stated.Name}, {first.Region}: {Say.Plural(first.Dipoles, "dipole")}, {Say.Moment(stated.Moment)} {Say.Direction(stated.Direction)}, "
+            .Text($"{stated.Name}, {first.Region}: {Say.Plural(first.Dipoles, "dipole")}, {Say.Strength(stated, first)} {Say.Direction(stated.Direction)}, "
                 + $"{Say.Convention(stated.Measured)}, {Say.Stated(stated.Band.Low)} to {Say.Stated(stated.Band.High)} Hz{others}").CloseLine();
     }
 
@@ -103,7 +103,8 @@ internal static class AnswerSection
         string leak = a.Row?.AtLeak is { } l && l.Targets.FirstOrDefault(t => t.Rule == a.Verdict.Rule) is { } t
             ? $"at the published leak of {Say.Stated(l.Leak)}: {(t.Trials.P50 is { } n && n <= Say.MostTrials ? Say.Plural(n, "trial") : Say.OutOfReach)}" : "";
         string first = range.Length > 0 ? range : leak.Length > 0 ? leak : a.Reason ?? "";
-        return string.Join("; ", new[] { first, sure }.Where(p => p.Length > 0));
+        string miss = a.Verdict.Missing is { } chance ? $"{Say.Chance(chance)} chance to miss it in the session" : "";
+        return string.Join("; ", new[] { first, sure, miss }.Where(p => p.Length > 0));
     }
 
     private static void Peaks(Markup html, RegionAnswer answer)
@@ -136,7 +137,7 @@ internal static class AnswerSection
             return;
         }
 
-        html.Element("p", $"moment that {Say.Plural(session, "trial")} reach; assumed: {Say.Moment(answer.Response.Moment)}", "class", "small").Open("div", "class", "pairs");
+        html.Element("p", $"moment that {Say.Plural(session, "trial")} reach; assumed: {Say.Strength(answer.Response, answer.Region)}", "class", "small").Open("div", "class", "pairs");
         foreach (ModalityAnswer a in answer.Answers)
         {
             html.Raw(InlineFigure.Mark(a.Modality)).Open("div");
@@ -167,13 +168,28 @@ internal static class AnswerSection
             lines.Add(a.Outcome == Outcome.Fits ? $"{Names.Of(a.Modality)} no longer fits below {moment}." : $"{Names.Of(a.Modality)} fits from {moment}.");
         }
 
-        html.Element("p", lines.Count > 0 ? $"Moment, {Say.Moment(answer.Response.Moment)} assumed:" : assessment.SessionTrials is null ? "Not asked: the study states no session." : "No moment changes a direction that is silent.", "class", "small");
+        html.Element("p", lines.Count > 0 ? $"Moment, {Say.Strength(answer.Response, answer.Region)} assumed:" : assessment.SessionTrials is null ? "Not asked: the study states no session." : "No moment changes a direction that is silent.", "class", "small");
         foreach (string line in lines)
         {
             html.Element("p", line);
         }
 
-        if (lines.Count > 0)
+        if (answer.Region.Unknowns is { } unknowns)
+        {
+            foreach (VerdictSpread spread in unknowns.Verdicts.Where(v => v.Rule == answer.Rule && v.Modality != Modality.Both))
+            {
+                if (spread.Ranking is [{ LogVariance: > 0 } effect, ..])
+                {
+                    html.Element("p", $"{Names.Of(spread.Modality)}: {UnknownWords.Name(effect.Unknown)}, {UnknownWords.Range(effect.Unknown, assessment.Study, answer.Response)}, gives {UnknownWords.Trials(effect.Fewest, effect.Most)} trials.");
+                }
+            }
+
+            if (unknowns.First.FirstOrDefault(f => f.Rule == answer.Rule) is { Flip.Length: > 0 } first)
+            {
+                html.Element("p", first.Flip + ".", "class", "small");
+            }
+        }
+        else if (lines.Count > 0)
         {
             html.Element("p", "Everything else as assumed. Other inputs change the answer too: run the study again with them.", "class", "small");
         }
@@ -210,9 +226,9 @@ internal static class AnswerSection
         foreach (string rule in rules)
         {
             html.Element("h3", $"By another target: {TrialsFigure.RuleWords(assessment, response.Response, rule)}", "class", "ruled", "style", "margin-top:28px");
-            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range"],
+            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range", "chance to miss"],
                 response.Regions.SelectMany(r => new RegionAnswer(assessment, response.Response, r, rule).Answers.Select(a => (IReadOnlyList<string>)
-                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range()])));
+                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range(), a.Verdict.Missing is { } miss ? Say.Chance(miss) : ""])));
         }
     }
 }

@@ -36,6 +36,7 @@ public static class HtmlReport
         }
 
         RuleSection.Write(html, assessment);
+        UnknownsSection.Write(html, assessment);
         VariantSection.Write(html, assessment);
         if (assessment.Warnings.Count > 0)
         {

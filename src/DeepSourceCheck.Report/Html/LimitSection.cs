@@ -1,5 +1,6 @@
 using System.Globalization;
 
+using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Report.Answers;
@@ -24,7 +25,34 @@ internal static class LimitSection
             ["region", "dipoles", "refused by the head", "spacing, mm", "volume, mL", "field captured by the array", "weakest over strongest direction", "weakest direction to outward direction, degrees", "undefined or degenerate", "what to know"],
             assessment.Responses.SelectMany(r => r.Regions).DistinctBy(r => r.Region).Select(Cells),
             ["", "n", "n", "n", "n", "n", "n", "n", "n", "long"]);
+        RealisticHeads(html, assessment);
         html.CloseLine();
+    }
+
+    private static void RealisticHeads(Markup html, Assessment assessment)
+    {
+        RealisticHeadEffect[] effects = [.. assessment.Responses.SelectMany(r => r.Regions).SelectMany(r => r.RealisticHeads).Distinct()];
+        if (effects.Length == 0)
+        {
+            return;
+        }
+
+        html.Element("h3", "What a realistic head changes").Raw("\n");
+        html.Element("p", $"{RealisticHead.Meaning}. {RealisticHead.Caution(assessment, effects)} {string.Concat(RealisticHead.Own(assessment).Take(1))}".TrimEnd()).Raw("\n");
+        if (RealisticHead.Own(assessment).Count > 1)
+        {
+            HtmlReport.List(html, [.. RealisticHead.Own(assessment).Skip(1)]);
+        }
+
+        IReadOnlyList<string> measures = [.. RealisticHead.Changes(effects[0]).Select(RealisticHead.Words)];
+        HtmlReport.Table(html, "What a realistic head changes, by region",
+            ["region", .. measures.Select(m => $"{m}, invented head"), .. measures.Select(m => $"{m}, one real head"), "MEG: weakest over strongest direction", "weakest direction to outward direction, degrees"],
+            effects.Select(e => (IReadOnlyList<string>)
+            [
+                e.Region, .. RealisticHead.Changes(e).Select(c => RealisticHead.Change(c.Phantom)), .. RealisticHead.Changes(e).Select(c => RealisticHead.Change(c.RealHead)),
+                Say.Two(e.WeakestOverStrongest), Say.Stated(e.WeakestToOutwardDeg),
+            ]),
+            ["", "n", "n", "n", "n", "n", "n", "n", "n"]);
     }
 
     private static IReadOnlyList<string> Cells(RegionResult region) =>

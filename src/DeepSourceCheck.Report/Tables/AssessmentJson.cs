@@ -1,7 +1,10 @@
+using System.Globalization;
 using System.Text.Json;
 
 using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
+using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Tables;
 
@@ -42,7 +45,7 @@ public static class AssessmentJson
             }
 
             json.WriteCount("session_trials", assessment.SessionTrials);
-            json.WriteArray("responses", assessment.Responses, WriteResponse);
+            json.WriteArray("responses", assessment.Responses, (j, r) => WriteResponse(j, r, assessment));
             json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));
             json.WriteEndObject();
         }
@@ -66,24 +69,83 @@ public static class AssessmentJson
         json.WriteArray("assumptions", [.. variant.Assessment.Assumptions.Except(study.Assumptions)], JsonText.WriteAssumption);
         json.WriteStrings("warnings", variant.Assessment.Warnings.Except(study.Warnings));
         json.WriteCount("session_trials", variant.Assessment.SessionTrials);
-        json.WriteArray("responses", variant.Assessment.Responses, WriteResponse);
+        json.WriteArray("responses", variant.Assessment.Responses, (j, r) => WriteResponse(j, r, variant.Assessment));
         json.WriteEndObject();
     }
 
-    private static void WriteResponse(Utf8JsonWriter json, ResponseResult response)
+    private static void WriteResponse(Utf8JsonWriter json, ResponseResult response, Assessment assessment)
     {
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
-        json.WriteArray("regions", response.Regions, WriteRegion);
+        json.WriteArray("regions", response.Regions, (j, r) => WriteRegion(j, r, response, assessment));
+        json.WriteArray("noise_spectra", response.Spectra, WriteSpectrum);
         json.WriteEndObject();
     }
 
-    private static void WriteRegion(Utf8JsonWriter json, RegionResult region)
+    // Densities to six digits: a picture of the noise, beside figures in full.
+    private static void WriteSpectrum(Utf8JsonWriter json, ReadingSpectrum spectrum)
+    {
+        json.WriteStartObject();
+        json.WriteString("modality", Names.Of(spectrum.Modality));
+        json.WriteString("channel", spectrum.Channel);
+        json.WriteString("unit", spectrum.Unit);
+        WriteBand(json, "band_Hz", spectrum.Band);
+        WriteBand(json, "bandwidth_Hz", spectrum.Bandwidth);
+        json.WriteFigure("response_level", spectrum.SignalLevel);
+        WriteDensities(json, "frequency_Hz", [.. spectrum.Frequencies]);
+        WriteDensities(json, "total", spectrum.Total);
+        json.WriteArray("causes", spectrum.Noise, (j, curve) =>
+        {
+            j.WriteStartObject();
+            j.WriteString("cause", curve.Cause);
+            j.WriteFigure("share_of_band", curve.Share);
+            WriteDensities(j, "density", curve.Densities);
+            j.WriteEndObject();
+        });
+        if (spectrum.SignalDensities is { } signal)
+        {
+            WriteDensities(json, "response_density", [.. signal]);
+        }
+
+        json.WriteEndObject();
+    }
+
+    private static void WriteBand(Utf8JsonWriter json, string name, Band? band)
+    {
+        if (band is not { } b)
+        {
+            json.WriteNull(name);
+            return;
+        }
+
+        WriteDensities(json, name, [b.Low, b.High]);
+    }
+
+    private static void WriteDensities(Utf8JsonWriter json, string name, IReadOnlyList<double?> values)
+    {
+        json.WriteStartArray(name);
+        foreach (double? value in values)
+        {
+            if (value is { } v)
+            {
+                json.WriteNumberValue(double.Parse(v.ToString("G6", CultureInfo.InvariantCulture), CultureInfo.InvariantCulture));
+            }
+            else
+            {
+                json.WriteNullValue();
+            }
+        }
+
+        json.WriteEndArray();
+    }
+
+    private static void WriteRegion(Utf8JsonWriter json, RegionResult region, ResponseResult response, Assessment assessment)
     {
         json.WriteStartObject();
         json.WriteString("region", region.Region);
         json.WriteNumber("dipoles", region.Dipoles);
         json.WriteNumber("dropped", region.Dropped);
+        json.WriteFigure("moment_nAm", Si.ToNanoAmpereMetres(region.Moment));
         json.WriteFigure("spacing_mm", region.Spacing is { } h ? Si.ToMm(h) : null);
         json.WriteFigure("volume_mL", region.Volume is { } v ? Si.ToMillilitres(v) : null);
         json.WriteFigure("captured_field_share", region.FieldCaptured);
@@ -109,8 +171,37 @@ public static class AssessmentJson
             json.WriteNumber("points_without_normal", profile.WithoutNormal);
         }
 
+        if (region.Removal is { } loss)
+        {
+            json.WriteStartObject("environment_removal");
+            json.WriteString("direction", Names.Of(loss.Direction));
+            json.WriteFigure("matched_filter_db", loss.MatchedFilterDb);
+            json.WriteFigure("best_channel_db", loss.BestChannelDb);
+            json.WriteFigure("matched_filter_against_left_in_db", loss.MatchedFilterAgainstLeftInDb);
+            json.WriteFigure("best_channel_against_left_in_db", loss.BestChannelAgainstLeftInDb);
+            json.WriteEndObject();
+        }
+
+        if (region.Cancellation.Count > 0)
+        {
+            json.WriteStartObject("cancellation_db");
+            foreach (CancellationResult lost in region.Cancellation)
+            {
+                json.WriteFigure(Names.Of(lost.Modality), lost.Db);
+            }
+
+            json.WriteEndObject();
+        }
+
         json.WriteArray("results", region.Results, WriteMeasure);
         json.WriteArray("verdicts", region.Verdicts, WriteVerdict);
+        json.WriteArray("advice", [.. region.Verdicts.Select(v => v.Rule).Distinct()], (j, rule) => WriteAdvice(j, new RegionAnswer(assessment, response.Response, region, rule)));
+        if (region.Unknowns is { } unknowns)
+        {
+            UnknownsJson.Write(json, unknowns);
+        }
+
+        json.WriteRealisticHeads(region.RealisticHeads);
         json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();
     }
@@ -229,6 +320,16 @@ public static class AssessmentJson
         json.WriteEndObject();
     }
 
+    private static void WriteAdvice(Utf8JsonWriter json, RegionAnswer answer)
+    {
+        json.WriteStartObject();
+        json.WriteString("rule", answer.Rule);
+        json.WriteString("modality", answer.Winner is { } winner ? Names.Of(winner.Modality) : null);
+        json.WriteString("text", $"{answer.Headline()}. {answer.Recommendation()} {answer.Joint()} {answer.Reason()}".Replace("  ", " ", StringComparison.Ordinal).TrimEnd());
+        json.WriteCount("trials_saved_by_both", answer.SavedByBoth);
+        json.WriteEndObject();
+    }
+
     private static void WriteVerdict(Utf8JsonWriter json, VerdictResult verdict)
     {
         json.WriteStartObject();
@@ -258,6 +359,15 @@ public static class AssessmentJson
                 json.WriteString("reason", averaging.Reason);
             }
 
+            json.WriteEndObject();
+        }
+
+        json.WriteFigure("missing_probability", verdict.Missing);
+        if (verdict.AtMoments is { } range)
+        {
+            json.WriteStartObject("trials_at_moment");
+            json.WriteCount("low", range.Low);
+            json.WriteCount("high", range.High);
             json.WriteEndObject();
         }
 

@@ -3,8 +3,10 @@ using System.Globalization;
 using System.Text.Encodings.Web;
 using System.Text.Json;
 
+using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Tables;
 
@@ -107,6 +109,30 @@ public static class JsonText
         json.WriteString("direction", Names.Of(verdict.Direction));
         json.WriteString("text", verdict.Text);
     }
+
+    /// <summary>What a realistic head changes at library regions: `realistic_head`, one entry a region; empty where nothing was measured.</summary>
+    public static void WriteRealisticHeads(this Utf8JsonWriter json, IEnumerable<RealisticHeadEffect> effects) => json.WriteArray("realistic_head", effects, static (j, effect) =>
+    {
+        j.WriteStartObject();
+        j.WriteString("region", effect.Region);
+        j.WriteString("measured_side", effect.MeasuredSide);
+        j.WriteString("against", RealisticHead.Spheres);
+        j.WriteString("direction", Names.Of(DirectionName.Isotropic));
+        j.WriteArray("changes", RealisticHead.Changes(effect), static (k, change) =>
+        {
+            k.WriteStartObject();
+            k.WriteString("modality", Names.Of(change.Modality));
+            k.WriteString("measure", change.Measure);
+            k.WriteNumber("phantom_db", change.Phantom);
+            k.WriteNumber("phantom_trials_factor", HeadChange.TrialsFactor(change.Phantom));
+            k.WriteNumber("real_head_db", change.RealHead);
+            k.WriteNumber("real_head_trials_factor", HeadChange.TrialsFactor(change.RealHead));
+            k.WriteEndObject();
+        });
+        j.WriteNumber("weakest_over_strongest", effect.WeakestOverStrongest);
+        j.WriteNumber("weakest_to_outward_deg", effect.WeakestToOutwardDeg);
+        j.WriteEndObject();
+    });
 
     private static void WriteFigureValue(this Utf8JsonWriter json, double? value)
     {

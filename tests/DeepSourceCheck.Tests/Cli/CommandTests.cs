@@ -294,6 +294,37 @@ public sealed class CommandTests : IDisposable
         Assert.NotEqual(0, chains.GetArrayLength());
     }
 
+    [Fact]
+    public void Why_EndsWithWhatARealisticHeadChanges_AndHowToGetFiguresOfOnesOwn()
+    {
+        Outcome outcome = InProcess.Run("why", "inferior-colliculus-right");
+        Assert.Equal(ExitStatus.Done, outcome.Status);
+        string[] blocks = outcome.Out.Split("\n\n");
+        Assert.StartsWith("What a realistic head changes: inferior-colliculus-right\n", blocks[^1], StringComparison.Ordinal);
+        Assert.EndsWith("  deepsourcecheck new FOLDER --head phantom\n  variants: [{name: spheres, head: {spheres: {preset: adult-4}}}]\n", blocks[^1], StringComparison.Ordinal);
+        JsonElement entry = Assert.Single(Json("why", "inferior-colliculus-right", "--json").GetProperty("realistic_head").EnumerateArray());
+        Assert.Equal("inferior-colliculus-right", entry.GetProperty("region").GetString());
+        Assert.Equal("left", entry.GetProperty("measured_side").GetString());
+        Assert.Equal(3, entry.GetProperty("changes").GetArrayLength());
+    }
+
+    // Two regions that act together: the figures of each.
+    [Fact]
+    public void Why_OfRegionsThatActTogether_HasTheFiguresOfEach()
+    {
+        string study = Small(SmallStudy.Replace("regions: [here]", "regions: [thalamus-left, here, pons], counts: together", StringComparison.Ordinal));
+        JsonElement json = Json("why", study, "--json");
+        Assert.Equal(["thalamus-left", "pons"], json.GetProperty("realistic_head").EnumerateArray().Select(e => e.GetProperty("region").GetString()));
+    }
+
+    [Fact]
+    public void Why_OfPointsOnSpheres_SaysThatNothingWasMeasured()
+    {
+        string study = Small();
+        Assert.Contains("Nothing was measured for here", InProcess.Run("why", study).Out, StringComparison.Ordinal);
+        Assert.Empty(Json("why", study, "--json").GetProperty("realistic_head").EnumerateArray());
+    }
+
     private string At(params string[] parts) => Path.Combine([_folder, .. parts]);
 
     private string Small(string text = SmallStudy)

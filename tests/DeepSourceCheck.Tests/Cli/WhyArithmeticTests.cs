@@ -128,9 +128,9 @@ public sealed partial class WhyArithmeticTests : IDisposable
         return text;
     }
 
-    /// <summary>The text's own rules: a chain starts after an empty line; `  symbol = value unit`; `        = formula   [source]`; the verdict, indented by two, ends it.</summary>
+    /// <summary>The text's own rules: a chain starts after an empty line, with its modality; `  symbol = value unit`; `        = formula   [source]`; the verdict, indented by two, ends it.</summary>
     private static List<PrintedChain> Chains(string text) =>
-        [.. text.Split("\n\n").Skip(1).Select(block =>
+        [.. text.Split("\n\n").Skip(1).Where(block => Modality().IsMatch(block)).Select(block =>
         {
             string[] printed = block.Split('\n', StringSplitOptions.RemoveEmptyEntries);
             var lines = new List<DerivedNumber>();
@@ -166,6 +166,9 @@ public sealed partial class WhyArithmeticTests : IDisposable
         })];
 
     private sealed record PrintedChain(string Heading, IReadOnlyList<DerivedNumber> Lines, string Verdict);
+
+    [GeneratedRegex("^(EEG|MEG)( and MEG together)?: ")]
+    private static partial Regex Modality();
 
     [GeneratedRegex(@"^  (\w+) += (\S+)")]
     private static partial Regex Head();

@@ -68,6 +68,39 @@ internal static class AssessmentFixture
         return a with { Responses = [a.Responses[0] with { Regions = [cortex, .. a.Responses[0].Regions.Skip(1)] }] };
     }
 
+    /// <summary>Noise over frequency: EEG by three causes, one of them with a gap; MEG by two, with sensors that end, the room's terms removed.</summary>
+    public static Assessment WithSpectra()
+    {
+        Assessment a = Default();
+        double[] hertz = [.. Enumerable.Range(0, 40).Select(k => Math.Pow(3000, k / 39.0))];
+        double?[] Of(Func<double, double?> density) => [.. hertz.Select(density)];
+        ReadingSpectrum eeg = new()
+        {
+            Modality = Modality.Eeg,
+            Channel = "Cz-mastoids",
+            Unit = "uV/sqrt(Hz)",
+            Frequencies = hertz,
+            Noise = [new("instrument", 0.3, Of(_ => 0.02)), new("brain", 0.05, Of(f => 4 / f)), new("muscle and electrode", 0.65, Of(f => f < 3 ? null : 0.4 / Math.Sqrt(f)))],
+            Total = Of(f => Math.Sqrt(0.0004 + 16 / (f * f) + 0.16 / f)),
+            Band = new(100, 1500),
+            SignalLevel = 0.0067,
+        };
+        ReadingSpectrum meg = new()
+        {
+            Modality = Modality.Meg,
+            Channel = "M192",
+            Unit = "fT/sqrt(Hz)",
+            Frequencies = hertz,
+            Noise = [new("instrument", 0.9, Of(_ => 5)), new("brain", 0.1, Of(f => f > 2000 ? null : 40 / Math.Sqrt(f)))],
+            Total = Of(f => Math.Sqrt(25 + 1600 / f)),
+            Band = new(100, 1500),
+            Bandwidth = new(0, 2000),
+            SignalLevel = 0.067,
+        };
+        RegionResult region = a.Responses[0].Regions[0] with { Removal = new(DirectionName.Given, -1.25, -0.5, -0.25, 3.5) };
+        return a with { Responses = [a.Responses[0] with { Spectra = [eeg, meg], Regions = [region, .. a.Responses[0].Regions.Skip(1)] }] };
+    }
+
     public static Assessment TwoResponses()
     {
         Assessment a = Default();
@@ -205,6 +238,7 @@ internal static class AssessmentFixture
         return new RegionResult
         {
             Region = name,
+            Moment = 3.5e-9,
             Dipoles = 123 + index,
             Dropped = index,
             Spacing = 0.001,

@@ -24,6 +24,7 @@ public class PresentationTests
         ["detection"] = AssessmentFixture.WithDetection,
         ["two responses"] = AssessmentFixture.TwoResponses,
         ["cortex"] = AssessmentFixture.OverCortex,
+        ["spectra"] = AssessmentFixture.WithSpectra,
     };
 
     [Theory]

@@ -38,6 +38,16 @@ internal sealed record SmallStudy
 
     public double Moment { get; init; } = 1e-8;
 
+    public AmplitudeChoice? Amplitude { get; init; }
+
+    public MomentRange? MomentRange { get; init; }
+
+    public IReadOnlyList<double> Shares { get; init; } = [];
+
+    public IReadOnlyList<double> Lags { get; init; } = [];
+
+    public double? ComponentFrequency { get; init; }
+
     public Vec3? Given { get; init; }
 
     public DirectionName Direction { get; init; } = DirectionName.Given;
@@ -81,6 +91,11 @@ internal sealed record SmallStudy
             Key = "responses.r",
             Regions = [.. Enumerable.Range(0, Regions).Select(k => $"region{k}")],
             Moment = Moment,
+            Amplitude = Amplitude,
+            MomentRange = MomentRange,
+            Shares = Shares,
+            Lags = Lags,
+            ComponentFrequency = ComponentFrequency,
             Band = new Band(1, 100),
             Measured = Measured,
             Together = Together,

@@ -179,6 +179,7 @@ public class BrainNoiseTests
         // The default total has 3 uV/sqrt(Hz) at 4 Hz, the default brain 4: a total scaled at 100-3000 Hz leaves nothing for muscle over 1-40 Hz, and the study is refused with the figures.
         InputException refused = Assert.Throws<InputException>(() => WholeChain.Default(("band_Hz: [100, 1500]", "band_Hz: [1, 40]")));
         Assert.Contains("nothing is left for muscle and electrodes", refused.Message, StringComparison.Ordinal);
+        Assert.Contains("noise.brain: {scale: 0.9", refused.Message, StringComparison.Ordinal);
         Assert.Contains("noise.brain: none", refused.Message, StringComparison.Ordinal);
     }
 }

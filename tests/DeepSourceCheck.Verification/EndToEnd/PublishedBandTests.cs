@@ -70,6 +70,35 @@ public class PublishedBandTests
     }
 
     [Theory]
+    [InlineData(3, 15)]
+    [InlineData(5, 41)]
+    public void HippocampalSpike_OfPublishedAmplitudeAndSnr_NeedsTheWorkedNumber(double ratio, long spikes)
+    {
+        // Averaged mesial temporal spikes 7.1 uV at the scalp (Koessler 2015, seen), -2.1 dB in one event (from memory): s = 9.04 uV, of which each of two electrodes holds 1/sqrt(2).
+        // (3 x 9.04/7.1)^2 = 14.6, (5 x 9.04/7.1)^2 = 40.5.
+        WholeChain study = WholeChain.Run(WholeChain.Adult + FormattableString.Invariant($$$"""
+            sensors: {eeg: {layout: ten-ten-64, reference: average}}
+            noise: {eeg_sensor_uV_rms: 6.393}
+            responses: [{name: spike, regions: [hippocampus-left], amplitude: {peak_uV: 7.1, derivation: F7-Cz}, band_Hz: [1, 70], direction: [0, 0, 1]}]
+            target: {amplitude_ratio: {{{ratio}}}}
+            """));
+        Assert.Equal(spikes, study.Trials(Modality.Eeg, DirectionName.Given, "F7-Cz"));
+    }
+
+    [Fact]
+    public void HippocampalSpike_Of100Nanoamperemetres_IsReadInTens()
+    {
+        // 100 nAm gives some 7 uV at the scalp (derived from the published amplitude); band 4 to 12 uV and 6 to 40 spikes.
+        WholeChain study = WholeChain.Run(WholeChain.Adult + """
+            sensors: {eeg: {layout: ten-ten-64, reference: average}}
+            noise: {eeg_sensor_uV_rms: 9}
+            responses: [{name: spike, regions: [hippocampus-left], moment_nAm: 100, band_Hz: [1, 70], direction: [0, 0, 1]}]
+            """);
+        Assert.InRange(study.Peak(Modality.Eeg, DirectionName.Given, Names.BestChannel), 4, 12);
+        Assert.InRange(study.Trials(Modality.Eeg, DirectionName.Given, Names.BestChannel), 6, 40);
+    }
+
+    [Theory]
     [InlineData(66, 20, 2.0, 5.0)]
     [InlineData(66, 30, 2.0, 5.0)]
     [InlineData(30, 20, 1.4, 2.2)]

@@ -28,7 +28,8 @@ internal sealed class VoxelSphere
     /// <param name="head">Layers, centred at the origin; the innermost is source tissue and isotropic.</param>
     /// <param name="toWorld">Linear part of the voxels' map; they are centred at the origin.</param>
     /// <param name="adapted">True for moved nodes.</param>
-    public VoxelSphere(LayeredSphere head, Affine toWorld, bool adapted)
+    /// <param name="eccentricities">Where alone errors will be asked for, of monopoles: rows of other nodes are not kept. Null: anywhere.</param>
+    public VoxelSphere(LayeredSphere head, Affine toWorld, bool adapted, IReadOnlyList<double>? eccentricities = null)
     {
         _head = head;
         (TissueVolume volume, ConductivityTensors? tensors) = Voxels(head, toWorld);
@@ -41,7 +42,9 @@ internal sealed class VoxelSphere
         })];
         _tissue = new(mesh);
         SensorLoads loads = new(new(mesh, _electrodes), new(mesh, _channels, tensors));
-        _rows = new(KeptNodes.All(_tissue), _electrodes.Length, _channels.Length);
+        KeptNodes kept = eccentricities is null ? KeptNodes.All(_tissue)
+            : KeptNodes.NeededBy(DipoleLoad.Of(DipoleLoadKind.Monopoles, _tissue), eccentricities.SelectMany(Places).Where(Admitted));
+        _rows = new(kept, _electrodes.Length, _channels.Length);
         new VoxelSolver(mesh, tensors, null, 2).Solve(loads, _rows.Take, 2);
     }
 
@@ -66,9 +69,9 @@ internal sealed class VoxelSphere
         for (int d = 0; d < Dipoles; d++)
         {
             Vec3 radial = GoldenSpiral.Point(d, Dipoles, -1), position = eccentricity * BrainRadius * radial;
-            if (!SourceTissue.Admits(_tissue.Mesh.Volume.At(position).Kind))
+            if (!Admitted(position))
             {
-                continue;                                    // the voxel that holds the place has its centre in the CSF
+                continue;
             }
 
             Vec3 tangential = Vec3.Cross(radial, Math.Abs(radial.Z) < 0.9 ? new(0, 0, 1) : new(1, 0, 0)).Unit();
@@ -88,6 +91,11 @@ internal sealed class VoxelSphere
 
         return new(rdmTangential.Count, Median(rdmTangential), Median(lnTangential), Median(rdmRadial), Median(lnRadial), Median(meg), High(rdmTangential), High(rdmRadial), High(meg));
     }
+
+    private static IEnumerable<Vec3> Places(double eccentricity) => Enumerable.Range(0, Dipoles).Select(d => eccentricity * BrainRadius * GoldenSpiral.Point(d, Dipoles, -1));
+
+    // Else the voxel that holds the place has its centre in the CSF.
+    private bool Admitted(Vec3 position) => SourceTissue.Admits(_tissue.Mesh.Volume.At(position).Kind);
 
     private static (TissueVolume Volume, ConductivityTensors? Tensors) Voxels(LayeredSphere head, Affine toWorld)
     {

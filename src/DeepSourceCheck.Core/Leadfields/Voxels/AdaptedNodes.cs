@@ -28,7 +28,8 @@ public static class AdaptedNodes
     {
         var shifts = new Vec3[mesh.Nodes.Count];
         Propose(mesh, shifts);
-        for (int round = 0; TakeBack(mesh, shifts, round == MostRounds ? 0.0 : 0.5); round++)
+        byte[]? changed = null;
+        for (int round = 0; TakeBack(mesh, shifts, round == MostRounds ? 0.0 : 0.5, ref changed); round++)
         {
         }
 
@@ -109,12 +110,16 @@ public static class AdaptedNodes
     }
 
     /// <summary>Shrinks the moves of the nodes of unsound elements; true if there were any.</summary>
-    private static bool TakeBack(HexMesh mesh, Vec3[] shifts, double keep)
+    /// <param name="mesh">The plain grid.</param>
+    /// <param name="shifts">Move of each node [m].</param>
+    /// <param name="keep">What an unsound element's nodes keep of their moves.</param>
+    /// <param name="changed">1 for nodes that the round before shrank: an element without any was sound then and is now. Null: none came before. Receives those of this round.</param>
+    private static bool TakeBack(HexMesh mesh, Vec3[] shifts, double keep, ref byte[]? changed)
     {
-        VoxelGrid grid = mesh.Volume.Grid;
         HexMesh moved = mesh.Adapted(shifts);
+        byte[]? before = changed;
         var unsound = new byte[mesh.Nodes.Count];            // set to 1 from any slice: in whatever order, the same nodes
-        Parallel.For(0, grid.Nz, k => FindUnsound(moved, shifts, k, unsound));
+        Parallel.For(0, mesh.Volume.Grid.Nz, k => FindUnsound(moved, shifts, k, before, unsound));
         bool any = false;
         for (int node = 0; node < unsound.Length; node++)
         {
@@ -125,41 +130,46 @@ public static class AdaptedNodes
             }
         }
 
+        changed = unsound;
         return any;
     }
 
-    private static void FindUnsound(HexMesh moved, Vec3[] shifts, int k, byte[] unsound)
+    private static void FindUnsound(HexMesh moved, Vec3[] shifts, int k, byte[]? changed, byte[] unsound)
     {
         VoxelGrid grid = moved.Volume.Grid;
-        ReadOnlySpan<byte> cells = moved.Volume.Cells;
         double voxel = grid.ToWorld.Determinant;
         Span<Vec3> corners = stackalloc Vec3[HexElement.Corners];
-        Span<int> nodes = stackalloc int[HexElement.Corners];
-        for (int at = grid.Index(0, 0, k); at < grid.Index(0, 0, k + 1); at++)
+        Span<int> nodes = stackalloc int[HexElement.Corners], bases = stackalloc int[HexElement.Corners / 2];
+        for (int j = 0; j < grid.Ny; j++)
         {
-            if (cells[at] == 0)
+            ReadOnlySpan<byte> row = moved.Volume.Cells.Slice(grid.Index(0, j, k), grid.Nx);
+            int first = row.IndexOfAnyExcept((byte)0), last = row.LastIndexOfAnyExcept((byte)0);
+            for (int pair = 0; first >= 0 && pair < bases.Length; pair++)
             {
-                continue;
+                bases[pair] = moved.Nodes.Base(j + (pair & 1), k + (pair >> 1))!.Value;
             }
 
-            (int i, int j, _) = grid.Voxel(at);
-            bool any = false;
-            for (int c = 0; c < HexElement.Corners; c++)
+            for (int i = first; i >= 0 && i <= last; i++)
             {
-                nodes[c] = moved.Nodes.Base(j + (c >> 1 & 1), k + (c >> 2))!.Value + i + (c & 1);
-                any |= shifts[nodes[c]] != Vec3.Zero;
-            }
-
-            for (int c = 0; any && c < HexElement.Corners; c++)
-            {
-                corners[c] = moved.Position(i + (c & 1), j + (c >> 1 & 1), k + (c >> 2), nodes[c]);
-            }
-
-            if (any && HexElement.LeastDeterminant(corners, voxel) < LeastDeterminant)
-            {
-                foreach (int node in nodes)
+                bool look = false;
+                for (int c = 0; row[i] != 0 && c < HexElement.Corners; c++)
                 {
-                    unsound[node] = 1;
+                    int node = bases[c >> 1] + i + (c & 1);
+                    nodes[c] = node;
+                    look |= changed is null ? shifts[node] != Vec3.Zero : changed[node] != 0;
+                }
+
+                for (int c = 0; look && c < HexElement.Corners; c++)
+                {
+                    corners[c] = moved.Position(i + (c & 1), j + (c >> 1 & 1), k + (c >> 2), nodes[c]);
+                }
+
+                if (look && HexElement.LeastDeterminant(corners, voxel) < LeastDeterminant)
+                {
+                    foreach (int node in nodes)
+                    {
+                        unsound[node] = 1;
+                    }
                 }
             }
         }

@@ -18,21 +18,24 @@ public sealed class TransferRows
 {
     private const int Lanes = ILoadBlocks.Lanes, CacheLine = 64;
 
+    /// <summary>Values that rows can hold at most: what one array holds.</summary>
+    public static readonly long MostValues = Array.MaxLength - Lanes;
+
     private readonly float[] _values;
     private readonly int _start;
 
     /// <param name="kept">Nodes.</param>
     /// <param name="electrodes">Number of electrodes.</param>
     /// <param name="channels">Number of MEG channels.</param>
-    /// <exception cref="ArgumentOutOfRangeException">No sensor, or more rows than an array holds.</exception>
+    /// <exception cref="ArgumentOutOfRangeException">No sensor, or more than <see cref="MostValues"/>: whoever plans asks <see cref="ValuesFor"/> first.</exception>
     public TransferRows(KeptNodes kept, int electrodes, int channels)
     {
         ArgumentOutOfRangeException.ThrowIfNegative(electrodes);
         ArgumentOutOfRangeException.ThrowIfNegative(channels);
         ArgumentOutOfRangeException.ThrowIfZero(electrodes + channels);
-        (Kept, Electrodes, Channels, Stride) = (kept, electrodes, channels, Padded(electrodes + channels));
-        long length = (long)kept.Count * Stride;
-        ArgumentOutOfRangeException.ThrowIfGreaterThan(length, Array.MaxLength - Lanes, nameof(kept));
+        (Kept, Electrodes, Channels, Stride) = (kept, electrodes, channels, (int)Padded(electrodes + channels));
+        long length = ValuesFor(kept.Count, electrodes + channels);
+        ArgumentOutOfRangeException.ThrowIfGreaterThan(length, MostValues, nameof(kept));
         _values = GC.AllocateArray<float>((int)length + Lanes, pinned: true);
         nint beyond = Marshal.UnsafeAddrOfPinnedArrayElement(_values, 0) % CacheLine;
         _start = beyond == 0 ? 0 : (int)(CacheLine - beyond) / sizeof(float);
@@ -56,7 +59,10 @@ public sealed class TransferRows
     private Span<float> Whole => _values.AsSpan(_start, Kept.Count * Stride);
 
     /// <summary>Memory of the rows of so many nodes and sensors [bytes].</summary>
-    public static long BytesFor(int nodes, int sensors) => (long)nodes * Padded(sensors) * sizeof(float);
+    public static long BytesFor(int nodes, int sensors) => ValuesFor(nodes, sensors) * sizeof(float);
+
+    /// <summary>Values of the rows of so many nodes and sensors, padding counted.</summary>
+    public static long ValuesFor(long nodes, long sensors) => nodes * Padded(sensors);
 
     /// <summary>Takes the solution of a block of right-hand sides of <see cref="SensorLoads"/>.</summary>
     /// <param name="block">Number of the block.</param>
@@ -87,5 +93,5 @@ public sealed class TransferRows
     /// <param name="read">Overwrites what it is given.</param>
     public void Load(int start, int count, Action<Span<float>> read) => read(Whole.Slice(start, count));
 
-    private static int Padded(int sensors) => (sensors + Lanes - 1) / Lanes * Lanes;
+    private static long Padded(long sensors) => (sensors + Lanes - 1) / Lanes * Lanes;
 }

@@ -75,8 +75,8 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
             least = Math.Min(least, worst);
             if (stuck > 1 || total >= settings.MostIterations || double.IsPositiveInfinity(worst))
             {
-                int at = Array.FindIndex(Residuals, r => !(r < worst));
-                throw new NoConvergenceException(firstRightHandSide + Math.Max(0, at), total, worst, settings.Tolerance);
+                int[] unsolved = [.. Enumerable.Range(0, Lanes).Where(lane => !Holds(lane)).OrderBy(lane => double.IsNaN(Residuals[lane]) ? double.NegativeInfinity : -Residuals[lane])];
+                throw new NoConvergenceException([.. unsolved.Select(lane => firstRightHandSide + lane)], total, worst, settings.Tolerance);
             }
         }
 
@@ -282,7 +282,7 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
         {
             Residuals[lane] = _norm[lane] > 0 ? Math.Sqrt(_rr[lane] / _norm[lane]) : 0;
             _floor[lane] = Rounding * Rounding * _sums[lane];
-            if (!(Residuals[lane] <= settings.Tolerance || _rr[lane] <= _floor[lane]))
+            if (!Holds(lane))
             {
                 all = false;
                 worst = Math.Max(worst, double.IsNaN(Residuals[lane]) ? double.PositiveInfinity : Residuals[lane]);
@@ -291,6 +291,9 @@ internal sealed unsafe class BlockConjugateGradient(MultigridHierarchy levels, C
 
         return all;
     }
+
+    // Below the tolerance or at what rounding of x leaves; false for what is not a number.
+    private bool Holds(int lane) => Residuals[lane] <= settings.Tolerance || _rr[lane] <= _floor[lane];
 
     private static void Dot(LaneVector a, LaneVector b, double[] result)
     {

@@ -16,6 +16,9 @@ internal sealed class StandInParts(LayeredSphere sphere) : IVoxelSensors, IVoxel
 {
     public List<VoxelProblem> Solved { get; } = [];
 
+    /// <summary>Called with the number of a solution, from 0, and its leadfields.</summary>
+    public Action<int, ILeadfieldSource> OnSolved { get; set; } = (_, _) => { };
+
     /// <summary>The head that was built last.</summary>
     public BuiltVoxelHead? Built { get; private set; }
 
@@ -44,6 +47,11 @@ internal sealed class StandInParts(LayeredSphere sphere) : IVoxelSensors, IVoxel
     public ILeadfieldSource Solve(VoxelProblem problem, RunSettings settings, List<string> warnings)
     {
         Solved.Add(problem);
-        return new SphereLeadfield(sphere, problem.Electrodes, problem.Channels);
+        var source = new SphereLeadfield(sphere, problem.Electrodes, problem.Channels);
+        OnSolved(Solved.Count - 1, source);
+        return source;
     }
+
+    // As if dipoles shared no nodes.
+    public int KeptNodes(VoxelProblem problem) => 27 * problem.Places.Count;
 }

@@ -43,7 +43,7 @@ public sealed class VoxelPipelineTests : IDisposable
         responses: [{name: r, regions: [core], moment_nAm: 10, band_Hz: [1, 40], direction: tangential}]
         """;
 
-    private static readonly LayeredSphere Sphere = new("sphere", Vec3.Zero,
+    internal static readonly LayeredSphere Sphere = new("sphere", Vec3.Zero,
         [new("brain", 0.071, 0.33, 0.33), new("skull", 0.083, 0.0132, 0.0132), new("scalp", 0.092, 0.43, 0.43)]);
 
     private readonly ScratchFolder _folder = new();
@@ -53,7 +53,8 @@ public sealed class VoxelPipelineTests : IDisposable
 
     public void Dispose() => _folder.Dispose();
 
-    private static string Voxels(string more = "") => $"title: t\nhead:\n  voxels:\n    labels: head.nii\n{Tissues}\n{more}{Rest}";
+    /// <summary>A study on head.nii.</summary>
+    internal static string Voxels(string more = "") => $"title: t\nhead:\n  voxels:\n    labels: head.nii\n{Tissues}\n{more}{Rest}";
 
     private PreparedStudy Prepare(string study, bool checkOnly = false, long? memory = null, Purpose purpose = Purpose.Assess) =>
         StudyPipeline.Prepare(_folder.Write("study.yaml", study), purpose, Settings(checkOnly, memory));
@@ -64,7 +65,7 @@ public sealed class VoxelPipelineTests : IDisposable
     private string Refusal(string study, bool checkOnly = false, long? memory = null) => Assert.Throws<InputException>(() => Prepare(study, checkOnly, memory)).Message;
 
     /// <summary>The sphere of the leadfields, with 2 mm of csf around the brain.</summary>
-    private static TissueVolume Good(double edge = Edge) => SphereVolumes.Of(edge, [0.092, 0.083, 0.071, 0.069]);
+    internal static TissueVolume Good(double edge = Edge) => SphereVolumes.Of(edge, [0.092, 0.083, 0.071, 0.069]);
 
     private void Head(TissueVolume volume) => _folder.Write("head.nii", volume.File());
 
@@ -108,6 +109,18 @@ public sealed class VoxelPipelineTests : IDisposable
         }
 
         Assert.Equal(2, _parts.Solved.Count + 1);
+    }
+
+    [Fact]
+    public void RemovalOfTheRoom_IsThatOfTheSphere_WhereTheLeadfieldIs()
+    {
+        static string Room(string study) => study.Replace("eeg_total: {rms_uV: 20, derivation: Cz-mastoids, band_Hz: [1, 100]}", "brain: none\n  environment: {meg_fT_per_rtHz: 3, removed: true}", StringComparison.Ordinal);
+        RegionResult a = Assess(Room(Voxels())).Responses[0].Regions[0], b = Assess(Room($"title: t\nhead: {{spheres: {Layers}}}\n{Rest}")).Responses[0].Regions[0];
+        Assert.Equal(b.Removal, a.Removal);
+        Assert.True(a.Removal!.MatchedFilterDb < -1, "outward magnetometers above a deep source");
+        PreparedStudy prepared = Prepare(Room(Voxels()));
+        prepared.ReleaseLeadfields();
+        Assert.Null(prepared.Setup.Removal);
     }
 
     [Fact]

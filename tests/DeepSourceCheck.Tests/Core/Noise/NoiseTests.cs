@@ -126,7 +126,7 @@ public class NoiseTests
     {
         var builder = new NoiseBuilder(Default, 3, [], null, CzMastoids);
         builder.Build(null, null, [Click with { Band = new Band(0.1, 4000) }]);
-        Assert.Contains(builder.Warnings, w => w.Contains("leaves the noise tables", StringComparison.Ordinal));
+        Assert.Contains(builder.Warnings, w => w.Contains("0.1 to 4000 Hz leaves the table of the total EEG (1 to 3000 Hz)", StringComparison.Ordinal));
     }
 
     [Fact]

@@ -78,6 +78,18 @@ public class LaneWidthTests
         }
     }
 
+    private sealed record Removing(int Terms) : IKernel
+    {
+        public double[] Run<T>()
+            where T : struct, ILaneVector<T>
+        {
+            string[] names = ["a", "b", "c", "d", "e"];
+            double[] input = Random(3 * Lanes * names.Length, 1), output = new double[input.Length];
+            ChannelOperator.Removal(names, [.. Enumerable.Range(1, Terms).Select(t => (Random(names.Length, t), Random(names.Length, 2 * t)))]).Apply<T>(ref input[0], ref output[0]);
+            return output;
+        }
+    }
+
     private sealed record Whitening(int Rows) : IKernel
     {
         public double[] Run<T>()
@@ -109,7 +121,7 @@ public class LaneWidthTests
 
     private static IKernel[] Kernels { get; } =
     [
-        new Eeg(1, 1), new Eeg(1, 3), new Eeg(1, 4), new Eeg(1, 7), new Eeg(1, 12), new Eeg(0.5, 7), new Meg(), new Reference(), new Eigenvalue(),
+        new Eeg(1, 1), new Eeg(1, 3), new Eeg(1, 4), new Eeg(1, 7), new Eeg(1, 12), new Eeg(0.5, 7), new Meg(), new Reference(), new Removing(1), new Removing(8), new Eigenvalue(),
         new Split(0, 1), new Split(1, 1), new Split(2, 1), new Split(3, 1), new Split(40, 1), new Split(291, 1e9), new Split(41, 1e-170), new Split(41, 1e170),
         new Whitening(1), new Whitening(3), new Whitening(4), new Whitening(5), new Whitening(8), new Whitening(13), new Whitening(40),
     ];

@@ -1,5 +1,6 @@
 using System.Globalization;
 using System.Runtime.InteropServices;
+using System.Security.Cryptography;
 
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads.Voxels;
@@ -106,6 +107,91 @@ public class RowCacheTests
         Assert.False(cache.TryRead(Key(1), Empty(), out _, out string? trouble));
         Assert.Contains($"{EntryLength} belong", trouble, StringComparison.Ordinal);
         Assert.False(File.Exists(path));
+    }
+
+    [Fact]
+    public void Entry_HasTheBytesOnRecord()
+    {
+        // By hand, and its SHA-256 by a separate script: whoever changes the layout changes the mark at its start.
+        Assert.Equal("1f766c011adc8f8de4e86a29fab971bbb48adf1313d71ddb70aed0e7181cc6ec", Convert.ToHexStringLower(SHA256.HashData(ByHand("rows-v1\n"))));
+        using ScratchFolder scratch = new();
+        TransferRows rows = OfSmallBlock();
+        rows.Load(0, rows.Values.Length, values => MemoryMarshal.Cast<byte, float>(ByHand("rows-v1\n").AsSpan(72, 4 * values.Length)).CopyTo(values));
+        RowCache cache = new(scratch.Path);
+        Assert.Null(cache.TryWrite(CountedKey, rows, new(7, 0.25)));
+        Assert.Equal(ByHand("rows-v1\n"), File.ReadAllBytes(scratch.At(CountedKey + ".rows")));
+    }
+
+    [Fact]
+    public void EntryMadeByHand_IsRead()
+    {
+        using ScratchFolder scratch = new();
+        scratch.Write(CountedKey + ".rows", ByHand("rows-v1\n"));
+        TransferRows rows = OfSmallBlock();
+        Assert.True(new RowCache(scratch.Path).TryRead(CountedKey, rows, out RowFigures figures, out string? trouble), trouble);
+        Assert.Equal(new RowFigures(7, 0.25), figures);
+        Assert.Equal((0, 0.5f, 1, 0, 26, 27), (rows.Values[0], rows.Values[1], rows.Values[2], rows.Values[3], rows.Values[26 * 16], rows.Values[26 * 16 + 2]));
+    }
+
+    [Theory]
+    [InlineData("rows-v0\n")]
+    [InlineData("rows-v2\n")]
+    public void Entry_OfAnotherVersion_IsNotTakenThoughItsHashHolds(string mark)
+    {
+        using ScratchFolder scratch = new();
+        scratch.Write(CountedKey + ".rows", ByHand(mark));
+        RowCache cache = new(scratch.Path);
+        TransferRows rows = OfSmallBlock();
+        Assert.False(cache.TryRead(CountedKey, rows, out RowFigures figures, out string? trouble));
+        Assert.Contains("by another version", trouble, StringComparison.Ordinal);
+        Assert.Equal(default, figures);
+        Assert.All(rows.Values.ToArray(), v => Assert.Equal(0, v));
+        Assert.Null(cache.TryWrite(CountedKey, rows, new(7, 0.25)));
+        Assert.True(cache.TryRead(CountedKey, rows, out _, out _));
+    }
+
+    [Fact]
+    public void Entry_OfAnotherVersionOfTheKey_IsLeftAlone()
+    {
+        // The version is part of the key: rows of an older one have another name, and go when room is needed.
+        using ScratchFolder scratch = new();
+        scratch.Write(Key(1) + ".rows", ByHand("rows-v1\n"));
+        Assert.False(new RowCache(scratch.Path).TryRead(CountedKey, OfSmallBlock(), out _, out string? trouble));
+        Assert.Null(trouble);
+        Assert.True(File.Exists(scratch.At(Key(1) + ".rows")));
+    }
+
+    private static readonly string CountedKey = Convert.ToHexStringLower([.. Enumerable.Range(0, 32).Select(n => (byte)n)]);
+
+    private static TransferRows OfSmallBlock()
+    {
+        VoxelGrid grid = new(2, 2, 2, new(new(0.01, 0, 0), new(0, 0.01, 0), new(0, 0, 0.01), Vec3.Zero));
+        TissueVolume volume = new(grid, [.. Enumerable.Repeat((byte)1, 8)], [new(0, "air", TissueKind.Air, 0), new(1, "grey", TissueKind.Grey, 0.33)]);
+        return new(KeptNodes.All(new(HexMesh.Plain(volume))), 2, 1);
+    }
+
+    // Mark (8), key (32), number of values (8), row length, electrodes, channels, cycles (4 each), residual (8); node n and sensor s: n + s / 2, rows of sixteen; SHA-256 of the header and
+    // of the SHA-256 of the values.
+    private static byte[] ByHand(string mark)
+    {
+        using MemoryStream bytes = new();
+        using BinaryWriter to = new(bytes);
+        to.Write(System.Text.Encoding.ASCII.GetBytes(mark));
+        to.Write(Convert.FromHexString(CountedKey));
+        to.Write(27L * 16);
+        Array.ForEach([16, 2, 1, 7], to.Write);
+        to.Write(0.25);
+        to.Flush();
+        byte[] header = bytes.ToArray();
+        for (int n = 0; n < 27 * 16; n++)
+        {
+            to.Write(n % 16 < 3 ? n / 16 + n % 16 / 2f : 0f);
+        }
+
+        to.Flush();
+        to.Write(SHA256.HashData([.. header, .. SHA256.HashData(bytes.ToArray().AsSpan(72))]));
+        to.Flush();
+        return bytes.ToArray();
     }
 
     [Fact]

@@ -136,6 +136,7 @@ public class VoxelSolverTests
         var solver = new VoxelSolver(mesh, settings: new SolveSettings(1e-6, 2));
         NoConvergenceException error = Assert.Throws<NoConvergenceException>(() => MeshHeads.Solve(solver, MeshHeads.RandomLoads(solver, 3, 1)));
         Assert.Equal(2, error.Iterations);
+        Assert.Equal([0, 1, 2], error.RightHandSides.Order());
         Assert.InRange(error.Residual, 1e-6, 1);
         Assert.Contains("after 2 cycles", error.Message, StringComparison.Ordinal);
         Assert.Contains("Likely causes", error.Message, StringComparison.Ordinal);
