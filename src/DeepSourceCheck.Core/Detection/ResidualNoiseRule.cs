@@ -8,7 +8,7 @@ namespace DeepSourceCheck.Core.Detection;
 
 /// <summary>Residual noise of the EEG average at most r: N = (s/r)^2, rounded up, s the noise of one trial at one point.</summary>
 /// <remarks>
-/// Says how quiet the average is, nothing of the response: it has neither a probability nor a smallest moment. Where the reading is the best channel, s is that channel's.
+/// Says how quiet the average is, nothing of the response: it has neither a probability nor a smallest moment. s is that of the channel that was read.
 /// Source: Don and Elberling 1994, Journal of the Acoustical Society of America 96:2746 (from memory).
 /// </remarks>
 public sealed class ResidualNoiseRule(double residual, RuleReading reading) : ITargetRule
@@ -28,27 +28,14 @@ public sealed class ResidualNoiseRule(double residual, RuleReading reading) : IT
     public string? NoSmallest => "the rule asks how quiet the average is: it knows no moment";
 
     /// <inheritdoc/>
-    public bool StandsOnNoise => reading.OnePoint && double.IsNaN(reading.NoiseSd);
+    public bool StandsOnNoise => reading.OnePoint;
 
     /// <inheritdoc/>
-    /// <remarks>(r/s)^2 where s is the channel's own; else the power, of which only silence matters.</remarks>
-    public double EffectivePower(double power, double artefact, double inverseVariance = double.NaN) =>
-        power > 0 ? StandsOnNoise ? residual * residual * inverseVariance : power : 0;
+    /// <remarks>(r/s)^2, whatever the response's power, unless it is silent.</remarks>
+    public double EffectivePower(double power, double artefact, double inverseVariance = double.NaN) => power > 0 ? residual * residual * inverseVariance : 0;
 
     /// <inheritdoc/>
-    public double Trials(double effectivePower) => WeightedTrials(effectivePower, 1);
-
-    /// <inheritdoc/>
-    public double WeightedTrials(double effectivePower, double gain)
-    {
-        if (!(effectivePower > 0))
-        {
-            return double.PositiveInfinity;
-        }
-
-        double ratio = reading.NoiseSd / residual;
-        return StandsOnNoise ? 1 / (effectivePower * gain) : ratio * ratio / gain;
-    }
+    public double Trials(double effectivePower) => 1 / effectivePower;
 
     /// <inheritdoc/>
     public double? Probability(double power, double artefact, double trials) => null;

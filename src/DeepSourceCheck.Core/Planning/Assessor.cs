@@ -77,7 +77,10 @@ public static class Assessor
     };
 
     private static EvaluationPlan Plan(StudySetup setup, Response response, SignalSpace space) =>
-        new(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
+        new(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0)
+        {
+            WeightingGain = setup.Study.Noise?.SpreadBetweenTrials is { } spread ? Math.Exp(4 * spread * spread) : null,
+        };
 
     private static IEnumerable<(FilledRegion Region, ILeadfieldSource Source, IReadOnlyList<FilledRegion> Parts)> Sources(
         StudySetup setup, Response response, CancellationToken cancellation)

@@ -94,7 +94,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Rule = target.Rule,
             Measure = row.Measure,
             Direction = row.Direction,
-            Text = Text(row, target, fits, witness) + Coherence(bound, witness) + RangeText(AtMoments(bound, witness)),
+            Text = Text(row, target, fits, bound.StandsOnNoise ? null : witness) + Coherence(bound, witness) + RangeText(AtMoments(bound, witness)),
             FitsSession = fits,
             AtMoments = AtMoments(bound, witness),
             Missing = plan.SessionTrials is { } trials && witness is not null ? 1 - bound.Probability(witness.Power, witness.Artefact, trials) : null,

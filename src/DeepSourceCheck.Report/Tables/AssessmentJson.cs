@@ -370,15 +370,6 @@ public static class AssessmentJson
         }
 
         json.WriteFigure("assurance", verdict.Assurance);
-        json.WriteFigure("missing_probability", verdict.Missing);
-        if (verdict.AtMoments is { } range)
-        {
-            json.WriteStartObject("trials_at_moment");
-            json.WriteCount("low", range.Low);
-            json.WriteCount("high", range.High);
-            json.WriteEndObject();
-        }
-
         if (verdict.Averaging is { } averaging)
         {
             json.WriteStartObject("averaging");
@@ -394,6 +385,15 @@ public static class AssessmentJson
                 json.WriteString("reason", averaging.Reason);
             }
 
+            json.WriteEndObject();
+        }
+
+        json.WriteFigure("missing_probability", verdict.Missing);
+        if (verdict.AtMoments is { } range)
+        {
+            json.WriteStartObject("trials_at_moment");
+            json.WriteCount("low", range.Low);
+            json.WriteCount("high", range.High);
             json.WriteEndObject();
         }
 

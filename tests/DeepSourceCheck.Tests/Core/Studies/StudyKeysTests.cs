@@ -89,6 +89,10 @@ public class StudyKeysTests
         // The default brain exceeds a usual total at 1 to 40 Hz, and rooms are not white.
         "noise.brain.scale",
         "noise.environment.corner_Hz",
+        // The exact critical value instead of a rounded one, and averaging as it really is.
+        "target.variance_ratio.alpha",
+        "protocol.interval_jitter_ms",
+        "noise.spread_between_trials",
     ];
 
     [Fact]
