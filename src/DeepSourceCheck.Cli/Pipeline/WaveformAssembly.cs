@@ -56,7 +56,7 @@ internal static class WaveformAssembly
     private static void Judge(StudyReading reading, Response response, Waveform course, List<string> warnings)
     {
         string key = response.Key + (response.Waveform is OscillationChoice ? ".cycles" : ".waveform");
-        double cycles = (course.End - course.Start) * response.Band.High;
+        double cycles = (course.LastTime - course.FirstTime) * response.Band.High;
         if (cycles > MostCycles)
         {
             throw new InputException([reading.Problem(key, string.Create(CultureInfo.InvariantCulture,

@@ -4,7 +4,6 @@ using System.Globalization;
 using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
-using DeepSourceCheck.Core.Noise;
 using DeepSourceCheck.Core.Planning.Unknowns;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
@@ -54,7 +53,7 @@ public static class Assessor
                 StudySetup own = source is SummedSource ? setup with { Head = new SummedHead(setup.Head) } : setup;
                 EvaluationPlan asked = response.Amplitude is null ? plan
                     : plans.Peak(response with { Moment = MomentFromAmplitude.Find(plan, own.Head, source, region, cancellation) });
-                IReadOnlyList<(EvaluationPlan Plan, RegionTally Tally)> read = Read(plans, asked, own.Head, source, region, Adapt(sink, asked, setup, plans.Space),
+                List<(EvaluationPlan Plan, RegionTally Tally)> read = Read(plans, asked, own.Head, source, region, Adapt(sink, asked, setup, plans.Space),
                     n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
                 done += region.Positions.Length;
                 RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
@@ -117,7 +116,7 @@ public static class Assessor
     }
 
     private static RegionResult Result(
-        StudySetup setup, IReadOnlyList<(EvaluationPlan Plan, RegionTally Tally)> read, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts,
+        StudySetup setup, List<(EvaluationPlan Plan, RegionTally Tally)> read, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts,
         RemovalLoss? loss, CancellationToken cancellation)
     {
         (EvaluationPlan plan, RegionTally tally) = read[0];
@@ -159,7 +158,7 @@ public static class Assessor
         };
     }
 
-    private static IReadOnlyList<(EvaluationPlan Plan, RegionTally Tally)> Read(
+    private static List<(EvaluationPlan Plan, RegionTally Tally)> Read(
         PlanSet plans, EvaluationPlan peak, IHead head, ILeadfieldSource source, FilledRegion region, IDipoleSink? sink, Action<long>? progress, CancellationToken cancellation)
     {
         RegionTally tally = new RegionRun(peak, head, source).Run(region, sink, progress, cancellation);
@@ -172,7 +171,7 @@ public static class Assessor
             tally = peak.HasArtefact(Modality.Both) ? new RegionRun(peak, head, source).Run(region, null, null, cancellation) : tally;
         }
 
-        var read = new List<(EvaluationPlan, RegionTally)> { (peak, tally) };
+        var read = new List<(EvaluationPlan Plan, RegionTally Tally)> { (peak, tally) };
         foreach (EvaluationPlan other in plans.Others(peak))
         {
             EvaluationPlan own = peak.StandsOnWindow ? other.WithWindow(window) : other;

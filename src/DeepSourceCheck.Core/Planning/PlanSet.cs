@@ -1,7 +1,6 @@
 using System.Globalization;
 
 using DeepSourceCheck.Core.Detection;
-using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Noise;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;

@@ -19,13 +19,13 @@ public sealed class GaussianPulse(double width) : Waveform
     public override string Description => string.Create(CultureInfo.InvariantCulture, $"a Gaussian of {width * 1000:0.######} ms at half of its peak");
 
     /// <inheritdoc/>
-    public override double Start => -Reach * Deviation;
+    public override double FirstTime => -Reach * Deviation;
 
     /// <inheritdoc/>
-    public override double End => Reach * Deviation;
+    public override double LastTime => Reach * Deviation;
 
     /// <inheritdoc/>
-    public override IReadOnlyList<double> Knots => [Start, 0, End];
+    public override IReadOnlyList<double> Knots => [FirstTime, 0, LastTime];
 
     /// <inheritdoc/>
     public override double At(double time) => Math.Exp(-time * time / (2 * Deviation * Deviation));

@@ -42,7 +42,7 @@ public sealed class RecordedWaveform
         }
 
         double margin = 1 / band.Width;
-        (_from, _to, _step) = (waveform.Start - margin, waveform.End + margin, 1 / (SamplesACycle * band.High));
+        (_from, _to, _step) = (waveform.FirstTime - margin, waveform.LastTime + margin, 1 / (SamplesACycle * band.High));
         double[] edges = Edges(band, kinks);
         var frequencies = new List<double>();
         var weights = new List<double>();

@@ -31,13 +31,13 @@ public sealed class SampledWaveform : Waveform
 
     /// <inheritdoc/>
     public override string Description => string.Create(CultureInfo.InvariantCulture,
-        $"{_times.Length} samples over {(End - Start) * 1000:0.###} ms from {_name}, straight lines between them");
+        $"{_times.Length} samples over {(LastTime - FirstTime) * 1000:0.###} ms from {_name}, straight lines between them");
 
     /// <inheritdoc/>
-    public override double Start => _times[0];
+    public override double FirstTime => _times[0];
 
     /// <inheritdoc/>
-    public override double End => _times[^1];
+    public override double LastTime => _times[^1];
 
     /// <inheritdoc/>
     public override IReadOnlyList<double> Knots => _times;
@@ -45,7 +45,7 @@ public sealed class SampledWaveform : Waveform
     /// <inheritdoc/>
     public override double At(double time)
     {
-        if (time < Start || time > End)
+        if (time < FirstTime || time > LastTime)
         {
             return 0;
         }

@@ -9,10 +9,10 @@ public abstract class Waveform
     public abstract string Description { get; }
 
     /// <summary>Begin of the support [s].</summary>
-    public abstract double Start { get; }
+    public abstract double FirstTime { get; }
 
     /// <summary>End of the support [s].</summary>
-    public abstract double End { get; }
+    public abstract double LastTime { get; }
 
     /// <summary>Value at a time [s], without unit.</summary>
     public abstract double At(double time);
@@ -27,7 +27,7 @@ public abstract class Waveform
     /// <summary>Smallest and largest value, without unit.</summary>
     public (double Low, double High) Range()
     {
-        (double low, double high) = (Math.Min(0, At(Start)), Math.Max(0, At(Start)));
+        (double low, double high) = (Math.Min(0, At(FirstTime)), Math.Max(0, At(FirstTime)));
         foreach (double t in Extrema.Of(At, Knots))
         {
             low = Math.Min(low, At(t));

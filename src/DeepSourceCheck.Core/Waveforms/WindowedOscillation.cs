@@ -13,16 +13,16 @@ namespace DeepSourceCheck.Core.Waveforms;
 /// <param name="cycles">n, from the first to the last value other than zero; positive.</param>
 public sealed class WindowedOscillation(double frequency, double cycles) : Waveform
 {
-    private readonly double _length = cycles / frequency;
+    private readonly double _frequency = frequency, _length = cycles / frequency;
 
     /// <inheritdoc/>
-    public override string Description => string.Create(CultureInfo.InvariantCulture, $"{cycles:0.###} cycles of {frequency:0.###} Hz under a raised cosine");
+    public override string Description => string.Create(CultureInfo.InvariantCulture, $"{cycles:0.###} cycles of {_frequency:0.###} Hz under a raised cosine");
 
     /// <inheritdoc/>
-    public override double Start => -_length / 2;
+    public override double FirstTime => -_length / 2;
 
     /// <inheritdoc/>
-    public override double End => _length / 2;
+    public override double LastTime => _length / 2;
 
     /// <inheritdoc/>
     public override IReadOnlyList<double> Knots
@@ -36,10 +36,10 @@ public sealed class WindowedOscillation(double frequency, double cycles) : Wavef
 
     /// <inheritdoc/>
     public override double At(double time) => Math.Abs(time) > _length / 2 ? 0
-        : 0.5 * (1 + Math.Cos(2 * Math.PI * time / _length)) * Math.Cos(2 * Math.PI * frequency * time);
+        : 0.5 * (1 + Math.Cos(2 * Math.PI * time / _length)) * Math.Cos(2 * Math.PI * _frequency * time);
 
     /// <inheritdoc/>
-    public override Complex Spectrum(double f) => 0.5 * (Envelope(f - frequency) + Envelope(f + frequency));
+    public override Complex Spectrum(double frequency) => 0.5 * (Envelope(frequency - _frequency) + Envelope(frequency + _frequency));
 
     private double Envelope(double f)
     {

@@ -128,11 +128,11 @@ public class WaveformTests
     private static Complex Integral(Waveform w, double f)
     {
         const int steps = 200_000;
-        double dt = (w.End - w.Start) / steps;
+        double dt = (w.LastTime - w.FirstTime) / steps;
         Complex sum = 0;
         for (int k = 0; k <= steps; k++)
         {
-            double t = w.Start + k * dt;
+            double t = w.FirstTime + k * dt;
             sum += (k is 0 or steps ? 0.5 : 1) * dt * w.At(t) * Complex.Exp(new Complex(0, -2 * Math.PI * f * t));
         }
 

@@ -134,7 +134,7 @@ public class CourseTests
         string path = System.IO.Path.Combine(folder.Path, "w.csv");
         File.WriteAllText(path, text);
         var waveform = WaveformTable.Read(path, "w.csv");
-        Assert.Equal((0.0, 3e-3), (waveform.Start, waveform.End));
+        Assert.Equal((0.0, 3e-3), (waveform.FirstTime, waveform.LastTime));
         RelativeAssert.Equal(1, waveform.At(0.5e-3), 1e-12);
         RelativeAssert.Equal(-0.25, waveform.At(2.5e-3), 1e-12);
     }
