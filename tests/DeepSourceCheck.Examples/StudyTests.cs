@@ -324,7 +324,7 @@ public class StudyTests
         AssessedStudy study = AssessedStudy.Run(SourceTree.Study("13-steady-state.yaml"));
         JsonElement row = study.Result("following response", "inferior-colliculus-left", "EEG", "given", "Cz-mastoids");
         double snr = Math.Pow(10, row.GetProperty("snr_db").GetProperty("p50").GetDouble() / 10);
-        long trials = AssessedStudy.Trials(row);
+        long trials = AssessedStudy.Trials(row, "detection");
         Assert.InRange(trials, 9.75 / snr, 9.77 / snr + 1);
         Assert.InRange(trials, 25, 250);
     }

@@ -23,7 +23,7 @@ internal sealed record BoundCourse
 /// <summary>How a response runs in time: steady state, dominant frequency, waveform, jitter; and how well a filter for it is built.</summary>
 internal static class CourseBinder
 {
-    private static readonly string[] SteadyKeys = ["frequency_Hz", "seconds"], CourseKeys = ["component_Hz", "cycles", "waveform"];
+    private static readonly string[] SteadyKeys = ["frequency_Hz", "seconds"], CourseKeys = ["component_Hz", "cycles", "waveform"], Modalities = ["eeg", "meg"];
 
     /// <summary>Binds.</summary>
     /// <param name="entry">The response.</param>
@@ -55,7 +55,7 @@ internal static class CourseBinder
             entry.Problem("jitter_ms", $"{what}: state a waveform (samples, or {{gaussian_fwhm_ms: ...}}), component_Hz with cycles, or component_Hz alone");
         }
 
-        string[] filters = [.. new[] { "eeg", "meg" }.Where(m => (entry.Map("measure")?.Raw(m) as PlacedText)?.Text == Names.RealisticFilter)];
+        string[] filters = [.. Modalities.Where(m => (entry.Map("measure")?.Raw(m) as PlacedText)?.Text == Names.RealisticFilter)];
         if (filters.Length == 0)
         {
             const string reason = "the verdict stands on no realistic-filter";
