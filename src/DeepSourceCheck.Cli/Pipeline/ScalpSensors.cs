@@ -68,13 +68,23 @@ internal sealed class ScalpSensors : IVoxelSensors
     public string Describe(CoilArrayChoice choice) => Placed(choice).Description;
 
     /// <inheritdoc/>
-    public void CheckCoils(IReadOnlyList<MegChannel> channels, string file) => CoilPlacement.CheckOutside(_scalp, channels, file);
+    public void CheckCoils(IReadOnlyList<MegChannel> channels, string file)
+    {
+        CoilPlacement.CheckOutside(_scalp, channels, file);
+        if (CoilPlacement.TooNear(_scalp, channels, Voxel, file) is { } warning)
+        {
+            _warnings.Add(warning);
+        }
+    }
+
+    private double Voxel => Math.Cbrt(_built.Head.Volume.Grid.VoxelVolume);
 
     private HeadArray Placed(CoilArrayChoice choice)
     {
         if (!_arrays.TryGetValue(choice, out HeadArray? array))
         {
             _arrays.Add(choice, array = HeadArray.Generate(choice, _scalp, _built.Head.Sphere));
+            CoilPlacement.CheckGenerated(_scalp, array.Channels, Voxel, _warnings);
         }
 
         return array;

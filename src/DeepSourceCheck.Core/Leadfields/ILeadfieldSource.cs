@@ -1,3 +1,5 @@
+using DeepSourceCheck.Core.Geometry;
+
 namespace DeepSourceCheck.Core.Leadfields;
 
 /// <summary>Computes or looks up leadfields, a block of dipoles at a time, unreferenced.</summary>
@@ -15,4 +17,9 @@ public interface ILeadfieldSource
 
     /// <summary>Overwrites the block's EEG and MEG values at its loaded positions.</summary>
     void Fill(LeadfieldBlock block);
+
+    /// <summary>Counts what carries dipoles at places [m]; null where all are carried alike. On all processors, the same whatever their number.</summary>
+    /// <param name="positions">Places of dipoles.</param>
+    /// <param name="cancellation">Stops the count.</param>
+    SupportCounts? Supports(ReadOnlyMemory<Vec3> positions, CancellationToken cancellation) => null;
 }

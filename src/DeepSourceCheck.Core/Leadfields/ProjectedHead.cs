@@ -8,7 +8,7 @@ public sealed class ProjectedHead(IPerturbableHead inner, ChannelOperator remova
     /// <inheritdoc/>
     public double? SkullRatio => inner.SkullRatio;
 
-    /// <summary>Null: another gap is another array, with another removal.</summary>
+    /// <summary>Distance of the array from the scalp [m]: null, since another gap is another array with another removal.</summary>
     public double? Gap => null;
 
     /// <inheritdoc/>

@@ -1,5 +1,7 @@
 using System.Buffers;
 
+using DeepSourceCheck.Core.Geometry;
+
 namespace DeepSourceCheck.Core.Leadfields;
 
 /// <summary>Leadfields after an operator on their MEG rows: what an array reads once the room's spatial terms are taken out of it.</summary>
@@ -32,6 +34,9 @@ public sealed class ProjectedSource : ILeadfieldSource
 
     /// <inheritdoc/>
     public LeadfieldMethod Method { get; }
+
+    /// <inheritdoc/>
+    public SupportCounts? Supports(ReadOnlyMemory<Vec3> positions, CancellationToken cancellation) => Inner.Supports(positions, cancellation);
 
     /// <inheritdoc/>
     public void Fill(LeadfieldBlock block)

@@ -131,6 +131,7 @@ public static class Assessor
         var report = new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
         IReadOnlyList<MeasureResult> rows = report.Rows();
         SplitSummary? split = report.Split();
+        SupportCounts?[] supports = [.. parts.Select(p => setup.Source.Supports(p.Positions, cancellation))];
         IReadOnlyList<CancellationResult> lost = source is SummedSource summed ? FieldCancellation.Of(plan, setup, summed, parts, cancellation) : [];
         double?[] captured = [.. parts.Select(setup.FieldCaptured)];
         var verdicts = new VerdictWriter(setup, plan, region, source, tally).Write(ref rows, cancellation);
@@ -147,10 +148,12 @@ public static class Assessor
             FieldCaptured = captured.Min(),
             Profile = tally.Profile?.Profile(),
             Removal = loss,
+            Supports = supports.Aggregate((a, b) => a is null || b is null ? null : a + b),
             Results = rows,
             Verdicts = verdicts,
             RealisticHeads = [.. parts.Select(p => p.RealisticHead).OfType<RealisticHeadEffect>()],
-            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
+            Warnings = [.. parts.SelectMany(p => p.Warnings).Distinct(), .. Warnings(plan, parts, captured, split),
+                .. Fallbacks(parts, supports), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
                 .. loss is null ? Array.Empty<string>() : [RemovalReport.Words(region.Name, loss)]],
         };
     }
@@ -195,6 +198,9 @@ public static class Assessor
             yield return $"{response.Name}, {string.Join(" + ", parts.Select(p => p.Name))}: the regions act together and their fields oppose each other; that costs {figures} against the same moments with fields alike and in step";
         }
     }
+
+    private static IEnumerable<string> Fallbacks(IReadOnlyList<FilledRegion> parts, IReadOnlyList<SupportCounts?> supports) =>
+        parts.Zip(supports).Where(p => p.Second?.Warning is not null).Select(p => $"{p.First.Name}: {p.Second!.Warning}");
 
     private static IEnumerable<string> CentreWarnings(StudySetup setup, EvaluationPlan plan, IReadOnlyList<FilledRegion> parts)
     {

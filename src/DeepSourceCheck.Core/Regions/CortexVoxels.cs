@@ -64,7 +64,9 @@ public static class CortexVoxels
             ShapeVolume = voxels * head.Volume.Grid.VoxelVolume,
             Origin = "library",
         };
-        return RegionFill.Admit(all, head, null, null, RegionFill.WarnDroppedShare);
+        FilledRegion filled = RegionFill.Admit(all, head, null, null, RegionFill.WarnDroppedShare);
+        return filled.WithWarning(string.Create(CultureInfo.InvariantCulture,
+            $"{name}: all grey matter within {Si.ToMm(deepest):0} mm of the inner skull counts, that of the cerebellum and of whatever else is grey near bone too: labels of tissues do not tell them apart; for the cerebrum alone give a mask"));
     }
 
     private static CorticalPlace? CorticalPlaceAt(VoxelHead head, Vec3 point)

@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Leadfields;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Studies;
 
@@ -38,6 +39,9 @@ public sealed record RegionResult
 
     /// <summary>What the removal of the room's terms does to this region's MEG; null where nothing is removed or MEG sees nothing.</summary>
     public RemovalLoss? Removal { get; init; }
+
+    /// <summary>What carries its dipoles; null where all are carried alike.</summary>
+    public SupportCounts? Supports { get; init; }
 
     /// <summary>All figures.</summary>
     public required IReadOnlyList<MeasureResult> Results { get; init; }

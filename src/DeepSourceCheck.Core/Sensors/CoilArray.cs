@@ -26,7 +26,7 @@ public static class CoilArray
     /// <summary>Largest elevation of the edge, up or down [rad].</summary>
     public static readonly double LargestEdge = Si.FromDegrees(80);
 
-    private const string Key = "sensors.meg";
+    internal const string Key = "sensors.meg";
 
     /// <summary>The coils that an array can be made of.</summary>
     public static IReadOnlyList<string> Coils { get; } =

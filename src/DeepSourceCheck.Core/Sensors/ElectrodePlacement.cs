@@ -16,6 +16,12 @@ public static class ElectrodePlacement
     /// <summary>Farthest that an electrode may lie from the scalp [m]: beyond it, positions and head are in different frames or units.</summary>
     public const double LargestMove = 0.020;
 
+    /// <summary>
+    /// Deepest that an electrode for the scalp may lie in bone [m], and that one in soft tissue is moved without a word: what registration and the thickness of a scalp explain
+    /// (common practice, no source).
+    /// </summary>
+    public const double DeepEnough = 0.005;
+
     /// <summary>Reduces each position to its direction from the centre and sets it on the outer surface.</summary>
     /// <param name="names">Names, all different.</param>
     /// <param name="positions">Positions [m], as many as names, in the frame of the head.</param>
@@ -56,8 +62,9 @@ public static class ElectrodePlacement
 
     /// <summary>Sets each position on the nearest point of a real scalp; contacts inside the head stay where they are.</summary>
     /// <remarks>
-    /// A position counts as an interior contact (depth electrode, grid) when it lies in fluid or brain, or more than 20 mm below the scalp in tissue; every other one within
-    /// 20 mm of the scalp is moved onto it. Farther outside it is refused.
+    /// A position counts as an interior contact (depth electrode, grid) when it lies in fluid or brain, more than 5 mm below the scalp in bone, across which potentials fall steeply, or more
+    /// than 20 mm below it in any tissue. Every other one within 20 mm of the scalp is moved onto it, in soft tissue outside the skull too, where potentials change little with depth;
+    /// from more than 5 mm below, by name. Farther outside it is refused.
     /// </remarks>
     /// <param name="names">Names, all different.</param>
     /// <param name="positions">Positions [m], as many as names, in the frame of the volume.</param>
@@ -80,6 +87,7 @@ public static class ElectrodePlacement
         List<InputProblem> problems = [];
         HashSet<string> seen = new(StringComparer.Ordinal);
         Electrode[] electrodes = new Electrode[names.Count];
+        List<string> raised = [], doubtful = [];
         for (int k = 0; k < names.Count; k++)
         {
             (string name, Vec3 position) = (names[k], positions[k]);
@@ -89,13 +97,25 @@ public static class ElectrodePlacement
             if (problem is null)
             {
                 (Vec3 foot, double distance) = scalp.Nearest(position);
-                TissueKind kind = volume.At(position).Kind;
-                bool interior = distance < 0 && (kind is TissueKind.Csf or TissueKind.Grey or TissueKind.White || distance < -LargestMove);
+                Tissue tissue = volume.At(position);
+                TissueKind kind = tissue.Kind;
+                bool deep = distance < -DeepEnough;
+                bool interior = distance < 0 && (kind is TissueKind.Csf or TissueKind.Grey or TissueKind.White || (kind == TissueKind.Skull && deep) || distance < -LargestMove);
                 problem = distance > LargestMove ? Invariant(
                         $"is {Si.ToMm(distance):0.0} mm outside the scalp; at most {Si.ToMm(LargestMove):0} mm is allowed: check the unit and the frame of the volume")
                     : interior && kind == TissueKind.Air ? Invariant(
                         $"lies in a cavity of air {Si.ToMm(-distance):0.0} mm below the scalp, where nothing conducts; check its coordinates")
                     : null;
+                string place = Invariant($"{name} ({tissue.Name}, {Si.ToMm(-distance):0} mm below the scalp)");
+                if (interior && kind is TissueKind.Skull or TissueKind.Scalp)
+                {
+                    doubtful.Add(place);
+                }
+                else if (deep && !interior)
+                {
+                    raised.Add(place);
+                }
+
                 electrodes[k] = interior ? new(name, position, InAverage: true, 0, IsInterior: true) : new(name, foot, InAverage: true, Math.Abs(distance));
             }
 
@@ -119,13 +139,29 @@ public static class ElectrodePlacement
 
         if (problems.Count == 0)
         {
-            Describe([.. electrodes.Where(e => e.IsInterior)], scalp, warnings, problems, file);
+            Describe([.. electrodes.Where(e => e.IsInterior)], scalp, volume, warnings, problems, file);
+            string from = file is null ? "" : file + ": ";
+            if (doubtful.Count > 0)
+            {
+                warnings.Add($"{from}of these contacts, some lie outside fluid and brain: {Listed(doubtful)}; bone shields them from the brain, and scalp electrodes whose frame is off look the same: leave them out, or correct their places");
+            }
+
+            if (raised.Count > 0)
+            {
+                warnings.Add(Invariant($"{from}electrodes more than {Si.ToMm(DeepEnough):0} mm below the scalp were moved up to it, as they lie in no fluid, brain or bone: {Listed(raised)}; look whether their frame fits the volume"));
+            }
         }
 
         return problems.Count == 0 ? electrodes : throw new InputException(problems);
     }
 
-    private static void Describe(Electrode[] contacts, ScalpSurface scalp, List<string> warnings, List<InputProblem> problems, string? file)
+    private static string Listed(List<string> places)
+    {
+        const int most = 6;
+        return string.Join(", ", places.Take(most)) + (places.Count > most ? Invariant($" and {places.Count - most} more") : "");
+    }
+
+    private static void Describe(Electrode[] contacts, ScalpSurface scalp, TissueVolume volume, List<string> warnings, List<InputProblem> problems, string? file)
     {
         if (contacts.Length == 0)
         {
@@ -139,10 +175,8 @@ public static class ElectrodePlacement
             return;
         }
 
-        const int Listed = 6;
-        string listed = string.Join(", ", contacts.Take(Listed).Select(c => Invariant($"{c.Name} ({Si.ToMm(-scalp.Nearest(c.Position).SignedDistance):0} mm below the scalp)")));
-        string more = contacts.Length > Listed ? Invariant($" and {contacts.Length - Listed} more") : "";
-        warnings.Add($"{(file is null ? "" : file + ": ")}electrodes inside the head count as interior contacts and stay where they are: {listed}{more}; "
+        string listed = Listed([.. contacts.Select(c => Invariant($"{c.Name} ({volume.At(c.Position).Name}, {Si.ToMm(-scalp.Nearest(c.Position).SignedDistance):0} mm below the scalp)"))]);
+        warnings.Add($"{(file is null ? "" : file + ": ")}electrodes inside the head count as interior contacts and stay where they are: {listed}; "
             + "if they belong on the scalp, their frame does not fit the volume");
     }
 

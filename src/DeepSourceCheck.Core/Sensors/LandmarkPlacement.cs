@@ -56,11 +56,13 @@ public static class LandmarkPlacement
         }
 
         // Each as far from the scalp as no reading of a point on skin should be.
-        string[] moved = [.. placed.Values.Where(l => l.MovedBy > TellMove).Select(l => string.Create(CultureInfo.InvariantCulture,
+        string[] said = [.. placed.Values.Where(l => l.MovedBy > TellMove).Select(l => string.Create(CultureInfo.InvariantCulture,
             $"{Key}.{l.Name} lies {Si.ToMm(l.MovedBy):0.0} mm from the scalp and was moved onto it: check the frame of the landmarks"))];
-        if (placed.Count == HeadLandmarks.Names.Count)
+        bool allGiven = placed.Count == HeadLandmarks.Names.Count;
+        said = [.. said, .. LandmarkChecks.Judge(scalp, placed.Values, frameToo: allGiven).Select(w => $"{Key}: {w}")];
+        if (allGiven)
         {
-            return new(placed["Nz"], placed["Iz"], placed["LPA"], placed["RPA"], moved);
+            return new(placed["Nz"], placed["Iz"], placed["LPA"], placed["RPA"], said);
         }
 
         HeadLandmarks found = LandmarkFinder.Find(scalp, placed.GetValueOrDefault("Nz")?.Position, placed.GetValueOrDefault("Iz")?.Position);
@@ -68,6 +70,6 @@ public static class LandmarkPlacement
         Landmark[] all = [.. found.All.Select(Of)];
         string stated = string.Join(", ", all.Where(l => !l.Given).Select(l => string.Create(CultureInfo.InvariantCulture,
             $"{l.Name} ({Si.ToMm(l.Position.X):0}, {Si.ToMm(l.Position.Y):0}, {Si.ToMm(l.Position.Z):0}) mm, to about {Si.ToMm(l.Uncertainty):0} mm")));
-        return new(all[0], all[1], all[2], all[3], [.. moved, .. found.Warnings, $"landmarks found by the head's shape, with x to the right, y to the front and z up: {stated}; give {Key} where they are known"]);
+        return new(all[0], all[1], all[2], all[3], [.. said, .. found.Warnings, $"landmarks found by the head's shape, with x to the right, y to the front and z up: {stated}; give {Key} where they are known"]);
     }
 }

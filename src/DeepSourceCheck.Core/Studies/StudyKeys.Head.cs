@@ -99,7 +99,7 @@ public static partial class StudyKeys
             Defaults = Default("monopoles", "Saint-Venant's principle: Buchner et al. 1997; held against the layered sphere, MEG of deep dipoles errs several times less than with the gradient", Grade.Memory),
         },
         new("head.voxels.tensors", "Conductivity tensors of some tissues.", new MapShape()) { Example = "{file: tensors.nii.gz, tissues: [white]}" },
-        new("head.voxels.tensors.file", "The tensors: symmetric 3 x 3 in world axes, S/m, on the grid of the labels (NIfTI intent 1005, lower triangle).",
+        new("head.voxels.tensors.file", "The tensors: symmetric 3 x 3, S/m, on the grid of the labels (NIfTI intent 1005: xx, xy, yy, xz, yz, zz), in world axes (x right, y front, z up), never in voxel axes.",
             new FileShape("a NIfTI tensor volume"))
         {
             Required = true,

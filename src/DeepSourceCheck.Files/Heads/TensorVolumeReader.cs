@@ -3,6 +3,7 @@ using System.Numerics;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Units;
 using DeepSourceCheck.Files.Nifti;
 
 using static System.FormattableString;
@@ -27,6 +28,9 @@ public static class TensorVolumeReader
 
     /// <summary>Distance [voxels], without unit, by which the corners of both grids may differ: rounding of single precision.</summary>
     private const double GridTolerance = 0.01;
+
+    /// <summary>Angle [rad] by which voxel and world axes may differ without a word: a tensor of the greatest anisotropy then changes by less than a hundredth.</summary>
+    private const double TurnTolerance = 0.01;
 
     /// <summary>Reads the tensors of some tissues.</summary>
     /// <param name="path">The file.</param>
@@ -65,7 +69,33 @@ public static class TensorVolumeReader
 
         string[] gaps = missing == 0 ? [] : [Invariant(
             $"{displayName}: {missing:N0} of {count:N0} voxels of {string.Join(", ", tissues)} ({100.0 * missing / count:0.#} %) have no tensor (zero or not finite); the tissue's own conductivity stands in there")];
-        return new(tensors, Means(head, tensors), [.. warnings, .. gaps]);
+        return new(tensors, Means(head, tensors), [.. warnings, .. AxesWarning(labels, displayName) is { } turned ? [turned] : Array.Empty<string>(), .. gaps]);
+    }
+
+    /// <summary>Where voxel axes and world axes differ, files that hold tensors in voxel axes look the same and mean others: says which axes were taken.</summary>
+    private static string? AxesWarning(VoxelGrid grid, string displayName)
+    {
+        Vec3[] world = [new(1, 0, 0), new(0, 1, 0), new(0, 0, 1)];
+        string[] names = ["right", "front", "up"], opposite = ["left", "back", "down"];
+        Vec3[] axes = [.. Enumerable.Range(0, 3).Select(axis => grid.ToWorld.Column(axis).Unit())];
+        double[] off = [.. axes.Select((axis, k) => Math.Atan2(Vec3.Cross(axis, world[k]).Norm, Vec3.Dot(axis, world[k])))];
+        if (off.Max() <= TurnTolerance)
+        {
+            return null;
+        }
+
+        // A flip or a swap of axes is named by where the voxel axes point, what is left as the angle from there.
+        int[] nearest = [.. axes.Select(axis => Enumerable.Range(0, 3).MaxBy(k => Math.Abs(Vec3.Dot(axis, world[k]))))];
+        string[] towards = [.. axes.Select((axis, k) => Vec3.Dot(axis, world[nearest[k]]) > 0 ? names[nearest[k]] : opposite[nearest[k]])];
+        double angle = axes.Select((axis, k) => Math.Atan2(Vec3.Cross(axis, world[nearest[k]]).Norm, Math.Abs(Vec3.Dot(axis, world[nearest[k]])))).Max();
+        bool plain = towards.SequenceEqual(names);
+        string how = (plain, angle > TurnTolerance) switch
+        {
+            (true, _) => Invariant($"are turned by up to {Si.ToDegrees(angle):0.0} degrees against those of the world"),
+            (false, false) => $"point to the {string.Join(", ", towards)}",
+            _ => Invariant($"point to the {string.Join(", ", towards)}, turned by up to {Si.ToDegrees(angle):0.0} degrees"),
+        };
+        return $"{displayName}: its voxel axes {how}; the tensors were taken in world axes (x right, y front, z up). Programs that write them in voxel axes are common: then rotate the tensors into world axes first, or fibres run the wrong way";
     }
 
     private static void CheckGrid(NiftiHeader header, VoxelGrid labels, string displayName)

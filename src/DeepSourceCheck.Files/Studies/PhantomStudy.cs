@@ -37,6 +37,7 @@ public static class PhantomStudy
         [PhantomHead.Csf] = "Baumann 1997 at body temperature (memory)",
         [PhantomHead.Grey] = "common practice, no source",
         [PhantomHead.White] = "as grey: not myelinated yet; common practice, no source",
+        [PhantomHead.Fontanelle] = "a membrane that conducts as brain does; common practice, no source",
     };
 
     /// <summary>Text of the study for a head.</summary>

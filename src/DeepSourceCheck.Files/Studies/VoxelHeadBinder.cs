@@ -149,12 +149,14 @@ internal static class VoxelHeadBinder
         double? brain = (tissues.Find(t => t.Kind == TissueKind.Grey) ?? tissues.Find(t => t.Kind == TissueKind.White))?.Conductivity;
         for (int k = 0; k < tissues.Count; k++)
         {
-            if (entries[k].Raw(ConductivityKey) is not { } stated || !Usual.TryGetValue(tissues[k].Kind, out TypicalRange? usual))
+            // A fontanelle is part of the skull, but no bone: it is judged as the soft tissue that it is.
+            bool membrane = TissueWords.IsMembrane(tissues[k].Name);
+            if (entries[k].Raw(ConductivityKey) is not { } stated || !Usual.TryGetValue(membrane ? TissueKind.Scalp : tissues[k].Kind, out TypicalRange? usual))
             {
                 continue;
             }
 
-            if (tissues[k].Kind == TissueKind.Skull && brain is { } b)
+            if (tissues[k].Kind == TissueKind.Skull && !membrane && brain is { } b)
             {
                 reading.Judge(stated, b / tissues[k].Conductivity, HeadBinder.SkullRatio, "", "the ratio of the brain's conductivity to the skull's,");
             }

@@ -29,6 +29,11 @@ public static class WhyText
             text.Append(Wrap($"Leadfields: {details}.", 0));
         }
 
+        if (region.Supports is { } supports)
+        {
+            text.Append(Wrap($"Its dipoles in the finite elements: {supports.Text}.", 0));
+        }
+
         foreach (VerdictResult verdict in region.Verdicts)
         {
             ModalityAnswer answer = new(region, verdict);

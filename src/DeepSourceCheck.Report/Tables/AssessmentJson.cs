@@ -163,6 +163,16 @@ public static class AssessmentJson
             json.WriteNull("split");
         }
 
+        if (region.Supports is { } supports)
+        {
+            json.WriteStartObject("dipoles_carried_by");
+            json.WriteNumber("all_nodes", supports.Whole);
+            json.WriteNumber("fewer_nodes", supports.Partial);
+            json.WriteNumber("border_nodes", supports.Border);
+            json.WriteNumber("element_gradient", supports.Element);
+            json.WriteEndObject();
+        }
+
         if (region.Profile is { } profile)
         {
             json.WriteArray("by_depth", profile.ByDepth, (j, bin) => WriteBin(j, bin, "mm", Si.ToMm));

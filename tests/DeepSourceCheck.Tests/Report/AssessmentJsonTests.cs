@@ -2,6 +2,7 @@ using System.Text.Json;
 
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Report.Console;
 using DeepSourceCheck.Report.Tables;
 using DeepSourceCheck.Tests.Support;
 
@@ -86,6 +87,19 @@ public class AssessmentJsonTests
         JsonElement snr = FirstRegion(Parse(With(a, region with { Results = [odd] }))).GetProperty("results")[0].GetProperty("snr_db");
         Assert.All(new[] { "p05", "p25", "p75", "p95" }, key => Assert.Equal(JsonValueKind.Null, snr.GetProperty(key).ValueKind));
         Assert.Equal(-1.5, snr.GetProperty("p50").GetDouble());
+    }
+
+    // Heads that carry every dipole alike leave it out.
+    [Fact]
+    public void WhatCarriesTheDipoles_StandsInJsonAndWhy_WhereTheHeadTells()
+    {
+        Assessment a = AssessmentFixture.Default();
+        RegionResult plain = a.Responses[0].Regions[0], counted = plain with { Supports = new(1200, 30, 4, 1) };
+        JsonElement carried = FirstRegion(Parse(With(a, counted))).GetProperty("dipoles_carried_by");
+        Assert.Equal([1200, 30, 4, 1], new[] { "all_nodes", "fewer_nodes", "border_nodes", "element_gradient" }.Select(key => carried.GetProperty(key).GetInt32()));
+        Assert.False(FirstRegion(Parse(With(a, plain))).TryGetProperty("dipoles_carried_by", out _));
+        string why = WhyText.Of(a, a.Responses[0], counted, unicode: false).ReplaceLineEndings(" ");
+        Assert.Contains("1,200 of 1,235 on all nodes around them, 30 on fewer nodes within source tissue (near its border), 4 on nodes of the border itself, 1 on the gradient of their voxel", why, StringComparison.Ordinal);
     }
 
     [Fact]

@@ -15,7 +15,7 @@ internal static class PhantomClaims
     /// <summary>Volumes [mL] by label.</summary>
     public static double[] Volumes(PhantomHead head)
     {
-        double[] volumes = new double[PhantomHead.White + 1];
+        double[] volumes = new double[PhantomHead.Fontanelle + 1];
         foreach (byte label in head.Labels)
         {
             volumes[label] += 1e6 * head.Grid.VoxelVolume;
@@ -78,7 +78,7 @@ internal static class PhantomClaims
                         if (shape.Contains(p))
                         {
                             all++;
-                            within += head.Labels[head.Grid.IndexAt(p)] >= PhantomHead.Grey ? 1 : 0;
+                            within += head.Labels[head.Grid.IndexAt(p)] is PhantomHead.Grey or PhantomHead.White ? 1 : 0;
                         }
                     }
                 }
@@ -96,7 +96,7 @@ internal static class PhantomClaims
         int contacts = 0;
         for (int n = 0; n < head.Labels.Length; n++)
         {
-            if (head.Labels[n] < PhantomHead.Csf)
+            if (head.Labels[n] is not (PhantomHead.Csf or PhantomHead.Grey or PhantomHead.White))
             {
                 continue;
             }

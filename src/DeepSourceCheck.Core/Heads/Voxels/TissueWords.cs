@@ -7,12 +7,14 @@ namespace DeepSourceCheck.Core.Heads.Voxels;
 /// </remarks>
 public static class TissueWords
 {
+    private const string Membrane = "fontanel";
+
     // The order decides where a name holds words of two kinds: bone before soft and cortical, white before cerebellum.
     private static readonly (TissueKind Kind, string[] Stems, string[] Whole)[] Known =
     [
         (TissueKind.Air, ["air", "background", "outside"], []),
         (TissueKind.Csf, ["csf", "fluid", "liquor", "ventric", "cerebrospinal"], []),
-        (TissueKind.Skull, ["skull", "bone", "compact", "spong", "diplo", "cancellous", "marrow", "cranium", "vertebra", "tooth", "teeth"], []),
+        (TissueKind.Skull, ["skull", "bone", "compact", "spong", "diplo", "cancellous", "marrow", "cranium", "vertebra", "tooth", "teeth", Membrane], []),
         (TissueKind.Scalp, ["scalp", "skin", "soft", "muscle", "fat", "eye", "cartilage", "mucosa"], []),
         (TissueKind.White, ["white"], ["wm"]),
         (TissueKind.Grey, ["grey", "gray", "brain", "cortex", "cortical", "nucle", "cerebell", "thalam", "hippocamp"], ["gm"]),
@@ -20,7 +22,7 @@ public static class TissueWords
 
     /// <summary>The words that are understood, for messages.</summary>
     public const string Understood =
-        "scalp, skin, soft, muscle, fat, eye; skull, bone, compact, spongy, marrow; csf, fluid, ventricle; grey, gray, brain, cortex, nucleus, cerebellum; white; air";
+        "scalp, skin, soft, muscle, fat, eye; skull, bone, compact, spongy, marrow, fontanelle; csf, fluid, ventricle; grey, gray, brain, cortex, nucleus, cerebellum; white; air";
 
     /// <summary>The kind of tissue that a name tells, or null where none of its words is known.</summary>
     public static TissueKind? KindOf(string name)
@@ -36,6 +38,9 @@ public static class TissueWords
 
         return null;
     }
+
+    /// <summary>Whether a name tells of a fontanelle: it closes the skull as bone does, but conducts as soft tissue.</summary>
+    public static bool IsMembrane(string name) => Split(name).Any(word => word.StartsWith(Membrane, StringComparison.Ordinal));
 
     private static string[] Split(string name)
     {

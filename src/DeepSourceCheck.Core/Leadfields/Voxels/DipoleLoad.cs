@@ -30,4 +30,14 @@ public abstract class DipoleLoad
     /// <returns>Number of nodes.</returns>
     /// <exception cref="ArgumentOutOfRangeException">The place is not in source tissue.</exception>
     public abstract int Place(Vec3 position, Span<int> nodes, Span<Vec3> weights, out DipoleSupport support);
+
+    /// <summary>What carries a dipole at a place [m], without its load where that is cheaper.</summary>
+    /// <exception cref="ArgumentOutOfRangeException">The place is not in source tissue.</exception>
+    public virtual DipoleSupport SupportAt(Vec3 position)
+    {
+        Span<int> nodes = stackalloc int[MostNodes];
+        Span<Vec3> weights = stackalloc Vec3[MostNodes];
+        Place(position, nodes, weights, out DipoleSupport support);
+        return support;
+    }
 }

@@ -83,6 +83,29 @@ public sealed class MonopoleLoad : DipoleLoad
         return touching;
     }
 
+    /// <inheritdoc/>
+    public override DipoleSupport SupportAt(Vec3 position)
+    {
+        // Well inside tissue, where most dipoles are, the nodes need only be seen: 27 around the dipole always give the moment.
+        (int, int, int) voxel = Tissue.Mesh.Volume.Grid.Voxel(Tissue.VoxelAt(position));
+        return (Nearest(position, voxel, 0, within: true) ?? Nearest(position, voxel, 1, within: true)) is { } at && HasWholeSet(at) ? DipoleSupport.Whole : base.SupportAt(position);
+    }
+
+    private bool HasWholeSet((int X, int Y, int Z) centre)
+    {
+        RowGrid grid = Tissue.Mesh.Nodes;
+        for (int n = 0; n < WholeSet; n++)
+        {
+            int node = grid.IndexOf(centre.X - 1 + n % 3, centre.Y - 1 + n / 3 % 3, centre.Z - 1 + n / 9);
+            if (node < 0 || !Tissue.IsWithin(node))
+            {
+                return false;
+            }
+        }
+
+        return true;
+    }
+
     /// <summary>The nearest node among the corners of a voxel, or of the voxel and its neighbours, that lies within source tissue or touches it.</summary>
     private (int X, int Y, int Z)? Nearest(Vec3 position, (int I, int J, int K) voxel, int margin, bool within)
     {

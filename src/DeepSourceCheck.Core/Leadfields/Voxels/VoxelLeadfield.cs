@@ -50,12 +50,34 @@ public sealed class VoxelLeadfield : ILeadfieldSource
 
     /// <summary>What carries a dipole at a place [m]: for counting those near the border of source tissue.</summary>
     /// <exception cref="ArgumentOutOfRangeException">The place is not in source tissue.</exception>
-    public DipoleSupport SupportAt(Vec3 position)
+    public DipoleSupport SupportAt(Vec3 position) => _load.SupportAt(position);
+
+    /// <inheritdoc/>
+    /// <exception cref="ArgumentOutOfRangeException">A place is not in source tissue.</exception>
+    public SupportCounts? Supports(ReadOnlyMemory<Vec3> positions, CancellationToken cancellation)
     {
-        Span<int> nodes = stackalloc int[DipoleLoad.MostNodes];
-        Span<Vec3> weights = stackalloc Vec3[DipoleLoad.MostNodes];
-        _load.Place(position, nodes, weights, out DipoleSupport support);
-        return support;
+        if (_load is not MonopoleLoad)
+        {
+            return null;                    // the element's gradient carries every dipole alike
+        }
+
+        const int part = 1024;
+        int[] counts = new int[Enum.GetValues<DipoleSupport>().Length];
+        Parallel.For(0, (positions.Length + part - 1) / part, new ParallelOptions { CancellationToken = cancellation }, n =>
+        {
+            Span<int> own = stackalloc int[counts.Length];
+            own.Clear();
+            foreach (Vec3 position in positions.Span.Slice(n * part, Math.Min(part, positions.Length - n * part)))
+            {
+                own[(int)_load.SupportAt(position)]++;
+            }
+
+            for (int k = 0; k < counts.Length; k++)
+            {
+                Interlocked.Add(ref counts[k], own[k]);
+            }
+        });
+        return new(counts[(int)DipoleSupport.Whole], counts[(int)DipoleSupport.Partial], counts[(int)DipoleSupport.Border], counts[(int)DipoleSupport.Element]);
     }
 
     /// <inheritdoc/>

@@ -229,6 +229,20 @@ public sealed class VoxelPipelineTests : IDisposable
         Assert.DoesNotContain("S001", coils, StringComparison.Ordinal);
     }
 
+    // The program's own placement, nothing solved: what `check` says of a contact in bone, of a generated array on the skin and of landmarks that pitch the head.
+    [Fact]
+    public void WhatWasGivenAndDoesNotFit_IsToldByCheck()
+    {
+        _folder.Write("electrodes.tsv", "name\tx\ty\tz\nE001\t0\t0\t92\nE003\t-92\t0\t0\nG1\t77\t0\t0\n");
+        string study = Voxels().Replace("layout: ten-twenty-21", "electrodes: electrodes.tsv", StringComparison.Ordinal).Replace("  eeg_derivations: [Cz-mastoids]\n", "", StringComparison.Ordinal)
+            .Replace("derivation: Cz-mastoids", "derivation: E001-E003", StringComparison.Ordinal).Replace("coil: magnetometer, sites: 40, gap_mm: 20", "coil: on-scalp, sites: 40, gap_mm: 1.5", StringComparison.Ordinal)
+            .Replace("    labels: head.nii\n", "    labels: head.nii\n    landmarks_mm: {Nz: [0, 92, 0], Iz: [0, -65, 65], LPA: [-88, 0, -26], RPA: [88, 0, -26]}\n", StringComparison.Ordinal);
+        IReadOnlyList<string> warnings = StudyPipeline.Prepare(_folder.Write("study.yaml", study), Purpose.Assess, Settings(checkOnly: true) with { VoxelParts = VoxelParts.Own }).Warnings;
+        Assert.Contains(warnings, w => System.Text.RegularExpressions.Regex.IsMatch(w, @"^electrodes\.tsv: .*stay where they are: G1 \(skull, 1\d mm below the scalp\)"));
+        Assert.Contains(warnings, w => w.StartsWith("the generated MEG array: ", StringComparison.Ordinal) && w.Contains("nearer to the scalp than one voxel (4 mm)", StringComparison.Ordinal));
+        Assert.Contains(warnings, w => w.StartsWith("head.voxels.landmarks_mm: Nz and Iz say that the head is pitched by ", StringComparison.Ordinal) && w.Contains("its face down", StringComparison.Ordinal));
+    }
+
     [Fact]
     public void TooLittleMemory_IsRefusedBeforeAnythingIsSolved()
     {

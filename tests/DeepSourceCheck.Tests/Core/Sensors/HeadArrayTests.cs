@@ -1,3 +1,6 @@
+using System.Globalization;
+using System.Text.RegularExpressions;
+
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads.Voxels;
 using DeepSourceCheck.Core.Sensors;
@@ -87,6 +90,32 @@ public class HeadArrayTests
         Assert.InRange(array.SmallestGap, 0.00699, 0.0072);
         Assert.InRange(array.MedianGap, 0.00699, 0.0072);
         CoilPlacement.CheckOutside(Face.Value.Scalp, array.Channels);
+    }
+
+    // What a generated array would be if its placement failed: sites 9 mm below the scalp.
+    [Fact]
+    public void GeneratedArray_InsideTheHead_IsRefusedWithChannelsAndDepth()
+    {
+        MegChannel[] sunk = CoilArray.Generate(Choice("on-scalp") with { Gap = 0.001 }, Centre, Radius - 0.010);
+        InputException error = Assert.Throws<InputException>(() => CoilPlacement.CheckGenerated(Ball.Value.Scalp, sunk, Voxel, []));
+        Assert.Equal("sensors.meg.gap_mm", error.Problems[0].Key);
+        Match match = Regex.Match(error.Problems[0].Message, @"^60 of 60 channels of the generated array have a coil point inside the head, below the scalp by: M\d+ (\d+\.\d) mm, .* and 54 more; ");
+        Assert.True(match.Success, error.Problems[0].Message);
+        Assert.InRange(double.Parse(match.Groups[1].Value, CultureInfo.InvariantCulture), 8, 10);       // half a voxel of the surface each way
+    }
+
+    [Theory]
+    [InlineData("on-scalp", 0.0015, true)]
+    [InlineData("on-scalp-triaxial", 0.0015, true)]
+    [InlineData("on-scalp", 0.007, false)]
+    [InlineData("magnetometer", 0.0005, true)]
+    [InlineData("planar-gradiometer", 0.020, false)]
+    public void GeneratedArray_NearerThanAVoxel_IsWarnedOf(string coil, double gap, bool near)
+    {
+        List<string> warnings = [];
+        CoilPlacement.CheckGenerated(Face.Value.Scalp, About(Face.Value, Choice(coil, 300) with { Gap = gap }).Channels, Voxel, warnings);
+        Assert.Equal(near, warnings.Count == 1);
+        Assert.All(warnings, w => Assert.Matches(@"^the generated MEG array: \d+ of \d+ channels have a coil point nearer to the scalp than one voxel \(2 mm\): M\d+[rab]? [01]\.\d mm", w));
     }
 
     [Fact]

@@ -24,7 +24,6 @@ public class ScalpPlacementTests
     [InlineData(0.015)]
     [InlineData(0.001)]
     [InlineData(-0.004)]
-    [InlineData(-0.010)]
     public void Electrode_NearTheScalp_IsMovedOntoIt(double outside)
     {
         List<string> warnings = [];
@@ -56,7 +55,32 @@ public class ScalpPlacementTests
         Assert.Equal(At(0.020), placed[1].Position);
         Assert.Equal(0, placed[1].MovedBy);
         string warning = Assert.Single(warnings);
-        Assert.Matches(@"D1 \(7[123] mm below the scalp\), D2 \(6[789] mm below the scalp\), grid \(1[234] mm", warning);
+        Assert.Matches(@"D1 \(grey, 7[123] mm below the scalp\), D2 \(grey, 6[789] mm below the scalp\), grid \(csf, 1[234] mm", warning);
+    }
+
+    [Theory]
+    [InlineData(0.084, "8")]
+    [InlineData(0.081, "1[012]")]
+    public void ContactInBone_DeeperThanAFewMillimetres_StaysAndIsNamedWithTissueAndDepth(double radius, string depth)
+    {
+        List<string> warnings = [];
+        Electrode[] placed = Place(warnings, ("Cz", At(Radius)), ("G3", At(radius)));
+        Assert.True(placed[1].IsInterior);
+        Assert.Equal(At(radius), placed[1].Position);
+        Assert.False(placed[1].InAverage);
+        Assert.Equal(2, warnings.Count);
+        Assert.All(warnings, w => Assert.Matches($@"^electrodes\.tsv: .*G3 \(compact skull, {depth} mm below the scalp\)", w));
+        Assert.Contains("outside fluid and brain", warnings[1], StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public void ElectrodeDeepInSoftTissue_IsMovedAndNamedWithTissueAndDepth()
+    {
+        TissueVolume thick = LabelledHeads.Sphere(Voxel, Centre, skull: 0.074, csf: 0.068, brain: 0.066);
+        List<string> warnings = [];
+        Electrode[] placed = ElectrodePlacement.OnScalp(["A", "B", "C"], [At(Radius - 0.004), At(Radius - 0.012), At(Radius - 0.003)], ScalpSurface.Of(thick), thick, warnings, "electrodes.tsv");
+        Assert.All(placed, e => Assert.False(e.IsInterior));
+        Assert.Matches(@"^electrodes\.tsv: electrodes more than 5 mm below the scalp were moved up to it.*: B \(scalp, 1[123] mm below the scalp\);", Assert.Single(warnings));
     }
 
     [Fact]
@@ -81,6 +105,8 @@ public class ScalpPlacementTests
         CoilPlacement.CheckOutside(Scalp.Value, [Axial("S001", 0.117), Axial("S002", Radius + Voxel)], "coils.tsv");
         InputException error = Assert.Throws<InputException>(() => CoilPlacement.CheckOutside(
             Scalp.Value, [Axial("S006", 0.117), Axial("S007", 0.060), new("S008", CoilKind.Magnetometer, [new(new(0, double.NaN, 0), Side, 1)])], "coils.tsv"));
+        Assert.Null(CoilPlacement.TooNear(Scalp.Value, [Axial("S001", 0.117), Axial("S002", Radius + 2 * Voxel)], Voxel, "coils.tsv"));
+        Assert.Matches(@"^coils\.tsv: 1 of 2 channels .* one voxel \(2 mm\): S003 [01]\.\d mm;", CoilPlacement.TooNear(Scalp.Value, [Axial("S001", 0.117), Axial("S003", Radius + 0.5 * Voxel)], Voxel, "coils.tsv"));
         Assert.Equal(2, error.Problems.Count);
         Assert.Matches(@"^channel S007 has a coil point inside the head, 3[123]\.\d mm below the scalp", error.Problems[0].Message);
         Assert.Contains("S008 has a coil point whose place is not a number", error.Problems[1].Message, StringComparison.Ordinal);

@@ -97,6 +97,33 @@ public sealed class TensorVolumeReaderTests : IDisposable
             _folder.Write("short.nii", bytes[..^40]), "short.nii", Grid, HeadCrop.Of(Whole())!.Volume, ["white"])).Message, StringComparison.Ordinal);
     }
 
+    // Right, front and up are the world's axes; the tensors' values stay as they stand, only the warning differs.
+    [Theory]
+    [InlineData(-1, 0, 0, @"point to the left, front, up;")]
+    [InlineData(1, 0, 12, @"are turned by up to 12\.0 degrees against those of the world;")]
+    [InlineData(-1, 0, 12, @"point to the left, front, up, turned by up to 12\.0 degrees;")]
+    [InlineData(1, 90, 0, @"point to the front, left, up;")]
+    [InlineData(1, 0, 0.3, null)]
+    public void TensorsOnAxesThatAreNotTheWorlds_AreTakenInWorldAxes_AndSaidSo(int first, double turnDeg, double tiltDeg, string? said)
+    {
+        Rotation turn = Rotation.FromFixedAxes(tiltDeg * Math.PI / 180, 0, turnDeg * Math.PI / 180);
+        Vec3 x = turn.Apply(new(first * 0.002, 0, 0)), y = turn.Apply(new(0, 0.002, 0)), z = turn.Apply(new(0, 0, 0.002));
+        VoxelGrid grid = new(6, 5, 4, new(new(x.X, y.X, z.X), new(x.Y, y.Y, z.Y), new(x.Z, y.Z, z.Z), Grid.ToWorld.Offset));
+        TissueVolume whole = new(grid, Whole().Cells.ToArray(), Tissues), head = HeadCrop.Of(whole)!.Volume;
+        TensorReading reading = TensorVolumeReader.Read(_folder.Write("tensors.nii", Bytes(Values(), grid: grid).File()), "tensors.nii", grid, head, ["white"]);
+        (int i, int j, int k) = grid.Voxel(White[1]);
+        Assert.True(reading.Tensors.TryGet(head.Grid.IndexAt(grid.Centre(i, j, k)), out SymmetricTensor t));
+        RelativeAssert.Equal(Tensor(White[1]).Xx, t.Xx, SinglePrecision);
+        RelativeAssert.Equal(Tensor(White[1]).Xy, t.Xy, SinglePrecision);
+        if (said is null)
+        {
+            Assert.Empty(reading.Warnings);
+            return;
+        }
+
+        Assert.Matches(@"^tensors\.nii: its voxel axes " + said + @" the tensors were taken in world axes \(x right, y front, z up\)", Assert.Single(reading.Warnings));
+    }
+
     private static TissueVolume Whole()
     {
         var cells = new byte[Grid.Count];
@@ -128,9 +155,9 @@ public sealed class TensorVolumeReaderTests : IDisposable
         return values;
     }
 
-    private static NiftiBytes Bytes(double[] values, int intent = 1005, int entries = 6, bool version2 = false, bool bigEndian = false)
+    private static NiftiBytes Bytes(double[] values, int intent = 1005, int entries = 6, bool version2 = false, bool bigEndian = false, VoxelGrid? grid = null)
     {
-        NiftiBytes one = SphereVolumes.Bytes(Grid, values, 16, 32);
+        NiftiBytes one = SphereVolumes.Bytes(grid ?? Grid, values, 16, 32);
         return new()
         {
             Version2 = version2,

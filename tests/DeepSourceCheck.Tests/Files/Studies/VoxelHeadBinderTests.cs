@@ -86,6 +86,14 @@ public class VoxelHeadBinderTests
         Assert.Contains(said, problem.Message, StringComparison.Ordinal);
     }
 
+    // It closes the skull but is no bone: its conductivity is that of soft tissue.
+    [Fact]
+    public void Fontanelle_IsJudgedAsSoftTissue()
+    {
+        Assert.Empty(StudyText.Read(Study().With("tissue: skull", "tissue: fontanelle").With("0.0132", "0.33")).Warnings);
+        Assert.Contains("0.0132 S/m is far from the usual 0.1 to 1 S/m of fontanelle", Assert.Single(StudyText.Read(Study().With("tissue: skull", "tissue: fontanelle")).Warnings), StringComparison.Ordinal);
+    }
+
     [Fact]
     public void SpheresBesideVoxels_AreRefused() =>
         Assert.Contains("stands beside spheres", StudyText.Problem(Study().With("{voxels:", "{spheres: {preset: adult-4}, voxels:")).Message, StringComparison.Ordinal);

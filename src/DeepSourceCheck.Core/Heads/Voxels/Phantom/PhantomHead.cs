@@ -36,6 +36,9 @@ public sealed class PhantomHead
     /// <summary>Label of white matter.</summary>
     public const byte White = 6;
 
+    /// <summary>Label of the membrane that closes the anterior fontanelle; in a neonate alone.</summary>
+    public const byte Fontanelle = 7;
+
     /// <summary>Smallest and largest voxel [m].</summary>
     public static readonly (double Low, double High) VoxelRange = (0.001, 0.003);
 
@@ -94,7 +97,7 @@ public sealed class PhantomHead
         if (kind == PhantomKind.Neonate)
         {
             warnings.Add("the newborn's skull, about 1.5 mm in life, is drawn at least "
-                + string.Create(System.Globalization.CultureInfo.InvariantCulture, $"{1000 * sampler.ThinnestBone:0.##} mm thick so that voxels of {1000 * voxel:0.##} mm hold it closed; fontanelles are not drawn"));
+                + string.Create(System.Globalization.CultureInfo.InvariantCulture, $"{1000 * sampler.ThinnestBone:0.##} mm thick so that voxels of {1000 * voxel:0.##} mm hold it closed; of the fontanelles the anterior one alone is drawn, of sutures none"));
         }
         else if (voxel > CoarsestTwoVoxelSkull)
         {
@@ -115,7 +118,7 @@ public sealed class PhantomHead
     public TissueVolume ToTissueVolume()
     {
         IReadOnlyList<Tissue> tissues = PhantomTissues.Of(Kind);
-        byte[] index = new byte[White + 1];
+        byte[] index = new byte[Fontanelle + 1];
         for (int n = 0; n < tissues.Count; n++)
         {
             index[tissues[n].Label] = (byte)n;

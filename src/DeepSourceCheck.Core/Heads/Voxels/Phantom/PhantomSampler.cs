@@ -112,6 +112,7 @@ internal sealed class PhantomSampler
 
         return _skull.Air(p, cavity, bone) < 0 ? PhantomHead.Air
             : bone > 0 ? PhantomHead.Scalp
+            : _skull.IsFontanelle(p) ? PhantomHead.Fontanelle
             : _skull.IsSpongy(p, cavity, bone) ? PhantomHead.SpongyBone : PhantomHead.CompactBone;
     }
 
@@ -171,9 +172,9 @@ internal sealed class PhantomSampler
             {
                 for (int i = 1, at = Grid.Index(1, j, k); i < nx - 1; i++, at++)
                 {
-                    if (before[at] <= PhantomHead.Scalp && Touches(before, at, nx, nxy) && !IsOpening(AdultFrame(Grid.Centre(i, j, k))))
+                    if (before[at] <= PhantomHead.Scalp && Touches(before, at, nx, nxy) && AdultFrame(Grid.Centre(i, j, k)) is var p && !IsOpening(p))
                     {
-                        labels[at] = PhantomHead.CompactBone;
+                        labels[at] = _skull.IsFontanelle(p) ? PhantomHead.Fontanelle : PhantomHead.CompactBone;
                     }
                 }
             }
@@ -187,7 +188,7 @@ internal sealed class PhantomSampler
             for (int dy = -nx; dy <= nx; dy += nx)
             {
                 int n = at + dz + dy;
-                if (labels[n - 1] >= PhantomHead.Csf || labels[n] >= PhantomHead.Csf || labels[n + 1] >= PhantomHead.Csf)
+                if (IsInside(labels[n - 1]) || IsInside(labels[n]) || IsInside(labels[n + 1]))
                 {
                     return true;
                 }
@@ -196,6 +197,8 @@ internal sealed class PhantomSampler
 
         return false;
     }
+
+    private static bool IsInside(byte label) => label is PhantomHead.Csf or PhantomHead.Grey or PhantomHead.White;
 
     /// <summary>The gap below the skull's base where the canal's fluid meets the soft tissue of the neck.</summary>
     private static bool IsOpening(Vec3 p) => p.Z is < -70 and > -86 && Math.Abs(p.X) < 26 && p.Y is < -18 and > -72;

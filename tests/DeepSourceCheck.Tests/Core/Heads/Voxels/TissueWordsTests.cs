@@ -16,6 +16,7 @@ public class TissueWordsTests
     [InlineData("soft bone", TissueKind.Skull)]
     [InlineData("skull-spongy", TissueKind.Skull)]
     [InlineData("spongiosa", TissueKind.Skull)]
+    [InlineData("anterior fontanelle", TissueKind.Skull)]
     [InlineData("CSF", TissueKind.Csf)]
     [InlineData("cerebrospinal fluid", TissueKind.Csf)]
     [InlineData("lateral ventricles", TissueKind.Csf)]

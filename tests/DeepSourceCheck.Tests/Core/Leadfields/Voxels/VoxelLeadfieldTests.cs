@@ -286,6 +286,41 @@ public class VoxelLeadfieldTests
         Assert.DoesNotContain(block.Meg, double.IsNaN);
     }
 
+    // Beside grey shells there is a sheet of one voxel, so that every fallback but the last is met; the plain twin places each load.
+    [Theory]
+    [InlineData(false)]
+    [InlineData(true)]
+    public void Supports_CountWhatCarriesEachDipole_AsItsLoadSays(bool shifted)
+    {
+        TissueVolume shells = VoxelHeads.Shells(VoxelHeads.Cubic, 19, 18, 17);
+        byte[] cells = [.. Enumerable.Range(0, shells.Grid.Count).Select(c => shells.Grid.Voxel(c) is { K: 8 or 10 } v && v is { I: > 4 and < 14, J: > 4 and < 13 } ? (byte)3 : shells.Cells[c])];
+        TissueVolume volume = new(shells.Grid, cells, shells.Tissues);
+        MonopoleLoad load = new(new(shifted ? VoxelHeads.Shifted(volume) : HexMesh.Plain(volume)));
+        Vec3[] dipoles = [.. VoxelHeads.Dipoles(volume, 3000)];
+        int[] plain = new int[4];
+        foreach (Vec3 d in dipoles)
+        {
+            load.Place(d, new int[DipoleLoad.MostNodes], new Vec3[DipoleLoad.MostNodes], out DipoleSupport support);
+            Assert.Equal(support, load.SupportAt(d));
+            plain[(int)support]++;
+        }
+
+        Assert.All(plain[..3], n => Assert.True(n > 10, $"only {n} dipoles of a kind: the check is blind"));
+        VoxelLeadfield leadfield = new(new(KeptNodes.All(new(HexMesh.Plain(volume))), 2, 3), load, VoxelHeads.Channels(volume, 3));
+        SupportCounts? counts = leadfield.Supports(dipoles, CancellationToken.None);
+        Assert.Equal(new(plain[0], plain[1], plain[2], plain[3]), counts);
+        Assert.Equal(dipoles.Length, counts!.Total);
+        Assert.Null(new VoxelLeadfield(new(KeptNodes.All(new(HexMesh.Plain(volume))), 2, 3), new ElementGradientLoad(load.Tissue), VoxelHeads.Channels(volume, 3)).Supports(dipoles, CancellationToken.None));
+    }
+
+    [Fact]
+    public void Supports_WarnAboveATenthAlone_WithShareAndCounts()
+    {
+        Assert.Null(new SupportCounts(85, 5, 6, 4).Warning);
+        Assert.Matches(@"^11 % .*\(7 on nodes of the tissue's border, 4 on the gradient of their voxel, of 100\)", new SupportCounts(84, 5, 7, 4).Warning);
+        Assert.Equal(new(3, 5, 7, 9), new SupportCounts(1, 2, 3, 4) + new SupportCounts(2, 3, 4, 5));
+    }
+
     [Fact]
     public void Leadfield_OfWrongShapeOrPlace_IsRefused()
     {
