@@ -92,7 +92,7 @@ public static class Say
         return $"{Known(amplitude)}, so {(least == most ? least : $"{least} to {most}")} nAm";
     }
 
-    private static string Known(AmplitudeChoice amplitude) => $"{Stated(Math.Round(Si.ToMicrovolts(amplitude.Peak), 9))} uV at {amplitude.Derivation}";
+    private static string Known(AmplitudeChoice amplitude) => $"{Stated(Math.Round(Si.ToMicrovolts(amplitude.Peak), 9))} {Unit("uV")} at {amplitude.Derivation}";
 
     /// <summary>`along [0, 0, 1]`, `tangential`.</summary>
     public static string Direction(DirectionChoice direction) => direction.Vector is { } v

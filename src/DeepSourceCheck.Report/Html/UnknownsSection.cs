@@ -31,10 +31,10 @@ internal static class UnknownsSection
     private static void Region(Markup html, Assessment assessment, ResponseResult response, RegionResult region, UnknownsResult unknowns)
     {
         html.Element("h3", $"{response.Response.Name}, {region.Region}", "class", "ruled");
-        foreach (FirstModality first in unknowns.First.Where(f => f.Flip.Length > 0))
+        foreach (IGrouping<(string Flip, double Share, bool Known), FirstModality> same in unknowns.First.Where(f => f.Flip.Length > 0).GroupBy(f => (f.Flip, f.Share, f.Modality is not null)))
         {
-            string share = first.Modality is null ? "" : $" ({Say.RuleKey(first.Rule)}; first in {Say.Percent(Math.Round(first.Share, 2))} of {Say.Count(unknowns.Samples)} draws)";
-            html.Element("p", $"{char.ToUpperInvariant(first.Flip[0])}{first.Flip[1..]}{share}.");
+            string share = same.Key.Known ? $" ({string.Join(" and ", same.Select(f => Say.RuleKey(f.Rule)))}; first in {Say.Percent(Math.Round(same.Key.Share, 2))} of {Say.Count(unknowns.Samples)} draws)" : "";
+            html.Element("p", $"{char.ToUpperInvariant(same.Key.Flip[0])}{same.Key.Flip[1..]}{share}.");
         }
 
         HtmlReport.Table(html, $"Spread over the unknowns, {region.Region}",
