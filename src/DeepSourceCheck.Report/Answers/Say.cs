@@ -128,6 +128,9 @@ public static class Say
     /// <summary>What a range of 5 to 95 % runs over: `places`, or `places and directions` where the direction is a set.</summary>
     public static string Spread(DirectionName direction) => direction is DirectionName.Tangential or DirectionName.Isotropic ? "places and directions" : "places";
 
+    /// <summary>Over what the figures of a verdict spread: realistic filters add their own errors.</summary>
+    public static string Spread(VerdictResult verdict) => Spread(verdict.Direction) + (verdict.Measure == Names.RealisticFilter ? " and the filter's errors" : "");
+
     /// <summary>`each of 4 averages (2 conditions, 2 replications)`, or empty where the session holds a single average.</summary>
     public static string Averages(Protocol? protocol) => protocol is { } p ? Rounded.Averages(p.Conditions, p.Replications) : "";
 

@@ -195,7 +195,7 @@ public static class ConsoleSummary
         // A lone dipole in one direction has no spread to explain.
         if (answer.Answers.FirstOrDefault(a => a.Range().Length > 0) is { } spread)
         {
-            text.Append(WhyText.Wrap($"trials: median and 5 to 95 % over {Say.Spread(spread.Verdict.Direction)}, not over unknowns", 0));
+            text.Append(WhyText.Wrap($"trials: median and 5 to 95 % over {Say.Spread(spread.Verdict)}, not over unknowns", 0));
         }
     }
 
