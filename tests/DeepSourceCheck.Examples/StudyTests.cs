@@ -401,10 +401,10 @@ public class StudyTests
         .GetProperty("targets").EnumerateArray().Single(t => t.GetProperty("rule").GetString() == rule).GetProperty(what).GetProperty("p50").GetInt64();
 
     [Fact]
-    public void Study11_HasTheKnownCountByEveryRule()
+    public void Study16_HasTheKnownCountByEveryRule()
     {
         // 0.45 uV from peak to trough on 2.0 uV rms, 0.12 uV rms over the window: recomputed from exact distributions outside the project; 3.1 on F(5, 250) is published (Elberling and Don 1984).
-        string file = SourceTree.Study("11-rules", "study.yaml");
+        string file = SourceTree.Study("16-rules", "study.yaml");
         AssessedStudy study = AssessedStudy.Run(file);
         Assert.Equal(356, ByRule(study, "amplitude_ratio"));
         Assert.Equal(1262, ByRule(study, "variance_ratio"));
@@ -416,9 +416,9 @@ public class StudyTests
     }
 
     [Fact]
-    public void Study11_SaysPresentedTrialsTimeInTheChairAndWeightedTrials()
+    public void Study16_SaysPresentedTrialsTimeInTheChairAndWeightedTrials()
     {
-        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("11-rules", "study.yaml"));
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("16-rules", "study.yaml"));
         Assert.Equal(2778, ByRule(study, "residual_nV", "presented_trials"));                // 2500 / 0.9
         Assert.Equal(1745, ByRule(study, "residual_nV", "weighted_trials"));                 // 2500 / exp(4 x 0.3^2) = 1744.2
         double chair = study.Result(WaveV, "colliculus", "EEG", "given", "best-channel").GetProperty("targets").EnumerateArray()
@@ -430,9 +430,9 @@ public class StudyTests
     }
 
     [Fact]
-    public void Study11_TwiceTheNoise_NeedsFourTimesTheTrials()
+    public void Study16_TwiceTheNoise_NeedsFourTimesTheTrials()
     {
-        string file = SourceTree.Study("11-rules", "study.yaml");
+        string file = SourceTree.Study("16-rules", "study.yaml");
         AssessedStudy quiet = AssessedStudy.Run(file), loud = AssessedStudy.RunChanged(file, ("eeg_sensor_uV_rms: 2.0", "eeg_sensor_uV_rms: 4.0"));
         foreach (string rule in new[] { "amplitude_ratio", "variance_ratio", "residual_nV" })
         {
