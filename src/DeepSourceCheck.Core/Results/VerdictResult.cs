@@ -29,6 +29,9 @@ public sealed record VerdictResult
     /// <summary>Probability that the session misses a source of the stated strength, everything else as stated, for the median dipole and direction; null for rules without power or without a session.</summary>
     public double? Missing { get; init; }
 
+    /// <summary>How detection grows with trials; null without a source to detect, and for rules beside a stated detection target.</summary>
+    public DetectionCurve? Power { get; init; }
+
     /// <summary>Mean power over what is not known, as a fraction; null without unknowns.</summary>
     public double? Assurance { get; init; }
 
