@@ -100,6 +100,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         Rule = row.Targets[rule].Rule,
         Measure = row.Measure,
         Direction = row.Direction,
+        Applies = false,
         Text = $"{Names.Of(row.Modality)}, {Reading(row)}: no count ({row.Targets[rule].Reason}).",
     };
 
@@ -170,7 +171,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         string session = plan.Protocol.Session is { } seconds && plan.SessionTrials is { } afforded
             ? string.Create(CultureInfo.InvariantCulture, $": {(fits == true ? "fits" : "does not fit")} the session of {seconds / 60:0.######} min ({afforded:N0} trials{(each.Length > 0 ? " each" : "")})")
             : "";
-        return $"{reading}: {trials}, {Rounded.Minutes(minutes)} min{each}{session}.{why}";
+        string length = fits == false && plan.Protocol is { Session: { } whole, Conditions: 1, Replications: 1 } ? Rounded.MinutesBeyond(minutes, whole / 60) : Rounded.Minutes(minutes);
+        return $"{reading}: {trials}, {length} min{each}{session}.{why}";
     }
 
     private string RangeText(CountRange? range)

@@ -20,6 +20,9 @@ public sealed record VerdictResult
     /// <summary>Plain words with the reason.</summary>
     public required string Text { get; init; }
 
+    /// <summary>False where the rule says nothing of this reading: no count, and nothing to compare; <see cref="Text"/> gives the reason.</summary>
+    public bool Applies { get; init; } = true;
+
     /// <summary>Whether the median count fits the session; null without a session.</summary>
     public bool? FitsSession { get; init; }
 

@@ -72,7 +72,12 @@ internal static class ResponseBinder
             entry.Problem("measured", "peak-to-trough is of a transient response; the amplitude of a steady-state one is the peak of its sinusoid: write baseline-to-peak");
         }
 
-        double? window = entry.Number("window_ms");
+        if (steady)
+        {
+            entry.WithoutEffect("window_ms", "a steady-state response is read over the whole of its trial, seconds long");
+        }
+
+        double? window = steady ? null : entry.Number("window_ms");
         Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
         Section measure = entry.Map("measure") ?? entry.Entry("measure");
         double artefactEeg = Artefact(artefact, "eeg_uV", sensors.HasEeg, "the study has no electrodes");

@@ -82,6 +82,8 @@ public static class StudyReader
         (UnknownsChoice? unknowns, head) = UnknownsBinder.Bind(root, head, responses, sensors, protocol, reading);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
         PlanBinder.CheckRate(responses, protocol, reading);
+        PlanBinder.CheckFrequencies(responses, reading);
+        EffectCheck.Warn(root, responses, targets, noise, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
         {
