@@ -132,6 +132,15 @@ public class StudyTests
     }
 
     [Fact]
+    public void Study15_AmplitudeReadOffTheAverage_IsThePeakThatIsPredicted()
+    {
+        // What is read was filtered and blurred already: nothing is taken off twice.
+        AssessedStudy study = AssessedStudy.RunChanged(SourceTree.Study(Path.Combine("15-waveform", "study.yaml")), ("moment_nAm: 7", "amplitude: {peak_uV: 0.45, derivation: Cz-mastoids}"));
+        JsonElement row = study.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids");
+        Assert.InRange(AssessedStudy.Peak(row, "uV"), 0.45 * (1 - 1e-9), 0.45 * (1 + 1e-9));
+    }
+
+    [Fact]
     public void Study20_LongerSessionsAreNeverLessSure()
     {
         double[] sure = [.. new[] { "5", "20", "80" }.Select(minutes => AssessedStudy.RunChanged(SourceTree.Study("20-unknowns.yaml"), ("session_min: 20", $"session_min: {minutes}"))

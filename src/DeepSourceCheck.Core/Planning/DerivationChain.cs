@@ -49,10 +49,9 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         }
 
         bool less = plan.View.Kept != 1 && !plan.IsSpectral;
-        if (less)
+        if (less && response.Amplitude is null)
         {
-            Add("kp", $"share of the peak that {(plan.View.Waveform is { } w ? $"filter and jitter leave: {w.Description}" : "the jitter leaves")}", plan.View.Kept, "", "",
-                (plan.View.Waveform is null ? "exp(-(2 pi f sigma)^2 / 2) at the response's frequency, " : "largest value of the waveform inside the response's band, ") + Jitter(), Grade.Derived);
+            Kept();
         }
 
         switch (measure)
@@ -118,6 +117,12 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         return [.. _lines];
     }
 
+    private void Kept()
+    {
+        Add("kp", $"share of the peak that {(plan.View.Waveform is { } w ? $"filter and jitter leave: {w.Description}" : "the jitter leaves")}", plan.View.Kept, "", "",
+            (plan.View.Waveform is null ? "exp(-(2 pi f sigma)^2 / 2) at the response's frequency, " : "largest value of the waveform inside the response's band, ") + Jitter(), Grade.Derived);
+    }
+
     private void Strength(Response response)
     {
         double moment = Si.ToNanoAmpereMetres(response.Moment);
@@ -125,8 +130,14 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         {
             double peak = Si.ToMicrovolts(known.Peak);
             Input("A0", $"amplitude known at {known.Derivation}", peak, "uV", "responses.amplitude.peak_uV");
-            Add("g0", $"leadfield at {known.Derivation}: median of its size over dipoles and directions", peak / moment, "uV/nAm", "", method.Eeg, Grade.Derived);
-            Add("a", "dipole moment that reads it", moment, "nAm", "A0 / g0", "linearity", Grade.Derived);
+            bool less = plan.View.Kept != 1;
+            if (less)
+            {
+                Kept();
+            }
+
+            Add("g0", $"leadfield at {known.Derivation}: median of its size over dipoles and directions", peak / (moment * plan.View.Kept), "uV/nAm", "", method.Eeg, Grade.Derived);
+            Add("a", $"dipole moment that reads it{(less ? ", at its peak before filter and jitter" : "")}", moment, "nAm", less ? "A0 / (g0 kp)" : "A0 / g0", "linearity", Grade.Derived);
         }
         else if (response.Density is { } density)
         {

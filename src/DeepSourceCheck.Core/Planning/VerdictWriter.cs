@@ -109,7 +109,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
 
     private CountRange? AtMoments(ITargetRule rule, MedianWitness? witness)
     {
-        if (plan.Response.MomentRange is not { } range || witness is null)
+        if (plan.Response.MomentRange is not { } range || range.Low == range.High || witness is null)
         {
             return null;
         }

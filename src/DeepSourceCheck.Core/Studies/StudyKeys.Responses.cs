@@ -117,7 +117,7 @@ public static partial class StudyKeys
             Example = "9",
         },
         new("responses[].amplitude",
-            "What is known at the scalp instead of a moment: the moment of each region is found through the leadfield, so that the median over its dipoles and the verdict's directions reads this peak.",
+            "What is read off an average, filtered and blurred by jitter as this study's will be, instead of a moment: the moment of each region is found through the leadfield, so that the median over its dipoles and the verdict's directions reads this peak.",
             new MapShape())
         {
             Example = "{peak_uV: 0.45, derivation: Cz-mastoids}",

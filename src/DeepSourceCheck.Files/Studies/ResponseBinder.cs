@@ -67,6 +67,7 @@ internal static class ResponseBinder
         (IReadOnlyList<double> shares, IReadOnlyList<double> lags) = StrengthBinder.Together(entry, counts == "together", component);
         CheckPassed(entry, band, course.Steady?.Frequency, sensors);
         CheckTogether(entry, counts == "together");
+        StrengthBinder.CheckLags(entry, lags);
         if (course.Steady is not null && measured == "peak-to-trough")
         {
             entry.Problem("measured", "peak-to-trough is of a transient response; the amplitude of a steady-state one is the peak of its sinusoid: write baseline-to-peak");
