@@ -245,6 +245,7 @@ public static class ConsoleSummary
         }
 
         Chair(text, assessment, answer);
+        Protocol(text, assessment, answer);
         ModalityAnswer[] missed = [.. answer.Answers.Where(a => a.Verdict.Missing is not null)];
         if (missed.Length > 0)
         {
@@ -282,6 +283,27 @@ public static class ConsoleSummary
         if (chairs.Length > 0)
         {
             text.Append(Fact("in the chair, all told", string.Join("   ", chairs)));
+        }
+    }
+
+    // People, planned analyses and rate, a line a modality; the rule's own where it plans analyses, else that of detection.
+    private static void Protocol(StringBuilder text, Assessment assessment, RegionAnswer answer)
+    {
+        ModalityAnswer[] single = [.. answer.Answers.Where(a => a.Modality != Modality.Both)];
+        foreach (ModalityAnswer a in single.Where(a => a.Verdict.People?.AtSession is not null))
+        {
+            PeopleChoice people = assessment.Study.Protocol!.People!;
+            text.Append(Fact($"{Names.Of(a.Modality)} {ProtocolWords.Counted(people)}", ProtocolWords.Session(people, a.Verdict.People!)));
+        }
+
+        foreach (VerdictResult verdict in answer.Region.Verdicts.Where(v => v.Modality != Modality.Both && v.Stopping is not null))
+        {
+            text.Append(Fact($"{Names.Of(verdict.Modality)} in {verdict.Stopping!.Rows.Count} planned analyses", ProtocolWords.Planned(verdict.Stopping)));
+        }
+
+        foreach (ModalityAnswer a in single.Where(a => a.Verdict.Rate is not null))
+        {
+            text.Append(Fact($"{Names.Of(a.Modality)} at the best rate", ProtocolWords.Rate(a.Verdict.Rate!)));
         }
     }
 
