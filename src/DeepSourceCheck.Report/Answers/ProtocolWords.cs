@@ -17,7 +17,7 @@ internal static class ProtocolWords
     /// <summary>A number of people, or `beyond counting`.</summary>
     public static string Count(long? people) => people is { } n && n <= Say.MostTrials ? Say.Count(n) : Say.OutOfReach;
 
-    /// <summary>`18 people at the session's 100 trials each (20 invited); 20 reach power 84 %`; empty without a session.</summary>
+    /// <summary>`18 (20 invited), 100 trials each`; empty without a session.</summary>
     /// <param name="people">What is asked.</param>
     /// <param name="result">What it takes.</param>
     public static string Session(PeopleChoice people, PeopleResult result)
@@ -27,16 +27,15 @@ internal static class ProtocolWords
             return "";
         }
 
-        string invited = people.DropOut > 0 && row.Invited is { } i && i <= Say.MostTrials ? $", {Say.Count(i)} invited" : "";
-        string stated = people.Participants is { } n && result.PowerOfStated is { } power ? $"; {Say.Count(n)} find it with power {Say.Chance(power)}" : "";
-        return $"{Count(row.Participants)}{invited}, of {Say.Plural(row.Trials, "trial")} each{stated}";
+        string invited = people.DropOut > 0 && row.Invited is { } i && i <= Say.MostTrials ? $" ({Say.Count(i)} invited)" : "";
+        return $"{Count(row.Participants)}{invited}, {Say.Plural(row.Trials, "trial")} each";
     }
 
-    /// <summary>`at most 345 trials, 210 expected (12 and 7.4 min)`.</summary>
+    /// <summary>`345 at most, 211 expected (12, 7.4 min)`.</summary>
     public static string Planned(StoppingResult s)
     {
-        string minutes = s.MostMinutes is { } most && s.ExpectedMinutes is { } expected ? $" ({Say.Minutes(most)} and {Say.Minutes(expected)} min)" : "";
-        return s.Most > Say.MostTrials ? Say.OutOfReach : $"at most {Say.Plural(s.Most, "trial")}, {Say.Count((long)Math.Ceiling(s.Expected))} expected{minutes}";
+        string minutes = s.MostMinutes is { } most && s.ExpectedMinutes is { } expected ? $" ({Say.Minutes(most)}, {Say.Minutes(expected)} min)" : "";
+        return s.Most > Say.MostTrials ? Say.OutOfReach : $"{Say.Count(s.Most)} at most, {Say.Count((long)Math.Ceiling(s.Expected))} expected{minutes}";
     }
 
     /// <summary>`27.1/s would take 1.2 min, 0.8 min less`; `the stated rate is the best of the curve` where nothing is to be gained.</summary>

@@ -286,7 +286,7 @@ public static class ConsoleSummary
         }
     }
 
-    // People, planned analyses and rate, a line a modality; the rule's own where it plans analyses, else that of detection.
+    // People, planned analyses and rate, a line a modality.
     private static void Protocol(StringBuilder text, Assessment assessment, RegionAnswer answer)
     {
         ModalityAnswer[] single = [.. answer.Answers.Where(a => a.Modality != Modality.Both)];
@@ -296,9 +296,15 @@ public static class ConsoleSummary
             text.Append(Fact($"{Names.Of(a.Modality)} {ProtocolWords.Counted(people)}", ProtocolWords.Session(people, a.Verdict.People!)));
         }
 
+        ModalityAnswer[] reached = [.. single.Where(a => a.Verdict.People?.PowerOfStated is not null)];
+        if (reached.Length > 0 && assessment.Study.Protocol?.People is { Participants: { } stated } choice)
+        {
+            text.Append(Fact($"power of {Say.Count(stated)} {ProtocolWords.Counted(choice)}", string.Join(", ", reached.Select(a => $"{Names.Of(a.Modality)} {Say.Chance(a.Verdict.People!.PowerOfStated!.Value)}"))));
+        }
+
         foreach (VerdictResult verdict in answer.Region.Verdicts.Where(v => v.Modality != Modality.Both && v.Stopping is not null))
         {
-            text.Append(Fact($"{Names.Of(verdict.Modality)} in {verdict.Stopping!.Rows.Count} planned analyses", ProtocolWords.Planned(verdict.Stopping)));
+            text.Append(Fact($"{Names.Of(verdict.Modality)} trials in {verdict.Stopping!.Rows.Count} analyses", ProtocolWords.Planned(verdict.Stopping)));
         }
 
         foreach (ModalityAnswer a in single.Where(a => a.Verdict.Rate is not null))

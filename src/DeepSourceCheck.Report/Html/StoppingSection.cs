@@ -32,7 +32,7 @@ internal static class StoppingSection
 
             html.Element("h3", $"{response.Response.Name}, {region.Region}, {RegionAnswer.Words(verdict.Modality)}", "class", "ruled");
             string fits = plan.FitsSession switch { true => "; the most fit the session", false => "; the most do not fit the session", null => "" };
-            html.Element("p", $"{Names.Of(plan.Spending)} spending: {ProtocolWords.Planned(plan)}; without a response {Say.Count((long)Math.Ceiling(plan.ExpectedWithout))} expected{fits}.");
+            html.Element("p", $"{Names.Of(plan.Spending)} spending: trials {ProtocolWords.Planned(plan)}; without a response {Say.Count((long)Math.Ceiling(plan.ExpectedWithout))} expected{fits}.");
             HtmlReport.Table(html, $"Planned analyses, {region.Region}, {RegionAnswer.Words(verdict.Modality)}",
                 ["analysis", "trials", "bound", "false alarms spent", "stops here", "stops here without a response"],
                 plan.Rows.Select((row, k) => (IReadOnlyList<string>)
