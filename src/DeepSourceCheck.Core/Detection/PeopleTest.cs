@@ -13,6 +13,9 @@ public sealed class PeopleTest
 {
     private const double FewestPeople = 2;
 
+    /// <summary>Beyond this ratio of noncentrality to critical value the spread of the sample would have to be a hundred times the true one for t to fall short: power 1 in double precision.</summary>
+    private const double Certain = 1e4;
+
     private readonly double _alpha, _power, _samples, _known;
 
     /// <param name="alpha">False-alarm rate over both tails, 0 to 1.</param>
@@ -32,8 +35,13 @@ public sealed class PeopleTest
     /// <param name="people">People in each group.</param>
     public double PowerOf(double effectSize, double people)
     {
-        double nu = _samples * (people - 1);
-        return people < FewestPeople ? 0 : NoncentralF.Survival(NoncentralF.Critical(_alpha, 1, nu), 1, nu, effectSize * effectSize * people / _samples);
+        if (people < FewestPeople)
+        {
+            return 0;
+        }
+
+        double nu = _samples * (people - 1), critical = NoncentralF.Critical(_alpha, 1, nu), lambda = effectSize * effectSize * people / _samples;
+        return lambda > Certain * Math.Max(critical, 1) ? 1 : NoncentralF.Survival(critical, 1, nu, lambda);
     }
 
     /// <summary>Fewest people in each group with the power asked for, at least 2; null beyond what can be counted.</summary>

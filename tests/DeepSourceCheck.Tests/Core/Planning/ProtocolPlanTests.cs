@@ -86,8 +86,8 @@ public class ProtocolPlanTests
             Assert.True(values.ContainsKey("np") && values.ContainsKey("ni") && values.ContainsKey("pk"));
             if (verdict.People!.AtSession is { } row)
             {
-                Assert.Equal(row.Participants, values["np"]);
-                Assert.Equal(row.Invited, values["ni"]);
+                Assert.Equal((double)row.Participants!.Value, values["np"]);
+                Assert.Equal((double)row.Invited!.Value, values["ni"]);
             }
         }
     }
