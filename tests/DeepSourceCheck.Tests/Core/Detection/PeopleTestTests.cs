@@ -61,6 +61,17 @@ public class PeopleTestTests
         Assert.True(test.People(1.1 * d) <= people);
     }, seed: "0N0XIzNsQ0O2", iter: 200, threads: 1);
 
+    [Theory]                                                    // people who are alike and give trials without limit; and the step to where the power is 1 in double precision
+    [InlineData(double.PositiveInfinity)]
+    [InlineData(1e9)]
+    public void EffectWithoutSpread_NeedsTheFewestPeople(double effectSize)
+    {
+        Assert.Equal(2, One().People(effectSize));
+        Assert.Equal(1, One().PowerOf(effectSize, 2));
+        double step = Math.Sqrt(1e4 * Math.Pow(ExcelFunctions.TInv(0.05, 1), 2) / 2);
+        RelativeAssert.Equal(1, One().PowerOf(0.999 * step, 2), 1e-12);
+    }
+
     [Fact]
     public void NoEffect_IsBeyondCounting() => Assert.Null(One().People(0));
 }
