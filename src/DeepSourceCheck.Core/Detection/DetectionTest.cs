@@ -1,7 +1,6 @@
 using System.Globalization;
 
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Detection;
 

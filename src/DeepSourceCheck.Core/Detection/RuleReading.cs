@@ -19,7 +19,7 @@ public sealed record RuleReading(
     public bool SteadyState { get; init; }
 
     /// <summary>A single reading with noise of standard deviation 1.</summary>
-    public static RuleReading Single(Modality modality = Modality.Eeg) => new(modality, "", 1);
+    public static RuleReading OfOneReading(Modality modality = Modality.Eeg) => new(modality, "", 1);
 
     /// <summary>The reading of a measure.</summary>
     /// <param name="measure">Measure.</param>

@@ -41,8 +41,8 @@ public class SimulatedPowerTests
     [InlineData(0.2, 12)]
     public void KnownAndEstimatedNoise_OneReading(double power, int trials)
     {
-        ITargetRule known = RuleBinding.Of(new DetectionChoice(0.05, 0.8, 1), RuleReading.Single());
-        ITargetRule estimated = RuleBinding.Of(new DetectionChoice(0.05, 0.8, 1, Topography.Known, true), RuleReading.Single());
+        ITargetRule known = RuleBinding.Of(new DetectionChoice(0.05, 0.8, 1), RuleReading.OfOneReading());
+        ITargetRule estimated = RuleBinding.Of(new DetectionChoice(0.05, 0.8, 1, Topography.Known, true), RuleReading.OfOneReading());
         double z = Normal.InvCDF(0, 1, 0.95), t = StudentT.InvCDF(0, 1, trials - 1, 0.95);
         Agrees(known.Probability(power, 0, trials)!.Value, Passed(1, r => Normals(r, trials).Average() + Math.Sqrt(power) > z / Math.Sqrt(trials)), "known");
         Agrees(estimated.Probability(power, 0, trials)!.Value, Passed(2, r =>
@@ -88,7 +88,7 @@ public class SimulatedPowerTests
     {
         // The rule's own model: the average's variance has 5 degrees of freedom, the noise's 250. Passed at SNR 3.68 and 4.54 with power .80 and .90 (recomputed from exact distributions).
         const double Critical = 3.0911794567304476;
-        var rule = new VarianceRatioRule(new VarianceRatioChoice(Critical, null, 0.9, 1, 5, 250), RuleReading.Single() with { WindowPerPeak = 1 });
+        var rule = new VarianceRatioRule(new VarianceRatioChoice(Critical, null, 0.9, 1, 5, 250), RuleReading.OfOneReading() with { WindowPerPeak = 1 });
         double probability = rule.Probability(snr, 0, 1)!.Value;
         Agrees(probability, Passed(4, random =>
         {

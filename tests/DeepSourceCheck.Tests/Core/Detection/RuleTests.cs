@@ -14,7 +14,7 @@ public class RuleTests
     private const double ClosedForm = 1e-12;
 
     /// <summary>Wave V at 0.45 uV from peak to trough on 2.0 uV rms, 0.12 uV rms over its window: the fixed inputs of the click study (facts of the trade, seen and from memory).</summary>
-    private static readonly RuleReading Click = RuleReading.Single() with { OnePoint = true, NoiseFactor = 2, WindowPerPeak = 0.12 / 0.45 };
+    private static readonly RuleReading Click = RuleReading.OfOneReading() with { OnePoint = true, NoiseFactor = 2, WindowPerPeak = 0.12 / 0.45 };
 
     private static readonly double ClickPower = 0.45 * 0.45 / (2 * 2.0 * 2.0);
 
@@ -180,7 +180,7 @@ public class RuleTests
         ITargetRule Of(Topography topography) => RuleBinding.Of(new DetectionChoice(0.01, 0.9, 1, topography), Rows);
         Assert.True(Of(Topography.Known).Trials(0.01) < Of(Topography.Plane).Trials(0.01));
         Assert.True(Of(Topography.Plane).Trials(0.01) < Of(Topography.Unknown).Trials(0.01));
-        Assert.Equal(Of(Topography.Plane).Trials(0.01), RuleBinding.Of(new DetectionChoice(0.01, 0.9, 1, Topography.Plane), RuleReading.Single()).Trials(0.01));
+        Assert.Equal(Of(Topography.Plane).Trials(0.01), RuleBinding.Of(new DetectionChoice(0.01, 0.9, 1, Topography.Plane), RuleReading.OfOneReading()).Trials(0.01));
     }
 
     [Fact]
@@ -232,7 +232,7 @@ public class RuleTests
     {
         ITargetRule Of(RuleReading reading) => RuleBinding.Of(new DetectionChoice(0.01, 0.9, 1, Topography.Unknown), reading);
         RelativeAssert.Equal(new SubspaceDetectionRule(0.01, 0.9, 1, 24).Trials(0.1), Of(Rows).Trials(0.1), ClosedForm);
-        RelativeAssert.Equal(new SubspaceDetectionRule(0.01, 0.9, 1, 1).Trials(0.1), Of(RuleReading.Single()).Trials(0.1), ClosedForm);
+        RelativeAssert.Equal(new SubspaceDetectionRule(0.01, 0.9, 1, 1).Trials(0.1), Of(RuleReading.OfOneReading()).Trials(0.1), ClosedForm);
         Assert.IsType<SteadyStateRule>(RuleBinding.Of(new DetectionChoice(0.01, 0.9, 1), Rows with { SteadyState = true }));
     }
 }
