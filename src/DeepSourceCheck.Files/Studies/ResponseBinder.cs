@@ -74,6 +74,7 @@ internal static class ResponseBinder
         }
 
         double? window = entry.Number("window_ms");
+        IReadOnlyList<RatePoint> rates = RateCurveBinder.Bind(entry, steady);
         Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
         Section measure = entry.Map("measure") ?? entry.Entry("measure");
         double artefactEeg = Artefact(artefact, "eeg_uV", sensors.HasEeg, "the study has no electrodes");
@@ -100,6 +101,7 @@ internal static class ResponseBinder
             Baseline = course.Baseline,
             Direction = direction,
             Window = window / 1000,
+            RateCurve = rates,
             ComponentFrequency = component,
             LockedArtefactEeg = Si.FromMicrovolts(artefactEeg),
             LockedArtefactMeg = Si.FromFemtotesla(artefactMeg),

@@ -46,6 +46,7 @@ public static class AssessmentJson
 
             json.WriteCount("session_trials", assessment.SessionTrials);
             json.WriteArray("responses", assessment.Responses, (j, r) => WriteResponse(j, r, assessment));
+            ProtocolJson.WritePeople(json, assessment);
             json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));
             json.WriteEndObject();
         }
@@ -70,6 +71,7 @@ public static class AssessmentJson
         json.WriteStrings("warnings", variant.Assessment.Warnings.Except(study.Warnings));
         json.WriteCount("session_trials", variant.Assessment.SessionTrials);
         json.WriteArray("responses", variant.Assessment.Responses, (j, r) => WriteResponse(j, r, variant.Assessment));
+        ProtocolJson.WritePeople(json, variant.Assessment);
         json.WriteEndObject();
     }
 
@@ -397,6 +399,7 @@ public static class AssessmentJson
             json.WriteEndObject();
         }
 
+        ProtocolJson.Write(json, verdict);
         json.WriteArray("why", verdict.Chain, JsonText.WriteDerivedNumber);
         json.WriteEndObject();
     }

@@ -82,6 +82,18 @@ public class StudyKeysTests
         "responses[].place_error_mm",
         "responses[].baseline_s",
         "sensors.trigger",
+        // Several people, planned analyses, amplitude against rate.
+        "protocol.dropout_fraction",
+        "protocol.people_test",
+        "protocol.people_test.alpha",
+        "protocol.people_test.power",
+        "protocol.people_test.groups_differ_by",
+        "target.detection.stopping",
+        "target.detection.stopping.analyses",
+        "target.detection.stopping.spending",
+        "responses[].rate_curve",
+        "responses[].rate_curve[].rate_per_s",
+        "responses[].rate_curve[].amplitude",
         // The exact critical value instead of a rounded one, and averaging as it really is.
         "target.variance_ratio.alpha",
         "protocol.interval_jitter_ms",

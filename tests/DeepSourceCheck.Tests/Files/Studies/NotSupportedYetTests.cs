@@ -7,8 +7,6 @@ public class NotSupportedYetTests
 {
     [Theory]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    competitors: [{region: cortex, moment_nAm: 10}]", "responses.wave V.competitors")]
-    [InlineData("rate_per_s: 11.1", "rate_per_s: 11.1, participants: 20", "protocol.participants")]
-    [InlineData("rate_per_s: 11.1", "rate_per_s: 11.1, spread_between_people: 0.3", "protocol.spread_between_people")]
     public void Key_ThatIsNotActedOn_IsRefusedWithWhatToDoInstead(string place, string replacement, string key)
     {
         InputProblem problem = StudyText.Problem(StudyText.Small.With(place, replacement));
