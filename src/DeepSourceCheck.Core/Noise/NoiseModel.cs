@@ -1,4 +1,6 @@
 using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Noise.Recordings;
+using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Noise;
 
@@ -37,18 +39,28 @@ public sealed class NoiseModel
     /// <summary>Number of independent samples of the MEG covariance; null for exact.</summary>
     public double? MegSamples { get; init; }
 
+    /// <summary>EEG noise from a recording, one for the band of each response, that replaces the terms; empty for none.</summary>
+    public IReadOnlyList<RecordedNoise> EegRecorded { get; init; } = [];
+
+    /// <summary>EEG noise from a recording in the band of a response [Hz]; null where there is no recording.</summary>
+    public RecordedNoise? Recorded(double low, double high) => EegRecorded.Count == 0 ? null
+        : EegRecorded.FirstOrDefault(r => r.Band == new Band(low, high)) ?? throw new ArgumentException($"No response has the band {low} to {high} Hz; the recording was not filtered for it.");
+
     /// <summary>Covariance of one trial in a band [Hz].</summary>
     public NoiseCovariance InBand(double low, double high)
     {
+        RecordedNoise? recorded = Recorded(low, high);
+        double[]? eeg = recorded?.Covariance ?? EegPerTrial;
         NoiseCovariance spectral = BandCovariance.Integrate(Terms, EegRows, MegRows, low, high);
         return new NoiseCovariance
         {
             EegRows = EegRows,
             MegRows = MegRows,
-            Eeg = EegPerTrial ?? spectral.Eeg,
+            Eeg = eeg ?? spectral.Eeg,
             Meg = MegPerTrial ?? (MegOperator is { } p ? p.ApplyToCovariance(spectral.Meg) : spectral.Meg),
-            Cross = EegPerTrial is null && MegPerTrial is null ? Projected(spectral.Cross) : null,
+            Cross = eeg is null && MegPerTrial is null ? Projected(spectral.Cross) : null,
             EegSamples = EegSamples,
+            EegHeldOut = recorded?.HeldOutShare,
             MegSamples = MegSamples,
         };
     }
@@ -61,6 +73,7 @@ public sealed class NoiseModel
         MegRows = MegRows,
         Terms = more is null ? Terms : [.. Terms, more],
         EegPerTrial = EegPerTrial,
+        EegRecorded = EegRecorded,
         MegPerTrial = MegPerTrial,
         EegSamples = EegSamples,
         MegSamples = MegSamples,
@@ -75,7 +88,7 @@ public sealed class NoiseModel
     public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, double low, double high)
     {
         double[] weights = eeg ?? MegWeights(megChannel);
-        if ((eeg is null ? MegPerTrial : EegPerTrial) is { } stated)
+        if ((eeg is null ? MegPerTrial : Recorded(low, high)?.Covariance ?? EegPerTrial) is { } stated)
         {
             return [(StatedPerTrial, Quadratic(stated, weights))];
         }
@@ -94,7 +107,7 @@ public sealed class NoiseModel
     /// </returns>
     public IReadOnlyList<(string Cause, double[] Power)> Spectra(double[]? eeg, int megChannel, IReadOnlyList<double> frequencies)
     {
-        if ((eeg is null ? MegPerTrial : EegPerTrial) is not null)
+        if (eeg is null ? MegPerTrial is not null : EegPerTrial is not null || EegRecorded.Count > 0)
         {
             return [];
         }
