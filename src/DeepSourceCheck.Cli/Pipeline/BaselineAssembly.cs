@@ -56,7 +56,7 @@ internal static class BaselineAssembly
                 found.Add(new(Invariant($"{Key} ({noise.Band.Low:0.###} to {noise.Band.High:0.###} Hz): {what}"), Rounded(value), unit, FromStudy: false, source, Grade.Derived));
             Add("seconds used", noise.SecondsUsed, "s", Invariant($"of {noise.SecondsRead:0.###} s read, in segments of {1000 * noise.SegmentSeconds:0.###} ms"));
             Add("rejected share", noise.RejectedShare, "", Invariant($"{noise.Rejected} of {noise.Segments} segments exceed limit_uV"));
-            Add("independent samples", noise.IndependentSamples, "", "twice the bandwidth times the seconds used");
+            Add("independent samples", noise.IndependentSamples, "", Invariant($"twice the bandwidth of {noise.BandRead.Low:0.###} to {noise.BandRead.High:0.###} Hz times the seconds used"));
             Add("shrinkage", noise.Shrinkage, "", "weight of equal variance; Ledoit and Wolf 2004, from memory");
             Add("held-out share", noise.HeldOutShare, "", "power that filters built from one half reach on the other, over what they promise: factor of the matched filter");
         }
@@ -96,7 +96,7 @@ internal static class BaselineAssembly
         var noises = new List<RecordedNoise>();
         foreach (IGrouping<Band, Response> responses in study.Responses.GroupBy(r => r.Band))
         {
-            RecordedNoise noise = baseline.InBand(responses.Key, choice.Segment ?? responses.Max(r => r.Window) ?? UsualSegment);
+            RecordedNoise noise = baseline.InBand(responses.Key, choice.Segment ?? responses.Max(r => r.Window) ?? UsualSegment, Read(responses.First()));
             Judge(reading, noise, string.Join(", ", responses.Select(r => r.Name)), electrodes.Length, warnings);
             noises.Add(noise);
         }
@@ -104,13 +104,15 @@ internal static class BaselineAssembly
         return noises;
     }
 
+    private static Band Read(Response response) => response.Steady is { } steady ? BaselineNoise.Around(steady) : response.Band;
+
     private static void CheckRate(EdfHeader header, EdfSignal signal, IReadOnlyList<Response> responses)
     {
         double rate = signal.SamplesPerRecord / header.RecordSeconds;
-        foreach (Response response in responses.Where(r => rate < LeastSampling * r.Band.High))
+        foreach (Response response in responses.Where(r => rate < LeastSampling * Read(r).High))
         {
             throw new InputException(null, Key, Invariant(
-                $"{header.DisplayName} was sampled at {rate:0.###} Hz, less than {LeastSampling} times the upper edge of {response.Name}'s band ({response.Band.High:0.###} Hz): it does not hold the noise of that band; record at {LeastSampling * response.Band.High:0.###} Hz or more, or lower the edge"));
+                $"{header.DisplayName} was sampled at {rate:0.###} Hz, less than {LeastSampling} times the upper edge of {response.Name}'s band ({Read(response).High:0.###} Hz): it does not hold the noise of that band; record at {LeastSampling * Read(response).High:0.###} Hz or more, or lower the edge"));
         }
     }
 
@@ -122,7 +124,7 @@ internal static class BaselineAssembly
             EdfPrefilter filter = EdfPrefilter.Parse(signal.Prefilter);
             foreach (Response response in responses)
             {
-                Band band = response.Band;
+                Band band = Read(response);
                 string both = Invariant($"{header.DisplayName} was recorded with the filters '{signal.Prefilter}' ({signal.Label}), {response.Name} has the band {band.Low:0.###} to {band.High:0.###} Hz");
                 if (filter.HighPass >= band.High || filter.LowPass <= band.Low)
                 {

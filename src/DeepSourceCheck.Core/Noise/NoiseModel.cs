@@ -42,16 +42,68 @@ public sealed class NoiseModel
     /// <summary>EEG noise from a recording, one for the band of each response, that replaces the terms; empty for none.</summary>
     public IReadOnlyList<RecordedNoise> EegRecorded { get; init; } = [];
 
-    /// <summary>EEG noise from a recording in the band of a response [Hz]; null where there is no recording.</summary>
-    public RecordedNoise? Recorded(double low, double high) => EegRecorded.Count == 0 ? null
-        : EegRecorded.FirstOrDefault(r => r.Band == new Band(low, high)) ?? throw new ArgumentException($"No response has the band {low} to {high} Hz; the recording was not filtered for it.");
+    /// <summary>EEG noise from a recording in the band of a response; null where there is no recording.</summary>
+    /// <param name="band">The band.</param>
+    public RecordedNoise? Recorded(Band band) => EegRecorded.Count == 0 ? null
+        : EegRecorded.FirstOrDefault(r => r.Band == band) ?? throw new ArgumentException($"No response has the band {band.Low} to {band.High} Hz; the recording was not filtered for it.", nameof(band));
+
+    /// <summary>True where the EEG noise is stated per trial or recorded: no term has a share in it.</summary>
+    public bool EegIsStated => EegPerTrial is not null || EegRecorded.Count > 0;
+
+    /// <summary>EEG covariance of one trial [V^2] that replaces the terms: a stated one whatever the response, a recorded one in the response's band; null where there is none.</summary>
+    /// <param name="band">Band of the response.</param>
+    public double[]? EegStated(Band band) => Recorded(band)?.Covariance ?? EegPerTrial;
 
     /// <summary>Covariance of one trial in a band [Hz].</summary>
-    public NoiseCovariance InBand(double low, double high)
+    public NoiseCovariance InBand(double low, double high) => Weighted(term => BandIntegral.Nodes(low, high, term.Breakpoints), new Band(low, high));
+
+    /// <summary>Covariance of one trial of a response: over its band, or in the bin at the frequency of a steady-state response.</summary>
+    /// <param name="response">The response.</param>
+    public NoiseCovariance Of(Response response) => Weighted(term => Nodes(response, term), response.Band);
+
+    /// <summary>Covariance of one term at unit power, without what is stated per trial.</summary>
+    /// <param name="term">One of <see cref="Terms"/>.</param>
+    internal NoiseCovariance AtUnitPower(INoiseTerm term)
     {
-        RecordedNoise? recorded = Recorded(low, high);
-        double[]? eeg = recorded?.Covariance ?? EegPerTrial;
-        NoiseCovariance spectral = BandCovariance.Integrate(Terms, EegRows, MegRows, low, high);
+        NoiseCovariance unit = BandCovariance.Integrate([new UnitPower(term)], EegRows, MegRows, _ => [new BandNode(1, 1)]);
+        return new NoiseCovariance
+        {
+            EegRows = EegRows,
+            MegRows = MegRows,
+            Eeg = !EegIsStated ? unit.Eeg : new double[unit.Eeg.Length],
+            Meg = MegPerTrial is not null ? new double[unit.Meg.Length] : MegOperator is { } p ? p.ApplyToCovariance(unit.Meg) : unit.Meg,
+            Cross = !EegIsStated && MegPerTrial is null ? Projected(unit.Cross) : null,
+        };
+    }
+
+    private sealed record UnitPower(INoiseTerm Term) : INoiseTerm
+    {
+        public string Name => Term.Name;
+
+        public NoisePattern? Eeg => Term.Eeg;
+
+        public NoisePattern? Meg => Term.Meg;
+
+        public IReadOnlyList<double> Breakpoints => [];
+
+        public NoisePower At(double frequency) => new(1, 1, 1);
+    }
+
+    /// <summary>Variance that each cause adds to one reading in one trial of a response; see the other form.</summary>
+    /// <param name="eeg">Weights over the electrodes, or null for a MEG channel.</param>
+    /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
+    /// <param name="response">The response.</param>
+    public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, Response response) =>
+        Contributions(eeg, megChannel, term => Nodes(response, term), response.Band);
+
+    // A trial of T seconds resolves bins of 1/T: one at the frequency, with density / T.
+    private static IReadOnlyList<BandNode> Nodes(Response response, INoiseTerm term) => response.Steady is { } steady
+        ? [new BandNode(steady.Frequency, 1 / steady.Seconds)] : BandIntegral.Nodes(response.Band.Low, response.Band.High, term.Breakpoints);
+
+    private NoiseCovariance Weighted(Func<INoiseTerm, IReadOnlyList<BandNode>> nodes, Band band)
+    {
+        double[]? eeg = EegStated(band);
+        NoiseCovariance spectral = BandCovariance.Integrate(Terms, EegRows, MegRows, nodes);
         return new NoiseCovariance
         {
             EegRows = EegRows,
@@ -60,7 +112,7 @@ public sealed class NoiseModel
             Meg = MegPerTrial ?? (MegOperator is { } p ? p.ApplyToCovariance(spectral.Meg) : spectral.Meg),
             Cross = eeg is null && MegPerTrial is null ? Projected(spectral.Cross) : null,
             EegSamples = EegSamples,
-            EegHeldOut = recorded?.HeldOutShare,
+            EegHeldOut = Recorded(band)?.HeldOutShare,
             MegSamples = MegSamples,
         };
     }
@@ -85,29 +137,32 @@ public sealed class NoiseModel
     /// <param name="low">Lower edge [Hz].</param>
     /// <param name="high">Upper edge [Hz].</param>
     /// <returns>(cause, variance [V^2, T^2 or (T/m)^2]); a single `stated` one where a per-trial covariance replaces the terms.</returns>
-    public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, double low, double high)
+    public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, double low, double high) =>
+        Contributions(eeg, megChannel, term => BandIntegral.Nodes(low, high, term.Breakpoints), new Band(low, high));
+
+    private IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, Func<INoiseTerm, IReadOnlyList<BandNode>> nodes, Band band)
     {
         double[] weights = eeg ?? MegWeights(megChannel);
-        if ((eeg is null ? MegPerTrial : Recorded(low, high)?.Covariance ?? EegPerTrial) is { } stated)
+        if ((eeg is null ? MegPerTrial : EegStated(band)) is { } stated)
         {
             return [(StatedPerTrial, Quadratic(stated, weights))];
         }
 
         return [.. Present(eeg is null, weights).Select(t =>
-            (t.Term.Name, t.Variance * BandIntegral.Of(f => eeg is null ? t.Term.At(f).Meg : t.Term.At(f).Eeg, low, high, t.Term.Breakpoints)))];
+            (t.Term.Name, t.Variance * nodes(t.Term).Sum(n => n.Weight * (eeg is null ? t.Term.At(n.Frequency).Meg : t.Term.At(n.Frequency).Eeg))))];
     }
 
     /// <summary>Power density that each cause adds to one reading at single frequencies.</summary>
-    /// <param name="eeg">As for <see cref="Contributions"/>.</param>
-    /// <param name="megChannel">As for <see cref="Contributions"/>.</param>
+    /// <param name="eeg">As for <see cref="Contributions(double[], int, double, double)"/>.</param>
+    /// <param name="megChannel">As for <see cref="Contributions(double[], int, double, double)"/>.</param>
     /// <param name="frequencies">Frequencies [Hz].</param>
     /// <returns>
-    /// (cause, power densities [V^2/Hz, T^2/Hz or (T/m)^2/Hz]), in the order of <see cref="Contributions"/>; a remainder may be negative where tables cross.
+    /// (cause, power densities [V^2/Hz, T^2/Hz or (T/m)^2/Hz]), in the order of <see cref="Contributions(double[], int, double, double)"/>; a remainder may be negative where tables cross.
     /// Empty where a per-trial covariance replaces the terms: its spectrum is not known.
     /// </returns>
     public IReadOnlyList<(string Cause, double[] Power)> Spectra(double[]? eeg, int megChannel, IReadOnlyList<double> frequencies)
     {
-        if (eeg is null ? MegPerTrial is not null : EegPerTrial is not null || EegRecorded.Count > 0)
+        if (eeg is null ? MegPerTrial is not null : EegIsStated)
         {
             return [];
         }
@@ -159,6 +214,37 @@ public sealed class NoiseModel
         }
 
         return result;
+    }
+
+    /// <summary>Power density [V^2/Hz, T^2/Hz or (T/m)^2/Hz] of one reading; null where it is stated per trial, without a spectrum.</summary>
+    /// <param name="eeg">Weights over the electrodes, or null for a MEG channel.</param>
+    /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
+    public Func<double, double>? Density(double[]? eeg, int megChannel)
+    {
+        if (eeg is null ? MegPerTrial is not null : EegIsStated)
+        {
+            return null;
+        }
+
+        double[] weights = eeg ?? new double[MegRows];
+        if (eeg is null)
+        {
+            weights[megChannel] = 1;
+        }
+
+        (INoiseTerm Term, double Variance)[] parts =
+            [.. Terms.Where(t => (eeg is null ? t.Meg : t.Eeg) is not null).Select(t => (t, UnitVariance((eeg is null ? t.Meg : t.Eeg)!, weights)))];
+        return f =>
+        {
+            double sum = 0;
+            foreach ((INoiseTerm term, double variance) in parts)
+            {
+                NoisePower power = term.At(f);
+                sum += variance * (eeg is null ? power.Meg : power.Eeg);
+            }
+
+            return sum;
+        };
     }
 
     /// <summary>w' (D + F F') w, in the unit of the pattern.</summary>

@@ -48,6 +48,7 @@ internal static class NoiseBinder
             MegCovariance = meg == "measured" ? Covariance(noise, "meg_covariance") : null,
             EegRecording = eeg == Recorded ? Recording(noise) : null,
             Brain = brain,
+            SpreadBetweenTrials = noise.Number("spread_between_trials"),
         };
         if (brain != true && !noise.States("eeg_total") && (eeg == "spectral" || meg == "spectral"))
         {

@@ -34,12 +34,23 @@ public sealed class BaselineNoise
     /// <summary>Largest size of an electrode against the average, after the band-pass, in a segment that is kept [V].</summary>
     public required double Limit { get; init; }
 
+    /// <summary>Band about the bin of a steady-state response from which its noise is read: a tenth of the frequency to either side, as the bins beside it are in tests of such responses (common practice, no source).</summary>
+    /// <param name="steady">The response.</param>
+    public static Band Around(SteadyState steady)
+    {
+        double half = Math.Max(0.1 * steady.Frequency, steady.Bin.Width / 2);
+        return new(Math.Max(0, steady.Frequency - half), steady.Frequency + half);
+    }
+
     /// <summary>Computes the noise of a band.</summary>
     /// <param name="band">Band [Hz], its upper edge at most 0.4 of the sampling rate.</param>
     /// <param name="segment">Length of a segment [s].</param>
+    /// <param name="readFrom">Wider band [Hz] from which that of a narrow one is read by its share of the width; null for the band itself.</param>
     /// <exception cref="InputException">The recording is too short for the band, or nearly all of it exceeds the limit.</exception>
-    public RecordedNoise InBand(Band band, double segment)
+    public RecordedNoise InBand(Band band, double segment, Band? readFrom = null)
     {
+        Band response = band;
+        band = readFrom ?? band;
         double rate = Recording.SamplingRate;
         var filter = new BandPass(band, rate);
         int length = Math.Max(1, (int)Math.Round(segment * rate));
@@ -69,8 +80,9 @@ public sealed class BaselineNoise
         return new RecordedNoise
         {
             File = File,
-            Band = band,
-            Covariance = covariance.Values,
+            Band = response,
+            BandRead = band,
+            Covariance = [.. covariance.Values.Select(c => c * (response.Width / band.Width))],
             IndependentSamples = independent,
             Shrinkage = covariance.Weight,
             HeldOutShare = HeldOutShare.Of(covariance, first, second, independent),
@@ -79,7 +91,7 @@ public sealed class BaselineNoise
             SegmentSeconds = length / rate,
             Segments = segments,
             Rejected = segments - kept.Count,
-            MedianRms = Math.Sqrt(Enumerable.Range(0, p).Select(k => covariance.Values[k * p + k]).Order().ElementAt(p / 2)),
+            MedianRms = Math.Sqrt(response.Width / band.Width) * Math.Sqrt(Enumerable.Range(0, p).Select(k => covariance.Values[k * p + k]).Order().ElementAt(p / 2)),
         };
 
         SampleMoments Moments(IEnumerable<(double[][] Values, int Start)> of)

@@ -8,13 +8,16 @@ public sealed record RecordedNoise
     /// <summary>File as the study names it.</summary>
     public required string File { get; init; }
 
-    /// <summary>Band [Hz].</summary>
+    /// <summary>Band of the response [Hz]; the bin of a steady-state one.</summary>
     public required Band Band { get; init; }
+
+    /// <summary>Band that was read [Hz]: that of the response, or a wider one about a bin, of which the bin has its share by width.</summary>
+    public required Band BandRead { get; init; }
 
     /// <summary>Shrunk covariance of the electrodes against their average [V^2], row by row.</summary>
     public required double[] Covariance { get; init; }
 
-    /// <summary>Number of independent samples, 2 B T of the time that was used.</summary>
+    /// <summary>Number of independent samples, 2 B T of the band that was read and the time that was used.</summary>
     public required double IndependentSamples { get; init; }
 
     /// <summary>Weight of equal variance in the covariance, 0 to 1 (Ledoit and Wolf 2004); without unit.</summary>
