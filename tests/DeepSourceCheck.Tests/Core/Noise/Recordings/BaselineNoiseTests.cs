@@ -96,12 +96,13 @@ public class BaselineNoiseTests
             values[1][n] += 500 * Microvolt;                     // a jump of 40 ms at 20 s
         }
 
-        RecordedNoise all = Baseline(values).InBand(Slow, 0.5), kept = Baseline(values, 50 * Microvolt).InBand(Slow, 0.5), clean = Baseline(White(3, 60, 4)).InBand(Slow, 0.5);
-        Assert.InRange(kept.Rejected, 1, 2);
+        // Band-passed, the noise is 1.8 uV rms: six of those are never reached by chance. The jump rings for some tenths of a second on either side.
+        RecordedNoise all = Baseline(values).InBand(Slow, 0.5), kept = Baseline(values, 11 * Microvolt).InBand(Slow, 0.5), clean = Baseline(White(3, 60, 4)).InBand(Slow, 0.5);
+        Assert.InRange(kept.Rejected, 1, 4);
         Assert.Equal((all.Segments, 0), (kept.Segments, all.Rejected));
         RelativeAssert.Equal(all.SecondsUsed - 0.5 * kept.Rejected, kept.SecondsUsed, 1e-12);
         Assert.True(all.Covariance[4] > 2 * clean.Covariance[4]);
-        RelativeAssert.Equal(clean.Covariance[4], kept.Covariance[4], 0.02);
+        RelativeAssert.Equal(clean.Covariance[4], kept.Covariance[4], 0.04);
     }
 
     [Fact]
