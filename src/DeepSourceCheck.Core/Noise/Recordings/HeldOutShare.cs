@@ -4,7 +4,8 @@ namespace DeepSourceCheck.Core.Noise.Recordings;
 
 /// <summary>
 /// What a filter that was built from a recording reaches on data that it has not seen, over the power b' C^+ b that the covariance of the whole recording promises. For each half:
-/// w = C_half^+ b, (w' b)^2/(w' S_other w), S_other the plain covariance of the other half. Mean over both halves and over b, the patterns of single electrodes against the average; at most 1.
+/// w = C_half^+ b, (w' b)^2/(w' S_other w) (nu_other - 2)/nu_other, S_other the plain covariance of the other half: the last factor undoes that the mean of 1/(estimated variance) is too
+/// high (inverse chi-square law). Mean over both halves and over b, the patterns of single electrodes against the average; at most 1.
 /// </summary>
 /// <remarks>
 /// Replaces the factor of Reed, Mallett and Brennan 1974, which does not hold after shrinkage. Half of the data builds the filter, so the share is rather too low than too high; patterns of
@@ -27,10 +28,11 @@ public static class HeldOutShare
         {
             Matrix<double> filters = ShrunkCovariance.Of(half, independent * half.Count / (half.Count + other.Count)).Inverse();
             double[] covariance = other.Covariance();
+            double unseenSamples = independent * other.Count / (half.Count + other.Count), mean = Math.Max(0, unseenSamples - 2) / unseenSamples;
             Matrix<double> unseen = Matrix<double>.Build.Dense(whole.Rows, whole.Rows, (i, j) => covariance[i * whole.Rows + j]);
             Matrix<double> noise = filters.TransposeThisAndMultiply(unseen * filters);
             // w' b of electrode k is w_k: filters sum to zero.
-            return Enumerable.Range(0, whole.Rows).Sum(k => filters[k, k] * filters[k, k] / noise[k, k] / promised[k, k]);
+            return Enumerable.Range(0, whole.Rows).Sum(k => mean * filters[k, k] * filters[k, k] / noise[k, k] / promised[k, k]);
         }
     }
 }
