@@ -10,6 +10,13 @@ public sealed class NoiseModel
     /// <summary>The cause of a reading whose noise is a flat figure or a measured covariance.</summary>
     public const string StatedPerTrial = "stated per trial";
 
+    /// <summary>The cause of a reading whose noise is a recording.</summary>
+    public const string FromRecording = "recorded";
+
+    /// <summary>True for a cause that is all of the noise over the response's band and has no spectrum.</summary>
+    /// <param name="cause">Name of a cause.</param>
+    public static bool IsWhole(string cause) => cause is StatedPerTrial or FromRecording;
+
     /// <summary>Number of electrodes; 0 without EEG.</summary>
     public required int EegRows { get; init; }
 
@@ -136,7 +143,7 @@ public sealed class NoiseModel
     /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
     /// <param name="low">Lower edge [Hz].</param>
     /// <param name="high">Upper edge [Hz].</param>
-    /// <returns>(cause, variance [V^2, T^2 or (T/m)^2]); a single `stated` one where a per-trial covariance replaces the terms.</returns>
+    /// <returns>(cause, variance [V^2, T^2 or (T/m)^2]); a single one, for which <see cref="IsWhole"/> holds, where a per-trial covariance replaces the terms.</returns>
     public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, double low, double high) =>
         Contributions(eeg, megChannel, term => BandIntegral.Nodes(low, high, term.Breakpoints), new Band(low, high));
 
@@ -145,7 +152,7 @@ public sealed class NoiseModel
         double[] weights = eeg ?? MegWeights(megChannel);
         if ((eeg is null ? MegPerTrial : EegStated(band)) is { } stated)
         {
-            return [(StatedPerTrial, Quadratic(stated, weights))];
+            return [(eeg is not null && EegRecorded.Count > 0 ? FromRecording : StatedPerTrial, Quadratic(stated, weights))];
         }
 
         return [.. Present(eeg is null, weights).Select(t =>
