@@ -9,6 +9,8 @@ internal static class PlanBinder
 {
     private const double SecondsPerMinute = 60;
 
+    private static readonly double[] Mains = [50, 60];
+
     /// <summary>The rules in the order of the file; the amplitude ratio where the study states none.</summary>
     /// <param name="root">The study.</param>
     /// <param name="hasEeg">Whether the study has EEG, or no sensors at all, which is reported already.</param>
@@ -169,14 +171,11 @@ internal static class PlanBinder
         const string Key = "protocol.rate_per_s";
         const double MainsWanders = 0.05, AlphaLow = 8, AlphaHigh = 12;     // Hz; common practice, no source
         string remedy = protocol.IntervalJitter > 0 ? "; the stated protocol.interval_jitter_ms counters it" : "; choose another rate, or state protocol.interval_jitter_ms";
-        foreach (double mains in new[] { 50.0, 60.0 })
+        double[] met = [.. Mains.Where(mains => Math.Round(mains / protocol.Rate) is >= 1 and var harmonic && Math.Abs(harmonic * protocol.Rate - mains) <= MainsWanders)];
+        if (met.Length > 0)
         {
-            double harmonic = Math.Round(mains / protocol.Rate);
-            if (harmonic >= 1 && Math.Abs(harmonic * protocol.Rate - mains) <= MainsWanders)
-            {
-                reading.Warn(Key, FormattableString.Invariant(
-                    $"{protocol.Rate:0.######} a second is a submultiple of the mains frequency of {mains:0} Hz, which then does not average away where it is the local one{remedy}"));
-            }
+            reading.Warn(Key, FormattableString.Invariant(
+                $"{protocol.Rate:0.######} a second is a submultiple of the mains frequency of {string.Join(" and of ", met.Select(m => FormattableString.Invariant($"{m:0} Hz")))}, which then does not average away where it is the local one{remedy}"));
         }
 
         // Below half the band's width several harmonics fall into it and the alpha rhythm averages as between them.

@@ -179,6 +179,11 @@ public static class ConsoleSummary
         foreach (ModalityAnswer a in answer.Answers)
         {
             string measure = a.Modality == Modality.Both ? "both" : a.Verdict.Measure;
+            if (measure == Names.RealisticFilter)
+            {
+                measure = "realistic";                          // the name in full would take a column of its own
+            }
+
             if (measure.Length > MeasureWidth)
             {
                 measure = measure[..(MeasureWidth - 3)] + "...";

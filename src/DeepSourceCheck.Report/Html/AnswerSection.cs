@@ -227,9 +227,16 @@ internal static class AnswerSection
         foreach (string rule in rules)
         {
             html.Element("h3", $"By another target: {TrialsFigure.RuleWords(assessment, response.Response, rule)}", "class", "ruled", "style", "margin-top:28px");
-            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range", "chance to miss"],
-                response.Regions.SelectMany(r => new RegionAnswer(assessment, response.Response, r, rule).Answers.Select(a => (IReadOnlyList<string>)
-                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range(), a.Verdict.Missing is { } miss ? Say.Chance(miss) : ""])));
+            string[] columns = ["region", "modality", "measure", "verdict", "range", "chance to miss"];
+            string[][] rows =
+            [
+                .. response.Regions.SelectMany(r => new RegionAnswer(assessment, response.Response, r, rule).Answers.Select(a => new[]
+                {
+                    r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range(), a.Verdict.Missing is { } miss ? Say.Chance(miss) : "",
+                })),
+            ];
+            int[] filled = [.. Enumerable.Range(0, columns.Length).Where(k => rows.Any(row => row[k].Length > 0))];
+            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", [.. filled.Select(k => columns[k])], rows.Select(row => (IReadOnlyList<string>)[.. filled.Select(k => row[k])]));
         }
     }
 }
