@@ -1,6 +1,7 @@
 using System.Globalization;
 using System.Text.Json;
 
+using DeepSourceCheck.Core.Noise.Recordings;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -97,6 +98,28 @@ public static class AssessmentJson
 
         json.WriteArray("regions", response.Regions, (j, r) => WriteRegion(j, r, response, assessment));
         json.WriteArray("noise_spectra", response.Spectra, WriteSpectrum);
+        if (response.Recording is { } recording)
+        {
+            WriteRecording(json, recording);
+        }
+
+        json.WriteEndObject();
+    }
+
+    private static void WriteRecording(Utf8JsonWriter json, RecordedNoise recording)
+    {
+        json.WriteStartObject("noise_recording");
+        json.WriteString("file", recording.File);
+        WriteBand(json, "band_read_Hz", recording.BandRead);
+        json.WriteFigure("seconds_read", recording.SecondsRead);
+        json.WriteFigure("seconds_used", recording.SecondsUsed);
+        json.WriteFigure("segment_ms", 1000 * recording.SegmentSeconds);
+        json.WriteNumber("segments", recording.Segments);
+        json.WriteFigure("rejected_share", recording.RejectedShare);
+        json.WriteFigure("independent_samples", recording.IndependentSamples);
+        json.WriteFigure("shrinkage", recording.Shrinkage);
+        json.WriteFigure("held_out_share", recording.HeldOutShare);
+        json.WriteFigure("median_rms_uV", Si.ToMicrovolts(recording.MedianRms));
         json.WriteEndObject();
     }
 
