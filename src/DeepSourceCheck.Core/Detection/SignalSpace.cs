@@ -163,7 +163,7 @@ public sealed class SignalSpace
     /// </summary>
     /// <param name="samples">nu, or null for an exact covariance.</param>
     /// <param name="rank">p.</param>
-    private static double Correction(double? samples, int rank) =>
+    public static double Correction(double? samples, int rank) =>
         samples is { } nu ? (nu - rank - 1) / nu * Kept(nu, rank) : 1;
 
     private static double Kept(double? samples, int rank) => samples is { } nu ? (nu - rank + 2) / (nu + 1) : 1;

@@ -47,6 +47,7 @@ public static class Assessor
                 begun = true;
             }
 
+            CompetitorReport? competitors = response.Competitors.Count == 0 ? null : new CompetitorReport(setup, response, noise, space, cancellation);
             var regions = new List<RegionResult>();
             foreach ((FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts) in Sources(setup, response, cancellation))
             {
@@ -60,6 +61,12 @@ public static class Assessor
                 RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
                     : new RemovalReport(own, asked).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, Activation.Weights(response), cancellation) : setup.Removal.Source, cancellation);
                 RegionResult result = Result(own, asked, region, source, parts, tally, loss, cancellation);
+                result = result with
+                {
+                    Competitors = competitors?.Of(asked, own, region, source, result.Results, cancellation),
+                    Location = new LocationReport(own, asked).Of(region, source, cancellation),
+                    Electrodes = response.ChooseSensors ? new ElectrodeReport(own, asked, noise).Of(region, source, cancellation) : null,
+                };
                 regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, asked, own.Head, source, region, parts).Run(cancellation)));
             }
 

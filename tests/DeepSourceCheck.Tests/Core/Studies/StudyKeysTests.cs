@@ -77,6 +77,8 @@ public class StudyKeysTests
     [
         "responses[].shares",
         "responses[].lags_ms",
+        // A search that costs time.
+        "responses[].choose_sensors",
         // The default brain exceeds a usual total at 1 to 40 Hz, and rooms are not white.
         "noise.brain.scale",
         "noise.environment.corner_Hz",

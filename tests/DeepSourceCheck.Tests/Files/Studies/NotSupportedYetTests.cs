@@ -12,7 +12,6 @@ public class NotSupportedYetTests
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    waveform: waveform.csv", "responses.wave V.waveform")]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    cycles: 2", "responses.wave V.cycles")]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    jitter_ms: 0.3", "responses.wave V.jitter_ms")]
-    [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    competitors: [{region: cortex, moment_nAm: 10}]", "responses.wave V.competitors")]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    measure: {eeg: realistic-filter}", "responses.wave V.measure.eeg")]
     [InlineData("moment_nAm: 3.5", "moment_nAm: 3.5\n    measure: {meg: realistic-filter}", "responses.wave V.measure.meg")]
     [InlineData("amplitude_ratio: 3", "amplitude_ratio: 3, variance_ratio: {critical: 3.1, power: 0.9}", "target.variance_ratio")]
