@@ -12,8 +12,8 @@ namespace DeepSourceCheck.Core.Planning;
 // LocationReport.cs - how well the session could place the response.
 //   Bound of one trial at unit moment (LocationBound), times c / (a sqrt(N)) for the session's N trials and the convention's noise c;
 //   reported: sqrt(bound^2 + model error^2). The bound is that of noise alone and of a perfect model: no method places better, the model error is what heads add.
-//   Model errors: mean over 32 dipoles in a skull phantom, EEG 7 to 8 mm (the upper one is taken), MEG 3 mm [Leahy et al. 1998]. Both together stand on the model error of
-//   the modality that places better.
+//   Model errors: mean over 32 dipoles in a skull phantom, EEG 7 to 8 mm (the upper one is taken), MEG 3 mm [Leahy et al. 1998]. A joint fit weighs the two by
+//   their noise, not by their models: with w = (1/B_e^2) / (1/B_e^2 + 1/B_m^2) its model error is sqrt(w^2 g_e^2 + (1-w)^2 g_m^2), independent errors, one number an axis.
 
 /// <summary>Location bounds of one region.</summary>
 internal sealed class LocationReport(StudySetup setup, EvaluationPlan plan)
@@ -84,7 +84,7 @@ internal sealed class LocationReport(StudySetup setup, EvaluationPlan plan)
             {
                 Modality.Eeg => EegModelError,
                 Modality.Meg => MegModelError,
-                _ => Middle(values[1]) < Middle(values[0]) ? MegModelError : EegModelError,
+                _ => Joint(Middle(values[0]), Middle(values[1])),
             };
             Percentiles bound = Of(sorted, v => v / root), error = Of(sorted, v => Math.Sqrt(v * v / (root * root) + model * model));
             bool localisable = bound.P50 is { } b && (radius is null || b <= radius);
@@ -102,6 +102,12 @@ internal sealed class LocationReport(StudySetup setup, EvaluationPlan plan)
         new("g", "error of the head's model", Si.ToMm(model), "mm", "", ModelSource, Grade.Seen),
         new("E", "location error", Si.ToMm(error.P50!.Value), "mm", "sqrt(B^2 + g^2)", "independent errors", Grade.Derived),
     ];
+
+    private static double Joint(double eegBound, double megBound)
+    {
+        double ratio = eegBound / megBound, eegShare = double.IsInfinity(eegBound) ? 0 : double.IsInfinity(megBound) ? 1 : 1 / (1 + ratio * ratio);
+        return Math.Sqrt(eegShare * eegShare * EegModelError * EegModelError + (1 - eegShare) * (1 - eegShare) * MegModelError * MegModelError);
+    }
 
     private static double Middle(List<double> values) => values.Count == 0 ? double.PositiveInfinity : At([.. values.Order()], 0.5);
 

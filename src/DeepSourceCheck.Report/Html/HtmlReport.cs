@@ -36,6 +36,7 @@ public static class HtmlReport
         }
 
         UnknownsSection.Write(html, assessment);
+        AttributionSection.Write(html, assessment);
         VariantSection.Write(html, assessment);
         if (assessment.Warnings.Count > 0)
         {
