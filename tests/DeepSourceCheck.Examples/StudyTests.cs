@@ -363,6 +363,42 @@ public class StudyTests
         Assert.True(JsonElement.DeepEquals(changed.Region(WaveV, "inferior-colliculus-left"), study.Variant("twice the moment").Region(WaveV, "inferior-colliculus-left")));
     }
 
+    [Fact]
+    public void Study13_SteadyStateTakesTheTimeOfItsAmplitudeAndDensity()
+    {
+        // T = (lambda/2) density/(A^2/2), lambda/2 = 4.88 for F(2, 240) at .05/.80 (Dobie and Wilson 1996): 40 nV in the density that the chain gives. Published medians: 68 to 157 s at
+        // 55 dB SPL for 80 to 100 Hz (Hearing Research 2016); band x/: 2.5 about those.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("13-steady-state.yaml"));
+        JsonElement row = study.Result("following response", "inferior-colliculus-left", "EEG", "given", "Cz-mastoids");
+        double snr = Math.Pow(10, row.GetProperty("snr_db").GetProperty("p50").GetDouble() / 10);
+        long trials = AssessedStudy.Trials(row, "detection");
+        Assert.InRange(trials, 9.75 / snr, 9.77 / snr + 1);
+        Assert.InRange(trials, 25, 250);
+    }
+
+    [Fact]
+    public void Study14_RealisticFiltersLoseSomeOfTheIdealPowerAndBeatTheBestChannel()
+    {
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("14-realistic-filter.yaml"));
+        foreach (string modality in (string[])["EEG", "MEG"])
+        {
+            long Of(string measure) => AssessedStudy.Trials(study.Result("wave V", "inferior-colliculus-left", modality, "given", measure));
+            Assert.True(Of("matched-filter") <= Of("realistic-filter"));
+            Assert.True(Of("realistic-filter") < Of("best-channel"));
+        }
+    }
+
+    [Fact]
+    public void Study15_KnownWaveformPutsDetectionBelowReading_AndTheRatioRuleWhereItsClinicStands()
+    {
+        // The F-ratio rule at .01/.90 asks some 1,262 sweeps of 0.45 uV peak to trough with 0.12 uV rms over 10 ms (worked example); the whole-chain band is 500 to 3200.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("15-waveform/study.yaml"));
+        JsonElement[] targets = [.. study.Result("wave V", "inferior-colliculus-left", "EEG", "given", "Cz-mastoids").GetProperty("targets").EnumerateArray()];
+        long Of(string rule) => targets.First(t => t.GetProperty("rule").GetString() == rule).GetProperty("trials").GetProperty("p50").GetInt64();
+        Assert.InRange(Of("variance_ratio"), 500, 3200);
+        Assert.True(Of("detection") < Of("amplitude_ratio") * 13.02 / 9);
+    }
+
     private const string SlowStudy = "17-slow-response/study.yaml";
 
     [Fact]
@@ -406,5 +442,48 @@ public class StudyTests
         double measured = AssessedStudy.SnrDb(study.Variant("measured tables").Result("slow response", "hippocampus-left", "MEG", "tangential", "best-channel"));
         Assert.InRange(Math.Abs(scaled - measured), 0.01, 3);
         Assert.Contains(study.Root.GetProperty("inputs").EnumerateArray(), f => f.GetProperty("path").GetString() == "brain-eeg.csv");
+    }
+
+    private static long ByRule(AssessedStudy study, string rule, string what = "trials") => study.Result(WaveV, "colliculus", "EEG", "given", "best-channel")
+        .GetProperty("targets").EnumerateArray().Single(t => t.GetProperty("rule").GetString() == rule).GetProperty(what).GetProperty("p50").GetInt64();
+
+    [Fact]
+    public void Study16_HasTheKnownCountByEveryRule()
+    {
+        // 0.45 uV from peak to trough on 2.0 uV rms, 0.12 uV rms over the window: recomputed from exact distributions outside the project; 3.1 on F(5, 250) is published (Elberling and Don 1984).
+        string file = SourceTree.Study("16-rules", "study.yaml");
+        AssessedStudy study = AssessedStudy.Run(file);
+        Assert.Equal(356, ByRule(study, "amplitude_ratio"));
+        Assert.Equal(1262, ByRule(study, "variance_ratio"));
+        Assert.Equal(2500, ByRule(study, "residual_nV"));
+        AssessedStudy mean = AssessedStudy.RunChanged(file, ("{alpha: 0.01, power: 0.9, window_rms_uV: 0.12, degrees: [5, 250]}", "{critical: 3.1, window_rms_uV: 0.12}"), ("residual_nV: 40", "residual_nV: 25"));
+        Assert.Equal(577, ByRule(mean, "variance_ratio"));
+        Assert.Equal(6400, ByRule(mean, "residual_nV"));
+        Assert.Equal(712, ByRule(AssessedStudy.RunChanged(file, ("moment_nAm: 5", "moment_nAm: 2.5"), ("measured: peak-to-trough", "measured: baseline-to-peak")), "amplitude_ratio"));
+    }
+
+    [Fact]
+    public void Study16_SaysPresentedTrialsTimeInTheChairAndWeightedTrials()
+    {
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study("16-rules", "study.yaml"));
+        Assert.Equal(2778, ByRule(study, "residual_nV", "presented_trials"));                // 2500 / 0.9
+        Assert.Equal(1745, ByRule(study, "residual_nV", "weighted_trials"));                 // 2500 / exp(4 x 0.3^2) = 1744.2
+        double chair = study.Result(WaveV, "colliculus", "EEG", "given", "best-channel").GetProperty("targets").EnumerateArray()
+            .Single(t => t.GetProperty("rule").GetString() == "residual_nV").GetProperty("chair_minutes").GetProperty("p50").GetDouble();
+        Assert.InRange(chair, 43.776, 43.777);                                               // 4 x 2500 / (60 x 21.1 x 0.9) + 5 + 30 = 43.7765
+        JsonElement averaging = study.Region(WaveV, "colliculus").GetProperty("verdicts")[0].GetProperty("averaging");
+        Assert.Equal(JsonValueKind.Null, averaging.GetProperty("effective_share").ValueKind);
+        Assert.Contains("without a spectrum", averaging.GetProperty("reason").GetString(), StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public void Study16_TwiceTheNoise_NeedsFourTimesTheTrials()
+    {
+        string file = SourceTree.Study("16-rules", "study.yaml");
+        AssessedStudy quiet = AssessedStudy.Run(file), loud = AssessedStudy.RunChanged(file, ("eeg_sensor_uV_rms: 2.0", "eeg_sensor_uV_rms: 4.0"));
+        foreach (string rule in new[] { "amplitude_ratio", "variance_ratio", "residual_nV" })
+        {
+            Assert.InRange(ByRule(loud, rule), 4 * ByRule(quiet, rule) - 3, 4 * ByRule(quiet, rule));     // each is rounded up
+        }
     }
 }

@@ -15,6 +15,7 @@ internal sealed record BuiltNoise(NoiseModel Model, EnvironmentNoise? Removed)
     {
         Noise = Model,
         Source = new ProjectedSource(setup.Source, removal),
+        OtherHeads = [.. setup.OtherHeads.Select(h => new ProjectedSource(h, removal))],
         Perturbable = setup.Perturbable is { } head ? new ProjectedHead(head, removal) : null,
         Removal = new(setup.Source, Model.Unprojected(null), Model.Unprojected(Removed)),
     };

@@ -19,6 +19,9 @@ internal sealed class OnSphere : SensorAssembly
     // Below this an electrode's move onto the sphere is rounding of its table.
     private const double MovedEnough = 1e-4;
 
+    // Brain over skull: 15 measured in vivo (Oostendorp et al. 2000), 80 by tradition.
+    private static readonly double[] SkullRatios = [15, 80];
+
     private readonly LayeredSphere _sphere;
 
     public OnSphere(Study study, SphereHeadChoice choice, InputDigests inputs, List<string> warnings)
@@ -69,6 +72,20 @@ internal sealed class OnSphere : SensorAssembly
         "The head is a set of concentric spheres. A real head departs from it by some 5.5 mm (standard deviation of the inner skull above the base, sphere fitted to one head in MNI space); it is worst at the low brainstem, the cerebellum and the medial temporal lobe.",
         "In spheres a radial source gives no magnetic field outside at all. Real heads leak: figures at 0.06 of the strongest direction stand beside silent directions.",
     ];
+
+    /// <inheritdoc/>
+    /// <remarks>The same spheres at both ends of the published range of skull conductivity; none where no layer is named skull.</remarks>
+    protected override IReadOnlyList<ILeadfieldSource> OtherHeads() => !_sphere.Layers.Any(IsSkull) ? [] :
+        [.. SkullRatios.Select(ratio => new SphereLeadfield(new LayeredSphere(_sphere.Name, _sphere.Centre, [.. _sphere.Layers.Select(l => IsSkull(l) ? WithRatio(l, ratio) : l)]), Electrodes, Channels))];
+
+    private static bool IsSkull(SphereLayer layer) => layer.Tissue.Contains("skull", StringComparison.OrdinalIgnoreCase);
+
+    // Its anisotropy is kept: the geometric mean of both conductivities gets the ratio.
+    private SphereLayer WithRatio(SphereLayer skull, double ratio)
+    {
+        double factor = _sphere.Layers[0].RadialConductivity / ratio / Math.Sqrt(skull.RadialConductivity * skull.TangentialConductivity);
+        return skull with { RadialConductivity = factor * skull.RadialConductivity, TangentialConductivity = factor * skull.TangentialConductivity };
+    }
 
     /// <inheritdoc/>
     protected override Scene Scene(IReadOnlyList<FilledRegion> regions) => new()

@@ -158,6 +158,8 @@ internal abstract class SensorAssembly
         Regions = regions,
         FieldCaptured = FieldCaptured,
         CentreSensitivity = CentreSensitivity,
+        OtherHeads = study.Responses.Any(r => r.EegMeasure == Names.RealisticFilter || r.MegMeasure == Names.RealisticFilter) ? OtherHeads() : [],
+        NearestPoint = Imported is { } imported ? imported.Nearest : null,
         Perturbable = Perturbable,
         Limits = Limits,
         ArrayPlace = ArrayPlace,
@@ -167,6 +169,9 @@ internal abstract class SensorAssembly
             Regions = [.. regions.Select(r => Place(r.Name, Picked(r.Positions)))],
         },
     };
+
+    /// <summary>Leadfields of other heads for which a spatial filter may have been built; empty where this head has no others.</summary>
+    protected virtual IReadOnlyList<ILeadfieldSource> OtherHeads() => [];
 
     /// <summary>The head with what is not known of it; null where it cannot be varied.</summary>
     protected virtual IPerturbableHead? Perturbable => null;

@@ -97,7 +97,7 @@ internal static class StudyPipeline
             Study = prepared.Study,
             Version = Version,
             Inputs = prepared.Inputs,
-            Assumptions = [.. prepared.Assumptions, .. FoundMoments(responses)],
+            Assumptions = [.. prepared.Assumptions, .. FoundMoments(responses), .. KeptPeaks(responses)],
             Warnings = [.. amplitudes.Concat(prepared.Warnings).Concat(responses.SelectMany(r => r.Regions).SelectMany(r => r.Warnings)).Distinct()],
             Responses = responses,
             SessionTrials = SessionPlan.Trials(prepared.Study.Protocol),
@@ -113,6 +113,13 @@ internal static class StudyPipeline
         from region in response.Regions
         select new Assumption($"{response.Response.Key}.moment_nAm ({region.Region})", Si.ToNanoAmpereMetres(region.Moment), "nAm", FromStudy: false,
             $"found from the stated amplitude at {response.Response.Amplitude!.Derivation} through the leadfield: the median over dipoles and directions reads it", Grade.Derived);
+
+    private static IEnumerable<Assumption> KeptPeaks(IReadOnlyList<ResponseResult> responses) =>
+        from response in responses
+        where response.Waveform is not null
+        select new Assumption($"{response.Response.Key} (peak that filter and jitter leave)", response.Waveform!.Kept, "", FromStudy: false,
+            FormattableString.Invariant($"{response.Waveform.Description}; latency jitter {response.Waveform.Jitter * 1000:0.######} ms")
+            + (response.Waveform.Energy is null ? "" : "; rectangular filter, the response's band"), Grade.Derived);
 
     /// <summary>Writes the leadfields of every region into a folder that exists.</summary>
     public static void WriteLeadfield(PreparedStudy prepared, string folder, RunSettings settings) => LeadfieldWriter.Write(prepared, folder, settings);

@@ -39,6 +39,7 @@ internal sealed class StudyPlan
         if (purpose == Purpose.Assess)
         {
             _warnings.AddRange(MomentCheck.Judge(reading, _setup));
+            _setup = _setup with { Waveforms = WaveformAssembly.Build(reading, _inputs, _warnings) };
             _noise = NoiseAssembly.Build(reading, _sensors, _inputs, _warnings);
         }
     }
@@ -61,7 +62,7 @@ internal sealed class StudyPlan
         {
             _sensors.Compute(_regions.Filled, settings);
             noise ??= _purpose == Purpose.Assess ? NoiseAssembly.Build(_reading, _sensors, _inputs, _warnings) : null;
-            setup = _sensors.Setup(_reading.Study, _regions.Filled);
+            setup = _sensors.Setup(_reading.Study, _regions.Filled) with { Waveforms = _setup.Waveforms };
         }
 
         return new PreparedStudy

@@ -37,6 +37,14 @@ public sealed partial class BlockSignals
         return table is null ? 0 : table[(derivation >= 0 ? derivation : eegIndex) * _space.MegSd.Length + megIndex];
     }
 
+    /// <summary>Weights u and w of the pair's form (u x)^2 + (w (y - r x))^2.</summary>
+    public (double U, double W) PairWeights(int derivation, int eegIndex, int megIndex)
+    {
+        (double U, double W)[]? table = derivation >= 0 ? _space.DerivationPairs : _space.ChannelPairs;
+        double rho = Correlation(derivation, eegIndex, megIndex);
+        return table is null ? (1, 1 / Math.Sqrt(1 - rho * rho)) : table[(derivation >= 0 ? derivation : eegIndex) * _space.MegSd.Length + megIndex];
+    }
+
     /// <summary>Value of a row, in units of its noise, for one lane of the current direction.</summary>
     /// <param name="modality">EEG or MEG.</param>
     /// <param name="derivation">Index of the derivation, or -1 for a channel.</param>
@@ -65,7 +73,14 @@ public sealed partial class BlockSignals
             double x = Reading(Modality.Eeg, derivation, (int)eegIndex[lane], lane);
             double y = double.IsNaN(_audible[lane]) ? Reading(Modality.Meg, -1, k, lane) : 0;   // all bits set reads as NaN
             double rho = Correlation(derivation, (int)eegIndex[lane], k);
-            power[lane] = y == 0 ? x * x : (x * x + y * y - 2 * rho * x * y) / (1 - rho * rho);
+            if (y == 0 || !_space.IsSpectral)
+            {
+                power[lane] = y == 0 ? x * x : (x * x + y * y - 2 * rho * x * y) / (1 - rho * rho);
+                continue;
+            }
+
+            (double u, double w) = PairWeights(derivation, (int)eegIndex[lane], k);
+            power[lane] = u * u * x * x + w * w * (y - rho * x) * (y - rho * x);
         }
 
         return Vector512.Create<double>(power);
@@ -99,17 +114,17 @@ public sealed partial class BlockSignals
             Vector512<double> ex = rows[3 * i], ey = rows[3 * i + 1], ez = rows[3 * i + 2], ee = ex * ex + ey * ey + ez * ez;
             for (int k = 0; k < _space.MegSd.Length; k++)
             {
-                double rho = Correlation(derivation, i, k);
-                Vector512<double> r = Vector512.Create(rho), w = Vector512.Create(1 / Math.Sqrt(1 - rho * rho));
+                (double own, double weight) = PairWeights(derivation, i, k);
+                Vector512<double> r = Vector512.Create(Correlation(derivation, i, k)), w = Vector512.Create(weight), u = Vector512.Create(own);
                 Vector512<double> x = w * (meg[3 * k] - r * ex), y = w * (meg[3 * k + 1] - r * ey), z = w * (meg[3 * k + 2] - r * ez);
-                Vector512<double> mm = x * x + y * y + z * z;
-                if (Vector512.LessThanAll(ee + mm, best))
+                Vector512<double> mm = x * x + y * y + z * z, one = u * u * ee;
+                if (Vector512.LessThanAll(one + mm, best))
                 {
                     continue;                                   // the largest eigenvalue never exceeds the trace
                 }
 
-                Vector512<double> em = ex * x + ey * y + ez * z, difference = ee - mm;
-                best = Vector512.Max(best, half * (ee + mm + Vector512.Sqrt(difference * difference + four * em * em)));
+                Vector512<double> em = u * (ex * x + ey * y + ez * z), difference = one - mm;
+                best = Vector512.Max(best, half * (one + mm + Vector512.Sqrt(difference * difference + four * em * em)));
             }
         }
 

@@ -36,7 +36,7 @@ public sealed partial class BlockSignals
     private readonly SignalSpace _space;
     private readonly IHead _head;
     private readonly bool _megReported;
-    private readonly double[] _reference, _eegScaled, _eegAmplitude, _derivations, _eegWhite, _megScaled, _megWhite, _megAmplitude, _joint, _jointWhite;
+    private readonly double[] _reference, _eegScaled, _eegAmplitude, _derivations, _eegWhite, _megScaled, _megWhite, _megAmplitude, _joint, _jointWhite, _megSplit;
     private readonly int[] _peakMeg;
     private readonly bool _eegAlike, _megAlike;
     private readonly int _eegWhiteSlot = 2, _megWhiteSlot = 3;
@@ -89,6 +89,7 @@ public sealed partial class BlockSignals
             _megWhite = new double[(space.MegWhitener?.Rank ?? 0) * width];
         }
 
+        _megSplit = space.IsSpectral ? new double[meg * width] : _megScaled;
         _joint = new double[space.JointWhitener is null ? 0 : (electrodes + meg) * width];
         _jointWhite = new double[(space.JointWhitener?.Rank ?? 0) * width];
 
@@ -135,6 +136,11 @@ public sealed partial class BlockSignals
         if (_space.MegWhitener is { } megWhitener)
         {
             Scale(block.Meg, null, _space.MegSd, _megScaled);
+            if (_space.IsSpectral)
+            {
+                Scale(block.Meg, null, _space.SplitSd, _megSplit);
+            }
+
             if (_megReported)
             {
                 if (!_megAlike)
@@ -156,7 +162,7 @@ public sealed partial class BlockSignals
             jointWhitener.Apply(_joint, _jointWhite);
         }
 
-        DirectionSplit.Compute(_megScaled, _space.MegSd.Length, block, _head, Split);
+        DirectionSplit.Compute(_megSplit, _space.MegSd.Length, block, _head, Split);
     }
 
     /// <summary>v1, v2 or v3 (k = 0, 1, 2) of each dipole.</summary>
@@ -193,7 +199,8 @@ public sealed partial class BlockSignals
             double tolerance = Math.Max(_space.MegSd.Length, 3) * Math.BitIncrement(1.0) - Math.Max(_space.MegSd.Length, 3);
             Vector512<double> limit = s1 * Vector512.Create(tolerance);
             Vector512<double> power = Lanes.PowerAndLargest(_megScaled, _space.MegSd.Length, direction, out Vector512<double> largest, out Vector512<double> index);
-            _audible = Vector512.GreaterThan(power, limit * limit);
+            Vector512<double> heard = _space.IsSpectral ? Lanes.PowerAndLargest(_megSplit, _space.MegSd.Length, direction, out _, out _) : power;
+            _audible = Vector512.GreaterThan(heard, limit * limit);
             Hold(1, power & _audible, largest & _audible, index);
         }
     }

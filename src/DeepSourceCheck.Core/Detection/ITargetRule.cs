@@ -32,6 +32,9 @@ public interface ITargetRule
     /// <summary>Number of trials for an effective power, not rounded where the rule has a closed form; infinite at 0.</summary>
     double Trials(double effectivePower);
 
+    /// <summary>The same where noise varies from trial to trial and the trials are weighted for it, so that the noise power falls by a gain of at least 1, without unit.</summary>
+    double WeightedTrials(double effectivePower, double gain) => Trials(gain * effectivePower);
+
     /// <summary>Probability that so many trials reach the target at a power SNR of one trial; null for rules that know none.</summary>
     /// <param name="power">Power SNR of one trial.</param>
     /// <param name="artefact">Artefact power over noise power of the same channel; 0 for none.</param>
@@ -41,7 +44,7 @@ public interface ITargetRule
     /// <summary>Factor on the moment at which <paramref name="sessionTrials"/> trials reach the target; infinite for a silent direction, NaN where there is none.</summary>
     double SmallestScale(double power, double artefact, long sessionTrials);
 
-    /// <summary>The lines that lead from the power SNR `P` to the trials `N`, for `why`; `N` is the last.</summary>
+    /// <summary>The lines that lead from the power SNR `P` to the trials `N`, for `why`; `N` is among them.</summary>
     /// <param name="power">Power SNR of one trial.</param>
     /// <param name="artefact">Artefact power over noise power; 0 for none.</param>
     /// <param name="inverseVariance">1/s^2 of the channel that was read [1/V^2].</param>

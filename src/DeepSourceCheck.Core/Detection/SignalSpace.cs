@@ -14,6 +14,7 @@ public sealed class SignalSpace
     private const double ZeroVariance = 1e-24;
 
     private readonly double _eegKept = 1, _megKept = 1;
+    private double[]? _splitSd;
 
     /// <param name="noise">Noise of one trial in the response's band.</param>
     /// <param name="reference">Referencing of the electrodes; null without EEG.</param>
@@ -106,19 +107,19 @@ public sealed class SignalSpace
     public IReadOnlyList<string> EegNames { get; } = [];
 
     /// <summary>Noise standard deviation of <see cref="EegChannels"/> after referencing [V].</summary>
-    public double[] EegSd { get; } = [];
+    public double[] EegSd { get; private set; } = [];
 
     /// <summary>Noise standard deviation of each derivation [V].</summary>
-    public double[] DerivationSd { get; } = [];
+    public double[] DerivationSd { get; private set; } = [];
 
     /// <summary>Whitener of all referenced electrodes; null without EEG.</summary>
-    public Whitener? EegWhitener { get; }
+    public Whitener? EegWhitener { get; private set; }
 
     /// <summary>Factor on the EEG filter's power for a covariance from finitely many samples; 1 for an exact one.</summary>
     public double EegCorrection { get; } = 1;
 
     /// <summary>Noise standard deviation of each MEG channel [T or T/m].</summary>
-    public double[] MegSd { get; } = [];
+    public double[] MegSd { get; private set; } = [];
 
     /// <summary>Names of the MEG channels.</summary>
     public IReadOnlyList<string> MegNames { get; }
@@ -127,19 +128,19 @@ public sealed class SignalSpace
     public IReadOnlyList<CoilKind> MegKinds { get; }
 
     /// <summary>Whitener of the MEG channels; null without MEG.</summary>
-    public Whitener? MegWhitener { get; }
+    public Whitener? MegWhitener { get; private set; }
 
     /// <summary>Factor on the MEG filter's power for a covariance from finitely many samples.</summary>
     public double MegCorrection { get; } = 1;
 
     /// <summary>Whitener of electrodes and MEG channels together; null where their noise is independent.</summary>
-    public Whitener? JointWhitener { get; }
+    public Whitener? JointWhitener { get; private set; }
 
     /// <summary>Correlation of noise between <see cref="EegChannels"/> and MEG channels, row by row; null where independent.</summary>
-    public double[]? ChannelCorrelation { get; }
+    public double[]? ChannelCorrelation { get; private set; }
 
     /// <summary>Correlation of noise between derivations and MEG channels, row by row; null where independent.</summary>
-    public double[]? DerivationCorrelation { get; }
+    public double[]? DerivationCorrelation { get; private set; }
 
     /// <summary>Number of independent rows of a modality: the rank of its covariance.</summary>
     public int Rank(Modality modality) => modality switch
@@ -156,6 +157,40 @@ public sealed class SignalSpace
         Modality.Meg => _megKept,
         _ => Math.Max(_eegKept, _megKept),
     };
+
+    /// <summary>Standard deviations [T or T/m] by which MEG rows are scaled before directions are split; those of <see cref="MegSd"/> but in a space that stands on a spectrum: what is read must not turn the directions.</summary>
+    public double[] SplitSd => _splitSd ?? MegSd;
+
+    /// <summary>True where signals are measured against the noise as a filter in time sees it that is matched to a known waveform.</summary>
+    public bool IsSpectral => _splitSd is not null;
+
+    /// <summary>
+    /// Weights of the pair of an EEG channel (or derivation) and a MEG channel: of its quadratic form (u x)^2 + (w (y - r x))^2 in readings x, y over their noise, r the correlation
+    /// table's entry. Row by row as the correlations; null where u = 1 and w = 1/sqrt(1 - r^2).
+    /// </summary>
+    public (double U, double W)[]? ChannelPairs { get; private set; }
+
+    /// <summary>The same for derivations.</summary>
+    public (double U, double W)[]? DerivationPairs { get; private set; }
+
+    /// <summary>The same channels against other noise.</summary>
+    /// <param name="seen">The noise.</param>
+    internal SignalSpace Against(SpectralNoise seen)
+    {
+        var copy = (SignalSpace)MemberwiseClone();
+        copy._splitSd = MegSd;
+        copy.EegSd = seen.EegSd;
+        copy.DerivationSd = seen.DerivationSd;
+        copy.MegSd = seen.MegSd;
+        copy.EegWhitener = seen.EegWhitener;
+        copy.MegWhitener = seen.MegWhitener;
+        copy.JointWhitener = seen.JointWhitener;
+        copy.ChannelCorrelation = seen.ChannelPairs?.Correlation;
+        copy.ChannelPairs = seen.ChannelPairs?.Weights;
+        copy.DerivationCorrelation = seen.DerivationPairs?.Correlation;
+        copy.DerivationPairs = seen.DerivationPairs?.Weights;
+        return copy;
+    }
 
     /// <summary>
     /// What remains of the filter's power [share, without unit] when the covariance came from nu independent samples of p channels: the inverse is too large by nu/(nu-p-1), and a filter made from it keeps

@@ -9,7 +9,15 @@ public static class BandCovariance
     /// <param name="megRows">Number of MEG channels.</param>
     /// <param name="low">Lower edge [Hz].</param>
     /// <param name="high">Upper edge [Hz].</param>
-    public static NoiseCovariance Integrate(IReadOnlyList<INoiseTerm> terms, int eegRows, int megRows, double low, double high)
+    public static NoiseCovariance Integrate(IReadOnlyList<INoiseTerm> terms, int eegRows, int megRows, double low, double high) =>
+        Integrate(terms, eegRows, megRows, term => BandIntegral.Nodes(low, high, term.Breakpoints));
+
+    /// <summary>Covariance as a weighted sum over frequencies.</summary>
+    /// <param name="terms">Independent causes of noise.</param>
+    /// <param name="eegRows">Number of electrodes.</param>
+    /// <param name="megRows">Number of MEG channels.</param>
+    /// <param name="nodes">Frequencies and weights [Hz] of each term.</param>
+    public static NoiseCovariance Integrate(IReadOnlyList<INoiseTerm> terms, int eegRows, int megRows, Func<INoiseTerm, IReadOnlyList<BandNode>> nodes)
     {
         var eeg = new double[eegRows * eegRows];
         var meg = new double[megRows * megRows];
@@ -17,7 +25,7 @@ public static class BandCovariance
         foreach (INoiseTerm term in terms)
         {
             double e = 0, m = 0, c = 0;
-            foreach ((double f, double weight) in BandIntegral.Nodes(low, high, term.Breakpoints))
+            foreach ((double f, double weight) in nodes(term))
             {
                 NoisePower power = term.At(f);
                 e += weight * power.Eeg;

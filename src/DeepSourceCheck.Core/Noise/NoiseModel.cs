@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Noise;
 
@@ -38,9 +39,54 @@ public sealed class NoiseModel
     public double? MegSamples { get; init; }
 
     /// <summary>Covariance of one trial in a band [Hz].</summary>
-    public NoiseCovariance InBand(double low, double high)
+    public NoiseCovariance InBand(double low, double high) => Weighted(term => BandIntegral.Nodes(low, high, term.Breakpoints));
+
+    /// <summary>Covariance of one trial of a response: over its band, or in the bin at the frequency of a steady-state response.</summary>
+    /// <param name="response">The response.</param>
+    public NoiseCovariance Of(Response response) => Weighted(term => Nodes(response, term));
+
+    /// <summary>Covariance of one term at unit power, without what is stated per trial.</summary>
+    /// <param name="term">One of <see cref="Terms"/>.</param>
+    internal NoiseCovariance AtUnitPower(INoiseTerm term)
     {
-        NoiseCovariance spectral = BandCovariance.Integrate(Terms, EegRows, MegRows, low, high);
+        NoiseCovariance unit = BandCovariance.Integrate([new UnitPower(term)], EegRows, MegRows, _ => [new BandNode(1, 1)]);
+        return new NoiseCovariance
+        {
+            EegRows = EegRows,
+            MegRows = MegRows,
+            Eeg = EegPerTrial is null ? unit.Eeg : new double[unit.Eeg.Length],
+            Meg = MegPerTrial is not null ? new double[unit.Meg.Length] : MegOperator is { } p ? p.ApplyToCovariance(unit.Meg) : unit.Meg,
+            Cross = EegPerTrial is null && MegPerTrial is null ? Projected(unit.Cross) : null,
+        };
+    }
+
+    private sealed record UnitPower(INoiseTerm Term) : INoiseTerm
+    {
+        public string Name => Term.Name;
+
+        public NoisePattern? Eeg => Term.Eeg;
+
+        public NoisePattern? Meg => Term.Meg;
+
+        public IReadOnlyList<double> Breakpoints => [];
+
+        public NoisePower At(double frequency) => new(1, 1, 1);
+    }
+
+    /// <summary>Variance that each cause adds to one reading in one trial of a response; see the other form.</summary>
+    /// <param name="eeg">Weights over the electrodes, or null for a MEG channel.</param>
+    /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
+    /// <param name="response">The response.</param>
+    public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, Response response) =>
+        Contributions(eeg, megChannel, term => Nodes(response, term));
+
+    // A trial of T seconds resolves bins of 1/T: one at the frequency, with density / T.
+    private static IReadOnlyList<BandNode> Nodes(Response response, INoiseTerm term) => response.Steady is { } steady
+        ? [new BandNode(steady.Frequency, 1 / steady.Seconds)] : BandIntegral.Nodes(response.Band.Low, response.Band.High, term.Breakpoints);
+
+    private NoiseCovariance Weighted(Func<INoiseTerm, IReadOnlyList<BandNode>> nodes)
+    {
+        NoiseCovariance spectral = BandCovariance.Integrate(Terms, EegRows, MegRows, nodes);
         return new NoiseCovariance
         {
             EegRows = EegRows,
@@ -72,7 +118,10 @@ public sealed class NoiseModel
     /// <param name="low">Lower edge [Hz].</param>
     /// <param name="high">Upper edge [Hz].</param>
     /// <returns>(cause, variance [V^2, T^2 or (T/m)^2]); a single `stated` one where a per-trial covariance replaces the terms.</returns>
-    public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, double low, double high)
+    public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, double low, double high) =>
+        Contributions(eeg, megChannel, term => BandIntegral.Nodes(low, high, term.Breakpoints));
+
+    private IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, Func<INoiseTerm, IReadOnlyList<BandNode>> nodes)
     {
         double[] weights = eeg ?? MegWeights(megChannel);
         if ((eeg is null ? MegPerTrial : EegPerTrial) is { } stated)
@@ -81,15 +130,15 @@ public sealed class NoiseModel
         }
 
         return [.. Present(eeg is null, weights).Select(t =>
-            (t.Term.Name, t.Variance * BandIntegral.Of(f => eeg is null ? t.Term.At(f).Meg : t.Term.At(f).Eeg, low, high, t.Term.Breakpoints)))];
+            (t.Term.Name, t.Variance * nodes(t.Term).Sum(n => n.Weight * (eeg is null ? t.Term.At(n.Frequency).Meg : t.Term.At(n.Frequency).Eeg))))];
     }
 
     /// <summary>Power density that each cause adds to one reading at single frequencies.</summary>
-    /// <param name="eeg">As for <see cref="Contributions"/>.</param>
-    /// <param name="megChannel">As for <see cref="Contributions"/>.</param>
+    /// <param name="eeg">As for <see cref="Contributions(double[], int, double, double)"/>.</param>
+    /// <param name="megChannel">As for <see cref="Contributions(double[], int, double, double)"/>.</param>
     /// <param name="frequencies">Frequencies [Hz].</param>
     /// <returns>
-    /// (cause, power densities [V^2/Hz, T^2/Hz or (T/m)^2/Hz]), in the order of <see cref="Contributions"/>; a remainder may be negative where tables cross.
+    /// (cause, power densities [V^2/Hz, T^2/Hz or (T/m)^2/Hz]), in the order of <see cref="Contributions(double[], int, double, double)"/>; a remainder may be negative where tables cross.
     /// Empty where a per-trial covariance replaces the terms: its spectrum is not known.
     /// </returns>
     public IReadOnlyList<(string Cause, double[] Power)> Spectra(double[]? eeg, int megChannel, IReadOnlyList<double> frequencies)
@@ -146,6 +195,37 @@ public sealed class NoiseModel
         }
 
         return result;
+    }
+
+    /// <summary>Power density [V^2/Hz, T^2/Hz or (T/m)^2/Hz] of one reading; null where it is stated per trial, without a spectrum.</summary>
+    /// <param name="eeg">Weights over the electrodes, or null for a MEG channel.</param>
+    /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
+    public Func<double, double>? Density(double[]? eeg, int megChannel)
+    {
+        if ((eeg is null ? MegPerTrial : EegPerTrial) is not null)
+        {
+            return null;
+        }
+
+        double[] weights = eeg ?? new double[MegRows];
+        if (eeg is null)
+        {
+            weights[megChannel] = 1;
+        }
+
+        (INoiseTerm Term, double Variance)[] parts =
+            [.. Terms.Where(t => (eeg is null ? t.Meg : t.Eeg) is not null).Select(t => (t, UnitVariance((eeg is null ? t.Meg : t.Eeg)!, weights)))];
+        return f =>
+        {
+            double sum = 0;
+            foreach ((INoiseTerm term, double variance) in parts)
+            {
+                NoisePower power = term.At(f);
+                sum += variance * (eeg is null ? power.Meg : power.Eeg);
+            }
+
+            return sum;
+        };
     }
 
     /// <summary>w' (D + F F') w, in the unit of the pattern.</summary>

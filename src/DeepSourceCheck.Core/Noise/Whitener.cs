@@ -35,6 +35,9 @@ public sealed class Whitener
     /// <summary>Number of whitened rows: the rank of the covariance.</summary>
     public int Rank => _channels.Length;
 
+    /// <summary>The channels that are whitened, in the order of the factor.</summary>
+    internal IReadOnlyList<int> Channels => _channels;
+
     /// <summary>True where each of <paramref name="n"/> channels is only divided by its standard deviation.</summary>
     internal bool OnlyScales(int n) => _panels is null && Rank == n;
 

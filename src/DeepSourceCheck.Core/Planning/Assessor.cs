@@ -2,8 +2,8 @@ using System.Buffers;
 using System.Globalization;
 
 using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Leadfields;
-using DeepSourceCheck.Core.Noise;
 using DeepSourceCheck.Core.Planning.Unknowns;
 using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
@@ -38,39 +38,39 @@ public static class Assessor
         foreach (Response response in setup.Study.Responses)
         {
             progress?.Invoke($"noise of {response.Name}", (double)done / total);
-            NoiseCovariance noise = setup.Noise!.InBand(response.Band.Low, response.Band.High);
-            var space = new SignalSpace(noise, setup.Reference, setup.Derivations, setup.MegNames, setup.MegKinds);
-            EvaluationPlan plan = Plan(setup, response, space);
+            var plans = new PlanSet(setup, response);
+            EvaluationPlan plan = plans.Peak(response);
             if (!begun)
             {
-                sink?.Begin(AllColumns(setup, space));
+                sink?.Begin(AllColumns(setup, plans.Space));
                 begun = true;
             }
 
-            CompetitorReport? competitors = response.Competitors.Count == 0 ? null : new CompetitorReport(setup, response, noise, space, cancellation);
+            CompetitorReport? competitors = response.Competitors.Count == 0 ? null : new CompetitorReport(setup, response, plans.Space, cancellation);
             var regions = new List<RegionResult>();
             foreach ((FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts) in Sources(setup, response, cancellation))
             {
                 long before = done;
                 StudySetup own = source is SummedSource ? setup with { Head = new SummedHead(setup.Head) } : setup;
                 EvaluationPlan asked = response.Amplitude is null ? plan
-                    : Plan(setup, response with { Moment = MomentFromAmplitude.Find(plan, own.Head, source, region, cancellation) }, space);
-                RegionTally tally = new RegionRun(asked, own.Head, source)
-                    .Run(region, Adapt(sink, asked, setup, space), n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
+                    : plans.Peak(response with { Moment = MomentFromAmplitude.Find(plan, own.Head, source, region, cancellation) });
+                List<(EvaluationPlan Plan, RegionTally Tally)> read = Read(plans, asked, own.Head, source, region, Adapt(sink, asked, setup, plans.Space),
+                    n => progress?.Invoke($"{response.Name}: {region.Name}", (double)(before + n) / total), cancellation);
                 done += region.Positions.Length;
                 RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
                     : new RemovalReport(own, asked).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, Activation.Weights(response), cancellation) : setup.Removal.Source, cancellation);
-                RegionResult result = Result(own, asked, region, source, parts, tally, loss, cancellation);
+                RegionResult result = Result(own, read, region, source, parts, loss, cancellation);
                 result = result with
                 {
-                    Competitors = competitors?.Of(asked, own, region, source, result.Results, cancellation),
-                    Location = new LocationReport(own, asked).Of(region, source, cancellation),
-                    Electrodes = response.ChooseSensors ? new ElectrodeReport(own, asked, noise).Of(region, source, cancellation) : null,
+                    Competitors = competitors?.Of(read[0].Plan, own, region, source, result.Results, cancellation),
+                    Location = new LocationReport(own, read[0].Plan).Of(region, source, cancellation),
+                    Electrodes = response.ChooseSensors ? new ElectrodeReport(own, read[0].Plan, setup.Noise!.Of(response)).Of(region, source, cancellation) : null,
                 };
-                regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, asked, own.Head, source, region, parts).Run(cancellation)));
+                EvaluationPlan? matched = read.Select(r => r.Plan).FirstOrDefault(p => p.IsSpectral && p.View.Errors is null);
+                regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, read[0].Plan, own.Head, source, region, parts, matched).Run(cancellation)));
             }
 
-            results.Add(new ResponseResult(response, regions) { Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
+            results.Add(new ResponseResult(response, regions) { SessionTrials = plan.SessionTrials, Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
         }
 
         return results;
@@ -83,7 +83,10 @@ public static class Assessor
     };
 
     private static EvaluationPlan Plan(StudySetup setup, Response response, SignalSpace space) =>
-        new(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0);
+        new(response, space, setup.Study.Targets, setup.Study.Protocol, setup.MegReported, setup.MegNames.Count > 0)
+        {
+            WeightingGain = setup.Study.Noise?.SpreadBetweenTrials is { } spread ? Math.Exp(4 * spread * spread) : null,
+        };
 
     private static IEnumerable<(FilledRegion Region, ILeadfieldSource Source, IReadOnlyList<FilledRegion> Parts)> Sources(
         StudySetup setup, Response response, CancellationToken cancellation)
@@ -120,17 +123,25 @@ public static class Assessor
     }
 
     private static RegionResult Result(
-        StudySetup setup, EvaluationPlan plan, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts, RegionTally tally,
+        StudySetup setup, List<(EvaluationPlan Plan, RegionTally Tally)> read, FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts,
         RemovalLoss? loss, CancellationToken cancellation)
     {
-        var signals = new BlockSignals(plan.Space, setup.Head, plan.MegReported);
-        var report = new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
-        IReadOnlyList<MeasureResult> rows = report.Rows();
+        (EvaluationPlan plan, RegionTally tally) = read[0];
+        RegionReport[] reports = [.. read.Select(r => Report(setup, r.Plan, r.Tally))];
+        IReadOnlyList<MeasureResult> rows = RowMerge.Of([.. read.Select((r, k) => (r.Plan, reports[k].Rows()))]);
+        RegionReport report = reports[0];
         SplitSummary? split = report.Split();
         SupportCounts?[] supports = [.. parts.Select(p => setup.Source.Supports(p.Positions, cancellation))];
         IReadOnlyList<CancellationResult> lost = source is SummedSource summed ? FieldCancellation.Of(plan, setup, summed, parts, cancellation) : [];
         double?[] captured = [.. parts.Select(setup.FieldCaptured)];
-        var verdicts = new VerdictWriter(setup, plan, region, source, tally).Write(ref rows, cancellation);
+        var written = new List<VerdictResult>();
+        foreach ((EvaluationPlan own, RegionTally found) in read)
+        {
+            written.AddRange(new VerdictWriter(setup, own, region, source, found).Write(ref rows, cancellation));
+        }
+
+        List<string> rules = [.. plan.Targets.Select(t => Names.Of(t))];
+        VerdictResult[] verdicts = [.. written.OrderBy(v => v.Modality).ThenBy(v => rules.IndexOf(v.Rule))];
         return new RegionResult
         {
             Region = region.Name,
@@ -152,6 +163,35 @@ public static class Assessor
                 .. Fallbacks(parts, supports), .. CentreWarnings(setup, plan, parts), .. Cancelled(plan.Response, parts, lost),
                 .. loss is null ? Array.Empty<string>() : [RemovalReport.Words(region.Name, loss)]],
         };
+    }
+
+    private static List<(EvaluationPlan Plan, RegionTally Tally)> Read(
+        PlanSet plans, EvaluationPlan peak, IHead head, ILeadfieldSource source, FilledRegion region, IDipoleSink? sink, Action<long>? progress, CancellationToken cancellation)
+    {
+        RegionTally tally = new RegionRun(peak, head, source).Run(region, sink, progress, cancellation);
+        double window = double.NaN;
+        if (peak.StandsOnWindow)
+        {
+            window = WindowRatio.Of(peak, tally);
+            peak = peak.WithWindow(window);
+            // Under an artefact percentiles run over figures that already hold the ratio.
+            tally = peak.HasArtefact(Modality.Both) ? new RegionRun(peak, head, source).Run(region, null, null, cancellation) : tally;
+        }
+
+        var read = new List<(EvaluationPlan Plan, RegionTally Tally)> { (peak, tally) };
+        foreach (EvaluationPlan other in plans.Others(peak))
+        {
+            EvaluationPlan own = peak.StandsOnWindow ? other.WithWindow(window) : other;
+            read.Add((own, new RegionRun(own, head, source).Run(region, null, null, cancellation)));
+        }
+
+        return read;
+    }
+
+    private static RegionReport Report(StudySetup setup, EvaluationPlan plan, RegionTally tally)
+    {
+        var signals = new BlockSignals(plan.Space, setup.Head, plan.MegReported);
+        return new RegionReport(plan, tally, signals.MegPeakIsPlanar, signals.PeakChannelName);
     }
 
     private static IEnumerable<string> Warnings(EvaluationPlan plan, IReadOnlyList<FilledRegion> parts, double?[] captured, SplitSummary? split)

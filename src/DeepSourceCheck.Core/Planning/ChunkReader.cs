@@ -31,6 +31,11 @@ internal sealed class ChunkReader
         _block = new LeadfieldBlock(source.EegRows, source.MegRows);
         _signals = new BlockSignals(plan.Space, head, plan.MegReported);
         _reader = new BlockReader(plan);
+        if (plan.View.Errors is { } errors)
+        {
+            _signals.Build(errors);
+        }
+
         Results = !keep ? null : new DipoleChunk
         {
             Response = plan.Response.Name,
@@ -52,12 +57,14 @@ internal sealed class ChunkReader
     /// <param name="region">The region.</param>
     /// <param name="start">Its first dipole.</param>
     /// <param name="count">Number of dipoles.</param>
-    public void Read(FilledRegion region, int start, int count)
+    /// <param name="draw">Draw of a filter's errors.</param>
+    public void Read(FilledRegion region, int start, int count, int draw)
     {
         for (int done = 0; done < count; done += LeadfieldBlock.Lanes)
         {
             int n = Math.Min(LeadfieldBlock.Lanes, count - done);
             Load(region, start + done, n);
+            _signals.Misbuilt?.Load(_block, draw);
             _reader.Read(_signals, n, (start + done) / LeadfieldBlock.Lanes, _tally, Results?.SnrDb, done);
             _tally.Profile?.Read(_signals, region.CorticalPlaces.AsSpan(start + done, n));
             Summarise(n);

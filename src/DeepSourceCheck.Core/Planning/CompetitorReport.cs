@@ -28,7 +28,6 @@ internal sealed class CompetitorReport
     // Of these angles are read, and as many of a competitor's give its patterns.
     private const int MostAngleBlocks = 16, MostAngles = 16, MostPatternDipoles = 512;
 
-    private readonly StudySetup _setup;
     private readonly IReadOnlyList<CompetitorChoice> _choices;
     private readonly CompetingNoise[] _sources;
     private readonly SignalSpace _plain, _all;
@@ -38,12 +37,11 @@ internal sealed class CompetitorReport
 
     /// <param name="setup">The study.</param>
     /// <param name="response">A response with competitors.</param>
-    /// <param name="noise">Noise of one trial in its band.</param>
     /// <param name="plain">Channels under that noise.</param>
     /// <param name="cancellation">Stops between blocks.</param>
-    public CompetitorReport(StudySetup setup, Response response, NoiseCovariance noise, SignalSpace plain, CancellationToken cancellation)
+    public CompetitorReport(StudySetup setup, Response response, SignalSpace plain, CancellationToken cancellation)
     {
-        _setup = setup;
+        NoiseCovariance noise = setup.Noise!.Of(response);
         _plain = plain;
         _choices = response.Competitors;
         _sources = [.. _choices.Select(c => new CompetingNoise(setup.Source, setup.Region(c.Region), cancellation))];
@@ -184,7 +182,7 @@ internal sealed class CompetitorReport
 
         public Reading(EvaluationPlan plan, StudySetup setup, SignalSpace[] spaces, int dipoles)
         {
-            _plans = [.. spaces.Select((s, k) => k == 0 ? plan : new EvaluationPlan(plan.Response, s, plan.Targets, plan.Protocol, plan.MegReported, setup.MegNames.Count > 0))];
+            _plans = [.. spaces.Select((s, k) => k == 0 ? plan : plan.Against(s))];
             _signals = [.. spaces.Select(s => new BlockSignals(s, setup.Head, plan.MegReported))];
             _reader = new BlockReader(plan);
             IMeasure[] verdicts = [.. VerdictWriter.Measures(plan)];
@@ -271,9 +269,13 @@ internal sealed class CompetitorReport
             PeakAmplitude? rms = peak is null || measure is MatchedFilterMeasure or PairMeasure ? null : Rms(measure, peak, without, with);
             return new CompetitorReading(
                 measure.Modality, measure.Name, VerdictWriter.Measures(_plans[0]).Contains(measure), rms, _left[1][at].Percentiles(RegionReport.Decibels), _power[at].Percentiles(RegionReport.Decibels),
-                [.. _plans[1].RulesOf(noisier).Select((rule, r) => new CompetitorCount(rule.Name, Count(_plans[0].RulesOf(measure)[r], _without[at][r], 0.5),
-                    new(Count(rule, _with[at][r], 0.05), Count(rule, _with[at][r], 0.25), Count(rule, _with[at][r], 0.5), Count(rule, _with[at][r], 0.75), Count(rule, _with[at][r], 0.95)),
-                    Chain(noisier, rule, at)))]);
+                [.. Enumerable.Range(0, _plans[1].Targets.Count).Where(_plans[1].Counts).Select(r =>
+                {
+                    // Where a waveform is known, detection is counted by a filter in time, of which competitors state nothing: no count then.
+                    ITargetRule rule = _plans[1].RulesOf(noisier)[r];
+                    long? At(double share) => Count(rule, _with[at][r], share);
+                    return new CompetitorCount(rule.Name, Count(_plans[0].RulesOf(measure)[r], _without[at][r], 0.5), new(At(0.05), At(0.25), At(0.5), At(0.75), At(0.95)), Chain(noisier, rule, at));
+                })]);
         }
 
         private IReadOnlyList<DerivedNumber> Chain(IMeasure measure, ITargetRule rule, int at)

@@ -37,8 +37,24 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
             Input("uz", "", witness.Direction.Z, "", source);
         }
 
-        Add("c", $"noise of the convention, {(response.Measured == Measured.PeakToTrough ? "peak-to-trough: difference of two points" : "baseline-to-peak: one point")}",
-            Math.Sqrt(plan.NoiseFactor), "", response.Measured == Measured.PeakToTrough ? "sqrt(2)" : "1", "variance of a difference of independent values", Grade.Derived);
+        if (plan.IsSpectral)
+        {
+            Add("c", "noise of the convention: none, a filter in time reads the whole waveform", 1, "", "1", "known signal in noise", Grade.Derived);
+            Add("E", $"energy of the waveform of peak 1 after filter and jitter: {plan.View.Waveform!.Description}", plan.View.Waveform.Energy, "s", "", "2 integral |A(f)|^2 df over the response's band, " + Jitter(), Grade.Derived);
+        }
+        else
+        {
+            Add("c", $"noise of the convention, {(response.Measured == Measured.PeakToTrough ? "peak-to-trough: difference of two points" : "baseline-to-peak: one point")}",
+                Math.Sqrt(plan.NoiseFactor), "", response.Measured == Measured.PeakToTrough ? "sqrt(2)" : "1", "variance of a difference of independent values", Grade.Derived);
+        }
+
+        bool less = plan.View.Kept != 1 && !plan.IsSpectral;
+        if (less)
+        {
+            Add("kp", $"share of the peak that {(plan.View.Waveform is { } w ? $"filter and jitter leave: {w.Description}" : "the jitter leaves")}", plan.View.Kept, "", "",
+                (plan.View.Waveform is null ? "exp(-(2 pi f sigma)^2 / 2) at the response's frequency, " : "largest value of the waveform inside the response's band, ") + Jitter(), Grade.Derived);
+        }
+
         switch (measure)
         {
             case DerivationMeasure or BestChannelMeasure:
@@ -49,26 +65,54 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
                 Reading(Modality.Eeg, witness, measure, "e");
                 Reading(Modality.Meg, witness, measure, "m");
                 double rho = Correlation(witness, (PairMeasure)measure);
+                if (plan.Space.ChannelPairs is not null)
+                {
+                    var pair = (PairMeasure)measure;
+                    (double U, double W)[] table = pair.DerivationIndex >= 0 ? plan.Space.DerivationPairs! : plan.Space.ChannelPairs;
+                    (double u, double w) = witness.MegRow == Vec3.Zero ? (1, 1) : table[(pair.DerivationIndex >= 0 ? pair.DerivationIndex : witness.EegChannel) * plan.Space.MegSd.Length + witness.MegChannel];
+                    const string source = "integral |A(f)|^2 C(f)^-1 df of the two readings' noise";
+                    Add("k", "regression of the MEG reading on the EEG reading", rho, "", "", source, Grade.Derived);
+                    Add("pu", "weight of the EEG reading", u, "", "", source, Grade.Derived);
+                    Add("pw", "weight of what the MEG reading adds", w, "", "", source, Grade.Derived);
+                    Add("P", "d^2 of one trial, both readings together", witness.Power, "", "(pu Ae/se)^2 + (pw (Am/sm - k Ae/se))^2", "filter in time and over two channels", Grade.Derived);
+                    break;
+                }
+
                 Add("k", "correlation of the noise of the two readings", rho, "", "", "noise of the study: covariance over both standard deviations", Grade.Derived);
                 Add("P", "power SNR of one trial, both readings together", witness.Power, "",
                     "((Ae/se)^2 + (Am/sm)^2 - 2 k (Ae/se) (Am/sm)) / ((1 - k^2) c^2)", "matched filter of two channels", Grade.Derived);
                 break;
             default:
-                Add("q", measure is MatchedFilterMeasure ? "filter power at unit moment, b' C^-1 b" : "largest power over directions at unit moment",
-                    witness.Power * plan.NoiseFactor / (response.Moment * response.Moment) * 1e-18, "1/nAm^2", "", "matched filter; whitened leadfield of this dipole", Grade.Derived);
-                Add("P", "power SNR of one trial", witness.Power, "", "a^2 q / c^2", "definition", Grade.Derived);
+                if (measure is RealisticFilterMeasure)
+                {
+                    Errors(witness);
+                }
+
+                Add("q", measure is RealisticFilterMeasure ? "power of that filter at unit moment, (w'b)^2 / (w' C w)"
+                    : measure is MatchedFilterMeasure ? "filter power at unit moment, b' C^-1 b" : "largest power over directions at unit moment",
+                    witness.Power * plan.NoiseFactor / (plan.ReadMoment * plan.ReadMoment) * 1e-18, "1/nAm^2", "",
+                    plan.IsSpectral ? "4 integral |A(f)|^2 b' C(f)^-1 b df; whitened leadfield of this dipole" : "matched filter; whitened leadfield of this dipole", Grade.Derived);
+                Add("P", plan.IsSpectral ? "d^2 of one trial" : "power SNR of one trial", witness.Power, "", less ? "(a kp)^2 q / c^2" : "a^2 q / c^2", "definition", Grade.Derived);
                 break;
         }
 
         Add("SNR", "the same in decibels", RegionReport.Decibels(witness.Power), "dB", "10 log10(P)", "Goldenholz et al. 2009", Grade.Memory);
         _lines.AddRange(rule.Chain(witness.Power, witness.Artefact, witness.InverseVariance));
-        if (plan.Protocol is { } protocol && double.IsFinite(_lines[^1].Value))
+        double trials = _lines.Last(l => l.Symbol == "N").Value;
+        if (plan.Protocol is { } protocol && double.IsFinite(trials))
         {
-            double trials = _lines[^1].Value;
             Input("r", "stimuli per second", protocol.Rate, "1/s", "protocol.rate_per_s");
             Input("f", "share of trials that are rejected", protocol.RejectedFraction, "", "protocol.rejected_fraction");
             Add("M", "presented trials", trials / (1 - protocol.RejectedFraction), "", "N / (1 - f)", "definition", Grade.Derived);
             Add("T", "recording time", SessionPlan.Minutes(protocol, trials), "min", "N / (60 r (1 - f))", "definition", Grade.Derived);
+            if (protocol.Conditions * protocol.Replications > 1 || protocol.Breaks is not null || protocol.Preparation is not null)
+            {
+                Input("nc", "conditions", protocol.Conditions, "", "protocol.conditions");
+                Input("nr", "replications of each", protocol.Replications, "", "protocol.replications");
+                Input("tb", "breaks", (protocol.Breaks ?? 0) / 60, "min", "protocol.breaks_min");
+                Input("tp", "preparation", (protocol.Preparation ?? 0) / 60, "min", "protocol.preparation_min");
+                Add("H", "time in the chair", SessionPlan.ChairMinutes(protocol, trials), "min", "T nc nr + tb + tp", "definition", Grade.Derived);
+            }
         }
 
         return [.. _lines];
@@ -94,6 +138,25 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         else
         {
             Input("a", response.MomentRange is null ? "dipole moment" : "dipole moment, typical", moment, "nAm", "responses.moment_nAm");
+        }
+    }
+
+    private string Jitter() => string.Create(CultureInfo.InvariantCulture, $"latency jitter sigma = {plan.View.Jitter * 1000:0.######} ms");
+
+    private void Errors(MedianWitness witness)
+    {
+        FilterErrors errors = plan.View.Errors!;
+        Vec3 d = errors.Displacements[witness.Draw];
+        string draw = string.Create(CultureInfo.InvariantCulture, $"draw {witness.Draw + 1} of {FilterErrors.Draws} of the filter's errors");
+        Input("dx", "the filter was built for a place off by (where the head admits it)", Si.ToMm(d.X), "mm", "responses.place_error_mm, " + draw);
+        Input("dy", "", Si.ToMm(d.Y), "mm", draw);
+        Input("dz", "", Si.ToMm(d.Z), "mm", draw);
+        foreach ((Modality modality, double? samples) in new[] { (Modality.Eeg, errors.EegSamples), (Modality.Meg, errors.MegSamples) })
+        {
+            if (samples is { } nu && witness.Read.Modality != (modality == Modality.Eeg ? Modality.Meg : Modality.Eeg))
+            {
+                Input(modality == Modality.Eeg ? "ne" : "nm", $"independent samples behind its {Names.Of(modality)} covariance", nu, "", "covariance samples, or 2 x bandwidth x responses.baseline_s");
+            }
         }
     }
 
@@ -126,12 +189,22 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         Add("gz" + suffix, "along z", row.Z, perMoment, "", field, Grade.Derived);
         double g = Vec3.Dot(row, witness.Direction);
         Add("g" + suffix, $"leadfield at {channel} along the direction", g, perMoment, $"gx{suffix} ux + gy{suffix} uy + gz{suffix} uz", "projection", Grade.Derived);
-        Add("A" + suffix, $"amplitude at {channel}", Si.ToNanoAmpereMetres(plan.Response.Moment) * g, unit, $"a g{suffix}", "linearity", Grade.Derived);
+        Add("A" + suffix, $"amplitude at {channel}", Si.ToNanoAmpereMetres(plan.ReadMoment) * g, unit, $"a g{suffix}{(plan.View.Kept != 1 && !plan.IsSpectral ? " kp" : "")}", "linearity", Grade.Derived);
+        if (plan.IsSpectral)
+        {
+            double deviation = sd * perSi;
+            Add("S" + suffix, $"noise density at {channel} as the waveform weighs it", 2 * plan.View.Waveform!.Energy * deviation * deviation, unit + "^2/Hz", "",
+                "E over 2 integral |A(f)|^2 / S(f) df, S the noise of the study", Grade.Derived);
+            Add("s" + suffix, $"noise of one trial at {channel} against a waveform of peak 1", deviation, unit, $"sqrt(S{suffix} / (2 E))", "d^2 = 2 E A^2 / S", Grade.Derived);
+            return;
+        }
+
 
         double[]? weights = !eeg ? null : derivation >= 0 ? plan.Space.Derivations!.Weights(derivation) : plan.Space.Reference!.Weights(plan.Space.EegChannels[witness.EegChannel]);
         Band band = plan.Response.Band;
-        string range = string.Create(CultureInfo.InvariantCulture, $"{band.Low:0.###} to {band.High:0.###} Hz");
-        IReadOnlyList<(string Cause, double Variance)> causes = noise.Contributions(weights, witness.MegChannel, band.Low, band.High);
+        string range = plan.Response.Steady is { } steady ? string.Create(CultureInfo.InvariantCulture, $"bin of {1 / steady.Seconds:0.###} Hz at {steady.Frequency:0.###} Hz")
+            : string.Create(CultureInfo.InvariantCulture, $"{band.Low:0.###} to {band.High:0.###} Hz");
+        IReadOnlyList<(string Cause, double Variance)> causes = noise.Contributions(weights, witness.MegChannel, plan.Response);
         var symbols = new List<string>();
         foreach ((string cause, double variance) in causes)
         {

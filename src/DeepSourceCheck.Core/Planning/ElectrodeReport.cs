@@ -98,11 +98,16 @@ internal sealed class ElectrodeReport(StudySetup setup, EvaluationPlan plan, Noi
         return fields;
     }
 
-    private List<(string Rule, long? Trials)> Trials(string measure, int rows, double power) => [.. plan.Targets.Select(target =>
+    // Rules that say nothing of such a reading, or that stand on the noise of one channel, are left out.
+    private List<(string Rule, long? Trials)> Trials(string measure, int rows, double power)
     {
-        ITargetRule rule = RuleBinding.Of(target, new RuleReading(Modality.Eeg, measure, Math.Max(1, rows), NoiseFactor: plan.NoiseFactor));
-        return (rule.Name, rule.Absent is null && !rule.StandsOnNoise && rows > 0 && power > 0 ? TrialCount.Ceiling(rule.Trials(rule.EffectivePower(power, 0))) : null);
-    })];
+        RuleReading reading = new(Modality.Eeg, measure, Math.Max(1, rows), NoiseFactor: plan.NoiseFactor) { WindowPerPeak = plan.WindowPerPeak, SteadyState = plan.Response.Steady is not null };
+        return
+        [
+            .. Enumerable.Range(0, plan.Targets.Count).Where(plan.Counts).Select(r => RuleBinding.Of(plan.Targets[r], reading)).Where(rule => rule.Absent is null && !rule.StandsOnNoise)
+                .Select(rule => (rule.Name, rows > 0 && power > 0 ? TrialCount.Ceiling(rule.Trials(rule.EffectivePower(power, 0))) : null)),
+        ];
+    }
 
     // Nearest rank from the top, as counts are read everywhere.
     private static double Median(double[] powers)

@@ -8,7 +8,7 @@ namespace DeepSourceCheck.Core.Planning;
 /// <summary>What is read from every dipole of one response: measures, directions, rules.</summary>
 public sealed class EvaluationPlan
 {
-    private readonly Dictionary<IMeasure, IReadOnlyList<ITargetRule>> _rules;
+    private Dictionary<IMeasure, IReadOnlyList<ITargetRule>> _rules;
 
     /// <param name="response">The response.</param>
     /// <param name="space">Its channels.</param>
@@ -16,9 +16,11 @@ public sealed class EvaluationPlan
     /// <param name="protocol">Protocol, or null.</param>
     /// <param name="megReported">False where MEG rows serve the split alone.</param>
     /// <param name="splitPossible">False where there is no MEG leadfield.</param>
+    /// <param name="view">What of a known waveform is read, and whether by filters that were built for something else; null: the peak, by all other measures.</param>
     public EvaluationPlan(
-        Response response, SignalSpace space, IReadOnlyList<TargetChoice> targets, Protocol? protocol, bool megReported, bool splitPossible)
+        Response response, SignalSpace space, IReadOnlyList<TargetChoice> targets, Protocol? protocol, bool megReported, bool splitPossible, PlanView? view = null)
     {
+        View = view ?? new PlanView();
         Response = response;
         Space = space;
         Targets = targets;
@@ -27,7 +29,12 @@ public sealed class EvaluationPlan
         MegReported = megReported;
         bool eeg = space.Reference is not null;
         var measures = new List<IMeasure>();
-        if (eeg)
+        if (View.Errors is not null)
+        {
+            measures.AddRange([.. eeg ? new[] { new RealisticFilterMeasure(Modality.Eeg) } : [], .. megReported ? new[] { new RealisticFilterMeasure(Modality.Meg) } : [],
+                .. eeg && megReported ? new[] { new RealisticFilterMeasure(Modality.Both) } : []]);
+        }
+        else if (eeg)
         {
             measures.Add(new ChannelMeanMeasure(space, Modality.Eeg));
             measures.Add(new BestChannelMeasure(space, Modality.Eeg));
@@ -38,7 +45,7 @@ public sealed class EvaluationPlan
             }
         }
 
-        if (megReported)
+        if (megReported && View.Errors is null)
         {
             measures.Add(new ChannelMeanMeasure(space, Modality.Meg));
             measures.Add(new BestChannelMeasure(space, Modality.Meg));
@@ -49,33 +56,39 @@ public sealed class EvaluationPlan
         MegMeasure = megReported ? response.MegMeasure ?? Names.BestChannel : null;
         if (eeg && megReported)
         {
-            measures.Add(new MatchedFilterMeasure(Modality.Both));
-            bool readings = EegMeasure != Names.MatchedFilter && MegMeasure != Names.MatchedFilter;
-            if (readings)
+            string[] chosen = [EegMeasure!, MegMeasure!];
+            string? filter = chosen.Contains(Names.RealisticFilter) ? Names.RealisticFilter : chosen.Contains(Names.MatchedFilter) ? Names.MatchedFilter : null;
+            BothMeasure = filter ?? EegMeasure;
+            if (View.Errors is null)
+            {
+                measures.Add(new MatchedFilterMeasure(Modality.Both));
+            }
+
+            if (filter is null && View.Errors is null)
             {
                 measures.Add(new PairMeasure(space, space.Derivations?.Names.ToList().IndexOf(EegMeasure!) ?? -1));
             }
-
-            BothMeasure = readings ? EegMeasure : Names.MatchedFilter;
         }
 
         Measures = measures;
-        _rules = measures.ToDictionary(m => m, m => (IReadOnlyList<ITargetRule>)[.. targets.Select(t => RuleBinding.Of(t, RuleReading.Of(m, space, NoiseFactor)))]);
+        _rules = Bound(double.NaN);
         Directions =
         [
             .. splitPossible ? new[] { DirectionName.QuasiRadial, DirectionName.Tangential, DirectionName.StrongestTangential } : [],
             DirectionName.Isotropic, DirectionName.Best,
             .. response.Direction.Vector is null ? Array.Empty<DirectionName>() : [DirectionName.Given],
         ];
-        Gain = response.Moment * response.Moment / NoiseFactor;
+        Gain = ReadMoment * ReadMoment / NoiseFactor;
     }
 
     // One reading of another plan.
     private EvaluationPlan(EvaluationPlan plan, IMeasure measure, DirectionName direction)
     {
+        View = plan.View;
         Response = plan.Response;
         Space = plan.Space;
         Targets = [];
+        _rules = new() { [measure] = [] };
         MegReported = plan.MegReported;
         Measures = [measure];
         Directions = [direction];
@@ -124,14 +137,61 @@ public sealed class EvaluationPlan
     /// <summary>Measure of the joint verdict, or null without both.</summary>
     public string? BothMeasure { get; }
 
-    /// <summary>Ratio of the power of the noise of the convention to that of one sample: 2 for a peak-to-trough difference, else 1.</summary>
-    public double NoiseFactor => Response.Measured == Measured.PeakToTrough ? 2 : 1;
+    /// <summary>What of a known waveform is read, and by what.</summary>
+    public PlanView View { get; }
 
-    /// <summary>Squared moment over <see cref="NoiseFactor"/> [(A m)^2].</summary>
+    /// <summary>True where powers are d^2 of a filter that is matched in time to the waveform.</summary>
+    public bool IsSpectral => Space.IsSpectral;
+
+    /// <summary>Whether a target's counts are taken from this plan.</summary>
+    /// <param name="target">Index among <see cref="Targets"/>.</param>
+    public bool Counts(int target) => View.Waveform is null || (Targets[target] is DetectionChoice) == IsSpectral;
+
+    /// <summary>Times that every dipole is read: once, or under each draw of the filters' errors.</summary>
+    public int Passes => View.Errors is null ? 1 : FilterErrors.Draws;
+
+    /// <summary>Ratio of the power of the noise of the convention to that of one sample: 2 for a peak-to-trough difference, else 1. A filter in time reads no two points: 1.</summary>
+    public double NoiseFactor => Response.Measured == Measured.PeakToTrough && !IsSpectral ? 2 : 1;
+
+    /// <summary>Moment that is read [A m]: what filter and jitter leave of the peak; for a filter in time all of it, since they are in its spectrum.</summary>
+    public double ReadMoment => Response.Moment * (IsSpectral ? 1 : View.Kept);
+
+    /// <summary>Square of <see cref="ReadMoment"/> over <see cref="NoiseFactor"/> [(A m)^2].</summary>
     public double Gain { get; }
 
     /// <summary>The targets' rules on a measure, in the study's order.</summary>
     public IReadOnlyList<ITargetRule> RulesOf(IMeasure measure) => _rules[measure];
+
+    /// <summary>Whether a rule stands on the ratio of window rms to peak, which is known only when a region was read.</summary>
+    public bool StandsOnWindow => Targets.Any(t => t is VarianceRatioChoice);
+
+    /// <summary>Factor, without unit, by which weighting each trial by its own noise lowers the noise power; null where the study states no spread between trials.</summary>
+    /// <remarks>Plain averaging leaves mean(s^2)/N, weighted 1/sum(1/s^2): for a lognormal s the ratio is exp(var ln s^2) = exp(4 var ln s).</remarks>
+    public double? WeightingGain { get; init; }
+
+    /// <summary>The same plan, measures and all, with rules that know the ratio.</summary>
+    /// <param name="windowPerPeak">Rms over the window per peak amplitude; 0 where it is not to be had.</param>
+    public EvaluationPlan WithWindow(double windowPerPeak)
+    {
+        var plan = (EvaluationPlan)MemberwiseClone();
+        plan.WindowPerPeak = windowPerPeak;
+        plan._rules = Bound(windowPerPeak);
+        return plan;
+    }
+
+    /// <summary>Rms over the window per peak amplitude that the rules know, without unit; NaN where they do not.</summary>
+    public double WindowPerPeak { get; private set; } = double.NaN;
+
+    /// <summary>The same plan against other noise.</summary>
+    /// <param name="space">The same channels under that noise.</param>
+    public EvaluationPlan Against(SignalSpace space) =>
+        new EvaluationPlan(Response, space, Targets, Protocol, MegReported, Directions.Contains(DirectionName.QuasiRadial), View) { WeightingGain = WeightingGain }.WithWindow(WindowPerPeak);
+
+    private Dictionary<IMeasure, IReadOnlyList<ITargetRule>> Bound(double windowPerPeak) => Measures.ToDictionary(m => m, m =>
+    {
+        RuleReading reading = RuleReading.Of(m, Space, NoiseFactor) with { WindowPerPeak = windowPerPeak, SteadyState = Response.Steady is not null };
+        return (IReadOnlyList<ITargetRule>)[.. Targets.Select(t => RuleBinding.Of(t, reading))];
+    });
 
     /// <summary>Whether percentiles of a rule on a measure run over powers that the rule makes of each reading, not over the powers themselves.</summary>
     public bool CountsEffective(IMeasure measure, ITargetRule rule) => rule.Absent is null && (HasArtefact(measure.Modality) || rule.StandsOnNoise);

@@ -38,17 +38,22 @@ internal sealed class MedianSearch(
     public MedianWitness?[] Find(IReadOnlyList<Question> questions, CancellationToken cancellation)
     {
         Hunt[] hunts = [.. questions.Select(q => new Hunt(plan, tally.Cell(direction, q.Measure), q))];
-        int chunks = (region.Positions.Length + RegionRun.ChunkSize - 1) / RegionRun.ChunkSize;
+        int once = (region.Positions.Length + RegionRun.ChunkSize - 1) / RegionRun.ChunkSize, chunks = once * plan.Passes;
         int threads = RegionRun.Threads(chunks);
-        Parallel.For(0, threads, new ParallelOptions { MaxDegreeOfParallelism = threads, CancellationToken = cancellation }, _ => Search(hunts, chunks, cancellation));
+        Parallel.For(0, threads, new ParallelOptions { MaxDegreeOfParallelism = threads, CancellationToken = cancellation }, _ => Search(hunts, once, chunks, cancellation));
         return [.. hunts.Select(h => h.Found)];
     }
 
-    private void Search(Hunt[] hunts, int chunks, CancellationToken cancellation)
+    private void Search(Hunt[] hunts, int once, int chunks, CancellationToken cancellation)
     {
         var block = new LeadfieldBlock(source.EegRows, source.MegRows);
         var signals = new BlockSignals(plan.Space, head, plan.MegReported);
         var reader = new BlockReader(plan);
+        if (plan.View.Errors is { } errors)
+        {
+            signals.Build(errors);
+        }
+
         for (int chunk; (chunk = Interlocked.Increment(ref _claimed) - 1) < chunks;)
         {
             cancellation.ThrowIfCancellationRequested();
@@ -58,14 +63,15 @@ internal sealed class MedianSearch(
                 return;
             }
 
-            int end = Math.Min((chunk + 1) * RegionRun.ChunkSize, region.Positions.Length);
-            for (int from = chunk * RegionRun.ChunkSize; from < end && open.Count > 0; from += LeadfieldBlock.Lanes)
+            int first = chunk % once * RegionRun.ChunkSize, end = Math.Min(first + RegionRun.ChunkSize, region.Positions.Length);
+            for (int from = first; from < end && open.Count > 0; from += LeadfieldBlock.Lanes)
             {
                 int n = Math.Min(LeadfieldBlock.Lanes, end - from);
                 block.Load(region.Positions.AsSpan(from, n), region.SourceIndices.Length == 0 ? default : region.SourceIndices.AsSpan(from, n));
                 source.Fill(block);
                 signals.Load(block);
-                Match(open, chunk, from, n, signals, reader);
+                signals.Misbuilt?.Load(block, chunk / once);
+                Match(open, chunk, chunk / once, from, n, signals, reader);
             }
         }
     }
@@ -78,7 +84,7 @@ internal sealed class MedianSearch(
         }
     }
 
-    private void Match(List<Hunt> open, int chunk, int from, int count, BlockSignals signals, BlockReader reader)
+    private void Match(List<Hunt> open, int chunk, int draw, int from, int count, BlockSignals signals, BlockReader reader)
     {
         (DirectionMode mode, LaneDirection[] directions) = reader.DirectionsOf(direction, signals);
         int stride = tally.Strides[plan.Directions.ToList().IndexOf(direction)];
@@ -92,7 +98,7 @@ internal sealed class MedianSearch(
                 {
                     lock (_gate)
                     {
-                        open[h].Take(witness, chunk);
+                        open[h].Take(witness with { Draw = draw }, chunk);
                     }
 
                     open.RemoveAt(h);

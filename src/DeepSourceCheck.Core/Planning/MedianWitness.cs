@@ -21,6 +21,9 @@ namespace DeepSourceCheck.Core.Planning;
 internal sealed record MedianWitness(
     IMeasure Read, string Point, Vec3 Position, Vec3 Direction, double Power, double Artefact, double InverseVariance, int EegChannel, Vec3 EegRow, int MegChannel, Vec3 MegRow)
 {
+    /// <summary>Draw of a realistic filter's errors.</summary>
+    public int Draw { get; init; }
+
     /// <summary>Describes what was read.</summary>
     /// <param name="plan">What is read.</param>
     /// <param name="signals">The block, with the direction asked.</param>

@@ -58,7 +58,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
         string? reason = cell.Power.Count == 0 ? UndefinedReason
             : silent ? Silent(measure)
             : snr.P05 is null ? "some dipoles or directions are silent: percentiles that fall on them are null"
-            : targets.FirstOrDefault(t => t.Trials.P50 is null)?.Reason;
+            : targets.Where((_, r) => plan.RulesOf(measure)[r].Absent is null).FirstOrDefault(t => t.Trials.P50 is null)?.Reason;
         LeakResult? leak = null;
         if (cell.Power.Count > 0 && snr.P50 is null && measure.Modality == Modality.Meg && plan.Directions.Contains(DirectionName.StrongestTangential))
         {
@@ -76,10 +76,15 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
         }
 
         QuantileStore effective = cell.Counted(r);
-        long? Count(double share) => effective.NearestRankFromTop(share) is { } power && power > 0 ? TrialCount.Ceiling(rule.Trials(power * powerFactor)) : null;
-        var trials = new CountPercentiles(Count(0.05), Count(0.25), Count(0.50), Count(0.75), Count(0.95));
-        double? Minutes(long? count) => count is { } n && plan.Protocol is { } protocol ? SessionPlan.Minutes(protocol, n) : null;
-        Percentiles? minutes = plan.Protocol is null ? null : new(Minutes(trials.P05), Minutes(trials.P25), Minutes(trials.P50), Minutes(trials.P75), Minutes(trials.P95));
+        CountPercentiles Trials(Func<double, double> of)
+        {
+            long? Count(double share) => effective.NearestRankFromTop(share) is { } power && power > 0 ? TrialCount.Ceiling(of(power * powerFactor)) : null;
+            return new(Count(0.05), Count(0.25), Count(0.50), Count(0.75), Count(0.95));
+        }
+
+        CountPercentiles trials = Trials(rule.Trials);
+        CountPercentiles? weighted = plan.WeightingGain is { } gain ? Trials(power => rule.WeightedTrials(power, gain)) : null;
+        Percentiles? minutes = plan.Protocol is null ? null : Times(trials, n => SessionPlan.Minutes(plan.Protocol, n));
 
         double? smallest = null;
         if (rule.NoSmallest is null && plan.SessionTrials is > 0 and { } session)
@@ -99,7 +104,26 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
                 : plan.HasArtefact(measure.Modality) ? BuriedReason : BeyondReason;
         }
 
-        return new TargetResult(rule.Name, trials, minutes, smallest, smallest * peakPerMoment, reason);
+        return WithPlan(new TargetResult(rule.Name, trials, minutes, smallest, smallest * peakPerMoment, reason) { Weighted = weighted }, plan.Protocol);
+    }
+
+    /// <summary>A result whose presented trials and time in the chair follow from its trials.</summary>
+    public static TargetResult WithPlan(TargetResult target, Protocol? protocol) => protocol is null ? target : target with
+    {
+        Presented = Counts(target.Trials, n => SessionPlan.Presented(protocol, n)),
+        ChairMinutes = Times(target.Trials, n => SessionPlan.ChairMinutes(protocol, n)),
+    };
+
+    private static CountPercentiles Counts(CountPercentiles n, Func<long, long?> map)
+    {
+        long? Of(long? count) => count is { } c ? map(c) : null;
+        return new(Of(n.P05), Of(n.P25), Of(n.P50), Of(n.P75), Of(n.P95));
+    }
+
+    private static Percentiles Times(CountPercentiles n, Func<long, double> map)
+    {
+        double? Of(long? count) => count is { } c ? map(c) : null;
+        return new(Of(n.P05), Of(n.P25), Of(n.P50), Of(n.P75), Of(n.P95));
     }
 
     private static string Silent(IMeasure measure) => measure.Modality == Modality.Meg ? SilentMegReason : SilentReason;
@@ -120,7 +144,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
 
         if (measure is DerivationMeasure derivation)
         {
-            double sd = plan.Space.DerivationSd[derivation.Index] * Math.Sqrt(plan.NoiseFactor);
+            double sd = plan.Space.DerivationSd[derivation.Index] * Math.Sqrt(plan.NoiseFactor) * (plan.IsSpectral ? plan.View.Kept : 1);
             return cell.Power.Interpolated(0.5, p => Si.ToMicrovolts(Math.Sqrt(p) * sd)) is { } amplitude ? new PeakAmplitude(amplitude, "uV", derivation.Name) : null;
         }
 
@@ -132,7 +156,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
         }
 
         (string unit, Func<double, double> convert) = eeg ? ("uV", Si.ToMicrovolts) : megPeakIsPlanar ? ("fT/cm", Si.ToFemtoteslaPerCm) : ("fT", (Func<double, double>)Si.ToFemtotesla);
-        double? value = peak.Power.Interpolated(0.5, p => convert(Math.Sqrt(p) * plan.Response.Moment));
+        double? value = peak.Power.Interpolated(0.5, p => convert(Math.Sqrt(p) * plan.Response.Moment * plan.View.Kept));
         return value is { } v ? new PeakAmplitude(v, unit, channelName(measure.Modality, peak.MostOften)) : null;
     }
 

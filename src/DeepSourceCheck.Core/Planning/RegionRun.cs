@@ -10,7 +10,7 @@ namespace DeepSourceCheck.Core.Planning;
 /// </summary>
 /// <remarks>
 /// Dipoles are cut into chunks of fixed size; each thread takes the next chunk until there is none, without waiting for the others. Tallies add up in any order, chunks are written in
-/// theirs (<see cref="ChunkLine"/>): the same bytes for any number of threads.
+/// theirs (<see cref="ChunkLine"/>): the same bytes for any number of threads. Where every dipole is read under several draws of a filter's errors, draw after draw runs over all chunks.
 /// </remarks>
 internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSource source)
 {
@@ -30,7 +30,7 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
     public RegionTally Run(FilledRegion region, IDipoleSink? sink, Action<long>? progress, CancellationToken cancellation)
     {
         int dipoles = region.Positions.Length;
-        int chunks = (dipoles + ChunkSize - 1) / ChunkSize;
+        int once = (dipoles + ChunkSize - 1) / ChunkSize, chunks = once * plan.Passes;
         int threads = Threads(chunks);
         var tallies = new RegionTally[threads];
         ChunkLine? line = sink is null ? null : new ChunkLine(sink, ChunksAheadPerThread * threads);
@@ -38,21 +38,21 @@ internal sealed class RegionRun(EvaluationPlan plan, IHead head, ILeadfieldSourc
         var reporting = new Lock();
         Parallel.For(0, threads, new ParallelOptions { MaxDegreeOfParallelism = threads, CancellationToken = cancellation }, thread =>
         {
-            tallies[thread] = new RegionTally(plan, dipoles) { Profile = region.CorticalPlaces.Length > 0 ? new ProfileTally(plan, dipoles) : null };
+            tallies[thread] = new RegionTally(plan, (long)dipoles * plan.Passes) { Profile = region.CorticalPlaces.Length > 0 && plan.View.Errors is null && !plan.IsSpectral ? new ProfileTally(plan, dipoles) : null };
             var worker = new ChunkReader(plan, head, source, tallies[thread], line is not null);
             try
             {
                 for (int chunk; (chunk = Interlocked.Increment(ref claimed) - 1) < chunks;)
                 {
                     cancellation.ThrowIfCancellationRequested();
-                    int start = chunk * ChunkSize;
-                    worker.Read(region, start, Math.Min(ChunkSize, dipoles - start));
+                    int start = chunk % once * ChunkSize;
+                    worker.Read(region, start, Math.Min(ChunkSize, dipoles - start), chunk / once);
                     line?.Add(chunk, worker.Results!);
                     if (progress is not null && Interlocked.Increment(ref done) % ChunksBetweenReports == 0)
                     {
                         lock (reporting)
                         {
-                            progress(Math.Min((long)Volatile.Read(ref done) * ChunkSize, dipoles));
+                            progress(Math.Min((long)Volatile.Read(ref done) * ChunkSize / plan.Passes, dipoles));
                         }
                     }
                 }

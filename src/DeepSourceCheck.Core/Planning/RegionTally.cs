@@ -9,8 +9,8 @@ internal sealed class RegionTally
     private readonly EvaluationPlan _plan;
 
     /// <param name="plan">What is read.</param>
-    /// <param name="dipoles">Dipoles of the region, over all threads.</param>
-    public RegionTally(EvaluationPlan plan, long dipoles)
+    /// <param name="readings">Dipoles of the region, over all threads, as often as each is read.</param>
+    public RegionTally(EvaluationPlan plan, long readings)
     {
         _plan = plan;
         Cells = new MeasureTally[plan.Directions.Count][];
@@ -19,8 +19,8 @@ internal sealed class RegionTally
         for (int d = 0; d < Cells.Length; d++)
         {
             int size = SetSize(plan.Directions[d]), multiplicity = plan.Directions[d] == DirectionName.Tangential ? 2 : 1;
-            Strides[d] = DirectionSets.Stride(dipoles, size);
-            long announced = dipoles * (size / Strides[d]);
+            Strides[d] = DirectionSets.Stride(readings, size);
+            long announced = readings * (size / Strides[d]);
             Cells[d] = [.. plan.Measures.Select(m => new MeasureTally(plan, m, announced, multiplicity))];
             Peaks[d] =
             [
@@ -29,8 +29,8 @@ internal sealed class RegionTally
             ];
         }
 
-        WeakestOverStrongest = new QuantileStore(dipoles);
-        AngleToRadial = new QuantileStore(dipoles);
+        WeakestOverStrongest = new QuantileStore(readings);
+        AngleToRadial = new QuantileStore(readings);
     }
 
     /// <summary>[direction][measure].</summary>

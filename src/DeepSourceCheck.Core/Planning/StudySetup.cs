@@ -7,6 +7,7 @@ using DeepSourceCheck.Core.Regions;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Core.Waveforms;
 
 namespace DeepSourceCheck.Core.Planning;
 
@@ -63,6 +64,15 @@ public sealed record StudySetup
 
     /// <summary>One sentence on where a generated array lies about a real head; null for others.</summary>
     public string? ArrayPlace { get; init; }
+
+    /// <summary>Sampled waveforms of responses, by the response's key.</summary>
+    public IReadOnlyDictionary<string, SampledWaveform> Waveforms { get; init; } = new Dictionary<string, SampledWaveform>();
+
+    /// <summary>Leadfields of other heads for which a realistic filter may have been built; empty: of this head.</summary>
+    public IReadOnlyList<ILeadfieldSource> OtherHeads { get; init; } = [];
+
+    /// <summary>Index of the imported point nearest to a place [m]; null for heads that compute leadfields anywhere.</summary>
+    public Func<Vec3, int>? NearestPoint { get; init; }
 
     /// <summary>Geometry for figures.</summary>
     public Scene Scene { get; init; } = new();

@@ -17,7 +17,9 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
     public static IEnumerable<IMeasure> Measures(EvaluationPlan plan) =>
         from reading in new (Modality Modality, string? Name)[] { (Modality.Eeg, plan.EegMeasure), (Modality.Meg, plan.MegMeasure), (Modality.Both, plan.BothMeasure) }
         where reading.Name is not null
-        select plan.Measures.First(m => m.Modality == reading.Modality && m.Name == reading.Name);
+        let measure = plan.Measures.FirstOrDefault(m => m.Modality == reading.Modality && m.Name == reading.Name)
+        where measure is not null
+        select measure;
 
     /// <summary>Writes all verdicts.</summary>
     /// <param name="rows">The region's results; the median count of a verdict's row is that of the dipole whose chain is given.</param>
@@ -28,7 +30,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         DirectionName direction = plan.VerdictDirection;
         foreach (IMeasure measure in Measures(plan))
         {
-            asked.AddRange(plan.Targets.Select((_, rule) => new MedianSearch.Question(measure, rule)));
+            asked.AddRange(Enumerable.Range(0, plan.Targets.Count).Where(plan.Counts).Select(rule => new MedianSearch.Question(measure, rule)));
         }
 
         MedianWitness?[] witnesses = new MedianSearch(plan, setup.Head, source, region, tally, direction).Find(asked, cancellation);
@@ -40,7 +42,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             IReadOnlyList<DerivedNumber> chain = counts && witnesses[k] is { } found ? new DerivationChain(plan, setup.Noise!, source.Method).Of(found, found.Read, plan.RulesOf(measure)[rule]) : [];
             rows = counts ? Reconcile(rows, measure, direction, rule, witnesses[k]) : rows;
             MeasureResult row = rows.First(x => x.Modality == measure.Modality && x.Direction == direction && x.Measure == measure.Name);
-            verdicts.Add(counts ? Verdict(row, rule, witnesses[k], chain) : NoCount(row, rule));
+            verdicts.Add(counts ? Verdict(row, rule, plan.RulesOf(measure)[rule], witnesses[k], chain) : NoCount(row, rule));
         }
 
         return verdicts;
@@ -66,7 +68,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
 
             TargetResult target = row.Targets[rule];
             double? minutes = count is { } n && plan.Protocol is { } protocol ? SessionPlan.Minutes(protocol, n) : null;
-            target = target with { Trials = target.Trials with { P50 = count }, Minutes = target.Minutes is null ? null : target.Minutes with { P50 = minutes } };
+            target = RegionReport.WithPlan(
+                target with { Trials = target.Trials with { P50 = count }, Minutes = target.Minutes is null ? null : target.Minutes with { P50 = minutes } }, plan.Protocol);
             return row with { Targets = [.. row.Targets.Select((t, k) => k == rule ? target : t)] };
         })];
     }
@@ -80,11 +83,10 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         Text = $"{Names.Of(row.Modality)}, {Reading(row)}: no count ({row.Targets[rule].Reason}).",
     };
 
-    private VerdictResult Verdict(MeasureResult row, int rule, MedianWitness? witness, IReadOnlyList<DerivedNumber> chain)
+    private VerdictResult Verdict(MeasureResult row, int rule, ITargetRule bound, MedianWitness? witness, IReadOnlyList<DerivedNumber> chain)
     {
         TargetResult target = row.Targets[rule];
         long? count = target.Trials.P50;
-        ITargetRule bound = plan.RulesOf(plan.Measures.First(m => m.Modality == row.Modality && m.Name == row.Measure))[rule];
         bool? fits = plan.SessionTrials is { } session ? count is { } n && n <= session : null;
         return new VerdictResult
         {
@@ -92,13 +94,18 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             Rule = target.Rule,
             Measure = row.Measure,
             Direction = row.Direction,
-            Text = Text(row, target, fits, witness) + RangeText(AtMoments(bound, witness)),
+            Text = Text(row, target, fits, bound.StandsOnNoise ? null : witness) + Coherence(bound, witness) + RangeText(AtMoments(bound, witness)),
             FitsSession = fits,
             AtMoments = AtMoments(bound, witness),
             Missing = plan.SessionTrials is { } trials && witness is not null ? 1 - bound.Probability(witness.Power, witness.Artefact, trials) : null,
+            Averaging = Averaging.Of(plan, setup.Noise!, witness, count),
             Chain = chain,
         };
     }
+
+    private static string Coherence(ITargetRule rule, MedianWitness? witness) => rule is not SteadyStateRule spectral || witness is null
+        || spectral.CoherenceTrials(rule.EffectivePower(witness.Power, witness.Artefact)) is not { } trials || trials > TrialCount.MostPlanned ? ""
+        : string.Create(CultureInfo.InvariantCulture, $" By coherence over trials {trials:N0}.");
 
     private CountRange? AtMoments(ITargetRule rule, MedianWitness? witness)
     {
@@ -126,7 +133,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             return $"{reading}: out of reach by averaging ({(reason.StartsWith(Said, StringComparison.Ordinal) ? reason[Said.Length..] : reason)}).";
         }
 
-        string why = witness is null ? "" : string.Create(CultureInfo.InvariantCulture, $" In one trial {Compare(witness.Power)}.");
+        string why = witness is null ? "" : string.Create(CultureInfo.InvariantCulture, $" In one trial{(plan.IsSpectral ? ", for a filter that knows the waveform," : "")} {Compare(witness.Power)}.");
         if (count > TrialCount.MostPlanned)
         {
             return string.Create(CultureInfo.InvariantCulture, $"{reading}: out of reach, more than {TrialCount.MostPlanned:N0} trials.{why}");
@@ -160,7 +167,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             $"{Math.Round(Si.ToNanoAmpereMetres(moment), 9):0.######} nAm {(count is { } n && n <= TrialCount.MostPlanned ? $"{n:N0} trials" : "out of reach")}");
     }
 
-    private static string Reading(MeasureResult row) => row.Modality == Modality.Both && row.Measure != Names.MatchedFilter
+    private static string Reading(MeasureResult row) => row.Modality == Modality.Both && row.Measure is not (Names.MatchedFilter or Names.RealisticFilter)
         ? $"{row.Measure} and best MEG channel" : row.Measure;
 
     private static string Compare(double power)

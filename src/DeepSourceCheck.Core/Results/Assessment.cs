@@ -32,6 +32,11 @@ public sealed record Assessment
     /// <summary>Accepted trials that the session affords, or null.</summary>
     public long? SessionTrials { get; init; }
 
+    /// <summary>The assessment as it reads for one response: protocol and session of a steady-state one.</summary>
+    /// <param name="response">One of <see cref="Responses"/>.</param>
+    public Assessment For(ResponseResult response) => response.Response.Steady is null ? this
+        : this with { Study = Study with { Protocol = Study.ProtocolFor(response.Response) }, SessionTrials = response.SessionTrials };
+
     /// <summary>Variants of the study, in its order.</summary>
     public IReadOnlyList<VariantResult> Variants { get; init; } = [];
 

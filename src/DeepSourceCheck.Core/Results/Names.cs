@@ -15,11 +15,20 @@ public static class Names
     /// <summary>The bound that no linear combination of channels exceeds.</summary>
     public const string MatchedFilter = "matched-filter";
 
+    /// <summary>A filter that was built for a displaced place, another head and an estimated covariance.</summary>
+    public const string RealisticFilter = "realistic-filter";
+
     /// <summary>Amplitude against residual rms.</summary>
     public const string AmplitudeRatio = "amplitude_ratio";
 
     /// <summary>Detection at a false-alarm rate.</summary>
     public const string Detection = "detection";
+
+    /// <summary>Variance of the average over a window against that of its noise.</summary>
+    public const string VarianceRatio = "variance_ratio";
+
+    /// <summary>Residual noise of the EEG average.</summary>
+    public const string ResidualNoise = "residual_nV";
 
     /// <summary>`EEG`, `MEG`, `EEG+MEG`.</summary>
     public static string Of(Modality modality) => modality switch
@@ -49,7 +58,21 @@ public static class Names
     };
 
     /// <summary>Rule of a target as studies and results write it.</summary>
-    public static string Of(TargetChoice target) => target is AmplitudeRatioChoice ? AmplitudeRatio : Detection;
+    public static string Of(TargetChoice target) => target switch
+    {
+        AmplitudeRatioChoice => AmplitudeRatio,
+        DetectionChoice => Detection,
+        VarianceRatioChoice => VarianceRatio,
+        _ => ResidualNoise,
+    };
+
+    /// <summary>Topography as studies write it.</summary>
+    public static string Of(Topography topography) => topography switch
+    {
+        Topography.Known => "known",
+        Topography.Plane => "plane",
+        _ => "unknown",
+    };
 
     /// <summary>Grade as results write it.</summary>
     public static string Of(Grade grade) => grade switch

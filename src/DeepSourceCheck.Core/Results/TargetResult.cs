@@ -8,4 +8,14 @@ namespace DeepSourceCheck.Core.Results;
 /// <param name="SmallestAmplitude">The peak amplitude at that moment, in the unit of the peak; null likewise.</param>
 /// <param name="Reason">Why a figure is null; null where none is.</param>
 public sealed record TargetResult(
-    string Rule, CountPercentiles Trials, Percentiles? Minutes, double? SmallestMoment, double? SmallestAmplitude, string? Reason);
+    string Rule, CountPercentiles Trials, Percentiles? Minutes, double? SmallestMoment, double? SmallestAmplitude, string? Reason)
+{
+    /// <summary>Accepted trials where each is weighted by its own noise; null where the study states no spread between trials.</summary>
+    public CountPercentiles? Weighted { get; init; }
+
+    /// <summary>Presented trials, accepted and rejected together; null without a protocol.</summary>
+    public CountPercentiles? Presented { get; init; }
+
+    /// <summary>Time in the chair [min]: recording of every condition and replication, breaks and preparation; null without a protocol.</summary>
+    public Percentiles? ChairMinutes { get; init; }
+}

@@ -32,6 +32,9 @@ public sealed record VerdictResult
     /// <summary>Mean power over what is not known, as a fraction; null without unknowns.</summary>
     public double? Assurance { get; init; }
 
+    /// <summary>How its trials average; null without a protocol or a count.</summary>
+    public AveragingResult? Averaging { get; init; }
+
     /// <summary>The chain for the dipole at the median: what `why` prints.</summary>
     public IReadOnlyList<DerivedNumber> Chain { get; init; } = [];
 }

@@ -24,6 +24,9 @@ public sealed record NoiseChoice
     /// <summary>True: brain noise; false: none; null: not stated (on when <see cref="EegTotal"/> is given, else off).</summary>
     public bool? Brain { get; init; }
 
+    /// <summary>Standard deviation, without unit, of ln s from trial to trial, s the rms of one trial; null: not stated.</summary>
+    public double? SpreadBetweenTrials { get; init; }
+
     /// <summary>File of the study's own table of the brain in EEG, relative to the study; null for the default table.</summary>
     public string? BrainEegTable { get; init; }
 

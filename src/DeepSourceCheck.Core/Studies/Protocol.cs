@@ -18,6 +18,9 @@ public sealed record Protocol
     /// <summary>Breaks [s].</summary>
     public double? Breaks { get; init; }
 
+    /// <summary>Width [s] over which each stimulus is moved at random about its regular time, or null.</summary>
+    public double? IntervalJitter { get; init; }
+
     /// <summary>Conditions that share the session.</summary>
     public int Conditions { get; init; } = 1;
 

@@ -36,8 +36,23 @@ public sealed record Response
     /// <summary>Amplitude convention.</summary>
     public Measured Measured { get; init; }
 
-    /// <summary>Band of the response [Hz].</summary>
+    /// <summary>Band of the response [Hz]; of a steady-state response the bin of one trial about its frequency.</summary>
     public required Band Band { get; init; }
+
+    /// <summary>Frequency and length of one trial of a steady-state response; null for a transient one.</summary>
+    public SteadyState? Steady { get; init; }
+
+    /// <summary>What is known of its course in time, or null.</summary>
+    public WaveformChoice? Waveform { get; init; }
+
+    /// <summary>Standard deviation of the latency from trial to trial [s], as stated.</summary>
+    public double Jitter { get; init; }
+
+    /// <summary>How far off the place may be for which a realistic filter was built [m], standard deviation an axis.</summary>
+    public double PlaceError { get; init; }
+
+    /// <summary>Length of the baseline [s] from which a realistic filter takes its covariance; null where not stated.</summary>
+    public double? Baseline { get; init; }
 
     /// <summary>The direction that carries the verdict.</summary>
     public required DirectionChoice Direction { get; init; }
@@ -86,6 +101,31 @@ public sealed record DensityChoice(double MomentDensity, double Area, double Ope
     /// <summary>Net moment [A m].</summary>
     public double Moment => MomentDensity * Area * OpenField;
 }
+
+/// <summary>A response that follows a stimulus cycle by cycle.</summary>
+/// <param name="Frequency">Frequency [Hz].</param>
+/// <param name="Seconds">Length of one trial [s].</param>
+public sealed record SteadyState(double Frequency, double Seconds)
+{
+    /// <summary>The bin that one trial resolves [Hz].</summary>
+    public Band Bin => new(Frequency - 0.5 / Seconds, Frequency + 0.5 / Seconds);
+}
+
+/// <summary>The course of a response in time.</summary>
+public abstract record WaveformChoice;
+
+/// <summary>Cycles of a dominant frequency under a raised cosine.</summary>
+/// <param name="Frequency">Frequency [Hz].</param>
+/// <param name="Cycles">Number of cycles, without unit, from the first to the last value other than zero.</param>
+public sealed record OscillationChoice(double Frequency, double Cycles) : WaveformChoice;
+
+/// <summary>A Gaussian.</summary>
+/// <param name="Width">Full width at half of the peak [s].</param>
+public sealed record GaussianChoice(double Width) : WaveformChoice;
+
+/// <summary>A table of samples.</summary>
+/// <param name="File">Path relative to the study.</param>
+public sealed record WaveformFileChoice(string File) : WaveformChoice;
 
 /// <summary>Convention in which amplitudes are stated and read.</summary>
 public enum Measured

@@ -33,6 +33,14 @@ public sealed record Study
     /// <summary>Sampling rate [Hz], or null.</summary>
     public double? SamplingRate { get; init; }
 
+    /// <summary>False where the trigger falls anywhere between two samples: the latency then scatters by 1/(sampling rate sqrt(12)).</summary>
+    public bool TriggerSynchronised { get; init; } = true;
+
+    /// <summary>Standard deviation of the latency from trial to trial [s]: jitter of the response and of a free trigger.</summary>
+    /// <param name="response">The response.</param>
+    public double LatencyDeviation(Response response) => TriggerSynchronised || SamplingRate is not { } rate
+        ? response.Jitter : Math.Sqrt(response.Jitter * response.Jitter + 1 / (12 * rate * rate));
+
     /// <summary>Noise; null where the study states none.</summary>
     public NoiseChoice? Noise { get; init; }
 
@@ -47,6 +55,11 @@ public sealed record Study
 
     /// <summary>Protocol, or null.</summary>
     public Protocol? Protocol { get; init; }
+
+    /// <summary>The protocol as it runs for one response: trials of a steady-state response cannot follow faster than they are long.</summary>
+    /// <param name="response">The response.</param>
+    public Protocol? ProtocolFor(Response response) =>
+        response.Steady is { } steady && Protocol is { } stated ? stated with { Rate = Math.Min(stated.Rate, 1 / steady.Seconds) } : Protocol;
 
     /// <summary>What is not known, or null.</summary>
     public UnknownsChoice? Unknowns { get; init; }

@@ -10,6 +10,11 @@ public static partial class StudyKeys
         {
             Example = "{eeg_sensor_nV_per_rtHz: 20, meg_sensor_fT_per_rtHz: 5}",
         },
+        new("noise.spread_between_trials", "Spread of the noise from trial to trial: standard deviation of ln s, s the rms of a trial. The stated noise is the root of the mean of s^2.",
+            new NumberShape(0, 3))
+        {
+            Example = "0.3",
+        },
         new("noise.eeg_sensor_nV_per_rtHz", "Amplifier noise of each electrode before referencing, as an amplitude density.", Above0(1e6))
         {
             Unit = "nV/sqrt(Hz)",

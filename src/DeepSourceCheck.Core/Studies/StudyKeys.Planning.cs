@@ -2,7 +2,6 @@ namespace DeepSourceCheck.Core.Studies;
 
 public static partial class StudyKeys
 {
-    private const string VarianceRatioNotYet = "use amplitude_ratio or detection";
     private const string PeopleNotYet = "the plan is for one person; remove the key";
 
     private static StudyKey[] Planning() =>
@@ -13,7 +12,7 @@ public static partial class StudyKeys
             Example = "3",
             Defaults = Default(3.0, "the 3:1 rule; " + CommonPractice, Grade.Memory),
         },
-        new("target.detection", "One-sided test at known topography and covariance.", new MapShape())
+        new("target.detection", "Test at a false-alarm rate and power.", new MapShape())
         {
             Example = "{alpha: 0.01, power: 0.9, looks: 1}",
         },
@@ -27,17 +26,16 @@ public static partial class StudyKeys
             Example = "0.9",
             Defaults = Default(0.9, "one person against chance; " + CommonPractice, Grade.Memory),
         },
-        new("target.detection.topography", "Known: the field's pattern is given.",
-            new ChoiceShape(["known"]) { NotYet = ["plane", "unknown"] })
+        new("target.detection.topography",
+            "What is known of the field's pattern: known (with its sign: one-sided), plane (two patterns, as of two tangential dipoles) or unknown (as many dimensions as independent rows are read).",
+            Choice("known", "plane", "unknown"))
         {
             Example = "known",
-            InsteadOfShape = "only topography: known is acted on",
             Defaults = Default("known", "the pattern follows from the leadfield", Grade.Derived),
         },
-        new("target.detection.covariance", "Known: the noise is given.", new ChoiceShape(["known"]) { NotYet = ["estimated"] })
+        new("target.detection.covariance", "Known: the noise is given; estimated: from the same trials (t and Hotelling's T2).", Choice("known", "estimated"))
         {
             Example = "known",
-            InsteadOfShape = "only covariance: known is acted on",
             Defaults = Default("known", "the noise is stated by the study", Grade.Derived),
         },
         new("target.detection.looks", "Independent looks (channels x latencies) that are searched.", new NumberShape(1, 1e9))
@@ -47,45 +45,46 @@ public static partial class StudyKeys
         },
         new("target.variance_ratio", "The F-ratio rule of averaged evoked responses.", new MapShape())
         {
-            Example = "{critical: 3.1, power: 0.9}",
-            NotYet = VarianceRatioNotYet,
+            Example = "{critical: 3.1, power: 0.9, window_rms_uV: 0.12}",
         },
-        new("target.variance_ratio.critical", "Critical value of the ratio.", Above0(1e6))
+        new("target.variance_ratio.critical", "Critical value of the ratio; instead of alpha.", Above0(1e6))
         {
             Example = "3.1",
-            NotYet = VarianceRatioNotYet,
+            Defaults = Default(3.1, "Elberling and Don 1984: F(5, 250) at .01", Grade.Memory),
         },
-        new("target.variance_ratio.power", "Probability of passing it.", new NumberShape(0, 1, AboveLow: true, BelowHigh: true))
+        new("target.variance_ratio.alpha", "Rate of false alarms whose exact critical value of F(degrees) is taken; instead of critical.",
+            new NumberShape(0, 0.5, AboveLow: true, BelowHigh: true))
+        {
+            Example = "0.01",
+        },
+        new("target.variance_ratio.power", "Probability of passing it; without it, the trials at which the expected ratio equals the critical value.",
+            new NumberShape(0, 1, AboveLow: true, BelowHigh: true))
         {
             Example = "0.9",
-            NotYet = VarianceRatioNotYet,
         },
-        new("target.variance_ratio.window_rms_uV", "rms of the response over the window.", Above0(1e6))
+        new("target.variance_ratio.window_rms_uV", "Rms of the response over the window at the EEG reading of the verdict; other readings and dipoles follow in proportion to their peaks. Not needed where a response's waveform and window_ms are known.", Above0(1e6))
         {
             Unit = "uV",
             Example = "0.12",
-            NotYet = VarianceRatioNotYet,
         },
-        new("target.variance_ratio.degrees", "Degrees of freedom of the ratio.", new BandShape(Count(1, 1e9)))
+        new("target.variance_ratio.degrees", "Degrees of freedom of the ratio: of the average over the window, of the noise.", new BandShape(Count(1, 1e9)))
         {
             Example = "[5, 250]",
-            NotYet = VarianceRatioNotYet,
+            Defaults = Default(Numbers(5, 250), "Elberling and Don 1984: 5 for a window of 10 ms at 100 to 3000 Hz, 250 sweeps of one point", Grade.Memory),
         },
-        new("target.residual_nV", "Residual noise of the EEG average.", Above0(1e9))
+        new("target.residual_nV", "Residual noise of the EEG average, at one point.", Above0(1e9))
         {
             Unit = "nV",
             Example = "40",
-            NotYet = VarianceRatioNotYet,
         },
 
         new("protocol", "What the session affords; without it no minutes are given.", new MapShape())
         {
             Example = "{rate_per_s: 11.1, rejected_fraction: 0.1, session_min: 40}",
         },
-        new("protocol.rate_per_s", "Stimuli per second.", Above0(1e5))
+        new("protocol.rate_per_s", "Stimuli per second; where every response is steady-state, trials follow each other without it.", Above0(1e5))
         {
             Unit = "1/s",
-            Required = true,
             Example = "11.1",
             Typical = new(0.05, 200),
         },
@@ -106,6 +105,11 @@ public static partial class StudyKeys
         {
             Example = "2",
             Defaults = Default(1.0, "one replication unless stated", Grade.Derived),
+        },
+        new("protocol.interval_jitter_ms", "Width over which each stimulus is moved at random about its regular time: noise at harmonics of the rate then averages better.", From0(1e6))
+        {
+            Unit = "ms",
+            Example = "10",
         },
         new("protocol.participants", "People who take part.", Count(1, 1e6)) { Example = "20", NotYet = PeopleNotYet },
         new("protocol.spread_between_people", "Coefficient of variation of the moment between people.", From0(100))

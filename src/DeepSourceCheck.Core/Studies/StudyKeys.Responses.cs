@@ -2,8 +2,6 @@ namespace DeepSourceCheck.Core.Studies;
 
 public static partial class StudyKeys
 {
-    private const string SteadyNotYet = "only kind: transient is acted on; plan a steady-state response as a transient one with its band";
-
     private static StudyKey[] Regions() =>
     [
         new("regions", "Regions of the study's own, beside the library's.",
@@ -49,23 +47,21 @@ public static partial class StudyKeys
             Example = "[{name: wave V, regions: [inferior-colliculus-left], moment_nAm: 3.5, band_Hz: [100, 1500]}]",
         },
         new("responses[].name", "Name of the response.", new TextShape("a name")) { Required = true, Example = "wave V", LabelOnly = true },
-        new("responses[].kind", "Transient: an average over trials.", new ChoiceShape(["transient"]) { NotYet = ["steady-state"] })
+        new("responses[].kind", "Transient: an average over trials. Steady-state: one frequency that follows the stimulus, read in the bin that one trial resolves.",
+            Choice("transient", "steady-state"))
         {
             Example = "transient",
-            InsteadOfShape = SteadyNotYet,
             Defaults = Default("transient", "the usual case of an averaged response", Grade.Derived),
         },
         new("responses[].frequency_Hz", "Frequency of a steady-state response.", Above0(1e6))
         {
             Unit = "Hz",
             Example = "40",
-            NotYet = SteadyNotYet,
         },
         new("responses[].seconds", "Length of one trial of a steady-state response.", Above0(1e6))
         {
             Unit = "s",
             Example = "10",
-            NotYet = SteadyNotYet,
         },
         new("responses[].regions", "Regions in which the source may be: of the study or of the library.",
             new TextListShape("the name of a region"))
@@ -158,10 +154,9 @@ public static partial class StudyKeys
             Example = "baseline-to-peak",
             Defaults = Default("baseline-to-peak", "dipole moments are usually published from the baseline; " + CommonPractice, Grade.Memory),
         },
-        new("responses[].band_Hz", "Band in which the response is recorded and the noise is counted.", BandHz)
+        new("responses[].band_Hz", "Band in which the response is recorded and the noise is counted; a steady-state response needs none.", BandHz)
         {
             Unit = "Hz",
-            Required = true,
             Example = "[100, 1500]",
         },
         new("responses[].direction", "The direction whose figures carry the verdict; a vector stands in the frame of the regions.",
@@ -170,23 +165,45 @@ public static partial class StudyKeys
             Example = "[0, 0, 1]",
             Defaults = Default("isotropic", "no orientation is stated: every direction is equally likely", Grade.Derived),
         },
-        new("responses[].waveform", "Samples of the response.", new FileShape("a CSV table"))
+        new("responses[].waveform", "Course of the response in time: samples, or a Gaussian; its peak, in the convention of `measured`, is the moment.",
+            new FileShape("a table with columns time_ms, value, separated by commas or tabs"), new MapShape())
         {
             Example = "waveform.csv",
-            NotYet = "state component_Hz instead",
+        },
+        new("responses[].waveform.gaussian_fwhm_ms", "Full width at half of the peak of a Gaussian.", Above0(1e5))
+        {
+            Unit = "ms",
+            Required = true,
+            Example = "1.2",
         },
         new("responses[].component_Hz", "Dominant frequency of the response; must lie in its band.", Above0(1e6))
         {
             Unit = "Hz",
             Example = "500",
         },
-        new("responses[].cycles", "Cycles of the dominant frequency.", Above0(1e6)) { Example = "2", NotYet = "state component_Hz alone" },
+        new("responses[].cycles", "Cycles of the dominant frequency under a raised cosine, from the first to the last value other than zero; with component_Hz it makes the waveform known.",
+            new NumberShape(0.5, 1000))
+        {
+            Example = "2",
+        },
         new("responses[].window_ms", "Length of the analysis window.", Above0(1e6)) { Unit = "ms", Example = "10" },
-        new("responses[].jitter_ms", "Standard deviation of the latency from trial to trial.", From0(1e4))
+        new("responses[].jitter_ms", "Standard deviation of the latency from trial to trial; needs a waveform, component_Hz or frequency_Hz.", From0(1e4))
         {
             Unit = "ms",
             Example = "0.3",
-            NotYet = "lower moment_nAm by the loss that the jitter causes",
+            Defaults = Default(0.0, "every trial alike unless stated", Grade.Derived),
+        },
+        new("responses[].place_error_mm", "By how much the place may be off for which a realistic filter was built: standard deviation, each axis.", From0(100))
+        {
+            Unit = "mm",
+            Example = "5",
+            Defaults = Default(5.0, "registration of a deep target; " + CommonPractice, Grade.Memory),
+        },
+        new("responses[].baseline_s", "Length of the baseline from which a realistic filter takes its covariance, where noise states no samples; without either it is exact.",
+            Above0(1e7))
+        {
+            Unit = "s",
+            Example = "60",
         },
         new("responses[].locked_artefact", "Artefact locked to the stimulus, which averaging does not reduce.", new MapShape())
         {
@@ -227,11 +244,10 @@ public static partial class StudyKeys
             Defaults = Default("false", "only when asked for: it takes time", Grade.Derived),
         },
         new("responses[].measure", "What the verdict stands on.", new MapShape()) { Example = "{eeg: Cz-mastoids, meg: best-channel}" },
-        new("responses[].measure.eeg", "Measure of the EEG: best-channel, matched-filter or a derivation of sensors.eeg_derivations.",
-            new ChoiceShape(["best-channel", "matched-filter"]) { NotYet = ["realistic-filter"] }, new TextShape("one of sensors.eeg_derivations", 120))
+        new("responses[].measure.eeg", "Measure of the EEG: best-channel, matched-filter, realistic-filter or a derivation of sensors.eeg_derivations.",
+            Choice("best-channel", "matched-filter", "realistic-filter"), new TextShape("one of sensors.eeg_derivations", 120))
         {
             Example = "Cz-mastoids",
-            InsteadOfShape = "write best-channel, matched-filter or a derivation",
             Defaults =
             [
                 new("best-channel", "no derivation is listed: what is read off the best channel", Grade.Derived, "no derivation"),
@@ -239,10 +255,9 @@ public static partial class StudyKeys
             ],
         },
         new("responses[].measure.meg", "Measure of the MEG.",
-            new ChoiceShape(["best-channel", "matched-filter"]) { NotYet = ["realistic-filter"] })
+            Choice("best-channel", "matched-filter", "realistic-filter"))
         {
             Example = "best-channel",
-            InsteadOfShape = "write best-channel or matched-filter",
             Defaults = Default("best-channel", "what is read off the best channel", Grade.Derived),
         },
     ];

@@ -104,6 +104,11 @@ public static partial class StudyKeys
             Unit = "Hz",
             Example = "10000",
         },
+        new("sensors.trigger", "Synchronised: stimuli fall on samples. Free: anywhere between two, which scatters the latency by 1/(sampling_Hz sqrt(12)).", Choice("synchronised", "free"))
+        {
+            Example = "synchronised",
+            Defaults = Default("synchronised", "the stimulus runs on the recorder's clock unless stated", Grade.Derived),
+        },
     ];
 
     private static BandShape BandHz => new(From0(1e6));

@@ -45,6 +45,7 @@ internal static class NoiseBinder
             EegCovariance = eeg == "measured" ? Covariance(noise, "eeg_covariance") : null,
             MegCovariance = meg == "measured" ? Covariance(noise, "meg_covariance") : null,
             Brain = brain,
+            SpreadBetweenTrials = noise.Number("spread_between_trials"),
         };
         if (brain != true && !noise.States("eeg_total") && (eeg == "spectral" || meg == "spectral"))
         {

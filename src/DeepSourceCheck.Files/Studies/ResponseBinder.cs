@@ -51,20 +51,27 @@ internal static class ResponseBinder
 
     private static Response? Bind(Section entry, HashSet<string> own, BoundSensors sensors, Reading reading)
     {
-        entry.Text("kind");
+        bool steady = entry.Text("kind") == "steady-state";
         string? name = entry.Text("name"), counts = entry.Text("counts"), measured = entry.Text("measured");
         List<string> regions = Regions(entry, own, sensors, reading);
         BoundStrength? strength = StrengthBinder.Bind(entry, sensors);
-        Band? band = entry.Band("band_Hz");
+        BoundCourse course = CourseBinder.Bind(entry, steady, sensors);
+        Band? band = steady ? Bin(entry, course.Steady) : Needed(entry);
         DirectionChoice? direction = Direction(entry);
-        double? component = entry.Number("component_Hz");
+        double? component = course.Component;
         if (component is { } f && band is { } b && (f < b.Low || f > b.High))
         {
             entry.Problem("component_Hz", $"{KeyShape.Text(f)} Hz lies outside the response's band of {Text(b)}; move it inside, or widen band_Hz");
         }
 
         (IReadOnlyList<double> shares, IReadOnlyList<double> lags) = StrengthBinder.Together(entry, counts == "together", component);
-        CheckPassed(entry, band, sensors);
+        CheckPassed(entry, band, course.Steady?.Frequency, sensors);
+        CheckTogether(entry, counts == "together");
+        if (course.Steady is not null && measured == "peak-to-trough")
+        {
+            entry.Problem("measured", "peak-to-trough is of a transient response; the amplitude of a steady-state one is the peak of its sinusoid: write baseline-to-peak");
+        }
+
         double? window = entry.Number("window_ms");
         Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
         Section measure = entry.Map("measure") ?? entry.Entry("measure");
@@ -87,6 +94,11 @@ internal static class ResponseBinder
             Lags = lags,
             Measured = measured == "peak-to-trough" ? Measured.PeakToTrough : Measured.BaselineToPeak,
             Band = band.Value,
+            Steady = course.Steady,
+            Waveform = course.Waveform,
+            Jitter = course.Jitter,
+            PlaceError = course.PlaceError,
+            Baseline = course.Baseline,
             Direction = direction,
             Window = window / 1000,
             ComponentFrequency = component,
@@ -192,8 +204,48 @@ internal static class ResponseBinder
         return null;
     }
 
-    private static void CheckPassed(Section entry, Band? stated, BoundSensors sensors)
+    private static Band? Needed(Section entry)
     {
+        if (!entry.States("band_Hz"))
+        {
+            entry.Problem("band_Hz", "is missing; state the band in which the response is recorded, for instance [100, 1500] Hz");
+        }
+
+        return entry.Band("band_Hz");
+    }
+
+    // The bin of one trial; a stated band is checked and otherwise without effect.
+    private static Band? Bin(Section entry, SteadyState? steady)
+    {
+        if (entry.States("band_Hz"))
+        {
+            if (entry.Band("band_Hz") is { } band && steady is { } s && (s.Frequency < band.Low || s.Frequency > band.High))
+            {
+                entry.Problem("band_Hz", $"{Text(band)} excludes the response's frequency of {KeyShape.Text(s.Frequency)} Hz; remove it: a steady-state response is read in the bin of one trial");
+            }
+            else
+            {
+                entry.WithoutEffect("band_Hz", "a steady-state response is read in the bin that one trial resolves, 1/seconds wide");
+            }
+        }
+
+        return steady?.Bin;
+    }
+
+    private static void CheckTogether(Section entry, bool together)
+    {
+        foreach (string modality in new[] { "eeg", "meg" })
+        {
+            if (together && entry.Map("measure") is { } measure && (measure.Raw(modality) as PlacedText)?.Text == Names.RealisticFilter)
+            {
+                measure.Problem(modality, "a realistic-filter is built for one place; regions that act together have several: write matched-filter or a single reading");
+            }
+        }
+    }
+
+    private static void CheckPassed(Section entry, Band? stated, double? frequency, BoundSensors sensors)
+    {
+        string key = frequency is null ? "band_Hz" : "frequency_Hz";
         if (stated is not { } band)
         {
             return;
@@ -203,7 +255,7 @@ internal static class ResponseBinder
         Check(sensors.HasMeg ? sensors.MegBandwidth : null, "MEG sensors", "meg");
         if (sensors.Sampling is { } rate && rate < SamplesPerCycle * band.High)
         {
-            entry.Problem("band_Hz", $"reaches {KeyShape.Text(band.High)} Hz, which needs at least {KeyShape.Text(SamplesPerCycle * band.High)} samples a second; "
+            entry.Problem(key, $"reaches {KeyShape.Text(band.High)} Hz, which needs at least {KeyShape.Text(SamplesPerCycle * band.High)} samples a second; "
                 + $"sensors.sampling_Hz is {KeyShape.Text(rate)}: raise it, or lower the band's upper edge");
         }
 
@@ -212,7 +264,7 @@ internal static class ResponseBinder
             if (passed is { } p && (band.Low < p.Low || band.High > p.High))
             {
                 string passes = modality == "eeg" ? "passes" : "pass";
-                entry.Problem("band_Hz", $"the response's band of {Text(band)} lies outside the {Text(p)} that the {what} {passes} (sensors.bandwidth_Hz.{modality}); "
+                entry.Problem(key, $"the response's {(frequency is null ? "band" : "bin")} of {Text(band)} lies outside the {Text(p)} that the {what} {passes} (sensors.bandwidth_Hz.{modality}); "
                     + $"they would not record it: narrow the band to what is passed, or remove sensors.{modality}");
             }
         }
@@ -256,8 +308,8 @@ internal static class ResponseBinder
         {
             string listed = sensors.Derivations.Count > 0 ? string.Join(", ", sensors.Derivations) : "none";
             string message = stated == Names.ChannelMean
-                ? "channel-mean is for maps and comparisons, a verdict never stands on it; write best-channel, matched-filter or a derivation"
-                : $"{Shown.Quoted(stated!)} is not among sensors.eeg_derivations ({Shown.Text(listed, 120)}); add it there, or write best-channel or matched-filter";
+                ? "channel-mean is for maps and comparisons, a verdict never stands on it; write best-channel, matched-filter, realistic-filter or a derivation"
+                : $"{Shown.Quoted(stated!)} is not among sensors.eeg_derivations ({Shown.Text(listed, 120)}); add it there, or write best-channel, matched-filter or realistic-filter";
             measure.Problem("eeg", message);
         }
 

@@ -21,6 +21,9 @@ internal sealed record BoundSensors(bool HasEeg, bool HasMeg, bool Imported, str
     public Band? MegBandwidth { get; init; }
 
     public double? Sampling { get; init; }
+
+    /// <summary>True where the study says that stimuli fall between samples.</summary>
+    public bool FreeTrigger { get; init; }
 }
 
 /// <summary>`sensors`: electrodes, derivations, coils, bandwidths, sampling.</summary>
@@ -57,6 +60,7 @@ internal static class SensorBinder
             EegBandwidth = Bandwidth(sensors, "eeg", hasEeg, NoEeg),
             MegBandwidth = Bandwidth(sensors, "meg", hasMeg, NoMeg),
             Sampling = sensors.Number("sampling_Hz"),
+            FreeTrigger = Trigger(sensors),
         };
     }
 
@@ -228,6 +232,18 @@ internal static class SensorBinder
         }
 
         return hasMeg ? new(null, null) : null;
+    }
+
+    // Asked only where it is stated: without a waveform nothing depends on it.
+    private static bool Trigger(Section sensors)
+    {
+        bool free = sensors.States("trigger") && sensors.Text("trigger") == "free";
+        if (free && !sensors.States("sampling_Hz"))
+        {
+            sensors.Problem("trigger", "is free: the latency then scatters by 1/(sampling rate x sqrt(12)); state sensors.sampling_Hz");
+        }
+
+        return free;
     }
 
     private static Band? Bandwidth(Section sensors, string modality, bool used, string reason)

@@ -77,10 +77,11 @@ public static class StudyReader
         NoiseChoice? noise = NoiseBinder.Bind(root, sensors, reading);
         IReadOnlyList<RegionChoice> regions = RegionBinder.Bind(root, sensors, reading);
         IReadOnlyList<Response> responses = ResponseBinder.Bind(root, sensors, reading);
-        IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root);
-        Protocol? protocol = PlanBinder.Protocol(root);
+        IReadOnlyList<TargetChoice> targets = PlanBinder.Targets(root, sensors.HasEeg || !sensors.HasMeg, responses);
+        Protocol? protocol = PlanBinder.Protocol(root, responses);
         (UnknownsChoice? unknowns, head) = UnknownsBinder.Bind(root, head, responses, sensors, protocol, reading);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
+        PlanBinder.CheckRate(responses, protocol, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
         {
@@ -96,6 +97,7 @@ public static class StudyReader
             SamplingRate = sensors.Sampling,
             Noise = noise,
             Regions = regions,
+            TriggerSynchronised = !sensors.FreeTrigger,
             Responses = responses,
             Targets = targets,
             Protocol = protocol,

@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Heads;
+using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
 
@@ -34,6 +35,11 @@ internal static class UnknownsBinder
                     ? $"not supported yet with {kind}, which would be solved anew for each draw: remove it here, and state variants with other conductivities or gaps instead"
                     : $"has no meaning with {kind}, which {(head is VoxelHeadChoice ? "has no sphere whose centre could be off" : "holds one head as it is")}: remove it");
             }
+        }
+
+        if (responses.Any(r => r.EegMeasure == Names.RealisticFilter || r.MegMeasure == Names.RealisticFilter))
+        {
+            unknowns.Problem("stands beside a measure realistic-filter, whose errors of place, head and covariance are a spread of their own; let the verdict stand on matched-filter or a single reading, or remove unknowns");
         }
 
         if (!sensors.HasMeg && headShift > 0)

@@ -65,6 +65,6 @@ public sealed class ModalityAnswer
 
     /// <summary>`252 to 371 in 5 to 95 % of places`, or empty.</summary>
     public string Range() => HasCount && Target?.Trials is { P05: { } low, P95: var high } && low != high
-        ? $"{Say.Count(low)} to {Say.Trials(high)} in 5 to 95 % of {Say.Spread(Verdict.Direction)}"
+        ? $"{Say.Count(low)} to {Say.Trials(high)} in 5 to 95 % of {Say.Spread(Verdict)}"
         : "";
 }

@@ -109,15 +109,27 @@ public static class Say
     {
         AmplitudeRatioChoice a when measured == Measured.PeakToTrough => $"peak-to-trough = {Stated(a.Ratio)} × sqrt(2) × residual rms",
         AmplitudeRatioChoice a => $"peak = {Stated(a.Ratio)} × residual rms",
-        DetectionChoice d => $"detected with power {Percent(d.Power)} at false-alarm rate {Stated(d.Alpha)}{(d.Looks > 1 ? $" over {Stated(d.Looks)} looks" : "")}",
+        DetectionChoice d => $"detected with power {Percent(d.Power)} at false-alarm rate {Stated(d.Alpha)}{(d.Looks > 1 ? $" over {Stated(d.Looks)} looks" : "")}{Unknowns(d)}",
+        VarianceRatioChoice v when v.Power is { } p => $"variance ratio above {Critical(v)} with power {Percent(p)}",
+        VarianceRatioChoice v => $"variance ratio expected at {Critical(v)}",
+        ResidualNoiseChoice r => $"residual noise of {Stated(Math.Round(Si.ToMicrovolts(r.Residual) * 1000, 6))} nV",
         _ => "the study's target",
     };
+
+    private static string Critical(VarianceRatioChoice v) => v.Critical is { } c ? Stated(c) : $"the critical value of F({Stated(v.Above)}, {Stated(v.Below)}) at {Stated(v.Alpha!.Value)}";
+
+    // Known topography and covariance are the plain case and go unsaid.
+    private static string Unknowns(DetectionChoice d) =>
+        (d.Topography == Topography.Known ? "" : $", topography {Names.Of(d.Topography)}") + (d.CovarianceEstimated ? ", noise estimated from the same trials" : "");
 
     /// <summary>How amplitudes are read: `peak to trough`, `baseline to peak`.</summary>
     public static string Convention(Measured measured) => measured == Measured.PeakToTrough ? "peak to trough" : "baseline to peak";
 
     /// <summary>What a range of 5 to 95 % runs over: `places`, or `places and directions` where the direction is a set.</summary>
     public static string Spread(DirectionName direction) => direction is DirectionName.Tangential or DirectionName.Isotropic ? "places and directions" : "places";
+
+    /// <summary>Over what the figures of a verdict spread: realistic filters add their own errors.</summary>
+    public static string Spread(VerdictResult verdict) => Spread(verdict.Direction) + (verdict.Measure == Names.RealisticFilter ? " and the filter's errors" : "");
 
     /// <summary>`each of 4 averages (2 conditions, 2 replications)`, or empty where the session holds a single average.</summary>
     public static string Averages(Protocol? protocol) => protocol is { } p ? Rounded.Averages(p.Conditions, p.Replications) : "";
@@ -136,4 +148,21 @@ public static class Say
     public static string Unit(string unit) => unit.StartsWith('u') ? "µ" + unit[1..] : unit;
 
     private static string Signed(string text) => text.Replace('-', Minus);
+
+    /// <summary>Band of a transient response, frequency and trial of a steady-state one.</summary>
+    public static string Recorded(Response response) => response.Steady is { } steady
+        ? $"steady-state at {Stated(steady.Frequency)} Hz in trials of {Stated(steady.Seconds)} s" : $"{Stated(response.Band.Low)} to {Stated(response.Band.High)} Hz";
+
+    /// <summary>What is known of a response's course in time and what filter and jitter do to its peak; empty where nothing is.</summary>
+    public static string Course(ResponseResult response)
+    {
+        if (response.Waveform is not { } waveform)
+        {
+            return "";
+        }
+
+        string jitter = waveform.Jitter > 0 ? FormattableString.Invariant($", latency jitter {waveform.Jitter * 1000:0.###} ms") : "";
+        string change = Math.Abs(waveform.LossDb) < 0.05 ? "the peak stays" : FormattableString.Invariant($"filter and jitter {(waveform.LossDb > 0 ? "take" : "add")} {Math.Abs(waveform.LossDb):0.0} dB {(waveform.LossDb > 0 ? "off" : "to")} the peak");
+        return $"waveform: {waveform.Description}{jitter}; {change}";
+    }
 }

@@ -63,16 +63,53 @@ public static class ConsoleSummary
             return;
         }
 
+        assessment = assessment.For(response);
         RegionAnswer answer = new(assessment, response.Response, response.Regions[0]);
         Response stated = response.Response;
         text.Append(WhyText.Wrap($"{stated.Name}, {answer.Region.Region}: {Say.Plural(answer.Region.Dipoles, "dipole")}, {Say.Strength(stated, answer.Region)} {Say.Direction(stated.Direction)}", 0));
+        string course = stated.Steady is null ? Say.Course(response) : string.Join("; ", new[] { Say.Recorded(stated), Say.Course(response) }.Where(c => c.Length > 0));
+        if (course.Length > 0)
+        {
+            text.Append(WhyText.Wrap(course, 0));
+        }
+
         text.Append(WhyText.Wrap(Conditions(assessment, answer), 0));
         text.Append('\n').Append(WhyText.Wrap(string.Join(" ", answer.Answers.Where(a => a.Modality != Modality.Both || answer.Answers.Count == 1).Select(a => Sentence(assessment, a))), 0)).Append('\n');
         Table(text, answer);
         text.Append('\n').Append(ConsoleChart.Of(assessment, answer, ink)).Append('\n');
+        Rules(text, assessment, response, answer.Region);
         Facts(text, assessment, answer);
         Others(text, assessment, response, answer);
         Variants(text, assessment, response, answer.Region);
+    }
+
+    // Rules side by side, a row each; a single rule stands in the table above.
+    private static void Rules(StringBuilder text, Assessment assessment, ResponseResult response, RegionResult region)
+    {
+        IReadOnlyList<RuleRow> rows = RuleRow.Of(assessment, response.Response, region);
+        if (rows.Count < 2)
+        {
+            return;
+        }
+
+        const int NameLength = 31;
+        Modality[] modalities = [.. rows[0].Answer.Answers.Select(a => a.Modality).Where(m => m != Modality.Both)];
+        text.Append($"{"by rule",-NameLength}{string.Concat(modalities.Select(m => $"{Names.Of(m) + " trials",14}{"minutes",9}"))}\n");
+        foreach (RuleRow row in rows)
+        {
+            text.Append($"{row.Label,-NameLength}");
+            foreach (Modality modality in modalities)
+            {
+                ModalityAnswer? answer = row.Answer.Of(modality);
+                bool counted = answer is { HasCount: true };
+                string count = counted ? Say.Trials(answer!.Trials) : answer is { Outcome: Outcome.Silent } ? "silent" : answer is { Trials: not null } || answer?.Verdict.Chain.Count > 0 ? Say.OutOfReach : "-";
+                text.Append($"{count,14}{(counted && answer!.Minutes is { } m ? m < 0.1 ? "< 0.1" : Say.Minutes(m) : "-"),9}");
+            }
+
+            text.Append('\n');
+        }
+
+        text.Append('\n');
     }
 
     // A row each; change is that of the SNR in dB, the study's own row has none.
@@ -142,6 +179,11 @@ public static class ConsoleSummary
         foreach (ModalityAnswer a in answer.Answers)
         {
             string measure = a.Modality == Modality.Both ? "both" : a.Verdict.Measure;
+            if (measure == Names.RealisticFilter)
+            {
+                measure = "realistic";                          // the name in full would take a column of its own
+            }
+
             if (measure.Length > MeasureWidth)
             {
                 measure = measure[..(MeasureWidth - 3)] + "...";
@@ -158,7 +200,7 @@ public static class ConsoleSummary
         // A lone dipole in one direction has no spread to explain.
         if (answer.Answers.FirstOrDefault(a => a.Range().Length > 0) is { } spread)
         {
-            text.Append(WhyText.Wrap($"trials: median and 5 to 95 % over {Say.Spread(spread.Verdict.Direction)}, not over unknowns", 0));
+            text.Append(WhyText.Wrap($"trials: median and 5 to 95 % over {Say.Spread(spread.Verdict)}, not over unknowns", 0));
         }
     }
 
@@ -207,6 +249,7 @@ public static class ConsoleSummary
             text.Append(Fact($"{Names.Of(a.Modality)} at the published leak", $"{Say.Stated(leak.Leak)} of the strongest direction: {count}"));
         }
 
+        Chair(text, assessment, answer);
         ModalityAnswer[] missed = [.. answer.Answers.Where(a => a.Verdict.Missing is not null)];
         if (missed.Length > 0)
         {
@@ -255,6 +298,21 @@ public static class ConsoleSummary
         {
             text.Append(Fact("trials by electrodes chosen", string.Join(", ", milestones.Select(m => $"{m.Electrodes}: {Say.Trials(m.Trials)}"))));
             text.Append(Fact("best two electrodes", $"{chosen.Derivations[0].Name}, {Say.Trials(AttributionWords.Trials(chosen.Derivations[0].Trials, answer.Rule))} trials"));
+        }
+    }
+
+    // What the session's recording takes in the chair: a plan needs it beside the minutes of one average.
+    private static void Chair(StringBuilder text, Assessment assessment, RegionAnswer answer)
+    {
+        if (assessment.Study.Protocol is not { } p || (p.Conditions * p.Replications == 1 && p.Breaks is null && p.Preparation is null))
+        {
+            return;
+        }
+
+        string[] chairs = [.. answer.Answers.Where(a => a.HasCount && a.Target?.ChairMinutes?.P50 is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Minutes(a.Target!.ChairMinutes!.P50!.Value)} min")];
+        if (chairs.Length > 0)
+        {
+            text.Append(Fact("in the chair, all told", string.Join("   ", chairs)));
         }
     }
 

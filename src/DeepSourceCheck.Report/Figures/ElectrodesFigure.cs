@@ -28,13 +28,13 @@ public static class ElectrodesFigure
             $"{title}. {string.Join(" ", milestones.Take(4).Select(p => $"{Say.Plural(p.Electrodes, "electrode")}: {Say.Plural(p.Trials, "trial")}."))}",
             new FigureTable(["electrodes", "added", "trials, median"], [.. chosen.Steps.Select((s, k) => (IReadOnlyList<string>)[Say.Count(k + 1), s.Electrode, k == 0 ? "" : Say.Trials(AttributionWords.Trials(s.Trials, rule))])]),
             FullWidth: false,
-            width => Draw(width, assessment, points, milestones, chosen));
+            width => Draw(width, assessment, response.SessionTrials, points, milestones, chosen));
     }
 
-    private static FigureSheet Draw(int width, Assessment assessment, (int Electrodes, long Trials)[] points, IReadOnlyList<(int Electrodes, long Trials)> milestones, SensorChoiceResult chosen)
+    private static FigureSheet Draw(int width, Assessment assessment, long? sessionTrials, (int Electrodes, long Trials)[] points, IReadOnlyList<(int Electrodes, long Trials)> milestones, SensorChoiceResult chosen)
     {
         const float Left = 78, Right = 24, Top = 26, Bottom = 46, Height = 224;
-        long? session = assessment.SessionTrials is > 0 and var s ? s : null;
+        long? session = sessionTrials is > 0 and var s ? s : null;
         LogAxis axis = new([.. points.Select(p => (double)p.Trials), session ?? double.NaN]);
         int most = Math.Max(4, chosen.Steps.Count);
         FigureSheet sheet = new(width, (int)(Top + Height + Bottom), Left, Right, Top, Bottom);

@@ -5,10 +5,11 @@ namespace DeepSourceCheck.Report.Figures;
 /// <summary>All figures of an assessment, in the order of the page.</summary>
 public static class FigureSet
 {
-    /// <summary>Figures of one response: trials by each rule, variants, unknowns, electrodes, power, SNR, spectra of the noise, the cortical comparison.</summary>
+    /// <summary>Figures of one response: trials by each rule, the rules side by side, variants, unknowns, electrodes, power, SNR, spectra of the noise, the cortical comparison.</summary>
     public static IReadOnlyList<Figure> Of(Assessment assessment, int response)
     {
         ResponseResult result = assessment.Responses[response];
+        assessment = assessment.For(result);
         string suffix = assessment.Responses.Count > 1 ? $"-{response + 1}" : "";
         string[] rules = [.. assessment.Study.Targets.Select(Names.Of).Concat(result.Regions.SelectMany(r => r.Verdicts).Select(v => v.Rule)).Distinct()];
         List<Figure?> figures = [];
@@ -17,6 +18,7 @@ public static class FigureSet
             figures.Add(TrialsFigure.Make(assessment, result, rules[k], k == 0 ? $"trials{suffix}" : $"trials-{rules[k].Replace('_', '-')}{suffix}"));
         }
 
+        figures.Add(RuleFigure.Make(assessment, result, $"rules{suffix}"));
         figures.Add(VariantFigure.Make(assessment, result, $"variants{suffix}"));
         figures.Add(UnknownsFigure.Make(assessment, result, $"unknowns{suffix}"));
         figures.Add(ElectrodesFigure.Make(assessment, result, rules[0], $"electrodes{suffix}"));

@@ -42,7 +42,8 @@ public static class PowerFigure
         double? perMinute = assessment.Study.Protocol is { } p ? 60 * p.Rate * (1 - p.RejectedFraction) : null;
         string title = Title(assessment, lines, curve, power, perMinute);
         string joint = all.Length > lines.Length ? " Both together stay within 10 % of the better one and are not drawn." : "";
-        string from = stated is null ? "the study states no detection target: a false-alarm rate of 0.01 and the mark at 90 % are common practice" : "false-alarm rate, looks and power of the study's detection target";
+        string from = stated is null ? "the study states no detection target: a false-alarm rate of 0.01 and the mark at 90 % are common practice"
+            : stated is not { Topography: Topography.Known, CovarianceEstimated: false } ? "false-alarm rate, looks and power of the study's detection target; drawn as if pattern and noise were known, which bounds what it asks: its own counts stand in the figure of rules" : "false-alarm rate, looks and power of the study's detection target";
         return new Figure(
             name, title,
             $"Power of detection (%) against {(perMinute is null ? "accepted trials" : "minutes of recording")}",

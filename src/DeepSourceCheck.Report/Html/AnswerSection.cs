@@ -14,6 +14,7 @@ internal static class AnswerSection
     public static void Write(Markup html, Assessment assessment, int index)
     {
         ResponseResult response = assessment.Responses[index];
+        assessment = assessment.For(response);
         html.Open("section", "class", "answer", "id", index == 0 ? "answer" : $"answer-{index + 1}");
         if (response.Regions.Count == 0)
         {
@@ -48,7 +49,7 @@ internal static class AnswerSection
         string others = response.Regions.Count switch { 1 => "", 2 => "; one more region below", _ => $"; {response.Regions.Count - 1} more regions below" };
         html.Open("p", "class", "place").Element("b", assessment.Study.Title)
             .Text($"{stated.Name}, {first.Region}: {Say.Plural(first.Dipoles, "dipole")}, {Say.Strength(stated, first)} {Say.Direction(stated.Direction)}, "
-                + $"{Say.Convention(stated.Measured)}, {Say.Stated(stated.Band.Low)} to {Say.Stated(stated.Band.High)} Hz{others}").CloseLine();
+                + $"{Say.Convention(stated.Measured)}, {Say.Recorded(stated)}{(Say.Course(response) is { Length: > 0 } course ? "; " + course : "")}{others}").CloseLine();
     }
 
     private static void Strip(Markup html, Assessment assessment, RegionAnswer answer, int index)
@@ -226,9 +227,16 @@ internal static class AnswerSection
         foreach (string rule in rules)
         {
             html.Element("h3", $"By another target: {TrialsFigure.RuleWords(assessment, response.Response, rule)}", "class", "ruled", "style", "margin-top:28px");
-            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", ["region", "modality", "measure", "verdict", "range", "chance to miss"],
-                response.Regions.SelectMany(r => new RegionAnswer(assessment, response.Response, r, rule).Answers.Select(a => (IReadOnlyList<string>)
-                    [r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range(), a.Verdict.Missing is { } miss ? Say.Chance(miss) : ""])));
+            string[] columns = ["region", "modality", "measure", "verdict", "range", "chance to miss"];
+            string[][] rows =
+            [
+                .. response.Regions.SelectMany(r => new RegionAnswer(assessment, response.Response, r, rule).Answers.Select(a => new[]
+                {
+                    r.Region, RegionAnswer.Words(a.Modality), a.Reading(), a.Line(), a.Range(), a.Verdict.Missing is { } miss ? Say.Chance(miss) : "",
+                })),
+            ];
+            int[] filled = [.. Enumerable.Range(0, columns.Length).Where(k => rows.Any(row => row[k].Length > 0))];
+            HtmlReport.Table(html, $"Verdicts by {Say.RuleKey(rule)}", [.. filled.Select(k => columns[k])], rows.Select(row => (IReadOnlyList<string>)[.. filled.Select(k => row[k])]));
         }
     }
 }

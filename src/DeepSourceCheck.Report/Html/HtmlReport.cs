@@ -35,6 +35,7 @@ public static class HtmlReport
             AnswerSection.Write(html, assessment, k);
         }
 
+        RuleSection.Write(html, assessment);
         UnknownsSection.Write(html, assessment);
         AttributionSection.Write(html, assessment);
         VariantSection.Write(html, assessment);

@@ -77,6 +77,22 @@ public static class AssessmentJson
     {
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
+        if (response.Response.Steady is not null)
+        {
+            json.WriteCount("session_trials", response.SessionTrials);
+        }
+
+        if (response.Waveform is { } waveform)
+        {
+            json.WriteStartObject("waveform");
+            json.WriteString("description", waveform.Description);
+            json.WriteFigure("jitter_ms", waveform.Jitter * 1000);
+            json.WriteFigure("peak_kept", waveform.Kept);
+            json.WriteFigure("peak_loss_db", waveform.LossDb);
+            json.WriteFigure("energy_ms", waveform.Energy * 1000);
+            json.WriteEndObject();
+        }
+
         json.WriteArray("regions", response.Regions, (j, r) => WriteRegion(j, r, response, assessment));
         json.WriteArray("noise_spectra", response.Spectra, WriteSpectrum);
         json.WriteEndObject();
@@ -278,13 +294,7 @@ public static class AssessmentJson
     {
         json.WriteStartObject();
         json.WriteString("rule", target.Rule);
-        json.WriteStartObject("trials");
-        json.WriteCount("p05", target.Trials.P05);
-        json.WriteCount("p25", target.Trials.P25);
-        json.WriteCount("p50", target.Trials.P50);
-        json.WriteCount("p75", target.Trials.P75);
-        json.WriteCount("p95", target.Trials.P95);
-        json.WriteEndObject();
+        WriteCounts(json, "trials", target.Trials);
         if (target.Minutes is { } minutes)
         {
             WritePercentiles(json, "minutes", minutes);
@@ -292,6 +302,21 @@ public static class AssessmentJson
         else
         {
             json.WriteNull("minutes");
+        }
+
+        if (target.Presented is { } presented)
+        {
+            WriteCounts(json, "presented_trials", presented);
+        }
+
+        if (target.ChairMinutes is { } chair)
+        {
+            WritePercentiles(json, "chair_minutes", chair);
+        }
+
+        if (target.Weighted is { } weighted)
+        {
+            WriteCounts(json, "weighted_trials", weighted);
         }
 
         json.WriteFigure("smallest_nAm", target.SmallestMoment is { } q ? Si.ToNanoAmpereMetres(q) : null);
@@ -308,6 +333,17 @@ public static class AssessmentJson
             json.WriteString("reason", target.Reason);
         }
 
+        json.WriteEndObject();
+    }
+
+    private static void WriteCounts(Utf8JsonWriter json, string name, CountPercentiles counts)
+    {
+        json.WriteStartObject(name);
+        json.WriteCount("p05", counts.P05);
+        json.WriteCount("p25", counts.P25);
+        json.WriteCount("p50", counts.P50);
+        json.WriteCount("p75", counts.P75);
+        json.WriteCount("p95", counts.P95);
         json.WriteEndObject();
     }
 
@@ -335,6 +371,24 @@ public static class AssessmentJson
         }
 
         json.WriteFigure("assurance", verdict.Assurance);
+        if (verdict.Averaging is { } averaging)
+        {
+            json.WriteStartObject("averaging");
+            json.WriteFigure("effective_share", averaging.ShareAtTrials);
+            json.WriteFigure("effective_share_of_session", averaging.ShareAtSession);
+            if (averaging.ShareUnjittered is { } regular)
+            {
+                json.WriteFigure("effective_share_without_jitter", regular);
+            }
+
+            if (averaging.Reason is not null)
+            {
+                json.WriteString("reason", averaging.Reason);
+            }
+
+            json.WriteEndObject();
+        }
+
         json.WriteFigure("missing_probability", verdict.Missing);
         if (verdict.AtMoments is { } range)
         {

@@ -15,7 +15,7 @@ public static class RegionsCsv
     public const string Header =
         "response,region,dipoles,dropped,modality,direction,measure,rule,peak_amplitude,peak_unit,peak_channel,"
         + "snr_db_p05,snr_db_p25,snr_db_p50,snr_db_p75,snr_db_p95,trials_p05,trials_p25,trials_p50,trials_p75,trials_p95,"
-        + "minutes_p05,minutes_p25,minutes_p50,minutes_p75,minutes_p95,smallest_nAm,smallest_amplitude,leak,leak_snr_db_p50,leak_trials_p50,reason";
+        + "minutes_p05,minutes_p25,minutes_p50,minutes_p75,minutes_p95,smallest_nAm,smallest_amplitude,leak,leak_snr_db_p50,leak_trials_p50,presented_p50,chair_minutes_p50,weighted_trials_p50,reason";
 
     /// <summary>The whole table.</summary>
     public static string Text(Assessment assessment)
@@ -68,6 +68,7 @@ public static class RegionsCsv
             .. Cells(row.SnrDb), Cell(n.P05), Cell(n.P25), Cell(n.P50), Cell(n.P75), Cell(n.P95), .. Cells(target.Minutes),
             Cell(target.SmallestMoment is { } q ? Si.ToNanoAmpereMetres(q) : null), Cell(target.SmallestAmplitude),
             Cell(leak?.Leak), Cell(leak?.SnrDb.P50), Cell(leakTarget?.Trials.P50),
+            Cell(target.Presented?.P50), Cell(target.ChairMinutes?.P50), Cell(target.Weighted?.P50),
             CsvField.Quote(string.Join("; ", new[] { row.Reason, target.Reason }.OfType<string>().Distinct())),
         ];
     }

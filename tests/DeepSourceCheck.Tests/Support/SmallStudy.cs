@@ -48,6 +48,19 @@ internal sealed record SmallStudy
 
     public double? ComponentFrequency { get; init; }
 
+    public Band Band { get; init; } = new(1, 100);
+
+    public WaveformChoice? Waveform { get; init; }
+
+    public double Jitter { get; init; }
+
+    public SteadyState? Steady { get; init; }
+
+    public double PlaceError { get; init; }
+
+    /// <summary>Noise in place of the covariances.</summary>
+    public NoiseModel? Noise { get; init; }
+
     public Vec3? Given { get; init; }
 
     public DirectionName Direction { get; init; } = DirectionName.Given;
@@ -105,7 +118,11 @@ internal sealed record SmallStudy
             Shares = Shares,
             Lags = Lags,
             ComponentFrequency = ComponentFrequency,
-            Band = new Band(1, 100),
+            Band = Steady?.Bin ?? Band,
+            Steady = Steady,
+            Waveform = Waveform,
+            Jitter = Jitter,
+            PlaceError = PlaceError,
             Measured = Measured,
             Together = Together,
             Direction = new DirectionChoice(Given is null && Direction == DirectionName.Given ? DirectionName.Isotropic : Direction, Given),
@@ -134,7 +151,8 @@ internal sealed record SmallStudy
             MegNames = [.. Enumerable.Range(0, m).Select(k => $"M{k}")],
             MegKinds = [.. Enumerable.Repeat(CoilKind.Magnetometer, m)],
             MegReported = m > 0,
-            Noise = new NoiseModel
+            NearestPoint = PointNear,
+            Noise = Noise ?? new NoiseModel
             {
                 EegRows = n,
                 MegRows = m,
@@ -153,6 +171,8 @@ internal sealed record SmallStudy
             })],
         };
     }
+
+    private int PointNear(Vec3 place) => Enumerable.Range(0, Points).MinBy(p => ((Positions?[p] ?? new Vec3(0.01 * p, 0.02, 0.03)) - place).Norm);
 
     public RegionResult Assess(IDipoleSink? sink = null) => AssessAll(sink)[0];
 

@@ -66,6 +66,23 @@ public sealed class ImportedLeadfield : ILeadfieldSource
     /// <summary>Index of a point by its name, or -1.</summary>
     public int IndexOf(string pointName) => _indexByName.GetValueOrDefault(pointName, -1);
 
+    /// <summary>Index of the usable point nearest to a place [m], the first among equals.</summary>
+    public int Nearest(Vec3 place)
+    {
+        int nearest = -1;
+        double least = double.PositiveInfinity;
+        for (int n = 0; n < Points.Count; n++)
+        {
+            Vec3 d = Points[n].Position - place;
+            if (Points[n].WhyUnusable is null && Vec3.Dot(d, d) < least)
+            {
+                (nearest, least) = (n, Vec3.Dot(d, d));
+            }
+        }
+
+        return nearest;
+    }
+
     /// <inheritdoc/>
     /// <exception cref="ArgumentException">A lane carries no index of an imported point, or the block has other numbers of rows.</exception>
     public void Fill(LeadfieldBlock block)

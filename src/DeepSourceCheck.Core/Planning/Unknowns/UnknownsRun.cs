@@ -25,7 +25,9 @@ internal sealed class UnknownsRun
     private readonly int _samples;
     private readonly Func<HeadPerturbation, ILeadfieldSource>? _sources;
     private readonly PerturbedReadings _reader;
-    private readonly MeasureReadings[] _nominal;
+    private readonly PerturbedReadings? _matchedReader;
+    private readonly EvaluationPlan? _matched;
+    private readonly MeasureReadings[] _nominal, _matchedNominal = [];
     private readonly (IMeasure Measure, int Rule)[] _verdicts;
     private readonly int _knownReading;
 
@@ -35,7 +37,9 @@ internal sealed class UnknownsRun
     /// <param name="nominal">Its leadfields.</param>
     /// <param name="region">The region.</param>
     /// <param name="parts">Its parts where regions act together.</param>
-    public UnknownsRun(StudySetup setup, EvaluationPlan plan, IHead head, ILeadfieldSource nominal, FilledRegion region, IReadOnlyList<FilledRegion> parts)
+    /// <param name="matched">The same against the noise as a filter sees it that knows the waveform, for the rules that stand on it; null where none is known.</param>
+    public UnknownsRun(
+        StudySetup setup, EvaluationPlan plan, IHead head, ILeadfieldSource nominal, FilledRegion region, IReadOnlyList<FilledRegion> parts, EvaluationPlan? matched = null)
     {
         UnknownsChoice choice = setup.Study.Unknowns!;
         _setup = setup;
@@ -60,6 +64,12 @@ internal sealed class UnknownsRun
 
         _reader = new PerturbedReadings(plan, head, nominal, region, measures);
         _nominal = _reader.Read(nominal);
+        if (matched is not null)
+        {
+            _matched = matched;
+            _matchedReader = new PerturbedReadings(matched, head, nominal, region, [.. VerdictWriter.Measures(matched)]);
+            _matchedNominal = _matchedReader.Read(nominal);
+        }
     }
 
     /// <summary>Computes.</summary>
@@ -84,16 +94,28 @@ internal sealed class UnknownsRun
     /// <param name="draw">The draw.</param>
     public double[] Effective(Draw draw)
     {
-        MeasureReadings[] readings = draw.Head is { } head && _sources is not null ? _reader.Read(_sources(head)) : _nominal;
-        double moment = _plan.Response.Moment * draw.MomentFactor;
+        MeasureReadings[] readings = _nominal, matched = _matchedNominal;
+        if (draw.Head is { } head && _sources is not null)
+        {
+            ILeadfieldSource source = _sources(head);
+            (readings, matched) = (_reader.Read(source), _matchedReader?.Read(source) ?? []);
+        }
+
+        double factor = draw.MomentFactor;
         if (_knownReading >= 0)
         {
             // The amplitude is what is known: under another head another moment reads it.
-            moment *= Math.Sqrt(_nominal[_knownReading].MedianPower / readings[_knownReading].MedianPower);
+            factor *= Math.Sqrt(_nominal[_knownReading].MedianPower / readings[_knownReading].MedianPower);
         }
 
-        double squared = moment * moment, noise = draw.NoiseFactor * draw.NoiseFactor;
-        return [.. _verdicts.Select((v, k) => readings[MeasureIndex(v.Measure)].Effective(Rule(k), squared, noise))];
+        double noise = draw.NoiseFactor * draw.NoiseFactor;
+        return [.. _verdicts.Select((v, k) =>
+        {
+            // Measures of verdicts stand first in both, in the same order.
+            bool spectral = _matched is not null && !_plan.Counts(v.Rule);
+            double moment = (spectral ? _matched!.ReadMoment : _plan.ReadMoment) * factor;
+            return (spectral ? matched : readings)[MeasureIndex(v.Measure)].Effective(Rule(k), moment * moment, noise);
+        })];
     }
 
     /// <summary>Trials as a real number; infinite where out of reach.</summary>

@@ -22,7 +22,7 @@ internal sealed class PreparedText : IDisposable
         noise: {eeg_sensor_uV_rms: 2, meg_sensor_fT_rms: 200}
         regions: [{name: probe, points: points.tsv}]
         responses: [{name: r, regions: [probe], moment_nAm: 10, band_Hz: [1, 100], direction: tangential}]
-        protocol: {rate_per_s: 10, session_min: 60}
+        protocol: {rate_per_s: 7.3, session_min: 60}
         """;
 
     /// <summary>Three electrodes and four magnetometers around one point, as imported leadfields.</summary>

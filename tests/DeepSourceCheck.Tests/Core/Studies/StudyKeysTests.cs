@@ -63,6 +63,7 @@ public class StudyKeysTests
         ["_uV_rms"] = "uV",
         ["_fT_rms"] = "fT",
         ["_nV"] = "nV",
+        ["_s"] = "s",
     };
 
     [Fact]
@@ -79,9 +80,21 @@ public class StudyKeysTests
         "responses[].lags_ms",
         // A search that costs time.
         "responses[].choose_sensors",
+        "responses[].waveform.gaussian_fwhm_ms",
+        "responses[].place_error_mm",
+        "responses[].baseline_s",
+        "sensors.trigger",
+        // The exact critical value instead of a rounded one, and averaging as it really is.
+        "target.variance_ratio.alpha",
+        "protocol.interval_jitter_ms",
+        "noise.spread_between_trials",
         // The default brain exceeds a usual total at 1 to 40 Hz, and rooms are not white.
         "noise.brain.scale",
         "noise.environment.corner_Hz",
+        // The exact critical value instead of a rounded one, and averaging as it really is.
+        "target.variance_ratio.alpha",
+        "protocol.interval_jitter_ms",
+        "noise.spread_between_trials",
     ];
 
     [Fact]
@@ -131,6 +144,7 @@ public class StudyKeysTests
         bool admitted = pair.Default.Value switch
         {
             double number => pair.Key.Shapes.OfType<NumberShape>().Any(s => s.Admits(number)),
+            double[] { Length: 2 } band => pair.Key.Shapes.OfType<BandShape>().Any(s => band.All(s.Each.Admits) && band[0] < band[1]),
             double[] numbers => pair.Key.Shapes.OfType<VectorShape>().Any(s => s.Count == numbers.Length && numbers.All(s.Each.Admits)),
             string word => pair.Key.Shapes.OfType<ChoiceShape>().Any(s => s.Words.Contains(word)) || (pair.Key.Shapes.OfType<FlagShape>().Any() && word is "true" or "false") || pair.Default.For == "derivation",
             _ => false,

@@ -1,4 +1,3 @@
-using System.Diagnostics;
 using System.Globalization;
 
 using DeepSourceCheck.Core.Geometry;
@@ -50,7 +49,7 @@ public sealed class AtlasVolumesTests
     [FactIfPresent(Need, Templates, Python, Library)]
     public void EveryLabelOfEveryVolume_HasTheVoxelsVolumeAndCentroidOfAnIndependentReader()
     {
-        string[][] lines = [.. Run(Python, "-c", Script, Templates).Split('\n', StringSplitOptions.RemoveEmptyEntries).Select(l => l.Split(' '))];
+        string[][] lines = [.. ProcessText.Of(Python, "-c", Script, Templates).Split('\n', StringSplitOptions.RemoveEmptyEntries).Select(l => l.Split(' '))];
         string[] files = [.. Directory.GetFiles(Templates, "*.nii.gz").Order(StringComparer.Ordinal).Select(f => Path.GetFileName(f)!)];
         Assert.True(files.Length >= 13, $"{files.Length} volumes");
         Assert.Equal(files, lines.Select(l => l[0]).Distinct());
@@ -101,16 +100,5 @@ public sealed class AtlasVolumesTests
             .Where(f => NiftiReader.ReadHeader(f, f).Warnings.Any(w => w.Contains("disagree", StringComparison.Ordinal))).Select(f => Path.GetFileName(f).Split('.')[0])];
         Assert.Equal(
             ["AICHAmc", "HarvardOxford-cort-maxprob-thr0-1mm", "JHU-WhiteMatter-labels-1mm", "JHU-WhiteMatter-labels-2mm", "inia19-NeuroMaps", "jhu189", "natbrainlab"], said);
-    }
-
-    private static string Run(string program, params string[] arguments)
-    {
-        ProcessStartInfo start = new(program, arguments) { RedirectStandardOutput = true, RedirectStandardError = true };
-        using Process process = Process.Start(start)!;
-        Task<string> error = process.StandardError.ReadToEndAsync();
-        string output = process.StandardOutput.ReadToEnd();
-        process.WaitForExit();
-        Assert.True(process.ExitCode == 0, error.Result);
-        return output;
     }
 }

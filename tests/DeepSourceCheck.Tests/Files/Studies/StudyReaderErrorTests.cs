@@ -43,7 +43,7 @@ public class StudyReaderErrorTests
     [InlineData("small", "moment_nAm: 3.5", "moment_nAm: 3.5\n    rate_per_s: 4", "responses.wave V.rate_per_s", "does not belong here|protocol.rate_per_s")]
     [InlineData("small", "title: small", "tilte: small", "tilte", "unknown key 'tilte'|nearest known one is title")]
     [InlineData("small", "    moment_nAm: 3.5\n", "", "responses.wave V.moment_nAm", "is missing|nAm")]
-    [InlineData("small", "    band_Hz: [100, 1500]\n", "", "responses.wave V.band_Hz", "is missing|two numbers|[100, 1500]")]
+    [InlineData("small", "    band_Hz: [100, 1500]\n", "", "responses.wave V.band_Hz", "is missing|the band|[100, 1500]")]
     [InlineData("small", "head: {spheres: {preset: adult-4}}\n", "", "head", "is missing")]
     [InlineData("small", "rate_per_s: 11.1", "rejected_fraction: 0.1", "protocol.rate_per_s", "is missing")]
     [InlineData("small", "rate_per_s: 11.1", "rate_per_s: 11.1, rejected_fraction: 1", "protocol.rejected_fraction", "out of range|to below 1")]
@@ -107,7 +107,7 @@ public class StudyReaderErrorTests
     [InlineData("small", "direction: tangential", "component_Hz: 50", "responses.wave V.component_Hz", "50 Hz lies outside|100 to 1500 Hz")]
     [InlineData("small", "direction: tangential", "measure: {eeg: Cz-M2}", "responses.wave V.measure.eeg", "'Cz-M2'|Cz-mastoids, Cz-M1")]
     [InlineData("small", "direction: tangential", "measure: {eeg: channel-mean}", "responses.wave V.measure.eeg", "a verdict never stands on it")]
-    [InlineData("small", "direction: tangential", "measure: {meg: Cz-M1}", "responses.wave V.measure.meg", "best-channel or matched-filter")]
+    [InlineData("small", "direction: tangential", "measure: {meg: Cz-M1}", "responses.wave V.measure.meg", "best-channel, matched-filter or realistic-filter")]
     [InlineData("small", "direction: tangential", "direction: tangential\n  - {name: wave V, regions: [pons], moment_nAm: 1, band_Hz: [100, 1500]}", "responses[1].name", "'wave V' stands twice")]
     // plausibility
     [InlineData("small", "moment_nAm: 3.5", "moment_nAm: 3500", "responses.wave V.moment_nAm", "3500 nAm|0.05 to 300|`responses.wave V.moment_nAm` to accept_implausible")]

@@ -1,0 +1,136 @@
+using DeepSourceCheck.Core.Results;
+using DeepSourceCheck.Report.Answers;
+
+namespace DeepSourceCheck.Report.Figures;
+
+/// <summary>Trials by every rule of the study, one row each, on one logarithmic axis: median and 5 to 95 % over dipoles.</summary>
+public static class RuleFigure
+{
+    private const int MostRegions = 12;
+    private const float Heading = 24, Row = 44, RegionGap = 16;
+
+    /// <summary>The figure for one response; null with a single rule or no count.</summary>
+    public static Figure? Make(Assessment assessment, ResponseResult response, string name)
+    {
+        if (assessment.Study.Targets.Count < 2)
+        {
+            return null;
+        }
+
+        RegionRows[] regions =
+        [
+            .. response.Regions.Take(MostRegions).Select(r => new RegionRows(r.Region, RuleRow.Of(assessment, response.Response, r))).Where(r => r.Rows.Any(row => Singles(row).Any())),
+        ];
+        if (regions.Length == 0)
+        {
+            return null;
+        }
+
+        ModalityAnswer[] all = [.. regions.SelectMany(r => r.Rows).SelectMany(Singles)];
+        LogAxis axis = new(all.SelectMany(a => new double?[] { a.Target!.Trials.P05, a.Trials, a.Target.Trials.P95 }).OfType<double>().Append(assessment.SessionTrials ?? double.NaN));
+        string title = Title(regions);
+        string left = response.Regions.Count > MostRegions ? $" The first {MostRegions} of {response.Regions.Count} regions." : "";
+        return new Figure(
+            name, title,
+            "Accepted trials against rule",
+            $"{response.Response.Name}; {Say.Direction(response.Response.Direction)}; {Say.Moment(response.Response.Moment)}{TrialsFigure.Protocol(assessment)}. "
+            + $"Mark: median over the region's dipoles; line: 5 to 95 % of them. Readable, detected and quiet are different promises.{left}",
+            $"{title}. {string.Join(" ", regions[0].Rows.Select(r => $"{r.Label}: {string.Join(", ", Singles(r).Select(a => $"{Names.Of(a.Modality)} {Say.Trials(a.Trials)}"))}."))}",
+            Table(response, regions), FullWidth: false,
+            width => Draw(width, assessment, regions, axis));
+    }
+
+    private static IEnumerable<ModalityAnswer> Singles(RuleRow row) => row.Answer.Answers.Where(a => a.Modality != Modality.Both && a is { HasCount: true, Trials: not null });
+
+    private static string Title(RegionRows[] regions)
+    {
+        foreach (Modality modality in new[] { Modality.Eeg, Modality.Meg })
+        {
+            long[] counts = [.. regions[0].Rows.SelectMany(Singles).Where(a => a.Modality == modality).Select(a => a.Trials!.Value)];
+            if (counts.Length > 1)
+            {
+                return $"By rule, {Names.Of(modality)} needs {Say.Trials(counts.Min())} to {Say.Trials(counts.Max())} trials";
+            }
+        }
+
+        return "Only one rule gives a count";
+    }
+
+    private static FigureTable Table(ResponseResult response, RegionRows[] regions) => new(
+        ["region", "rule", "promise", "modality", "trials, 5 %", "trials, median", "trials, 95 %", "presented", "minutes"],
+        [.. from region in regions
+            from row in region.Rows
+            from a in row.Answer.Answers
+            select (IReadOnlyList<string>)
+            [
+                region.Region, Say.Rule(row.Target, response.Response.Measured), row.Promise, Names.Of(a.Modality),
+                a.HasCount ? Say.Trials(a.Target!.Trials.P05) : "", a.HasCount ? Say.Trials(a.Trials) : a.Line(), a.HasCount ? Say.Trials(a.Target!.Trials.P95) : "",
+                a.HasCount && a.Target!.Presented?.P50 is { } presented ? Say.Trials(presented) : "", a.HasCount && a.Minutes is { } m ? Say.Minutes(m) : "",
+            ]]);
+
+    private static FigureSheet Draw(int width, Assessment assessment, RegionRows[] regions, LogAxis axis)
+    {
+        const float Right = 34, Top = 40, Bottom = 46;
+        float gutter = Math.Min(0.4f * width, 16 + regions.SelectMany(r => r.Rows).Max(r => FigurePen.Width(r.Label, FigurePen.Small)) + 16);
+        float rows = regions.Sum(r => Heading + r.Rows.Count * Row) + (regions.Length - 1) * RegionGap + 10;
+        FigureSheet sheet = new(width, (int)(Top + rows + Bottom), gutter, Right, Top, Bottom);
+        double? session = TrialsFigure.OnTrials(sheet, axis, assessment);
+        sheet.Over(pen =>
+        {
+            pen.Text("accepted trials", 16, pen.Bottom + 36, FigurePen.Small, colour: Palette.Ink2);
+            if (session is { } x)
+            {
+                SessionLine.Draw(pen, pen.X(x), 20, SessionLine.Label(assessment));
+            }
+
+            float y = pen.Top + 4;
+            foreach (RegionRows region in regions)
+            {
+                pen.Text(FigurePen.Fit(region.Region, width - 32, FigurePen.Label, true), 16, y + 14, semiBold: true, halo: true);
+                y += Heading;
+                foreach (RuleRow row in region.Rows)
+                {
+                    pen.Text(FigurePen.Fit(row.Label, gutter - 26, FigurePen.Small), 16, y + Row / 2 + 4, FigurePen.Small, colour: Palette.Ink2);
+                    Marks(pen, axis, row, y);
+                    pen.Line(pen.Left, y + Row, pen.Right, y + Row, Palette.Hair, 1);
+                    y += Row;
+                }
+
+                y += RegionGap;
+            }
+        });
+        return sheet;
+    }
+
+    // EEG in the upper half of the row, MEG in the lower: their labels never meet.
+    private static void Marks(FigurePen pen, LogAxis axis, RuleRow row, float top)
+    {
+        foreach (Modality modality in new[] { Modality.Eeg, Modality.Meg })
+        {
+            float y = top + (modality == Modality.Eeg ? 13 : 31);
+            if (row.Answer.Of(modality) is not { } answer)
+            {
+                continue;
+            }
+
+            if (!answer.HasCount || answer.Trials is not { } trials)
+            {
+                string none = answer.Outcome == Outcome.Silent ? "silent in this direction" : answer.Trials is null && answer.Verdict.Text.Contains(": no count", StringComparison.Ordinal) ? "has no count by this rule" : Say.OutOfReach;
+                pen.Text($"{Names.Of(modality)} {none}", pen.Right - 4, y + 4, FigurePen.Small, Anchor.End, halo: true);
+                continue;
+            }
+
+            float x = At(trials), low = At(answer.Target!.Trials.P05 ?? trials), high = answer.Target.Trials.P95 is { } most ? At(most) : pen.Right;
+            pen.Line(low, y, high, y, Palette.Of(modality), 3);
+            pen.Mark(modality, x, y, scale: 0.85f);
+            string words = Say.Trials(trials);
+            float left = Math.Min(low, x) - 9, right = Math.Max(high, x) + 9, room = FigurePen.Width(words, FigurePen.Small);
+            bool after = right + room <= pen.Right + 26 || left - room < pen.Left;
+            pen.Text(words, after ? right : left, y + 4, FigurePen.Small, after ? Anchor.Start : Anchor.End, halo: true);
+        }
+
+        float At(long count) => pen.X(Math.Clamp(Math.Log10(count), axis.Low, axis.High));
+    }
+
+    private sealed record RegionRows(string Region, IReadOnlyList<RuleRow> Rows);
+}
