@@ -19,7 +19,7 @@ namespace DeepSourceCheck.Core.Planning;
 internal sealed class LocationReport(StudySetup setup, EvaluationPlan plan)
 {
     private const double EegModelError = 0.008, MegModelError = 0.003;
-    private const string ModelSource = "skull phantom, mean over 32 dipoles: EEG 7 to 8 mm, MEG 3 mm [Leahy et al. 1998]";
+    private const string ModelSource = "skull phantom, mean over 32 dipoles: EEG 7 to 8 mm, MEG 3 mm; Leahy et al. 1998";
 
     private const int MostDipoles = 64, MostDirections = 16;
 
@@ -96,7 +96,7 @@ internal sealed class LocationReport(StudySetup setup, EvaluationPlan plan)
 
     private IReadOnlyList<DerivedNumber> Chain(double oneTrial, Percentiles bound, double model, Percentiles error) => bound.P50 is not { } b ? [] :
     [
-        new("d", "bound of the location from one trial, median over dipoles and directions", Si.ToMm(oneTrial), "mm", "", "Cramer-Rao bound, unknown moment [Mosher et al. 1993]", Grade.Memory),
+        new("d", "bound of the location from one trial, median over dipoles and directions", Si.ToMm(oneTrial), "mm", "", "Cramer-Rao bound for an unknown moment, Mosher et al. 1993", Grade.Memory),
         new("N", "trials of the session", plan.SessionTrials!.Value, "", "", "protocol", null),
         new("B", "bound from the session", Si.ToMm(b), "mm", "d / sqrt(N)", "independent trials", Grade.Derived),
         new("g", "error of the head's model", Si.ToMm(model), "mm", "", ModelSource, Grade.Seen),
