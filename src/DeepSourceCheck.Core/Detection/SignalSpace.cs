@@ -193,12 +193,12 @@ public sealed class SignalSpace
     }
 
     /// <summary>
-    /// What remains of the filter's power when the covariance came from nu independent samples of p channels: the inverse is too large by nu/(nu-p-1), and a filter made from it keeps
+    /// What remains of the filter's power [share, without unit] when the covariance came from nu independent samples of p channels: the inverse is too large by nu/(nu-p-1), and a filter made from it keeps
     /// (nu-p+2)/(nu+1) of the ideal power. Source: Reed, Mallett and Brennan 1974, IEEE Trans Aerosp Electron Syst 10:853 (from memory).
     /// </summary>
     /// <param name="samples">nu, or null for an exact covariance.</param>
     /// <param name="rank">p.</param>
-    private static double Correction(double? samples, int rank) =>
+    public static double Correction(double? samples, int rank) =>
         samples is { } nu ? (nu - rank - 1) / nu * Kept(nu, rank) : 1;
 
     private static double Kept(double? samples, int rank) => samples is { } nu ? (nu - rank + 2) / (nu + 1) : 1;

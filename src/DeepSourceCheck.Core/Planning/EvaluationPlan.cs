@@ -179,9 +179,18 @@ public sealed class EvaluationPlan
     public EvaluationPlan WithWindow(double windowPerPeak)
     {
         var plan = (EvaluationPlan)MemberwiseClone();
+        plan.WindowPerPeak = windowPerPeak;
         plan._rules = Bound(windowPerPeak);
         return plan;
     }
+
+    /// <summary>Rms over the window per peak amplitude that the rules know, without unit; NaN where they do not.</summary>
+    public double WindowPerPeak { get; private set; } = double.NaN;
+
+    /// <summary>The same plan against other noise.</summary>
+    /// <param name="space">The same channels under that noise.</param>
+    public EvaluationPlan Against(SignalSpace space) =>
+        new EvaluationPlan(Response, space, Targets, Protocol, MegReported, Directions.Contains(DirectionName.QuasiRadial), View) { WeightingGain = WeightingGain }.WithWindow(WindowPerPeak);
 
     private Dictionary<IMeasure, IReadOnlyList<ITargetRule>> Bound(double windowPerPeak) => Measures.ToDictionary(m => m, m =>
     {

@@ -257,6 +257,7 @@ public static class ConsoleSummary
             text.Append(Fact("chance to miss it", string.Join(", ", missed.Select(a => $"{Names.Of(a.Modality)} {Say.Chance(a.Verdict.Missing!.Value)}"))));
         }
 
+        Attribution(text, answer);
         double?[] sure = [.. answer.Answers.Select(a => a.Verdict.Assurance)];
         text.Append(Fact("how sure", sure.Any(s => s is not null)
             ? string.Join(", ", answer.Answers.Where(a => a.Verdict.Assurance is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Assurance(a.Verdict.Assurance!.Value)}"))
@@ -273,6 +274,31 @@ public static class ConsoleSummary
             {
                 text.Append(WhyText.Wrap(first.Flip + ".", 0));
             }
+        }
+    }
+
+    private static void Attribution(StringBuilder text, RegionAnswer answer)
+    {
+        if (answer.Region.Competitors is { } competitors)
+        {
+            text.Append(Fact("with others active", AttributionWords.Sources(competitors)));
+            foreach (CompetitorReading reading in competitors.Readings.Where(r => r.IsVerdict && r.Modality != Modality.Both))
+            {
+                CompetitorCount? count = reading.Counts.FirstOrDefault(c => c.Rule == answer.Rule);
+                string trials = count is null ? "" : $"{Say.Trials(count.Trials.P50)} trials for {Say.Trials(count.Without)}, ";
+                text.Append(Fact($"  {Names.Of(reading.Modality)}", $"{trials}{(reading.PowerLeftDb.P50 is { } db ? $"{Say.SignedDecibels(db)} dB" : "nothing left")}"));
+            }
+        }
+
+        if (answer.Region.Location is { Bounds: { Count: > 0 } bounds })
+        {
+            text.Append(Fact("location error in the session", string.Join(", ", bounds.Where(b => b.Modality != Modality.Both || bounds.Count == 1).Select(b => $"{Names.Of(b.Modality)} {AttributionWords.Error(b)}"))));
+        }
+
+        if (answer.Region.Electrodes is { } chosen && AttributionWords.Milestones(chosen, answer.Rule) is { Count: > 0 } milestones)
+        {
+            text.Append(Fact("trials by electrodes chosen", string.Join(", ", milestones.Select(m => $"{m.Electrodes}: {Say.Trials(m.Trials)}"))));
+            text.Append(Fact("best two electrodes", $"{chosen.Derivations[0].Name}, {Say.Trials(AttributionWords.Trials(chosen.Derivations[0].Trials, answer.Rule))} trials"));
         }
     }
 

@@ -252,6 +252,7 @@ public static class AssessmentJson
             UnknownsJson.Write(json, unknowns);
         }
 
+        AttributionJson.Write(json, region);
         json.WriteRealisticHeads(region.RealisticHeads);
         json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();

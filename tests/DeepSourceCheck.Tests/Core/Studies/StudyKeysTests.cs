@@ -79,6 +79,8 @@ public class StudyKeysTests
     [
         "responses[].shares",
         "responses[].lags_ms",
+        // A search that costs time.
+        "responses[].choose_sensors",
         "responses[].waveform.gaussian_fwhm_ms",
         "responses[].place_error_mm",
         "responses[].baseline_s",
