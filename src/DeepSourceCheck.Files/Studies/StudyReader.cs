@@ -84,6 +84,7 @@ public static class StudyReader
         PlanBinder.CheckRate(responses, protocol, reading);
         PlanBinder.CheckFrequencies(responses, reading);
         EffectCheck.Warn(root, responses, targets, noise, reading);
+        RateCurveBinder.Check(responses, root, protocol, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
         {

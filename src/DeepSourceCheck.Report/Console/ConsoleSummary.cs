@@ -251,12 +251,14 @@ public static class ConsoleSummary
         }
 
         Chair(text, assessment, answer);
+        Protocol(text, assessment, answer);
         ModalityAnswer[] missed = [.. answer.Answers.Where(a => a.Verdict.Missing is not null)];
         if (missed.Length > 0)
         {
             text.Append(Fact("chance to miss it", string.Join(", ", missed.Select(a => $"{Names.Of(a.Modality)} {Say.Chance(a.Verdict.Missing!.Value)}"))));
         }
 
+        Attribution(text, answer);
         double?[] sure = [.. answer.Answers.Select(a => a.Verdict.Assurance)];
         text.Append(Fact("how sure", sure.Any(s => s is not null)
             ? string.Join(", ", answer.Answers.Where(a => a.Verdict.Assurance is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Assurance(a.Verdict.Assurance!.Value)}"))
@@ -276,6 +278,31 @@ public static class ConsoleSummary
         }
     }
 
+    private static void Attribution(StringBuilder text, RegionAnswer answer)
+    {
+        if (answer.Region.Competitors is { } competitors)
+        {
+            text.Append(Fact("with others active", AttributionWords.Sources(competitors)));
+            foreach (CompetitorReading reading in competitors.Readings.Where(r => r.IsVerdict && r.Modality != Modality.Both))
+            {
+                CompetitorCount? count = reading.Counts.FirstOrDefault(c => c.Rule == answer.Rule);
+                string trials = count is null ? "" : $"{Say.Trials(count.Trials.P50)} trials for {Say.Trials(count.Without)}, ";
+                text.Append(Fact($"  {Names.Of(reading.Modality)}", $"{trials}{(reading.PowerLeftDb.P50 is { } db ? $"{Say.SignedDecibels(db)} dB" : "nothing left")}"));
+            }
+        }
+
+        if (answer.Region.Location is { Bounds: { Count: > 0 } bounds })
+        {
+            text.Append(Fact("location error in the session", string.Join(", ", bounds.Where(b => b.Modality != Modality.Both || bounds.Count == 1).Select(b => $"{Names.Of(b.Modality)} {AttributionWords.Error(b)}"))));
+        }
+
+        if (answer.Region.Electrodes is { } chosen && AttributionWords.Milestones(chosen, answer.Rule) is { Count: > 0 } milestones)
+        {
+            text.Append(Fact("trials by electrodes chosen", string.Join(", ", milestones.Select(m => $"{m.Electrodes}: {Say.Trials(m.Trials)}"))));
+            text.Append(Fact("best two electrodes", $"{chosen.Derivations[0].Name}, {Say.Trials(AttributionWords.Trials(chosen.Derivations[0].Trials, answer.Rule))} trials"));
+        }
+    }
+
     // What the session's recording takes in the chair: a plan needs it beside the minutes of one average.
     private static void Chair(StringBuilder text, Assessment assessment, RegionAnswer answer)
     {
@@ -288,6 +315,33 @@ public static class ConsoleSummary
         if (chairs.Length > 0)
         {
             text.Append(Fact("in the chair, all told", string.Join("   ", chairs)));
+        }
+    }
+
+    // People, planned analyses and rate, a line a modality.
+    private static void Protocol(StringBuilder text, Assessment assessment, RegionAnswer answer)
+    {
+        ModalityAnswer[] single = [.. answer.Answers.Where(a => a.Modality != Modality.Both)];
+        foreach (ModalityAnswer a in single.Where(a => a.Verdict.People?.AtSession is not null))
+        {
+            PeopleChoice people = assessment.Study.Protocol!.People!;
+            text.Append(Fact($"{Names.Of(a.Modality)} {ProtocolWords.Counted(people)}", ProtocolWords.Session(people, a.Verdict.People!)));
+        }
+
+        ModalityAnswer[] reached = [.. single.Where(a => a.Verdict.People?.PowerOfStated is not null)];
+        if (reached.Length > 0 && assessment.Study.Protocol?.People is { Participants: { } stated } choice)
+        {
+            text.Append(Fact($"power of {Say.Count(stated)} {ProtocolWords.Counted(choice)}", string.Join(", ", reached.Select(a => $"{Names.Of(a.Modality)} {Say.Chance(a.Verdict.People!.PowerOfStated!.Value)}"))));
+        }
+
+        foreach (VerdictResult verdict in answer.Region.Verdicts.Where(v => v.Modality != Modality.Both && v.Stopping is not null))
+        {
+            text.Append(Fact($"{Names.Of(verdict.Modality)} trials in {verdict.Stopping!.Rows.Count} analyses", ProtocolWords.Planned(verdict.Stopping)));
+        }
+
+        foreach (ModalityAnswer a in single.Where(a => a.Verdict.Rate is not null))
+        {
+            text.Append(Fact($"{Names.Of(a.Modality)} at the best rate", ProtocolWords.Rate(a.Verdict.Rate!)));
         }
     }
 

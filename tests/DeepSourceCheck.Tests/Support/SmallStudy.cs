@@ -58,6 +58,10 @@ internal sealed record SmallStudy
 
     public double PlaceError { get; init; }
 
+    public IReadOnlyList<RatePoint> RateCurve { get; init; } = [];
+
+    public double? Window { get; init; }
+
     /// <summary>Noise in place of the covariances.</summary>
     public NoiseModel? Noise { get; init; }
 
@@ -79,7 +83,14 @@ internal sealed record SmallStudy
 
     public Protocol? Protocol { get; init; } = new() { Rate = 10, Session = 600 };
 
+    public IReadOnlyList<CompetitorChoice> Competitors { get; init; } = [];
+
+    public bool ChooseSensors { get; init; }
+
     public bool Together { get; init; }
+
+    /// <summary>Regions of the response; null: all.</summary>
+    public int? RegionsOfResponse { get; init; }
 
     /// <summary>Splits the points into this many regions.</summary>
     public int Regions { get; init; } = 1;
@@ -102,7 +113,9 @@ internal sealed record SmallStudy
         {
             Name = "r",
             Key = "responses.r",
-            Regions = [.. Enumerable.Range(0, Regions).Select(k => $"region{k}")],
+            Regions = [.. Enumerable.Range(0, RegionsOfResponse ?? Regions).Select(k => $"region{k}")],
+            Competitors = Competitors,
+            ChooseSensors = ChooseSensors,
             Moment = Moment,
             Amplitude = Amplitude,
             MomentRange = MomentRange,
@@ -114,6 +127,8 @@ internal sealed record SmallStudy
             Waveform = Waveform,
             Jitter = Jitter,
             PlaceError = PlaceError,
+            RateCurve = RateCurve,
+            Window = Window,
             Measured = Measured,
             Together = Together,
             Direction = new DirectionChoice(Given is null && Direction == DirectionName.Given ? DirectionName.Isotropic : Direction, Given),
