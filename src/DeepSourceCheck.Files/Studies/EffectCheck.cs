@@ -15,7 +15,8 @@ internal static class EffectCheck
     {
         Detection(root, responses);
         bool asked = targets.Any(t => t is DetectionChoice or VarianceRatioChoice);
-        foreach (Response response in responses.Where(r => r.Window is not null && !asked))
+        asked |= noise?.EegRecording is { Segment: null };       // its segments are as long as the window
+        foreach (Response response in responses.Where(r => r.Window is not null && r.RateCurve.Count == 0 && !asked))
         {
             reading.Warn(response.Key + ".window_ms", "has no effect on any count: detection (its looks) and variance_ratio ask for the window, and the study states neither");
         }
@@ -26,7 +27,7 @@ internal static class EffectCheck
         }
 
         string[] white = [.. White(noise)];
-        bool spectral = noise.EegTotal is not null || noise.EegDensity is not null || noise.MegDensity is not null || noise.MegPlanarDensity is not null;
+        bool spectral = noise.EegRecording is not null || noise.EegTotal is not null || noise.EegDensity is not null || noise.MegDensity is not null || noise.MegPlanarDensity is not null;
         if (white.Length > 0 && !spectral && root.Map("protocol") is { } protocol && protocol.States("interval_jitter_ms") && responses.Any(r => r.Steady is null))
         {
             protocol.Warn("interval_jitter_ms", $"has no effect: {string.Join(" and ", white)} states the noise per trial, without a spectrum, so that trials count as independent at any interval");

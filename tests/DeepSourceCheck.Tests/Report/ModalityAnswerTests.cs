@@ -29,7 +29,8 @@ public class ModalityAnswerTests
         Assert.Equal("does not apply", meg.Line());
         Assert.Equal(Why, meg.Reason);
         string page = HtmlReport.Text(a, figureFiles: false);
-        Assert.DoesNotContain("out of reach", page, StringComparison.Ordinal);
+        Assert.DoesNotContain("MEG is out of reach", page, StringComparison.Ordinal);
+        Assert.Contains("the rule does not apply to MEG", page, StringComparison.Ordinal);
         Assert.Contains(Why, page, StringComparison.Ordinal);
     }
 

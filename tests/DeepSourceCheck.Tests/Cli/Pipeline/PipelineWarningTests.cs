@@ -129,13 +129,14 @@ public sealed class PipelineWarningTests : IDisposable
     [Fact]
     public void ImplausibleAmplitude_IsRefusedWhereItStands()
     {
-        (string, string) amplitude = ("moment_nAm: 10", "amplitude: {peak_uV: 3000, derivation: Cz-Oz}");
-        InputProblem problem = Assert.Throws<InputException>(() => _text.Assess(PreparedText.Study, amplitude)).Problems[0];
+        _text.With("deep.tsv", "name\tx\ty\tz\np\t2\t-20\t6\n");
+        (string, string) amplitude = ("moment_nAm: 10", "amplitude: {peak_uV: 440, derivation: Cz-Oz}"), deep = ("points.tsv", "deep.tsv");
+        InputProblem problem = Assert.Throws<InputException>(() => _text.Assess(PreparedText.Study, amplitude, deep)).Problems[0];
         Assert.Equal("responses.r.amplitude.peak_uV", problem.Key);
         Assert.Equal(8, problem.Line);
         Assert.Contains("follows from amplitude.peak_uV", problem.Message, StringComparison.Ordinal);
         Assert.Contains("add `responses.r.moment_nAm` to accept_implausible", problem.Message, StringComparison.Ordinal);
-        Says(_text.Assess(PreparedText.Study + "\naccept_implausible: [responses.r.moment_nAm]", amplitude).Warnings, "accepted by accept_implausible");
+        Says(_text.Assess(PreparedText.Study + "\naccept_implausible: [responses.r.moment_nAm]", amplitude, deep).Warnings, "accepted by accept_implausible");
     }
 
     [Fact]
