@@ -1,5 +1,4 @@
 using DeepSourceCheck.Core.Detection;
-using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Planning;
