@@ -132,6 +132,15 @@ public class StudyTests
     }
 
     [Fact]
+    public void Study15_AmplitudeReadOffTheAverage_IsThePeakThatIsPredicted()
+    {
+        // What is read was filtered and blurred already: nothing is taken off twice.
+        AssessedStudy study = AssessedStudy.RunChanged(SourceTree.Study(Path.Combine("15-waveform", "study.yaml")), ("moment_nAm: 7", "amplitude: {peak_uV: 0.45, derivation: Cz-mastoids}"));
+        JsonElement row = study.Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids");
+        Assert.InRange(AssessedStudy.Peak(row, "uV"), 0.45 * (1 - 1e-9), 0.45 * (1 + 1e-9));
+    }
+
+    [Fact]
     public void Study23_CompetitorsMakeADerivationNoisierByTheirRms_AndNeverHelp()
     {
         // A difference of two independent readings, against the mean of two mastoids: 2 uV rms an electrode gives sqrt(2^2 + 2^2/2) uV in Cz-mastoids. Power left: s^2/(s^2 + n^2), by hand.
@@ -485,5 +494,55 @@ public class StudyTests
         {
             Assert.InRange(ByRule(loud, rule), 4 * ByRule(quiet, rule) - 3, 4 * ByRule(quiet, rule));     // each is rounded up
         }
+    }
+
+    private const string GroupStudy = "21-people-and-stopping.yaml";
+
+    private static JsonElement Verdict(AssessedStudy study, string modality, string rule = "detection") => study.Region(WaveV, "inferior-colliculus-left").GetProperty("verdicts").EnumerateArray()
+        .Single(v => v.GetProperty("modality").GetString() == modality && v.GetProperty("rule").GetString() == rule);
+
+    [Fact]
+    public void Study21_AtATenthOfTheNoise_HasTheWorkedGridOfPeople()
+    {
+        // Mean 1, spread 1, one trial 10: exact noncentral t, recomputed outside the project. The flat noise is stated as ten times the amplitude that the study itself predicts.
+        string file = SourceTree.Study(GroupStudy);
+        double peak = AssessedStudy.Run(file).Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids").GetProperty("peak_amplitude").GetProperty("value").GetDouble();
+        // Independent electrodes of s each: Cz against the mean of two mastoids holds s sqrt(1.5).
+        string noise = (10 * peak / Math.Sqrt(1.5)).ToString("R", System.Globalization.CultureInfo.InvariantCulture);
+        AssessedStudy study = AssessedStudy.RunChanged(file,
+            ("eeg_total: {rms_uV: 2.0, derivation: Cz-mastoids, band_Hz: [100, 3000]}", $"eeg_sensor_uV_rms: {noise}"), ("spread_between_people: 0.4", "spread_between_people: 1"), ("session_min: 10", "session_min: 100"));
+        Assert.Equal(
+            [(10, 89), (25, 42), (50, 26), (100, 18), (200, 14), (400, 12), (1000, 11), (59_940, 11)],
+            study.Root.GetProperty("people").EnumerateArray().Select(p => (p.GetProperty("trials").GetInt32(), p.GetProperty("participants").GetInt32())));
+        Assert.Equal(10, Verdict(study, "EEG").GetProperty("people").GetProperty("participants_at_unlimited_trials").GetInt32());
+    }
+
+    [Fact]
+    public void Study21_PlannedAnalysesCostFewTrialsAtMostAndSaveSome()
+    {
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study(GroupStudy));
+        foreach (string modality in (string[])["EEG", "MEG", "EEG+MEG"])
+        {
+            JsonElement stopping = Verdict(study, modality).GetProperty("stopping");
+            JsonElement last = Verdict(study, modality).GetProperty("why").EnumerateArray().Single(l => l.GetProperty("symbol").GetString() == "N");
+            double single = last.GetProperty("value").GetDouble(), most = stopping.GetProperty("maximum_trials").GetDouble(), expected = stopping.GetProperty("expected_trials").GetDouble();
+            Assert.InRange(most / single, 1, 1.02);
+            Assert.InRange(expected / single, 0.8, 0.95);
+            Assert.False(Verdict(study, modality, "amplitude_ratio").TryGetProperty("stopping", out _));
+        }
+    }
+
+    [Fact]
+    public void Study21_AFasterRateSavesMoreThanTheAmplitudeLoses()
+    {
+        // The last piece runs from 0.9 to 0.5 over a factor of 3: A^2 rate is largest where A = 2 x 0.4/ln 3 (by hand), 48.1/s.
+        AssessedStudy study = AssessedStudy.Run(SourceTree.Study(GroupStudy));
+        JsonElement rate = Verdict(study, "EEG").GetProperty("rate");
+        double slope = 0.4 / Math.Log(3), best = 30 * Math.Exp(0.9 / slope - 2), stated = 1 - 0.1 * Math.Log(1.11) / Math.Log(3);
+        Assert.Equal(best, rate.GetProperty("best_per_s").GetDouble(), 1e-9);
+        Assert.Equal(2 * slope / stated, rate.GetProperty("amplitude_at_best_over_stated").GetDouble(), 1e-9);
+        Assert.True(rate.GetProperty("minutes_saved").GetDouble() > 0);
+        Assert.False(rate.GetProperty("responses_overlap_at_best").GetBoolean());                      // 10 ms at 48/s
+        Assert.True(Verdict(AssessedStudy.RunChanged(SourceTree.Study(GroupStudy), ("window_ms: 10", "window_ms: 25")), "EEG").GetProperty("rate").GetProperty("responses_overlap_at_best").GetBoolean());
     }
 }

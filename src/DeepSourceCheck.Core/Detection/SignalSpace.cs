@@ -46,8 +46,8 @@ public sealed class SignalSpace
             EegSd = [.. EegChannels.Select(k => Math.Sqrt(covariance[k * n + k]))];
             EegNames = [.. EegChannels.Select(k => reference.Names[k])];
             EegWhitener = Whitener.Of(covariance, n);
-            EegCorrection = Correction(noise.EegSamples, EegWhitener.Rank);
-            _eegKept = Kept(noise.EegSamples, EegWhitener.Rank);
+            EegCorrection = noise.EegHeldOut ?? Correction(noise.EegSamples, EegWhitener.Rank);
+            _eegKept = noise.EegHeldOut ?? Kept(noise.EegSamples, EegWhitener.Rank);
             if (derivations is not null)
             {
                 double[] d = derivations.ApplyToCovariance(noise.Eeg);
@@ -115,7 +115,7 @@ public sealed class SignalSpace
     /// <summary>Whitener of all referenced electrodes; null without EEG.</summary>
     public Whitener? EegWhitener { get; private set; }
 
-    /// <summary>Factor on the EEG filter's power for a covariance from finitely many samples; 1 for an exact one.</summary>
+    /// <summary>Factor on the EEG filter's power for a covariance from finitely many samples: of the formula below, or held out where it was shrunk; 1 for an exact one.</summary>
     public double EegCorrection { get; } = 1;
 
     /// <summary>Noise standard deviation of each MEG channel [T or T/m].</summary>

@@ -1,6 +1,7 @@
 using System.Globalization;
 
 using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Noise.Recordings;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -56,12 +57,13 @@ public sealed class NoiseBuilder
     /// <param name="eegCovariance">Measured EEG covariance of one trial [V^2], or null.</param>
     /// <param name="megCovariance">Measured MEG covariance of one trial, or null.</param>
     /// <param name="responses">Responses, whose bands the noise must make sense in.</param>
+    /// <param name="eegRecorded">EEG noise from a recording in the responses' bands; null or empty for none.</param>
     /// <exception cref="InputException">Instrument and brain exceed the stated total over a response's band.</exception>
-    public NoiseModel Build(double[]? eegCovariance, double[]? megCovariance, IReadOnlyList<Response> responses)
+    public NoiseModel Build(double[]? eegCovariance, double[]? megCovariance, IReadOnlyList<Response> responses, IReadOnlyList<RecordedNoise>? eegRecorded = null)
     {
         double[]? eegPerTrial = eegCovariance ?? (_choice.EegRms is { } e ? Diagonal(_electrodes, e) : null);
         double[]? megPerTrial = megCovariance ?? (_choice.MegRms is { } m ? Diagonal(_coils.Count, m) : null);
-        bool spectralEeg = _electrodes > 0 && eegPerTrial is null, spectralMeg = _coils.Count > 0 && megPerTrial is null;
+        bool spectralEeg = _electrodes > 0 && eegPerTrial is null && eegRecorded is not { Count: > 0 }, spectralMeg = _coils.Count > 0 && megPerTrial is null;
         var terms = new List<INoiseTerm>();
         if (spectralEeg || spectralMeg)
         {
@@ -116,6 +118,7 @@ public sealed class NoiseBuilder
             Terms = terms,
             MegOperator = spectralMeg && _choice.Environment is { Removed: true } && _channels is { Count: > 0 } ? Removal(_channels) : null,
             EegPerTrial = eegPerTrial,
+            EegRecorded = eegRecorded ?? [],
             MegPerTrial = megPerTrial,
             EegSamples = eegCovariance is null ? null : _choice.EegCovariance?.Samples,
             MegSamples = megCovariance is null ? null : _choice.MegCovariance?.Samples,

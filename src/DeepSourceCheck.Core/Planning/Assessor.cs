@@ -70,7 +70,7 @@ public static class Assessor
                 regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, read[0].Plan, own.Head, source, region, parts, matched).Run(cancellation)));
             }
 
-            results.Add(new ResponseResult(response, regions) { SessionTrials = plan.SessionTrials, Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
+            results.Add(new ResponseResult(response, regions) { SessionTrials = plan.SessionTrials, Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [], Recording = setup.Noise!.Recorded(response.Band) });
         }
 
         return results;

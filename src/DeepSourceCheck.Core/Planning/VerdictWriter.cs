@@ -88,6 +88,9 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         TargetResult target = row.Targets[rule];
         long? count = target.Trials.P50;
         bool? fits = plan.SessionTrials is { } session ? count is { } n && n <= session : null;
+        StoppingPlan? planned = plan.Targets[rule] is DetectionChoice { Stopping: not null } detection ? new(detection) : null;
+        StoppingResult? stopping = witness is null ? null : planned?.Of(bound.EffectivePower(witness.Power, witness.Artefact, witness.InverseVariance), plan.Protocol, plan.SessionTrials);
+        PeopleChoice? people = witness?.Power > 0 ? plan.Protocol?.People : null;
         return new VerdictResult
         {
             Modality = row.Modality,
@@ -99,9 +102,16 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             AtMoments = AtMoments(bound, witness),
             Missing = plan.SessionTrials is { } trials && witness is not null ? 1 - bound.Probability(witness.Power, witness.Artefact, trials) : null,
             Averaging = Averaging.Of(plan, setup.Noise!, witness, count),
-            Chain = chain,
+            People = people is null ? null : PeoplePlan.Of(people, witness!.Power, plan.SessionTrials),
+            Stopping = stopping,
+            Rate = witness is null ? null : RateOptimum.Of(plan, bound, witness, target.Minutes?.P50),
+            Chain = chain.Count == 0 ? chain : [.. chain, .. stopping is null ? [] : planned!.Lines(stopping, witness!.Artefact > 0), .. people is null ? [] : People(people, witness!, count)],
         };
     }
+
+    private IEnumerable<DerivedNumber> People(PeopleChoice people, MedianWitness witness, long? count) => plan.SessionTrials is > 0 and { } session
+        ? PeoplePlan.Lines(people, witness.Power, session, ofSession: true)
+        : count is { } trials ? PeoplePlan.Lines(people, witness.Power, trials, ofSession: false) : [];
 
     private static string Coherence(ITargetRule rule, MedianWitness? witness) => rule is not SteadyStateRule spectral || witness is null
         || spectral.CoherenceTrials(rule.EffectivePower(witness.Power, witness.Artefact)) is not { } trials || trials > TrialCount.MostPlanned ? ""
@@ -109,7 +119,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
 
     private CountRange? AtMoments(ITargetRule rule, MedianWitness? witness)
     {
-        if (plan.Response.MomentRange is not { } range || witness is null)
+        if (plan.Response.MomentRange is not { } range || range.Low == range.High || witness is null)
         {
             return null;
         }

@@ -74,6 +74,9 @@ public static class Names
         _ => "unknown",
     };
 
+    /// <summary>Spending function as studies write it.</summary>
+    public static string Of(Spending spending) => spending == Spending.PocockType ? "pocock-type" : "obrien-fleming-type";
+
     /// <summary>Grade as results write it.</summary>
     public static string Of(Grade grade) => grade switch
     {

@@ -35,6 +35,15 @@ public sealed record VerdictResult
     /// <summary>How its trials average; null without a protocol or a count.</summary>
     public AveragingResult? Averaging { get; init; }
 
+    /// <summary>People against trials; null where one person is planned for.</summary>
+    public PeopleResult? People { get; init; }
+
+    /// <summary>Analyses planned while trials come in; null where none are.</summary>
+    public StoppingResult? Stopping { get; init; }
+
+    /// <summary>What the stated rate costs against the best one; null without an amplitude-rate curve.</summary>
+    public RateResult? Rate { get; init; }
+
     /// <summary>The chain for the dipole at the median: what `why` prints.</summary>
     public IReadOnlyList<DerivedNumber> Chain { get; init; } = [];
 }

@@ -26,4 +26,7 @@ public sealed record Protocol
 
     /// <summary>Replications of each condition.</summary>
     public int Replications { get; init; } = 1;
+
+    /// <summary>What a study of several people asks; null where one person is planned for.</summary>
+    public PeopleChoice? People { get; init; }
 }

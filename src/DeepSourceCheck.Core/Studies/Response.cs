@@ -60,6 +60,9 @@ public sealed record Response
     /// <summary>Length of the analysis window [s], or null.</summary>
     public double? Window { get; init; }
 
+    /// <summary>Amplitude at several stimulus rates, rates rising; empty where not stated. The moment is that at the protocol's rate.</summary>
+    public IReadOnlyList<RatePoint> RateCurve { get; init; } = [];
+
     /// <summary>Dominant frequency of the response [Hz], or null.</summary>
     public double? ComponentFrequency { get; init; }
 
@@ -86,6 +89,11 @@ public sealed record Response
 /// <param name="Low">5 % point [A m].</param>
 /// <param name="High">95 % point [A m].</param>
 public sealed record MomentRange(double Low, double High);
+
+/// <summary>Amplitude of a response at one stimulus rate.</summary>
+/// <param name="Rate">Stimuli per second [1/s].</param>
+/// <param name="Amplitude">Amplitude, without unit: only ratios along a curve count.</param>
+public sealed record RatePoint(double Rate, double Amplitude);
 
 /// <summary>An amplitude at the scalp.</summary>
 /// <param name="Peak">Peak [V], in the convention of the response.</param>

@@ -2,8 +2,6 @@ namespace DeepSourceCheck.Core.Studies;
 
 public static partial class StudyKeys
 {
-    private const string PeopleNotYet = "the plan is for one person; remove the key";
-
     private static StudyKey[] Planning() =>
     [
         new("target", "What counts as enough; one or several rules.", new MapShape()) { Example = "{amplitude_ratio: 3}" },
@@ -42,6 +40,21 @@ public static partial class StudyKeys
         {
             Example = "1",
             Defaults = Default(1.0, "channel, latency and polarity are fixed in advance unless stated", Grade.Derived),
+        },
+        new("target.detection.stopping", "Analyses of the growing average that are planned in advance: the recording may end at each. Only with topography and covariance known.", new MapShape())
+        {
+            Example = "{analyses: 3, spending: obrien-fleming-type}",
+        },
+        new("target.detection.stopping.analyses", "How many analyses, at equal steps of trials, the last included; not to be confused with `looks`, which are searched at once.", Count(2, 10))
+        {
+            Example = "3",
+            Required = true,
+        },
+        new("target.detection.stopping.spending", "How the false-alarm rate is spent over them: little early (obrien-fleming-type), or nearly evenly (pocock-type).",
+            Choice("obrien-fleming-type", "pocock-type"))
+        {
+            Example = "obrien-fleming-type",
+            Defaults = Default("obrien-fleming-type", "costs the final analysis little; " + CommonPractice, Grade.Memory),
         },
         new("target.variance_ratio", "The F-ratio rule of averaged evoked responses.", new MapShape())
         {
@@ -111,11 +124,31 @@ public static partial class StudyKeys
             Unit = "ms",
             Example = "10",
         },
-        new("protocol.participants", "People who take part.", Count(1, 1e6)) { Example = "20", NotYet = PeopleNotYet },
+        new("protocol.participants", "People whose recordings are analysed; of two groups, in each.", Count(2, 1e6)) { Example = "20" },
         new("protocol.spread_between_people", "Coefficient of variation of the moment between people.", From0(100))
         {
             Example = "0.3",
-            NotYet = PeopleNotYet,
+            Defaults = Default(0.0, "people taken as alike, which no group is: the power with the stated participants is an upper bound", Grade.Derived),
+        },
+        new("protocol.dropout_fraction", "Share of those invited whose recordings are lost.", new NumberShape(0, 1, BelowHigh: true))
+        {
+            Example = "0.1",
+            Defaults = Default(0.0, "nobody is lost unless stated", Grade.Derived),
+        },
+        new("protocol.people_test", "The two-sided t test over people.", new MapShape()) { Example = "{alpha: 0.05, power: 0.8}" },
+        new("protocol.people_test.alpha", "Its rate of false alarms.", new NumberShape(0, 1, AboveLow: true, BelowHigh: true))
+        {
+            Example = "0.05",
+            Defaults = Default(0.05, "two-sided test over people; " + CommonPractice, Grade.Memory),
+        },
+        new("protocol.people_test.power", "Probability that it finds the effect.", new NumberShape(0, 1, AboveLow: true, BelowHigh: true))
+        {
+            Example = "0.8",
+            Defaults = Default(0.8, "two-sided test over people; " + CommonPractice, Grade.Memory),
+        },
+        new("protocol.people_test.groups_differ_by", "Two groups are compared whose mean moments differ by this share of the moment; without it, one group against no response.", Above0(100))
+        {
+            Example = "0.4",
         },
     ];
 
@@ -124,12 +157,12 @@ public static partial class StudyKeys
         new("unknowns", "How far each input may be off.", new MapShape()) { Example = "{head_shift_mm: 5}" },
         .. Spread("skull_conductivity_ratio", "Innermost conductivity over the skull's, of spheres.", "The median, which replaces the head's own ratio.", "15", "25", "80"),
         .. Spread("noise_factor", "Factor on every noise amplitude, EEG and MEG alike.", "The median of the factor in the draws; figures without unknowns stand at the stated noise.", "0.7", "1", "1.5"),
-        new("unknowns.head_shift_mm", "Standard deviation of the head's place in the array, each axis.", From0(1000))
+        new("unknowns.head_shift_mm", "Standard deviation of the head's place in the array, each axis.", From0(30))
         {
             Unit = "mm",
             Example = "5",
         },
-        new("unknowns.centre_shift_mm", "Standard deviation of the sphere's centre, each axis.", From0(1000))
+        new("unknowns.centre_shift_mm", "Standard deviation of the sphere's centre, each axis.", From0(30))
         {
             Unit = "mm",
             Example = "5",

@@ -115,7 +115,7 @@ public static partial class StudyKeys
             Example = "9",
         },
         new("responses[].amplitude",
-            "What is known at the scalp instead of a moment: the moment of each region is found through the leadfield, so that the median over its dipoles and the verdict's directions reads this peak.",
+            "What is read off an average, filtered and blurred by jitter as this study's will be, instead of a moment: the moment of each region is found through the leadfield, so that the median over its dipoles and the verdict's directions reads this peak.",
             new MapShape())
         {
             Example = "{peak_uV: 0.45, derivation: Cz-mastoids}",
@@ -187,6 +187,18 @@ public static partial class StudyKeys
             Example = "2",
         },
         new("responses[].window_ms", "Length of the analysis window.", Above0(1e6)) { Unit = "ms", Example = "10" },
+        new("responses[].rate_curve", "How the amplitude falls with the rate, straight lines over the logarithm of the rate between its points; the moment is that at protocol.rate_per_s.",
+            new ListShape("a point {rate_per_s, amplitude}, rates rising"))
+        {
+            Example = "[{rate_per_s: 5, amplitude: 1}, {rate_per_s: 50, amplitude: 0.6}]",
+        },
+        new("responses[].rate_curve[].rate_per_s", "Stimuli per second.", Above0(1e5))
+        {
+            Unit = "1/s",
+            Required = true,
+            Example = "5",
+        },
+        new("responses[].rate_curve[].amplitude", "Amplitude at that rate, in any unit: only ratios count.", From0(1e9)) { Required = true, Example = "1" },
         new("responses[].jitter_ms", "Standard deviation of the latency from trial to trial; needs a waveform, component_Hz or frequency_Hz.", From0(1e4))
         {
             Unit = "ms",

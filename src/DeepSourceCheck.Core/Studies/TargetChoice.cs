@@ -14,7 +14,11 @@ public sealed record AmplitudeRatioChoice(double Ratio) : TargetChoice;
 /// <param name="Topography">What is known of the field's pattern.</param>
 /// <param name="CovarianceEstimated">True: the noise is estimated from the same trials.</param>
 public sealed record DetectionChoice(
-    double Alpha, double Power, double Looks, Topography Topography = Topography.Known, bool CovarianceEstimated = false) : TargetChoice;
+    double Alpha, double Power, double Looks, Topography Topography = Topography.Known, bool CovarianceEstimated = false) : TargetChoice
+{
+    /// <summary>Analyses planned while trials come in; null: one, at the end.</summary>
+    public StoppingChoice? Stopping { get; init; }
+}
 
 /// <summary>What is known beforehand of the pattern of a response over the channels.</summary>
 public enum Topography

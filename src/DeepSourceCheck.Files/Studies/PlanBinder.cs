@@ -53,7 +53,10 @@ internal static class PlanBinder
                     }
 
                     rules.Add(new DetectionChoice(a, p, k,
-                        topography switch { "plane" => Topography.Plane, "unknown" => Topography.Unknown, _ => Topography.Known }, covariance == "estimated"));
+                        topography switch { "plane" => Topography.Plane, "unknown" => Topography.Unknown, _ => Topography.Known }, covariance == "estimated")
+                    {
+                        Stopping = Stopping(detection, topography == "known" && covariance == "known", responses),
+                    });
                 }
             }
         }
@@ -64,6 +67,27 @@ internal static class PlanBinder
         }
 
         return rules;
+    }
+
+    private static StoppingChoice? Stopping(Section detection, bool known, IReadOnlyList<Response> responses)
+    {
+        const string Name = "stopping";
+        if (detection.Map(Name) is not { } stopping)
+        {
+            return null;
+        }
+
+        if (!known)
+        {
+            detection.Problem(Name, "is computed for topography known and covariance known alone; state these, or remove it");
+        }
+        else if (responses.FirstOrDefault(r => r.Steady is not null) is { } steady)
+        {
+            detection.Problem(Name, $"is of transient responses; {steady.Name} is steady-state, whose test is another: plan it in a study of its own, or remove stopping");
+        }
+
+        return stopping.Number("analyses") is { } analyses && stopping.Text("spending") is { } spending
+            ? new((int)analyses, spending == "pocock-type" ? Spending.PocockType : Spending.ObrienFlemingType) : null;
     }
 
     private static VarianceRatioChoice? VarianceRatio(Section rule, bool hasEeg, IReadOnlyList<Response> responses)
@@ -128,6 +152,7 @@ internal static class PlanBinder
         }
 
         double? conditions = protocol.Number("conditions"), replications = protocol.Number("replications");
+        PeopleChoice? people = PeopleBinder.Bind(protocol);
         return rate is null || rejected is null || conditions is null || replications is null ? null : new()
         {
             Rate = rate.Value,
@@ -138,6 +163,7 @@ internal static class PlanBinder
             IntervalJitter = jitter / 1000,
             Conditions = (int)conditions.Value,
             Replications = (int)replications.Value,
+            People = people,
         };
     }
 

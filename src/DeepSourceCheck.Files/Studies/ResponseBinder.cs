@@ -67,12 +67,14 @@ internal static class ResponseBinder
         (IReadOnlyList<double> shares, IReadOnlyList<double> lags) = StrengthBinder.Together(entry, counts == "together", component);
         CheckPassed(entry, band, course.Steady?.Frequency, sensors);
         CheckTogether(entry, counts == "together");
+        StrengthBinder.CheckLags(entry, lags);
         if (course.Steady is not null && measured == "peak-to-trough")
         {
             entry.Problem("measured", "peak-to-trough is of a transient response; the amplitude of a steady-state one is the peak of its sinusoid: write baseline-to-peak");
         }
 
         double? window = entry.Number("window_ms");
+        IReadOnlyList<RatePoint> rates = RateCurveBinder.Bind(entry, steady);
         Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
         Section measure = entry.Map("measure") ?? entry.Entry("measure");
         double artefactEeg = Artefact(artefact, "eeg_uV", sensors.HasEeg, "the study has no electrodes");
@@ -101,6 +103,7 @@ internal static class ResponseBinder
             Baseline = course.Baseline,
             Direction = direction,
             Window = window / 1000,
+            RateCurve = rates,
             ComponentFrequency = component,
             LockedArtefactEeg = Si.FromMicrovolts(artefactEeg),
             LockedArtefactMeg = Si.FromFemtotesla(artefactMeg),

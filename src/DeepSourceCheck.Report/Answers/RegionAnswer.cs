@@ -40,6 +40,10 @@ public sealed class RegionAnswer
     /// <summary>What to record with; null where nothing fits the session.</summary>
     public ModalityAnswer? Winner { get; }
 
+    /// <summary>The answer on which the number of people stands: the recommended one, else the one with the fewest trials, else the first that has people; null where one person is planned for.</summary>
+    public ModalityAnswer? ForPeople => Winner is { Verdict.People: not null } ? Winner
+        : Answers.Where(a => a.Verdict.People is not null).OrderBy(a => a.Modality == Modality.Both).ThenBy(a => a.Trials ?? long.MaxValue).FirstOrDefault();
+
     /// <summary>The answer of one modality, or null.</summary>
     public ModalityAnswer? Of(Modality modality) => Answers.FirstOrDefault(a => a.Modality == modality);
 

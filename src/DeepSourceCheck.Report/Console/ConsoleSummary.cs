@@ -250,6 +250,7 @@ public static class ConsoleSummary
         }
 
         Chair(text, assessment, answer);
+        Protocol(text, assessment, answer);
         ModalityAnswer[] missed = [.. answer.Answers.Where(a => a.Verdict.Missing is not null)];
         if (missed.Length > 0)
         {
@@ -313,6 +314,33 @@ public static class ConsoleSummary
         if (chairs.Length > 0)
         {
             text.Append(Fact("in the chair, all told", string.Join("   ", chairs)));
+        }
+    }
+
+    // People, planned analyses and rate, a line a modality.
+    private static void Protocol(StringBuilder text, Assessment assessment, RegionAnswer answer)
+    {
+        ModalityAnswer[] single = [.. answer.Answers.Where(a => a.Modality != Modality.Both)];
+        foreach (ModalityAnswer a in single.Where(a => a.Verdict.People?.AtSession is not null))
+        {
+            PeopleChoice people = assessment.Study.Protocol!.People!;
+            text.Append(Fact($"{Names.Of(a.Modality)} {ProtocolWords.Counted(people)}", ProtocolWords.Session(people, a.Verdict.People!)));
+        }
+
+        ModalityAnswer[] reached = [.. single.Where(a => a.Verdict.People?.PowerOfStated is not null)];
+        if (reached.Length > 0 && assessment.Study.Protocol?.People is { Participants: { } stated } choice)
+        {
+            text.Append(Fact($"power of {Say.Count(stated)} {ProtocolWords.Counted(choice)}", string.Join(", ", reached.Select(a => $"{Names.Of(a.Modality)} {Say.Chance(a.Verdict.People!.PowerOfStated!.Value)}"))));
+        }
+
+        foreach (VerdictResult verdict in answer.Region.Verdicts.Where(v => v.Modality != Modality.Both && v.Stopping is not null))
+        {
+            text.Append(Fact($"{Names.Of(verdict.Modality)} trials in {verdict.Stopping!.Rows.Count} analyses", ProtocolWords.Planned(verdict.Stopping)));
+        }
+
+        foreach (ModalityAnswer a in single.Where(a => a.Verdict.Rate is not null))
+        {
+            text.Append(Fact($"{Names.Of(a.Modality)} at the best rate", ProtocolWords.Rate(a.Verdict.Rate!)));
         }
     }
 

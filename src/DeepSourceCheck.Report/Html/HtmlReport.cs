@@ -37,6 +37,8 @@ public static class HtmlReport
 
         RuleSection.Write(html, assessment);
         UnknownsSection.Write(html, assessment);
+        PeopleSection.Write(html, assessment);
+        StoppingSection.Write(html, assessment);
         AttributionSection.Write(html, assessment);
         VariantSection.Write(html, assessment);
         if (assessment.Warnings.Count > 0)

@@ -1,6 +1,7 @@
 using System.Globalization;
 using System.Text.Json;
 
+using DeepSourceCheck.Core.Noise.Recordings;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -46,6 +47,7 @@ public static class AssessmentJson
 
             json.WriteCount("session_trials", assessment.SessionTrials);
             json.WriteArray("responses", assessment.Responses, (j, r) => WriteResponse(j, r, assessment));
+            ProtocolJson.WritePeople(json, assessment);
             json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));
             json.WriteEndObject();
         }
@@ -70,6 +72,7 @@ public static class AssessmentJson
         json.WriteStrings("warnings", variant.Assessment.Warnings.Except(study.Warnings));
         json.WriteCount("session_trials", variant.Assessment.SessionTrials);
         json.WriteArray("responses", variant.Assessment.Responses, (j, r) => WriteResponse(j, r, variant.Assessment));
+        ProtocolJson.WritePeople(json, variant.Assessment);
         json.WriteEndObject();
     }
 
@@ -95,6 +98,28 @@ public static class AssessmentJson
 
         json.WriteArray("regions", response.Regions, (j, r) => WriteRegion(j, r, response, assessment));
         json.WriteArray("noise_spectra", response.Spectra, WriteSpectrum);
+        if (response.Recording is { } recording)
+        {
+            WriteRecording(json, recording);
+        }
+
+        json.WriteEndObject();
+    }
+
+    private static void WriteRecording(Utf8JsonWriter json, RecordedNoise recording)
+    {
+        json.WriteStartObject("noise_recording");
+        json.WriteString("file", recording.File);
+        WriteBand(json, "band_read_Hz", recording.BandRead);
+        json.WriteFigure("seconds_read", recording.SecondsRead);
+        json.WriteFigure("seconds_used", recording.SecondsUsed);
+        json.WriteFigure("segment_ms", 1000 * recording.SegmentSeconds);
+        json.WriteNumber("segments", recording.Segments);
+        json.WriteFigure("rejected_share", recording.RejectedShare);
+        json.WriteFigure("independent_samples", recording.IndependentSamples);
+        json.WriteFigure("shrinkage", recording.Shrinkage);
+        json.WriteFigure("held_out_share", recording.HeldOutShare);
+        json.WriteFigure("median_rms_uV", Si.ToMicrovolts(recording.MedianRms));
         json.WriteEndObject();
     }
 
@@ -398,6 +423,7 @@ public static class AssessmentJson
             json.WriteEndObject();
         }
 
+        ProtocolJson.Write(json, verdict);
         json.WriteArray("why", verdict.Chain, JsonText.WriteDerivedNumber);
         json.WriteEndObject();
     }

@@ -18,7 +18,7 @@ internal static partial class ChainDistributions
     private const double Tolerance = 1e-6;
 
     private static readonly string[] Names =
-        ["upper_chi2", "upper_F", "upper_t", "noncentrality_chi2", "noncentrality_F", "power_F", "power_t", "hotelling", "student", "coherence"];
+        ["upper_chi2", "upper_F", "upper_t", "noncentrality_chi2", "noncentrality_F", "power_F", "power_t", "hotelling", "student", "coherence", "people", "groups", "power_people", "power_groups"];
 
     public static bool Knows(string word) => Names.Contains(word);
 
@@ -27,7 +27,7 @@ internal static partial class ChainDistributions
     {
         Match match = Function().Match(line.Formula);
         return match.Success && Knows(match.Groups[1].Value)
-            && (line.Symbol is "N" or "Nc" ? line.Value == recomputed : Math.Abs(line.Value - recomputed) <= Tolerance * Math.Abs(recomputed));
+            && (line.Symbol is "N" or "Nc" or "np" ? line.Value == recomputed : Math.Abs(line.Value - recomputed) <= Tolerance * Math.Abs(recomputed));
     }
 
     public static double Call(string word, double[] x) => word switch
@@ -41,8 +41,16 @@ internal static partial class ChainDistributions
         "power_t" => PlainNoncentral.TSurvival(x[0], x[1], x[2]),
         "hotelling" => Smallest(x[2] + 1, x[1], n => PlainNoncentral.FSurvival(UpperF(x[0], x[2], n - x[2]), x[2], n - x[2], n * x[3])),
         "student" => Smallest(2, x[1], n => PlainNoncentral.TSurvival(Math.Sqrt(UpperF(2 * x[0], 1, n - 1)), n - 1, Math.Sqrt(n * x[2]))),
+        "people" => Smallest(2, x[1], n => OverPeople(1, x[0], n, x[2])),
+        "groups" => Smallest(2, x[1], n => OverPeople(2, x[0], n, x[2])),
+        "power_people" => OverPeople(1, x[0], x[1], x[2]),
+        "power_groups" => OverPeople(2, x[0], x[1], x[2]),
         _ => Smallest(2, x[1], n => Coherent(1 - Math.Pow(x[0], 1 / (n - 1)), n, n * x[2])),
     };
+
+    // Both tails of t with n - 1 degrees of freedom a group.
+    private static double OverPeople(double groups, double alpha, double n, double d) =>
+        PlainNoncentral.FSurvival(UpperF(alpha, 1, groups * (n - 1)), 1, groups * (n - 1), n / groups * d * d);
 
     private static double Coherent(double critical, double n, double lambda) => PlainNoncentral.FSurvival((n - 1) * critical / (1 - critical), 2, 2 * n - 2, lambda);
 

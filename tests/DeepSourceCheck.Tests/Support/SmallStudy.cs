@@ -58,6 +58,10 @@ internal sealed record SmallStudy
 
     public double PlaceError { get; init; }
 
+    public IReadOnlyList<RatePoint> RateCurve { get; init; } = [];
+
+    public double? Window { get; init; }
+
     /// <summary>Noise in place of the covariances.</summary>
     public NoiseModel? Noise { get; init; }
 
@@ -123,6 +127,8 @@ internal sealed record SmallStudy
             Waveform = Waveform,
             Jitter = Jitter,
             PlaceError = PlaceError,
+            RateCurve = RateCurve,
+            Window = Window,
             Measured = Measured,
             Together = Together,
             Direction = new DirectionChoice(Given is null && Direction == DirectionName.Given ? DirectionName.Isotropic : Direction, Given),
