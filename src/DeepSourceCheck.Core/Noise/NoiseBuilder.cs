@@ -173,7 +173,8 @@ public sealed class NoiseBuilder
         double fits = brain > 0 && all > rest ? Math.Floor(100 * _choice.BrainScale * Math.Sqrt((all - rest) / brain)) / 100 : 0;
         string quieter = fits > 0
             ? string.Create(CultureInfo.InvariantCulture, $", or, if your participants' brains are quieter than the tables, write noise.brain: {{scale: {fits:0.##}}} or less, which holds for EEG and MEG, or give tables of your own (noise.brain: {{eeg_table: f.csv}}), or noise.brain: none")
-            : brain > 0 ? ", or noise.brain: none if your participants' brains are quieter than the tables" : ", or a quieter amplifier under noise.eeg_sensor_nV_per_rtHz";
+            : brain > 0 && all > rest ? ", or noise.brain: none if your participants' brains are quieter than the tables"
+            : ", or a quieter amplifier under noise.eeg_sensor_nV_per_rtHz, whose noise alone is more than the total";
         throw new InputException(null, "noise.eeg_total.rms_uV", string.Create(CultureInfo.InvariantCulture,
             $"over the band of {response.Name}, {low:0.###} to {high:0.###} Hz, the stated total comes to {Si.ToMicrovolts(Math.Sqrt(all)):0.###} uV rms in {stated.Derivation}, less than what is in it ({parts}); nothing is left for muscle and electrodes: state what you measure, above {Si.ToMicrovolts(enough):0.##} uV rms over {stated.Band.Low:0.###} to {stated.Band.High:0.###} Hz{quieter}"));
     }

@@ -102,7 +102,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         {
             Input("r", "stimuli per second", protocol.Rate, "1/s", "protocol.rate_per_s");
             Input("f", "share of trials that are rejected", protocol.RejectedFraction, "", "protocol.rejected_fraction");
-            Add("M", "presented trials", trials / (1 - protocol.RejectedFraction), "", "N / (1 - f)", "definition", Grade.Derived);
+            Add("M", "presented trials", SessionPlan.Presented(protocol, (long)trials) ?? double.PositiveInfinity, "", "ceil(N / (1 - f))", "definition", Grade.Derived);
             Add("T", "recording time", SessionPlan.Minutes(protocol, trials), "min", "N / (60 r (1 - f))", "definition", Grade.Derived);
             if (protocol.Conditions * protocol.Replications > 1 || protocol.Breaks is not null || protocol.Preparation is not null)
             {

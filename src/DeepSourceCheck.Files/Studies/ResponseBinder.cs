@@ -73,7 +73,12 @@ internal static class ResponseBinder
             entry.Problem("measured", "peak-to-trough is of a transient response; the amplitude of a steady-state one is the peak of its sinusoid: write baseline-to-peak");
         }
 
-        double? window = entry.Number("window_ms");
+        if (steady)
+        {
+            entry.WithoutEffect("window_ms", "a steady-state response is read over the whole of its trial, seconds long");
+        }
+
+        double? window = steady ? null : entry.Number("window_ms");
         IReadOnlyList<RatePoint> rates = RateCurveBinder.Bind(entry, steady);
         Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
         Section measure = entry.Map("measure") ?? entry.Entry("measure");

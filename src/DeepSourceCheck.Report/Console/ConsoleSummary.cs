@@ -102,7 +102,7 @@ public static class ConsoleSummary
             {
                 ModalityAnswer? answer = row.Answer.Of(modality);
                 bool counted = answer is { HasCount: true };
-                string count = counted ? Say.Trials(answer!.Trials) : answer is { Outcome: Outcome.Silent } ? "silent" : answer is { Trials: not null } || answer?.Verdict.Chain.Count > 0 ? Say.OutOfReach : "-";
+                string count = counted ? Say.Trials(answer!.Trials) : answer is { Outcome: Outcome.Silent } ? "silent" : answer is { Outcome: Outcome.DoesNotApply } ? answer.NoCount : answer is { Trials: not null } || answer?.Verdict.Chain.Count > 0 ? Say.OutOfReach : "-";
                 text.Append($"{count,14}{(counted && answer!.Minutes is { } m ? m < 0.1 ? "< 0.1" : Say.Minutes(m) : "-"),9}");
             }
 
@@ -131,7 +131,7 @@ public static class ConsoleSummary
             foreach (Modality modality in modalities)
             {
                 ModalityAnswer? answer = row.Answer?.Of(modality);
-                string count = answer is null ? "-" : answer.Outcome == Outcome.Silent ? "silent" : Say.Trials(answer.Trials);
+                string count = answer is null ? "-" : answer.Outcome == Outcome.Silent ? "silent" : answer.Outcome == Outcome.DoesNotApply ? answer.NoCount : Say.Trials(answer.Trials);
                 text.Append($"{count,15}{(row.Change(modality) is { } db ? Say.SignedDecibels(db) + " dB" : ""),9}");
             }
 
@@ -156,7 +156,7 @@ public static class ConsoleSummary
     {
         string name = Names.Of(a.Modality);
         string each = OneAcquisition(assessment) ? "" : " per average";
-        string minutes = a.Minutes is { } m ? $"{Say.Minutes(m)} min{each}" : a.Trials is { } n ? Say.Plural(n, "trial") : "";
+        string minutes = a.Minutes is not null ? $"{a.MinutesWords()} min{each}" : a.Trials is { } n ? Say.Plural(n, "trial") : "";
         // The excess of the minutes as they are written, so that the sentence adds up; one that rounds away is not named.
         string over = a.Minutes is { } needed && assessment.Study.Protocol?.Session is { } s && OneAcquisition(assessment) && Rounded.AsWritten(needed) - s / 60 is >= 0.1 and var excess
             ? $": too long by {Say.Minutes(excess)} min" : ": too long";
@@ -166,6 +166,7 @@ public static class ConsoleSummary
             Outcome.TooLong => $"{name} needs {minutes}{over}.",
             Outcome.NoSession => $"{name} needs {minutes}.",
             Outcome.Silent => $"{name} is silent in this direction.",
+            Outcome.DoesNotApply => $"The rule does not apply to {name}{(a.Reason is { } reason ? $": {reason}" : "")}.",
             _ => $"{name} is {Say.OutOfReach} by averaging.",
         };
     }
@@ -192,8 +193,8 @@ public static class ConsoleSummary
             string peak = a.Row?.Peak is { } p ? $"{Say.Two(p.Value)} {Say.Unit(p.Unit)}" : "-";
             // `under 0.1` would fill its column and run into the next.
             string minutes = a.Minutes is { } m && a.HasCount ? m < 0.1 ? "< 0.1" : Say.Minutes(m) : "-";
-            string middle = a.HasCount ? $"{Say.Trials(a.Trials),9}{Spread(a),20}" : $"{(a.Outcome == Outcome.Silent ? "silent in this direction" : Say.OutOfReach),29}";
-            string session = a.Outcome switch { Outcome.Fits => "fits", Outcome.TooLong => "too long", Outcome.NoSession => "-", _ => "no" };
+            string middle = a.HasCount ? $"{Say.Trials(a.Trials),9}{Spread(a),20}" : $"{a.NoCount,29}";
+            string session = a.Outcome switch { Outcome.Fits => "fits", Outcome.TooLong => "too long", Outcome.NoSession or Outcome.DoesNotApply => "-", _ => "no" };
             text.Append($"{Names.Of(a.Modality),-8}{measure,-MeasureWidth}{middle}{minutes,9}{peak,10} {session}\n");
         }
 

@@ -45,7 +45,7 @@ public static class AssessmentJson
                 json.WriteEndObject();
             }
 
-            json.WriteCount("session_trials", assessment.SessionTrials);
+            json.WriteCount("session_trials", SessionTrials(assessment));
             json.WriteArray("responses", assessment.Responses, (j, r) => WriteResponse(j, r, assessment));
             ProtocolJson.WritePeople(json, assessment);
             json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));
@@ -54,6 +54,12 @@ public static class AssessmentJson
 
         stream.WriteByte((byte)'\n');
     }
+
+    // Trials of a steady-state response come no faster than they are long: one count for the study only where every response has the same.
+    private static long? SessionTrials(Assessment assessment) => !HasSteady(assessment) ? assessment.SessionTrials
+        : assessment.Responses.Select(r => assessment.For(r).SessionTrials).Distinct().ToArray() is [var one] ? one : null;
+
+    private static bool HasSteady(Assessment assessment) => assessment.Responses.Any(r => r.Response.Steady is not null);
 
     private static void Input(Utf8JsonWriter json, InputFile file)
     {
@@ -70,7 +76,7 @@ public static class AssessmentJson
         json.WriteString("name", variant.Name);
         json.WriteArray("assumptions", [.. variant.Assessment.Assumptions.Except(study.Assumptions)], JsonText.WriteAssumption);
         json.WriteStrings("warnings", variant.Assessment.Warnings.Except(study.Warnings));
-        json.WriteCount("session_trials", variant.Assessment.SessionTrials);
+        json.WriteCount("session_trials", SessionTrials(variant.Assessment));
         json.WriteArray("responses", variant.Assessment.Responses, (j, r) => WriteResponse(j, r, variant.Assessment));
         ProtocolJson.WritePeople(json, variant.Assessment);
         json.WriteEndObject();
@@ -80,9 +86,9 @@ public static class AssessmentJson
     {
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
-        if (response.Response.Steady is not null)
+        if (HasSteady(assessment))
         {
-            json.WriteCount("session_trials", response.SessionTrials);
+            json.WriteCount("session_trials", assessment.For(response).SessionTrials);
         }
 
         if (response.Waveform is { } waveform)

@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
@@ -153,6 +154,9 @@ internal static class AssessmentFixture
 
         public bool Detection { get; init; }
 
+        /// <summary>The test that the figure of power draws.</summary>
+        public ITargetRule Test { get; init; } = new DetectionRule(0.01, 0.9, 1);
+
         public bool ImportedHead { get; init; }
 
         public bool VoxelHead { get; init; }
@@ -262,6 +266,8 @@ internal static class AssessmentFixture
                     Text = count is null ? "Silent: a sphere gives no field outside for this direction." : $"{Names.Of(modality)} needs {count} trials by {rule}.",
                     FitsSession = session is { } s ? count is { } n && n <= s : null,
                     Chain = Chain(modality, measure, count, protocol),
+                    Power = rule == (o.Detection ? "detection" : "amplitude_ratio") && row.SnrDb is { P05: { } weak, P50: { } middle, P95: { } strong }
+                        ? new(o.Test.Description, o.Detection, 0.9, Grows(o.Test, middle), Grows(o.Test, weak), Grows(o.Test, strong)) : null,
                 });
             }
         }
@@ -315,6 +321,8 @@ internal static class AssessmentFixture
         PeakAmplitude? amplitude = modality == Modality.Both ? null : new(peak, unit, modality == Modality.Eeg ? "Cz-mastoids" : "A117");
         return new(modality, direction, measure, amplitude, Snr(trials), Targets(o, trials, session, protocol, null, peak), null, null);
     }
+
+    private static Func<double, double> Grows(ITargetRule test, double snrDb) => trials => test.Probability(Math.Pow(10, snrDb / 10), 0, trials)!.Value;
 
     private static Percentiles Snr(double trials)
     {
