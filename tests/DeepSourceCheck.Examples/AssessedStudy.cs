@@ -39,6 +39,13 @@ internal sealed class AssessedStudy
     /// <summary>Runs a study with its text changed; files beside it are copied along.</summary>
     public static AssessedStudy RunChanged(string study, params (string From, string To)[] changes) => Changed(study, changes, Run);
 
+    /// <summary>Runs a study beside a file that it names and that the test writes.</summary>
+    public static AssessedStudy RunBeside(string study, string name, byte[] bytes) => Changed(study, [], file =>
+    {
+        File.WriteAllBytes(Path.Combine(Path.GetDirectoryName(file)!, name), bytes);
+        return Run(file);
+    });
+
     /// <summary>What the program says of a changed study that it must refuse.</summary>
     public static string Refusal(string study, params (string From, string To)[] changes) => Changed(study, changes, file =>
     {

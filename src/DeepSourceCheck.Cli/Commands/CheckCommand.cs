@@ -106,12 +106,22 @@ internal static class CheckCommand
         }
 
         Row("takes about", $"{Durations.Rough(prepared.PredictedSeconds)}, {MemorySize.Rough(prepared.PredictedMemory)}");
-        Assumption[] defaults = [.. prepared.Assumptions.Where(a => !a.FromStudy)];
+        Assumption[] defaults = [.. prepared.Reading.Assumptions.Where(a => !a.FromStudy)];
         if (defaults.Length > 0)
         {
             to.WriteLine();
             to.WriteLine("Not stated by the study, so these defaults enter:");
             foreach (Assumption assumption in defaults)
+            {
+                to.Write(WhyText.Wrap(Failure.OneLine(AssumptionText.Line(assumption)), 2));
+            }
+        }
+
+        if (prepared.Found.Count > 0)
+        {
+            to.WriteLine();
+            to.WriteLine("Read off the recording:");
+            foreach (Assumption assumption in prepared.Found)
             {
                 to.Write(WhyText.Wrap(Failure.OneLine(AssumptionText.Line(assumption)), 2));
             }

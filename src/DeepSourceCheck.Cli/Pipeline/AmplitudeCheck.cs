@@ -20,7 +20,7 @@ internal static class AmplitudeCheck
         var warnings = new List<string>();
         foreach (ResponseResult response in responses)
         {
-            string key = response.Response.Key + ".moment_nAm";
+            string key = response.Response.Key + ".moment_nAm", place = response.Response.Amplitude is null ? key : response.Response.Key + ".amplitude.peak_uV";
             foreach (RegionResult region in response.Regions)
             {
                 foreach (VerdictResult verdict in region.Verdicts.DistinctBy(v => (v.Modality, v.Measure)))
@@ -35,12 +35,12 @@ internal static class AmplitudeCheck
                     PlausibilityJudgement judgement = Plausibility.Judge(key, peak.Value, low, high, peak.Unit, reading.Study.AcceptImplausible, what);
                     if (judgement.Is == Plausible.Problem && peak.Value > high)
                     {
-                        throw new InputException([reading.Problem(key, judgement.Text)]);
+                        throw new InputException([reading.Problem(place, judgement.Text)]);
                     }
 
                     if (judgement.Is != Plausible.Yes)
                     {
-                        warnings.Add(peak.Value > high ? $"{key}: {judgement.Text}" : string.Create(CultureInfo.InvariantCulture,
+                        warnings.Add(peak.Value > high ? $"{place}: {judgement.Text}" : string.Create(CultureInfo.InvariantCulture,
                             $"{response.Response.Name}: {what} {peak.Value:G2} {peak.Unit} is far below anything published ({low} to {high:N0} {peak.Unit})"));
                     }
                 }

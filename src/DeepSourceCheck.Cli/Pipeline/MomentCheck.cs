@@ -50,8 +50,8 @@ internal static class MomentCheck
             foreach (RegionResult region in result.Regions)
             {
                 PlausibilityJudgement judgement = Plausibility.Judge(key, Round(Si.ToNanoAmpereMetres(region.Moment)), usual.Low, usual.High, "nAm", reading.Study.AcceptImplausible,
-                    $"the moment of {region.Region} that the amplitude at {result.Response.Amplitude!.Derivation} asks for,");
-                Take(reading, key, judgement, warnings);
+                    $"the moment of {region.Region} that follows from amplitude.peak_uV at {result.Response.Amplitude!.Derivation},");
+                Take(reading, Amplitude(result.Response), judgement, warnings);
             }
 
             warnings.AddRange(Judge(reading, setup, result.Response, key, name => (result.Regions.FirstOrDefault(r => r.Region == name) ?? result.Regions[0]).Moment));
@@ -60,7 +60,11 @@ internal static class MomentCheck
         return [.. warnings.Distinct()];
     }
 
+    // What accept_implausible names, stated or found.
     private static string Key(Response response) => response.Key + ".moment_nAm";
+
+    // Where a found moment stands in the study: the key that it follows from.
+    private static string Amplitude(Response response) => response.Key + ".amplitude.peak_uV";
 
     private static List<string> Judge(StudyReading reading, StudySetup setup, Response response, string key, Func<string, double> momentOf)
     {
@@ -75,8 +79,8 @@ internal static class MomentCheck
 
                 double area = CrossSection(volume);
                 string what = string.Create(CultureInfo.InvariantCulture,
-                    $"against 2 nAm/mm2 over the {area * 1e6:0.#} mm2 of {region.Name} (cross-section of a sphere of its volume), the moment of");
-                Take(reading, key,
+                    $"against 2 nAm/mm2 over the {area * 1e6:0.#} mm2 of {region.Name} (cross-section of a sphere of its volume), the moment {(response.Amplitude is null ? "" : "that follows from amplitude.peak_uV ")}of");
+                Take(reading, response.Amplitude is null ? key : Amplitude(response),
                     Plausibility.Judge(key, response.Amplitude is null ? moment : Round(moment), 0, Round(Si.ToNanoAmpereMetres(LargestDensity * area)), "nAm", reading.Study.AcceptImplausible, what), warnings);
             }
         }

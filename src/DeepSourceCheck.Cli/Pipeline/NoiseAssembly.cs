@@ -1,6 +1,7 @@
 using System.Globalization;
 
 using DeepSourceCheck.Core.Noise;
+using DeepSourceCheck.Core.Noise.Recordings;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -46,7 +47,13 @@ internal static class NoiseAssembly
         }
 
         JudgeReference(reading, sensors, eegCovariance, warnings);
-        CheckDerivations(reading, sensors, eegCovariance);
+        CheckDerivations(reading, sensors, eegCovariance, EegCovarianceKey);
+        IReadOnlyList<RecordedNoise> recorded = choice.EegRecording is { } recording && sensors.Electrodes.Count > 0
+            ? BaselineAssembly.Build(reading, recording, sensors, inputs, warnings) : [];
+        foreach (RecordedNoise noise in recorded)
+        {
+            CheckDerivations(reading, sensors, noise.Covariance, BaselineAssembly.Key);
+        }
 
         double[]? total = choice.EegTotal is { } stated && sensors.Electrodes.Count > 0
             ? Derivation.Parse(stated.Derivation, [.. sensors.Electrodes.Select(e => e.Name)], study.Eeg?.Layout is not null, "noise.eeg_total.derivation").Weights(sensors.Electrodes)
@@ -70,7 +77,7 @@ internal static class NoiseAssembly
             brain, effective.Environment is null ? null : sensors.Channels);
         try
         {
-            NoiseModel model = builder.Build(eegCovariance, megCovariance, study.Responses);
+            NoiseModel model = builder.Build(eegCovariance, megCovariance, study.Responses, recorded);
             warnings.AddRange(builder.Warnings);
             CheckSamples(reading, model);
             return new BuiltNoise(model, model.MegOperator is null ? null : builder.Environment);
@@ -88,7 +95,7 @@ internal static class NoiseAssembly
     {
         NoiseChoice choice = study.Noise ?? new NoiseChoice();
         return NoiseBuilder.WantsBrain(choice)
-            && ((sensors.Electrodes.Count > 0 && choice.EegCovariance is null && choice.EegRms is null)
+            && ((sensors.Electrodes.Count > 0 && choice.EegCovariance is null && choice.EegRms is null && choice.EegRecording is null)
                 || (sensors.MegReported && choice.MegCovariance is null && choice.MegRms is null));
     }
 
@@ -193,7 +200,7 @@ internal static class NoiseAssembly
     }
 
     // A derivation that is exactly zero in the recording has neither signal nor noise.
-    private static void CheckDerivations(StudyReading reading, SensorAssembly sensors, double[]? covariance)
+    private static void CheckDerivations(StudyReading reading, SensorAssembly sensors, double[]? covariance, string key)
     {
         if (covariance is null)
         {
@@ -215,12 +222,13 @@ internal static class NoiseAssembly
 
             if (!(variance > 1e-12 * scale))
             {
-                throw new InputException([reading.Problem(EegCovarianceKey, $"the derivation {name} has no variance in it; leave the derivation out, or give the covariance of all electrodes")]);
+                throw new InputException([reading.Problem(key, $"the derivation {name} has no variance in it; leave the derivation out, or give the covariance of all electrodes")]);
             }
         }
     }
 
-    private static void Judge(StudyReading reading, List<string> warnings, string key, double value, double low, double high, string unit, string what)
+    /// <summary>Warns of a value that is far from what is usual, or refuses it.</summary>
+    internal static void Judge(StudyReading reading, List<string> warnings, string key, double value, double low, double high, string unit, string what)
     {
         PlausibilityJudgement judgement = Plausibility.Judge(key, value, low, high, unit, reading.Study.AcceptImplausible, what);
         switch (judgement.Is)

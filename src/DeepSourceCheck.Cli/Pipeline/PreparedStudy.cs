@@ -34,7 +34,10 @@ internal sealed record PreparedStudy
     public required IReadOnlyList<string> Warnings { get; init; }
 
     /// <summary>Every value that enters.</summary>
-    public IReadOnlyList<Assumption> Assumptions => Reading.Assumptions;
+    public IReadOnlyList<Assumption> Assumptions => [.. Reading.Assumptions, .. Found];
+
+    /// <summary>Values that were read off the study's files.</summary>
+    public IReadOnlyList<Assumption> Found { get; init; } = [];
 
     /// <summary>Electrodes in use.</summary>
     public int Electrodes => Setup.Source.EegRows;

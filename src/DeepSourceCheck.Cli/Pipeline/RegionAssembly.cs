@@ -48,7 +48,9 @@ internal sealed class RegionAssembly
         }
 
         HashSet<string> named = [.. reading.Study.Regions.Select(r => r.Name)];
-        foreach ((string name, string key) in reading.Study.Responses.SelectMany(r => r.Regions.Select(name => (name, r.Key + ".regions"))))
+        IEnumerable<(string Name, string Key)> competitors = purpose == Purpose.Leadfield ? []
+            : reading.Study.Responses.SelectMany(r => r.Competitors.Select((c, k) => (c.Region, $"{r.Key}.competitors[{k}].region")));
+        foreach ((string name, string key) in reading.Study.Responses.SelectMany(r => r.Regions.Select(name => (name, r.Key + ".regions"))).Concat(competitors))
         {
             if (named.Add(name))
             {

@@ -70,6 +70,7 @@ internal sealed class StudyPlan
             Reading = _reading,
             Setup = noise?.Into(setup) ?? setup,
             Inputs = _inputs.Files,
+            Found = BaselineAssembly.Found(noise?.Model.EegRecorded ?? []),
             Warnings = [.. _warnings.Distinct()],
             PredictedMemory = Memory,
             PredictedSeconds = Seconds,

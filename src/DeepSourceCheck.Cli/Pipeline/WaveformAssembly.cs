@@ -13,6 +13,9 @@ internal static class WaveformAssembly
     // Cycles of the upper edge of the band over which a waveform may last: beyond, it is a recording rather than a response.
     private const double MostCycles = 2000;
 
+    // Share of the peak at which a table may start and end: below, the step is lost in any noise of the table itself.
+    private const double MostStep = 0.02;
+
     // A band that leaves less than this of the peak does not record the response.
     private const double LeastKept = 1e-3;
 
@@ -40,6 +43,10 @@ internal static class WaveformAssembly
         return tables;
     }
 
+    // The larger of the first and the last value, over the peak.
+    private static double Step(Waveform course) =>
+        Math.Max(Math.Abs(course.At(course.FirstTime)), Math.Abs(course.At(course.LastTime))) / course.Knots.Max(t => Math.Abs(course.At(t)));
+
     private static SampledWaveform Read(WaveformFileChoice file, Response response, InputDigests inputs)
     {
         try
@@ -55,6 +62,12 @@ internal static class WaveformAssembly
 
     private static void Judge(StudyReading reading, Response response, Waveform course, List<string> warnings)
     {
+        if (course is SampledWaveform && Step(course) is > MostStep and var step)
+        {
+            warnings.Add(string.Create(CultureInfo.InvariantCulture,
+                $"{response.Key}.waveform: the table starts or ends at {step * 100:0} % of its peak; outside it the response is 0, so that this step counts as part of it: let the table start and end at the baseline"));
+        }
+
         string key = response.Key + (response.Waveform is OscillationChoice ? ".cycles" : ".waveform");
         double cycles = (course.LastTime - course.FirstTime) * response.Band.High;
         if (cycles > MostCycles)

@@ -43,7 +43,7 @@ public sealed class HotellingRule : DetectionTest
     private protected override double PowerOf(double effectivePower, double trials)
     {
         double below = trials - _rows;
-        return below > 0 ? NoncentralF.Survival(NoncentralF.Critical(AlphaOfOne, _rows, below), _rows, below, trials * effectivePower / _kept) : 0;
+        return below >= 1 ? NoncentralF.Survival(NoncentralF.Critical(AlphaOfOne, _rows, below), _rows, below, trials * effectivePower / _kept) : 0;
     }
 
     private protected override double RequiredPower(double trials)

@@ -31,6 +31,7 @@ public sealed record RuleReading(
         return measure switch
         {
             MatchedFilterMeasure => new(modality, measure.Name, space.Rank(modality), NoiseFactor: noiseFactor, KeptByFilter: space.KeptByFilter(modality)),
+            SumMeasure sum => new(modality, measure.Name, sum.Parts.Sum(p => Of(p, space, noiseFactor).Rows), NoiseFactor: noiseFactor),
             PairMeasure => new(modality, measure.Name, 2, NoiseFactor: noiseFactor),
             DerivationMeasure => new(modality, measure.Name, 1, OnePoint: true, noiseFactor),
             BestChannelMeasure => new(modality, measure.Name, 1, OnePoint: modality == Modality.Eeg, NoiseFactor: noiseFactor),

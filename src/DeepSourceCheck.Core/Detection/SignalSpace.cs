@@ -46,8 +46,8 @@ public sealed class SignalSpace
             EegSd = [.. EegChannels.Select(k => Math.Sqrt(covariance[k * n + k]))];
             EegNames = [.. EegChannels.Select(k => reference.Names[k])];
             EegWhitener = Whitener.Of(covariance, n);
-            EegCorrection = Correction(noise.EegSamples, EegWhitener.Rank);
-            _eegKept = Kept(noise.EegSamples, EegWhitener.Rank);
+            EegCorrection = noise.EegHeldOut ?? Correction(noise.EegSamples, EegWhitener.Rank);
+            _eegKept = noise.EegHeldOut ?? Kept(noise.EegSamples, EegWhitener.Rank);
             if (derivations is not null)
             {
                 double[] d = derivations.ApplyToCovariance(noise.Eeg);
@@ -115,7 +115,7 @@ public sealed class SignalSpace
     /// <summary>Whitener of all referenced electrodes; null without EEG.</summary>
     public Whitener? EegWhitener { get; private set; }
 
-    /// <summary>Factor on the EEG filter's power for a covariance from finitely many samples; 1 for an exact one.</summary>
+    /// <summary>Factor on the EEG filter's power for a covariance from finitely many samples: of the formula below, or held out where it was shrunk; 1 for an exact one.</summary>
     public double EegCorrection { get; } = 1;
 
     /// <summary>Noise standard deviation of each MEG channel [T or T/m].</summary>
@@ -193,12 +193,12 @@ public sealed class SignalSpace
     }
 
     /// <summary>
-    /// What remains of the filter's power when the covariance came from nu independent samples of p channels: the inverse is too large by nu/(nu-p-1), and a filter made from it keeps
+    /// What remains of the filter's power [share, without unit] when the covariance came from nu independent samples of p channels: the inverse is too large by nu/(nu-p-1), and a filter made from it keeps
     /// (nu-p+2)/(nu+1) of the ideal power. Source: Reed, Mallett and Brennan 1974, IEEE Trans Aerosp Electron Syst 10:853 (from memory).
     /// </summary>
     /// <param name="samples">nu, or null for an exact covariance.</param>
     /// <param name="rank">p.</param>
-    private static double Correction(double? samples, int rank) =>
+    public static double Correction(double? samples, int rank) =>
         samples is { } nu ? (nu - rank - 1) / nu * Kept(nu, rank) : 1;
 
     private static double Kept(double? samples, int rank) => samples is { } nu ? (nu - rank + 2) / (nu + 1) : 1;

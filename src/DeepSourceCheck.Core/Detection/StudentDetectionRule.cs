@@ -29,7 +29,7 @@ public sealed class StudentDetectionRule : DetectionTest
         effectivePower > 0 ? CountSearch.Smallest(n => PowerOf(effectivePower, n), Power, 2, _known / effectivePower) : double.PositiveInfinity;
 
     private protected override double PowerOf(double effectivePower, double trials) =>
-        trials > 1 ? NoncentralT.Survival(NoncentralT.Critical(AlphaOfOne, trials - 1), trials - 1, Math.Sqrt(trials * effectivePower)) : 0;
+        trials >= 2 ? NoncentralT.Survival(NoncentralT.Critical(AlphaOfOne, trials - 1), trials - 1, Math.Sqrt(trials * effectivePower)) : 0;
 
     private protected override double RequiredPower(double trials)
     {

@@ -23,6 +23,9 @@ public interface IHead
     /// <summary>Distance below the scalp [m], or null where the head has no surface.</summary>
     double? Depth(Vec3 point);
 
+    /// <summary>Radius of the head [m]: a place that is known no better is not known; null where the head has none.</summary>
+    double? Radius => null;
+
     /// <summary>Distance below the inner surface of the skull [m]; null where the head has none, or the point does not lie within it.</summary>
     double? DepthBelowInnerSkull(Vec3 point);
 

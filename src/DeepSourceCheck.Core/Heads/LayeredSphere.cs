@@ -102,6 +102,9 @@ public sealed class LayeredSphere : IHead
     public bool IsSymmetryCentre(Vec3 point) => (point - Centre).Norm <= CentreTolerance;
 
     /// <inheritdoc/>
+    public double? Radius => OuterRadius;
+
+    /// <inheritdoc/>
     public double? Depth(Vec3 point) => OuterRadius - (point - Centre).Norm;
 
     /// <inheritdoc/>

@@ -15,6 +15,9 @@ public interface ILeadfieldSource
     /// <summary>How its values come about.</summary>
     LeadfieldMethod Method { get; }
 
+    /// <summary>Step [m] over which its values change smoothly with place, for differences; null where it knows no places between its points.</summary>
+    double? PositionStep => null;
+
     /// <summary>Overwrites the block's EEG and MEG values at its loaded positions.</summary>
     void Fill(LeadfieldBlock block);
 

@@ -36,6 +36,9 @@ public sealed class ProjectedSource : ILeadfieldSource
     public LeadfieldMethod Method { get; }
 
     /// <inheritdoc/>
+    public double? PositionStep => Inner.PositionStep;
+
+    /// <inheritdoc/>
     public SupportCounts? Supports(ReadOnlyMemory<Vec3> positions, CancellationToken cancellation) => Inner.Supports(positions, cancellation);
 
     /// <inheritdoc/>

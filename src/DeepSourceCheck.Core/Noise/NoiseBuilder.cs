@@ -1,6 +1,7 @@
 using System.Globalization;
 
 using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Noise.Recordings;
 using DeepSourceCheck.Core.Sensors;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -56,12 +57,13 @@ public sealed class NoiseBuilder
     /// <param name="eegCovariance">Measured EEG covariance of one trial [V^2], or null.</param>
     /// <param name="megCovariance">Measured MEG covariance of one trial, or null.</param>
     /// <param name="responses">Responses, whose bands the noise must make sense in.</param>
+    /// <param name="eegRecorded">EEG noise from a recording in the responses' bands; null or empty for none.</param>
     /// <exception cref="InputException">Instrument and brain exceed the stated total over a response's band.</exception>
-    public NoiseModel Build(double[]? eegCovariance, double[]? megCovariance, IReadOnlyList<Response> responses)
+    public NoiseModel Build(double[]? eegCovariance, double[]? megCovariance, IReadOnlyList<Response> responses, IReadOnlyList<RecordedNoise>? eegRecorded = null)
     {
         double[]? eegPerTrial = eegCovariance ?? (_choice.EegRms is { } e ? Diagonal(_electrodes, e) : null);
         double[]? megPerTrial = megCovariance ?? (_choice.MegRms is { } m ? Diagonal(_coils.Count, m) : null);
-        bool spectralEeg = _electrodes > 0 && eegPerTrial is null, spectralMeg = _coils.Count > 0 && megPerTrial is null;
+        bool spectralEeg = _electrodes > 0 && eegPerTrial is null && eegRecorded is not { Count: > 0 }, spectralMeg = _coils.Count > 0 && megPerTrial is null;
         var terms = new List<INoiseTerm>();
         if (spectralEeg || spectralMeg)
         {
@@ -116,6 +118,7 @@ public sealed class NoiseBuilder
             Terms = terms,
             MegOperator = spectralMeg && _choice.Environment is { Removed: true } && _channels is { Count: > 0 } ? Removal(_channels) : null,
             EegPerTrial = eegPerTrial,
+            EegRecorded = eegRecorded ?? [],
             MegPerTrial = megPerTrial,
             EegSamples = eegCovariance is null ? null : _choice.EegCovariance?.Samples,
             MegSamples = megCovariance is null ? null : _choice.MegCovariance?.Samples,
@@ -170,7 +173,8 @@ public sealed class NoiseBuilder
         double fits = brain > 0 && all > rest ? Math.Floor(100 * _choice.BrainScale * Math.Sqrt((all - rest) / brain)) / 100 : 0;
         string quieter = fits > 0
             ? string.Create(CultureInfo.InvariantCulture, $", or, if your participants' brains are quieter than the tables, write noise.brain: {{scale: {fits:0.##}}} or less, which holds for EEG and MEG, or give tables of your own (noise.brain: {{eeg_table: f.csv}}), or noise.brain: none")
-            : brain > 0 ? ", or noise.brain: none if your participants' brains are quieter than the tables" : ", or a quieter amplifier under noise.eeg_sensor_nV_per_rtHz";
+            : brain > 0 && all > rest ? ", or noise.brain: none if your participants' brains are quieter than the tables"
+            : ", or a quieter amplifier under noise.eeg_sensor_nV_per_rtHz, whose noise alone is more than the total";
         throw new InputException(null, "noise.eeg_total.rms_uV", string.Create(CultureInfo.InvariantCulture,
             $"over the band of {response.Name}, {low:0.###} to {high:0.###} Hz, the stated total comes to {Si.ToMicrovolts(Math.Sqrt(all)):0.###} uV rms in {stated.Derivation}, less than what is in it ({parts}); nothing is left for muscle and electrodes: state what you measure, above {Si.ToMicrovolts(enough):0.##} uV rms over {stated.Band.Low:0.###} to {stated.Band.High:0.###} Hz{quieter}"));
     }

@@ -21,6 +21,9 @@ public sealed class NoiseCovariance
     /// <summary>Number of independent samples from which the EEG covariance was estimated; null for exact.</summary>
     public double? EegSamples { get; init; }
 
+    /// <summary>Share of its promised power that a filter reaches on data that it has not seen, where the EEG covariance was shrunk and <see cref="EegSamples"/> says nothing of it; null for others.</summary>
+    public double? EegHeldOut { get; init; }
+
     /// <summary>Number of independent samples from which the MEG covariance was estimated; null for exact.</summary>
     public double? MegSamples { get; init; }
 }

@@ -1,4 +1,5 @@
 using DeepSourceCheck.Core.Leadfields;
+using DeepSourceCheck.Core.Noise.Recordings;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Noise;
@@ -8,6 +9,13 @@ public sealed class NoiseModel
 {
     /// <summary>The cause of a reading whose noise is a flat figure or a measured covariance.</summary>
     public const string StatedPerTrial = "stated per trial";
+
+    /// <summary>The cause of a reading whose noise is a recording.</summary>
+    public const string FromRecording = "recorded";
+
+    /// <summary>True for a cause that is all of the noise over the response's band and has no spectrum.</summary>
+    /// <param name="cause">Name of a cause.</param>
+    public static bool IsWhole(string cause) => cause is StatedPerTrial or FromRecording;
 
     /// <summary>Number of electrodes; 0 without EEG.</summary>
     public required int EegRows { get; init; }
@@ -38,12 +46,27 @@ public sealed class NoiseModel
     /// <summary>Number of independent samples of the MEG covariance; null for exact.</summary>
     public double? MegSamples { get; init; }
 
+    /// <summary>EEG noise from a recording, one for the band of each response, that replaces the terms; empty for none.</summary>
+    public IReadOnlyList<RecordedNoise> EegRecorded { get; init; } = [];
+
+    /// <summary>EEG noise from a recording in the band of a response; null where there is no recording.</summary>
+    /// <param name="band">The band.</param>
+    public RecordedNoise? Recorded(Band band) => EegRecorded.Count == 0 ? null
+        : EegRecorded.FirstOrDefault(r => r.Band == band) ?? throw new ArgumentException($"No response has the band {band.Low} to {band.High} Hz; the recording was not filtered for it.", nameof(band));
+
+    /// <summary>True where the EEG noise is stated per trial or recorded: no term has a share in it.</summary>
+    public bool EegIsStated => EegPerTrial is not null || EegRecorded.Count > 0;
+
+    /// <summary>EEG covariance of one trial [V^2] that replaces the terms: a stated one whatever the response, a recorded one in the response's band; null where there is none.</summary>
+    /// <param name="band">Band of the response.</param>
+    public double[]? EegStated(Band band) => Recorded(band)?.Covariance ?? EegPerTrial;
+
     /// <summary>Covariance of one trial in a band [Hz].</summary>
-    public NoiseCovariance InBand(double low, double high) => Weighted(term => BandIntegral.Nodes(low, high, term.Breakpoints));
+    public NoiseCovariance InBand(double low, double high) => Weighted(term => BandIntegral.Nodes(low, high, term.Breakpoints), new Band(low, high));
 
     /// <summary>Covariance of one trial of a response: over its band, or in the bin at the frequency of a steady-state response.</summary>
     /// <param name="response">The response.</param>
-    public NoiseCovariance Of(Response response) => Weighted(term => Nodes(response, term));
+    public NoiseCovariance Of(Response response) => Weighted(term => Nodes(response, term), response.Band);
 
     /// <summary>Covariance of one term at unit power, without what is stated per trial.</summary>
     /// <param name="term">One of <see cref="Terms"/>.</param>
@@ -54,9 +77,9 @@ public sealed class NoiseModel
         {
             EegRows = EegRows,
             MegRows = MegRows,
-            Eeg = EegPerTrial is null ? unit.Eeg : new double[unit.Eeg.Length],
+            Eeg = !EegIsStated ? unit.Eeg : new double[unit.Eeg.Length],
             Meg = MegPerTrial is not null ? new double[unit.Meg.Length] : MegOperator is { } p ? p.ApplyToCovariance(unit.Meg) : unit.Meg,
-            Cross = EegPerTrial is null && MegPerTrial is null ? Projected(unit.Cross) : null,
+            Cross = !EegIsStated && MegPerTrial is null ? Projected(unit.Cross) : null,
         };
     }
 
@@ -78,23 +101,25 @@ public sealed class NoiseModel
     /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
     /// <param name="response">The response.</param>
     public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, Response response) =>
-        Contributions(eeg, megChannel, term => Nodes(response, term));
+        Contributions(eeg, megChannel, term => Nodes(response, term), response.Band);
 
     // A trial of T seconds resolves bins of 1/T: one at the frequency, with density / T.
     private static IReadOnlyList<BandNode> Nodes(Response response, INoiseTerm term) => response.Steady is { } steady
         ? [new BandNode(steady.Frequency, 1 / steady.Seconds)] : BandIntegral.Nodes(response.Band.Low, response.Band.High, term.Breakpoints);
 
-    private NoiseCovariance Weighted(Func<INoiseTerm, IReadOnlyList<BandNode>> nodes)
+    private NoiseCovariance Weighted(Func<INoiseTerm, IReadOnlyList<BandNode>> nodes, Band band)
     {
+        double[]? eeg = EegStated(band);
         NoiseCovariance spectral = BandCovariance.Integrate(Terms, EegRows, MegRows, nodes);
         return new NoiseCovariance
         {
             EegRows = EegRows,
             MegRows = MegRows,
-            Eeg = EegPerTrial ?? spectral.Eeg,
+            Eeg = eeg ?? spectral.Eeg,
             Meg = MegPerTrial ?? (MegOperator is { } p ? p.ApplyToCovariance(spectral.Meg) : spectral.Meg),
-            Cross = EegPerTrial is null && MegPerTrial is null ? Projected(spectral.Cross) : null,
+            Cross = eeg is null && MegPerTrial is null ? Projected(spectral.Cross) : null,
             EegSamples = EegSamples,
+            EegHeldOut = Recorded(band)?.HeldOutShare,
             MegSamples = MegSamples,
         };
     }
@@ -107,6 +132,7 @@ public sealed class NoiseModel
         MegRows = MegRows,
         Terms = more is null ? Terms : [.. Terms, more],
         EegPerTrial = EegPerTrial,
+        EegRecorded = EegRecorded,
         MegPerTrial = MegPerTrial,
         EegSamples = EegSamples,
         MegSamples = MegSamples,
@@ -117,16 +143,16 @@ public sealed class NoiseModel
     /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
     /// <param name="low">Lower edge [Hz].</param>
     /// <param name="high">Upper edge [Hz].</param>
-    /// <returns>(cause, variance [V^2, T^2 or (T/m)^2]); a single `stated` one where a per-trial covariance replaces the terms.</returns>
+    /// <returns>(cause, variance [V^2, T^2 or (T/m)^2]); a single one, for which <see cref="IsWhole"/> holds, where a per-trial covariance replaces the terms.</returns>
     public IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, double low, double high) =>
-        Contributions(eeg, megChannel, term => BandIntegral.Nodes(low, high, term.Breakpoints));
+        Contributions(eeg, megChannel, term => BandIntegral.Nodes(low, high, term.Breakpoints), new Band(low, high));
 
-    private IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, Func<INoiseTerm, IReadOnlyList<BandNode>> nodes)
+    private IReadOnlyList<(string Cause, double Variance)> Contributions(double[]? eeg, int megChannel, Func<INoiseTerm, IReadOnlyList<BandNode>> nodes, Band band)
     {
         double[] weights = eeg ?? MegWeights(megChannel);
-        if ((eeg is null ? MegPerTrial : EegPerTrial) is { } stated)
+        if ((eeg is null ? MegPerTrial : EegStated(band)) is { } stated)
         {
-            return [(StatedPerTrial, Quadratic(stated, weights))];
+            return [(eeg is not null && EegRecorded.Count > 0 ? FromRecording : StatedPerTrial, Quadratic(stated, weights))];
         }
 
         return [.. Present(eeg is null, weights).Select(t =>
@@ -143,7 +169,7 @@ public sealed class NoiseModel
     /// </returns>
     public IReadOnlyList<(string Cause, double[] Power)> Spectra(double[]? eeg, int megChannel, IReadOnlyList<double> frequencies)
     {
-        if ((eeg is null ? MegPerTrial : EegPerTrial) is not null)
+        if (eeg is null ? MegPerTrial is not null : EegIsStated)
         {
             return [];
         }
@@ -202,7 +228,7 @@ public sealed class NoiseModel
     /// <param name="megChannel">Index of the MEG channel, used where <paramref name="eeg"/> is null.</param>
     public Func<double, double>? Density(double[]? eeg, int megChannel)
     {
-        if ((eeg is null ? MegPerTrial : EegPerTrial) is not null)
+        if (eeg is null ? MegPerTrial is not null : EegIsStated)
         {
             return null;
         }

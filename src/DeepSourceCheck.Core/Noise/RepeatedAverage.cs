@@ -7,11 +7,13 @@ namespace DeepSourceCheck.Core.Noise;
 /// Residual variance = integral S(f) |D_M(f)|^2 df over the band, |D_M|^2 = (sin(pi M f/r) / (M sin(pi f/r)))^2 for M stimuli at r a second: a comb on the harmonics of the rate. Where
 /// trials are rejected at random, of M presented N = M (1 - q) stay, and q s^2/N adds (derived: pairs of accepted trials thin out by (1 - q)^2, single ones by 1 - q). Moving each stimulus
 /// at random within a width w about its time multiplies what is above chance, |D_M|^2 - 1/M, by sinc^2(f w) (characteristic function of the uniform law). Within a period of the comb the
-/// density is taken at the middle of cells that widen away from the harmonic; beyond the first 64 harmonics, where spectra hardly change within a period, the comb is its mean 1/M.
+/// density is taken at the centroid of cells that widen away from the harmonic, good to 1e-3 for densities that are smooth on the scale of a 64th of the rate; for many trials
+/// variance/residual tends to integral S df / (r sum over k of S(k r)), a harmonic on an edge of the band counting half. Beyond the first 64 harmonics, where spectra hardly change within a period, the comb is its mean 1/M.
 /// </remarks>
 public static class RepeatedAverage
 {
-    private const int Harmonics = 64, LobePoints = 16, Lobes = 16;
+    private const int Harmonics = 64, CellPoints = 16, Lobes = 16;
+    private const double WidestCell = 1.0 / 64, Rounding = 1e-6;
 
     /// <summary>Effective over accepted trials, without unit: (s^2/N) over the residual variance of the average. 1 for white noise over many harmonics.</summary>
     /// <param name="density">One-sided power density at a frequency [Hz], of what is read.</param>
@@ -26,21 +28,19 @@ public static class RepeatedAverage
         Func<double, double> density, double low, double high, IReadOnlyList<double> breakpoints, double rate, double accepted, double rejected, double jitter)
     {
         double presented = Math.Ceiling(accepted / (1 - rejected));
+        low = Math.Max(low, BandIntegral.LowestShare * high);
         Cell[] cells = Cells(presented);
-        double variance = 0, locked = 0;                        // locked: presented times the comb's share
+        double locked = 0;                                                  // presented times the comb's share
         double first = Math.Round(low / rate), last = Math.Round(high / rate);
         double dense = last - first <= Harmonics + 1 ? last : first + Harmonics - 1;
+        // Halves of a period as pieces of their own resolve what the comb resolves.
+        IEnumerable<double> halves = Enumerable.Range(0, (int)(2 * (dense - first)) + 3).Select(k => (first - 0.5 + 0.5 * k) * rate);
+        double variance = BandIntegral.Of(density, low, high, [.. breakpoints, .. halves]);
         Add(first, dense, low, high);
         if (dense < last)
         {
             double from = (dense + 0.5) * rate, to = (last - 0.5) * rate;
-            if (to > from)
-            {
-                double middle = BandIntegral.Of(density, from, to, breakpoints);
-                variance += middle;
-                locked += middle;
-            }
-
+            locked += to > from ? BandIntegral.Of(density, from, to, breakpoints) : 0;
             Add(last, last, Math.Max(low, to), high);
         }
 
@@ -53,13 +53,13 @@ public static class RepeatedAverage
             {
                 foreach (Cell cell in cells)
                 {
-                    double f = (k + cell.Middle) * rate;
-                    if (f > from && f < to)
+                    double start = (k + cell.From) * rate, end = (k + cell.To) * rate, inside = (Math.Min(end, to) - Math.Max(start, from)) / (end - start);
+                    if (inside > 0)
                     {
-                        double power = density(f) * rate, kept = Sinc(f * jitter);
+                        double f = inside < 1 ? 0.5 * (Math.Min(end, to) + Math.Max(start, from)) : (k + cell.Centroid) * rate;
+                        double power = density(f) * rate * Math.Min(1, inside), kept = Sinc(f * jitter);
                         kept *= kept;
-                        variance += power * cell.Width;
-                        locked += power * (kept * cell.Mass * presented + (1 - kept) * cell.Width);
+                        locked += power * (kept * cell.Mass * presented + (1 - kept) * (cell.To - cell.From));
                     }
                 }
             }
@@ -69,46 +69,48 @@ public static class RepeatedAverage
     /// <summary>sin(pi x)/(pi x), without unit.</summary>
     internal static double Sinc(double x) => x == 0 ? 1 : Math.Sin(Math.PI * x) / (Math.PI * x);
 
+    // Eight cells in the first lobe, four in each of the next three, one in each up to the last; beyond, cells widen by a quarter. None is wider than a set share of the period.
     private static Cell[] Cells(double m)
     {
         var edges = new List<double> { 0 };
-        for (double edge = 0.5 / m; edge < 0.25; edge *= 2)
+        while (edges[^1] < 0.5)
         {
-            edges.Add(edge);
+            double at = edges[^1], lobe = at * m;
+            double width = lobe < 1 - Rounding ? 0.125 / m : lobe < 4 - Rounding ? 0.25 / m : lobe < Lobes - Rounding ? 1 / m : 0.25 * at;
+            double next = at + Math.Min(width, WidestCell);
+            edges.Add(next > 0.5 - Rounding / m ? 0.5 : next);
         }
 
-        edges.AddRange([0.35, 0.5]);
         var cells = new List<Cell>();
         for (int k = 0; k + 1 < edges.Count; k++)
         {
-            double middle = 0.5 * (edges[k] + edges[k + 1]), width = edges[k + 1] - edges[k], mass = Mass(m, edges[k], edges[k + 1]);
-            cells.Add(new(middle, width, mass));
-            cells.Add(new(-middle, width, mass));
+            (double mass, double centroid) = Mass(m, edges[k], edges[k + 1]);
+            cells.Add(new(edges[k], edges[k + 1], centroid, mass));
+            cells.Add(new(-edges[k + 1], -edges[k], -centroid, mass));
         }
 
         return [.. cells];
     }
 
-    // Integral of (sin(pi m u) / (m sin(pi u)))^2 from a to b, 0 <= a < b <= 1/2; beyond 16 lobes with sin^2 at its mean of 1/2.
-    private static double Mass(double m, double a, double b)
+    // Integral and centroid of (sin(pi m u) / (m sin(pi u)))^2 from a to b, 0 <= a < b <= 1/2; beyond 16 lobes with sin^2 at its mean of 1/2.
+    private static (double Mass, double Centroid) Mass(double m, double a, double b)
     {
-        double near = Math.Min(b, Math.Max(a, Lobes / m)), sum = 0;
-        if (near > a)
+        bool far = a >= (Lobes - Rounding) / m;
+        double step = (b - a) / CellPoints, sum = 0, moment = 0;
+        for (int k = 0; k < CellPoints; k++)
         {
-            int points = Math.Max(LobePoints, (int)Math.Ceiling(LobePoints * m * (near - a)));
-            double step = (near - a) / points;
-            for (int k = 0; k < points; k++)
-            {
-                double u = a + (k + 0.5) * step, ratio = Math.Sin(Math.PI * m * u) / (m * Math.Sin(Math.PI * u));
-                sum += ratio * ratio * step;
-            }
+            double u = a + (k + 0.5) * step, below = m * Math.Sin(Math.PI * u), above = Math.Sin(Math.PI * m * u);
+            double comb = (far ? 0.5 : above * above) / (below * below);
+            sum += comb * step;
+            moment += comb * step * u;
         }
 
-        return near < b ? sum + (Cot(near) - Cot(b)) / (2 * Math.PI * m * m) : sum;
+        double centroid = sum > 0 ? moment / sum : 0.5 * (a + b);
+        return (far ? (Cot(a) - Cot(b)) / (2 * Math.PI * m * m) : sum, centroid);
     }
 
     private static double Cot(double u) => u >= 0.5 ? 0 : 1 / Math.Tan(Math.PI * u);
 
-    /// <summary>A piece of a period about a harmonic: middle, width and integral of the comb, in periods.</summary>
-    private readonly record struct Cell(double Middle, double Width, double Mass);
+    /// <summary>A piece of a period about a harmonic: edges, centroid and integral of the comb, in periods.</summary>
+    private readonly record struct Cell(double From, double To, double Centroid, double Mass);
 }

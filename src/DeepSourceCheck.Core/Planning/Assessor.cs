@@ -46,6 +46,7 @@ public static class Assessor
                 begun = true;
             }
 
+            CompetitorReport? competitors = response.Competitors.Count == 0 ? null : new CompetitorReport(setup, response, plans.Space, cancellation);
             var regions = new List<RegionResult>();
             foreach ((FilledRegion region, ILeadfieldSource source, IReadOnlyList<FilledRegion> parts) in Sources(setup, response, cancellation))
             {
@@ -59,11 +60,17 @@ public static class Assessor
                 RemovalLoss? loss = setup.Removal is null || !setup.MegReported ? null
                     : new RemovalReport(own, asked).Of(region, source, source is SummedSource ? new SummedSource(setup.Removal.Source, parts, Activation.Weights(response), cancellation) : setup.Removal.Source, cancellation);
                 RegionResult result = Result(own, read, region, source, parts, loss, cancellation);
+                result = result with
+                {
+                    Competitors = competitors?.Of(read[0].Plan, own, region, source, result.Results, cancellation),
+                    Location = new LocationReport(own, read[0].Plan).Of(region, source, cancellation),
+                    Electrodes = response.ChooseSensors ? new ElectrodeReport(own, read[0].Plan, setup.Noise!.Of(response)).Of(region, source, cancellation) : null,
+                };
                 EvaluationPlan? matched = read.Select(r => r.Plan).FirstOrDefault(p => p.IsSpectral && p.View.Errors is null);
                 regions.Add(setup.Study.Unknowns is null ? result : Unsure(result, new UnknownsRun(own, read[0].Plan, own.Head, source, region, parts, matched).Run(cancellation)));
             }
 
-            results.Add(new ResponseResult(response, regions) { SessionTrials = plan.SessionTrials, Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [] });
+            results.Add(new ResponseResult(response, regions) { SessionTrials = plan.SessionTrials, Waveform = plans.Waveform, Spectra = regions.Count > 0 ? new SpectrumReader(setup, plan).Of(regions[0]) : [], Recording = setup.Noise!.Recorded(response.Band) });
         }
 
         return results;

@@ -49,10 +49,9 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         }
 
         bool less = plan.View.Kept != 1 && !plan.IsSpectral;
-        if (less)
+        if (less && response.Amplitude is null)
         {
-            Add("kp", $"share of the peak that {(plan.View.Waveform is { } w ? $"filter and jitter leave: {w.Description}" : "the jitter leaves")}", plan.View.Kept, "", "",
-                (plan.View.Waveform is null ? "exp(-(2 pi f sigma)^2 / 2) at the response's frequency, " : "largest value of the waveform inside the response's band, ") + Jitter(), Grade.Derived);
+            Kept();
         }
 
         switch (measure)
@@ -91,7 +90,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
                 Add("q", measure is RealisticFilterMeasure ? "power of that filter at unit moment, (w'b)^2 / (w' C w)"
                     : measure is MatchedFilterMeasure ? "filter power at unit moment, b' C^-1 b" : "largest power over directions at unit moment",
                     witness.Power * plan.NoiseFactor / (plan.ReadMoment * plan.ReadMoment) * 1e-18, "1/nAm^2", "",
-                    plan.IsSpectral ? "4 integral |A(f)|^2 b' C(f)^-1 b df; whitened leadfield of this dipole" : "matched filter; whitened leadfield of this dipole", Grade.Derived);
+                    (plan.IsSpectral ? "4 integral |A(f)|^2 b' C(f)^-1 b df; whitened leadfield of this dipole" : "matched filter; whitened leadfield of this dipole") + HeldOut(measure), Grade.Derived);
                 Add("P", plan.IsSpectral ? "d^2 of one trial" : "power SNR of one trial", witness.Power, "", less ? "(a kp)^2 q / c^2" : "a^2 q / c^2", "definition", Grade.Derived);
                 break;
         }
@@ -103,7 +102,7 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         {
             Input("r", "stimuli per second", protocol.Rate, "1/s", "protocol.rate_per_s");
             Input("f", "share of trials that are rejected", protocol.RejectedFraction, "", "protocol.rejected_fraction");
-            Add("M", "presented trials", trials / (1 - protocol.RejectedFraction), "", "N / (1 - f)", "definition", Grade.Derived);
+            Add("M", "presented trials", SessionPlan.Presented(protocol, (long)trials) ?? double.PositiveInfinity, "", "ceil(N / (1 - f))", "definition", Grade.Derived);
             Add("T", "recording time", SessionPlan.Minutes(protocol, trials), "min", "N / (60 r (1 - f))", "definition", Grade.Derived);
             if (protocol.Conditions * protocol.Replications > 1 || protocol.Breaks is not null || protocol.Preparation is not null)
             {
@@ -118,6 +117,12 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         return [.. _lines];
     }
 
+    private void Kept()
+    {
+        Add("kp", $"share of the peak that {(plan.View.Waveform is { } w ? $"filter and jitter leave: {w.Description}" : "the jitter leaves")}", plan.View.Kept, "", "",
+            (plan.View.Waveform is null ? "exp(-(2 pi f sigma)^2 / 2) at the response's frequency, " : "largest value of the waveform inside the response's band, ") + Jitter(), Grade.Derived);
+    }
+
     private void Strength(Response response)
     {
         double moment = Si.ToNanoAmpereMetres(response.Moment);
@@ -125,8 +130,14 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         {
             double peak = Si.ToMicrovolts(known.Peak);
             Input("A0", $"amplitude known at {known.Derivation}", peak, "uV", "responses.amplitude.peak_uV");
-            Add("g0", $"leadfield at {known.Derivation}: median of its size over dipoles and directions", peak / moment, "uV/nAm", "", method.Eeg, Grade.Derived);
-            Add("a", "dipole moment that reads it", moment, "nAm", "A0 / g0", "linearity", Grade.Derived);
+            bool less = plan.View.Kept != 1;
+            if (less)
+            {
+                Kept();
+            }
+
+            Add("g0", $"leadfield at {known.Derivation}: median of its size over dipoles and directions", peak / (moment * plan.View.Kept), "uV/nAm", "", method.Eeg, Grade.Derived);
+            Add("a", $"dipole moment that reads it{(less ? ", at its peak before filter and jitter" : "")}", moment, "nAm", less ? "A0 / (g0 kp)" : "A0 / g0", "linearity", Grade.Derived);
         }
         else if (response.Density is { } density)
         {
@@ -210,11 +221,17 @@ internal sealed class DerivationChain(EvaluationPlan plan, NoiseModel noise, Lea
         {
             string symbol = "v" + (symbols.Count + 1).ToString(CultureInfo.InvariantCulture) + suffix;
             symbols.Add(symbol);
-            Add(symbol, $"noise variance at {channel}, {range}: {cause}", variance * perSi * perSi, unit + "^2", "", "noise of the study", Grade.Derived);
+            Add(symbol, $"noise variance at {channel}, {range}: {cause}", variance * perSi * perSi, unit + "^2", "", eeg ? NoiseSource(band) : "noise of the study", Grade.Derived);
         }
 
         Add("s" + suffix, $"noise of one trial at {channel}", sd * perSi, unit, $"sqrt({string.Join(" + ", symbols)})", "independent causes add", Grade.Derived);
     }
+
+    private string NoiseSource(Band band) => noise.Recorded(band) is not { } recorded ? "noise of the study" : string.Create(CultureInfo.InvariantCulture,
+        $"recording {recorded.File}: {recorded.SecondsUsed:0.##} of {recorded.SecondsRead:0.##} s used, {100 * recorded.RejectedShare:0.#} % of {recorded.Segments} segments rejected, {recorded.IndependentSamples:0} independent samples, shrunk by {recorded.Shrinkage:0.####} (Ledoit and Wolf 2004)");
+
+    private string HeldOut(IMeasure measure) => measure is not RealisticFilterMeasure && measure.Modality != Modality.Meg && noise.Recorded(plan.Response.Band) is { } recorded
+        ? string.Create(CultureInfo.InvariantCulture, $"; EEG times {recorded.HeldOutShare:0.####}, what filters from half of the recording reach on the other half") : "";
 
     private void Input(string symbol, string name, double value, string unit, string key) => _lines.Add(new(symbol, name, value, unit, "", key, null));
 

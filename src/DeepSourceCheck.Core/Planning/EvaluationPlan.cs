@@ -57,14 +57,19 @@ public sealed class EvaluationPlan
         if (eeg && megReported)
         {
             string[] chosen = [EegMeasure!, MegMeasure!];
-            string? filter = chosen.Contains(Names.RealisticFilter) ? Names.RealisticFilter : chosen.Contains(Names.MatchedFilter) ? Names.MatchedFilter : null;
-            BothMeasure = filter ?? EegMeasure;
+            string? filter = chosen.Contains(Names.RealisticFilter) ? Names.RealisticFilter : chosen.All(c => c == Names.MatchedFilter) ? Names.MatchedFilter : null;
+            BothMeasure = filter ?? (EegMeasure == Names.MatchedFilter ? MegMeasure : EegMeasure);
             if (View.Errors is null)
             {
                 measures.Add(new MatchedFilterMeasure(Modality.Both));
             }
 
-            if (filter is null && View.Errors is null)
+            if (filter is null && View.Errors is null && chosen.Contains(Names.MatchedFilter))
+            {
+                measures.Add(new SumMeasure(
+                    measures.First(m => m.Modality == Modality.Eeg && m.Name == EegMeasure), measures.First(m => m.Modality == Modality.Meg && m.Name == MegMeasure)));
+            }
+            else if (filter is null && View.Errors is null)
             {
                 measures.Add(new PairMeasure(space, space.Derivations?.Names.ToList().IndexOf(EegMeasure!) ?? -1));
             }
@@ -174,9 +179,18 @@ public sealed class EvaluationPlan
     public EvaluationPlan WithWindow(double windowPerPeak)
     {
         var plan = (EvaluationPlan)MemberwiseClone();
+        plan.WindowPerPeak = windowPerPeak;
         plan._rules = Bound(windowPerPeak);
         return plan;
     }
+
+    /// <summary>Rms over the window per peak amplitude that the rules know, without unit; NaN where they do not.</summary>
+    public double WindowPerPeak { get; private set; } = double.NaN;
+
+    /// <summary>The same plan against other noise.</summary>
+    /// <param name="space">The same channels under that noise.</param>
+    public EvaluationPlan Against(SignalSpace space) =>
+        new EvaluationPlan(Response, space, Targets, Protocol, MegReported, Directions.Contains(DirectionName.QuasiRadial), View) { WeightingGain = WeightingGain }.WithWindow(WindowPerPeak);
 
     private Dictionary<IMeasure, IReadOnlyList<ITargetRule>> Bound(double windowPerPeak) => Measures.ToDictionary(m => m, m =>
     {

@@ -12,7 +12,8 @@ namespace DeepSourceCheck.Core.Planning;
 
 // MomentFromAmplitude.cs - the moment that reads a known amplitude.
 //   g_d: gain at the derivation of dipole d in a direction of the verdict; g: the median of |g_d| over dipoles and directions, by nearest rank as counts are;
-//   a = A / g. What is known is the peak of the waveform as it is: filter and jitter of the study then act on both. One moment a region: what is known is one amplitude, and the spread over places stays visible in EEG and MEG alike.
+//   a = A / (k g), k the share of the peak that the study's filter and jitter leave (1 without a known course): an amplitude is read off an average that was filtered, and blurred by
+//   jitter, already. One moment a region: what is known is one amplitude, and the spread over places stays visible in EEG and MEG alike.
 
 /// <summary>Finds the moment of a region from an amplitude at the scalp.</summary>
 internal static class MomentFromAmplitude
@@ -32,7 +33,7 @@ internal static class MomentFromAmplitude
         RegionTally tally = new RegionRun(reading, head, source).Run(region, null, null, cancellation);
         double power = tally.Cells[0][0].Power.NearestRankFromTop(0.5) ?? 0;
         double amplitude = Math.Sqrt(power * plan.NoiseFactor) * plan.Space.DerivationSd[measure.Index];
-        double moment = plan.ReadMoment * known.Peak / amplitude;
+        double moment = plan.Response.Moment * known.Peak / amplitude;
         return double.IsFinite(moment) ? moment : throw new InputException(null, plan.Response.Key + ".amplitude.derivation", string.Create(CultureInfo.InvariantCulture,
             $"{region.Name} reads nothing at {known.Derivation} in the direction of the verdict ({Names.Of(reading.Directions[0])}): no moment gives {Si.ToMicrovolts(known.Peak):0.######} uV there; name a derivation that sees it, another direction, or state moment_nAm"));
     }

@@ -54,7 +54,7 @@ internal sealed class PlanSet
         {
             double? baseline = 2 * response.Band.Width * response.Baseline;
             _errors = new FilterErrors(response.PlaceError, setup.OtherHeads.Count > 0 ? setup.OtherHeads : [setup.Source], Space,
-                Samples(response, noise.EegSamples ?? baseline, Modality.Eeg), Samples(response, noise.MegSamples ?? baseline, Modality.Meg), setup.NearestPoint);
+                Samples(response, noise.EegSamples ?? baseline ?? model.Recorded(response.Band)?.IndependentSamples, Modality.Eeg), Samples(response, noise.MegSamples ?? baseline, Modality.Meg), setup.NearestPoint);
         }
     }
 
@@ -110,7 +110,7 @@ internal sealed class PlanSet
         int rank = read ? Space.Rank(modality) : 0;
         return samples is { } nu && read && nu <= rank + 1
             ? throw new InputException(null, response.Key + ".baseline_s", string.Create(CultureInfo.InvariantCulture,
-                $"2 x bandwidth x baseline is {nu:0.#} independent samples, from which no covariance of {rank} {Names.Of(modality)} rows can be inverted; more than {rank + 1} are needed: state a longer baseline, or fewer channels"))
+                $"twice the bandwidth times the baseline is {nu:0.#} independent samples, from which no covariance of {rank} {Names.Of(modality)} rows can be inverted; more than {rank + 1} are needed: state a longer baseline, or fewer channels"))
             : samples;
     }
 }

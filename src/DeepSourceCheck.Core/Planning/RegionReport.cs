@@ -72,7 +72,7 @@ internal sealed class RegionReport(EvaluationPlan plan, RegionTally tally, bool 
     {
         if (rule.Absent is { } absent)
         {
-            return new TargetResult(rule.Name, new(null, null, null, null, null), null, null, null, cell.Power.Count == 0 ? UndefinedReason : absent);
+            return new TargetResult(rule.Name, new(null, null, null, null, null), null, null, null, cell.Power.Count == 0 ? UndefinedReason : absent) { Absent = true };
         }
 
         QuantileStore effective = cell.Counted(r);

@@ -47,10 +47,10 @@ internal sealed class SpectrumReader(StudySetup setup, EvaluationPlan plan)
         NoiseModel noise = setup.Noise!;
         IReadOnlyList<(string Cause, double Variance)> inBand = noise.Contributions(weights, megChannel, band.Low, band.High);
         double all = inBand.Sum(c => c.Variance);
-        bool stated = inBand is [{ Cause: NoiseModel.StatedPerTrial }];
+        bool stated = inBand.Count == 1 && NoiseModel.IsWhole(inBand[0].Cause);
         double[] frequencies = Frequencies(band, stated);
         IReadOnlyList<(string Cause, double[] Power)> spectra = stated
-            ? [(NoiseModel.StatedPerTrial, [.. frequencies.Select(_ => all / band.Width)])] : noise.Spectra(weights, megChannel, frequencies);
+            ? [(inBand[0].Cause, [.. frequencies.Select(_ => all / band.Width)])] : noise.Spectra(weights, megChannel, frequencies);
         bool[] known = [.. frequencies.Select(f => stated || Known(eeg, f))];
         double?[] Densities(Func<int, double> power) => [.. frequencies.Select((_, k) => known[k] && power(k) > 0 ? perSi * Math.Sqrt(power(k)) : (double?)null)];
         return new ReadingSpectrum

@@ -42,7 +42,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
             IReadOnlyList<DerivedNumber> chain = counts && witnesses[k] is { } found ? new DerivationChain(plan, setup.Noise!, source.Method).Of(found, found.Read, plan.RulesOf(measure)[rule]) : [];
             rows = counts ? Reconcile(rows, measure, direction, rule, witnesses[k]) : rows;
             MeasureResult row = rows.First(x => x.Modality == measure.Modality && x.Direction == direction && x.Measure == measure.Name);
-            verdicts.Add(counts ? Verdict(row, rule, plan.RulesOf(measure)[rule], witnesses[k], chain) : NoCount(row, rule));
+            VerdictResult verdict = counts ? Verdict(row, rule, plan.RulesOf(measure)[rule], witnesses[k], chain) : NoCount(row, rule);
+            verdicts.Add(verdict with { Power = Power(measure, rule, row, witnesses[k]) });
         }
 
         return verdicts;
@@ -74,12 +75,32 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         })];
     }
 
+    // Where the study states no detection, its first rule carries the curve of a test at a false-alarm rate and power that are common practice (no source).
+    private DetectionCurve? Power(IMeasure measure, int rule, MeasureResult row, MedianWitness? witness)
+    {
+        bool stated = plan.Targets[rule] is DetectionChoice;
+        if (witness is null || (!stated && (rule > 0 || plan.Targets.OfType<DetectionChoice>().Any())))
+        {
+            return null;
+        }
+
+        DetectionChoice choice = plan.Targets[rule] as DetectionChoice ?? new DetectionChoice(0.01, 0.9, 1);
+        ITargetRule test = stated ? plan.RulesOf(measure)[rule]
+            : RuleBinding.Of(choice, RuleReading.Of(measure, plan.Space, plan.NoiseFactor) with { SteadyState = plan.Response.Steady is not null });
+        double artefact = witness.Artefact;
+        return new(test.Description, stated, choice.Power, Of(witness.Power)!, Of(FromDecibels(row.SnrDb.P05)), Of(FromDecibels(row.SnrDb.P95)));
+
+        Func<double, double>? Of(double? power) => power is { } p ? trials => test.Probability(p, artefact, trials)!.Value : null;
+        static double? FromDecibels(double? db) => db is { } value ? Math.Pow(10, value / 10) : null;
+    }
+
     private static VerdictResult NoCount(MeasureResult row, int rule) => new()
     {
         Modality = row.Modality,
         Rule = row.Targets[rule].Rule,
         Measure = row.Measure,
         Direction = row.Direction,
+        Applies = false,
         Text = $"{Names.Of(row.Modality)}, {Reading(row)}: no count ({row.Targets[rule].Reason}).",
     };
 
@@ -119,7 +140,7 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
 
     private CountRange? AtMoments(ITargetRule rule, MedianWitness? witness)
     {
-        if (plan.Response.MomentRange is not { } range || witness is null)
+        if (plan.Response.MomentRange is not { } range || range.Low == range.High || witness is null)
         {
             return null;
         }
@@ -160,7 +181,8 @@ internal sealed class VerdictWriter(StudySetup setup, EvaluationPlan plan, Fille
         string session = plan.Protocol.Session is { } seconds && plan.SessionTrials is { } afforded
             ? string.Create(CultureInfo.InvariantCulture, $": {(fits == true ? "fits" : "does not fit")} the session of {seconds / 60:0.######} min ({afforded:N0} trials{(each.Length > 0 ? " each" : "")})")
             : "";
-        return $"{reading}: {trials}, {Rounded.Minutes(minutes)} min{each}{session}.{why}";
+        string length = fits == false && plan.Protocol is { Session: { } whole, Conditions: 1, Replications: 1 } ? Rounded.MinutesBeyond(minutes, whole / 60) : Rounded.Minutes(minutes);
+        return $"{reading}: {trials}, {length} min{each}{session}.{why}";
     }
 
     private string RangeText(CountRange? range)

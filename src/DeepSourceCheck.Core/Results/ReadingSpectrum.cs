@@ -3,7 +3,7 @@ using DeepSourceCheck.Core.Studies;
 namespace DeepSourceCheck.Core.Results;
 
 /// <summary>One cause of noise over frequency.</summary>
-/// <param name="Cause">`instrument`, `brain`, `environment`, `muscle and electrode`, or `stated per trial`.</param>
+/// <param name="Cause">`instrument`, `brain`, `environment`, `muscle and electrode`, `stated per trial` or `recorded`.</param>
 /// <param name="Share">Its share of the variance over the response's band.</param>
 /// <param name="Densities">Amplitude density at each frequency, in the unit of the spectrum; null where it is not known (outside a table) or where what a total leaves is negative.</param>
 public sealed record NoiseCurve(string Cause, double Share, IReadOnlyList<double?> Densities);
@@ -20,7 +20,7 @@ public sealed record ReadingSpectrum
     /// <summary>Unit of the densities: `uV/sqrt(Hz)`, `fT/sqrt(Hz)`, `fT/cm/sqrt(Hz)`.</summary>
     public required string Unit { get; init; }
 
-    /// <summary>Frequencies [Hz], evenly spaced in their logarithm; over the response's band alone where the noise is stated per trial.</summary>
+    /// <summary>Frequencies [Hz], evenly spaced in their logarithm; over the response's band alone where the noise is stated per trial or recorded.</summary>
     public required IReadOnlyList<double> Frequencies { get; init; }
 
     /// <summary>Causes, in the order of the derivation chain.</summary>

@@ -40,6 +40,15 @@ public sealed record RegionResult
     /// <summary>What the removal of the room's terms does to this region's MEG; null where nothing is removed or MEG sees nothing.</summary>
     public RemovalLoss? Removal { get; init; }
 
+    /// <summary>What other active sources leave of it; null where the study states none.</summary>
+    public CompetitorsResult? Competitors { get; init; }
+
+    /// <summary>How well one dipole in it could be placed; null where not asked for.</summary>
+    public LocationResult? Location { get; init; }
+
+    /// <summary>Which electrodes carry it; null where not asked for.</summary>
+    public SensorChoiceResult? Electrodes { get; init; }
+
     /// <summary>What carries its dipoles; null where all are carried alike.</summary>
     public SupportCounts? Supports { get; init; }
 

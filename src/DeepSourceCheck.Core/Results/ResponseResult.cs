@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Noise.Recordings;
 using DeepSourceCheck.Core.Studies;
 
 namespace DeepSourceCheck.Core.Results;
@@ -15,4 +16,7 @@ public sealed record ResponseResult(Response Response, IReadOnlyList<RegionResul
 
     /// <summary>Noise over frequency at the readings of the first region's verdicts, EEG then MEG.</summary>
     public IReadOnlyList<ReadingSpectrum> Spectra { get; init; } = [];
+
+    /// <summary>What the EEG noise was taken from where a recording is stated; null for others.</summary>
+    public RecordedNoise? Recording { get; init; }
 }

@@ -15,8 +15,24 @@ public static class Rounded
         _ => Two(minutes),
     };
 
+    /// <summary>Minutes longer than a session: with as many more digits as tell them from it, `20.1` beside 20.</summary>
+    /// <param name="minutes">Time [min], above the session's.</param>
+    /// <param name="session">Length of the session [min].</param>
+    public static string MinutesBeyond(double minutes, double session)
+    {
+        string written = Minutes(minutes);
+        for (int digits = 3; digits <= 8 && AsWritten(minutes, written) <= session; digits++)
+        {
+            written = Significant(minutes, digits);
+        }
+
+        return written;
+    }
+
     /// <summary>The minutes that <see cref="Minutes"/> writes, as a number [min]; for differences that have to add up beside them.</summary>
-    public static double AsWritten(double minutes) => minutes < 0.1 ? minutes : double.Parse(Minutes(minutes), NumberStyles.Float | NumberStyles.AllowThousands, CultureInfo.InvariantCulture);
+    public static double AsWritten(double minutes) => AsWritten(minutes, Minutes(minutes));
+
+    private static double AsWritten(double minutes, string written) => minutes < 0.1 ? minutes : double.Parse(written, NumberStyles.Float | NumberStyles.AllowThousands, CultureInfo.InvariantCulture);
 
     /// <summary>Two significant digits, with thousands commas: `0.25`, `4.8`, `190`, `12,000`.</summary>
     public static string Two(double value) => Significant(value, 2);

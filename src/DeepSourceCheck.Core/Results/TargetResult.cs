@@ -10,6 +10,9 @@ namespace DeepSourceCheck.Core.Results;
 public sealed record TargetResult(
     string Rule, CountPercentiles Trials, Percentiles? Minutes, double? SmallestMoment, double? SmallestAmplitude, string? Reason)
 {
+    /// <summary>True where the rule says nothing of this reading, for which <see cref="Reason"/> gives the reason.</summary>
+    public bool Absent { get; init; }
+
     /// <summary>Accepted trials where each is weighted by its own noise; null where the study states no spread between trials.</summary>
     public CountPercentiles? Weighted { get; init; }
 

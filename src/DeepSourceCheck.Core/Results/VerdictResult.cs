@@ -20,6 +20,9 @@ public sealed record VerdictResult
     /// <summary>Plain words with the reason.</summary>
     public required string Text { get; init; }
 
+    /// <summary>False where the rule says nothing of this reading: no count, and nothing to compare; <see cref="Text"/> gives the reason.</summary>
+    public bool Applies { get; init; } = true;
+
     /// <summary>Whether the median count fits the session; null without a session.</summary>
     public bool? FitsSession { get; init; }
 
@@ -28,6 +31,9 @@ public sealed record VerdictResult
 
     /// <summary>Probability that the session misses a source of the stated strength, everything else as stated, for the median dipole and direction; null for rules without power or without a session.</summary>
     public double? Missing { get; init; }
+
+    /// <summary>How detection grows with trials; null without a source to detect, and for rules beside a stated detection target.</summary>
+    public DetectionCurve? Power { get; init; }
 
     /// <summary>Mean power over what is not known, as a fraction; null without unknowns.</summary>
     public double? Assurance { get; init; }

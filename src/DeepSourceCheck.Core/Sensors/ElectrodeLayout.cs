@@ -91,6 +91,10 @@ public static class ElectrodeLayout
         return [.. names.Select(name => new Electrode(name, position(name), name is not ("M1" or "M2"), 0.0))];
     }
 
+    /// <summary>The name that the systems use now for a site of the older ten-twenty system (T3 is T7); any other name as it is.</summary>
+    /// <param name="name">Name, in capital or small letters.</param>
+    public static string PresentName(string name) => Older.GetValueOrDefault(name, name);
+
     /// <summary>Message about a name that is not among <paramref name="known"/>.</summary>
     internal static string Unknown(string name, IEnumerable<string> known)
     {

@@ -50,6 +50,9 @@ public sealed record NoiseChoice
 
     /// <summary>Measured MEG covariance.</summary>
     public CovarianceChoice? MegCovariance { get; init; }
+
+    /// <summary>Baseline recording of the EEG.</summary>
+    public RecordingChoice? EegRecording { get; init; }
 }
 
 /// <summary>Total EEG noise in one trial.</summary>
@@ -69,3 +72,24 @@ public sealed record EnvironmentChoice(double Density, double Corner, bool Remov
 /// <param name="Samples">Number of independent samples it was estimated from; null: exact.</param>
 /// <param name="AveragedTrials">Number of trials that were averaged before it was estimated.</param>
 public sealed record CovarianceChoice(string File, double? Samples, double AveragedTrials);
+
+/// <summary>A baseline recording, from which each response's band is taken.</summary>
+/// <param name="File">Path relative to the study.</param>
+/// <param name="Limit">Largest size of an electrode against the average in a segment that is kept [V].</param>
+public sealed record RecordingChoice(string File, double Limit)
+{
+    /// <summary>Labels of the file in the order of the study's electrodes; null: found by name.</summary>
+    public IReadOnlyList<string>? Channels { get; init; }
+
+    /// <summary>Electrode of the study against which was recorded and which has no signal; null where the labels or nothing says so.</summary>
+    public string? Reference { get; init; }
+
+    /// <summary>Start [s] after the first sample; null: the first sample.</summary>
+    public double? From { get; init; }
+
+    /// <summary>End [s], likewise; null: the last sample.</summary>
+    public double? To { get; init; }
+
+    /// <summary>Length of a segment [s]; null: the response's window.</summary>
+    public double? Segment { get; init; }
+}

@@ -72,6 +72,12 @@ public sealed record Response
     /// <summary>Absolute level of a locked artefact in MEG [T].</summary>
     public double LockedArtefactMeg { get; init; }
 
+    /// <summary>Other sources that may be active; empty for none.</summary>
+    public IReadOnlyList<CompetitorChoice> Competitors { get; init; } = [];
+
+    /// <summary>Whether electrodes are chosen for it.</summary>
+    public bool ChooseSensors { get; init; }
+
     /// <summary>EEG measure of the verdict as stated, or null.</summary>
     public string? EegMeasure { get; init; }
 

@@ -133,7 +133,44 @@ public static partial class StudyKeys
         },
         .. Covariance("eeg", "V^2"),
         .. Covariance("meg", "T^2"),
+        .. EegRecording(),
     ];
+
+    private static StudyKey[] EegRecording()
+    {
+        const string key = "noise.eeg_recording";
+        var file = new FileShape("a recording in EDF, EDF+ or BDF");
+        return
+        [
+            new(key, "A baseline of the EEG without responses: all of the EEG noise, band-passed to each response's band; a bare file name is the whole of it.", file, new MapShape())
+            {
+                Example = "{file: baseline.edf, from_s: 10, to_s: 190}",
+            },
+            new(key + ".file", "The recording; units and prefilters are read from its header.", file) { Required = true, Example = "baseline.edf" },
+            new(key + ".channels", "Labels of the file in the order of the study's electrodes, the recording's reference left out; without it, found by name.", new TextListShape("the label of a signal in the file"))
+            {
+                Example = "[EEG 1, EEG 2]",
+            },
+            new(key + ".reference", "Electrode of the study against which was recorded and which the file therefore does not hold; any other reference of the recording needs no mention.", new TextShape("an electrode of the study", 80))
+            {
+                Example = "Cz",
+            },
+            new(key + ".from_s", "Where the baseline begins, after the first sample of the file.", From0(1e7)) { Unit = "s", Example = "10" },
+            new(key + ".to_s", "Where the baseline ends, after the first sample of the file.", Above0(1e7)) { Unit = "s", Example = "190" },
+            new(key + ".segment_ms", "Length of the segments that are kept or rejected as a whole; without it the longest window_ms of the responses in the band, else 1000.", Above0(1e6))
+            {
+                Unit = "ms",
+                Example = "500",
+            },
+            new(key + ".limit_uV", "Largest size of any electrode against the average of all, after the band-pass, in a segment that is kept.", Above0(1e6))
+            {
+                Unit = "uV",
+                Example = "100",
+                Typical = new(5, 500),
+                Defaults = Default(100.0, "limits of 50 to 150 uV for slow responses, 10 to 40 uV above 100 Hz; " + CommonPractice, Grade.Memory),
+            },
+        ];
+    }
 
     private static StudyKey[] Covariance(string modality, string unit)
     {

@@ -157,12 +157,12 @@ public static partial class StudyKeys
         new("unknowns", "How far each input may be off.", new MapShape()) { Example = "{head_shift_mm: 5}" },
         .. Spread("skull_conductivity_ratio", "Innermost conductivity over the skull's, of spheres.", "The median, which replaces the head's own ratio.", "15", "25", "80"),
         .. Spread("noise_factor", "Factor on every noise amplitude, EEG and MEG alike.", "The median of the factor in the draws; figures without unknowns stand at the stated noise.", "0.7", "1", "1.5"),
-        new("unknowns.head_shift_mm", "Standard deviation of the head's place in the array, each axis.", From0(1000))
+        new("unknowns.head_shift_mm", "Standard deviation of the head's place in the array, each axis.", From0(30))
         {
             Unit = "mm",
             Example = "5",
         },
-        new("unknowns.centre_shift_mm", "Standard deviation of the sphere's centre, each axis.", From0(1000))
+        new("unknowns.centre_shift_mm", "Standard deviation of the sphere's centre, each axis.", From0(30))
         {
             Unit = "mm",
             Example = "5",

@@ -2,8 +2,6 @@ namespace DeepSourceCheck.Core.Studies;
 
 public static partial class StudyKeys
 {
-    private const string CompetitorsNotYet = "other sources are not acted on; remove the key";
-
     private static StudyKey[] Regions() =>
     [
         new("regions", "Regions of the study's own, beside the library's.",
@@ -117,7 +115,7 @@ public static partial class StudyKeys
             Example = "9",
         },
         new("responses[].amplitude",
-            "What is known at the scalp instead of a moment: the moment of each region is found through the leadfield, so that the median over its dipoles and the verdict's directions reads this peak.",
+            "What is read off an average, filtered and blurred by jitter as this study's will be, instead of a moment: the moment of each region is found through the leadfield, so that the median over its dipoles and the verdict's directions reads this peak.",
             new MapShape())
         {
             Example = "{peak_uV: 0.45, derivation: Cz-mastoids}",
@@ -235,21 +233,27 @@ public static partial class StudyKeys
             Example = "2",
             Defaults = Default(0.0, "no locked artefact unless stated", Grade.Derived),
         },
-        new("responses[].competitors", "Other sources that may be active.", new ListShape("a source {region, moment_nAm}"))
+        new("responses[].competitors",
+            "Other sources that may be active, each with a random moment from trial to trial: anywhere in its region, in any direction. They add to the noise; they are not projected out.",
+            new ListShape("a source {region, moment_nAm}"))
         {
             Example = "[{region: cortex, moment_nAm: 10}]",
-            NotYet = CompetitorsNotYet,
         },
-        new("responses[].competitors[].region", "Region of the other source.", new TextShape("the name of a region"))
+        new("responses[].competitors[].region", "Region of the other source, of the study or of the library.", new TextShape("the name of a region"))
         {
+            Required = true,
             Example = "cortex",
-            NotYet = CompetitorsNotYet,
         },
-        new("responses[].competitors[].moment_nAm", "Moment of the other source.", Above0(1e6))
+        new("responses[].competitors[].moment_nAm", "Root mean square of its moment over trials.", From0(1e6))
         {
             Unit = "nAm",
+            Required = true,
             Example = "10",
-            NotYet = CompetitorsNotYet,
+        },
+        new("responses[].choose_sensors", "Whether to find which electrodes carry the response: trials against their number, and the best differences of two.", new FlagShape())
+        {
+            Example = "true",
+            Defaults = Default("false", "only when asked for: it takes time", Grade.Derived),
         },
         new("responses[].measure", "What the verdict stands on.", new MapShape()) { Example = "{eeg: Cz-mastoids, meg: best-channel}" },
         new("responses[].measure.eeg", "Measure of the EEG: best-channel, matched-filter, realistic-filter or a derivation of sensors.eeg_derivations.",

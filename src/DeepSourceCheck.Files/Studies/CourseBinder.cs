@@ -23,6 +23,9 @@ internal sealed record BoundCourse
 /// <summary>How a response runs in time: steady state, dominant frequency, waveform, jitter; and how well a filter for it is built.</summary>
 internal static class CourseBinder
 {
+    // Cycles by which a trial may miss a whole number: the power in its bin falls by less than 1e-3.
+    private const double WholeCycles = 0.01;
+
     private static readonly string[] SteadyKeys = ["frequency_Hz", "seconds"], CourseKeys = ["component_Hz", "cycles", "waveform"], Modalities = ["eeg", "meg"];
 
     /// <summary>Binds.</summary>
@@ -44,6 +47,16 @@ internal static class CourseBinder
         if (frequency is { } f && seconds is { } t && f * t < 1)
         {
             entry.Problem("seconds", $"{KeyShape.Text(t)} s holds less than one cycle of {KeyShape.Text(f)} Hz; a trial needs whole cycles of the response: make it longer");
+        }
+        else if (frequency is { } hertz && seconds is { } trial && Math.Abs(hertz * trial - Math.Round(hertz * trial)) > WholeCycles)
+        {
+            double cyclesHeld = hertz * trial, nearest = Math.Round(cyclesHeld);
+            entry.Warn("seconds", FormattableString.Invariant($"{trial:0.######} s holds {cyclesHeld:0.###} cycles of {hertz:0.######} Hz: the power of the bin is counted as of whole cycles, and leaks into its neighbours with any other; write {nearest / hertz:0.######} ({nearest:0} cycles)"));
+        }
+
+        if (component is not null && !entry.States("cycles") && !entry.States("jitter_ms") && !entry.States("lags_ms") && !sensors.FreeTrigger)
+        {
+            entry.Warn("component_Hz", "has no effect: without cycles it serves jitter_ms and lags_ms alone, and the response states neither; add cycles for a waveform, or remove it");
         }
 
         WaveformChoice? waveform = steady ? null : Waveform(entry, component, cycles);

@@ -3,9 +3,11 @@ using DeepSourceCheck.Core.Units;
 
 namespace DeepSourceCheck.Files.Studies;
 
-/// <summary>`noise`: a spectrum from densities and tables, flat figures, or measured covariances; one of them for each modality.</summary>
+/// <summary>`noise`: a spectrum from densities and tables, flat figures, measured covariances or a recording; one of them for each modality.</summary>
 internal static class NoiseBinder
 {
+    private const string Recorded = "eeg_recording";
+
     private static readonly string[] EegSpectral = ["eeg_sensor_nV_per_rtHz", "eeg_total"];
     private static readonly string[] MegSpectral = ["meg_sensor_fT_per_rtHz", "meg_planar_fT_per_cm_rtHz"];
 
@@ -21,9 +23,9 @@ internal static class NoiseBinder
             return null;
         }
 
-        string? eeg = Kind(noise, sensors.HasEeg, "EEG", "electrodes", EegSpectral, "eeg_sensor_uV_rms", "eeg_covariance",
-            "state eeg_total, eeg_sensor_nV_per_rtHz, eeg_sensor_uV_rms or eeg_covariance", reading);
-        string? meg = Kind(noise, sensors.HasMeg, "MEG", "MEG sensors", MegSpectral, "meg_sensor_fT_rms", "meg_covariance",
+        string? eeg = Kind(noise, sensors.HasEeg, "EEG", "electrodes", EegSpectral, "eeg_sensor_uV_rms", ["eeg_covariance", Recorded],
+            "state eeg_total, eeg_sensor_nV_per_rtHz, eeg_sensor_uV_rms, eeg_covariance or eeg_recording", reading);
+        string? meg = Kind(noise, sensors.HasMeg, "MEG", "MEG sensors", MegSpectral, "meg_sensor_fT_rms", ["meg_covariance"],
             "state meg_sensor_fT_per_rtHz (usually 0.2 to 50), meg_sensor_fT_rms or meg_covariance", reading);
         CheckPlanar(noise, sensors, meg, reading);
         bool? brain = Brain(noise, sensors, eeg, meg);
@@ -44,6 +46,7 @@ internal static class NoiseBinder
             MegRms = meg == "flat" ? Scaled(noise.Number("meg_sensor_fT_rms"), Si.FromFemtotesla) : null,
             EegCovariance = eeg == "measured" ? Covariance(noise, "eeg_covariance") : null,
             MegCovariance = meg == "measured" ? Covariance(noise, "meg_covariance") : null,
+            EegRecording = eeg == Recorded ? Recording(noise) : null,
             Brain = brain,
             SpreadBetweenTrials = noise.Number("spread_between_trials"),
         };
@@ -57,11 +60,11 @@ internal static class NoiseBinder
         return choice;
     }
 
-    /// <summary>spectral, flat or measured; null where the modality is not used, states nothing or contradicts itself.</summary>
+    /// <summary>spectral, flat, measured or eeg_recording; null where the modality is not used, states nothing or contradicts itself.</summary>
     private static string? Kind(
-        Section noise, bool used, string modality, string sensors, string[] spectral, string flat, string measured, string instruction, Reading reading)
+        Section noise, bool used, string modality, string sensors, string[] spectral, string flat, string[] measured, string instruction, Reading reading)
     {
-        string[] all = [.. spectral, flat, measured];
+        string[] all = [.. spectral, flat, .. measured];
         if (!used)
         {
             foreach (string name in all)
@@ -83,16 +86,16 @@ internal static class NoiseBinder
             return null;
         }
 
-        string[] kinds = [.. stated.Select(name => name == flat ? "flat" : name == measured ? "measured" : "spectral").Distinct()];
+        string[] kinds = [.. stated.Select(name => name == flat ? "flat" : name == Recorded ? Recorded : measured.Contains(name) ? "measured" : "spectral").Distinct()];
         if (kinds.Length == 1)
         {
             return kinds[0];
         }
 
-        foreach (string name in new[] { flat, measured }.Where(noise.States))
+        foreach (string name in measured.Append(flat).Where(noise.States))
         {
             string others = string.Join(", ", stated.Where(other => other != name));
-            string what = name == flat ? "a flat figure" : "a measured covariance";
+            string what = name == flat ? "a flat figure" : name == Recorded ? "a recording" : "a measured covariance";
             noise.Problem(name, $"stands beside {others}: {what} is all of the noise, nothing else is added; keep one of them");
         }
 
@@ -264,6 +267,28 @@ internal static class NoiseBinder
         }
 
         return noise.Map(name) is { } map && map.Text("file") is { } file ? new(file, map.Number("samples"), map.Number("averaged_trials") ?? 1) : null;
+    }
+
+    private static RecordingChoice? Recording(Section noise)
+    {
+        Section of = noise.Map(Recorded) ?? noise.Entry(Recorded);
+        string? file = noise.Raw(Recorded) is PlacedText ? noise.Text(Recorded) : of.Text("file");
+        IReadOnlyList<YamlScalar> channels = of.Texts("channels");
+        double? from = of.Number("from_s"), to = of.Number("to_s"), segment = of.Number("segment_ms"), limit = of.Number("limit_uV");
+        string? reference = of.Text("reference");
+        if (to <= (from ?? 0))
+        {
+            of.Problem("to_s", $"must lie after from_s, {KeyShape.Text(from ?? 0)} s");
+        }
+
+        return file is null || limit is null ? null : new(file, Si.FromMicrovolts(limit.Value))
+        {
+            Channels = channels.Count > 0 ? [.. channels.Select(c => c.Text)] : null,
+            Reference = reference,
+            From = from,
+            To = to,
+            Segment = segment / 1000,
+        };
     }
 
     private static double? Scaled(double? value, Func<double, double> toSi) => value is { } v ? toSi(v) : null;

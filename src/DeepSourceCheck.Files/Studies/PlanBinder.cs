@@ -9,6 +9,9 @@ internal static class PlanBinder
 {
     private const double SecondsPerMinute = 60;
 
+    // Hz; common practice, no source. Below ten times as many stimuli a second the mains wander over a tenth of the rate and lock to no harmonic.
+    private const double MainsWanders = 0.05, SlowestLocked = 10 * MainsWanders;
+
     private static readonly double[] Mains = [50, 60];
 
     /// <summary>The rules in the order of the file; the amplitude ratio where the study states none.</summary>
@@ -32,6 +35,11 @@ internal static class PlanBinder
             }
             else if (name == "residual_nV" && target.Number(name) is { } residual)
             {
+                if (!hasEeg)
+                {
+                    target.Problem(name, "is a voltage, and the study has no EEG whose average it could be of; use amplitude_ratio or detection");
+                }
+
                 rules.Add(new ResidualNoiseChoice(Si.FromNanovolts(residual)));
             }
             else if (name == "variance_ratio" && target.Map(name) is { } ratioRule)
@@ -59,6 +67,11 @@ internal static class PlanBinder
                     });
                 }
             }
+        }
+
+        if (rules.Count > 0 && rules.All(r => r is VarianceRatioChoice) && responses.FirstOrDefault(r => r.Steady is not null) is { } sinusoid)
+        {
+            target.Problem("variance_ratio", $"is of a transient response over its window and says nothing of the steady-state {sinusoid.Name}; add detection or amplitude_ratio");
         }
 
         if (rules.Count == 0 && !StudyKeys.Below("target").Any(key => target.States(key.Name)))
@@ -145,7 +158,18 @@ internal static class PlanBinder
 
         double? rate = Rate(root, protocol, responses), rejected = protocol.Number("rejected_fraction");
         double? session = protocol.Number("session_min"), preparation = protocol.Number("preparation_min"), breaks = protocol.Number("breaks_min");
-        double? jitter = protocol.Number("interval_jitter_ms");
+        bool steady = responses.Count > 0 && responses.All(r => r.Steady is not null);
+        if (steady)
+        {
+            protocol.WithoutEffect("interval_jitter_ms", "trials of a steady-state response are one recording, whose stimuli follow each other at frequency_Hz");
+        }
+
+        double? jitter = steady ? null : protocol.Number("interval_jitter_ms");
+        foreach (Response capped in responses.Where(r => protocol.States("rate_per_s") && rate * r.Steady?.Seconds > 1 + 1e-9))
+        {
+            protocol.Warn("rate_per_s", FormattableString.Invariant($"trials of {capped.Name}, {capped.Steady!.Seconds:0.######} s long, cannot follow each other at {rate:0.######} a second: they are counted at {1 / capped.Steady.Seconds:0.######} a second"));
+        }
+
         if (rate is { } r && jitter / 1000 * r > 1)
         {
             protocol.Problem("interval_jitter_ms", FormattableString.Invariant($"{jitter:0.######} ms is longer than the {1000 / r:0.######} ms between stimuli at rate_per_s; state at most that"));
@@ -185,6 +209,21 @@ internal static class PlanBinder
         return rate;
     }
 
+    /// <summary>Warnings about the mains: steady-state responses whose bin they fall into, at their frequency or a multiple.</summary>
+    public static void CheckFrequencies(IReadOnlyList<Response> responses, Reading reading)
+    {
+        foreach (Response response in responses.Where(r => r.Steady is not null))
+        {
+            (double frequency, double near) = (response.Steady!.Frequency, 0.5 / response.Steady.Seconds + MainsWanders);
+            double[] met = [.. Mains.Where(mains => Math.Round(frequency / mains) is >= 1 and var harmonic && Math.Abs(harmonic * mains - frequency) <= near)];
+            if (met.Length > 0)
+            {
+                reading.Warn(response.Key + ".frequency_Hz", FormattableString.Invariant(
+                    $"{frequency:0.######} Hz shares its bin with {string.Join(" and with ", met.Select(m => Math.Round(frequency / m) is > 1 and var n ? FormattableString.Invariant($"{n:0} x {m:0} Hz") : FormattableString.Invariant($"{m:0} Hz")))} of the mains, which the noise tables do not hold and averaging does not remove where it is the local one; choose another frequency"));
+            }
+        }
+    }
+
     /// <summary>Warnings about the rate: harmonics that meet the mains, and those within the alpha band of a response.</summary>
     public static void CheckRate(IReadOnlyList<Response> responses, Protocol? protocol, Reading reading)
     {
@@ -195,9 +234,9 @@ internal static class PlanBinder
         }
 
         const string Key = "protocol.rate_per_s";
-        const double MainsWanders = 0.05, AlphaLow = 8, AlphaHigh = 12;     // Hz; common practice, no source
+        const double AlphaLow = 8, AlphaHigh = 12;      // Hz; common practice, no source
         string remedy = protocol.IntervalJitter > 0 ? "; the stated protocol.interval_jitter_ms counters it" : "; choose another rate, or state protocol.interval_jitter_ms";
-        double[] met = [.. Mains.Where(mains => Math.Round(mains / protocol.Rate) is >= 1 and var harmonic && Math.Abs(harmonic * protocol.Rate - mains) <= MainsWanders)];
+        double[] met = [.. Mains.Where(mains => protocol.Rate >= SlowestLocked && Math.Round(mains / protocol.Rate) is >= 1 and var harmonic && Math.Abs(harmonic * protocol.Rate - mains) <= MainsWanders)];
         if (met.Length > 0)
         {
             reading.Warn(Key, FormattableString.Invariant(

@@ -67,17 +67,25 @@ internal static class ResponseBinder
         (IReadOnlyList<double> shares, IReadOnlyList<double> lags) = StrengthBinder.Together(entry, counts == "together", component);
         CheckPassed(entry, band, course.Steady?.Frequency, sensors);
         CheckTogether(entry, counts == "together");
+        StrengthBinder.CheckLags(entry, lags);
         if (course.Steady is not null && measured == "peak-to-trough")
         {
             entry.Problem("measured", "peak-to-trough is of a transient response; the amplitude of a steady-state one is the peak of its sinusoid: write baseline-to-peak");
         }
 
-        double? window = entry.Number("window_ms");
+        if (steady)
+        {
+            entry.WithoutEffect("window_ms", "a steady-state response is read over the whole of its trial, seconds long");
+        }
+
+        double? window = steady ? null : entry.Number("window_ms");
         IReadOnlyList<RatePoint> rates = RateCurveBinder.Bind(entry, steady);
         Section artefact = entry.Map("locked_artefact") ?? entry.Entry("locked_artefact");
         Section measure = entry.Map("measure") ?? entry.Entry("measure");
         double artefactEeg = Artefact(artefact, "eeg_uV", sensors.HasEeg, "the study has no electrodes");
         double artefactMeg = Artefact(artefact, "meg_fT", sensors.HasMeg, "the study has no MEG sensors");
+        List<CompetitorChoice> competitors = Competitors(entry, own, sensors, reading);
+        bool chooseSensors = ChooseSensors(entry, sensors);
         string? eegMeasure = EegMeasure(measure, sensors), megMeasure = MegMeasure(measure, sensors);
         return name is null || strength is null || band is null || direction is null || regions.Count == 0 ? null : new()
         {
@@ -104,6 +112,8 @@ internal static class ResponseBinder
             ComponentFrequency = component,
             LockedArtefactEeg = Si.FromMicrovolts(artefactEeg),
             LockedArtefactMeg = Si.FromFemtotesla(artefactMeg),
+            Competitors = competitors,
+            ChooseSensors = chooseSensors,
             EegMeasure = eegMeasure,
             MegMeasure = megMeasure,
         };
@@ -115,35 +125,72 @@ internal static class ResponseBinder
         var seen = new HashSet<string>(StringComparer.Ordinal);
         foreach (YamlScalar item in entry.Texts("regions"))
         {
-            string? fault = null;
-            if (!seen.Add(item.Text))
-            {
-                fault = $"{Shown.Quoted(item.Text)} stands twice; remove one";
-            }
-            else if (own.Contains(item.Text) || (!sensors.Imported && reading.LibraryRegions.Contains(item.Text)))
-            {
-                names.Add(item.Text);
-            }
-            else if (sensors.Imported && reading.LibraryRegions.Contains(item.Text))
-            {
-                fault = $"the library's region {item.Text} has no place among imported leadfields; "
-                    + "list the imported points under regions with points";
-            }
-            else
-            {
-                IEnumerable<string> known = sensors.Imported ? own : own.Concat(reading.LibraryRegions.Where(r => !own.Contains(r)));
-                string nearest = reading.Suggests && NearestName.Of(item.Text, known) is { } near ? $"the nearest known one is {Shown.Quoted(near)}; " : "";
-                fault = $"there is no region {Shown.Quoted(item.Text)}; {nearest}write one of the study's regions"
-                    + (sensors.Imported ? "" : " or of the library (`deepsourcecheck regions` lists them)");
-            }
-
+            string? fault = seen.Add(item.Text) ? Unknown(item.Text, own, sensors, reading) : $"{Shown.Quoted(item.Text)} stands twice; remove one";
             if (fault is not null)
             {
                 entry.ProblemAt(item, "regions", fault);
             }
+            else
+            {
+                names.Add(item.Text);
+            }
         }
 
         return names;
+    }
+
+    // Why a region cannot be had by its name; null where it can.
+    private static string? Unknown(string name, HashSet<string> own, BoundSensors sensors, Reading reading)
+    {
+        bool library = reading.LibraryRegions.Contains(name);
+        if (own.Contains(name) || (!sensors.Imported && library))
+        {
+            return null;
+        }
+
+        if (library)
+        {
+            return $"the library's region {name} has no place among imported leadfields; list the imported points under regions with points";
+        }
+
+        IEnumerable<string> known = sensors.Imported ? own : own.Concat(reading.LibraryRegions.Where(r => !own.Contains(r)));
+        string nearest = reading.Suggests && NearestName.Of(name, known) is { } near ? $"the nearest known one is {Shown.Quoted(near)}; " : "";
+        return $"there is no region {Shown.Quoted(name)}; {nearest}write one of the study's regions"
+            + (sensors.Imported ? "" : " or of the library (`deepsourcecheck regions` lists them)");
+    }
+
+    private static List<CompetitorChoice> Competitors(Section entry, HashSet<string> own, BoundSensors sensors, Reading reading)
+    {
+        var competitors = new List<CompetitorChoice>();
+        var seen = new HashSet<string>(StringComparer.Ordinal);
+        foreach (Section competitor in entry.Entries("competitors"))
+        {
+            string? region = competitor.Text("region");
+            double? moment = competitor.Number("moment_nAm");
+            string? fault = region is null ? null : seen.Add(region) ? Unknown(region, own, sensors, reading)
+                : $"{Shown.Quoted(region)} stands twice among the competitors; state it once, with the moment of both (the root of the sum of squares)";
+            if (fault is not null)
+            {
+                competitor.Problem("region", fault);
+            }
+            else if (region is not null && moment is { } m)
+            {
+                competitors.Add(new CompetitorChoice(region, Si.FromNanoAmpereMetres(m)));
+            }
+        }
+
+        return competitors;
+    }
+
+    private static bool ChooseSensors(Section entry, BoundSensors sensors)
+    {
+        if (!sensors.HasEeg)
+        {
+            entry.WithoutEffect("choose_sensors", "the study has no electrodes");
+            return false;
+        }
+
+        return entry.Text("choose_sensors") == "true";
     }
 
     private static DirectionChoice? Direction(Section entry)

@@ -67,6 +67,17 @@ internal static class StrengthBinder
         return (shares.Count == 0 ? [] : [.. shares.Select(s => s / sum)], lags.Count == 0 ? [] : [.. lags.Select(l => l / 1000)]);
     }
 
+    /// <summary>A lag puts regions out of step at one frequency; of a waveform with a beginning and an end the whole course would be summed.</summary>
+    public static void CheckLags(Section entry, IReadOnlyList<double> lags)
+    {
+        foreach (string name in Courses.Where(n => lags.Any(l => l != 0) && entry.States(n)))
+        {
+            entry.Problem("lags_ms", $"is not supported yet with {name}, whose whole course would be summed with its lags; leave {name} out (lags then hold at component_Hz), or remove lags_ms");
+        }
+    }
+
+    private static readonly string[] Courses = ["waveform", "cycles"];
+
     private static IReadOnlyList<double> Each(Section entry, string name, bool together, int regions)
     {
         if (!entry.States(name))

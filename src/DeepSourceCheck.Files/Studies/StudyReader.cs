@@ -83,6 +83,8 @@ public static class StudyReader
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
         PlanBinder.CheckRate(responses, protocol, reading);
         RateCurveBinder.Check(responses, root, protocol, reading);
+        PlanBinder.CheckFrequencies(responses, reading);
+        EffectCheck.Warn(root, responses, targets, noise, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
         {

@@ -42,6 +42,17 @@ internal static class UnknownsBinder
             unknowns.Problem("stands beside a measure realistic-filter, whose errors of place, head and covariance are a spread of their own; let the verdict stand on matched-filter or a single reading, or remove unknowns");
         }
 
+        if (!sensors.HasEeg && skull is not null)
+        {
+            unknowns.WithoutEffect("skull_conductivity_ratio", "the study has no electrodes, and in a sphere MEG does not depend on conductivity");
+            skull = null;
+        }
+
+        if (noise is { Typical: not 1 })
+        {
+            unknowns.Warn("noise_factor.typical", $"figures without unknowns stand at the stated noise, those over the unknowns at {KeyShape.Text(noise.Typical)} times it; state the noise as you expect it, and 1 here, to have both agree");
+        }
+
         if (!sensors.HasMeg && headShift > 0)
         {
             unknowns.WithoutEffect("head_shift_mm", "the study has no MEG sensors, and electrodes move with the head");
@@ -103,6 +114,12 @@ internal static class UnknownsBinder
             return head;
         }
 
-        return Math.Abs(own / skull.Typical - 1) <= SameRatio ? head : spheres with { Sphere = SkullRatio.With(spheres.Sphere, skull.Typical) };
+        if (Math.Abs(own / skull.Typical - 1) <= SameRatio)
+        {
+            return head;
+        }
+
+        unknowns.Warn("skull_conductivity_ratio.typical", $"{KeyShape.Text(skull.Typical)} replaces the head's own ratio of {KeyShape.Text(Math.Round(own, 2))} in every figure");
+        return spheres with { Sphere = SkullRatio.With(spheres.Sphere, skull.Typical) };
     }
 }

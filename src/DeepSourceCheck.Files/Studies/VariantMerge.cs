@@ -21,7 +21,7 @@ internal static class VariantMerge
 
     private static readonly Dictionary<string, string[][]> NoiseAlternatives = new()
     {
-        ["eeg"] = [["eeg_sensor_nV_per_rtHz", "eeg_corner_Hz", "eeg_total"], ["eeg_sensor_uV_rms"], ["eeg_covariance"]],
+        ["eeg"] = [["eeg_sensor_nV_per_rtHz", "eeg_corner_Hz", "eeg_total"], ["eeg_sensor_uV_rms"], ["eeg_covariance"], ["eeg_recording"]],
         ["meg"] = [["meg_sensor_fT_per_rtHz", "meg_planar_fT_per_cm_rtHz", "meg_corner_Hz"], ["meg_sensor_fT_rms"], ["meg_covariance"]],
     };
 

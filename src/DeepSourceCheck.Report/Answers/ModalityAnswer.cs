@@ -5,15 +5,19 @@ namespace DeepSourceCheck.Report.Answers;
 /// <summary>One verdict with the figures that it stands on.</summary>
 public sealed class ModalityAnswer
 {
-    internal ModalityAnswer(RegionResult region, VerdictResult verdict)
+    private readonly double? _sessionMinutes;
+
+    internal ModalityAnswer(RegionResult region, VerdictResult verdict, double? sessionMinutes = null)
     {
+        _sessionMinutes = sessionMinutes;
         Verdict = verdict;
         Row = region.Find(verdict.Modality, verdict.Direction, verdict.Measure);
         Target = Row?.Targets.FirstOrDefault(t => t.Rule == verdict.Rule);
         Trials = Target?.Trials.P50;
         Minutes = Target?.Minutes?.P50;
         bool silent = Trials is null && Row is { SnrDb.P50: null };
-        Outcome = silent ? Outcome.Silent
+        Outcome = !verdict.Applies ? Outcome.DoesNotApply
+            : silent ? Outcome.Silent
             : Trials is null or > Say.MostTrials ? Outcome.OutOfReach
             : verdict.FitsSession switch { true => Outcome.Fits, false => Outcome.TooLong, null => Outcome.NoSession };
     }
@@ -49,16 +53,28 @@ public sealed class ModalityAnswer
     public string Line()
     {
         string count = Trials is { } n && HasCount ? Say.Plural(n, "trial") : "";
-        string minutes = Minutes is { } m ? $", {Say.Minutes(m)} min" : "";
+        string minutes = Minutes is not null ? $", {MinutesWords()} min" : "";
         return Outcome switch
         {
             Outcome.Fits => $"{count}{minutes}: fits",
             Outcome.TooLong => $"{count}{minutes}: does not fit",
             Outcome.NoSession => $"{count}{minutes}",
             Outcome.Silent => "no count: silent in this direction",
+            Outcome.DoesNotApply => "does not apply",
             _ => Say.OutOfReach,
         };
     }
+
+    /// <summary>The minutes in words; too many for the session by a digit more where they would read as the session's own.</summary>
+    public string MinutesWords() => Minutes is not { } m ? "" : Outcome == Outcome.TooLong && _sessionMinutes is { } session ? Say.MinutesBeyond(m, session) : Say.Minutes(m);
+
+    /// <summary>Why there is no count, in a few words: `silent in this direction`, `does not apply`, `out of reach`.</summary>
+    public string NoCount => Outcome switch
+    {
+        Outcome.Silent => "silent in this direction",
+        Outcome.DoesNotApply => "does not apply",
+        _ => Say.OutOfReach,
+    };
 
     /// <summary>What is read: the measure; for both together the two readings that are combined.</summary>
     public string Reading() => Modality == Modality.Both && Verdict.Measure != Names.MatchedFilter ? $"{Verdict.Measure} and best MEG channel" : Verdict.Measure;

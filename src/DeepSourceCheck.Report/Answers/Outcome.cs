@@ -15,6 +15,9 @@ public enum Outcome
     /// <summary>There is no count, and a reason: a silent direction, or a split that is not defined.</summary>
     Silent,
 
+    /// <summary>The rule says nothing of this reading, and a reason stands beside it.</summary>
+    DoesNotApply,
+
     /// <summary>The study states no session.</summary>
     NoSession,
 }

@@ -21,7 +21,7 @@ public sealed class RegionAnswer
         Response = response;
         Region = region;
         Rule = rule;
-        Answers = [.. region.Verdicts.Where(v => v.Rule == rule).Select(v => new ModalityAnswer(region, v)).OrderBy(a => a.Modality)];
+        Answers = [.. region.Verdicts.Where(v => v.Rule == rule).Select(v => new ModalityAnswer(region, v, Averages == 1 ? assessment.Study.Protocol?.Session / 60 : null)).OrderBy(a => a.Modality)];
         Winner = Choose();
     }
 
@@ -156,6 +156,7 @@ public sealed class RegionAnswer
     {
         Outcome.TooLong => $"{Names.Of(answer.Modality)} does not{(alone ? " reach the target" : "")} within {SessionWords}",
         Outcome.Silent => $"{Names.Of(answer.Modality)} is silent in this direction",
+        Outcome.DoesNotApply => $"the rule does not apply to {Names.Of(answer.Modality)}",
         _ => $"{Names.Of(answer.Modality)} is out of reach",
     };
 

@@ -32,6 +32,9 @@ public static class Say
     /// <summary>Minutes: `0.5`, `7.5`, `75`, `750`; below 0.1 `under 0.1`.</summary>
     public static string Minutes(double minutes) => Signed(Rounded.Minutes(minutes));
 
+    /// <summary>Minutes longer than a session of so many, with the digits that tell them from it.</summary>
+    public static string MinutesBeyond(double minutes, double session) => Signed(Rounded.MinutesBeyond(minutes, session));
+
     /// <summary>A stated length [s] in minutes: `40`.</summary>
     public static string SessionMinutes(double seconds) => Stated(Math.Round(seconds / 60, 6));
 

@@ -64,7 +64,7 @@ internal static class ConsoleChart
         }
         else
         {
-            string words = a.Outcome == Outcome.Silent ? "silent" : Say.OutOfReach + " >";
+            string words = a.Outcome == Outcome.Silent ? "silent" : a.Outcome == Outcome.DoesNotApply ? a.NoCount : Say.OutOfReach + " >";
             words.CopyTo(0, track, Columns - words.Length, words.Length);
         }
 

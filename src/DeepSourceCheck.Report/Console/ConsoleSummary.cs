@@ -102,7 +102,7 @@ public static class ConsoleSummary
             {
                 ModalityAnswer? answer = row.Answer.Of(modality);
                 bool counted = answer is { HasCount: true };
-                string count = counted ? Say.Trials(answer!.Trials) : answer is { Outcome: Outcome.Silent } ? "silent" : answer is { Trials: not null } || answer?.Verdict.Chain.Count > 0 ? Say.OutOfReach : "-";
+                string count = counted ? Say.Trials(answer!.Trials) : answer is { Outcome: Outcome.Silent } ? "silent" : answer is { Outcome: Outcome.DoesNotApply } ? answer.NoCount : answer is { Trials: not null } || answer?.Verdict.Chain.Count > 0 ? Say.OutOfReach : "-";
                 text.Append($"{count,14}{(counted && answer!.Minutes is { } m ? m < 0.1 ? "< 0.1" : Say.Minutes(m) : "-"),9}");
             }
 
@@ -131,7 +131,7 @@ public static class ConsoleSummary
             foreach (Modality modality in modalities)
             {
                 ModalityAnswer? answer = row.Answer?.Of(modality);
-                string count = answer is null ? "-" : answer.Outcome == Outcome.Silent ? "silent" : Say.Trials(answer.Trials);
+                string count = answer is null ? "-" : answer.Outcome == Outcome.Silent ? "silent" : answer.Outcome == Outcome.DoesNotApply ? answer.NoCount : Say.Trials(answer.Trials);
                 text.Append($"{count,15}{(row.Change(modality) is { } db ? Say.SignedDecibels(db) + " dB" : ""),9}");
             }
 
@@ -156,7 +156,7 @@ public static class ConsoleSummary
     {
         string name = Names.Of(a.Modality);
         string each = OneAcquisition(assessment) ? "" : " per average";
-        string minutes = a.Minutes is { } m ? $"{Say.Minutes(m)} min{each}" : a.Trials is { } n ? Say.Plural(n, "trial") : "";
+        string minutes = a.Minutes is not null ? $"{a.MinutesWords()} min{each}" : a.Trials is { } n ? Say.Plural(n, "trial") : "";
         // The excess of the minutes as they are written, so that the sentence adds up; one that rounds away is not named.
         string over = a.Minutes is { } needed && assessment.Study.Protocol?.Session is { } s && OneAcquisition(assessment) && Rounded.AsWritten(needed) - s / 60 is >= 0.1 and var excess
             ? $": too long by {Say.Minutes(excess)} min" : ": too long";
@@ -166,6 +166,7 @@ public static class ConsoleSummary
             Outcome.TooLong => $"{name} needs {minutes}{over}.",
             Outcome.NoSession => $"{name} needs {minutes}.",
             Outcome.Silent => $"{name} is silent in this direction.",
+            Outcome.DoesNotApply => $"The rule does not apply to {name}{(a.Reason is { } reason ? $": {reason}" : "")}.",
             _ => $"{name} is {Say.OutOfReach} by averaging.",
         };
     }
@@ -192,8 +193,8 @@ public static class ConsoleSummary
             string peak = a.Row?.Peak is { } p ? $"{Say.Two(p.Value)} {Say.Unit(p.Unit)}" : "-";
             // `under 0.1` would fill its column and run into the next.
             string minutes = a.Minutes is { } m && a.HasCount ? m < 0.1 ? "< 0.1" : Say.Minutes(m) : "-";
-            string middle = a.HasCount ? $"{Say.Trials(a.Trials),9}{Spread(a),20}" : $"{(a.Outcome == Outcome.Silent ? "silent in this direction" : Say.OutOfReach),29}";
-            string session = a.Outcome switch { Outcome.Fits => "fits", Outcome.TooLong => "too long", Outcome.NoSession => "-", _ => "no" };
+            string middle = a.HasCount ? $"{Say.Trials(a.Trials),9}{Spread(a),20}" : $"{a.NoCount,29}";
+            string session = a.Outcome switch { Outcome.Fits => "fits", Outcome.TooLong => "too long", Outcome.NoSession or Outcome.DoesNotApply => "-", _ => "no" };
             text.Append($"{Names.Of(a.Modality),-8}{measure,-MeasureWidth}{middle}{minutes,9}{peak,10} {session}\n");
         }
 
@@ -257,6 +258,7 @@ public static class ConsoleSummary
             text.Append(Fact("chance to miss it", string.Join(", ", missed.Select(a => $"{Names.Of(a.Modality)} {Say.Chance(a.Verdict.Missing!.Value)}"))));
         }
 
+        Attribution(text, answer);
         double?[] sure = [.. answer.Answers.Select(a => a.Verdict.Assurance)];
         text.Append(Fact("how sure", sure.Any(s => s is not null)
             ? string.Join(", ", answer.Answers.Where(a => a.Verdict.Assurance is not null).Select(a => $"{Names.Of(a.Modality)} {Say.Assurance(a.Verdict.Assurance!.Value)}"))
@@ -273,6 +275,31 @@ public static class ConsoleSummary
             {
                 text.Append(WhyText.Wrap(first.Flip + ".", 0));
             }
+        }
+    }
+
+    private static void Attribution(StringBuilder text, RegionAnswer answer)
+    {
+        if (answer.Region.Competitors is { } competitors)
+        {
+            text.Append(Fact("with others active", AttributionWords.Sources(competitors)));
+            foreach (CompetitorReading reading in competitors.Readings.Where(r => r.IsVerdict && r.Modality != Modality.Both))
+            {
+                CompetitorCount? count = reading.Counts.FirstOrDefault(c => c.Rule == answer.Rule);
+                string trials = count is null ? "" : $"{Say.Trials(count.Trials.P50)} trials for {Say.Trials(count.Without)}, ";
+                text.Append(Fact($"  {Names.Of(reading.Modality)}", $"{trials}{(reading.PowerLeftDb.P50 is { } db ? $"{Say.SignedDecibels(db)} dB" : "nothing left")}"));
+            }
+        }
+
+        if (answer.Region.Location is { Bounds: { Count: > 0 } bounds })
+        {
+            text.Append(Fact("location error in the session", string.Join(", ", bounds.Where(b => b.Modality != Modality.Both || bounds.Count == 1).Select(b => $"{Names.Of(b.Modality)} {AttributionWords.Error(b)}"))));
+        }
+
+        if (answer.Region.Electrodes is { } chosen && AttributionWords.Milestones(chosen, answer.Rule) is { Count: > 0 } milestones)
+        {
+            text.Append(Fact("trials by electrodes chosen", string.Join(", ", milestones.Select(m => $"{m.Electrodes}: {Say.Trials(m.Trials)}"))));
+            text.Append(Fact("best two electrodes", $"{chosen.Derivations[0].Name}, {Say.Trials(AttributionWords.Trials(chosen.Derivations[0].Trials, answer.Rule))} trials"));
         }
     }
 

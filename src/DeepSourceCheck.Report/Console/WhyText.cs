@@ -38,15 +38,52 @@ public static class WhyText
         {
             ModalityAnswer answer = new(region, verdict);
             text.Append('\n').Append(Wrap($"{RegionAnswer.Words(verdict.Modality)}: {answer.Reading()}, {Say.RuleKey(verdict.Rule)}, {Say.Direction(verdict.Direction)} direction", 0));
-            for (int k = 0; k < verdict.Chain.Count; k++)
-            {
-                Step(text, verdict.Chain[k], k + 1 < verdict.Chain.Count ? verdict.Chain[k + 1] : null);
-            }
-
+            Steps(text, verdict.Chain);
             text.Append(Wrap(verdict.Chain.Count == 0 ? $"No steps. {verdict.Text}" : verdict.Text, 2));
         }
 
+        Attribution(text, region);
         return Plain(text.ToString(), unicode);
+    }
+
+    private static void Attribution(StringBuilder text, RegionResult region)
+    {
+        foreach (CompetitorReading reading in region.Competitors?.Readings.Where(r => r.IsVerdict) ?? [])
+        {
+            foreach (CompetitorCount count in reading.Counts.Where(c => c.Chain.Count > 0))
+            {
+                text.Append('\n').Append(Wrap($"With {AttributionWords.Sources(region.Competitors!)} active, {RegionAnswer.Words(reading.Modality)}: {reading.Measure}, {Say.RuleKey(count.Rule)}; {Say.Trials(count.Without)} trials without", 0));
+                Steps(text, count.Chain);
+            }
+        }
+
+        if (region.Competitors is not null)
+        {
+            text.Append(Wrap(AttributionWords.Assumed, 2));
+        }
+
+        foreach (LocationReading bound in region.Location?.Bounds ?? [])
+        {
+            text.Append('\n').Append(Wrap($"Location by {RegionAnswer.Words(bound.Modality)}, {Say.Direction(region.Location!.Direction)} direction: {AttributionWords.Error(bound)}", 0));
+            Steps(text, bound.Chain);
+        }
+
+        if (region.Location is { Bounds.Count: > 0 })
+        {
+            text.Append(Wrap(AttributionWords.Located, 2));
+        }
+        else if (region.Location?.Reason is { } reason)
+        {
+            text.Append('\n').Append(Wrap($"Location: no bound ({reason}).", 0));
+        }
+    }
+
+    private static void Steps(StringBuilder text, IReadOnlyList<DerivedNumber> chain)
+    {
+        for (int k = 0; k < chain.Count; k++)
+        {
+            Step(text, chain[k], k + 1 < chain.Count ? chain[k + 1] : null);
+        }
     }
 
     /// <summary>The number with as many digits as reading it back exactly takes (at most 17).</summary>

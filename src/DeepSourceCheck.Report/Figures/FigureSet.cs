@@ -5,7 +5,7 @@ namespace DeepSourceCheck.Report.Figures;
 /// <summary>All figures of an assessment, in the order of the page.</summary>
 public static class FigureSet
 {
-    /// <summary>Figures of one response: trials by each rule, the rules side by side, variants, unknowns, power, SNR, spectra of the noise, the cortical comparison.</summary>
+    /// <summary>Figures of one response: trials by each rule, the rules side by side, variants, unknowns, electrodes, power, SNR, spectra of the noise, the cortical comparison.</summary>
     public static IReadOnlyList<Figure> Of(Assessment assessment, int response)
     {
         ResponseResult result = assessment.Responses[response];
@@ -21,6 +21,7 @@ public static class FigureSet
         figures.Add(RuleFigure.Make(assessment, result, $"rules{suffix}"));
         figures.Add(VariantFigure.Make(assessment, result, $"variants{suffix}"));
         figures.Add(UnknownsFigure.Make(assessment, result, $"unknowns{suffix}"));
+        figures.Add(ElectrodesFigure.Make(assessment, result, rules[0], $"electrodes{suffix}"));
         figures.Add(PowerFigure.Make(assessment, result, $"power{suffix}"));
         figures.Add(SnrFigure.Make(assessment, result, $"snr{suffix}"));
         figures.Add(SpectraFigure.Make(result, $"spectra{suffix}"));

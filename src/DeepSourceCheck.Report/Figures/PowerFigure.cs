@@ -6,15 +6,14 @@ using SkiaSharp;
 
 namespace DeepSourceCheck.Report.Figures;
 
-/// <summary>How detection grows with trials: the power of the one-sided test, never of an amplitude ratio, which has none.</summary>
+/// <summary>How detection grows with trials: the power of the very test that the verdicts stand on, never of an amplitude ratio, which has none.</summary>
 public static class PowerFigure
 {
-    // Where the study states no detection target: common practice, no source.
-    private const double DefaultAlpha = 0.01;
-    private const double DefaultPower = 0.9;
-
     // Two short lines of text beside the last mark [px].
     private const float LabelRoom = 112;
+
+    // Trials at which a test has its false-alarm rate for a power: next to none.
+    private const double Nothing = 1e-9;
 
     // A joint curve this close to the best single one would only hide it.
     private const double JointGainDrawn = 0.9;
@@ -22,16 +21,15 @@ public static class PowerFigure
     /// <summary>The figure for the first region of a response; null where no modality has an SNR.</summary>
     public static Figure? Make(Assessment assessment, ResponseResult response, string name)
     {
-        RegionAnswer? region = response.Regions.Select(r => new RegionAnswer(assessment, response.Response, r)).FirstOrDefault(r => r.Answers.Any(a => a.Row?.SnrDb.P50 is not null));
-        if (region is null)
+        (RegionResult Region, VerdictResult[] Drawn) found = response.Regions.Select(r => (r, r.Verdicts.Where(v => v.Power is not null).OrderBy(v => v.Modality).ToArray())).FirstOrDefault(r => r.Item2.Length > 0);
+        if (found.Drawn is null)
         {
             return null;
         }
 
-        DetectionChoice? stated = assessment.Study.Targets.OfType<DetectionChoice>().FirstOrDefault();
-        PowerCurve curve = new(stated?.Alpha ?? DefaultAlpha, stated?.Looks ?? 1);
-        double power = stated?.Power ?? DefaultPower;
-        Line[] all = [.. region.Answers.Where(a => a.Row?.SnrDb.P50 is not null).Select(a => new Line(a.Modality, a.Row!.SnrDb, curve.Trials(power, a.Row.SnrDb.P50!.Value)))];
+        Line[] all = [.. found.Drawn.Select(v => new Line(v, v.Power!, DetectionCurve.Trials(v.Power!.Median, v.Power.Asked)))];
+        DetectionCurve any = all[0].Curve;
+        double power = any.Asked;
         double best = all.Where(l => l.Modality != Modality.Both).Select(l => l.Target).DefaultIfEmpty(double.PositiveInfinity).Min();
         Line[] lines = [.. all.Where(l => l.Modality != Modality.Both || l.Target < JointGainDrawn * best)];
         if (lines.Length == 0)
@@ -40,30 +38,34 @@ public static class PowerFigure
         }
 
         double? perMinute = assessment.Study.Protocol is { } p ? 60 * p.Rate * (1 - p.RejectedFraction) : null;
-        string title = Title(assessment, lines, curve, power, perMinute);
+        string title = Title(assessment, lines, power, perMinute);
         string joint = all.Length > lines.Length ? " Both together stay within 10 % of the better one and are not drawn." : "";
-        string from = stated is null ? "the study states no detection target: a false-alarm rate of 0.01 and the mark at 90 % are common practice"
-            : stated is not { Topography: Topography.Known, CovarianceEstimated: false } ? "false-alarm rate, looks and power of the study's detection target; drawn as if pattern and noise were known, which bounds what it asks: its own counts stand in the figure of rules" : "false-alarm rate, looks and power of the study's detection target";
+        string from = any.Stated ? "the study's detection target" : "the study states no detection target: a false-alarm rate of 0.01 and the mark at 90 % are common practice";
+        string fixedBefore = assessment.Study.Targets.OfType<DetectionChoice>().FirstOrDefault() is { Looks: > 1 } ? "" : ", channel, latency and polarity fixed beforehand";
+        string tests = lines.Select(l => l.Curve.Test).Distinct().Count() == 1 ? any.Test : string.Join("; ", lines.Select(l => $"{RegionAnswer.Words(l.Modality)}: {l.Curve.Test}"));
         return new Figure(
             name, title,
             $"Power of detection (%) against {(perMinute is null ? "accepted trials" : "minutes of recording")}",
-            $"{response.Response.Name}, {region.Region.Region}; one-sided test at false-alarm rate {Say.Stated(curve.Alpha)}{(curve.Looks > 1 ? $" over {Say.Stated(curve.Looks)} looks" : ", channel, latency and polarity fixed beforehand")}"
-            + $" ({from}); power = Φ(√N d − z), d² the SNR of one trial of {string.Join(", ", region.Answers.Where(a => lines.Any(l => l.Modality == a.Modality)).Select(a => $"{RegionAnswer.Words(a.Modality)} {a.Verdict.Measure}"))}; "
+            $"{response.Response.Name}, {found.Region.Region}; test: {tests}{fixedBefore} ({from}); "
+            + $"read: {string.Join(", ", lines.Select(l => $"{RegionAnswer.Words(l.Modality)} {l.Verdict.Measure}"))}; "
             + $"{Say.Direction(response.Response.Direction)}; {Say.Strength(response)}{TrialsFigure.Protocol(assessment)}. Line: median dipole; band: 5 to 95 % of {Say.Spread(response.Response.Direction.Name)}.{joint} "
             + "An amplitude ratio has no power: its counts stand in the figure of trials.",
             $"{title}. {string.Join(" ", lines.Take(3).Select(l => $"{RegionAnswer.Words(l.Modality)}: {Say.Percent(power)} after {Span(l.Target, perMinute)}."))}",
-            Table(lines, curve, perMinute), FullWidth: false,
-            width => Draw(width, assessment, lines, curve, power, perMinute));
+            Table(lines, perMinute), FullWidth: false,
+            width => Draw(width, assessment, lines, power, perMinute));
     }
 
-    private static string Span(double trials, double? perMinute) => trials > Say.MostTrials ? $"more than {Say.Count(Say.MostTrials)} trials"
-        : perMinute is { } r ? $"{Say.Minutes(Math.Ceiling(trials) / r)} min" : Say.Plural((long)Math.Max(1, Math.Ceiling(trials)), "trial");
+    // A crossing that was found by halving may lie a rounding above a whole count.
+    private static long Whole(double trials) => (long)Math.Max(1, Math.Ceiling(trials * (1 - 1e-12)));
 
-    private static string Title(Assessment assessment, Line[] lines, PowerCurve curve, double power, double? perMinute)
+    private static string Span(double trials, double? perMinute) => trials > Say.MostTrials ? $"more than {Say.Count(Say.MostTrials)} trials"
+        : perMinute is { } r ? $"{Say.Minutes(Whole(trials) / r)} min" : Say.Plural(Whole(trials), "trial");
+
+    private static string Title(Assessment assessment, Line[] lines, double power, double? perMinute)
     {
         if (assessment.SessionTrials is { } session)
         {
-            return $"At the session's end the power is {string.Join(", ", lines.Select(l => $"{Share(curve.At(session, l.Snr.P50!.Value))} for {Name(l.Modality)}"))}";
+            return $"At the session's end the power is {string.Join(", ", lines.Select(l => $"{Share(l.Curve.Median(session))} for {Name(l.Modality)}"))}";
         }
 
         return string.Join("; ", lines.Select(l => $"{Name(l.Modality)}: {Say.Percent(power)} after {Span(l.Target, perMinute)}"));
@@ -73,24 +75,25 @@ public static class PowerFigure
 
     private static string Name(Modality m) => m == Modality.Both ? "both" : Names.Of(m);
 
-    private static FigureTable Table(Line[] lines, PowerCurve curve, double? perMinute)
+    private static FigureTable Table(Line[] lines, double? perMinute)
     {
         double[] powers = [0.5, 0.8, 0.9, 0.95, 0.99];
         return new(
             ["modality", "power", "trials, median dipole", "minutes"],
-            [.. lines.SelectMany(l => powers.Select(p => (IReadOnlyList<string>)
-            [
-                Names.Of(l.Modality), Say.Percent(p), Count(curve.Trials(p, l.Snr.P50!.Value)), perMinute is { } r && curve.Trials(p, l.Snr.P50!.Value) <= Say.MostTrials ? Say.Minutes(Math.Ceiling(curve.Trials(p, l.Snr.P50!.Value)) / r) : "",
-            ]))]);
+            [.. lines.SelectMany(l => powers.Select(p =>
+            {
+                double trials = DetectionCurve.Trials(l.Curve.Median, p);
+                return (IReadOnlyList<string>)[Names.Of(l.Modality), Say.Percent(p), Count(trials), perMinute is { } r && trials <= Say.MostTrials ? Say.Minutes(Whole(trials) / r) : ""];
+            }))]);
     }
 
-    private static string Count(double trials) => trials > Say.MostTrials ? Say.OutOfReach : Say.Count((long)Math.Max(1, Math.Ceiling(trials)));
+    private static string Count(double trials) => trials > Say.MostTrials ? Say.OutOfReach : Say.Count(Whole(trials));
 
-    private static FigureSheet Draw(int width, Assessment assessment, Line[] lines, PowerCurve curve, double power, double? perMinute)
+    private static FigureSheet Draw(int width, Assessment assessment, Line[] lines, double power, double? perMinute)
     {
         double unit = perMinute ?? 1;
-        double first = lines.Min(l => Math.Max(0.5, curve.Trials(Math.Max(0.1, 2 * curve.Alpha), l.Snr.P95 ?? l.Snr.P50!.Value)));
-        double last = lines.Max(l => Math.Min(Say.MostTrials, curve.Trials(0.98, l.Snr.P50!.Value)));
+        double first = lines.Min(l => Math.Max(0.5, DetectionCurve.Trials(l.Curve.Strong ?? l.Curve.Median, Math.Max(0.1, 2 * l.Curve.Median(Nothing)))));
+        double last = lines.Max(l => Math.Min(Say.MostTrials, DetectionCurve.Trials(l.Curve.Median, 0.98)));
         LogAxis axis = new([first / unit, last / unit, (assessment.SessionTrials ?? double.NaN) / unit]);
         // Where the marks stand too close for words beside them, the words go above the plot.
         double[] shownAt = [.. lines.Where(l => l.Target <= Say.MostTrials).Select(l => Math.Log10(l.Target / unit)).Order()];
@@ -121,15 +124,15 @@ public static class PowerFigure
             pen.Text(perMinute is null ? "accepted trials" : "minutes of recording", pen.Left, pen.Bottom + 36, FigurePen.Small, colour: Palette.Ink2);
             foreach (Line line in lines)
             {
-                if (line.Snr is { P05: { } low, P95: { } high })
+                if (line.Curve is { Weak: { } low, Strong: { } high })
                 {
-                    pen.Area([.. Points(pen, axis, curve, high, unit), .. Points(pen, axis, curve, low, unit).Reverse()], Palette.Of(line.Modality).WithAlpha(56));
+                    pen.Area([.. Points(pen, axis, high, unit), .. Points(pen, axis, low, unit).Reverse()], Palette.Of(line.Modality).WithAlpha(56));
                 }
             }
 
             foreach (Line line in lines)
             {
-                pen.Curve([.. Points(pen, axis, curve, line.Snr.P50!.Value, unit)], line.Modality);
+                pen.Curve([.. Points(pen, axis, line.Curve.Median, unit)], line.Modality);
             }
 
             if (session is { } x)
@@ -165,15 +168,18 @@ public static class PowerFigure
         return sheet;
     }
 
-    private static IEnumerable<SKPoint> Points(FigurePen pen, LogAxis axis, PowerCurve curve, double snrDb, double unit)
+    private static IEnumerable<SKPoint> Points(FigurePen pen, LogAxis axis, Func<double, double> curve, double unit)
     {
         const int Steps = 160;
         return Enumerable.Range(0, Steps + 1).Select(k =>
         {
             double x = axis.Low + (axis.High - axis.Low) * k / Steps;
-            return new SKPoint(pen.X(x), pen.Y(curve.At(Math.Pow(10, x) * unit, snrDb)));
+            return new SKPoint(pen.X(x), pen.Y(curve(Math.Pow(10, x) * unit)));
         });
     }
 
-    private sealed record Line(Modality Modality, Percentiles Snr, double Target);
+    private sealed record Line(VerdictResult Verdict, DetectionCurve Curve, double Target)
+    {
+        public Modality Modality => Verdict.Modality;
+    }
 }

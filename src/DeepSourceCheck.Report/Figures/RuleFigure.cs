@@ -115,7 +115,7 @@ public static class RuleFigure
 
             if (!answer.HasCount || answer.Trials is not { } trials)
             {
-                string none = answer.Outcome == Outcome.Silent ? "silent in this direction" : answer.Trials is null && answer.Verdict.Text.Contains(": no count", StringComparison.Ordinal) ? "has no count by this rule" : Say.OutOfReach;
+                string none = answer.NoCount;
                 pen.Text($"{Names.Of(modality)} {none}", pen.Right - 4, y + 4, FigurePen.Small, Anchor.End, halo: true);
                 continue;
             }

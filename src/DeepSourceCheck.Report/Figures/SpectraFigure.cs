@@ -44,7 +44,7 @@ public static class SpectraFigure
     {
         NoiseCurve most = spectrum.Noise.MaxBy(c => c.Share)!;
         string modality = $"{Names.Of(spectrum.Modality)} noise is";
-        return most.Cause == NoiseModel.StatedPerTrial ? $"{modality} stated per trial"
+        return NoiseModel.IsWhole(most.Cause) ? $"{modality} {most.Cause}"
             : most.Share > 0.995 ? $"{modality} {most.Cause}" : $"{modality} {(most.Share >= 0.5 ? "mostly" : "first of all")} {most.Cause} ({Say.Percent(Math.Round(most.Share, 2))})";
     }
 
@@ -112,13 +112,13 @@ public static class SpectraFigure
             Washes();
             Axes();
             Response();
-            foreach (NoiseCurve curve in spectrum.Noise.Where(c => c.Cause != NoiseModel.StatedPerTrial))
+            foreach (NoiseCurve curve in spectrum.Noise.Where(c => !NoiseModel.IsWhole(c.Cause)))
             {
                 (float[] pattern, SKColor colour, float width) = Style(curve.Cause);
                 Curve(curve.Densities, pattern, colour, width, curve.Cause == "muscle and electrode" ? "muscle, electrode" : curve.Cause, false);
             }
 
-            Curve(spectrum.Total, [], Palette.Ink, 2.2f, spectrum.Noise is [{ Cause: NoiseModel.StatedPerTrial }] ? NoiseModel.StatedPerTrial : "total", true);
+            Curve(spectrum.Total, [], Palette.Ink, 2.2f, spectrum.Noise is [{ Cause: var cause }] && NoiseModel.IsWhole(cause) ? cause : "total", true);
             Labels();
         }
 

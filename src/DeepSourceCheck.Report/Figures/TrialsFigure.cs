@@ -124,6 +124,11 @@ public static class TrialsFigure
 
         string Fit(Modality m)
         {
+            if (regions.All(r => r.Of(m) is null or { Outcome: Outcome.DoesNotApply }))
+            {
+                return $"the rule does not apply to {Names.Of(m)}";
+            }
+
             int n = regions.Count(r => r.Of(m)?.Outcome == Outcome.Fits);
             return regions.Length == 1 ? $"{Names.Of(m)} {(n == 1 ? "fits the session" : "does not fit")}"
                 : n == regions.Length ? $"{Names.Of(m)} fits in {(n == 2 ? "both" : $"all {n}")} regions"
@@ -143,7 +148,7 @@ public static class TrialsFigure
             a.HasCount && a.Minutes is { } m ? Say.Minutes(m) : "",
         ]))]);
 
-    private static string Cell(ModalityAnswer answer, long? count) => answer.Outcome == Outcome.Silent ? "" : Say.Trials(count);
+    private static string Cell(ModalityAnswer answer, long? count) => answer.Outcome is Outcome.Silent or Outcome.DoesNotApply ? "" : Say.Trials(count);
 
     private static FigureSheet Draw(int width, Assessment assessment, RegionAnswer[] regions, LogAxis axis)
     {
@@ -196,7 +201,7 @@ public static class TrialsFigure
         if (!answer.HasCount || answer.Trials is not { } trials)
         {
             TargetResult? leak = answer.Row?.AtLeak?.Targets.FirstOrDefault(t => t.Rule == answer.Verdict.Rule);
-            string words = answer.Outcome != Outcome.Silent ? Say.OutOfReach
+            string words = answer.Outcome != Outcome.Silent ? answer.NoCount
                 : leak is null ? "silent in this direction"
                 : $"silent in this direction; at leak {Say.Stated(answer.Row!.AtLeak!.Leak)}: {Say.Trials(leak.Trials.P50)}";
             if (leak?.Trials.P50 is { } atLeak && Math.Log10(atLeak) <= axis.High && Math.Log10(atLeak) >= axis.Low)

@@ -121,7 +121,7 @@ public static class VariantFigure
 
             if (!answer.HasCount || answer.Trials is not { } trials)
             {
-                pen.Text($"{Names.Of(modality)} {(answer.Outcome == Outcome.Silent ? "silent in this direction" : Say.OutOfReach)}", pen.Right - 4, y + 4, FigurePen.Small, Anchor.End, halo: true);
+                pen.Text($"{Names.Of(modality)} {answer.NoCount}", pen.Right - 4, y + 4, FigurePen.Small, Anchor.End, halo: true);
                 continue;
             }
 

@@ -39,6 +39,7 @@ public static class HtmlReport
         UnknownsSection.Write(html, assessment);
         PeopleSection.Write(html, assessment);
         StoppingSection.Write(html, assessment);
+        AttributionSection.Write(html, assessment);
         VariantSection.Write(html, assessment);
         if (assessment.Warnings.Count > 0)
         {

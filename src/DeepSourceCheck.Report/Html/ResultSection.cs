@@ -60,7 +60,7 @@ internal static class ResultSection
         Names.Of(row.Modality), Say.Direction(row.Direction), row.Measure,
         row.Peak is { } p ? $"{Say.Two(p.Value)} {Say.Unit(p.Unit)} at {p.Channel}" : "",
         Spread(row.SnrDb, Say.Decibels), .. rules ? new[] { Say.RuleKey(target.Rule) } : [],
-        target.Trials.P50 is { } n ? n > Say.MostTrials ? Say.OutOfReach : $"{Say.Count(n)} ({Say.Trials(target.Trials.P05)} to {Say.Trials(target.Trials.P95)})" : row.SnrDb.P50 is null ? "" : Say.OutOfReach,
+        target.Trials.P50 is { } n ? n > Say.MostTrials ? Say.OutOfReach : $"{Say.Count(n)} ({Say.Trials(target.Trials.P05)} to {Say.Trials(target.Trials.P95)})" : row.SnrDb.P50 is null ? "" : target.Absent ? "does not apply" : Say.OutOfReach,
         target.Trials.P50 <= Say.MostTrials && target.Minutes is { P50: { } } m ? Say.Minutes(m.P50!.Value) : "",
         target.SmallestMoment is { } q ? Say.Two(Si.ToNanoAmpereMetres(q)) : "",
         Note(row, target),

@@ -16,7 +16,7 @@ internal static class RuleSection
         }
 
         HtmlReport.Section(html, "rules", "Trials and time by rule");
-        html.Element("p", "Medians over the region's dipoles, of what each verdict reads. Readable, detected and quiet are different promises: their counts differ by a factor of ten on the same data.", "class", "small");
+        html.Element("p", "Medians over the region's dipoles, of what each verdict reads. Readable, detected and quiet are different promises: their counts may differ by a factor of ten on the same data.", "class", "small");
         bool weighted = assessment.Study.Noise?.SpreadBetweenTrials is not null, protocol = assessment.Study.Protocol is not null;
         string[] planned = protocol ? ["presented", "minutes", "in the chair, min", "effective share"] : [], more = weighted ? ["weighted trials"] : [];
         foreach (ResponseResult response in assessment.Responses)
@@ -46,7 +46,7 @@ internal static class RuleSection
         return
         [
             region.Region, $"{Say.Rule(row.Target, response.Measured)} ({row.Promise})", RegionAnswer.Words(answer.Modality),
-            target is null ? answer.Outcome == Outcome.Silent ? "silent" : answer.Reason is { } reason && answer.Trials is null ? reason : Say.OutOfReach : Say.Trials(answer.Trials),
+            target is null ? answer.Outcome == Outcome.Silent ? "silent" : answer.Outcome == Outcome.DoesNotApply ? $"does not apply{(answer.Reason is { } why ? $": {why}" : "")}" : answer.Reason is { } reason && answer.Trials is null ? reason : Say.OutOfReach : Say.Trials(answer.Trials),
             .. weighted ? new[] { Count(target?.Weighted?.P50) } : [], .. planned,
             answer.Target?.SmallestMoment is { } q ? Say.Two(Si.ToNanoAmpereMetres(q)) : "",
         ];

@@ -1,6 +1,7 @@
 using System.Globalization;
 using System.Text.Json;
 
+using DeepSourceCheck.Core.Noise.Recordings;
 using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Core.Units;
@@ -44,7 +45,7 @@ public static class AssessmentJson
                 json.WriteEndObject();
             }
 
-            json.WriteCount("session_trials", assessment.SessionTrials);
+            json.WriteCount("session_trials", SessionTrials(assessment));
             json.WriteArray("responses", assessment.Responses, (j, r) => WriteResponse(j, r, assessment));
             ProtocolJson.WritePeople(json, assessment);
             json.WriteArray("variants", assessment.Variants, (j, v) => WriteVariant(j, v, assessment));
@@ -53,6 +54,12 @@ public static class AssessmentJson
 
         stream.WriteByte((byte)'\n');
     }
+
+    // Trials of a steady-state response come no faster than they are long: one count for the study only where every response has the same.
+    private static long? SessionTrials(Assessment assessment) => !HasSteady(assessment) ? assessment.SessionTrials
+        : assessment.Responses.Select(r => assessment.For(r).SessionTrials).Distinct().ToArray() is [var one] ? one : null;
+
+    private static bool HasSteady(Assessment assessment) => assessment.Responses.Any(r => r.Response.Steady is not null);
 
     private static void Input(Utf8JsonWriter json, InputFile file)
     {
@@ -69,7 +76,7 @@ public static class AssessmentJson
         json.WriteString("name", variant.Name);
         json.WriteArray("assumptions", [.. variant.Assessment.Assumptions.Except(study.Assumptions)], JsonText.WriteAssumption);
         json.WriteStrings("warnings", variant.Assessment.Warnings.Except(study.Warnings));
-        json.WriteCount("session_trials", variant.Assessment.SessionTrials);
+        json.WriteCount("session_trials", SessionTrials(variant.Assessment));
         json.WriteArray("responses", variant.Assessment.Responses, (j, r) => WriteResponse(j, r, variant.Assessment));
         ProtocolJson.WritePeople(json, variant.Assessment);
         json.WriteEndObject();
@@ -79,9 +86,9 @@ public static class AssessmentJson
     {
         json.WriteStartObject();
         json.WriteString("name", response.Response.Name);
-        if (response.Response.Steady is not null)
+        if (HasSteady(assessment))
         {
-            json.WriteCount("session_trials", response.SessionTrials);
+            json.WriteCount("session_trials", assessment.For(response).SessionTrials);
         }
 
         if (response.Waveform is { } waveform)
@@ -97,6 +104,28 @@ public static class AssessmentJson
 
         json.WriteArray("regions", response.Regions, (j, r) => WriteRegion(j, r, response, assessment));
         json.WriteArray("noise_spectra", response.Spectra, WriteSpectrum);
+        if (response.Recording is { } recording)
+        {
+            WriteRecording(json, recording);
+        }
+
+        json.WriteEndObject();
+    }
+
+    private static void WriteRecording(Utf8JsonWriter json, RecordedNoise recording)
+    {
+        json.WriteStartObject("noise_recording");
+        json.WriteString("file", recording.File);
+        WriteBand(json, "band_read_Hz", recording.BandRead);
+        json.WriteFigure("seconds_read", recording.SecondsRead);
+        json.WriteFigure("seconds_used", recording.SecondsUsed);
+        json.WriteFigure("segment_ms", 1000 * recording.SegmentSeconds);
+        json.WriteNumber("segments", recording.Segments);
+        json.WriteFigure("rejected_share", recording.RejectedShare);
+        json.WriteFigure("independent_samples", recording.IndependentSamples);
+        json.WriteFigure("shrinkage", recording.Shrinkage);
+        json.WriteFigure("held_out_share", recording.HeldOutShare);
+        json.WriteFigure("median_rms_uV", Si.ToMicrovolts(recording.MedianRms));
         json.WriteEndObject();
     }
 
@@ -229,6 +258,7 @@ public static class AssessmentJson
             UnknownsJson.Write(json, unknowns);
         }
 
+        AttributionJson.Write(json, region);
         json.WriteRealisticHeads(region.RealisticHeads);
         json.WriteStrings("warnings", region.Warnings);
         json.WriteEndObject();

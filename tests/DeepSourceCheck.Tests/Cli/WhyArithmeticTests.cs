@@ -32,6 +32,7 @@ public sealed partial class WhyArithmeticTests : IDisposable
     [InlineData("direction: [0, 0, 1]", "direction: best")]
     [InlineData("direction: [0, 0, 1]", "direction: tangential\n    locked_artefact: {eeg_uV: 0.01, meg_fT: 0.1}")]
     [InlineData("direction: [0, 0, 1]", "direction: [1, 2, 2]\n    measure: {eeg: matched-filter, meg: matched-filter}")]
+    [InlineData("direction: [0, 0, 1]", "direction: tangential\n    competitors: [{region: medial-geniculate-left, moment_nAm: 20}]")]
     [InlineData("session_min: 40}", "session_min: 40, conditions: 2, replications: 3, breaks_min: 5, preparation_min: 30}")]
     [InlineData("target: {amplitude_ratio: 3}", "target: {detection: {topography: plane, looks: 3}}")]
     [InlineData("target: {amplitude_ratio: 3}", "target: {detection: {covariance: estimated}}")]

@@ -14,7 +14,7 @@ public partial class LayeringTests
     /// can, after the heads that it holds; Results (the result model and the words that name things) as soon as all that it holds is known.
     /// </summary>
     private static readonly string[] Stages =
-        ["Units", "Geometry", "Numerics", "Heads", "Studies", "Sensors", "Regions", "Leadfields", "Directions", "Waveforms", "Noise", "Results", "Detection", "Planning"];
+        ["Units", "Geometry", "Numerics", "Heads", "Studies", "Sensors", "Regions", "Leadfields", "Directions", "Waveforms", "Noise", "Results", "Detection", "Attribution", "Planning"];
 
     [Theory]
     [InlineData("DeepSourceCheck.Core", new[] { "MathNet.Numerics" })]

@@ -1,3 +1,4 @@
+using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Directions;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Heads;
@@ -101,6 +102,37 @@ internal static class AssessmentFixture
         return a with { Responses = [a.Responses[0] with { Spectra = [eeg, meg], Regions = [region, .. a.Responses[0].Regions.Skip(1)] }] };
     }
 
+    /// <summary>The first region with competitors, a location in which MEG finds none, and chosen electrodes.</summary>
+    public static Assessment WithAttribution()
+    {
+        Assessment a = Default();
+        static Percentiles About(double x) => new(x - 2, x - 1, x, x + 1, x + 2);
+        (string, long?)[] Counts(long? n) => [(Names.AmplitudeRatio, n)];
+        DerivedNumber[] chain =
+        [
+            new("P", "power SNR of one trial with the competitors active, median over dipoles and directions", 0.02, "", "", "the run", Grade.Derived),
+            new("N", "trials", 450, "", "ceil(9 / P)", "definition", Grade.Derived),
+        ];
+        RegionResult region = a.Responses[0].Regions[0] with
+        {
+            Competitors = new(DirectionName.Given, 123,
+                [new("cortex", 4e-8, 1911, [new(Modality.Eeg, 39, About(4), [2, 3], About(-5)), new(Modality.Meg, 42, About(60), [], About(-3))])],
+                [
+                    new(Modality.Eeg, "Cz-mastoids", true, new(0.66, "uV", "Cz-mastoids"), About(-3.5), About(-17), [new(Names.AmplitudeRatio, 303, new(440, 445, 450, 455, null), chain)]),
+                    new(Modality.Meg, Names.MatchedFilter, false, null, new(null, null, null, null, null), new(null, null, null, null, null), [new(Names.AmplitudeRatio, 900, new(null, null, null, null, null), [])]),
+                ]),
+            Location = new(23_976, DirectionName.Given, 64, 0.092,
+                [
+                    new(Modality.Eeg, new(0.001, 0.0015, 0.002, 0.0025, 0.003), 0.008, new(0.0081, 0.0082, 0.00825, 0.0083, 0.0085), true, []),
+                    new(Modality.Meg, new(0.09, 0.1, 0.2, 0.3, null), 0.003, new(0.09, 0.1, 0.2, 0.3, null), false, []),
+                ], null),
+            Electrodes = new(DirectionName.Given, 123,
+                [.. Enumerable.Range(1, 12).Select(k => new ElectrodeStep($"E{k}", k == 1 ? null : -20 + k, Counts(k == 1 ? null : 2400 / k)))],
+                [new("E1-E2", -18, Counts(1200)), new("E1-E3", null, Counts(null))]),
+        };
+        return a with { Responses = [a.Responses[0] with { Regions = [region, .. a.Responses[0].Regions.Skip(1)] }] };
+    }
+
     public static Assessment TwoResponses()
     {
         Assessment a = Default();
@@ -121,6 +153,9 @@ internal static class AssessmentFixture
         public bool MegSilent { get; init; }
 
         public bool Detection { get; init; }
+
+        /// <summary>The test that the figure of power draws.</summary>
+        public ITargetRule Test { get; init; } = new DetectionRule(0.01, 0.9, 1);
 
         public bool ImportedHead { get; init; }
 
@@ -231,6 +266,8 @@ internal static class AssessmentFixture
                     Text = count is null ? "Silent: a sphere gives no field outside for this direction." : $"{Names.Of(modality)} needs {count} trials by {rule}.",
                     FitsSession = session is { } s ? count is { } n && n <= s : null,
                     Chain = Chain(modality, measure, count, protocol),
+                    Power = rule == (o.Detection ? "detection" : "amplitude_ratio") && row.SnrDb is { P05: { } weak, P50: { } middle, P95: { } strong }
+                        ? new(o.Test.Description, o.Detection, 0.9, Grows(o.Test, middle), Grows(o.Test, weak), Grows(o.Test, strong)) : null,
                 });
             }
         }
@@ -284,6 +321,8 @@ internal static class AssessmentFixture
         PeakAmplitude? amplitude = modality == Modality.Both ? null : new(peak, unit, modality == Modality.Eeg ? "Cz-mastoids" : "A117");
         return new(modality, direction, measure, amplitude, Snr(trials), Targets(o, trials, session, protocol, null, peak), null, null);
     }
+
+    private static Func<double, double> Grows(ITargetRule test, double snrDb) => trials => test.Probability(Math.Pow(10, snrDb / 10), 0, trials)!.Value;
 
     private static Percentiles Snr(double trials)
     {

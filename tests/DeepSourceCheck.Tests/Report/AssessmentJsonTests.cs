@@ -79,6 +79,17 @@ public class AssessmentJsonTests
     }
 
     [Fact]
+    public void Json_SessionTrialsOfASteadyStateResponse_StandOnceOrWithEach()
+    {
+        Assessment a = AssessmentFixture.Default();
+        ResponseResult steady = a.Responses[0] with { Response = a.Responses[0].Response with { Steady = new SteadyState(85, 2) }, SessionTrials = 1_080 };
+        JsonElement one = Parse(a with { Responses = [steady] }), mixed = Parse(a with { Responses = [steady, a.Responses[0]] });
+        Assert.Equal(1_080, one.GetProperty("session_trials").GetInt64());
+        Assert.Equal(JsonValueKind.Null, mixed.GetProperty("session_trials").ValueKind);
+        Assert.Equal([1_080, 23_976], mixed.GetProperty("responses").EnumerateArray().Select(r => r.GetProperty("session_trials").GetInt64()));
+    }
+
+    [Fact]
     public void Json_NonFiniteFigures_AreNull()
     {
         Assessment a = AssessmentFixture.Default();

@@ -1,5 +1,7 @@
 using System.Xml.Linq;
 
+using DeepSourceCheck.Core.Detection;
+using DeepSourceCheck.Core.Results;
 using DeepSourceCheck.Report;
 using DeepSourceCheck.Report.Figures;
 using DeepSourceCheck.Tests.Support;
@@ -110,7 +112,7 @@ public class FigureTests
     {
         Figure power = FigureSet.All(AssessmentFixture.Default()).Single(f => f.Name == "power");
         Assert.Contains("An amplitude ratio has no power", power.Conditions, StringComparison.Ordinal);
-        Assert.Contains("false-alarm rate 0.01", power.Conditions, StringComparison.Ordinal);
+        Assert.Contains("alpha 0.01", power.Conditions, StringComparison.Ordinal);
     }
 
     // Reference: ((z_0.99 + z_0.9)/d)^2 with z_0.99 = 2.3263478740, z_0.9 = 1.2815515655 (tables of the normal distribution, from memory).
@@ -118,12 +120,39 @@ public class FigureTests
     public void PowerCurve_ReachesThePowerAtTheKnownCount()
     {
         const double TableDigits = 1e-9;
-        PowerCurve curve = new(0.01, 1);
+        DetectionRule test = new(0.01, 0.9, 1);
         double expected = Math.Pow(2.3263478740 + 1.2815515655, 2);
-        RelativeAssert.Equal(expected, curve.Trials(0.9, 0), TableDigits);
-        RelativeAssert.Equal(0.9, curve.At(expected, 0), TableDigits);
-        RelativeAssert.Equal(1000 * expected, curve.Trials(0.9, -30), TableDigits);
-        RelativeAssert.Equal(0.01, curve.At(0, 0), TableDigits);
+        RelativeAssert.Equal(expected, DetectionCurve.Trials(n => test.Probability(1, 0, n)!.Value, 0.9), TableDigits);
+        RelativeAssert.Equal(1000 * expected, DetectionCurve.Trials(n => test.Probability(1e-3, 0, n)!.Value, 0.9), TableDigits);
+        Assert.Equal(double.PositiveInfinity, DetectionCurve.Trials(_ => 0.01, 0.9));
+    }
+
+    // The curve crosses the power asked for where the rule counts, whatever the rule; that of known pattern and noise crosses elsewhere.
+    [Theory]
+    [InlineData("steady")]
+    [InlineData("plane")]
+    [InlineData("student")]
+    [InlineData("hotelling")]
+    public void PowerFigure_CrossesAtTheCountOfTheVerdictsOwnTest(string name)
+    {
+        ITargetRule test = name switch
+        {
+            "steady" => new SteadyStateRule(0.01, 0.9, 1),
+            "plane" => new SubspaceDetectionRule(0.01, 0.9, 1, 2),
+            "student" => new StudentDetectionRule(0.01, 0.9, 1),
+            _ => new HotellingRule(0.01, 0.9, 1, 30),
+        };
+        AssessmentFixture.Options options = new() { Detection = true, Test = test };
+        Assessment assessment = AssessmentFixture.Build(options);
+        Figure power = FigureSet.All(assessment).Single(f => f.Name == "power");
+        Assert.Contains(test.Description, power.Conditions, StringComparison.Ordinal);
+        RegionResult region = assessment.Responses[0].Regions[0];
+        VerdictResult verdict = region.Verdicts.First(v => v.Modality == Modality.Eeg && v.Power is not null);
+        double snr = Math.Pow(10, region.Find(verdict.Modality, verdict.Direction, verdict.Measure)!.SnrDb.P50!.Value / 10);
+        string count = TrialCount.Ceiling(test.Trials(snr))!.Value.ToString("N0", System.Globalization.CultureInfo.InvariantCulture);
+        Assert.Contains(power.Table.Rows, r => r[0] == "EEG" && r[1].StartsWith("90", StringComparison.Ordinal) && r[2] == count);
+        Assert.NotEqual(TrialCount.Ceiling(new DetectionRule(0.01, 0.9, 1).Trials(snr)), TrialCount.Ceiling(test.Trials(snr)));
+        using FigureSheet sheet = power.Draw(power.FileWidth);
     }
 
     [Fact]

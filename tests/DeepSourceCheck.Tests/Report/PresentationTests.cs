@@ -25,6 +25,7 @@ public class PresentationTests
         ["two responses"] = AssessmentFixture.TwoResponses,
         ["cortex"] = AssessmentFixture.OverCortex,
         ["spectra"] = AssessmentFixture.WithSpectra,
+        ["attribution"] = AssessmentFixture.WithAttribution,
     };
 
     [Theory]

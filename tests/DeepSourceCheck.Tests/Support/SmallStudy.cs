@@ -83,7 +83,14 @@ internal sealed record SmallStudy
 
     public Protocol? Protocol { get; init; } = new() { Rate = 10, Session = 600 };
 
+    public IReadOnlyList<CompetitorChoice> Competitors { get; init; } = [];
+
+    public bool ChooseSensors { get; init; }
+
     public bool Together { get; init; }
+
+    /// <summary>Regions of the response; null: all.</summary>
+    public int? RegionsOfResponse { get; init; }
 
     /// <summary>Splits the points into this many regions.</summary>
     public int Regions { get; init; } = 1;
@@ -106,7 +113,9 @@ internal sealed record SmallStudy
         {
             Name = "r",
             Key = "responses.r",
-            Regions = [.. Enumerable.Range(0, Regions).Select(k => $"region{k}")],
+            Regions = [.. Enumerable.Range(0, RegionsOfResponse ?? Regions).Select(k => $"region{k}")],
+            Competitors = Competitors,
+            ChooseSensors = ChooseSensors,
             Moment = Moment,
             Amplitude = Amplitude,
             MomentRange = MomentRange,

@@ -172,6 +172,9 @@ public sealed class VoxelHead : IHead
     /// <inheritdoc/>
     public bool IsSymmetryCentre(Vec3 point) => false;
 
+    /// <summary>Radius of <see cref="Sphere"/> [m].</summary>
+    public double? Radius => Sphere.Sphere.Radius;
+
     /// <inheritdoc/>
     public double? Depth(Vec3 point) => Volume.Grid.IndexAt(point) < 0 ? null : _toAir.Value.At(point) - _halfVoxel;
 

@@ -39,6 +39,9 @@ public sealed class SphereLeadfield : ILeadfieldSource
     public int MegRows => _meg?.Rows ?? 0;
 
     /// <inheritdoc/>
+    public double? PositionStep => 1e-5;
+
+    /// <inheritdoc/>
     public LeadfieldMethod Method { get; } = new(
         "EEG leadfield: series of the layered sphere, de Munck and Peters 1993, Zhang 1995", "MEG leadfield: closed form of the sphere, Sarvas 1987");
 

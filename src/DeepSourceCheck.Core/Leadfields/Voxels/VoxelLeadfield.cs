@@ -48,6 +48,9 @@ public sealed class VoxelLeadfield : ILeadfieldSource
     /// <inheritdoc/>
     public LeadfieldMethod Method { get; }
 
+    /// <summary>The edge of a voxel [m]: within one the leadfield follows the weights of its nodes, not the field.</summary>
+    public double? PositionStep => Math.Cbrt(_load.Tissue.Mesh.Volume.Grid.VoxelVolume);
+
     /// <summary>What carries a dipole at a place [m]: for counting those near the border of source tissue.</summary>
     /// <exception cref="ArgumentOutOfRangeException">The place is not in source tissue.</exception>
     public DipoleSupport SupportAt(Vec3 position) => _load.SupportAt(position);

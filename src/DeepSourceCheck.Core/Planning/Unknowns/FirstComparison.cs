@@ -8,7 +8,7 @@ namespace DeepSourceCheck.Core.Planning.Unknowns;
 
 // FirstComparison.cs - which modality needs fewer trials, and what would turn that round.
 //   q = N(other) / N(first). Under every rule trials go with the inverse power, so the other's noise amplitude must fall by sqrt(q), or the first's rise by it. A moment and a noise factor
-//   that both share move both alike and turn nothing round. Skull (it moves EEG alone) and gap (it moves MEG alone) are searched by bisection of ln(N_EEG / N_MEG), which is monotone in both.
+//   that both share move both alike and turn nothing round. Skull (it moves EEG alone) and, where MEG noise is the sensors' own, gap (it moves MEG alone) are searched by bisection of ln(N_EEG / N_MEG), which is monotone in both.
 
 /// <summary>The modality that comes first under one rule.</summary>
 internal sealed class FirstComparison(StudySetup setup, EvaluationPlan plan, UnknownsRun run, int rule)
@@ -40,6 +40,10 @@ internal sealed class FirstComparison(StudySetup setup, EvaluationPlan plan, Unk
         return new FirstModality(name, first, share, Flip(first, balance, eeg, meg));
     }
 
+    // Brain and room reach a nearer array with more noise, too: the gap is searched only where the sensors' own noise is all there is.
+    private bool NoiseStaysWithTheSensors =>
+        setup.Noise!.Terms.All(t => t.Meg?.Factor is null) && setup.Study.Noise?.MegCovariance is null;
+
     private int Verdict(Modality modality) => run.Verdicts.ToList().FindIndex(v => v.Measure.Modality == modality && v.Rule == rule);
 
     // ln(N_EEG / N_MEG): below 0 EEG comes first; NaN where neither is reached.
@@ -66,7 +70,7 @@ internal sealed class FirstComparison(StudySetup setup, EvaluationPlan plan, Unk
                 string.Create(CultureInfo.InvariantCulture, $"no ratio of brain to skull conductivity {(first == Modality.Eeg ? $"up to {MostSkull}" : $"down to {LeastSkull}")}"), first == Modality.Meg, "less than");
         }
 
-        if (setup.Perturbable is { Gap: { } gap })
+        if (setup.Perturbable is { Gap: { } gap } && NoiseStaysWithTheSensors)
         {
             double? at = Crossing(Math.Log(gap), Math.Log(first == Modality.Eeg ? LeastGap : MostGap), x => new HeadPerturbation { Gap = Math.Exp(x) }, balance, eeg, meg);
             Say(at is { } x ? string.Create(CultureInfo.InvariantCulture, $"the coils lie {(first == Modality.Eeg ? "nearer" : "farther")} than {Rounded.Two(Si.ToMm(Math.Exp(x)))} mm from the scalp") : null,

@@ -17,7 +17,10 @@ namespace DeepSourceCheck.Core.Planning.Unknowns;
 internal sealed class UnknownsRun
 {
     // Below this the single unknowns explain all there is: what is left is the draw's own error.
-    private const double NoInteraction = 0.05;
+    private const double NoInteraction = 0.1;
+
+    // Variance of ln trials below which an unknown does nothing: rounding.
+    private const double NoEffect = 1e-9;
 
     private readonly StudySetup _setup;
     private readonly EvaluationPlan _plan;
@@ -153,10 +156,11 @@ internal sealed class UnknownsRun
         double[] trials = [.. all.Select(e => Trials(v, e[v])).Order()];
         var counts = new Percentiles3<long?>(Count(trials, 0.05), Count(trials, 0.5), Count(trials, 0.95));
         double? Minutes(long? count) => count is { } n && _plan.Protocol is { } protocol ? SessionPlan.Minutes(protocol, n) : null;
-        double total = Variance(all.Select(e => Trials(v, e[v])));
+        // Over the same draws as each unknown on its own, so that both carry the same error.
+        double total = Variance(all.Take(UnknownDraws.Alone).Select(e => Trials(v, e[v])));
         UnknownEffect[] ranking = [.. _draws.Names.Select(name => Effect(v, name, alone[name], ends[name])).OrderByDescending(e => e.LogVariance)];
         double explained = ranking.Sum(e => e.LogVariance);
-        double? interaction = total > 0 && double.IsFinite(explained) && double.IsFinite(total) ? Math.Clamp(1 - explained / total, 0, 1) : null;
+        double? interaction = ranking.Count(e => e.LogVariance > 0) > 1 && double.IsFinite(explained) && double.IsFinite(total) ? Math.Clamp(1 - explained / total, 0, 1) : null;
         double? assurance = _plan.SessionTrials is { } session && Rule(v).Absent is null ? all.Average(e => Suffices(v, e[v], session)) : null;
 
         return new VerdictSpread(measure.Modality, Rule(v).Name, measure.Name, counts,
@@ -191,6 +195,7 @@ internal sealed class UnknownsRun
     {
         double[] logs = [.. trials.Select(n => Math.Log(n))];
         double mean = logs.Average();
-        return logs.Sum(l => (l - mean) * (l - mean)) / logs.Length;
+        double variance = logs.Sum(l => (l - mean) * (l - mean)) / logs.Length;
+        return variance < NoEffect ? 0 : variance;
     }
 }

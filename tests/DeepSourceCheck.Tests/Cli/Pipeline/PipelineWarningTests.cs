@@ -127,6 +127,27 @@ public sealed class PipelineWarningTests : IDisposable
     }
 
     [Fact]
+    public void ImplausibleAmplitude_IsRefusedWhereItStands()
+    {
+        (string, string) amplitude = ("moment_nAm: 10", "amplitude: {peak_uV: 3000, derivation: Cz-Oz}");
+        InputProblem problem = Assert.Throws<InputException>(() => _text.Assess(PreparedText.Study, amplitude)).Problems[0];
+        Assert.Equal("responses.r.amplitude.peak_uV", problem.Key);
+        Assert.Equal(8, problem.Line);
+        Assert.Contains("follows from amplitude.peak_uV", problem.Message, StringComparison.Ordinal);
+        Assert.Contains("add `responses.r.moment_nAm` to accept_implausible", problem.Message, StringComparison.Ordinal);
+        Says(_text.Assess(PreparedText.Study + "\naccept_implausible: [responses.r.moment_nAm]", amplitude).Warnings, "accepted by accept_implausible");
+    }
+
+    [Fact]
+    public void WaveformTable_ThatStartsAwayFromTheBaseline_IsSaid()
+    {
+        _text.With("step.csv", "time_ms,value\n0,0.5\n20,1\n40,0\n").With("rest.csv", "time_ms,value\n0,0\n20,1\n40,0\n");
+        (string, string) Table(string file) => ("moment_nAm: 10", $"moment_nAm: 10, waveform: {file}");
+        Says(_text.Assess(PreparedText.Study, Table("step.csv")).Warnings, "starts or ends at 50 % of its peak");
+        Assert.DoesNotContain(_text.Assess(PreparedText.Study, Table("rest.csv")).Warnings, w => w.Contains("starts or ends", StringComparison.Ordinal));
+    }
+
+    [Fact]
     public void TotalFarFromTheTables_WarnsThenStops()
     {
         // The tables give 2.0 uV over 100-3000 Hz; usual is 0.3 to 3 times that, warned outside by 3 times more, refused by 10 times.

@@ -90,6 +90,15 @@ public class BrainTablesTests
     }
 
     [Fact]
+    public void Total_ThatTheInstrumentAloneExceeds_IsNotCuredByTheBrain()
+    {
+        NoiseChoice choice = Total with { EegDensity = 1e-5 };
+        string message = Assert.Throws<InputException>(() => Builder(choice).Build(null, null, [Slow])).Message;
+        Assert.DoesNotContain("noise.brain", message, StringComparison.Ordinal);
+        Assert.Contains("quieter amplifier", message, StringComparison.Ordinal);
+    }
+
+    [Fact]
     public void BandOutsideAnOwnTable_IsSaid_WithItsName()
     {
         var tables = new BrainTables(new LogLogTable((2, 1e-6), (30, 1e-7)), BrainTables.Default.Meg, "brain-eeg.csv", BrainTables.Default.MegName);

@@ -79,6 +79,18 @@ public class AssessorTests
     }
 
     [Theory]
+    [InlineData(Names.MatchedFilter, Names.BestChannel, Names.BestChannel)]
+    [InlineData("E0-E1", Names.MatchedFilter, "E0-E1")]
+    public void FilterBesideASingleReading_AddsItsPower(string eeg, string meg, string both)
+    {
+        // Independent noise: the covariance of the two chosen readings is diagonal, their power ratios add.
+        RegionResult region = (Random(6) with { EegMeasure = eeg, MegMeasure = meg }).Assess();
+        double sum = Power(region, Modality.Eeg, DirectionName.Given, eeg) + Power(region, Modality.Meg, DirectionName.Given, meg);
+        RelativeAssert.Equal(sum, Power(region, Modality.Both, DirectionName.Given, both), TwinTolerance);
+        Assert.Equal(both, region.Verdicts.Single(v => v.Modality == Modality.Both).Measure);
+    }
+
+    [Theory]
     [InlineData(4)]
     [InlineData(5)]
     public void Sets_OfDirections_EqualTheirDefinition(int seed)

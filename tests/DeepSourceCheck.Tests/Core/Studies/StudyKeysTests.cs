@@ -42,6 +42,7 @@ public class StudyKeysTests
         noise.eeg_sensor_uV_rms noise.meg_sensor_fT_rms
         noise.eeg_covariance noise.eeg_covariance.file noise.eeg_covariance.samples noise.eeg_covariance.averaged_trials
         noise.meg_covariance noise.meg_covariance.file noise.meg_covariance.samples
+        noise.eeg_recording noise.eeg_recording.file noise.eeg_recording.channels noise.eeg_recording.from_s noise.eeg_recording.to_s
         """;
 
     // Units as they end a key's name, with the unit that the registry must state.
@@ -78,6 +79,8 @@ public class StudyKeysTests
     [
         "responses[].shares",
         "responses[].lags_ms",
+        // A search that costs time.
+        "responses[].choose_sensors",
         "responses[].waveform.gaussian_fwhm_ms",
         "responses[].place_error_mm",
         "responses[].baseline_s",
@@ -101,6 +104,10 @@ public class StudyKeysTests
         // The default brain exceeds a usual total at 1 to 40 Hz, and rooms are not white.
         "noise.brain.scale",
         "noise.environment.corner_Hz",
+        // What a baseline needs beside file, channels and times.
+        "noise.eeg_recording.reference",
+        "noise.eeg_recording.segment_ms",
+        "noise.eeg_recording.limit_uV",
         // The exact critical value instead of a rounded one, and averaging as it really is.
         "target.variance_ratio.alpha",
         "protocol.interval_jitter_ms",

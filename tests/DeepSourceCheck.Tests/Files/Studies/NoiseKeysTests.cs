@@ -36,6 +36,37 @@ public class NoiseKeysTests
         Assert.Null(Read(Brain + "\n  environment: none").Study.Noise!.Environment);
     }
 
+    private const string EegDensity = "  eeg_sensor_nV_per_rtHz: 20\n";
+
+    // The reader asks only whether the file is there: any file stands in for a recording.
+    private static StudyReading Recorded(string value) => StudyText.Read(StudyText.Small.With(EegDensity, $"  eeg_recording: {value}\n"));
+
+    [Fact]
+    public void Recording_IsReadInSi_WithItsDefaults()
+    {
+        Assert.Equal(new RecordingChoice("points.tsv", 1e-4), Recorded("points.tsv").Study.Noise!.EegRecording);
+        RecordingChoice all = Recorded("{file: points.tsv, channels: [a, b], reference: Cz, from_s: 10, to_s: 190, segment_ms: 500, limit_uV: 50}").Study.Noise!.EegRecording!;
+        Assert.Equal(["a", "b"], all.Channels!);
+        Assert.Equal(new RecordingChoice("points.tsv", 5e-5) { Reference = "Cz", From = 10, To = 190, Segment = 0.5 }, all with { Channels = null });
+        Assumption limit = Recorded("points.tsv").Assumptions.Single(a => a.Key == "noise.eeg_recording.limit_uV");
+        Assert.Equal((100.0, "uV", false), (limit.Value, limit.Unit, limit.FromStudy));
+    }
+
+    [Theory]
+    [InlineData("{from_s: 1}", "noise.eeg_recording.file", "is missing")]
+    [InlineData("none.edf", "noise.eeg_recording", "does not exist")]
+    [InlineData("{file: points.tsv, limit_uV: 0}", "noise.eeg_recording.limit_uV", "out of range|above 0")]
+    [InlineData("{file: points.tsv, limit_uV: 6000}", "noise.eeg_recording.limit_uV", "more than 10 times outside")]
+    [InlineData("{file: points.tsv, from_s: -1}", "noise.eeg_recording.from_s", "out of range|from 0")]
+    [InlineData("{file: points.tsv, from_s: 20, to_s: 10}", "noise.eeg_recording.to_s", "must lie after from_s, 20 s")]
+    [InlineData("{file: points.tsv, to: 10}", "noise.eeg_recording.to", "unknown key|to_s")]
+    public void WrongRecording_NamesItsKey(string value, string key, string parts)
+    {
+        InputProblem problem = StudyText.Problem(StudyText.Small.With(EegDensity, $"  eeg_recording: {value}\n"));
+        Assert.Equal(key, problem.Key);
+        Assert.All(parts.Split('|'), part => Assert.Contains(part, problem.Message, StringComparison.Ordinal));
+    }
+
     [Fact]
     public void EveryNewKey_StandsInTheAssumptions_WithItsOrigin()
     {

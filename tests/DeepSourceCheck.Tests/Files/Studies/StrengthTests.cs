@@ -60,6 +60,7 @@ public class StrengthTests
     [InlineData("shares: [0, 0]", "shares", "all zero")]
     [InlineData("lags_ms: [0, 1]", "lags_ms", "component_Hz")]
     [InlineData("lags_ms: [0, x]", "lags_ms", "not allowed")]
+    [InlineData("lags_ms: [0, 1]\n    component_Hz: 500\n    cycles: 2", "lags_ms", "not supported yet with cycles")]
     public void WrongShares_NameKeyAndWhatIsAllowed(string line, string name, string says)
     {
         InputProblem problem = StudyText.Problem(StudyText.Small.With(RegionsLine, Together + "\n    " + line));

@@ -219,4 +219,24 @@ public class StudyReaderTests
     }
 
     private static void Near(Vec3 expected, Vec3 actual) => Assert.True((expected - actual).Norm <= Rounding, $"{expected} {actual}");
+
+    [Fact]
+    public void Competitors_AreReadInAmpereMetres_FromEitherKindOfRegion()
+    {
+        Response response = StudyText.Read(StudyText.Small.With("moment_nAm: 3.5", "moment_nAm: 3.5\n    competitors: [{region: cortex, moment_nAm: 10}, {region: red-nucleus-left, moment_nAm: 0}]\n    choose_sensors: true")).Study.Responses[0];
+        Assert.Equal([new CompetitorChoice("cortex", 1e-8), new CompetitorChoice("red-nucleus-left", 0)], response.Competitors);
+        Assert.True(response.ChooseSensors);
+    }
+
+    [Theory]
+    [InlineData("competitors: [{region: cortexx, moment_nAm: 10}]", "cortex")]
+    [InlineData("competitors: [{region: cortex, moment_nAm: 10}, {region: cortex, moment_nAm: 5}]", "stands twice among the competitors")]
+    [InlineData("competitors: [{region: cortex}]", "moment_nAm")]
+    [InlineData("competitors: [{region: cortex, moment_nAm: -1}]", "-1")]
+    [InlineData("choose_sensors: maybe", "true or false")]
+    public void Competitors_ThatCannotBeRead_AreRefusedWithTheReason(string lines, string expected)
+    {
+        InputProblem problem = StudyText.Problem(StudyText.Small.With("moment_nAm: 3.5", $"moment_nAm: 3.5\n    {lines}"));
+        Assert.Contains(expected, $"{problem.Key} {problem.Message}", StringComparison.Ordinal);
+    }
 }

@@ -1,5 +1,6 @@
 using DeepSourceCheck.Core.Heads;
 using DeepSourceCheck.Core.Studies;
+using DeepSourceCheck.Files.Studies;
 using DeepSourceCheck.Tests.Support;
 
 namespace DeepSourceCheck.Tests.Files.Studies;
@@ -32,6 +33,25 @@ public class UnknownsTests
     }
 
     [Fact]
+    public void TypicalsThatMoveTheFigures_AreSaid()
+    {
+        string text = StudyText.Small.With(Title, $"{Title}\nunknowns: {{skull_conductivity_ratio: {{low: 15, typical: 50, high: 80}}, noise_factor: {{low: 1, typical: 1.2, high: 1.5}}}}");
+        IReadOnlyList<string> warnings = StudyText.Read(text).Warnings;
+        Assert.Contains(warnings, w => w.Contains("50 replaces the head's own ratio of 25", StringComparison.Ordinal));
+        Assert.Contains(warnings, w => w.Contains("1.2 times it", StringComparison.Ordinal));
+    }
+
+    [Fact]
+    public void SkullWithoutElectrodes_HasNoEffect()
+    {
+        string text = StudyText.Small.With("  eeg: {layout: ten-ten-64, reference: average}\n", "").With("  eeg_derivations: [Cz-mastoids, Cz-M1]\n", "").With("  eeg_sensor_nV_per_rtHz: 20\n", "")
+            .With(Title, $"{Title}\nunknowns: {{skull_conductivity_ratio: {{low: 15, typical: 25, high: 80}}, head_shift_mm: 5}}");
+        StudyReading reading = StudyText.Read(text);
+        Assert.Contains(reading.Warnings, w => w.Contains("MEG does not depend on conductivity", StringComparison.Ordinal));
+        Assert.Null(reading.Study.Unknowns!.SkullRatio);
+    }
+
+    [Fact]
     public void TypicalRatio_OfThePreset_LeavesTheHeadAsItIs() =>
         Assert.Equal(0.0132, Assert.IsType<SphereHeadChoice>(Read("{skull_conductivity_ratio: {low: 15, typical: 25, high: 80}}").Head).Sphere.Layers[2].RadialConductivity);
 
@@ -41,6 +61,7 @@ public class UnknownsTests
     [InlineData("{noise_factor: {low: 0.5, high: 1.5}}", "unknowns.noise_factor.typical", "missing")]
     [InlineData("{noise_factor: 2}", "unknowns.noise_factor", "keys with values")]
     [InlineData("{head_shift_mm: 5, samples: 3}", "unknowns.samples", "out of range")]
+    [InlineData("{centre_shift_mm: 60}", "unknowns.centre_shift_mm", "out of range")]
     [InlineData("{head_shift_mm: -5}", "unknowns.head_shift_mm", "out of range")]
     [InlineData("{gap_mm: 5}", "unknowns.gap_mm", "sensors.meg.gap_mm")]
     public void WrongUnknowns_NameKeyAndWhatIsAllowed(string unknowns, string key, string says)

@@ -122,6 +122,13 @@ public class UnknownsRunTests
     }
 
     [Fact]
+    public void OneUnknown_HasNothingToInteractWith()
+    {
+        (RegionResult region, _) = Assess(new UnknownsChoice { NoiseFactor = new Spread(0.5, 1, 2), Samples = 256 });
+        Assert.All(region.Unknowns!.Verdicts, v => Assert.Null(v.Interaction));
+    }
+
+    [Fact]
     public void FirstModality_NamesTheNoiseThatWouldTurnItRound()
     {
         (RegionResult region, _) = Assess(new UnknownsChoice { NoiseFactor = new Spread(0.5, 1, 2), Samples = 64 });
