@@ -504,7 +504,7 @@ public class StudyTests
     [Fact]
     public void Study21_AtATenthOfTheNoise_HasTheWorkedGridOfPeople()
     {
-        // Mean 1, spread 1, one trial 10: exact noncentral t, recomputed outside the project. The flat noise is stated as ten times the amplitude that the study itself predicts.
+        // Mean 1, spread 1, one trial 10: exact noncentral t, recomputed outside the project; at 59,940 trials d is 0.9992, and 10 people reach 0.802 (9: 0.747) by integration outside it. The flat noise is stated as ten times the amplitude that the study itself predicts.
         string file = SourceTree.Study(GroupStudy);
         double peak = AssessedStudy.Run(file).Result(WaveV, "inferior-colliculus-left", "EEG", "given", "Cz-mastoids").GetProperty("peak_amplitude").GetProperty("value").GetDouble();
         // Independent electrodes of s each: Cz against the mean of two mastoids holds s sqrt(1.5).
@@ -512,7 +512,7 @@ public class StudyTests
         AssessedStudy study = AssessedStudy.RunChanged(file,
             ("eeg_total: {rms_uV: 2.0, derivation: Cz-mastoids, band_Hz: [100, 3000]}", $"eeg_sensor_uV_rms: {noise}"), ("spread_between_people: 0.4", "spread_between_people: 1"), ("session_min: 10", "session_min: 100"));
         Assert.Equal(
-            [(10, 89), (25, 42), (50, 26), (100, 18), (200, 14), (400, 12), (1000, 11), (59_940, 11)],
+            [(10, 89), (25, 42), (50, 26), (100, 18), (200, 14), (400, 12), (1000, 11), (59_940, 10)],
             study.Root.GetProperty("people").EnumerateArray().Select(p => (p.GetProperty("trials").GetInt32(), p.GetProperty("participants").GetInt32())));
         Assert.Equal(10, Verdict(study, "EEG").GetProperty("people").GetProperty("participants_at_unlimited_trials").GetInt32());
     }

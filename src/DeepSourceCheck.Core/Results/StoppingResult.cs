@@ -6,8 +6,8 @@ namespace DeepSourceCheck.Core.Results;
 /// <param name="Spending">How the rate is spent.</param>
 /// <param name="Rows">One an analysis.</param>
 /// <param name="Most">Trials where no analysis before the last stops.</param>
-/// <param name="Expected">Mean trials, with the response as stated.</param>
-/// <param name="ExpectedWithout">Mean trials without a response.</param>
+/// <param name="Expected">Mean number of trials, without unit, with the response as stated.</param>
+/// <param name="ExpectedWithout">Mean number of trials, without unit, where there is no response.</param>
 /// <param name="MostMinutes">The first in minutes of recording; null without a protocol.</param>
 /// <param name="ExpectedMinutes">The second in minutes of recording; null likewise.</param>
 /// <param name="FitsSession">Whether the most fit the session; null without one.</param>

@@ -5,6 +5,8 @@ namespace DeepSourceCheck.Files.Studies;
 /// <summary>Stated keys that have no effect beside other stated keys, or less than they seem to: a warning each, with the reason.</summary>
 internal static class EffectCheck
 {
+    private static readonly string[] DetectionOptions = ["topography", "covariance"];
+
     /// <summary>Warns.</summary>
     /// <param name="root">The study.</param>
     /// <param name="responses">Its responses.</param>
@@ -48,7 +50,7 @@ internal static class EffectCheck
             return;
         }
 
-        foreach (string key in new[] { "topography", "covariance" }.Where(k => detection.Raw(k) is PlacedText { Text: not "known" }))
+        foreach (string key in DetectionOptions.Where(k => detection.Raw(k) is PlacedText { Text: not "known" }))
         {
             detection.Warn(key, $"has no effect {(steady.Length < responses.Count ? $"on {string.Join(", ", steady)}" : "here")}: a steady-state response is detected by the power of one reading's bin against its 120 neighbours, F(2, 240)");
         }

@@ -15,7 +15,7 @@ internal static class PeopleBinder
         {
             foreach (string name in new[] { DropOut, Test }.Where(protocol.States))
             {
-                protocol.Problem(name, $"is of a study of several people; state {Spread}, the coefficient of variation of the moment between them, or remove it");
+                protocol.Problem(name, $"is of a study of several people and needs {Spread} beside it, the coefficient of variation of the moment between them; state that, or remove it");
                 protocol.Skip(name);
             }
 

@@ -82,9 +82,9 @@ public static class StudyReader
         (UnknownsChoice? unknowns, head) = UnknownsBinder.Bind(root, head, responses, sensors, protocol, reading);
         PlanBinder.CheckWindows(responses, targets, protocol, reading);
         PlanBinder.CheckRate(responses, protocol, reading);
+        RateCurveBinder.Check(responses, root, protocol, reading);
         PlanBinder.CheckFrequencies(responses, reading);
         EffectCheck.Warn(root, responses, targets, noise, reading);
-        RateCurveBinder.Check(responses, root, protocol, reading);
         JudgeNumbers(placed, reading);
         return head is null ? null : new()
         {

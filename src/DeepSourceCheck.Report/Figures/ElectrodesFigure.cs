@@ -39,7 +39,7 @@ public static class ElectrodesFigure
         int most = Math.Max(4, chosen.Steps.Count);
         FigureSheet sheet = new(width, (int)(Top + Height + Bottom), Left, Right, Top, Bottom);
         sheet.Limits(1, most + 0.5, axis.Low, axis.High);
-        int step = new[] { 1, 2, 4, 8 }.First(k => k == 8 || most / k <= 10);
+        int step = most <= 10 ? 1 : most <= 20 ? 2 : most <= 40 ? 4 : 8;
         sheet.BottomAxis([.. Enumerable.Range(1, most).Where(k => k % step == 0).Select(k => ((double)k, Say.Count(k)))]);
         sheet.LeftAxis(axis.Ticks);
         sheet.Under(pen =>

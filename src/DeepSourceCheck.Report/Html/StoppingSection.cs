@@ -1,5 +1,4 @@
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Html;

@@ -1,7 +1,6 @@
 using System.Text.Json;
 
 using DeepSourceCheck.Core.Results;
-using DeepSourceCheck.Core.Studies;
 using DeepSourceCheck.Report.Answers;
 
 namespace DeepSourceCheck.Report.Tables;

@@ -1,6 +1,5 @@
 using CsCheck;
 
-using DeepSourceCheck.Core.Detection;
 using DeepSourceCheck.Core.Geometry;
 using DeepSourceCheck.Core.Planning;
 using DeepSourceCheck.Core.Results;

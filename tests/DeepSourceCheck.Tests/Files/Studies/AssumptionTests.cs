@@ -18,8 +18,9 @@ public class AssumptionTests
         StudyReading first = StudyText.Read(text);
         StudyReading second = StudyText.Read(Write(first.Assumptions.Where(a => a.FromStudy)));
         Assert.Equal(Line(first.Assumptions), Line(second.Assumptions));
-        Assert.Equal(first.Study.Responses.Select(r => r with { Regions = [], Competitors = [] }), second.Study.Responses.Select(r => r with { Regions = [], Competitors = [] }));
+        Assert.Equal(first.Study.Responses.Select(r => r with { Regions = [], Competitors = [], RateCurve = [] }), second.Study.Responses.Select(r => r with { Regions = [], Competitors = [], RateCurve = [] }));
         Assert.Equal(first.Study.Responses.SelectMany(r => r.Competitors), second.Study.Responses.SelectMany(r => r.Competitors));
+        Assert.Equal(first.Study.Responses.SelectMany(r => r.RateCurve), second.Study.Responses.SelectMany(r => r.RateCurve));
         Assert.Equal(first.Study.Noise, second.Study.Noise);
         Assert.Equal(first.Study.Targets, second.Study.Targets);
         Assert.Equal(first.Study.Protocol, second.Study.Protocol);
@@ -33,8 +34,9 @@ public class AssumptionTests
         StudyReading first = StudyText.Read(text);
         IEnumerable<Assumption> all = first.Assumptions.Where(a => !a.Key.StartsWith("head.spheres.layers", StringComparison.Ordinal) || a.FromStudy);
         StudyReading second = StudyText.Read(Write(all));
-        Assert.Equal(first.Study.Responses.Select(r => r with { Regions = [], Competitors = [], EegMeasure = null, MegMeasure = null }), second.Study.Responses.Select(r => r with { Regions = [], Competitors = [], EegMeasure = null, MegMeasure = null }));
+        Assert.Equal(first.Study.Responses.Select(r => r with { Regions = [], Competitors = [], RateCurve = [], EegMeasure = null, MegMeasure = null }), second.Study.Responses.Select(r => r with { Regions = [], Competitors = [], RateCurve = [], EegMeasure = null, MegMeasure = null }));
         Assert.Equal(first.Study.Responses.SelectMany(r => r.Competitors), second.Study.Responses.SelectMany(r => r.Competitors));
+        Assert.Equal(first.Study.Responses.SelectMany(r => r.RateCurve), second.Study.Responses.SelectMany(r => r.RateCurve));
         Assert.Equal(first.Study.Noise! with { Brain = null }, second.Study.Noise! with { Brain = null });
         Assert.Equal(first.Study.Targets, second.Study.Targets);
         Assert.Equal(first.Study.Protocol, second.Study.Protocol);
