@@ -7,7 +7,6 @@ namespace DeepSourceCheck.Report.Figures;
 public static class VariantFigure
 {
     private const int MostRegions = 12;
-    private const float Heading = 24, Row = 44, RegionGap = 16;
 
     /// <summary>The figure for one response; null where there is no variant or no verdict.</summary>
     public static Figure? Make(Assessment assessment, ResponseResult response, string name)
@@ -74,39 +73,8 @@ public static class VariantFigure
                 region.Region, row.Name, Names.Of(answer.Modality), answer.HasCount ? Say.Trials(answer.Trials) : answer.Line(), row.Change(answer.Modality) is { } db ? Say.SignedDecibels(db) : "",
             ]]);
 
-    private static FigureSheet Draw(int width, Assessment assessment, RegionRows[] regions, LogAxis axis)
-    {
-        const float Right = 34, Top = 40, Bottom = 46;
-        float gutter = Math.Min(0.34f * width, 16 + regions.SelectMany(r => r.Rows).Max(r => FigurePen.Width(r.Name, FigurePen.Small)) + 16);
-        float rows = regions.Sum(r => Heading + r.Rows.Count * Row) + (regions.Length - 1) * RegionGap + 10;
-        FigureSheet sheet = new(width, (int)(Top + rows + Bottom), gutter, Right, Top, Bottom);
-        double? session = TrialsFigure.OnTrials(sheet, axis, assessment);
-        sheet.Over(pen =>
-        {
-            pen.Text("accepted trials", 16, pen.Bottom + 36, FigurePen.Small, colour: Palette.Ink2);
-            if (session is { } x)
-            {
-                SessionLine.Draw(pen, pen.X(x), 20, SessionLine.Label(assessment));
-            }
-
-            float y = pen.Top + 4;
-            foreach (RegionRows region in regions)
-            {
-                pen.Text(FigurePen.Fit(region.Region, width - 32, FigurePen.Label, true), 16, y + 14, semiBold: true, halo: true);
-                y += Heading;
-                foreach (VariantRow row in region.Rows)
-                {
-                    pen.Text(FigurePen.Fit(row.Name, gutter - 26, FigurePen.Small), 16, y + Row / 2 + 4, FigurePen.Small, colour: Palette.Ink2);
-                    Marks(pen, axis, row, y);
-                    pen.Line(pen.Left, y + Row, pen.Right, y + Row, Palette.Hair, 1);
-                    y += Row;
-                }
-
-                y += RegionGap;
-            }
-        });
-        return sheet;
-    }
+    private static FigureSheet Draw(int width, Assessment assessment, RegionRows[] regions, LogAxis axis) => TrialRows.Draw(width, assessment, axis,
+        [.. regions.Select(region => new TrialRows.Group(region.Region, [.. region.Rows.Select(row => new TrialRows.Entry(row.Name, (pen, y) => Marks(pen, axis, row, y)))]))], 0.34f);
 
     // EEG in the upper half of the row, MEG in the lower: their labels never meet.
     private static void Marks(FigurePen pen, LogAxis axis, VariantRow row, float top)
